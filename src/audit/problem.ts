@@ -1,0 +1,197 @@
+import { GoodBasisError } from "../errors.js";
+import { isMatrixInput, type MatrixInput } from "../operator/input.js";
+import { Operator } from "../operator/operator.js";
+import { checkDeclaration, type LabelDeclaration } from "./label-family.js";
+
+/** A candidate conserved operator together with what the caller knows of it. */
+export interface Candidate {
+  /** The operator, n × n; Hermitian, unitary or any other normal matrix. */
+  readonly operator: MatrixInput;
+  /** The discrete family that its eigenvalues belong to; labels are snapped to it and count as declared. */
+  readonly label?: LabelDeclaration;
+  /**
+   * A ladder operator that raises this label by one step; it fixes the relative phases of a multiplet so that its matrix
+   * elements are real and positive (Condon and Shortley, The Theory of Atomic Spectra, 1935).
+   */
+  readonly ladder?: MatrixInput;
+}
+
+/**
+ * The problem H(λ) = H0 + λ V and the operators that may be conserved.
+ *
+ * All matrices are n × n over the same kets, in the same order.
+ */
+export interface Problem<K extends string = string, P extends string = string> {
+  /** The unperturbed Hamiltonian; Hermitian. */
+  readonly h0: MatrixInput;
+  /** The perturbation, Hermitian; or several by name, for a basis that is good for all of them. */
+  readonly v: MatrixInput | Readonly<Record<P, MatrixInput>>;
+  /** Candidate conserved operators by name. The names become the names of the labels. */
+  readonly candidates?: Readonly<Record<K, MatrixInput | Candidate>>;
+  /** Names of the n kets; by default their numbers, from 0. */
+  readonly kets?: readonly string[];
+  /** Unit of all energies, for display only. */
+  readonly unit?: string;
+}
+
+/** A perturbation by name. */
+export interface NamedOperator {
+  readonly name: string;
+  readonly operator: Operator;
+}
+
+/** A candidate, checked and read. */
+export interface PreparedCandidate extends NamedOperator {
+  readonly kind: "hermitian" | "unitary" | "normal";
+  /** The adjoint; the operator itself where it is Hermitian. */
+  readonly adjoint: Operator;
+  readonly label: LabelDeclaration | undefined;
+  readonly ladder: Operator | undefined;
+}
+
+/** A problem, checked and read. */
+export interface PreparedProblem {
+  readonly n: number;
+  readonly h0: Operator;
+  readonly perturbations: readonly NamedOperator[];
+  readonly candidates: readonly PreparedCandidate[];
+  /** Name of ket i. */
+  readonly ket: (i: number) => string;
+  readonly kets: readonly string[] | undefined;
+  readonly unit: string;
+}
+
+/**
+ * Reads and checks a problem.
+ *
+ * @throws GoodBasisError `shape`, `not-finite`, `not-hermitian`, `not-normal`, `name`: with the operator, the place and size
+ */
+export function prepareProblem(problem: Problem): PreparedProblem {
+  const h0 = hermitian("H0", read("H0", problem.h0));
+  const n = h0.n;
+  const perturbations = readPerturbations(problem.v, n);
+  const candidates: PreparedCandidate[] = [];
+  for (const [name, input] of Object.entries(problem.candidates ?? {})) {
+    checkName("candidate", name);
+    if (name === "H0" || perturbations.some((v) => v.name === name)) {
+      throw new GoodBasisError(
+        "name",
+        `candidate "${name}" has the name of H0 or of a perturbation; rename it`,
+        { name },
+      );
+    }
+    candidates.push(readCandidate(name, input, n));
+  }
+  const kets = problem.kets === undefined ? undefined : checkKets(problem.kets, n);
+  return {
+    n,
+    h0,
+    perturbations,
+    candidates,
+    kets,
+    ket: kets === undefined ? (i) => String(i) : (i) => kets[i] as string,
+    unit: problem.unit ?? "",
+  };
+}
+
+function read(name: string, input: MatrixInput): Operator {
+  try {
+    return Operator.from(input);
+  } catch (error) {
+    if (!(error instanceof GoodBasisError)) throw error;
+    throw new GoodBasisError(error.code, `${name}: ${error.message}`, { ...error.details, operator: name });
+  }
+}
+
+function sameSize(name: string, operator: Operator, n: number): Operator {
+  if (operator.n === n) return operator;
+  throw new GoodBasisError(
+    "shape",
+    `${name} is ${operator.n} × ${operator.n} but H0 is ${n} × ${n}; give every operator over the same kets`,
+    { operator: name, expected: n, received: operator.n },
+  );
+}
+
+function hermitian(name: string, operator: Operator): Operator {
+  if (operator.isHermitian) return operator.hermitianPart();
+  const worst = operator.hermitianDefect;
+  throw new GoodBasisError(
+    "not-hermitian",
+    `${name} is not Hermitian: ‖${name} − ${name}†‖ = ${worst.size.toPrecision(6)} (Frobenius), worst at row ${worst.row}, ` +
+      `column ${worst.col}, where the two elements differ by ${worst.value.toPrecision(6)}; ` +
+      "correct the matrix, or pass (A + A†)/2 if the asymmetry is noise",
+    { operator: name, size: worst.size, row: worst.row, column: worst.col, difference: worst.value },
+  );
+}
+
+function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
+  if (isMatrixInput(v)) return [{ name: "V", operator: hermitian("V", sameSize("V", read("V", v), n)) }];
+  const entries = Object.entries(v);
+  if (entries.length === 0) {
+    throw new GoodBasisError("option", "no perturbation was given; pass v: matrix, or v: { name: matrix }", {});
+  }
+  return entries.map(([name, input]) => {
+    checkName("perturbation", name);
+    if (name === "H0") {
+      throw new GoodBasisError("name", 'a perturbation may not be called "H0"; rename it', { name });
+    }
+    return { name, operator: hermitian(name, sameSize(name, read(name, input), n)) };
+  });
+}
+
+function readCandidate(name: string, input: MatrixInput | Candidate, n: number): PreparedCandidate {
+  const given: Candidate = isMatrixInput(input) ? { operator: input } : input;
+  let operator = sameSize(name, read(name, given.operator), n);
+  const kind = operator.kind;
+  if (kind === "general") {
+    const size = operator.normalDefect;
+    throw new GoodBasisError(
+      "not-normal",
+      `candidate ${name} is not normal: ‖[${name}, ${name}†]‖ = ${size.toPrecision(6)} (Frobenius); ` +
+        "a candidate must be Hermitian, unitary or at least commute with its adjoint " +
+        "(give Jz rather than J+; a ladder operator goes beside its label as `ladder`)",
+      { operator: name, size },
+    );
+  }
+  if (kind === "hermitian") operator = operator.hermitianPart();
+  const ladder = given.ladder === undefined ? undefined : sameSize(name, read(`${name}.ladder`, given.ladder), n);
+  return {
+    name,
+    operator,
+    kind,
+    adjoint: kind === "hermitian" ? operator : operator.adjoint(),
+    label: checkDeclaration(name, given.label),
+    ladder,
+  };
+}
+
+function checkName(what: string, name: string): void {
+  if (name.trim() === "") {
+    throw new GoodBasisError("name", `a ${what} has an empty name; name it as its label should read`, { name });
+  }
+}
+
+function checkKets(kets: readonly string[], n: number): readonly string[] {
+  if (kets.length !== n) {
+    throw new GoodBasisError("shape", `kets lists ${kets.length} names but H0 is ${n} × ${n}; name every ket once`, {
+      expected: n,
+      received: kets.length,
+    });
+  }
+  const seen = new Map<string, number>();
+  kets.forEach((ket, i) => {
+    if (typeof ket !== "string" || ket.trim() === "") {
+      throw new GoodBasisError("name", `ket ${i} has an empty name; name every ket`, { ket: i });
+    }
+    const other = seen.get(ket);
+    if (other !== undefined) {
+      throw new GoodBasisError("name", `kets ${other} and ${i} are both called "${ket}"; names must differ`, {
+        name: ket,
+        first: other,
+        second: i,
+      });
+    }
+    seen.set(ket, i);
+  });
+  return [...kets];
+}

@@ -1,0 +1,47 @@
+import { GoodBasisError } from "../errors.js";
+
+/**
+ * The named thresholds of the library, in one place. All are relative; none enters a certificate except as the stated
+ * resolution against which a verdict is given.
+ */
+
+/** A coupling inside a level counts as vanished when its bound is below this fraction of ‖V‖. */
+export const DEFAULT_RESOLUTION = 1e-10;
+
+/**
+ * A commutator counts as vanished when its bound is below this fraction of resolution · ‖A‖ ‖B‖: a label must be conserved
+ * more sharply than the couplings it is to rule out, since these are the commutator divided by a difference of labels.
+ */
+export const COMMUTATOR_SHARE: number = 1 / 64;
+
+/** "Far below": a level's spread must stay under this fraction of the gap around it and of the splittings inside it. */
+export const FAR_BELOW = 1e-3;
+
+/** Energies closer than this fraction of ‖H0‖ are tried as one level when the caller states no width. */
+export const LEVEL_WIDTH: number = 2 ** -42;
+
+/** Eigenvalues of an operator A closer than this fraction of ‖A‖ are tried as one. */
+export const LABEL_WIDTH: number = 2 ** -36;
+
+/** Entries of a restricted operator A below this fraction of ‖A‖ are taken as zero when looking for structure. */
+export const NOISE: number = 2 ** -43;
+
+/** With λ stated by the caller: largest ratio λ‖P_k V P_n‖ / |E_k − E_n| that is not refused. */
+export const REFUSE_ABOVE = 1;
+
+/** With no λ stated: the same ratio, λ being the smaller of 1 and spread(H0)/‖V‖; only a near-degeneracy exceeds it. */
+export const REFUSE_ABOVE_UNSTATED = 100;
+
+/**
+ * Checks a resolution.
+ *
+ * @throws GoodBasisError `option` unless it is a number above 0 and below 1
+ */
+export function checkResolution(resolution: number): number {
+  if (resolution > 0 && resolution < 1) return resolution;
+  throw new GoodBasisError(
+    "option",
+    `resolution is ${resolution}; give a number above 0 and below 1, the fraction of ‖V‖ that counts as vanished`,
+    { resolution },
+  );
+}

@@ -1,0 +1,115 @@
+import type { Complex } from "../refine/eigenspaces.js";
+import type { Csr } from "../numerics/csr.js";
+import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
+import type { Operator } from "../operator/operator.js";
+
+/** Rows (A q)ᵀ for vectors q stored as rows: Q Aᵀ. */
+export function images(vectors: Csr, operator: Operator): Csr {
+  const transposed = operator.isHermitian ? conjugate(operator.csr) : transpose(operator.csr);
+  return multiply(vectors, transposed);
+}
+
+/** Rows (A† q)ᵀ: Q conj(A). */
+export function adjointImages(vectors: Csr, operator: Operator): Csr {
+  return multiply(vectors, conjugate(operator.csr));
+}
+
+/**
+ * Bound on the rounding and entry errors of one computed image A q for ‖q‖ ≤ 1 + 2^−20: the k-th component is a sum of at
+ * most m products (m the longest row of A, or of its adjoint), so its error is at most √2 γ_{m+2} (|A||q|)_k (complex
+ * products, Higham ch. 3); ‖|A||q|‖ ≤ ‖|A|‖₂ ‖q‖. The entries' own errors add ‖ΔA‖₂ ‖q‖.
+ */
+export function imageError(operator: Operator): number {
+  const longest = operator.n < 64 ? operator.n : Math.max(operator.rowEntries, columnEntries(operator));
+  return roundUp((Math.SQRT2 * gamma(longest + 4) * operator.norm + operator.error) * (1 + 2 ** -19), 16);
+}
+
+function columnEntries(operator: Operator): number {
+  return operator.isHermitian ? operator.rowEntries : maxRowEntries(transpose(operator.csr));
+}
+
+/**
+ * Rigorous bounds on ‖A q − a q‖ for every row q.
+ *
+ * @param rows - computed images, as rows
+ * @param vectors - the vectors q, as rows
+ * @param value - the number a of each row
+ * @param error - bound on the error of each image, see {@link imageError}
+ */
+export function residualBounds(rows: Csr, vectors: Csr, value: (row: number) => Complex, error: number): Float64Array {
+  const out = new Float64Array(vectors.rows);
+  for (let r = 0; r < vectors.rows; r++) {
+    const a = value(r);
+    const size = Math.abs(a.re) + Math.abs(a.im);
+    let p = rows.ptr[r] as number;
+    let q = vectors.ptr[r] as number;
+    const pEnd = rows.ptr[r + 1] as number;
+    const qEnd = vectors.ptr[r + 1] as number;
+    let sum = 0;
+    while (p < pEnd || q < qEnd) {
+      const i = p < pEnd ? (rows.col[p] as number) : Number.POSITIVE_INFINITY;
+      const j = q < qEnd ? (vectors.col[q] as number) : Number.POSITIVE_INFINITY;
+      let x = 0;
+      let y = 0;
+      if (i <= j) {
+        x = rows.re[p] as number;
+        y = rows.im === undefined ? 0 : (rows.im[p] as number);
+        p++;
+      }
+      if (j <= i) {
+        const u = vectors.re[q] as number;
+        const v = vectors.im === undefined ? 0 : (vectors.im[q] as number);
+        x -= a.re * u - a.im * v;
+        y -= a.re * v + a.im * u;
+        q++;
+      }
+      sum += x * x + y * y;
+    }
+    const terms = pEnd - (rows.ptr[r] as number) + qEnd - (vectors.ptr[r] as number);
+    // a q and the subtraction: at most 4 roundings of size |a||q_k| each, and one of the difference itself
+    out[r] = roundUp(Math.sqrt(sum) + error + 5 * UNIT_ROUNDOFF * size, terms + 8);
+  }
+  return out;
+}
+
+/** Rayleigh quotients q†A q (real parts) of all rows, from their images. */
+export function rayleighQuotients(rows: Csr, vectors: Csr): Float64Array {
+  const out = new Float64Array(vectors.rows);
+  for (let r = 0; r < vectors.rows; r++) out[r] = rowProduct(vectors, r, rows, r).re;
+  return out;
+}
+
+/** Σ_k conj(a_k) b_k over one row of each. */
+export function rowProduct(a: Csr, ra: number, b: Csr, rb: number): Complex {
+  let p = a.ptr[ra] as number;
+  let q = b.ptr[rb] as number;
+  const pEnd = a.ptr[ra + 1] as number;
+  const qEnd = b.ptr[rb + 1] as number;
+  let re = 0;
+  let im = 0;
+  while (p < pEnd && q < qEnd) {
+    const i = a.col[p] as number;
+    const j = b.col[q] as number;
+    if (i < j) p++;
+    else if (j < i) q++;
+    else {
+      const x = a.re[p] as number;
+      const y = a.im === undefined ? 0 : (a.im[p] as number);
+      const u = b.re[q] as number;
+      const v = b.im === undefined ? 0 : (b.im[q] as number);
+      re += x * u + y * v;
+      im += x * v - y * u;
+      p++;
+      q++;
+    }
+  }
+  return { re, im };
+}
+
+/** √(Σ x²), rounded up. */
+export function rootSumSquares(values: Float64Array): number {
+  let sum = 0;
+  for (let k = 0; k < values.length; k++) sum += (values[k] as number) ** 2;
+  return roundUp(Math.sqrt(sum), values.length + 4);
+}

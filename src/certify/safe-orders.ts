@@ -1,0 +1,69 @@
+import type { LevelState } from "./level-states.js";
+import type { NodeEvidence } from "./couplings.js";
+
+/**
+ * Through which order the short non-degenerate formulas give the right number for a state.
+ *
+ * `"all"` means every order; `"none"` that the zeroth-order state itself is not settled.
+ */
+export interface SafeOrders {
+  readonly energies: number | "all";
+  readonly states: number | "all" | "none";
+}
+
+/** The weakest link between a state and a partner in its level, and what it allows. */
+export interface SafetyFinding {
+  readonly safe: SafeOrders;
+  /** What limits the orders, in words; empty where nothing does. */
+  readonly limitedBy: string;
+}
+
+/**
+ * The safe orders of a state: the minimum over its partners in the level.
+ *
+ * | weakest link to a partner | energies | states |
+ * |---|---|---|
+ * | a conserved label | all | all |
+ * | V: different E1 | 2 | 0 |
+ * | the effective operator of order s | s + 1 | 0 |
+ * | nothing studied | 1 | none |
+ *
+ * Two states that only V tells apart are mixed by W at first order already, c_μ = W_μν/(E1_ν − E1_μ), which adds
+ * |W_μν|²/(E1_ν − E1_μ) to the third order: the short formulas miss both.
+ *
+ * @param evidence - the nodes at which states of this level part company
+ */
+export function safeOrders(state: LevelState, evidence: ReadonlyMap<number, NodeEvidence>): SafetyFinding {
+  if (state.together > 1) {
+    const others = state.together === 2 ? "another state" : `${state.together - 1} other states`;
+    return {
+      safe: { energies: 1, states: "none" },
+      limitedBy: `nothing studied tells it from ${others} of its level`,
+    };
+  }
+  const onPath = state.path.flatMap((step) => evidence.get(step.node) ?? []);
+  const v = onPath.find((node) => node.kind === "perturbation");
+  if (v !== undefined) {
+    return {
+      safe: { energies: 2, states: 0 },
+      limitedBy: `only ${v.operator} tells it from a partner with the same labels`,
+    };
+  }
+  if (onPath.some((node) => node.kind === "second order")) {
+    return {
+      safe: { energies: 3, states: 0 },
+      limitedBy: "only the second-order operator tells it from a partner with the same labels",
+    };
+  }
+  return { safe: { energies: "all", states: "all" }, limitedBy: "" };
+}
+
+/** The smaller of two safe orders, part by part. */
+export function weaker(a: SafeOrders, b: SafeOrders): SafeOrders {
+  return { energies: lower(a.energies, b.energies), states: lower(a.states, b.states) };
+}
+
+function lower<T extends number | "all" | "none">(a: T, b: T): T {
+  const height = (x: T): number => (x === "all" ? Number.POSITIVE_INFINITY : x === "none" ? -1 : Number(x));
+  return height(a) <= height(b) ? a : b;
+}

@@ -1,0 +1,77 @@
+import type { Audit } from "../audit/audit.js";
+import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import { LABEL_WIDTH } from "../audit/resolution.js";
+import type { Csr } from "../numerics/csr.js";
+import type { Complex } from "../refine/eigenspaces.js";
+import { labelFamily, sharpLabel, type StateLabel, vagueLabel } from "../refine/label.js";
+import type { TreeNode } from "../refine/tree.js";
+import type { LevelStates } from "./level-states.js";
+import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+
+/** A candidate's number in one state, before it is named. */
+export interface LabelNumber {
+  readonly value: Complex;
+  /** Bound on ‖A q − a q‖ and, for a candidate that is not Hermitian, on ‖A†q − a*q‖. */
+  readonly radius: number;
+  /** Whether the state carries this label in the tree. */
+  readonly onPath: boolean;
+}
+
+/** The numbers of one candidate in every state of a level. */
+export function labelNumbers(candidate: PreparedCandidate, place: number, { states, vectors }: LevelStates): LabelNumber[] {
+  const rows = images(vectors, candidate.operator);
+  const values = states.map((state, k): { value: Complex; onPath: boolean } => {
+    const own = state.labels.find((label) => label.candidate === place);
+    if (own !== undefined) return { value: own.value, onPath: true };
+    const mean = rowProduct(vectors, k, rows, k);
+    return { value: candidate.kind === "hermitian" ? { re: mean.re, im: 0 } : mean, onPath: false };
+  });
+  const error = imageError(candidate.operator);
+  const value = (row: number): Complex => values[row]?.value ?? { re: 0, im: 0 };
+  const direct = residualBounds(rows, vectors, value, error);
+  const adjoint = candidate.kind === "hermitian" ? undefined : adjointResiduals(candidate, vectors, value, error);
+  return values.map((entry, k) => ({
+    ...entry,
+    radius: Math.max(direct[k] as number, adjoint === undefined ? 0 : (adjoint[k] as number)),
+  }));
+}
+
+function adjointResiduals(
+  candidate: PreparedCandidate,
+  vectors: Csr,
+  value: (row: number) => Complex,
+  error: number,
+): Float64Array {
+  const conjugate = (row: number): Complex => ({ re: value(row).re, im: -value(row).im });
+  return residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, error);
+}
+
+/**
+ * Names the numbers of one candidate in all states studied.
+ *
+ * A state counts as an eigenvector where the residual is as small as the solver leaves it; everything else is an expectation
+ * value with its standard deviation.
+ */
+export function nameLabels(
+  problem: PreparedProblem,
+  audit: Audit,
+  place: number,
+  numbers: readonly LabelNumber[],
+  nodes: readonly TreeNode[],
+): StateLabel[] {
+  const candidate = problem.candidates[place] as PreparedCandidate;
+  const finding = audit.candidates[place];
+  const role = finding?.conserved === true ? "conserved" : finding?.descriptive === true ? "descriptive" : "broken";
+  const sharp = (entry: LabelNumber): boolean => entry.radius <= 16 * LABEL_WIDTH * candidate.operator.norm;
+  const seen = [
+    ...nodes.filter((node) => node.kind === "label" && node.operator === candidate.name).flatMap((node) => node.values),
+    ...numbers.filter((entry) => !entry.onPath && sharp(entry)).map((entry) => entry.value),
+  ];
+  const widest = numbers.reduce((most, entry) => (sharp(entry) ? Math.max(most, entry.radius) : most), 0);
+  const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm);
+  return numbers.map((entry) =>
+    entry.onPath || sharp(entry)
+      ? sharpLabel(family, entry.value, entry.radius, role)
+      : vagueLabel(entry.value, entry.radius, role),
+  );
+}

@@ -1,0 +1,269 @@
+import { type Audit, auditPrepared } from "../audit/audit.js";
+import type { PreparedProblem } from "../audit/problem.js";
+import { roundUp } from "../numerics/rounding.js";
+import type { StateLabel } from "../refine/label.js";
+import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
+import { type Depth, type ResolvedLevel, resolveLevel } from "../refine/resolve.js";
+import { buildSectors, energyTolerance, type Sectors } from "../refine/sectors.js";
+import { TreeBuilder, type TreeNode } from "../refine/tree.js";
+import { type Backbone, chooseBackbone } from "./backbone.js";
+import { type LevelCouplings, levelCouplings, type NodeEvidence } from "./couplings.js";
+import { describeState } from "./describe.js";
+import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
+import { judgeLevel } from "./judge.js";
+import { type LevelStates, levelStates } from "./level-states.js";
+import type { BasisState, Coupling, LevelResult, Shift, StateVector } from "./outcome.js";
+import { imageError, images, rayleighQuotients, residualBounds, rootSumSquares } from "./residuals.js";
+import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
+import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
+import { type WholeEvidence, wholeEvidence } from "./whole.js";
+
+/** A step of the work, for a progress display. */
+export interface Progress {
+  readonly stage: "audit" | "labels" | "levels";
+  readonly done: number;
+  readonly of: number;
+}
+
+/** Settings of a study, all in place. */
+export interface StudySettings extends GuardOptions {
+  readonly levels: LevelChoice;
+  readonly depth: Depth;
+  readonly resolution: number;
+  readonly levelWidth: number | undefined;
+  readonly onProgress: ((progress: Progress) => void) | undefined;
+}
+
+/** Everything found, before it is wrapped in a verdict. */
+export interface StudyFindings {
+  readonly audit: Audit;
+  readonly backbone: Backbone;
+  readonly nodes: readonly TreeNode[];
+  readonly sectors: Sectors;
+  readonly levels: Levels;
+  readonly whole: WholeEvidence;
+  readonly resolved: readonly ResolvedLevel[];
+  readonly levelStates: readonly LevelStates[];
+  readonly results: readonly LevelResult[];
+  readonly states: readonly BasisState[];
+}
+
+/** Audits, refines and proves: the main job on a problem that has been read. */
+export function runStudy(problem: PreparedProblem, settings: StudySettings): StudyFindings {
+  const report = (stage: Progress["stage"], done: number, of: number): void => {
+    settings.onProgress?.({ stage, done, of });
+  };
+  report("audit", 0, 1);
+  const audit = auditPrepared(problem, settings.resolution);
+  report("labels", 0, 1);
+  const backbone = chooseBackbone(problem, audit);
+  const tree = new TreeBuilder();
+  const sectors = buildSectors(problem, backbone.members, backbone.others, tree);
+  const width = settings.levelWidth ?? energyTolerance(problem, problem.n);
+  const levels = formLevels(sectors.sectors, width, settings.levels);
+  const whole = wholeEvidence(problem, audit, sectors, tree.nodes);
+  const guard = guardSetting(problem, energyRange(levels), settings);
+  const resolved: ResolvedLevel[] = [];
+  const drafts: LevelDraft[] = [];
+  levels.studied.forEach((level, index) => {
+    report("levels", index, levels.studied.length);
+    const refined = resolveLevel(problem, sectors.sectors, levels, level, backbone.others, settings.depth, tree);
+    resolved.push(refined);
+    drafts.push(proveLevel({ problem, settings, audit, sectors, levels, whole, guard, nodes: tree.nodes }, refined, index));
+  });
+  report("levels", levels.studied.length, levels.studied.length);
+  const { results, states } = nameAll(problem, audit, tree.nodes, drafts);
+  return {
+    audit,
+    backbone,
+    nodes: tree.nodes,
+    sectors,
+    levels,
+    whole,
+    resolved,
+    levelStates: drafts.map((draft) => draft.levelStates),
+    results,
+    states,
+  };
+}
+
+/** Distance between the lowest and the highest level. */
+function energyRange({ energies }: Levels): number {
+  return (energies[energies.length - 1] ?? 0) - (energies[0] ?? 0);
+}
+
+interface Setting {
+  readonly problem: PreparedProblem;
+  readonly settings: StudySettings;
+  readonly audit: Audit;
+  readonly sectors: Sectors;
+  readonly levels: Levels;
+  readonly whole: WholeEvidence;
+  readonly guard: GuardSetting;
+  readonly nodes: readonly TreeNode[];
+}
+
+/** A level with its evidence; its states still lack the names of their labels. */
+interface LevelDraft {
+  readonly level: Level;
+  readonly levelStates: LevelStates;
+  readonly couplings: LevelCouplings;
+  readonly numbers: readonly (readonly LabelNumber[])[];
+  readonly states: readonly Omit<BasisState, "labels" | "index">[];
+  readonly result: Omit<LevelResult, "couplings" | "firstState">;
+}
+
+function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): LevelDraft {
+  const { problem, settings, audit, sectors, levels, whole, guard, nodes } = given;
+  const { level } = resolved;
+  const found = levelStates(problem, resolved, sectors.sectors, nodes);
+  const { vectors } = found;
+  const energyImages = images(vectors, problem.h0);
+  const energies = rayleighQuotients(energyImages, vectors);
+  const error = imageError(problem.h0);
+  const residuals = residualBounds(energyImages, vectors, (k) => ({ re: energies[k] as number, im: 0 }), error);
+  const residual = residuals.reduce((most, x) => Math.max(most, x), 0);
+  const numbers = problem.candidates.map((candidate, place) => labelNumbers(candidate, place, found));
+  const thresholds = problem.perturbations.map(({ operator }) => settings.resolution * operator.norm);
+  const couplings = levelCouplings(
+    problem,
+    audit.candidates,
+    found,
+    nodes,
+    numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
+    thresholds,
+  );
+  const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
+  const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);
+  const ratios = levelGuard(problem, resolved, nodes, levels.energies, whole.energyEnclosure, guard);
+  const { verdict, questions } = judgeLevel({
+    problem,
+    index,
+    resolved,
+    sectors: sectors.sectors,
+    depth: settings.depth,
+    couplings,
+    guard: ratios,
+    thresholds,
+    residual,
+    enclosure: whole.energyEnclosure,
+  });
+  const evidence = new Map<number, NodeEvidence>(couplings.nodes.map((node) => [node.node, node]));
+  const deviation = energies.reduce((most, energy) => Math.max(most, Math.abs(energy - level.energy)), 0);
+  const spread = deviation + residual;
+  const states = found.states.map((state, k) => {
+    const safety = safeOrders(state, evidence);
+    return {
+      level: index,
+      energy: energies[k] as number,
+      energyPlusMinus: roundUp((residuals[k] as number) * (1 + 2 * couplings.orthonormality)),
+      shifts: problem.perturbations.map(({ name, operator }, p): Shift => {
+        const v = operator.norm + operator.error;
+        return {
+          perturbation: name,
+          value: couplings.diagonals[p]?.[k] ?? 0,
+          plusMinus: roundUp(
+            (couplings.offDiagonal[p] ?? 0) +
+              2 * v * couplings.orthonormality +
+              2 * v * tilt +
+              spread +
+              (couplings.elementError[p] ?? 0),
+            16,
+          ),
+        };
+      }),
+      ...safety,
+      vector: stateVector(found, k),
+    };
+  });
+  return {
+    level,
+    levelStates: found,
+    couplings,
+    numbers,
+    states,
+    result: {
+      index,
+      place: level.place,
+      energy: level.energy,
+      spread: level.spread,
+      degeneracy: level.degeneracy,
+      gapBelow: Number.isFinite(level.gapBelow) ? level.gapBelow : null,
+      gapAbove: Number.isFinite(level.gapAbove) ? level.gapAbove : null,
+      verdict,
+      safe: states.reduce<SafeOrders>((least, state) => weaker(least, state.safe), { energies: "all", states: "all" }),
+      questions,
+      guard: ratios,
+      tilt,
+      evidence: couplings,
+    },
+  };
+}
+
+/**
+ * sin Θ ≤ ‖H0 Q − Q Λ‖ / gap (Davis and Kahan, SIAM J. Numer. Anal. 7, 1 (1970)), for rows orthonormal to `defect`; zero
+ * where there is no other level.
+ */
+function isolationTilt(residuals: Float64Array, isolation: number, defect: number): number {
+  if (isolation === Number.POSITIVE_INFINITY) return 0;
+  if (isolation <= 0 || defect >= 0.5) return 1;
+  return Math.min(1, roundUp((rootSumSquares(residuals) * (1 + defect)) / isolation));
+}
+
+function stateVector({ vectors }: LevelStates, row: number): StateVector {
+  const from = vectors.ptr[row] as number;
+  const to = vectors.ptr[row + 1] as number;
+  const im = vectors.im?.slice(from, to);
+  return {
+    kets: vectors.col.slice(from, to),
+    re: vectors.re.slice(from, to),
+    im: im?.some((y) => y !== 0) ? im : undefined,
+  };
+}
+
+function nameAll(
+  problem: PreparedProblem,
+  audit: Audit,
+  nodes: readonly TreeNode[],
+  drafts: readonly LevelDraft[],
+): { results: LevelResult[]; states: BasisState[] } {
+  const named = problem.candidates.map((_, place) =>
+    nameLabels(
+      problem,
+      audit,
+      place,
+      drafts.flatMap((draft) => draft.numbers[place] ?? []),
+      nodes,
+    ),
+  );
+  const states: BasisState[] = [];
+  const results: LevelResult[] = [];
+  for (const draft of drafts) {
+    const firstState = states.length;
+    for (const state of draft.states) {
+      const index = states.length;
+      const labels: Record<string, StateLabel> = {};
+      problem.candidates.forEach((candidate, place) => {
+        labels[candidate.name] = named[place]?.[index] as StateLabel;
+      });
+      states.push({ index, labels, ...state });
+    }
+    const name = (k: number): string => {
+      const state = states[firstState + k] as BasisState;
+      return describeState(state.labels, state.vector, problem.ket);
+    };
+    const couplings = draft.couplings.worst.map(
+      (pair): Coupling => ({
+        level: draft.result.index,
+        perturbation: pair.perturbation,
+        states: [firstState + pair.first, firstState + pair.second],
+        names: [name(pair.first), name(pair.second)],
+        size: pair.size,
+        atLeast: pair.atLeast,
+        atMost: pair.atMost,
+      }),
+    );
+    results.push({ ...draft.result, firstState, couplings });
+  }
+  return { results, states };
+}

@@ -1,0 +1,11 @@
+export { type Audit, type AuditOptions, auditCommutators, type CandidateFinding } from "./audit/audit.js";
+export type { CommutatorFinding, CommutatorVerdict, OffendingElement } from "./audit/commutators.js";
+export type { LabelDeclaration } from "./audit/label-family.js";
+export type { Candidate, Problem } from "./audit/problem.js";
+export type { GoodBasis } from "./certify/good-basis.js";
+export { type FindOptions, findGoodBasis } from "./certify/find.js";
+export type * from "./certify/outcome.js";
+export { type ErrorCode, GoodBasisError } from "./errors.js";
+export type { MatrixInput } from "./operator/input.js";
+export { Operator } from "./operator/operator.js";
+export { VERSION } from "./version.js";

@@ -1,0 +1,114 @@
+import { GoodBasisError } from "../errors.js";
+import type { Scalar } from "../numerics/complex.js";
+import { Operator } from "../operator/operator.js";
+
+/**
+ * The operator that sends ket j to ket `map[j]`, times `phases[j]` where phases are given.
+ *
+ * @param map - a permutation of 0 … n − 1
+ * @param phases - one factor a ket
+ * @throws GoodBasisError `shape`, `not-finite`
+ *
+ * @example
+ * ```ts
+ * import { ketPermutation } from "goodbasis";
+ *
+ * const parity = ketPermutation([0, 1, 2], [1, -1, 1]);
+ * console.log(parity.isDiagonal, parity.kind); // true hermitian
+ * ```
+ */
+export function ketPermutation(map: ArrayLike<number>, phases?: readonly Scalar[]): Operator {
+  return Operator.permutation(map, phases);
+}
+
+/**
+ * The operator on a product of equal sites that moves the content of site s to site `map[s]`; no signs (bosonic or spin kets).
+ * Site 0 is the slowest index. Products compose as the maps do: first right, then left.
+ *
+ * @param siteDimension - kets of one site
+ * @param map - a permutation of the sites 0 … N − 1
+ * @throws GoodBasisError `shape` - `map` is not a permutation; `option` - no positive whole dimension, or a space too large
+ *
+ * @example
+ * ```ts
+ * import { sitePermutation } from "goodbasis";
+ *
+ * const exchange = sitePermutation(2, [1, 0]); // swaps |01⟩ and |10⟩
+ * console.log(exchange.entry(1, 2).re, exchange.entry(0, 0).re); // 1 1
+ * ```
+ */
+export function sitePermutation(siteDimension: number, map: readonly number[]): Operator {
+  const n = siteDimension ** map.length;
+  if (!Number.isInteger(siteDimension) || siteDimension < 1 || n >= 2 ** 31) {
+    const message = `sitePermutation: expected a whole site dimension from 1 on and fewer than 2^31 kets, got ${siteDimension} on ${map.length} sites`;
+    throw new GoodBasisError("option", message, { siteDimension, sites: map.length });
+  }
+  Operator.permutation(map); // refuses what is not a permutation
+  // Weight of the digit of site s before and after.
+  const sites = map.length;
+  const weight = map.map((image) => siteDimension ** (sites - 1 - image));
+  const image = new Int32Array(n);
+  // The images of all kets whose leading digits are fixed follow from those of fewer digits.
+  let filled = 1;
+  for (let s = 0; s < sites; s++) {
+    const w = weight[s] as number;
+    for (let k = filled - 1; k >= 0; k--) {
+      const base = image[k] as number;
+      for (let digit = siteDimension - 1; digit >= 0; digit--) image[k * siteDimension + digit] = base + digit * w;
+    }
+    filled *= siteDimension;
+  }
+  return Operator.permutation(image);
+}
+
+/**
+ * The translation of a ring by one site: the content of site s moves to site s + 1, that of the last one to site 0. Its
+ * eigenvalues are e^{2πik/N}.
+ *
+ * @param sites - number of sites N
+ * @param siteDimension - kets of one site
+ * @throws GoodBasisError `option`, `shape`
+ *
+ * @example
+ * ```ts
+ * import { translation } from "goodbasis";
+ *
+ * console.log(translation(3, 2).power(3).isDiagonal); // true
+ * ```
+ */
+export function translation(sites: number, siteDimension: number): Operator {
+  return sitePermutation(
+    siteDimension,
+    siteMap("translation", sites, (s) => (s + 1) % sites),
+  );
+}
+
+/**
+ * The reflection of a ring or chain: the content of site s moves to site `centre` − s modulo N. By default site 0 and site N − 1
+ * change places.
+ *
+ * @param sites - number of sites N
+ * @param siteDimension - kets of one site
+ * @param centre - twice the position of the mirror, N − 1 when not given
+ * @throws GoodBasisError `option`, `shape`
+ *
+ * @example
+ * ```ts
+ * import { reflection } from "goodbasis";
+ *
+ * console.log(reflection(4, 2).isHermitian); // true
+ * ```
+ */
+export function reflection(sites: number, siteDimension: number, centre: number = sites - 1): Operator {
+  return sitePermutation(
+    siteDimension,
+    siteMap("reflection", sites, (s) => (((centre - s) % sites) + sites) % sites),
+  );
+}
+
+function siteMap(verb: string, sites: number, image: (site: number) => number): number[] {
+  if (!Number.isInteger(sites) || sites < 1 || sites > 64) {
+    throw new GoodBasisError("option", `${verb}: the number of sites must be 1, 2, …, 64, got ${sites}`, { sites });
+  }
+  return Array.from({ length: sites }, (_, s) => image(s));
+}

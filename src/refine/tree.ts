@@ -1,0 +1,49 @@
+import type { Complex } from "./eigenspaces.js";
+
+/**
+ * What a node of the refinement tree refines by.
+ *
+ * | kind | operator | what its evidence is |
+ * |---|---|---|
+ * | `label` | a conserved candidate | the selection rule: its commutator with V |
+ * | `energy` | H0 | none for couplings: it separates levels |
+ * | `perturbation` | V inside a level and sector | the residual of diagonalising PVP |
+ * | `second order` | the second-order effective operator | none for couplings: V is scalar there |
+ */
+export type NodeKind = "label" | "energy" | "perturbation" | "second order";
+
+/** A node of the refinement tree: one block, taken apart by one operator. */
+export interface TreeNode {
+  readonly id: number;
+  /** The node and child that this block came from; undefined for the whole space. */
+  readonly from: PathStep | undefined;
+  readonly kind: NodeKind;
+  /** Name of the operator. */
+  readonly operator: string;
+  /** Dimension of the block. */
+  readonly size: number;
+  /** Eigenvalue of each child, in the order of the children. */
+  readonly values: readonly Complex[];
+  /** Largest distance of a computed eigenvalue in a child from the child's value. */
+  readonly spreads: readonly number[];
+  /** Dimension of each child. */
+  readonly sizes: readonly number[];
+}
+
+/** A step from a node to one of its children. */
+export interface PathStep {
+  readonly node: number;
+  readonly child: number;
+}
+
+/** Collects nodes in the order in which they are made. */
+export class TreeBuilder {
+  readonly nodes: TreeNode[] = [];
+
+  /** Adds a node and returns its number. */
+  add(node: Omit<TreeNode, "id">): number {
+    const id = this.nodes.length;
+    this.nodes.push({ id, ...node });
+    return id;
+  }
+}

@@ -1,0 +1,330 @@
+import fc from "fast-check";
+import { EigenvalueDecomposition, Matrix } from "ml-matrix";
+import { describe, expect, it } from "vitest";
+import { GoodBasisError } from "../../src/errors.js";
+import {
+  EIGEN_TUNING,
+  type EigenTuning,
+  type HermitianEigen,
+  hermitianEigen,
+  hermitianEigenTuned,
+} from "../../src/numerics/eigen.js";
+import {
+  conjugated,
+  generator,
+  quality,
+  randomSample,
+  type Sample,
+  sample,
+  U,
+  withSpectrum,
+} from "./eigen/matrices.js";
+
+const TUNINGS: readonly EigenTuning[] = [
+  EIGEN_TUNING,
+  { leaf: 1, blockedFrom: 3, blockWidth: 1 },
+  { leaf: 3, blockedFrom: 3, blockWidth: 5 },
+  { leaf: 7, blockedFrom: 1000, blockWidth: 1 },
+  { leaf: 1000, blockedFrom: 3, blockWidth: 16 },
+];
+
+/** Solves, requires order and 20 n u in both norms (Frobenius, which bounds the spectral one), and hands the result on. */
+function solved(of: Sample, tuning: EigenTuning = EIGEN_TUNING): HermitianEigen {
+  const found = hermitianEigenTuned(of.n, of.re, of.im, tuning);
+  const { residual, orthogonality } = quality(of, found);
+  const where = `n = ${of.n}, ${of.im ? "complex" : "real"}, ${JSON.stringify(tuning)}`;
+  expect(residual, `residual, ${where}`).toBeLessThanOrEqual(20);
+  expect(orthogonality, `orthogonality, ${where}`).toBeLessThanOrEqual(20);
+  for (let k = 1; k < of.n; k++) expect(found.values[k]).toBeGreaterThanOrEqual(found.values[k - 1] as number);
+  return found;
+}
+
+/** Requires known eigenvalues (any order) within 20 n u of the largest. */
+function expectValues(found: HermitianEigen, known: readonly number[]): void {
+  const sorted = [...known].sort((a, b) => a - b);
+  const norm = Math.max(...known.map(Math.abs));
+  sorted.forEach((value, k) => {
+    expect(Math.abs((found.values[k] as number) - value)).toBeLessThanOrEqual(20 * known.length * U * norm);
+  });
+}
+
+function codeOf(run: () => unknown): string {
+  try {
+    run();
+  } catch (error) {
+    if (error instanceof GoodBasisError) return error.code;
+    throw error;
+  }
+  return "nothing thrown";
+}
+
+const list = (n: number, value: (k: number) => number): number[] => Array.from({ length: n }, (_, k) => value(k));
+
+describe("hermitianEigen", () => {
+  it.each([false, true])("solves random matrices of every order up to 70, and 128 and 200 (complex: %s)", (complex) => {
+    for (const n of [...list(70, (k) => k + 1), 128, 200]) solved(randomSample(n, complex, n));
+  });
+
+  it.each(TUNINGS)("solves with the thresholds $leaf, $blockedFrom, $blockWidth", (tuning) => {
+    for (const complex of [false, true]) {
+      for (const n of [2, 3, 4, 5, 6, 7, 8, 9, 13, 16, 17, 31, 33, 50]) {
+        solved(randomSample(n, complex, 100 + n), tuning);
+        solved(
+          sample(n, complex, (i, j) => [i === j ? i % 3 : 0, 0]),
+          tuning,
+        );
+        solved(
+          sample(n, complex, () => [1, 0]),
+          tuning,
+        );
+        solved(
+          withSpectrum(
+            list(n, (k) => k % 2),
+            complex,
+            n,
+          ),
+          tuning,
+        );
+      }
+    }
+  });
+
+  describe.each([false, true])("hard spectra (complex: %s)", (complex) => {
+    const spectra: [string, (n: number) => number[]][] = [
+      ...list(10, (k) => k + 1).map((m): [string, (n: number) => number[]] => [
+        `${m} distinct eigenvalues`,
+        (n) => list(n, (k) => (k % m) - m / 3),
+      ]),
+      ...[1e-14, 1e-10, 1e-6].map((width): [string, (n: number) => number[]] => [
+        `clusters of width ${width}`,
+        (n) => list(n, (k) => (k % 4) + (width * k) / n),
+      ]),
+      ["a projector", (n) => list(n, (k) => (k < n / 3 ? 1 : 0))],
+      ["plus and minus one", (n) => list(n, (k) => (k % 2 === 0 ? 1 : -1))],
+      ["a geometric row down to 1e-300", (n) => list(n, (k) => 10 ** ((-300 * k) / n))],
+      ["one far from the rest", (n) => list(n, (k) => (k === 0 ? 1e12 : 1 + k * 1e-3))],
+    ];
+    it.each(spectra)("%s", (_, values) => {
+      for (const n of [3, 20, 61, 110]) {
+        const of = withSpectrum(values(n), complex, 7 * n);
+        const known = values(n);
+        expectValues(solved(of), known);
+        solved(of, { leaf: 2, blockedFrom: 3, blockWidth: 4 });
+      }
+    });
+
+    it("graded from 1e-300 to 1e300, both ways", () => {
+      for (const n of [2, 3, 8, 40, 100]) {
+        const base = randomSample(n, complex, n);
+        for (const sign of [-1, 1]) {
+          const scale = (i: number): number => 10 ** (sign * (-150 + (300 * i) / (n - 1)));
+          const at = (m: Float64Array | undefined, i: number, j: number): number =>
+            (m?.[i * n + j] ?? 0) * scale(i) * scale(j);
+          solved(sample(n, complex, (i, j) => [at(base.re, i, j), at(base.im, i, j)]));
+        }
+      }
+    });
+
+    it("glued Wilkinson matrices (Wilkinson, The Algebraic Eigenvalue Problem, 1965)", () => {
+      for (const glue of [0, 1e-14, 1e-8]) {
+        const wilkinson = sample(105, complex, (i, j) => {
+          if (i === j) return [Math.abs((i % 21) - 10), 0];
+          return i - j > 1 ? [0, 0] : [i % 21 === 0 ? glue : 1, 0];
+        });
+        for (const tuning of TUNINGS) solved(wilkinson, tuning);
+        solved(conjugated(wilkinson, 20, 5));
+      }
+    });
+
+    it("zero, identity, all ones, diagonal, block diagonal", () => {
+      for (const n of [1, 2, 3, 12, 40, 100]) {
+        const zero = solved(sample(n, complex, () => [0, 0]));
+        expect([...zero.values]).toEqual(list(n, () => 0));
+        const identity = solved(sample(n, complex, (i, j) => [i === j ? 1 : 0, 0]));
+        expect([...identity.values]).toEqual(list(n, () => 1));
+        expectValues(
+          solved(sample(n, complex, () => [1, 0])),
+          list(n, (k) => (k === 0 ? n : 0)),
+        );
+        const diagonal = solved(sample(n, complex, (i, j) => [i === j ? (i * 7) % n : 0, 0]));
+        expect([...diagonal.values]).toEqual(list(n, (k) => (k * 7) % n).sort((a, b) => a - b));
+        const random = generator(n);
+        solved(sample(n, complex, (i, j) => (i >> 2 === j >> 2 ? [random(), random()] : [0, 0])));
+      }
+    });
+
+    it("random matrices with entries that underflow beside the others", () => {
+      for (const tiny of [1e-140, 1e-160, 1e-200, 1e-310]) {
+        const random = generator(11);
+        const of = sample(12, complex, (i, j) => {
+          const scale = i >= 6 !== j >= 6 || i % 3 === 1 ? tiny : 1;
+          return [scale * random(), scale * random()];
+        });
+        for (const tuning of TUNINGS) solved(of, tuning);
+      }
+    });
+  });
+
+  it("keeps phases of modulus one where the entries that give them have lost their digits", () => {
+    solved(sample(2, true, (i, j) => (i === j ? [1 + i / 2, 0] : [1.5e-323, 1.5e-323])));
+    for (const size of [1.6e-162, 1e-161, 1e-310]) {
+      solved(sample(3, true, (i, j) => (i === j ? [i, 0] : j === 0 ? [1, 0.5] : [size, 0.6 * size])));
+      solved(sample(3, true, (i, j) => (i === j ? [i, 0] : [size, 0.6 * size])));
+    }
+  });
+
+  it("finds the eigenvalues of the angular momentum matrices Jx and Jy", () => {
+    for (const n of [2, 3, 4, 11, 24, 60, 101]) {
+      const j = (n - 1) / 2;
+      const known = list(n, (k) => k - j);
+      const step = (i: number): number => Math.sqrt(i * (n - i)) / 2;
+      expectValues(solved(sample(n, false, (i, k) => [i - k === 1 ? step(i) : 0, 0])), known);
+      expectValues(solved(sample(n, true, (i, k) => [0, i - k === 1 ? step(i) : 0])), known);
+    }
+  });
+
+  it("agrees with ml-matrix, on complex matrices through the real embedding of twice the order", () => {
+    for (const n of [1, 2, 3, 5, 9, 20, 45]) {
+      const real = randomSample(n, false, 3 * n);
+      expectValues(
+        hermitianEigen(n, real.re, undefined),
+        reference(n, (i, k) => real.re[i * n + k] as number),
+      );
+      const { re, im } = randomSample(n, true, 3 * n + 1);
+      const embedded = reference(2 * n, (i, k) => {
+        const at = (i % n) * n + (k % n);
+        if (i < n === k < n) return re[at] as number;
+        return (i < n ? -1 : 1) * (im?.[at] ?? 0);
+      });
+      expectValues(
+        hermitianEigen(n, re, im),
+        embedded.filter((_, k) => k % 2 === 0),
+      );
+      expectValues(
+        hermitianEigen(n, re, im),
+        embedded.filter((_, k) => k % 2 === 1),
+      );
+    }
+  });
+
+  it("keeps real and complex drivers together: zero imaginary parts and phases change no eigenvalue", () => {
+    for (const n of [1, 2, 3, 7, 40, 100]) {
+      const { re } = randomSample(n, false, n);
+      const real = hermitianEigen(n, re, undefined);
+      expect(real.im).toBeUndefined();
+      expectValues(solved({ n, re, im: new Float64Array(n * n) }), [...real.values]);
+      const turned = sample(n, true, (i, j) => {
+        const x = re[i * n + j] as number;
+        return [x * Math.cos(i - j), x * Math.sin(i - j)];
+      });
+      expectValues(solved(turned), [...real.values]);
+    }
+  });
+
+  it("scales by powers of two exactly", () => {
+    for (const complex of [false, true]) {
+      for (const n of [1, 2, 3, 9, 40]) {
+        const { re, im } = randomSample(n, complex, n);
+        const plain = hermitianEigen(n, re, im);
+        for (const exponent of [-900, -300, 300, 900]) {
+          const factor = 2 ** exponent;
+          const scaled = hermitianEigen(
+            n,
+            re.map((x) => x * factor),
+            im?.map((x) => x * factor),
+          );
+          expect(scaled.values).toEqual(plain.values.map((x) => x * factor));
+          expect(scaled.re).toEqual(plain.re);
+          expect(scaled.im).toEqual(plain.im);
+        }
+      }
+    }
+  });
+
+  it("takes the smallest and the largest doubles", () => {
+    const smallest = solved(sample(3, false, () => [5e-324, 0]));
+    expect([...smallest.values]).toEqual([0, 0, 1.5e-323]);
+    const largest = hermitianEigen(2, Float64Array.of(0, 0, Number.MAX_VALUE, 0), undefined);
+    expect([...largest.values]).toEqual([-Number.MAX_VALUE, Number.MAX_VALUE]);
+    const ones = new Float64Array(9).fill(Number.MAX_VALUE);
+    expect(codeOf(() => hermitianEigen(3, ones, undefined))).toBe("not-finite");
+  });
+
+  it("reads the lower triangle alone, changes nothing, and repeats itself bit for bit", () => {
+    for (const complex of [false, true]) {
+      for (const n of [1, 2, 3, 10, 33, 100]) {
+        const { re, im } = randomSample(n, complex, n);
+        const first = hermitianEigen(n, re, im);
+        const spoil = (m: Float64Array): Float64Array => m.map((x, k) => (k % n > Math.floor(k / n) ? Number.NaN : x));
+        const lower = spoil(re);
+        const lowerIm = im && spoil(im);
+        const before = [lower.slice(), lowerIm?.slice()];
+        expect(hermitianEigen(n, lower, lowerIm)).toEqual(first);
+        expect([lower, lowerIm]).toEqual(before);
+        hermitianEigen(5, randomSample(5, !complex, 1).re, randomSample(5, !complex, 1).im);
+        expect(hermitianEigen(n, re, im)).toEqual(first);
+      }
+    }
+  });
+
+  it("refuses what is not finite and arrays of the wrong length", () => {
+    for (const bad of [Number.NaN, Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY]) {
+      for (const at of [0, 3, 4, 8]) {
+        const { re, im } = randomSample(3, true, at);
+        const spoiled = re.map((x, k) => (k === at ? bad : x));
+        expect(codeOf(() => hermitianEigen(3, spoiled, undefined))).toBe("not-finite");
+        expect(codeOf(() => hermitianEigen(3, spoiled, im))).toBe("not-finite");
+        expect(codeOf(() => hermitianEigen(3, re, spoiled))).toBe("not-finite");
+      }
+    }
+    expect(() => hermitianEigen(2, Float64Array.of(1, 0, Number.NaN, 1), undefined)).toThrow("entry (1, 0) is NaN");
+    expect(() => hermitianEigen(2, Float64Array.of(1, 0, 0, Number.NaN), undefined)).toThrow("entry (1, 1) is NaN");
+    expect(codeOf(() => hermitianEigen(2, new Float64Array(3), undefined))).toBe("shape");
+    expect(codeOf(() => hermitianEigen(2, new Float64Array(4), new Float64Array(3)))).toBe("shape");
+    expect(codeOf(() => hermitianEigen(1.5, new Float64Array(2), undefined))).toBe("shape");
+  });
+
+  it("solves the empty matrix", () => {
+    const empty = hermitianEigen(0, new Float64Array(0), undefined);
+    expect([empty.n, empty.values.length, empty.re.length, empty.im]).toEqual([0, 0, 0, undefined]);
+  });
+
+  it("solves small matrices of small integers with any thresholds", () => {
+    const cases = fc.record({
+      n: fc.integer({ min: 1, max: 14 }),
+      entries: fc.array(fc.tuple(fc.integer({ min: -1, max: 1 }), fc.integer({ min: -1, max: 1 })), {
+        minLength: 105,
+        maxLength: 105,
+      }),
+      complex: fc.boolean(),
+      leaf: fc.integer({ min: 1, max: 6 }),
+      blockedFrom: fc.integer({ min: 1, max: 14 }),
+      blockWidth: fc.integer({ min: 1, max: 6 }),
+    });
+    fc.assert(
+      fc.property(cases, ({ n, entries, complex, ...tuning }) => {
+        solved(
+          sample(n, complex, (i, j) => entries[(i * (i + 1)) / 2 + j] ?? [0, 0]),
+          tuning,
+        );
+      }),
+      { seed: 20, numRuns: 300 },
+    );
+  });
+
+  it("is measured by a check that notices a wrong digit", () => {
+    const of = randomSample(20, true, 1);
+    const found = hermitianEigen(20, of.re, of.im);
+    const spoil = (m: Float64Array, at: number): Float64Array => m.map((x, k) => (k === at ? x + 1e-12 : x));
+    expect(quality(of, { ...found, values: spoil(found.values, 7) }).residual).toBeGreaterThan(20);
+    expect(quality(of, { ...found, re: spoil(found.re, 33) }).orthogonality).toBeGreaterThan(20);
+    expect(quality(of, { ...found, im: found.im?.map((x) => -x) }).residual).toBeGreaterThan(1e10);
+  });
+});
+
+/** Ascending eigenvalues by ml-matrix. */
+function reference(n: number, entry: (i: number, k: number) => number): number[] {
+  const rows = list(n, (i) => i).map((i) => list(n, (k) => entry(i, k)));
+  const found = new EigenvalueDecomposition(new Matrix(rows), { assumeSymmetric: true });
+  return found.realEigenvalues.sort((a, b) => a - b);
+}

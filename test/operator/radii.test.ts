@@ -1,0 +1,239 @@
+import fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import { Operator } from "../../src/operator/operator.js";
+import {
+  complex,
+  type ExactMatrix,
+  exactOf,
+  exactProduct,
+  exactSum,
+  fractionOf,
+  minus,
+  plus,
+  radiusOf,
+  times,
+  violations,
+} from "./exact.js";
+
+const SEED = { seed: 20240611, numRuns: 40 };
+
+const part = fc.oneof(
+  { weight: 2, arbitrary: fc.constant(0) },
+  { weight: 3, arbitrary: fc.integer({ min: -8, max: 8 }) },
+  { weight: 3, arbitrary: fc.integer({ min: -(2 ** 52), max: 2 ** 52 }).map((k) => k * 2 ** -50) },
+  { weight: 1, arbitrary: fc.integer({ min: -(2 ** 52), max: 2 ** 52 }).map((k) => k * 2 ** -80) },
+);
+
+function square(n: number, isComplex: boolean): fc.Arbitrary<Operator> {
+  const entries = fc.array(part, { minLength: n * n, maxLength: n * n });
+  return fc
+    .tuple(entries, isComplex ? entries : fc.constant(undefined), fc.constantFrom("exact", undefined))
+    .map(([re, im, uncertainty]) =>
+      Operator.from({ re, im }, { uncertainty: uncertainty === "exact" ? "exact" : undefined }),
+    );
+}
+
+/** A matrix and a true one within its radii, at their very edge. */
+const uncertain: fc.Arbitrary<[Operator, ExactMatrix]> = fc.tuple(square(3, true), fc.integer()).map(([a, seed]) => {
+  let state = Math.abs(seed) + 1;
+  const truth = exactOf(a).map((row, i) =>
+    row.map((x, j) => {
+      state = (state * 48271) % 2147483647;
+      const shift = fractionOf(radiusOf(a, i, j) * (1 - 1e-14)).mul(state % 2 === 0 ? 1 : -1);
+      return (state >> 3) % 2 === 0 ? complex(x.re.add(shift), x.im) : complex(x.re, x.im.add(shift));
+    }),
+  );
+  return [a, truth];
+});
+
+describe("radii bound the true error", () => {
+  for (const isComplex of [false, true]) {
+    const pair = fc.tuple(square(4, isComplex), square(4, isComplex));
+    test(`${isComplex ? "complex" : "real"} sums, products, commutators of the stored numbers`, () => {
+      fc.assert(
+        fc.property(pair, ([a, b]) => {
+          const [x, y] = [exactOf(a), exactOf(b)];
+          expect(violations(a.plus(b), exactSum(x, y))).toEqual([]);
+          expect(violations(a.minus(b), exactSum(x, y, minus))).toEqual([]);
+          expect(violations(a.times(b), exactProduct(x, y))).toEqual([]);
+          const commutator = exactSum(exactProduct(x, y), exactProduct(y, x), minus);
+          expect(violations(a.commutator(b), commutator)).toEqual([]);
+          expect(violations(a.anticommutator(b), exactSum(exactProduct(x, y), exactProduct(y, x)))).toEqual([]);
+        }),
+        SEED,
+      );
+    });
+  }
+
+  test("everywhere inside the radii of the factors", () => {
+    fc.assert(
+      fc.property(uncertain, uncertain, ([a, x], [b, y]) => {
+        expect(violations(a, x)).toEqual([]);
+        expect(violations(a.plus(b), exactSum(x, y))).toEqual([]);
+        expect(violations(a.times(b), exactProduct(x, y))).toEqual([]);
+        expect(violations(a.times(b).times(a), exactProduct(exactProduct(x, y), x))).toEqual([]);
+        expect(violations(a.commutator(b), exactSum(exactProduct(x, y), exactProduct(y, x), minus))).toEqual([]);
+        const kron = x.flatMap((row) => y.map((other) => row.flatMap((u) => other.map((v) => times(u, v)))));
+        expect(violations(a.kron(b), kron)).toEqual([]);
+        const factor = { re: 0.3, im: -1.7 };
+        const z = complex(fractionOf(factor.re), fractionOf(factor.im));
+        expect(
+          violations(
+            a.scale(factor),
+            x.map((row) => row.map((u) => times(z, u))),
+          ),
+        ).toEqual([]);
+      }),
+      SEED,
+    );
+  });
+
+  test("with a diagonal factor", () => {
+    const diagonal = fc.array(part, { minLength: 4, maxLength: 4 });
+    fc.assert(
+      fc.property(diagonal, diagonal, square(4, true), (re, im, b) => {
+        const d = Operator.from({ diagonal: re, imaginary: im });
+        const [x, y] = [exactOf(d), exactOf(b)];
+        const truth = exactSum(exactProduct(x, y), exactProduct(y, x), minus);
+        expect(violations(d.commutator(b), truth)).toEqual([]);
+        expect(violations(b.commutator(d), exactSum(exactProduct(y, x), exactProduct(x, y), minus))).toEqual([]);
+      }),
+      SEED,
+    );
+  });
+
+  test("in the dense kernel", () => {
+    fc.assert(
+      fc.property(square(24, false), square(24, true), (a, b) => {
+        const c = Operator.from({
+          re: Array.from({ length: 24 }, (_, i) => Array.from({ length: 24 }, (_, j) => a.entry(i, j).re + 0.1)),
+        });
+        expect(violations(c.times(b), exactProduct(exactOf(c), exactOf(b)))).toEqual([]);
+        expect(violations(b.times(b), exactProduct(exactOf(b), exactOf(b)))).toEqual([]);
+        expect(c.storage).toBe("dense");
+      }),
+      { seed: 7, numRuns: 3 },
+    );
+  });
+
+  test("where products underflow", () => {
+    const a = Operator.from(
+      [
+        [3e-200, 1],
+        [0, 7e-170],
+      ],
+      { uncertainty: "exact" },
+    );
+    const b = Operator.from(
+      [
+        [5e-200, 2e-160],
+        [1e-150, 3e-160],
+      ],
+      { uncertainty: "exact" },
+    );
+    expect(violations(a.times(b), exactProduct(exactOf(a), exactOf(b)))).toEqual([]);
+    expect(
+      violations(
+        a.kron(b),
+        exactOf(a).flatMap((r) => exactOf(b).map((s) => r.flatMap((u) => s.map((v) => times(u, v))))),
+      ),
+    ).toEqual([]);
+  });
+
+  test("of duplicates that are summed", () => {
+    const values = [0.1, 0.2, -0.3, 1e-17];
+    const a = Operator.fromTriplets(
+      2,
+      values.map((x) => [0, 1, x] as const),
+    );
+    const truth = values.map((x) => complex(fractionOf(x), fractionOf(0))).reduce(plus);
+    expect(violations(a, [[complex(fractionOf(0), fractionOf(0)), truth]])).toEqual([]);
+    expect(radiusOf(a, 0, 1)).toBeGreaterThan(0);
+  });
+});
+
+describe("what is exact stays exact", () => {
+  const exact = { uncertainty: "exact" } as const;
+  const whole = Operator.from(
+    [
+      [1, -2, 0.5],
+      [0, 3, 4],
+      [7, 0.25, 0],
+    ],
+    exact,
+  );
+  const rough = Operator.from(
+    [
+      [0.1, 0, 1e-17],
+      [0.2, 3, 0],
+      [1 / 3, 0, 7],
+    ],
+    exact,
+  );
+  const shift = Operator.permutation([1, 2, 0], [1, { re: 0, im: -1 }, -1]);
+
+  test("small dyadic numbers through sums and products", () => {
+    for (const c of [whole.plus(whole), whole.times(whole), whole.commutator(shift), whole.scale({ re: 3, im: 2 })]) {
+      expect(c.isExact).toBe(true);
+      expect(c.error).toBe(0);
+    }
+    expect(whole.power(5).isExact).toBe(true);
+  });
+
+  test("adjoints, permutations, powers of two, Kronecker products with the identity", () => {
+    for (const c of [
+      rough.adjoint(),
+      rough.times(shift),
+      shift.times(rough),
+      rough.scale(-0.5),
+      rough.scale({ re: 0, im: 4 }),
+      rough.kron(Operator.identity(3)),
+      Operator.identity(2).kron(rough),
+      rough.minus(rough),
+    ]) {
+      expect(c.isExact).toBe(true);
+    }
+  });
+
+  test("the default radius is not inflated by them", () => {
+    const plain = Operator.from([
+      [0.1, 0, 1],
+      [0.2, 3, 0],
+      [1 / 3, 0, 7],
+    ]);
+    for (const c of [
+      plain.adjoint(),
+      plain.times(shift),
+      shift.times(plain),
+      plain.scale(-0.5),
+      Operator.identity(2).kron(plain),
+      plain.restrict(Operator.identity(3).csr),
+    ]) {
+      expect(c.radius).toBeUndefined();
+    }
+  });
+
+  test("rounding shows", () => {
+    expect(rough.times(rough).error).toBeGreaterThan(0);
+    expect(rough.plus(rough.scale(3)).error).toBeGreaterThan(0);
+    expect(rough.scale(3).error).toBeGreaterThan(0);
+  });
+
+  test("a cancelled entry stays stored with its radius, an exact zero does not", () => {
+    const a = Operator.from([
+      [0.1, 1],
+      [1, 0],
+    ]);
+    const difference = a.minus(
+      Operator.from([
+        [0.1, 1],
+        [1, 0],
+      ]),
+    );
+    expect(difference.csr.col.length).toBe(3);
+    expect(difference.norm).toBe(0);
+    expect(difference.error).toBeGreaterThan(2e-16);
+    expect(difference.isDiagonal).toBe(true);
+    expect(whole.minus(Operator.from(whole)).csr.col.length).toBe(0);
+  });
+});

@@ -1,0 +1,30 @@
+import { fileURLToPath } from "node:url";
+import { defineConfig, type ViteUserConfig } from "vitest/config";
+import { snippetModules } from "./docs/snippet-modules.js";
+
+const root = fileURLToPath(new URL("..", import.meta.url));
+
+const config: ViteUserConfig = defineConfig({
+  root,
+  plugins: [snippetModules(root)],
+  resolve: { alias: [{ find: /^goodbasis$/, replacement: `${root}src/index.ts` }] },
+  test: {
+    include: ["test/**/*.test.ts"],
+    globalSetup: ["test/build.ts"],
+    testTimeout: 60_000,
+    typecheck: {
+      enabled: true,
+      include: ["test/types/**/*.test-d.ts"],
+      tsconfig: "test/types/tsconfig.json",
+      ignoreSourceErrors: true,
+    },
+    coverage: {
+      provider: "v8",
+      include: ["src/**/*.ts"],
+      reporter: ["text-summary", "json-summary", "html"],
+      reportsDirectory: "coverage",
+    },
+  },
+});
+
+export default config;
