@@ -2,7 +2,7 @@ import type { Audit } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
 import { buildSectors } from "../refine/sectors.js";
 import { TreeBuilder } from "../refine/tree.js";
-import type { SetReport } from "./outcome.js";
+import type { SetReport } from "./findings.js";
 
 /** The commuting set that carries the basis, and the conserved candidates outside it. */
 export interface Backbone {

@@ -2,10 +2,10 @@ import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundDown, roundUp } from "../numerics/rounding.js";
-import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
+import { conjugate, maxRowEntries, multiply, selectRows, transpose } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
-import type { LevelStates } from "./level-states.js";
+import type { LevelState, LevelStates } from "./level-states.js";
 import { imageError, images } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
@@ -14,7 +14,7 @@ export interface CouplingBound {
   readonly perturbation: string;
   /** By the selection rule; Infinity where the node's operator says nothing about V. */
   readonly selectionRule: number;
-  /** By direct evaluation of the elements, rounding included. */
+  /** By direct evaluation, rounding included: of the elements, or of the norm of the block that contains them. */
   readonly direct: number;
   /** The smaller of the two. */
   readonly counted: number;
@@ -57,13 +57,13 @@ export interface LevelCouplings {
   readonly diagonals: readonly Float64Array[];
   /** For each perturbation: bound on the error of one element. */
   readonly elementError: readonly number[];
-  /** For each perturbation: bound on the Frobenius norm of the off-diagonal elements. */
+  /** For each perturbation: bound on the 2-norm of the off-diagonal elements together. */
   readonly offDiagonal: readonly number[];
   /** For each perturbation: largest counted bound over all pairs. */
   readonly largest: readonly number[];
   /** For each perturbation: largest direct element inside leaves of several states, rounding included. */
   readonly withinLeaves: readonly number[];
-  /** Bound on ‖Q Q† − 1‖_F of the level. */
+  /** Bound on ‖Q Q† − 1‖₂ of the level. */
   readonly orthonormality: number;
   /** The largest elements that are certainly not zero to the resolution, descending. */
   readonly worst: readonly PairElement[];
@@ -71,65 +71,47 @@ export interface LevelCouplings {
 
 const WORST_KEPT = 10;
 
+/** What is known before the elements of a level are evaluated. */
+export interface CouplingInput {
+  readonly problem: PreparedProblem;
+  readonly findings: readonly CandidateFinding[];
+  readonly level: LevelStates;
+  readonly nodes: readonly TreeNode[];
+  /** For each candidate: bounds on the residuals of each state (used where the state carries the label). */
+  readonly residuals: readonly (Float64Array | undefined)[];
+  /** For each perturbation: elements certainly above this are listed. */
+  readonly thresholds: readonly number[];
+  /** Bound on ‖F F† − 1‖₂ of the whole basis. */
+  readonly wholeDefect: number;
+}
+
 /**
- * Evaluates V between all states of a level, and bounds the same elements by the selection rule.
+ * Bounds V between all states of a level, by direct evaluation and by the selection rule.
  *
- * For a normal A with A q_ν = a_ν q_ν + r_ν, A†q_μ = a_μ* q_μ + s_μ and C = AV − VA,
+ * *Directly.* Between states of one sector, element by element. Between sectors, at the node where they part: V's block between
+ * the children's vectors was evaluated there once, and its norm bounds every element, since later vectors are unit
+ * combinations of those to within their rounding errors.
+ *
+ * *Selection rule.* For a normal A with A q_ν = a_ν q_ν + r_ν, A†q_μ = a_μ* q_μ + s_μ and C = AV − VA,
  *
  *     |V_μν| ≤ ( ‖C‖ ‖q_μ‖ ‖q_ν‖ + ‖s_μ‖ ‖V q_ν‖ + ‖V q_μ‖ ‖r_ν‖ ) / |a_μ − a_ν|.
- *
- * @param residuals - for each candidate: bounds on the residuals of each state (used where the state carries the label)
- * @param thresholds - for each perturbation: elements certainly above this are listed
  */
-export function levelCouplings(
-  problem: PreparedProblem,
-  findings: readonly CandidateFinding[],
-  { states, vectors }: LevelStates,
-  nodes: readonly TreeNode[],
-  residuals: readonly (Float64Array | undefined)[],
-  thresholds: readonly number[],
-): LevelCouplings {
-  const bra = conjugate(vectors);
-  const gram = multiply(bra, transpose(vectors));
-  const orthonormality = gramDefect(gram, vectors);
+export function levelCouplings(input: CouplingInput): LevelCouplings {
+  const { problem, findings, nodes, residuals } = input;
+  const { states, rowError } = input.level;
+  const inside = insideParts(input);
+  const { orthonormality } = inside;
   const length = Math.sqrt(1 + orthonormality);
-  const paths = states.map((state) => state.path);
-  const places = new Map<number, number>();
-  const found: Found[] = [];
-  paths.forEach((path, state) => {
-    for (const { node, child } of path) {
-      let place = places.get(node);
-      if (place === undefined) {
-        place = found.length;
-        places.set(node, place);
-        found.push({ node, children: new Map(), states: [] });
-      }
-      const entry = found[place] as Found;
-      entry.states.push(state);
-      entry.children.set(child, (entry.children.get(child) ?? 0) + 1);
-    }
-  });
-  const separating = found.filter((entry) => entry.children.size > 1);
-  const direct = problem.perturbations.map(() => new Map<number, number>());
-  const diagonals: Float64Array[] = [];
-  const elementError: number[] = [];
-  const offDiagonal: number[] = [];
-  const withinLeaves: number[] = [];
-  const worst: PairElement[] = [];
-  problem.perturbations.forEach((perturbation, p) => {
-    const pass = evaluate(perturbation, bra, vectors, paths, direct[p] as Map<number, number>, thresholds[p] ?? 0, worst);
-    diagonals.push(pass.diagonal);
-    elementError.push(pass.error);
-    offDiagonal.push(pass.offDiagonal);
-    withinLeaves.push(pass.withinLeaves);
-  });
+  const found = nodesOf(states.map((state) => state.path));
+  const separating = [...found.values()].filter((entry) => entry.children.size > 1);
   const evidence = separating.map((entry): NodeEvidence => {
     const node = nodes[entry.node] as TreeNode;
-    const values = [...entry.children.keys()].sort((a, b) => a - b).map((child) => node.values[child] ?? { re: 0, im: 0 });
+    const children = [...entry.children].sort((a, b) => a - b);
+    const values = children.map((child) => node.values[child] ?? { re: 0, im: 0 });
     const gap = smallestGap(values);
     const place = problem.candidates.findIndex((candidate: PreparedCandidate) => candidate.name === node.operator);
     const own = node.kind === "label" ? residuals[place] : undefined;
-    const residual = own === undefined ? 0 : Math.max(...entry.states.map((state) => own[state] as number));
+    const residual = own === undefined ? 0 : entry.states.reduce((most, k) => Math.max(most, own[k] as number), 0);
     const commutators = own === undefined ? [] : (findings[place]?.withPerturbations.map((c) => c.bound) ?? []);
     const couplings = problem.perturbations.map(({ name, operator }, p): CouplingBound => {
       const v = operator.norm + operator.error;
@@ -137,30 +119,116 @@ export function levelCouplings(
         own === undefined || commutators[p] === undefined
           ? Number.POSITIVE_INFINITY
           : roundUp((((commutators[p] as number) * length + 2 * v * residual) * length) / gap, 16);
-      const largest = (direct[p]?.get(entry.node) ?? 0) + (elementError[p] as number);
-      return { perturbation: name, selectionRule, direct: largest, counted: Math.min(selectionRule, largest) };
+      const crossing = node.crossings?.[p];
+      const direct =
+        crossing === undefined
+          ? (inside.largest[p]?.get(entry.node) ?? 0) + (inside.elementError[p] as number)
+          : roundUp((crossing + 2 * v * rowError + operator.error) * (1 + input.wholeDefect) * (1 + rowError) ** 2, 16);
+      return { perturbation: name, selectionRule, direct, counted: Math.min(selectionRule, direct) };
     });
     return { node: entry.node, operator: node.operator, kind: node.kind, values, gap, commutators, residual, couplings };
   });
-  worst.sort((a, b) => b.size - a.size || a.first - b.first || a.second - b.second);
   return {
     nodes: evidence,
-    diagonals,
-    elementError,
-    offDiagonal,
-    withinLeaves,
-    largest: problem.perturbations.map((_, p) =>
-      Math.max(withinLeaves[p] ?? 0, ...evidence.map((node) => node.couplings[p]?.counted ?? 0)),
-    ),
+    diagonals: inside.diagonals,
+    elementError: inside.elementError,
+    withinLeaves: inside.withinLeaves,
     orthonormality,
-    worst: worst.slice(0, WORST_KEPT),
+    worst: inside.worst,
+    offDiagonal: problem.perturbations.map((_, p) => roundUp((inside.offDiagonal[p] ?? 0) + betweenParts(evidence, nodes, p))),
+    largest: problem.perturbations.map((_, p) =>
+      evidence.reduce((most, node) => Math.max(most, node.couplings[p]?.counted ?? 0), inside.withinLeaves[p] ?? 0),
+    ),
   };
+}
+
+/** Norm of V's elements between parts: nodes of one operator act on disjoint blocks, different operators add. */
+function betweenParts(evidence: readonly NodeEvidence[], nodes: readonly TreeNode[], p: number): number {
+  const byOperator = new Map<string, number>();
+  for (const node of evidence) {
+    if (nodes[node.node]?.crossings === undefined) continue;
+    const bound = node.couplings[p]?.direct ?? 0;
+    byOperator.set(node.operator, Math.max(byOperator.get(node.operator) ?? 0, bound));
+  }
+  let sum = 0;
+  for (const bound of byOperator.values()) sum += bound;
+  return sum;
 }
 
 interface Found {
   readonly node: number;
-  readonly children: Map<number, number>;
+  readonly children: Set<number>;
   readonly states: number[];
+}
+
+/** The nodes that a level's states pass, with the children taken. */
+function nodesOf(paths: readonly (readonly PathStep[])[]): Map<number, Found> {
+  const found = new Map<number, Found>();
+  paths.forEach((path, state) => {
+    for (const { node, child } of path) {
+      let entry = found.get(node);
+      if (entry === undefined) found.set(node, (entry = { node, children: new Set(), states: [] }));
+      entry.states.push(state);
+      entry.children.add(child);
+    }
+  });
+  return found;
+}
+
+/** Elements between states of one part, over all parts. */
+interface Inside {
+  readonly diagonals: readonly Float64Array[];
+  readonly elementError: readonly number[];
+  readonly offDiagonal: readonly number[];
+  readonly withinLeaves: readonly number[];
+  /** For each perturbation: largest element between states that part at a node. */
+  readonly largest: readonly ReadonlyMap<number, number>[];
+  readonly orthonormality: number;
+  readonly worst: readonly PairElement[];
+}
+
+function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput): Inside {
+  const { states, vectors, rowError } = level;
+  const parts = new Map<number, number[]>();
+  states.forEach((state, k) => {
+    const list = parts.get(state.part);
+    if (list === undefined) parts.set(state.part, [k]);
+    else list.push(k);
+  });
+  const zeros = (): number[] => problem.perturbations.map(() => 0);
+  const diagonals = problem.perturbations.map(() => new Float64Array(states.length));
+  const largest = problem.perturbations.map(() => new Map<number, number>());
+  const elementError = zeros();
+  const offDiagonal = zeros();
+  const withinLeaves = zeros();
+  const worst: PairElement[] = [];
+  let defect = 0;
+  for (const members of parts.values()) {
+    const own = members.length === states.length ? vectors : selectRows(vectors, members);
+    const bra = conjugate(own);
+    defect = Math.max(defect, gramDefect(multiply(bra, transpose(own)), own));
+    problem.perturbations.forEach((perturbation, p) => {
+      const pass = evaluate(perturbation, bra, own, members, states, largest[p] as Map<number, number>, thresholds[p] ?? 0, worst);
+      members.forEach((k, r) => {
+        (diagonals[p] as Float64Array)[k] = pass.diagonal[r] as number;
+      });
+      elementError[p] = Math.max(elementError[p] ?? 0, pass.error);
+      offDiagonal[p] = Math.max(offDiagonal[p] ?? 0, pass.offDiagonal);
+      withinLeaves[p] = Math.max(withinLeaves[p] ?? 0, pass.withinLeaves);
+    });
+  }
+  worst.sort((a, b) => b.size - a.size || a.first - b.first || a.second - b.second);
+  // overlaps between parts are within the defect of the whole basis and the rounding of these vectors
+  const between = parts.size < 2 ? 0 : wholeDefect * (1 + 2 * defect) + 2 * Math.sqrt(states.length) * rowError * 1.01;
+  return {
+    diagonals,
+    elementError,
+    offDiagonal,
+    withinLeaves,
+    largest,
+    orthonormality: roundUp(defect + between, 16),
+    worst: worst.slice(0, WORST_KEPT),
+  };
 }
 
 /**
@@ -198,7 +266,8 @@ function evaluate(
   { name, operator }: { readonly name: string; readonly operator: Operator },
   bra: Csr,
   vectors: Csr,
-  paths: readonly (readonly PathStep[])[],
+  members: readonly number[],
+  states: readonly LevelState[],
   direct: Map<number, number>,
   threshold: number,
   worst: PairElement[],
@@ -224,12 +293,14 @@ function evaluate(
       const size = Math.sqrt(x * x + y * y);
       sum += (size + error) ** 2;
       if (c < r) continue;
-      const node = partingNode(paths[r] as readonly PathStep[], paths[c] as readonly PathStep[]);
+      const first = members[r] as number;
+      const second = members[c] as number;
+      const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
       if (node === undefined) withinLeaves = Math.max(withinLeaves, size + error);
       else if (size > (direct.get(node) ?? -1)) direct.set(node, size);
       const atLeast = roundDown(size) - error;
       if (atLeast <= floor) continue;
-      worst.push({ perturbation: name, first: r, second: c, re: x, im: y, size, atLeast, atMost: roundUp(size) + error });
+      worst.push({ perturbation: name, first, second, re: x, im: y, size, atLeast, atMost: roundUp(size) + error });
       if (worst.length > 64 * WORST_KEPT) {
         worst.sort((a, b) => b.size - a.size);
         worst.length = WORST_KEPT;

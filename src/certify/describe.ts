@@ -1,5 +1,5 @@
 import type { StateLabel } from "../refine/label.js";
-import type { StateVector } from "./outcome.js";
+import type { StateVector } from "./findings.js";
 
 /** A state in words: its sharp labels, and its largest ket. */
 export function describeState(

@@ -1,5 +1,5 @@
 import { GoodBasisError } from "../errors.js";
-import type { BasisState, LevelResult, Study } from "./outcome.js";
+import type { BasisState, LevelResult, Study } from "./findings.js";
 import type { StudyInternals } from "./internals.js";
 
 /** Known to this module alone: without it no certified basis can be made. */

@@ -4,7 +4,8 @@ import type { Depth, ResolvedLevel } from "../refine/resolve.js";
 import { energyTolerance, type Sector } from "../refine/sectors.js";
 import type { LevelCouplings } from "./couplings.js";
 import type { LevelGuard } from "./guard.js";
-import type { Question, Verdict } from "./outcome.js";
+import type { Question } from "./findings.js";
+import type { Verdict } from "./verdict.js";
 
 /** Everything that the verdict on one level rests on. */
 export interface LevelCase {

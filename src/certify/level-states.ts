@@ -1,7 +1,9 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
+import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { stackRows } from "../numerics/stack.js";
-import { multiply, selectRows } from "../numerics/sparse.js";
+import { maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
+import { compositionRowError } from "../refine/descent.js";
 import type { Complex } from "../refine/eigenspaces.js";
 import { alignByLadders } from "../refine/ladder.js";
 import { fixPhases } from "../refine/phase.js";
@@ -27,6 +29,8 @@ export interface LevelStates {
   readonly states: readonly LevelState[];
   /** Row k is state k. */
   readonly vectors: Csr;
+  /** Bound on the distance of each vector from the exact combination of the kets that the tree describes. */
+  readonly rowError: number;
 }
 
 /**
@@ -43,6 +47,7 @@ export function levelStates(
 ): LevelStates {
   const states: LevelState[] = [];
   const stacks: Csr[] = [];
+  let rowError = 0;
   resolved.parts.forEach((part, place) => {
     const sector = sectors[part.sector] as Sector;
     const frame = part.indices.length === sector.frame.rows ? sector.frame : selectRows(sector.frame, part.indices);
@@ -51,13 +56,21 @@ export function levelStates(
       for (let row = 0; row < leaf.rows.rows; row++) {
         states.push({ part: place, leaf: index, row, labels: leaf.labels, path, together: leaf.rows.rows });
       }
-      stacks.push(isIdentity(leaf.rows) ? frame : multiply(leaf.rows, frame));
+      const kept = isIdentity(leaf.rows);
+      stacks.push(kept ? frame : multiply(leaf.rows, frame));
+      const composed = kept ? 0 : compositionRowError(maxRowEntries(leaf.rows), frame);
+      rowError = Math.max(rowError, sector.rowError + composed);
     });
   });
   const order = states.map((_, k) => k).sort((a, b) => compare(problem, nodes, states[a], states[b]) || a - b);
   const stacked = fixPhases(selectRows(stackRows(stacks, problem.n), order));
   const sorted = order.map((k) => states[k] as LevelState);
-  return { states: sorted, vectors: alignByLadders(problem, sorted, stacked) };
+  // fixing a phase costs at most three rounded operations a component, twice
+  return {
+    states: sorted,
+    vectors: alignByLadders(problem, sorted, stacked),
+    rowError: roundUp(rowError + (rowError === 0 ? 0 : 8 * UNIT_ROUNDOFF)),
+  };
 }
 
 /** The steps from the root to a step, root first. */

@@ -1,6 +1,6 @@
 import { sha256 } from "@noble/hashes/sha2.js";
 import { bytesToHex, utf8ToBytes } from "@noble/hashes/utils.js";
-import type { Certificate } from "./certificate.js";
+import type { Certificate } from "./certificate-format.js";
 
 /** SHA-256 of a value's JSON, with the keys of every object in alphabetical order. */
 function seal(value: unknown): string {

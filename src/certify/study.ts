@@ -12,7 +12,8 @@ import { describeState } from "./describe.js";
 import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
-import type { BasisState, Coupling, LevelResult, Shift, StateVector } from "./outcome.js";
+import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
+import type { Shift } from "./verdict.js";
 import { imageError, images, rayleighQuotients, residualBounds, rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
@@ -125,14 +126,15 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
   const residual = residuals.reduce((most, x) => Math.max(most, x), 0);
   const numbers = problem.candidates.map((candidate, place) => labelNumbers(candidate, place, found));
   const thresholds = problem.perturbations.map(({ operator }) => settings.resolution * operator.norm);
-  const couplings = levelCouplings(
+  const couplings = levelCouplings({
     problem,
-    audit.candidates,
-    found,
+    findings: audit.candidates,
+    level: found,
     nodes,
-    numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
+    residuals: numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
     thresholds,
-  );
+    wholeDefect: whole.orthonormality,
+  });
   const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
   const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);
   const ratios = levelGuard(problem, resolved, nodes, levels.energies, whole.energyEnclosure, guard);

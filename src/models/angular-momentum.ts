@@ -62,7 +62,7 @@ export function angularMomentum(j: number): AngularMomentum {
 }
 
 /** ⟨j, m + 1| J₊ |j, m⟩ for m = j − k, with its radius. */
-export function ladderElement(j: number, k: number): { value: number; radius: number } {
+function ladderElement(j: number, k: number): { value: number; radius: number } {
   // j(j + 1) − m(m + 1) = k (2j + 1 − k) in whole numbers.
   return exactRoot(k * (2 * j + 1 - k));
 }

@@ -41,15 +41,16 @@ export const EIGEN_TUNING: EigenTuning = { leaf: 32, blockedFrom: 96, blockWidth
  * eigenvalues are not accurate relative to themselves. The same input gives the same output, bit for bit.
  *
  * Scaling by a power of two; reduction by reflectors (Householder, J. ACM 5, 339 (1958)); implicit QL (Bowdler, Martin,
- * Reinsch and Wilkinson, Numer. Math. 11, 293 (1968)) or, for larger orders, divide and conquer (Cuppen, Numer. Math. 36,
- * 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995)).
+ * Reinsch and Wilkinson, Numer. Math. 11, 293 (1968)) or, for larger orders, divide and conquer (Cuppen, Numer. Math.
+ * 36, 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995)).
  *
  * @param n - dimension, zero allowed
  * @param re - row-major n × n, real parts; only the lower triangle is read, nothing is changed
  * @param im - imaginary parts, those of the diagonal taken as zero; absent for a real symmetric matrix
  * @returns eigenvalues ascending, eigenvectors as rows; `im` is absent exactly where it was absent in the input
- * @throws GoodBasisError `shape` when an array has not n² numbers; `not-finite` when an entry of the lower triangle is NaN
- * or infinite, or an eigenvalue lies beyond the largest double; `no-convergence` when an iteration exceeds its bound
+ * @throws GoodBasisError `shape` when an array has not n² numbers; `not-finite` when an entry of the lower triangle is
+ * NaN or infinite, or an eigenvalue lies beyond the largest double; `no-convergence` when an iteration exceeds its
+ * bound
  */
 export function hermitianEigen(n: number, re: Float64Array, im: Float64Array | undefined): HermitianEigen {
   return hermitianEigenTuned(n, re, im, EIGEN_TUNING);
@@ -92,7 +93,7 @@ export function hermitianEigenTuned(
   if (!Number.isFinite(values[0]) || !Number.isFinite(values[n - 1])) {
     throw new GoodBasisError(
       "not-finite",
-      `hermitianEigen: an eigenvalue of the ${n} × ${n} matrix exceeds the largest double; divide the matrix by a number`,
+      `hermitianEigen: an eigenvalue of the ${n} × ${n} matrix exceeds the largest double; scale the matrix down`,
       { n, largest },
     );
   }

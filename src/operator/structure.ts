@@ -25,7 +25,7 @@ export interface HermitianDefect {
 }
 
 /** Whether entry `e` may be zero within its radius. */
-export function mayVanish(matrix: Uncertain, e: number): boolean {
+function mayVanish(matrix: Uncertain, e: number): boolean {
   const { csr, radius } = matrix;
   if (radius instanceof Float64Array) return modulusAbove(csr, e) <= (radius[e] as number);
   return csr.re[e] === 0 && (csr.im === undefined || csr.im[e] === 0);

@@ -1,10 +1,11 @@
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, LEVEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import { conjugate, diagonalCsr, frobenius, multiply, selectRows, submatrix, transpose } from "../numerics/sparse.js";
+import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { conjugate, diagonalCsr, multiply, selectRows, submatrix, transpose } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import type { Operator } from "../operator/operator.js";
+import { type DescentStep, descentStep, rotateAll, rotationError } from "./descent.js";
 import { type Complex, type Eigenspace, splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { PathStep, TreeBuilder } from "./tree.js";
@@ -34,6 +35,8 @@ export interface Sector {
   readonly energyNode: number;
   /** Which child of that node each vector belongs to. */
   readonly energyChild: Int32Array;
+  /** Bound on the distance of each vector from the exact combination of the kets that its tree describes. */
+  readonly rowError: number;
 }
 
 /** The whole space taken apart by labels and H0. */
@@ -53,6 +56,10 @@ interface Block {
   readonly labels: readonly BlockLabel[];
   readonly from: PathStep | undefined;
   readonly depth: number;
+  /** For each perturbation, bound on the distance of its restricted matrix from the exact one over the stored frame. */
+  readonly vErrors: readonly number[];
+  /** See {@link Sector.rowError}. */
+  readonly rowError: number;
 }
 
 /** Cost classes of an operator, cheapest first: grouping of indices, orbits, eigensolver. */
@@ -113,6 +120,13 @@ export function buildSectors(
     const hermitian = by.kind === "hermitian";
     const norm = by.operator.norm;
     const split = splitIntoEigenspaces(matrix, { hermitian, noise: NOISE * norm, cluster: LABEL_WIDTH * norm });
+    const whole = split.spaces.length === 1;
+    const step = whole ? undefined : descentStep(split.spaces, block);
+    const rotated = withH0 && step !== undefined ? block.perturbations.map((v) => rotateAll(step, v)) : undefined;
+    const vErrors =
+      step === undefined
+        ? block.vErrors
+        : problem.perturbations.map(({ operator }, p) => rotationError(step, block.perturbations[p] as Csr, operator, block.vErrors[p] ?? 0));
     const node = tree.add({
       from: block.from,
       kind: "label",
@@ -121,29 +135,33 @@ export function buildSectors(
       values: split.spaces.map((space) => space.value),
       spreads: split.spaces.map((space) => space.spread),
       sizes: split.spaces.map((space) => space.rows.rows),
+      ...(rotated === undefined
+        ? {}
+        : { crossings: rotated.map(({ crossing }, p) => roundUp(crossing + (vErrors[p] ?? 0))) }),
     });
-    const whole = split.spaces.length === 1;
-    if (!whole) note(block, split.spaces, split.defect);
+    if (step !== undefined) note(block, split.spaces, split.defect, step);
     return split.spaces.map((space, child): Block => {
       const rotate = (operator: Csr): Csr => (whole ? operator : inSpace(space, operator));
       return {
         frame: whole ? block.frame : frameOf(space, block.frame),
         h0: withH0 ? rotate(block.h0) : block.h0,
-        perturbations: withH0 ? block.perturbations.map(rotate) : block.perturbations,
+        perturbations: rotated?.map(({ children }) => children[child] as Csr) ?? block.perturbations,
         remaining: rest.map(rotate),
         labels: [...block.labels, { candidate: place, value: space.value }],
         from: { node, child },
         depth: block.depth + 1,
+        vErrors,
+        rowError: block.rowError + (step?.rowError ?? 0),
       };
     });
   };
 
   /** Records how far the new vectors of one step of the descent may be from orthonormal. */
-  const note = (block: Block, spaces: readonly Eigenspace[], splitDefect: number): void => {
+  const note = (block: Block, spaces: readonly Eigenspace[], splitDefect: number, step: DescentStep): void => {
     if (spaces.every((space) => space.indices !== undefined)) return;
     const { depth } = block;
     splitDefects[depth] = Math.max(splitDefects[depth] ?? 0, splitDefect);
-    compositionSquares[depth] = (compositionSquares[depth] ?? 0) + compositionError(spaces, block.frame) ** 2;
+    compositionSquares[depth] = (compositionSquares[depth] ?? 0) + step.compositionError ** 2;
   };
 
   const finish = (block: Block): void => {
@@ -176,7 +194,8 @@ export function buildSectors(
     });
     const all = stack(spaces, size);
     const identity = all.indices?.every((index, row) => index === row) === true;
-    if (!identity) note(block, [all], split.defect);
+    const step = identity ? undefined : descentStep([all], block);
+    if (step !== undefined) note(block, [all], split.defect, step);
     sectors.push({
       frame: identity ? block.frame : frameOf(all, block.frame),
       energies,
@@ -185,6 +204,7 @@ export function buildSectors(
       from: block.from,
       energyNode,
       energyChild,
+      rowError: block.rowError + (step?.rowError ?? 0),
     });
   };
 
@@ -196,6 +216,8 @@ export function buildSectors(
     labels: [],
     from: undefined,
     depth: 0,
+    vErrors: problem.perturbations.map(() => 0),
+    rowError: 0,
   });
   // one step down: F' = U F + E with U block-diagonal, so ‖F'F'† − 1‖ ≤ ‖UU† − 1‖ + ‖U‖²‖FF† − 1‖ + (2‖U‖‖F‖ + ‖E‖)‖E‖
   let defect = 0;
@@ -241,34 +263,4 @@ function stack(spaces: readonly Eigenspace[], size: number): Eigenspace {
   );
   const selection = spaces.every((space) => space.indices !== undefined);
   return { value: { re: 0, im: 0 }, spread: 0, rows, indices: selection ? rows.col : undefined };
-}
-
-/**
- * Bound on the norm of the rounding errors of U F: each component is a sum of at most m products, so its error is at most
- * √2 γ_{m+2} (|U| |F|) entry by entry, whose Frobenius norm is at most √2 γ_{m+2} ‖U‖_F ‖F‖_F, m the longest row of U.
- */
-function compositionError(spaces: readonly Eigenspace[], frame: Csr): number {
-  let longest = 0;
-  let square = 0;
-  for (const { rows } of spaces) {
-    for (let r = 0; r < rows.rows; r++) longest = Math.max(longest, (rows.ptr[r + 1] as number) - (rows.ptr[r] as number));
-    const norm = frobenius(rows);
-    square += norm * norm;
-  }
-  // the rows of U that meet in one component are orthonormal, so ‖|U||F|‖_F ≤ √m ‖U‖_F max‖F_i‖
-  return Math.SQRT2 * gamma(longest + 4) * Math.sqrt(longest * square) * rowNormBound(frame);
-}
-
-function rowNormBound(frame: Csr): number {
-  let most = 0;
-  for (let r = 0; r < frame.rows; r++) {
-    let square = 0;
-    for (let p = frame.ptr[r] as number; p < (frame.ptr[r + 1] as number); p++) {
-      const x = frame.re[p] as number;
-      const y = frame.im === undefined ? 0 : (frame.im[p] as number);
-      square += x * x + y * y;
-    }
-    if (square > most) most = square;
-  }
-  return Math.sqrt(most) * (1 + 1e-12);
 }

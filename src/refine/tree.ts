@@ -28,6 +28,11 @@ export interface TreeNode {
   readonly spreads: readonly number[];
   /** Dimension of each child. */
   readonly sizes: readonly number[];
+  /**
+   * For each perturbation, a rigorous bound on the 2-norm of its elements between different children, evaluated directly on
+   * the children's vectors; undefined where that is left to whoever evaluates single elements.
+   */
+  readonly crossings?: readonly number[];
 }
 
 /** A step from a node to one of its children. */

@@ -28,7 +28,9 @@ const TUNINGS: readonly EigenTuning[] = [
   { leaf: 1000, blockedFrom: 3, blockWidth: 16 },
 ];
 
-/** Solves, requires order and 20 n u in both norms (Frobenius, which bounds the spectral one), and hands the result on. */
+/**
+ * Solves, requires order and 20 n u in both norms (Frobenius, which bounds the spectral one), and hands the result on.
+ */
 function solved(of: Sample, tuning: EigenTuning = EIGEN_TUNING): HermitianEigen {
   const found = hermitianEigenTuned(of.n, of.re, of.im, tuning);
   const { residual, orthogonality } = quality(of, found);

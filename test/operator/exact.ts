@@ -26,7 +26,7 @@ export const minus = (a: ExactComplex, b: ExactComplex): ExactComplex => complex
 export const times = (a: ExactComplex, b: ExactComplex): ExactComplex =>
   complex(a.re.mul(b.re).sub(a.im.mul(b.im)), a.re.mul(b.im).add(a.im.mul(b.re)));
 
-export const ZERO: ExactComplex = complex(new Fraction(0), new Fraction(0));
+const ZERO: ExactComplex = complex(new Fraction(0), new Fraction(0));
 
 /** The stored values, exactly. */
 export function exactOf(operator: Operator): ExactMatrix {

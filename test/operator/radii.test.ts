@@ -1,6 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { Operator } from "../../src/operator/operator.js";
+import type { Uncertainty } from "../../src/operator/read.js";
 import {
   complex,
   type ExactMatrix,
@@ -33,18 +34,27 @@ function square(n: number, isComplex: boolean): fc.Arbitrary<Operator> {
     );
 }
 
-/** A matrix and a true one within its radii, at their very edge. */
-const uncertain: fc.Arbitrary<[Operator, ExactMatrix]> = fc.tuple(square(3, true), fc.integer()).map(([a, seed]) => {
+/** A true matrix within the radii of the given one, at their very edge. */
+function nearby(a: Operator, seed: number): ExactMatrix {
   let state = Math.abs(seed) + 1;
-  const truth = exactOf(a).map((row, i) =>
+  return exactOf(a).map((row, i) =>
     row.map((x, j) => {
       state = (state * 48271) % 2147483647;
       const shift = fractionOf(radiusOf(a, i, j) * (1 - 1e-14)).mul(state % 2 === 0 ? 1 : -1);
       return (state >> 3) % 2 === 0 ? complex(x.re.add(shift), x.im) : complex(x.re, x.im.add(shift));
     }),
   );
-  return [a, truth];
-});
+}
+
+const stated = fc.constantFrom<Uncertainty | undefined>(undefined, "exact", { relative: 0.01, absolute: 0.3 });
+
+/** A matrix of any uncertainty and a true one within its radii. */
+const uncertain: fc.Arbitrary<[Operator, ExactMatrix]> = fc
+  .tuple(square(3, true), stated, fc.integer())
+  .map(([plain, uncertainty, seed]) => {
+    const a = Operator.from(plain, { uncertainty });
+    return [a, nearby(a, seed)];
+  });
 
 describe("radii bound the true error", () => {
   for (const isComplex of [false, true]) {
@@ -91,9 +101,10 @@ describe("radii bound the true error", () => {
   test("with a diagonal factor", () => {
     const diagonal = fc.array(part, { minLength: 4, maxLength: 4 });
     fc.assert(
-      fc.property(diagonal, diagonal, square(4, true), (re, im, b) => {
-        const d = Operator.from({ diagonal: re, imaginary: im });
-        const [x, y] = [exactOf(d), exactOf(b)];
+      fc.property(diagonal, diagonal, stated, square(4, true), fc.integer(), (re, im, uncertainty, plain, seed) => {
+        const d = Operator.from({ diagonal: re, imaginary: im }, { uncertainty });
+        const b = Operator.from(plain, { uncertainty });
+        const [x, y] = [nearby(d, seed), nearby(b, seed)];
         const truth = exactSum(exactProduct(x, y), exactProduct(y, x), minus);
         expect(violations(d.commutator(b), truth)).toEqual([]);
         expect(violations(b.commutator(d), exactSum(exactProduct(y, x), exactProduct(x, y), minus))).toEqual([]);
@@ -112,7 +123,7 @@ describe("radii bound the true error", () => {
         expect(violations(b.times(b), exactProduct(exactOf(b), exactOf(b)))).toEqual([]);
         expect(c.storage).toBe("dense");
       }),
-      { seed: 7, numRuns: 3 },
+      { seed: 7, numRuns: 3, endOnFailure: true },
     );
   });
 
@@ -138,6 +149,21 @@ describe("radii bound the true error", () => {
         exactOf(a).flatMap((r) => exactOf(b).map((s) => r.flatMap((u) => s.map((v) => times(u, v))))),
       ),
     ).toEqual([]);
+  });
+
+  test("where whole numbers outgrow 53 bits", () => {
+    const large = 2 ** 30 + 1;
+    const rows = [
+      [large, 2 * large + 1],
+      [-large, 2 ** 53 - 1],
+    ];
+    const a = Operator.from(rows, { uncertainty: "exact" });
+    const x = exactOf(a);
+    const product = exactProduct(x, x);
+    expect(a.times(a).isExact).toBe(false);
+    expect(violations(a.times(a), product)).toEqual([]);
+    expect(violations(a.plus(a.adjoint()), exactSum(x, exactOf(a.adjoint())))).toEqual([]);
+    expect(violations(a.scale(3), exactSum(exactSum(x, x), x))).toEqual([]);
   });
 
   test("of duplicates that are summed", () => {

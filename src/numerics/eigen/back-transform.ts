@@ -78,8 +78,8 @@ function reflectComplex(
 }
 
 /**
- * The same as {@link applyReflectors} in blocks: as they act on rows from the right, the reflectors of a block multiply to
- * I − Y† T Y with T upper triangular, applied to all rows by matrix products.
+ * The same as {@link applyReflectors} in blocks: as they act on rows from the right, the reflectors of a block multiply
+ * to I − Y† T Y with T upper triangular, applied to all rows by matrix products.
  *
  * Source: Schreiber and Van Loan, SIAM J. Sci. Stat. Comput. 10, 53 (1989).
  *
@@ -110,6 +110,7 @@ export function applyReflectorBlocks(
   for (let first = 1; first < n; first += width) {
     const k = Math.min(width, n - first);
     const length = first + k - 1;
+    if (tau.subarray(first, first + k).every((t) => t === 0)) continue;
     for (let i = first; i < first + k; i++) {
       y.re.fill(0, i * n + i, i * n + length);
       y.im?.fill(0, i * n + i, i * n + length);
@@ -131,7 +132,9 @@ export function applyReflectorBlocks(
   }
 }
 
-/** The k × k upper triangular factor T of I − Y† T Y (acting on rows from the right), from τ and the Gram matrix Y Y†. */
+/**
+ * The k × k upper triangular factor T of I − Y† T Y (acting on rows from the right), from τ and the Gram matrix Y Y†.
+ */
 function compactFactor(k: number, first: number, tau: Float64Array, gram: Dense, factor: Dense): void {
   clear(factor, k * k);
   for (let j = 0; j < k; j++) {

@@ -18,7 +18,10 @@ interface Tree {
   readonly tolerance: number;
   /** z of the merge at hand, n numbers. */
   readonly z: Float64Array;
-  /** Room for the differences (at most n²), the gathered rows and the product of a merge (at most n² / 2 each, rounded up). */
+  /**
+   * Room for the differences (at most n²), the gathered rows and the product of a merge (at most n² / 2 each, rounded
+   * up).
+   */
   readonly gaps: Float64Array;
   readonly gathered: Float64Array;
   readonly product: Float64Array;
@@ -34,9 +37,9 @@ const SECOND = 2;
 /**
  * All eigenpairs of a symmetric tridiagonal matrix by divide and conquer with deflation.
  *
- * Source: Cuppen, Numer. Math. 36, 177 (1981); deflation: Bunch, Nielsen and Sorensen, Numer. Math. 31, 31 (1978); orthogonal
- * vectors from recomputed z: Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995). What is deflated is below four
- * units in the last place of the norm of the whole matrix.
+ * Source: Cuppen, Numer. Math. 36, 177 (1981); deflation: Bunch, Nielsen and Sorensen, Numer. Math. 31, 31 (1978);
+ * orthogonal vectors from recomputed z: Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995). What is deflated
+ * is below four units in the last place of the norm of the whole matrix.
  *
  * @param n - order
  * @param diagonal - diagonal entries; on return the eigenvalue of each row of `v`, unsorted
@@ -161,8 +164,8 @@ function merge(start: number, middle: number, end: number, rho: number, sign: nu
 }
 
 /**
- * Sets aside the rows whose eigenpairs the coupling leaves alone within the tolerance: those with a small z, and one of each
- * two so close that a rotation can take z from it.
+ * Sets aside the rows whose eigenpairs the coupling leaves alone within the tolerance: those with a small z, and one of
+ * each two so close that a rotation can take z from it.
  */
 function deflate(
   start: number,
@@ -212,7 +215,9 @@ function deflate(
   return { kept, deflated, span };
 }
 
-/** Solves the secular equation for the kept rows and replaces these rows by the new eigenvectors, ascending in `kept`. */
+/**
+ * Solves the secular equation for the kept rows and replaces these rows by the new eigenvectors, ascending in `kept`.
+ */
 function updateVectors(
   start: number,
   middle: number,

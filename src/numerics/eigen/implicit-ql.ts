@@ -9,9 +9,9 @@ const SAFE_SQUARE = 2 ** -900;
 /**
  * All eigenpairs of a symmetric tridiagonal block by implicit QL, the rotations applied to rows, a sweep at a time.
  *
- * Source: Bowdler, Martin, Reinsch and Wilkinson, Numer. Math. 11, 293 (1968); implicit shifts: Martin and Wilkinson, Numer.
- * Math. 12, 377 (1968). An off-diagonal entry is dropped when it is below the unit roundoff beside its two diagonal
- * neighbours, or below `floor`.
+ * Source: Bowdler, Martin, Reinsch and Wilkinson, Numer. Math. 11, 293 (1968); implicit shifts: Martin and Wilkinson,
+ * Numer. Math. 12, 377 (1968). An off-diagonal entry is dropped when it is below the unit roundoff beside its two
+ * diagonal neighbours, or below `floor`.
  *
  * @param size - order of the block
  * @param start - index of its first row in `diagonal`, `off` and `v`
@@ -64,8 +64,8 @@ function firstNegligible(low: number, last: number, diagonal: Float64Array, off:
 }
 
 /**
- * One implicit sweep from row `high` up to row `low`, with the shift of the leading 2 × 2 matrix. Cosine and sine of the
- * rotation of rows i and i + 1 go to `rotations[2 i]` and the entry after it.
+ * One implicit sweep from row `high` up to row `low`, with the shift of the leading 2 × 2 matrix. Cosine and sine of
+ * the rotation of rows i and i + 1 go to `rotations[2 i]` and the entry after it.
  *
  * @returns the index of the last rotation, `low` unless the sweep broke off
  */
@@ -113,8 +113,8 @@ function qlSweep(
 }
 
 /**
- * Applies a sweep of rotations of the rows i and i + 1, i = `high` − 1 down to `low`, to the columns `from` to `to`: four
- * columns at a time, the row that two rotations share held in registers between them.
+ * Applies a sweep of rotations of the rows i and i + 1, i = `high` − 1 down to `low`, to the columns `from` to `to`:
+ * four columns at a time, the row that two rotations share held in registers between them.
  */
 function applySweep(
   low: number,

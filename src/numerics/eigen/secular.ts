@@ -1,7 +1,9 @@
 import { GoodBasisError } from "../../errors.js";
 import { UNIT_ROUNDOFF } from "../rounding.js";
 
-/** Steps allowed for one root; from step {@link BISECT_FROM} on every second one halves the bracket, which settles it. */
+/**
+ * Steps allowed for one root; from step {@link BISECT_FROM} on every second one halves the bracket, which settles it.
+ */
 const MAX_STEPS = 400;
 const BISECT_FROM = 16;
 
@@ -9,8 +11,8 @@ const BISECT_FROM = 16;
  * Root j of the secular equation 1 + Σ_i w_i / (d_i − λ) = 0, between d_j and d_{j+1} (the last: between d_{K−1} and
  * d_{K−1} + Σ w_i).
  *
- * The origin is moved to the nearer pole, so that every difference d_i − λ comes out to high relative accuracy; each step
- * fits the two halves of the sum by one pole each, inside a shrinking bracket, which is halved where
+ * The origin is moved to the nearer pole, so that every difference d_i − λ comes out to high relative accuracy; each
+ * step fits the two halves of the sum by one pole each, inside a shrinking bracket, which is halved where
  * the fit leads out of it.
  * Source: Bunch, Nielsen and Sorensen, Numer. Math. 31, 31 (1978); choice of origin and first guess: Li, LAPACK Working
  * Note 89 (1994).
@@ -99,7 +101,8 @@ export function secularRoot(
   }
   throw new GoodBasisError(
     "no-convergence",
-    `secularRoot: root ${j} of ${count} did not settle in ${MAX_STEPS} steps; check the matrix for entries that overflow`,
+    `secularRoot: root ${j} of ${count} did not settle in ${MAX_STEPS} steps; ` +
+      "check the matrix for entries that overflow",
     { index: j, size: count },
   );
 }
@@ -113,7 +116,10 @@ function settle(count: number, gaps: Float64Array, at: number, origin: number, e
   return origin + eta;
 }
 
-/** The root of c x² − a x + b = 0 that lies between the two poles, or beyond both for the last one; without cancellation. */
+/**
+ * The root of c x² − a x + b = 0 that lies between the two poles, or beyond both for the last one; without
+ * cancellation.
+ */
 function nearerRoot(a: number, b: number, c: number, last: boolean): number {
   const root = Math.sqrt(Math.abs(a * a - 4 * b * c));
   if (last) return a >= 0 ? (c === 0 ? b / a : (a + root) / (2 * c)) : (2 * b) / (a - root);
@@ -121,8 +127,8 @@ function nearerRoot(a: number, b: number, c: number, last: boolean): number {
 }
 
 /**
- * The vector z for which the computed roots are the exact ones: z_i² = Π_j (λ_j − d_i) / Π_{j≠i} (d_j − d_i), one factor a
- * root. With it, eigenvectors from Löwner's formula are orthogonal to roundoff however close the roots lie.
+ * The vector z for which the computed roots are the exact ones: z_i² = Π_j (λ_j − d_i) / Π_{j≠i} (d_j − d_i), one
+ * factor a root. With it, eigenvectors from Löwner's formula are orthogonal to roundoff however close the roots lie.
  *
  * Source: Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995), after Löwner, Math. Z. 38, 177 (1934).
  *

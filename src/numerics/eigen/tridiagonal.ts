@@ -9,8 +9,8 @@ export interface Tridiagonal {
 }
 
 /**
- * A row whose off-tridiagonal entries have squares that add up to no more than this is taken as reduced already. Entries
- * are scaled to about one beforehand, so what is dropped is below 1e-135 of the norm, and no sum of squares that is used
- * has lost digits to underflow.
+ * A row whose off-tridiagonal entries have squares that add up to no more than this is taken as reduced already.
+ * Entries are scaled to about one beforehand, so what is dropped is below 1e-135 of the norm, and no sum of squares
+ * that is used has lost digits to underflow.
  */
 export const NEGLIGIBLE_SQUARE: number = 2 ** -900;

@@ -4,13 +4,13 @@ import { NEGLIGIBLE_SQUARE, type Tridiagonal } from "./tridiagonal.js";
  * Reduces a complex Hermitian matrix to real tridiagonal form, A = Q D T D† Q† with Q = H_{n−1} ⋯ H_2 H_1,
  * H_i = I − τ_i y_i y_i† with real τ_i, and D a diagonal of unit phases.
  *
- * The complex companion of `tridiagonaliseReal`: same order, same fused pass. The reflector keeps the phase of the pivot,
- * which makes τ real; the phases of the off-diagonal entries are gathered into D.
+ * The complex companion of `tridiagonaliseReal`: same order, same fused pass. The reflector keeps the phase of the
+ * pivot, which makes τ real; the phases of the off-diagonal entries are gathered into D.
  * Source: Householder, J. ACM 5, 339 (1958); complex matrices: Mueller, Numer. Math. 8, 72 (1966).
  *
  * @param n - dimension
- * @param re - row-major n × n, entries of modulus about one or less; only the lower triangle is read; on return row i holds
- * the real parts of y_i in its columns 0 … i − 1
+ * @param re - row-major n × n, entries of modulus about one or less; only the lower triangle is read; on return row i
+ * holds the real parts of y_i in its columns 0 … i − 1
  * @param im - the same for the imaginary parts; those of the diagonal are taken as zero
  * @param t - receives diagonal, off-diagonal (moduli, not negative) and the scalars τ_i
  * @param phases - receives D: n real parts, then n imaginary parts
@@ -59,7 +59,8 @@ export function tridiagonaliseComplex(
     }
     const modulus = Math.sqrt(pivotRe * pivotRe + pivotIm * pivotIm);
     const norm = Math.sqrt(pivotRe * pivotRe + pivotIm * pivotIm + tail);
-    // Below this the square of the modulus has lost digits, and any unit phase does: the pivot is nothing beside the norm.
+    // Below this the square of the modulus has lost digits, and any unit phase does: the pivot is nothing beside the
+    // norm.
     const clear = modulus * modulus > NEGLIGIBLE_SQUARE;
     const phaseRe = clear ? pivotRe / modulus : 1;
     const phaseIm = clear ? pivotIm / modulus : 0;
@@ -96,7 +97,9 @@ export function tridiagonaliseComplex(
   gatherPhases(n, off, phases);
 }
 
-/** Turns the complex off-diagonal entries (i − 1, i), kept in `phases`, into moduli and the running product of phases. */
+/**
+ * Turns the complex off-diagonal entries (i − 1, i), kept in `phases`, into moduli and the running product of phases.
+ */
 function gatherPhases(n: number, off: Float64Array, phases: Float64Array): void {
   phases[0] = 1;
   phases[n] = 0;
@@ -138,8 +141,8 @@ function updateRow(i: number, n: number, re: Float64Array, im: Float64Array, wor
 }
 
 /**
- * One pass over the leading m × m triangle: A ← A − u w† − w u†, y ← y + A x with the new A. `work` holds u, w and y, real
- * and imaginary parts, n numbers each; x is the row of `re` and `im` that starts at `x`.
+ * One pass over the leading m × m triangle: A ← A − u w† − w u†, y ← y + A x with the new A. `work` holds u, w and y,
+ * real and imaginary parts, n numbers each; x is the row of `re` and `im` that starts at `x`.
  */
 function updateAndMultiply(
   m: number,

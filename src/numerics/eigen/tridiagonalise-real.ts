@@ -1,16 +1,19 @@
 import { NEGLIGIBLE_SQUARE, type Tridiagonal } from "./tridiagonal.js";
 
 /**
- * Reduces a real symmetric matrix to tridiagonal form, A = Q T Qᵀ with Q = H_{n−1} ⋯ H_2 H_1 and H_i = I − τ_i y_i y_iᵀ.
+ * Reduces a real symmetric matrix to tridiagonal form, A = Q T Qᵀ with Q = H_{n−1} ⋯ H_2 H_1 and H_i = I − τ_i y_i
+ * y_iᵀ.
  *
- * Works from the last row upward, so that the reflectors lie in contiguous rows. The rank-two update of one step is applied
- * while the matrix-vector product of the next is formed: one pass over the triangle a step.
- * Source: Householder, J. ACM 5, 339 (1958); row order of tred2, Martin, Reinsch and Wilkinson, Numer. Math. 11, 181 (1968).
+ * Works from the last row upward, so that the reflectors lie in contiguous rows. The rank-two update of one step is
+ * applied while the matrix-vector product of the next is formed: one pass over the triangle a step.
+ * Source: Householder, J. ACM 5, 339 (1958); row order of tred2, Martin, Reinsch and Wilkinson, Numer. Math. 11, 181
+ * (1968).
  *
  * @param n - dimension
- * @param a - row-major n × n, entries of modulus about one or less; only the lower triangle is read; on return row i holds
- * y_i in its columns 0 … i − 1
- * @param t - receives diagonal, off-diagonal (`off[i]` couples i and i + 1) and the scalars τ_i (`tau[i]`, 0 for no reflector)
+ * @param a - row-major n × n, entries of modulus about one or less; only the lower triangle is read; on return row i
+ * holds y_i in its columns 0 … i − 1
+ * @param t - receives diagonal, off-diagonal (`off[i]` couples i and i + 1) and the scalars τ_i (`tau[i]`, 0 for no
+ * reflector)
  * @param work - 3 n numbers, overwritten
  */
 export function tridiagonaliseReal(n: number, a: Float64Array, t: Tridiagonal, work: Float64Array): void {

@@ -2,7 +2,7 @@ import { modulus } from "../complex.js";
 import type { Csr } from "../csr.js";
 
 /** The modulus of entry `e`, to within 8 units roundoff; exact for a real matrix. */
-export function entryModulus(a: Csr, e: number): number {
+function entryModulus(a: Csr, e: number): number {
   const x = a.re[e] as number;
   return a.im === undefined ? Math.abs(x) : modulus(x, a.im[e] as number);
 }
