@@ -122,7 +122,9 @@ function explain(finding: CommutatorFinding): string {
 function size(finding: CommutatorFinding): string {
   const worst = finding.largest[0];
   const where =
-    worst === undefined ? "" : `, largest element ${worst.size.toPrecision(4)} at ⟨${worst.rowKet}|…|${worst.columnKet}⟩`;
+    worst === undefined
+      ? ""
+      : `, largest element ${worst.size.toPrecision(4)} at ⟨${worst.rowKet}|…|${worst.columnKet}⟩`;
   const name = `[${finding.left}, ${finding.right}]`;
   return `‖${name}‖ = ${finding.norm.toPrecision(6)} (Frobenius), bound ${finding.bound.toExponential(1)}${where}`;
 }

@@ -74,11 +74,9 @@ export function prepareProblem(problem: Problem): PreparedProblem {
   for (const [name, input] of Object.entries(problem.candidates ?? {})) {
     checkName("candidate", name);
     if (name === "H0" || perturbations.some((v) => v.name === name)) {
-      throw new GoodBasisError(
-        "name",
-        `candidate "${name}" has the name of H0 or of a perturbation; rename it`,
-        { name },
-      );
+      throw new GoodBasisError("name", `candidate "${name}" has the name of H0 or of a perturbation; rename it`, {
+        name,
+      });
     }
     candidates.push(readCandidate(name, input, n));
   }

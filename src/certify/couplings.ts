@@ -2,7 +2,7 @@ import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundDown, roundUp } from "../numerics/rounding.js";
-import { conjugate, maxRowEntries, multiply, selectRows, transpose } from "../numerics/sparse.js";
+import { maxRowEntries, selectRows } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
@@ -126,7 +126,16 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
           : roundUp((crossing + 2 * v * rowError + operator.error) * (1 + input.wholeDefect) * (1 + rowError) ** 2, 16);
       return { perturbation: name, selectionRule, direct, counted: Math.min(selectionRule, direct) };
     });
-    return { node: entry.node, operator: node.operator, kind: node.kind, values, gap, commutators, residual, couplings };
+    return {
+      node: entry.node,
+      operator: node.operator,
+      kind: node.kind,
+      values,
+      gap,
+      commutators,
+      residual,
+      couplings,
+    };
   });
   return {
     nodes: evidence,
@@ -135,7 +144,9 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
     withinLeaves: inside.withinLeaves,
     orthonormality,
     worst: inside.worst,
-    offDiagonal: problem.perturbations.map((_, p) => roundUp((inside.offDiagonal[p] ?? 0) + betweenParts(evidence, nodes, p))),
+    offDiagonal: problem.perturbations.map((_, p) =>
+      roundUp((inside.offDiagonal[p] ?? 0) + betweenParts(evidence, nodes, p)),
+    ),
     largest: problem.perturbations.map((_, p) =>
       evidence.reduce((most, node) => Math.max(most, node.couplings[p]?.counted ?? 0), inside.withinLeaves[p] ?? 0),
     ),
@@ -198,23 +209,28 @@ function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput)
   const zeros = (): number[] => problem.perturbations.map(() => 0);
   const diagonals = problem.perturbations.map(() => new Float64Array(states.length));
   const largest = problem.perturbations.map(() => new Map<number, number>());
-  const elementError = zeros();
+  const elementError = problem.perturbations.map(({ operator }) => elementErrorBound(operator, vectors));
   const offDiagonal = zeros();
   const withinLeaves = zeros();
   const worst: PairElement[] = [];
   let defect = 0;
   for (const members of parts.values()) {
     const own = members.length === states.length ? vectors : selectRows(vectors, members);
-    const bra = conjugate(own);
-    defect = Math.max(defect, gramDefect(multiply(bra, transpose(own)), own));
-    problem.perturbations.forEach((perturbation, p) => {
-      const pass = evaluate(perturbation, bra, own, members, states, largest[p] as Map<number, number>, thresholds[p] ?? 0, worst);
-      members.forEach((k, r) => {
-        (diagonals[p] as Float64Array)[k] = pass.diagonal[r] as number;
-      });
-      elementError[p] = Math.max(elementError[p] ?? 0, pass.error);
-      offDiagonal[p] = Math.max(offDiagonal[p] ?? 0, pass.offDiagonal);
-      withinLeaves[p] = Math.max(withinLeaves[p] ?? 0, pass.withinLeaves);
+    defect = Math.max(defect, gramDefect(own));
+    problem.perturbations.forEach(({ name, operator }, p) => {
+      const pass: Pass = {
+        name,
+        members,
+        states,
+        error: elementError[p] as number,
+        diagonal: diagonals[p] as Float64Array,
+        largest: largest[p] as Map<number, number>,
+        threshold: thresholds[p] ?? 0,
+        worst,
+      };
+      const found = evaluate(operator, own, pass);
+      offDiagonal[p] = Math.max(offDiagonal[p] ?? 0, found.offDiagonal);
+      withinLeaves[p] = Math.max(withinLeaves[p] ?? 0, found.withinLeaves);
     });
   }
   worst.sort((a, b) => b.size - a.size || a.first - b.first || a.second - b.second);
@@ -232,21 +248,19 @@ function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput)
 }
 
 /**
- * Bound on ‖conj(Q) Qᵀ − 1‖_F from its computed elements. Each is a sum of at most m products, in error by at most
- * √2 γ_{m+2} ‖q_μ‖ ‖q_ν‖; elements that are not stored have no common ket and are exactly zero.
+ * Bound on ‖Q Q† − 1‖_F from its computed elements. Each is a sum of at most m products, in error by at most
+ * √2 γ_{m+2} ‖q_μ‖ ‖q_ν‖; two vectors with no common ket are exactly orthogonal.
  */
-export function gramDefect(gram: Csr, vectors: Csr): number {
+export function gramDefect(vectors: Csr): number {
   const error = Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * 1.01;
   let sum = 0;
-  for (let r = 0; r < gram.rows; r++) {
-    for (let p = gram.ptr[r] as number; p < (gram.ptr[r + 1] as number); p++) {
-      const x = (gram.re[p] as number) - (gram.col[p] === r ? 1 : 0);
-      const y = gram.im === undefined ? 0 : (gram.im[p] as number);
-      if (x === 0 && y === 0 && single(vectors, r) && single(vectors, gram.col[p] as number)) continue;
-      sum += (Math.sqrt(x * x + y * y) + error) ** 2;
-    }
-  }
-  return roundUp(Math.sqrt(sum), gram.re.length + 8);
+  forEachProduct(vectors, vectors, (r, c, re, im, common) => {
+    if (common === 0) return;
+    const x = re - (r === c ? 1 : 0);
+    if (x === 0 && im === 0 && single(vectors, r) && single(vectors, c)) return;
+    sum += (r === c ? 1 : 2) * (Math.sqrt(x * x + im * im) + error) ** 2;
+  });
+  return roundUp(Math.sqrt(sum), vectors.rows * vectors.rows + 8);
 }
 
 /** A row that is one ket with coefficient 1: its products are exact. */
@@ -255,60 +269,99 @@ function single(vectors: Csr, row: number): boolean {
   return (vectors.ptr[row + 1] as number) - p === 1 && vectors.re[p] === 1;
 }
 
-interface Pass {
-  readonly diagonal: Float64Array;
-  readonly error: number;
-  readonly offDiagonal: number;
-  readonly withinLeaves: number;
+/**
+ * Calls back with Σ_k conj(a_rk) b_ck for every r ≤ c, and whether the two rows share a ket.
+ *
+ * Each row of `b` is spread out once and every row of `a` gathered from it.
+ */
+function forEachProduct(
+  a: Csr,
+  b: Csr,
+  visit: (r: number, c: number, re: number, im: number, common: number) => void,
+): void {
+  const spreadRe = new Float64Array(b.cols);
+  const spreadIm = new Float64Array(b.cols);
+  const mark = new Int32Array(b.cols).fill(-1);
+  for (let c = 0; c < b.rows; c++) {
+    for (let q = b.ptr[c] as number; q < (b.ptr[c + 1] as number); q++) {
+      const k = b.col[q] as number;
+      mark[k] = c;
+      spreadRe[k] = b.re[q] as number;
+      spreadIm[k] = b.im === undefined ? 0 : (b.im[q] as number);
+    }
+    for (let r = 0; r <= c; r++) {
+      let re = 0;
+      let im = 0;
+      let common = 0;
+      const end = a.ptr[r + 1] as number;
+      for (let p = a.ptr[r] as number; p < end; p++) {
+        const k = a.col[p] as number;
+        if (mark[k] !== c) continue;
+        common++;
+        const x = a.re[p] as number;
+        const u = spreadRe[k] as number;
+        const v = spreadIm[k] as number;
+        if (a.im === undefined) {
+          re += x * u;
+          im += x * v;
+        } else {
+          const y = a.im[p] as number;
+          re += x * u + y * v;
+          im += x * v - y * u;
+        }
+      }
+      visit(r, c, re, im, common);
+    }
+  }
 }
 
-function evaluate(
-  { name, operator }: { readonly name: string; readonly operator: Operator },
-  bra: Csr,
-  vectors: Csr,
-  members: readonly number[],
-  states: readonly LevelState[],
-  direct: Map<number, number>,
-  threshold: number,
-  worst: PairElement[],
-): Pass {
-  const matrix = multiply(bra, transpose(images(vectors, operator)));
-  // one element: the image's error, and a sum of at most m products with ‖q‖ ‖Vq‖ as the scale
-  const error = roundUp(
-    (imageError(operator) + Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * operator.norm) * (1 + 2 ** -18),
-  );
-  const diagonal = new Float64Array(matrix.rows);
+/** One perturbation inside one part: where its elements go. */
+interface Pass {
+  readonly name: string;
+  /** The level's states in this part, in order. */
+  readonly members: readonly number[];
+  readonly states: readonly LevelState[];
+  readonly error: number;
+  readonly diagonal: Float64Array;
+  readonly largest: Map<number, number>;
+  readonly threshold: number;
+  readonly worst: PairElement[];
+}
+
+/** Bound on the error of one element: the image's error, and a sum of at most m products with ‖q‖ ‖Vq‖ as the scale. */
+function elementErrorBound(operator: Operator, vectors: Csr): number {
+  const sum = Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * operator.norm;
+  return roundUp((imageError(operator) + sum) * (1 + 2 ** -18));
+}
+
+function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: number; withinLeaves: number } {
+  const { name, members, states, error, diagonal, largest, threshold, worst } = pass;
   let sum = 0;
   let withinLeaves = 0;
   let floor = threshold;
-  for (let r = 0; r < matrix.rows; r++) {
-    for (let p = matrix.ptr[r] as number; p < (matrix.ptr[r + 1] as number); p++) {
-      const c = matrix.col[p] as number;
-      const x = matrix.re[p] as number;
-      if (c === r) {
-        diagonal[r] = x;
-        continue;
-      }
-      const y = matrix.im === undefined ? 0 : (matrix.im[p] as number);
-      const size = Math.sqrt(x * x + y * y);
-      sum += (size + error) ** 2;
-      if (c < r) continue;
-      const first = members[r] as number;
-      const second = members[c] as number;
-      const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
-      if (node === undefined) withinLeaves = Math.max(withinLeaves, size + error);
-      else if (size > (direct.get(node) ?? -1)) direct.set(node, size);
-      const atLeast = roundDown(size) - error;
-      if (atLeast <= floor) continue;
-      worst.push({ perturbation: name, first, second, re: x, im: y, size, atLeast, atMost: roundUp(size) + error });
-      if (worst.length > 64 * WORST_KEPT) {
-        worst.sort((a, b) => b.size - a.size);
-        worst.length = WORST_KEPT;
-        floor = Math.max(floor, (worst[WORST_KEPT - 1] as PairElement).atLeast);
-      }
+  forEachProduct(vectors, images(vectors, operator), (r, c, re, im, common) => {
+    const first = members[r] as number;
+    const second = members[c] as number;
+    if (r === c) {
+      diagonal[first] = re;
+      return;
     }
-  }
-  return { diagonal, error, offDiagonal: roundUp(Math.sqrt(sum), matrix.re.length + 8), withinLeaves };
+    if (common === 0) return;
+    const size = Math.sqrt(re * re + im * im);
+    sum += 2 * (size + error) ** 2;
+    const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
+    if (node === undefined) withinLeaves = Math.max(withinLeaves, size + error);
+    else if (size > (largest.get(node) ?? -1)) largest.set(node, size);
+    const atLeast = roundDown(size) - error;
+    if (atLeast <= floor) return;
+    worst.push({ perturbation: name, first, second, re, im, size, atLeast, atMost: roundUp(size) + error });
+    if (worst.length > 64 * WORST_KEPT) {
+      worst.sort((a, b) => b.size - a.size);
+      worst.length = WORST_KEPT;
+      floor = Math.max(floor, (worst[WORST_KEPT - 1] as PairElement).atLeast);
+    }
+  });
+  return { offDiagonal: roundUp(Math.sqrt(sum), members.length * members.length + 8), withinLeaves };
 }
 
 /** The node at which two states part company; undefined for two states of one leaf. */

@@ -94,7 +94,12 @@ export function findGoodBasis<K extends string = never, P extends string = strin
     case "good":
       return { ...study, verdict, basis: certifyBasis(study, internals) };
     case "not good":
-      return { ...study, verdict, questions, couplings: sortedCouplings(found.results.map((level) => level.couplings)) };
+      return {
+        ...study,
+        verdict,
+        questions,
+        couplings: sortedCouplings(found.results.map((level) => level.couplings)),
+      };
     case "undecided":
       return { ...study, verdict, questions };
     default:
@@ -119,13 +124,19 @@ export function overall(verdicts: readonly Verdict[]): Verdict {
 function checkOptions(options: FindOptions): StudySettings {
   const depth = options.depth ?? "full";
   if (!DEPTHS.includes(depth)) {
-    throw new GoodBasisError("option", `depth is ${JSON.stringify(depth)}; give ${DEPTHS.map((d) => `"${d}"`).join(", ")}`, {
-      depth,
-    });
+    throw new GoodBasisError(
+      "option",
+      `depth is ${JSON.stringify(depth)}; give ${DEPTHS.map((d) => `"${d}"`).join(", ")}`,
+      {
+        depth,
+      },
+    );
   }
   const { levelWidth } = options;
   if (levelWidth !== undefined && !(levelWidth >= 0 && Number.isFinite(levelWidth))) {
-    throw new GoodBasisError("option", `levelWidth is ${levelWidth}; give an energy that is not negative`, { levelWidth });
+    throw new GoodBasisError("option", `levelWidth is ${levelWidth}; give an energy that is not negative`, {
+      levelWidth,
+    });
   }
   return {
     levels: options.levels ?? "all",

@@ -19,7 +19,7 @@ class CertifiedBasis<K extends string = string> {
     if (key !== KEY) {
       throw new GoodBasisError(
         "not-certified",
-        "a good basis cannot be constructed; take outcome.basis from findGoodBasis when outcome.verdict is \"good\"",
+        'a good basis cannot be constructed; take outcome.basis from findGoodBasis when outcome.verdict is "good"',
       );
     }
     this.#study = study;

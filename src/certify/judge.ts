@@ -1,10 +1,10 @@
-import { FAR_BELOW } from "../audit/resolution.js";
 import type { PreparedProblem } from "../audit/problem.js";
+import { FAR_BELOW } from "../audit/resolution.js";
 import type { Depth, ResolvedLevel } from "../refine/resolve.js";
 import { energyTolerance, type Sector } from "../refine/sectors.js";
 import type { LevelCouplings } from "./couplings.js";
-import type { LevelGuard } from "./guard.js";
 import type { Question } from "./findings.js";
+import type { LevelGuard } from "./guard.js";
 import type { Verdict } from "./verdict.js";
 
 /** Everything that the verdict on one level rests on. */

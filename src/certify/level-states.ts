@@ -1,8 +1,8 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import { stackRows } from "../numerics/stack.js";
 import { maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
+import { stackRows } from "../numerics/stack.js";
 import { compositionRowError } from "../refine/descent.js";
 import type { Complex } from "../refine/eigenspaces.js";
 import { alignByLadders } from "../refine/ladder.js";
@@ -31,7 +31,12 @@ export interface LevelStates {
   readonly vectors: Csr;
   /** Bound on the distance of each vector from the exact combination of the kets that the tree describes. */
   readonly rowError: number;
+  /** The part of it that arose inside the level, after the sector's own vectors. */
+  readonly leafError: number;
 }
+
+/** Fixing a phase costs at most three rounded operations a component, twice. */
+const PHASE_ERROR = 8 * UNIT_ROUNDOFF;
 
 /**
  * Lists the states of a level and writes their vectors over the kets, with phases fixed.
@@ -48,6 +53,7 @@ export function levelStates(
   const states: LevelState[] = [];
   const stacks: Csr[] = [];
   let rowError = 0;
+  let leafError = 0;
   resolved.parts.forEach((part, place) => {
     const sector = sectors[part.sector] as Sector;
     const frame = part.indices.length === sector.frame.rows ? sector.frame : selectRows(sector.frame, part.indices);
@@ -60,16 +66,17 @@ export function levelStates(
       stacks.push(kept ? frame : multiply(leaf.rows, frame));
       const composed = kept ? 0 : compositionRowError(maxRowEntries(leaf.rows), frame);
       rowError = Math.max(rowError, sector.rowError + composed);
+      leafError = Math.max(leafError, composed);
     });
   });
   const order = states.map((_, k) => k).sort((a, b) => compare(problem, nodes, states[a], states[b]) || a - b);
   const stacked = fixPhases(selectRows(stackRows(stacks, problem.n), order));
   const sorted = order.map((k) => states[k] as LevelState);
-  // fixing a phase costs at most three rounded operations a component, twice
   return {
     states: sorted,
     vectors: alignByLadders(problem, sorted, stacked),
-    rowError: roundUp(rowError + (rowError === 0 ? 0 : 8 * UNIT_ROUNDOFF)),
+    rowError: rowError === 0 ? 0 : roundUp(rowError + PHASE_ERROR),
+    leafError: rowError === 0 ? 0 : roundUp(leafError + PHASE_ERROR),
   };
 }
 

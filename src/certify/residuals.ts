@@ -1,8 +1,8 @@
-import type { Complex } from "../refine/eigenspaces.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
+import type { Complex } from "../refine/eigenspaces.js";
 
 /** Rows (A q)ᵀ for vectors q stored as rows: Q Aᵀ. */
 export function images(vectors: Csr, operator: Operator): Csr {
@@ -41,43 +41,75 @@ export function residualBounds(rows: Csr, vectors: Csr, value: (row: number) => 
   const out = new Float64Array(vectors.rows);
   for (let r = 0; r < vectors.rows; r++) {
     const a = value(r);
-    const size = Math.abs(a.re) + Math.abs(a.im);
-    let p = rows.ptr[r] as number;
-    let q = vectors.ptr[r] as number;
-    const pEnd = rows.ptr[r + 1] as number;
-    const qEnd = vectors.ptr[r + 1] as number;
     let sum = 0;
-    while (p < pEnd || q < qEnd) {
-      const i = p < pEnd ? (rows.col[p] as number) : Number.POSITIVE_INFINITY;
-      const j = q < qEnd ? (vectors.col[q] as number) : Number.POSITIVE_INFINITY;
-      let x = 0;
-      let y = 0;
-      if (i <= j) {
-        x = rows.re[p] as number;
-        y = rows.im === undefined ? 0 : (rows.im[p] as number);
-        p++;
-      }
-      if (j <= i) {
-        const u = vectors.re[q] as number;
-        const v = vectors.im === undefined ? 0 : (vectors.im[q] as number);
-        x -= a.re * u - a.im * v;
-        y -= a.re * v + a.im * u;
-        q++;
-      }
+    let terms = 0;
+    forEachDifference(rows, vectors, r, a, (_, x, y) => {
       sum += x * x + y * y;
-    }
-    const terms = pEnd - (rows.ptr[r] as number) + qEnd - (vectors.ptr[r] as number);
+      terms++;
+    });
     // a q and the subtraction: at most 4 roundings of size |a||q_k| each, and one of the difference itself
-    out[r] = roundUp(Math.sqrt(sum) + error + 5 * UNIT_ROUNDOFF * size, terms + 8);
+    const rounding = 5 * UNIT_ROUNDOFF * (Math.abs(a.re) + Math.abs(a.im));
+    out[r] = roundUp(Math.sqrt(sum) + error + rounding, terms + 8);
   }
   return out;
 }
 
-/** Rayleigh quotients q†A q (real parts) of all rows, from their images. */
-export function rayleighQuotients(rows: Csr, vectors: Csr): Float64Array {
-  const out = new Float64Array(vectors.rows);
-  for (let r = 0; r < vectors.rows; r++) out[r] = rowProduct(vectors, r, rows, r).re;
-  return out;
+/** Norms of the computed residuals A q − a q of all rows together: a bound on the 2-norm by √(‖·‖₁‖·‖_∞), and Frobenius. */
+export function residualRows(rows: Csr, vectors: Csr, a: Complex): { norm: number; frobenius: number } {
+  const columns = new Map<number, number>();
+  let square = 0;
+  let largestRow = 0;
+  for (let r = 0; r < vectors.rows; r++) {
+    let row = 0;
+    forEachDifference(rows, vectors, r, a, (column, x, y) => {
+      if (x === 0 && y === 0) return;
+      const size = Math.sqrt(x * x + y * y);
+      square += size * size;
+      row += size;
+      columns.set(column, (columns.get(column) ?? 0) + size);
+    });
+    largestRow = Math.max(largestRow, row);
+  }
+  let largestColumn = 0;
+  for (const sum of columns.values()) largestColumn = Math.max(largestColumn, sum);
+  const operations = vectors.re.length + 8;
+  return {
+    norm: roundUp(Math.sqrt(largestRow * largestColumn), operations),
+    frobenius: roundUp(Math.sqrt(square), operations),
+  };
+}
+
+/** Calls back with every element of one row of `rows` − a · `vectors`. */
+function forEachDifference(
+  rows: Csr,
+  vectors: Csr,
+  row: number,
+  a: Complex,
+  visit: (column: number, x: number, y: number) => void,
+): void {
+  let p = rows.ptr[row] as number;
+  let q = vectors.ptr[row] as number;
+  const pEnd = rows.ptr[row + 1] as number;
+  const qEnd = vectors.ptr[row + 1] as number;
+  while (p < pEnd || q < qEnd) {
+    const i = p < pEnd ? (rows.col[p] as number) : Number.POSITIVE_INFINITY;
+    const j = q < qEnd ? (vectors.col[q] as number) : Number.POSITIVE_INFINITY;
+    let x = 0;
+    let y = 0;
+    if (i <= j) {
+      x = rows.re[p] as number;
+      y = rows.im === undefined ? 0 : (rows.im[p] as number);
+      p++;
+    }
+    if (j <= i) {
+      const u = vectors.re[q] as number;
+      const v = vectors.im === undefined ? 0 : (vectors.im[q] as number);
+      x -= a.re * u - a.im * v;
+      y -= a.re * v + a.im * u;
+      q++;
+    }
+    visit(Math.min(i, j), x, y);
+  }
 }
 
 /** Σ_k conj(a_k) b_k over one row of each. */

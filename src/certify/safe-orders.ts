@@ -1,5 +1,5 @@
-import type { LevelState } from "./level-states.js";
 import type { NodeEvidence } from "./couplings.js";
+import type { LevelState } from "./level-states.js";
 
 /**
  * Through which order the short non-degenerate formulas give the right number for a state.

@@ -2,11 +2,14 @@ import type { Audit } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
+import { roundUp } from "../numerics/rounding.js";
+import { selectRows } from "../numerics/sparse.js";
 import type { Complex } from "../refine/eigenspaces.js";
-import { labelFamily, sharpLabel, type StateLabel, vagueLabel } from "../refine/label.js";
+import { labelFamily, type StateLabel, sharpLabel, vagueLabel } from "../refine/label.js";
 import type { TreeNode } from "../refine/tree.js";
-import type { LevelStates } from "./level-states.js";
+import type { LevelState, LevelStates } from "./level-states.js";
 import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import type { SectorEvidence } from "./whole.js";
 
 /** A candidate's number in one state, before it is named. */
 export interface LabelNumber {
@@ -17,8 +20,49 @@ export interface LabelNumber {
   readonly onPath: boolean;
 }
 
-/** The numbers of one candidate in every state of a level. */
-export function labelNumbers(candidate: PreparedCandidate, place: number, { states, vectors }: LevelStates): LabelNumber[] {
+/**
+ * The numbers of one candidate in every state of a level.
+ *
+ * Where the state's sector carries the label, its value and the sector's residual bound; elsewhere the expectation value and
+ * the residual of the state itself.
+ *
+ * @param sectorOf - the sector of each of the level's parts
+ */
+export function labelNumbers(
+  candidate: PreparedCandidate,
+  place: number,
+  { states, vectors, rowError }: LevelStates,
+  sectorOf: (part: number) => SectorEvidence | undefined,
+): LabelNumber[] {
+  const { operator } = candidate;
+  const composed = 2 * (operator.norm + operator.error) * rowError;
+  const numbers = states.map((state): LabelNumber | undefined => {
+    const own = state.labels.find((label) => label.candidate === place);
+    const residual = sectorOf(state.part)?.labelResiduals.get(place);
+    if (own === undefined || residual === undefined) return undefined;
+    return { value: own.value, radius: roundUp(residual + composed), onPath: true };
+  });
+  const open = numbers.flatMap((number, k) => (number === undefined ? [k] : []));
+  if (open.length > 0) {
+    const rest = measure(
+      candidate,
+      place,
+      open.map((k) => states[k] as LevelState),
+      selectRows(vectors, open),
+    );
+    open.forEach((k, r) => {
+      numbers[k] = rest[r];
+    });
+  }
+  return numbers as LabelNumber[];
+}
+
+function measure(
+  candidate: PreparedCandidate,
+  place: number,
+  states: readonly LevelState[],
+  vectors: Csr,
+): LabelNumber[] {
   const rows = images(vectors, candidate.operator);
   const values = states.map((state, k): { value: Complex; onPath: boolean } => {
     const own = state.labels.find((label) => label.candidate === place);

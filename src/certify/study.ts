@@ -3,21 +3,21 @@ import type { PreparedProblem } from "../audit/problem.js";
 import { roundUp } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
-import { type Depth, type ResolvedLevel, resolveLevel } from "../refine/resolve.js";
-import { buildSectors, energyTolerance, type Sectors } from "../refine/sectors.js";
+import { type Depth, type Leaf, type ResolvedLevel, type ResolvedPart, resolveLevel } from "../refine/resolve.js";
+import { buildSectors, energyTolerance, type Sector, type Sectors } from "../refine/sectors.js";
 import { TreeBuilder, type TreeNode } from "../refine/tree.js";
 import { type Backbone, chooseBackbone } from "./backbone.js";
 import { type LevelCouplings, levelCouplings, type NodeEvidence } from "./couplings.js";
 import { describeState } from "./describe.js";
+import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
 import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
-import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
-import type { Shift } from "./verdict.js";
-import { imageError, images, rayleighQuotients, residualBounds, rootSumSquares } from "./residuals.js";
+import { rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
-import { type WholeEvidence, wholeEvidence } from "./whole.js";
+import type { Shift } from "./verdict.js";
+import { type SectorEvidence, type WholeEvidence, wholeEvidence } from "./whole.js";
 
 /** A step of the work, for a progress display. */
 export interface Progress {
@@ -70,7 +70,9 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
     report("levels", index, levels.studied.length);
     const refined = resolveLevel(problem, sectors.sectors, levels, level, backbone.others, settings.depth, tree);
     resolved.push(refined);
-    drafts.push(proveLevel({ problem, settings, audit, sectors, levels, whole, guard, nodes: tree.nodes }, refined, index));
+    drafts.push(
+      proveLevel({ problem, settings, audit, sectors, levels, whole, guard, nodes: tree.nodes }, refined, index),
+    );
   });
   report("levels", levels.studied.length, levels.studied.length);
   const { results, states } = nameAll(problem, audit, tree.nodes, drafts);
@@ -118,13 +120,10 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
   const { problem, settings, audit, sectors, levels, whole, guard, nodes } = given;
   const { level } = resolved;
   const found = levelStates(problem, resolved, sectors.sectors, nodes);
-  const { vectors } = found;
-  const energyImages = images(vectors, problem.h0);
-  const energies = rayleighQuotients(energyImages, vectors);
-  const error = imageError(problem.h0);
-  const residuals = residualBounds(energyImages, vectors, (k) => ({ re: energies[k] as number, im: 0 }), error);
+  const { energies, residuals } = stateEnergies(resolved, found, sectors, whole, problem);
   const residual = residuals.reduce((most, x) => Math.max(most, x), 0);
-  const numbers = problem.candidates.map((candidate, place) => labelNumbers(candidate, place, found));
+  const sectorOf = (part: number): SectorEvidence | undefined => whole.sectors[resolved.parts[part]?.sector ?? -1];
+  const numbers = problem.candidates.map((candidate, place) => labelNumbers(candidate, place, found, sectorOf));
   const thresholds = problem.perturbations.map(({ operator }) => settings.resolution * operator.norm);
   const couplings = levelCouplings({
     problem,
@@ -200,6 +199,48 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
       evidence: couplings,
     },
   };
+}
+
+/**
+ * Energies of a level's states and bounds on ‖H0 q − E q‖, from those of the sector's vectors they are made of: for
+ * q = Σ u_i f_i with E = Σ|u_i|²E_i, the residual is at most √(Σ‖r_i‖²) + √(Σ|u_i|²(E_i − E)²), and rounding.
+ */
+function stateEnergies(
+  resolved: ResolvedLevel,
+  found: LevelStates,
+  { sectors }: Sectors,
+  whole: WholeEvidence,
+  { h0 }: PreparedProblem,
+): { energies: Float64Array; residuals: Float64Array } {
+  const energies = new Float64Array(found.states.length);
+  const residuals = new Float64Array(found.states.length);
+  const composed = 2 * (h0.norm + h0.error) * found.leafError;
+  found.states.forEach((state, k) => {
+    const part = resolved.parts[state.part] as ResolvedPart;
+    const rows = (part.leaves[state.leaf] as Leaf).rows;
+    const sector = sectors[part.sector] as Sector;
+    const own = whole.sectors[part.sector] as SectorEvidence;
+    const from = rows.ptr[state.row] as number;
+    const to = rows.ptr[state.row + 1] as number;
+    const energyAt = (p: number): number => sector.energies[part.indices[rows.col[p] as number] as number] as number;
+    const weightAt = (p: number): number =>
+      (rows.re[p] as number) ** 2 + (rows.im === undefined ? 0 : (rows.im[p] as number) ** 2);
+    const first = energyAt(from);
+    let excess = 0;
+    let square = 0;
+    for (let p = from; p < to; p++) {
+      excess += weightAt(p) * (energyAt(p) - first);
+      square += (own.energyResiduals[part.indices[rows.col[p] as number] as number] as number) ** 2;
+    }
+    let spread = 0;
+    for (let p = from; p < to; p++) spread += weightAt(p) * (energyAt(p) - first - excess) ** 2;
+    energies[k] = first + excess;
+    residuals[k] = roundUp(
+      (Math.sqrt(square) + Math.sqrt(spread)) * (1 + whole.orthonormality) + composed,
+      2 * (to - from) + 16,
+    );
+  });
+  return { energies, residuals };
 }
 
 /**

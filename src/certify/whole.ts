@@ -1,11 +1,11 @@
 import type { Audit, CandidateFinding } from "../audit/audit.js";
 import type { CommutatorFinding } from "../audit/commutators.js";
-import type { PreparedProblem } from "../audit/problem.js";
-import { roundUp } from "../numerics/rounding.js";
+import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { Complex } from "../refine/eigenspaces.js";
-import type { BlockLabel, Sector, Sectors } from "../refine/sectors.js";
+import type { Sector, Sectors } from "../refine/sectors.js";
 import type { TreeNode } from "../refine/tree.js";
-import { adjointImages, imageError, images, residualBounds, rootSumSquares } from "./residuals.js";
+import { adjointImages, imageError, images, residualBounds, residualRows, rootSumSquares } from "./residuals.js";
 
 /** How sharply one candidate labels the whole basis. */
 export interface SeparatorEvidence {
@@ -35,6 +35,15 @@ export interface WholeEvidence {
   readonly energyEnclosure: number;
   readonly separators: readonly SeparatorEvidence[];
   readonly nearby: NearbyModel;
+  readonly sectors: readonly SectorEvidence[];
+}
+
+/** What holds for the vectors of one sector. */
+export interface SectorEvidence {
+  /** Bounds on ‖H0 q − E q‖ of its vectors. */
+  readonly energyResiduals: Float64Array;
+  /** For each candidate that labels it: bound on ‖A q − a q‖ and ‖A†q − a*q‖ for every unit vector of the sector. */
+  readonly labelResiduals: ReadonlyMap<number, number>;
 }
 
 /**
@@ -54,52 +63,71 @@ export function wholeEvidence(
   nodes: readonly TreeNode[],
 ): WholeEvidence {
   const { h0 } = problem;
-  const residuals: number[] = [];
   const error = imageError(h0);
-  for (const sector of sectors.sectors) {
-    const { energies, frame } = sector;
-    const bounds = residualBounds(images(frame, h0), frame, (row) => ({ re: energies[row] as number, im: 0 }), error);
-    residuals.push(rootSumSquares(bounds));
-  }
-  const energyResidual = rootSumSquares(Float64Array.from(residuals));
   const epsilon = sectors.defect;
-  const separators = separatorEvidence(problem, sectors.sectors, nodes);
+  const labels = problem.candidates.map((candidate) => labelJudge(candidate, epsilon));
+  const frobenius = problem.candidates.map((): number[] => []);
+  const evidence = sectors.sectors.map((sector): SectorEvidence => {
+    const { energies, frame } = sector;
+    const energy = (row: number): Complex => ({ re: energies[row] as number, im: 0 });
+    const labelResiduals = new Map<number, number>();
+    for (const { candidate, value } of sector.labels) {
+      const bound = labels[candidate]?.(sector, value);
+      if (bound === undefined) continue;
+      labelResiduals.set(candidate, bound.norm);
+      frobenius[candidate]?.push(bound.frobenius);
+    }
+    return { energyResiduals: residualBounds(images(frame, h0), frame, energy, error), labelResiduals };
+  });
+  const energyResidual = rootSumSquares(
+    Float64Array.from(evidence, ({ energyResiduals }) => rootSumSquares(energyResiduals)),
+  );
+  const separators = problem.candidates.flatMap((candidate, place): SeparatorEvidence[] => {
+    const own = frobenius[place] ?? [];
+    if (own.length === 0) return [];
+    const gaps = nodes.flatMap((node) =>
+      node.kind === "label" && node.operator === candidate.name ? [smallestGap(node.values)] : [],
+    );
+    return [{ candidate: place, gap: Math.min(...gaps), residual: rootSumSquares(Float64Array.from(own)) }];
+  });
   return {
     orthonormality: epsilon,
     energyResidual,
     energyEnclosure: roundUp(energyResidual * (1 + epsilon) + 2 * h0.norm * epsilon + h0.error),
     separators,
     nearby: nearbyModel(problem, audit, separators, epsilon),
+    sectors: evidence,
   };
 }
 
-function separatorEvidence(
-  problem: PreparedProblem,
-  sectors: readonly Sector[],
-  nodes: readonly TreeNode[],
-): SeparatorEvidence[] {
-  return problem.candidates.flatMap((candidate, place) => {
-    const used = sectors.filter((sector) => sector.labels.some((label) => label.candidate === place));
-    if (used.length === 0) return [];
-    const gap = Math.min(
-      ...nodes
-        .filter((node) => node.kind === "label" && node.operator === candidate.name)
-        .map((node) => smallestGap(node.values)),
-    );
-    const error = imageError(candidate.operator);
-    const squares = used.map((sector) => {
-      const { value } = sector.labels.find((label) => label.candidate === place) as BlockLabel;
-      const direct = residualBounds(images(sector.frame, candidate.operator), sector.frame, () => value, error);
-      if (candidate.kind === "hermitian") return rootSumSquares(direct);
-      const conjugated = { re: value.re, im: -value.im };
-      const adjoint = adjointImages(sector.frame, candidate.operator);
-      return Math.max(
-        rootSumSquares(direct),
-        rootSumSquares(residualBounds(adjoint, sector.frame, () => conjugated, error)),
-      );
-    });
-    return [{ candidate: place, gap, residual: rootSumSquares(Float64Array.from(squares)) }];
-  });
+/**
+ * Residual bounds of one candidate over whole sectors, taken on the vectors before H0 was diagonalised: a unit combination of
+ * them has a residual of at most the norm of all their residuals together, and the rounding of the combination adds at most
+ * 2‖A‖ times its size.
+ */
+function labelJudge(
+  candidate: PreparedCandidate,
+  epsilon: number,
+): (sector: Sector, value: Complex) => { norm: number; frobenius: number } {
+  const { operator, kind } = candidate;
+  const error = imageError(operator);
+  return (sector, value) => {
+    const frame = sector.labelFrame;
+    const sides = [residualRows(images(frame, operator), frame, value)];
+    if (kind !== "hermitian") {
+      sides.push(residualRows(adjointImages(frame, operator), frame, { re: value.re, im: -value.im }));
+    }
+    const size = Math.sqrt(frame.rows);
+    // the rows' rounding errors together: at most √d times one row's
+    const rounding = size * (error + 5 * UNIT_ROUNDOFF * (Math.abs(value.re) + Math.abs(value.im)));
+    const composed = 2 * (operator.norm + operator.error) * sector.rowError;
+    const norm = Math.max(...sides.map((side) => side.norm));
+    const frobenius = Math.max(...sides.map((side) => side.frobenius));
+    return {
+      norm: roundUp((Math.min(norm, frobenius) + rounding) * (1 + epsilon) + composed, 32),
+      frobenius: roundUp((frobenius + rounding) * (1 + epsilon) + size * composed, 32),
+    };
+  };
 }
 
 /** Smallest distance between two of the given eigenvalues; Infinity for fewer than two. */

@@ -166,7 +166,8 @@ function keepColumns(rows: Csr, keep: (column: number) => boolean): Csr {
   const ptr = new Int32Array(rows.rows + 1);
   const kept: number[] = [];
   for (let r = 0; r < rows.rows; r++) {
-    for (let p = rows.ptr[r] as number; p < (rows.ptr[r + 1] as number); p++) if (keep(rows.col[p] as number)) kept.push(p);
+    for (let p = rows.ptr[r] as number; p < (rows.ptr[r + 1] as number); p++)
+      if (keep(rows.col[p] as number)) kept.push(p);
     ptr[r + 1] = kept.length;
   }
   const { im } = rows;

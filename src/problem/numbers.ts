@@ -7,9 +7,7 @@ export type FileNumber = number | readonly [re: number, im: number] | string;
 const REAL = "(?:\\d+\\.?\\d*|\\.\\d+)(?:[eE][+-]?\\d+)?";
 
 /** What a number as text looks like, for the JSON Schema. */
-export const COMPLEX_TEXT: RegExp = new RegExp(
-  `^(?:[+-]?${REAL}|(?:[+-]?${REAL}(?=[+-]))?[+-]?(?:${REAL})?i)$`,
-);
+export const COMPLEX_TEXT: RegExp = new RegExp(`^(?:[+-]?${REAL}|(?:[+-]?${REAL}(?=[+-]))?[+-]?(?:${REAL})?i)$`);
 const PARTS = new RegExp(`^([+-]?${REAL}(?=[+-]|$))?(?:([+-]?)(${REAL})?i)?$`);
 
 const FORM = 'a finite number, [re, im] or text such as "1+2i"';

@@ -1,192 +1,170 @@
 import * as v from "valibot";
-import { COMPLEX_TEXT, type FileNumber } from "./numbers.js";
+import type { LabelDeclaration } from "../audit/label-family.js";
+import { anyMatrix, type MatrixSchemas, matrixSchemas } from "./matrix-schema.js";
 import { fileError, inside, type Place, showValue } from "./place.js";
-
-/** Version of the problem file format that this library reads and writes. */
-export const PROBLEM_FORMAT_VERSION = 1;
-
-const HELP = "the format is described by goodbasis/problem-schema.json";
-
-/** An object without other fields than these. */
-function closed<const T extends v.ObjectEntries>(entries: T): v.StrictObjectSchema<T, (issue: v.StrictObjectIssue) => string> {
-  const known = Object.keys(entries).join(", ");
-  return v.strictObject(entries, (issue) => (issue.expected === "never" ? `one of the fields ${known}` : ""));
-}
-
-const count = v.pipe(v.number(), v.safeInteger(), v.minValue(1));
-const index = v.pipe(v.number(), v.safeInteger(), v.minValue(0));
-const finite = v.pipe(v.number(), v.finite());
-const positive = v.pipe(v.number(), v.finite(), v.gtValue(0));
-const notNegative = v.pipe(v.number(), v.finite(), v.minValue(0));
-const someText = v.pipe(v.string(), v.minLength(1));
-const factorName = v.pipe(
-  v.string(),
-  v.regex(/^[\p{L}_][\p{L}\p{N}_]*$/u, "a name of letters, digits and _"),
-  v.description("How terms name the factor: letters, digits and _."),
-);
-const fileNumber = v.pipe(
-  v.union([
-    v.number(),
-    v.tuple([v.number(), v.number()]),
-    v.pipe(v.string(), v.regex(COMPLEX_TEXT)),
-  ]),
-  v.description('A real number, [re, im], or text such as "1+2i".'),
-);
-const bond = v.pipe(v.tuple([index, index]), v.description("Two sites, counted from 0."));
-
-const factorForms = [
-  v.pipe(
-    closed({
-      name: factorName,
-      spin: v.pipe(
-        v.union([v.number(), v.string()]),
-        v.description('The angular momentum: 1, 0.5, "1/2", "3/2". Operators: x, y, z, plus, minus, squared.'),
-      ),
-      count: v.exactOptional(v.pipe(count, v.description("Number of equal sites, named spin[0], spin[1], …"))),
-      kets: v.exactOptional(v.pipe(v.array(someText), v.description("Names of the kets of one site, m descending."))),
-    }),
-    v.title("angular momentum"),
-  ),
-  v.pipe(
-    closed({
-      name: factorName,
-      oscillator: v.pipe(
-        count,
-        v.description("Number of kets |0⟩, |1⟩, … Operators: a, adagger, number, x, p, parity, and exact powers x^k."),
-      ),
-      count: v.exactOptional(count),
-      kets: v.exactOptional(v.array(someText)),
-    }),
-    v.title("oscillator"),
-  ),
-  v.pipe(
-    closed({
-      name: factorName,
-      dimension: v.pipe(count, v.description("Number of kets. Operators: |a><b| by the names of its kets.")),
-      count: v.exactOptional(count),
-      kets: v.exactOptional(v.array(someText)),
-    }),
-    v.title("any finite space"),
-  ),
-];
-const factorKeys = ["spin", "oscillator", "dimension"];
-
-const uncertainty = v.pipe(
-  v.union([
-    v.literal("exact"),
-    closed({ relative: v.exactOptional(notNegative), absolute: v.exactOptional(notNegative) }),
-  ]),
-  v.description(
-    "How well the entries are known: exact, or every stored entry to within relative · |entry| + absolute. When not given, " +
-      "half a unit in the last place of each.",
-  ),
-);
-const on = v.pipe(
+import type { CandidateFile, FactorFile, MatrixForms, ProblemOptions, ProblemOutline } from "./problem-file.js";
+import {
+  about,
+  anyList,
+  closed,
+  finite,
+  namedThings,
+  notNegative,
+  positive,
+  positiveWhole,
+  type Shape,
   someText,
-  v.description('The factor that the matrix acts on ("L", "ring", "ring[2]"); the whole space when not given.'),
+} from "./schema-parts.js";
+
+const whole = (most: number): Shape<number> =>
+  v.pipe(
+    v.number(`a whole number from 1 to ${most}`),
+    v.integer(`a whole number from 1 to ${most}`),
+    v.minValue(1, `a whole number from 1 to ${most}`),
+    v.maxValue(most, `a whole number from 1 to ${most}`),
+  );
+
+const label: Shape<LabelDeclaration> = v.pipe(
+  v.union(
+    [
+      v.picklist(["j", "m", "parity", "number"]),
+      closed({ root: whole(1_000_000) }),
+      closed({ rational: whole(1_000_000) }),
+    ],
+    '"j", "m", "parity", "number", { "root": N } or { "rational": Q }',
+  ),
+  v.description("The discrete family of the eigenvalues: j(j + 1), m, ±1, e^{2πik/N}, fractions, or any number."),
 );
 
-const operatorNames = v.pipe(
-  v.array(someText),
-  v.description('Operators by name, applied from the right: "L.x", "ring[3].z", "x.x^4", "atom.|e><g|", or a defined one.'),
-);
-
-const term = v.pipe(
-  closed({
-    coefficient: v.exactOptional(fileNumber),
-    product: v.exactOptional(operatorNames),
-    dot: v.exactOptional(
-      v.pipe(
-        v.tuple([someText, someText]),
-        v.description('The scalar product of two angular momenta, each a factor or a sum: ["L", "S"], ["L + S", "L + S"].'),
-      ),
+const options: Shape<ProblemOptions> = closed({
+  levels: v.exactOptional(
+    v.union(
+      [
+        v.literal("all"),
+        closed({ lowest: positiveWhole }),
+        closed({ nearest: finite, count: v.exactOptional(positiveWhole) }),
+        closed({ from: finite, to: finite }),
+      ],
+      '"all", { "lowest": k }, { "nearest": energy, "count": k } or { "from": energy, "to": energy }',
     ),
-    bonds: v.exactOptional(
-      v.pipe(
-        v.array(bond),
-        v.description('Repeats the term for every pair [i, j]; "ring[i].z" and "ring[j].z" stand for its two sites.'),
-      ),
+  ),
+  depth: v.exactOptional(
+    v.picklist(["labels", "first order", "second order", "full"], '"labels", "first order", "second order" or "full"'),
+  ),
+  resolution: v.exactOptional(about(positive, "An in-level element counts as vanished below this fraction of ‖V‖.")),
+  lambda: v.exactOptional(about(positive, "The largest λ at which the basis is to be used.")),
+  refuseAbove: v.exactOptional(positive),
+  levelWidth: v.exactOptional(about(notNegative, "Energies up to this far apart are one level.")),
+});
+
+const factorShared = {
+  name: about(
+    v.pipe(
+      v.string("the name of a factor"),
+      v.regex(/^[\p{L}_][\p{L}\p{N}_]*$/u, "a name of letters, digits and _ that begins with a letter"),
+    ),
+    "How terms name the factor.",
+  ),
+  count: v.exactOptional(about(positiveWhole, 'Number of equal sites, named "ring[0]", "ring[1]", …')),
+  kets: v.exactOptional(about(v.array(someText), "Names of the kets of one site.")),
+};
+
+/** The schema of every kind of factor, by the key that tells them apart. */
+export const factorSchemas: {
+  readonly spin: Shape<FactorFile>;
+  readonly oscillator: Shape<FactorFile>;
+  readonly dimension: Shape<FactorFile>;
+} = {
+  spin: closed({
+    ...factorShared,
+    spin: about(
+      v.union([v.number(), v.string()], 'an angular momentum such as 1, 0.5 or "3/2"'),
+      'The angular momentum: 1, 0.5, "3/2"; kets by descending m. Operators x, y, z, plus, minus, squared.',
     ),
   }),
-  v.description("coefficient (1 when not given) times a product of operators or a scalar product; exactly one of the two."),
+  oscillator: closed({
+    ...factorShared,
+    oscillator: about(
+      positiveWhole,
+      "Number of kets |0⟩, |1⟩, … Operators a, adagger, number, x, p, parity; powers x^k are those of the whole oscillator.",
+    ),
+  }),
+  dimension: closed({
+    ...factorShared,
+    dimension: about(positiveWhole, "Number of kets. Operators |a><b|, a and b names of kets (any factor has these)."),
+  }),
+};
+
+/** The forms of a matrix, long lists not looked into. */
+export const formSchemas: MatrixSchemas = matrixSchemas(false);
+
+/** The names of the forms. */
+export const FORMS: readonly (keyof MatrixForms)[] = Object.keys(formSchemas) as (keyof MatrixForms)[];
+
+/** A candidate with a declaration. */
+export const candidateSchema: Shape<CandidateFile> = candidateOf(v.unknown());
+
+function candidateOf<T>(matrix: Shape<T>): Shape<CandidateFile> {
+  return closed({
+    operator: matrix,
+    label: v.exactOptional(label),
+    ladder: v.exactOptional(about(matrix, "An operator that raises the label by one step; it fixes relative phases.")),
+  });
+}
+
+/**
+ * The whole problem file.
+ *
+ * @param checked - whether to look into factors, matrices and candidates too
+ */
+function problemOf(checked: boolean): Shape<ProblemOutline> {
+  const factors: Shape<unknown[]> = checked ? v.array(v.union(Object.values(factorSchemas))) : anyList;
+  const matrix: Shape<unknown> = checked ? anyMatrix : v.unknown();
+  const named = (item: Shape<unknown>): Shape<Record<string, unknown>> =>
+    checked ? v.record(v.string(), item) : namedThings;
+  return closed({
+    $schema: v.exactOptional(v.string()),
+    format: v.literal("goodbasis-problem", '"goodbasis-problem"'),
+    formatVersion: v.literal(1, "1, the only version there is"),
+    title: v.exactOptional(v.string("text")),
+    invented: v.exactOptional(
+      about(v.boolean("true or false"), "Whether the numbers are made up, not measured or computed."),
+    ),
+    note: v.exactOptional(v.string("text")),
+    unit: v.exactOptional(about(v.string("text"), "Unit of all energies, for display.")),
+    n: v.exactOptional(about(positiveWhole, "Number of kets, where neither space nor kets tell it.")),
+    space: v.exactOptional(about(factors, "The factors of the space; the first is the slowest index.")),
+    kets: v.exactOptional(
+      about(v.array(someText, "a list of names"), "Names of the kets; made from the factors when not given."),
+    ),
+    define: v.exactOptional(about(named(matrix), "Operators by name, for use in those that follow.")),
+    h0: matrix,
+    v: checked ? v.union([anyMatrix, v.record(v.string(), anyMatrix)]) : v.unknown(),
+    candidates: v.exactOptional(named(checked ? v.union([anyMatrix, candidateOf(anyMatrix)]) : v.unknown())),
+    options: v.exactOptional(options),
+  });
+}
+
+/** The outline of a problem file. */
+export const outlineSchema: Shape<ProblemOutline> = problemOf(false);
+
+/** Every detail of a problem file: what the published JSON Schema is made from. */
+export const problemSchema: Shape<ProblemOutline> = v.pipe(
+  problemOf(true),
+  v.title("goodbasis problem file"),
+  v.description("H0, one perturbation or several, and candidate conserved operators."),
 );
 
 /**
- * All forms of a matrix by the key that tells them apart. With `checked` false long lists are taken as they are: plain loops
- * read them.
+ * Checks a value against a schema.
+ *
+ * @throws GoodBasisError `file` - with the place of the first fault
  */
-function matrixForms(checked: boolean) {
-  const list = <T>(item: v.GenericSchema<T>) => (checked ? v.array(item) : v.custom<T[]>(Array.isArray));
-  const shared = { on: v.exactOptional(on), uncertainty: v.exactOptional(uncertainty) };
-  return {
-    rows: closed({ rows: list(v.array(fileNumber)), ...shared }),
-    triplets: closed({
-      triplets: v.pipe(
-        list(v.union([v.tuple([index, index, v.number()]), v.tuple([index, index, v.number(), v.number()])])),
-        v.description("[row, column, re] or [row, column, re, im], counted from 0; repeated places are summed."),
-      ),
-      n: v.exactOptional(v.pipe(count, v.description("Number of kets, where nothing else tells it."))),
-      radii: v.exactOptional(
-        v.pipe(list(notNegative), v.description("A bound on the error of each triplet; places must not repeat.")),
-      ),
-      ...shared,
-    }),
-    diagonal: closed({ diagonal: list(fileNumber), ...shared }),
-    permutation: closed({
-      permutation: v.pipe(list(index), v.description("Ket j goes to ket permutation[j], times phases[j].")),
-      phases: v.exactOptional(list(fileNumber)),
-      ...shared,
-    }),
-    matrixMarket: closed({
-      matrixMarket: v.pipe(someText, v.description("A Matrix Market file, beside the problem file.")),
-      ...shared,
-    }),
-    terms: closed({ terms: v.array(term), uncertainty: v.exactOptional(uncertainty) }),
-    hopping: closed({
-      hopping: v.pipe(v.array(bond), v.description("Σ t |i⟩⟨j| + t* |j⟩⟨i| over these bonds.")),
-      amplitude: v.exactOptional(v.pipe(fileNumber, v.description("t for every bond; 1 when not given."))),
-      amplitudes: v.exactOptional(v.pipe(v.array(fileNumber), v.description("t for each bond."))),
-      ...shared,
-    }),
-    translation: closed({
-      translation: v.pipe(someText, v.description("The content of site s of this factor moves to site s + 1.")),
-    }),
-    reflection: closed({
-      reflection: v.pipe(someText, v.description("The content of site s of this factor moves to site centre − s.")),
-      centre: v.exactOptional(index),
-    }),
-    sitePermutation: closed({
-      sitePermutation: v.pipe(v.array(index), v.description("The content of site s moves to site sitePermutation[s].")),
-      on: on,
-    }),
-    exchange: closed({
-      exchange: v.pipe(
-        v.tuple([someText, someText]),
-        v.description('Exchanges two equal factors or sites: ["x", "y"], ["ring[0]", "ring[3]"].'),
-      ),
-    }),
-  };
+export function conform<T>(schema: Shape<T>, place: Place, value: unknown): T {
+  const result = v.safeParse(schema, value, { abortEarly: true, abortPipeEarly: true });
+  if (result.success) return result.output;
+  const [issue] = result.issues;
+  const keys = (issue.path ?? []).map(({ key }) => (typeof key === "number" ? key : String(key)));
+  const next = "goodbasis/problem-schema.json describes the format";
+  throw fileError(inside(place, ...keys), issue.message, showValue(issue.input), next);
 }
-
-const checkedForms = matrixForms(true);
-const quickForms = matrixForms(false);
-
-/** A matrix as an object, by form. */
-export type MatrixObject = {
-  readonly [K in keyof typeof FORM_NAMES]: { readonly form: K } & FormFields[K];
-}[keyof typeof FORM_NAMES];
-
-/** The form keys, in the order in which messages list them. */
-export const FORM_NAMES = {
-  rows: true,
-  triplets: true,
-  diagonal: true,
-  permutation: true,
-  matrixMarket: true,
-  terms: true,
-  hopping: true,
-  translation: true,
-  reflection: true,
-  sitePermutation: true,
-  exchange: true,
-} as const;

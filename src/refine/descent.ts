@@ -1,6 +1,15 @@
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
-import { conjugate, frobenius, maxRowEntries, multiply, norm1, normInf, submatrix, transpose } from "../numerics/sparse.js";
+import {
+  conjugate,
+  frobenius,
+  maxRowEntries,
+  multiply,
+  norm1,
+  normInf,
+  submatrix,
+  transpose,
+} from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import type { Operator } from "../operator/operator.js";
 import type { Eigenspace } from "./eigenspaces.js";
@@ -60,7 +69,10 @@ export function rotateAll(step: DescentStep, operator: Csr): Carried {
     at += space.rows.rows;
   }
   bounds.push(at);
-  return { children: spaces.map((_, c) => diagonalBlock(all, bounds[c] ?? 0, bounds[c + 1] ?? at)), crossing: crossingNorm(all, bounds) };
+  return {
+    children: spaces.map((_, c) => diagonalBlock(all, bounds[c] ?? 0, bounds[c + 1] ?? at)),
+    crossing: crossingNorm(all, bounds),
+  };
 }
 
 /** Rows and columns from .. to − 1. */

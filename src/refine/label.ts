@@ -1,9 +1,4 @@
-import {
-  type FamilyMember,
-  type LabelDeclaration,
-  onlyMember,
-  recogniseFamily,
-} from "../audit/label-family.js";
+import { type FamilyMember, type LabelDeclaration, onlyMember, recogniseFamily } from "../audit/label-family.js";
 import type { Complex } from "./eigenspaces.js";
 
 /**
@@ -52,12 +47,7 @@ export function labelFamily(
 }
 
 /** Names an eigenvalue known to lie within `radius` of `value`. */
-export function sharpLabel(
-  family: LabelFamily,
-  value: Complex,
-  radius: number,
-  role: StateLabel["role"],
-): StateLabel {
+export function sharpLabel(family: LabelFamily, value: Complex, radius: number, role: StateLabel["role"]): StateLabel {
   const member: FamilyMember | undefined =
     family.family === undefined ? undefined : onlyMember(family.family, value, radius);
   if (member === undefined) {

@@ -1,7 +1,7 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
-import type { BlockLabel } from "./sectors.js";
 import { turnRow } from "./phase.js";
+import type { BlockLabel } from "./sectors.js";
 
 /** What the alignment needs to know of a state. */
 interface Laddered {

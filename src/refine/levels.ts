@@ -100,7 +100,12 @@ export function formLevels(sectors: readonly Sector[], width: number, choice: Le
   return { count: low.length, of, energies, studied };
 }
 
-function choose(choice: LevelChoice, energies: Float64Array, low: readonly number[], high: readonly number[]): number[] {
+function choose(
+  choice: LevelChoice,
+  energies: Float64Array,
+  low: readonly number[],
+  high: readonly number[],
+): number[] {
   const all = Array.from(energies, (_, place) => place);
   if (choice === "all") return all;
   if (typeof choice !== "object" || choice === null) throw malformed(choice);

@@ -65,15 +65,7 @@ export function resolveLevel(
   const parts = level.parts.map((part): ResolvedPart => {
     const sector = sectors[part.sector] as Sector;
     const outward = sector.perturbations.map((v) =>
-      secondOrder(
-        sector,
-        v,
-        part,
-        levels.of[part.sector] as Int32Array,
-        level.place,
-        level.energy,
-        levels.energies,
-      ),
+      secondOrder(sector, v, part, levels.of[part.sector] as Int32Array, level.place, level.energy, levels.energies),
     );
     return { ...part, outward, leaves: refinePart(problem, sector, part, outward, others, depth, tree) };
   });
@@ -107,7 +99,12 @@ function refinePart(
   sector.perturbations.forEach((v, k) => {
     const { name, operator } = problem.perturbations[k] as (typeof problem.perturbations)[number];
     const inside = size === v.rows ? v : submatrix(v, part.indices);
-    const by = { kind: "perturbation", name, noise: NOISE * operator.norm, cluster: LABEL_WIDTH * operator.norm } as const;
+    const by = {
+      kind: "perturbation",
+      name,
+      noise: NOISE * operator.norm,
+      cluster: LABEL_WIDTH * operator.norm,
+    } as const;
     blocks = blocks.flatMap((block) => refineBlock(block, inside, by, tree));
   });
   const only = outward[0];
@@ -186,7 +183,11 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
     // Vectors of a block that stays whole are kept: where V is scalar there, any basis serves.
     const keep = whole && by.kind !== "perturbation";
     return {
-      rows: keep ? block.rows : chosen === undefined ? multiply(space.rows, block.rows) : selectRows(block.rows, chosen),
+      rows: keep
+        ? block.rows
+        : chosen === undefined
+          ? multiply(space.rows, block.rows)
+          : selectRows(block.rows, chosen),
       indices: keep
         ? block.indices
         : chosen === undefined || block.indices === undefined
@@ -194,9 +195,7 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
           : chosen.map((index) => (block.indices as Int32Array)[index] as number),
       from: { node, child },
       labels:
-        by.candidate === undefined
-          ? block.labels
-          : [...block.labels, { candidate: by.candidate, value: space.value }],
+        by.candidate === undefined ? block.labels : [...block.labels, { candidate: by.candidate, value: space.value }],
       second: by.kind === "second order" ? space.value.re : block.second,
     };
   });

@@ -152,25 +152,42 @@ function secondGuard(
 ): GuardRatio {
   const squares = new Map<number, number>();
   const { scaled, columns } = out;
+  const size = v.rows;
+  const re = new Float64Array(size);
+  const im = new Float64Array(v.im === undefined ? 0 : size);
+  const mark = new Int32Array(size).fill(-1);
+  const touched = new Int32Array(size);
   for (let r = 0; r < scaled.rows; r++) {
-    const re = new Map<number, number>();
-    const im = new Map<number, number>();
+    let count = 0;
     for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
       const k = columns[scaled.col[q] as number] as number;
       const a = scaled.re[q] as number;
       const b = scaled.im === undefined ? 0 : (scaled.im[q] as number);
-      for (let p = v.ptr[k] as number; p < (v.ptr[k + 1] as number); p++) {
+      const end = v.ptr[k + 1] as number;
+      for (let p = v.ptr[k] as number; p < end; p++) {
         const to = v.col[p] as number;
-        if (levelOf[to] === level) continue;
+        if (mark[to] !== r) {
+          mark[to] = r;
+          touched[count++] = to;
+          re[to] = 0;
+          if (v.im !== undefined) im[to] = 0;
+        }
         const x = v.re[p] as number;
-        const y = v.im === undefined ? 0 : (v.im[p] as number);
-        re.set(to, (re.get(to) ?? 0) + a * x - b * y);
-        if (v.im !== undefined) im.set(to, (im.get(to) ?? 0) + a * y + b * x);
+        if (v.im === undefined) {
+          re[to] = (re[to] as number) + a * x;
+        } else {
+          const y = v.im[p] as number;
+          re[to] = (re[to] as number) + a * x - b * y;
+          im[to] = (im[to] as number) + a * y + b * x;
+        }
       }
     }
-    for (const [to, x] of re) {
-      const y = im.get(to) ?? 0;
+    for (let t = 0; t < count; t++) {
+      const to = touched[t] as number;
       const k = levelOf[to] as number;
+      if (k === level) continue;
+      const x = re[to] as number;
+      const y = v.im === undefined ? 0 : (im[to] as number);
       squares.set(k, (squares.get(k) ?? 0) + x * x + y * y);
     }
   }

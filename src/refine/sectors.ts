@@ -37,6 +37,8 @@ export interface Sector {
   readonly energyChild: Int32Array;
   /** Bound on the distance of each vector from the exact combination of the kets that its tree describes. */
   readonly rowError: number;
+  /** The sector's vectors before H0 was diagonalised: sparser, and enough to judge the labels on. */
+  readonly labelFrame: Csr;
 }
 
 /** The whole space taken apart by labels and H0. */
@@ -126,7 +128,9 @@ export function buildSectors(
     const vErrors =
       step === undefined
         ? block.vErrors
-        : problem.perturbations.map(({ operator }, p) => rotationError(step, block.perturbations[p] as Csr, operator, block.vErrors[p] ?? 0));
+        : problem.perturbations.map(({ operator }, p) =>
+            rotationError(step, block.perturbations[p] as Csr, operator, block.vErrors[p] ?? 0),
+          );
     const node = tree.add({
       from: block.from,
       kind: "label",
@@ -171,9 +175,7 @@ export function buildSectors(
       noise: NOISE * problem.h0.norm,
       cluster: energyTolerance(problem, size),
     };
-    const split = withH0
-      ? splitIntoEigenspaces(block.h0, energyOptions)
-      : { spaces: [wholeSpace(size)], defect: 0 };
+    const split = withH0 ? splitIntoEigenspaces(block.h0, energyOptions) : { spaces: [wholeSpace(size)], defect: 0 };
     const spaces = [...split.spaces].sort((a, b) => a.value.re - b.value.re);
     const energyNode = tree.add({
       from: block.from,
@@ -205,6 +207,7 @@ export function buildSectors(
       energyNode,
       energyChild,
       rowError: block.rowError + (step?.rowError ?? 0),
+      labelFrame: block.frame,
     });
   };
 

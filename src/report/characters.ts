@@ -23,9 +23,9 @@ export function padLeft(text: string, width: number): string {
   return " ".repeat(Math.max(0, width - textWidth(text))) + text;
 }
 
-/** Breaks prose at blanks into lines of at most `width`; later lines are indented. */
+/** Breaks prose at blanks into lines of at most `width`; later lines are indented. No-break spaces hold, and end as blanks. */
 export function wrapProse(text: string, width: number, indent = ""): string[] {
-  return wrapChunks(text.split(" "), " ", width, indent);
+  return wrapChunks(text.split(" "), " ", width, indent).map((line) => line.replaceAll("\u00a0", " "));
 }
 
 /** Puts chunks on lines of at most `width`; a chunk that is too long by itself gets a line of its own. */

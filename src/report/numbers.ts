@@ -43,24 +43,24 @@ export function numberText(x: number, digits = 6): string {
 /**
  * A bound, rounded up to one digit, or to two where the first is 1: `"4e−15"`, `"1.3e−15"`, `"0.03"`. What is printed is never
  * smaller than what was proved.
+ *
+ * @param digits - how many digits to keep instead
  */
-export function boundText(bound: number): string {
+export function boundText(bound: number, digits?: number): string {
   if (Number.isNaN(bound)) return NOTHING;
   if (bound === Number.POSITIVE_INFINITY) return "∞";
   if (!(bound > 0)) return "0";
-  const ascii = roundedUp(bound);
-  const exponent = exponentOf(Number(ascii));
-  return typeset(exponent < -3 || exponent >= 6 ? stripZeros(ascii) : String(Number(ascii)));
+  const rounded = roundedUp(bound, digits ?? (bound.toExponential().startsWith("1") ? 2 : 1));
+  const exponent = exponentOf(rounded);
+  return typeset(exponent < -3 || exponent >= 6 ? rounded.toExponential() : String(rounded));
 }
 
-function roundedUp(bound: number): string {
-  const exponent = exponentOf(bound);
-  const digits = bound.toExponential().startsWith("1") ? 1 : 0;
-  const near = bound.toExponential(digits);
-  if (Number(near) >= bound) return near;
+function roundedUp(bound: number, digits: number): number {
+  const near = bound.toExponential(digits - 1);
+  if (Number(near) >= bound) return Number(near);
   // one unit in the last digit printed, by whole numbers so that no rounding enters
-  const [mantissa = "1"] = near.split("e");
-  return `${Number(mantissa.replace(".", "")) + 1}e${exponent - digits}`;
+  const [mantissa = "1", exponent = "0"] = near.split("e");
+  return Number(`${Number(mantissa.replace(".", "")) + 1}e${Number(exponent) - digits + 1}`);
 }
 
 /** A value and its ± as printed. */

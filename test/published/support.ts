@@ -81,14 +81,15 @@ export function second<K extends string>(basis: GoodBasis<K>, state: BasisState<
   return found;
 }
 
-/** A bounded number is within the tolerance of the closed form, its bound is too, and the bound covers the closed form. */
+/** A bounded number is within the tolerance of the closed form, and its bound covers it and is good for seven digits. */
 export function expectEnclosed(found: Enclosed, exact: number, tolerance: number): void {
   const distance = Math.abs(found.value - exact);
   expect(distance, `${found.value} against ${exact}`).toBeLessThanOrEqual(tolerance);
-  expect(found.plusMinus, "the bound itself").toBeLessThanOrEqual(tolerance);
   expect(distance, `${found.value} ± ${found.plusMinus} covers ${exact}`).toBeLessThanOrEqual(
     found.plusMinus + 4 * Number.EPSILON * Math.abs(exact),
   );
+  const useful = 1e-7 * Math.max(1, Math.abs(exact));
+  expect(found.plusMinus, "the bound itself").toBeLessThanOrEqual(useful);
 }
 
 /** A number is within the tolerance of a value that is printed to some digits only. */

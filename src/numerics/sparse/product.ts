@@ -10,21 +10,14 @@ import { RowAccumulator } from "./rows.js";
 export function multiply(a: Csr, b: Csr): Csr {
   const complex = a.im !== undefined || b.im !== undefined;
   const out = new RowAccumulator(a.rows, b.cols, complex, a.col.length + b.col.length);
-  for (let row = 0; row < a.rows; row++) out.finishRow(row, scatterRow(out, row, row, a, b, 1, 0));
+  for (let row = 0; row < a.rows; row++) out.finishRow(row, scatterRow(out, row, a, b, 1, 0));
   return out.finish();
 }
 
 /** Adds sign · (row of A) · B to the accumulator, which holds `count` columns already; returns their new number. */
-function scatterRow(
-  out: RowAccumulator,
-  tag: number,
-  row: number,
-  a: Csr,
-  b: Csr,
-  sign: number,
-  count: number,
-): number {
+function scatterRow(out: RowAccumulator, row: number, a: Csr, b: Csr, sign: number, count: number): number {
   const { re, im, mark, list } = out;
+  const tag = out.firstTag + row;
   const complex = im.length > 0;
   const aIm = a.im;
   const bIm = b.im;
@@ -74,8 +67,8 @@ export function commutator(a: Csr, b: Csr): Csr {
   const complex = a.im !== undefined || b.im !== undefined;
   const out = new RowAccumulator(a.rows, a.cols, complex, 2 * (a.col.length + b.col.length));
   for (let row = 0; row < a.rows; row++) {
-    const count = scatterRow(out, row, row, a, b, 1, 0);
-    out.finishRow(row, scatterRow(out, row, row, b, a, -1, count));
+    const count = scatterRow(out, row, a, b, 1, 0);
+    out.finishRow(row, scatterRow(out, row, b, a, -1, count));
   }
   return out.finish();
 }

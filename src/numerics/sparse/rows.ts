@@ -5,13 +5,15 @@ import { dropZeros } from "./build.js";
  * The dense accumulator of a row-wise sparse product: one row at a time is scattered into it, then gathered with ascending
  * columns (Gustavson, ACM Trans. Math. Softw. 4, 250 (1978)).
  *
- * The caller scatters: where `mark[c] !== row`, it sets `mark[c] = row`, appends c to `list` and stores; else it adds.
+ * The caller scatters: where `mark[c]` is not the row's tag, it sets it, appends c to `list` and stores; else it adds.
  */
 export class RowAccumulator {
   readonly re: Float64Array;
   readonly im: Float64Array;
   readonly mark: Int32Array;
   readonly list: Int32Array;
+  /** Marks of row r are `firstTag + r`. */
+  readonly firstTag: number;
   readonly #rows: number;
   readonly #cols: number;
   readonly #ptr: Int32Array;
@@ -28,10 +30,12 @@ export class RowAccumulator {
    * @param expected - a guess of the number of entries
    */
   constructor(rows: number, cols: number, complex: boolean, expected: number) {
-    this.re = new Float64Array(cols);
-    this.im = new Float64Array(complex ? cols : 0);
-    this.mark = new Int32Array(cols).fill(-1);
-    this.list = new Int32Array(cols);
+    const scratch = scratchFor(rows, cols, complex);
+    this.re = scratch.re;
+    this.im = scratch.im;
+    this.mark = scratch.mark;
+    this.list = scratch.list;
+    this.firstTag = scratch.firstTag;
     this.#rows = rows;
     this.#cols = cols;
     this.#ptr = new Int32Array(rows + 1);
@@ -48,7 +52,8 @@ export class RowAccumulator {
     const list = this.list;
     if (count * 8 > this.#cols) {
       let k = 0;
-      for (let c = 0; c < this.#cols; c++) if (this.mark[c] === row) list[k++] = c;
+      const tag = this.firstTag + row;
+      for (let c = 0; c < this.#cols; c++) if (this.mark[c] === tag) list[k++] = c;
     } else if (count > 24) {
       list.subarray(0, count).sort();
     } else {
@@ -93,6 +98,43 @@ export class RowAccumulator {
     im.set(this.#outIm);
     this.#outIm = im;
   }
+}
+
+/** Dense rows to accumulate in; tags only ever grow, so that nothing need be cleared. */
+interface Scratch {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly mark: Int32Array;
+  readonly list: Int32Array;
+  nextTag: number;
+}
+
+const NO_IMAGINARY_PART = new Float64Array(0);
+const LARGEST_TAG = 2 ** 31 - 1;
+
+/** Kept from product to product, since clearing it would cost more than most products; every place is written before it is read. */
+let kept: Scratch = {
+  re: new Float64Array(64),
+  im: new Float64Array(64),
+  mark: new Int32Array(64).fill(-1),
+  list: new Int32Array(64),
+  nextTag: 0,
+};
+
+function scratchFor(rows: number, cols: number, complex: boolean): Omit<Scratch, "nextTag"> & { firstTag: number } {
+  if (kept.mark.length < cols || kept.nextTag > LARGEST_TAG - rows) {
+    const size = Math.max(cols, kept.mark.length);
+    kept = {
+      re: new Float64Array(size),
+      im: new Float64Array(size),
+      mark: new Int32Array(size).fill(-1),
+      list: new Int32Array(size),
+      nextTag: 0,
+    };
+  }
+  const firstTag = kept.nextTag;
+  kept.nextTag += rows;
+  return { re: kept.re, im: complex ? kept.im : NO_IMAGINARY_PART, mark: kept.mark, list: kept.list, firstTag };
 }
 
 function sortShort(list: Int32Array, count: number): void {

@@ -1,0 +1,130 @@
+import type { Candidate, Problem } from "../audit/problem.js";
+import { GoodBasisError } from "../errors.js";
+import type { Operator } from "../operator/operator.js";
+import { jsonFault, lineAndColumn } from "./json-text.js";
+import { looksLikeMatrix, readMatrixAt } from "./matrix.js";
+import type { MatrixContext } from "./names.js";
+import { fileError, inside, type Place, type ProblemDocument, showValue } from "./place.js";
+import type { ProblemOptions, ProblemOutline } from "./problem-file.js";
+import { candidateSchema, conform, outlineSchema } from "./schema.js";
+import { Space } from "./space.js";
+
+/** Options of {@link readProblem}. */
+export interface ReadProblemOptions {
+  /** Name of the file, for messages. */
+  readonly name?: string;
+  /** Reads a matrix file that the problem names, path as written there, and returns its text. */
+  readonly loadMatrix?: (path: string) => string;
+}
+
+/** A problem file that has been read. */
+export interface ReadProblem {
+  /** Ready for {@link findGoodBasis} and {@link auditCommutators}. */
+  readonly problem: Problem;
+  /** The options that the file asks for. */
+  readonly options: ProblemOptions;
+  readonly title: string | undefined;
+  readonly note: string | undefined;
+  /** Whether the file says that its numbers are made up. */
+  readonly invented: boolean;
+}
+
+/**
+ * Reads a problem file: JSON with `"format": "goodbasis-problem"`, as the published JSON Schema `goodbasis/problem-schema.json`
+ * describes it.
+ *
+ * @param source - the text of the file, or what `JSON.parse` made of it; from text, messages name lines
+ * @param options - name of the file for messages; how matrix files beside it are read
+ * @returns the problem with all its matrices as operators, and the options stated in the file
+ * @throws GoodBasisError `file` - no JSON (with line and column), or a field of the wrong form (with its path)
+ * @throws GoodBasisError `name`, `shape`, `not-finite`, `option` - an unknown operator name, a matrix that is not square, a
+ *   number beyond all bounds, a builder's complaint; with the same place
+ *
+ * @example
+ * ```ts
+ * import { findGoodBasis, readProblem } from "goodbasis";
+ *
+ * const text = `{
+ *   "format": "goodbasis-problem", "formatVersion": 1,
+ *   "space": [{ "name": "L", "spin": 1 }, { "name": "S", "spin": "1/2" }],
+ *   "h0": { "terms": [{ "coefficient": 20, "dot": ["L", "S"] }] },
+ *   "v": "L.z + S.z + S.z",
+ *   "candidates": { "Jz": { "operator": "L.z + S.z", "label": "m" } }
+ * }`;
+ * const { problem, options } = readProblem(text);
+ * console.log(findGoodBasis(problem, options).verdict); // good
+ * ```
+ */
+export function readProblem(source: unknown, options: ReadProblemOptions = {}): ReadProblem {
+  const text = typeof source === "string" ? source : undefined;
+  const document: ProblemDocument = { name: options.name ?? "problem", text };
+  const place: Place = { document, path: [] };
+  const outline = conform(outlineSchema, place, text === undefined ? source : parse(document, text));
+  const space = outline.space === undefined ? undefined : new Space(inside(place, "space"), outline.space);
+  if (space !== undefined && outline.n !== undefined && outline.n !== space.n) {
+    throw fileError(inside(place, "n"), `${space.n}, the number of kets of the space`, showValue(outline.n));
+  }
+  const defined = new Map<string, Operator>();
+  const context: MatrixContext = {
+    space,
+    n: space?.n ?? outline.n ?? outline.kets?.length,
+    defined,
+    loadMatrix: options.loadMatrix,
+  };
+  for (const [name, value] of Object.entries(outline.define ?? {})) {
+    const at = inside(place, "define", name);
+    if (!/^[^.[\]^|+\s]+$/.test(name)) throw fileError(at, "a name without spaces and . [ ] ^ | +", showValue(name));
+    defined.set(name, readMatrixAt(at, value, context));
+  }
+  const kets = outline.kets ?? space?.kets();
+  return {
+    problem: {
+      h0: readMatrixAt(inside(place, "h0"), outline.h0, context),
+      v: readPerturbations(inside(place, "v"), outline.v, context),
+      candidates: readCandidates(inside(place, "candidates"), outline.candidates ?? {}, context),
+      ...(kets === undefined ? {} : { kets }),
+      ...(outline.unit === undefined ? {} : { unit: outline.unit }),
+    },
+    options: outline.options ?? {},
+    title: outline.title,
+    note: outline.note,
+    invented: outline.invented ?? false,
+  };
+}
+
+function parse(document: ProblemDocument, text: string): unknown {
+  const fault = jsonFault(text);
+  if (fault === undefined) return JSON.parse(text.replace(/^\uFEFF/, ""));
+  const { line, column } = lineAndColumn(text, fault.offset);
+  const message = `${document.name}, line ${line}, column ${column}: expected ${fault.expected}, got ${fault.came}; correct the JSON there`;
+  throw new GoodBasisError("file", message, { name: document.name, line, column, expected: fault.expected });
+}
+
+function readPerturbations(place: Place, value: unknown, context: MatrixContext): Problem["v"] {
+  if (looksLikeMatrix(value) || typeof value !== "object" || value === null) return readMatrixAt(place, value, context);
+  const entries = Object.entries(value);
+  if (entries.length === 0) throw fileError(place, "a matrix, or at least one named one", "an empty object");
+  return Object.fromEntries(
+    entries.map(([name, matrix]) => [name, readMatrixAt(inside(place, name), matrix, context)] as const),
+  );
+}
+
+function readCandidates(
+  place: Place,
+  values: NonNullable<ProblemOutline["candidates"]>,
+  context: MatrixContext,
+): Record<string, Operator | Candidate> {
+  return Object.fromEntries(
+    Object.entries(values).map(([name, value]): [string, Operator | Candidate] => {
+      const at = inside(place, name);
+      if (looksLikeMatrix(value)) return [name, readMatrixAt(at, value, context)];
+      const { operator, label, ladder } = conform(candidateSchema, at, value);
+      const candidate: Candidate = {
+        operator: readMatrixAt(inside(at, "operator"), operator, context),
+        ...(label === undefined ? {} : { label }),
+        ...(ladder === undefined ? {} : { ladder: readMatrixAt(inside(at, "ladder"), ladder, context) }),
+      };
+      return [name, candidate];
+    }),
+  );
+}
