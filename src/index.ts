@@ -2,10 +2,66 @@ export { type Audit, type AuditOptions, auditCommutators, type CandidateFinding 
 export type { CommutatorFinding, CommutatorVerdict, OffendingElement } from "./audit/commutators.js";
 export type { LabelDeclaration } from "./audit/label-family.js";
 export type { Candidate, Problem } from "./audit/problem.js";
-export type { GoodBasis } from "./certify/good-basis.js";
+export type {
+  Certificate,
+  CertifiedBound,
+  CertifiedCommutator,
+  CertifiedCoupling,
+  CertifiedLevel,
+  CertifiedNode,
+  CertifiedOperator,
+  CertifiedState,
+  CertifiedVector,
+} from "./certify/certificate-format.js";
+export type { BasisColumns, MatrixLike, RealColumns } from "./certify/columns.js";
+export type { CouplingBound, LevelCouplings, NodeEvidence, PairElement } from "./certify/couplings.js";
 export { type FindOptions, findGoodBasis } from "./certify/find.js";
-export type * from "./certify/outcome.js";
+export type {
+  BasisState,
+  Coupling,
+  LevelResult,
+  Question,
+  SetReport,
+  StateVector,
+  Study,
+} from "./certify/findings.js";
+export type { GoodBasis } from "./certify/good-basis.js";
+export type { GuardFinding, GuardOptions, GuardSetting, LevelGuard, SectorGuard } from "./certify/guard.js";
+export type { GoodOutcome, NotGoodOutcome, Outcome, UndecidedOutcome } from "./certify/outcome.js";
+export type { Repair } from "./certify/repair.js";
+export type { SafeOrders } from "./certify/safe-orders.js";
+export type { Progress } from "./certify/study.js";
+export {
+  type Checked,
+  type ClaimedLabel,
+  type ColumnCoupling,
+  type ColumnFinding,
+  type ValidatedLevel,
+  type ValidateOptions,
+  type Validation,
+  validateBasis,
+} from "./certify/validate.js";
+export type { QuestionCode, Shift, Verdict } from "./certify/verdict.js";
+export type { NearbyModel, SectorEvidence, SeparatorEvidence, WholeEvidence } from "./certify/whole.js";
 export { type ErrorCode, GoodBasisError } from "./errors.js";
+export { type AngularMomentum, angularMomentum } from "./models/angular-momentum.js";
+export { type Bond, hopping } from "./models/lattice.js";
+export { type Oscillator, oscillator } from "./models/oscillator.js";
+export { ketPermutation, reflection, sitePermutation, translation } from "./models/permutations.js";
+export { type ProductSpace, productSpace } from "./models/product-space.js";
+export { type SpinChain, spinChain } from "./models/spin-chain.js";
+export type { Complex, Scalar } from "./numerics/complex.js";
+export type { Csr } from "./numerics/csr.js";
+export type { Dense } from "./numerics/dense.js";
 export type { MatrixInput } from "./operator/input.js";
-export { Operator } from "./operator/operator.js";
+export { type MatrixMarketOptions, readMatrixMarket, toMatrixMarket } from "./operator/matrix-market.js";
+export { Operator, type OperatorOptions } from "./operator/operator.js";
+export type { MatrixData, RealEntries, Triplet, Uncertainty } from "./operator/read.js";
+export type { HermitianDefect } from "./operator/structure.js";
+export type { Bounded } from "./perturb/bounded.js";
+export { type Perturbation, type PerturbedState, type PerturbOptions, perturb } from "./perturb/perturb.js";
+export type { LabelStatus, StateLabel } from "./refine/label.js";
+export type { LevelChoice } from "./refine/levels.js";
+export type { Depth } from "./refine/resolve.js";
+export type { NodeKind, PathStep, TreeNode } from "./refine/tree.js";
 export { VERSION } from "./version.js";

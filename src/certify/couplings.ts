@@ -1,12 +1,13 @@
 import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundDown, roundUp } from "../numerics/rounding.js";
-import { maxRowEntries, selectRows } from "../numerics/sparse.js";
+import { roundDown, roundUp } from "../numerics/rounding.js";
+import { selectRows } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
-import { imageError, images } from "./residuals.js";
+import { elementErrorBound, forEachProduct, gramDefect } from "./products.js";
+import { images } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */
@@ -178,7 +179,10 @@ function nodesOf(paths: readonly (readonly PathStep[])[]): Map<number, Found> {
   paths.forEach((path, state) => {
     for (const { node, child } of path) {
       let entry = found.get(node);
-      if (entry === undefined) found.set(node, (entry = { node, children: new Set(), states: [] }));
+      if (entry === undefined) {
+        entry = { node, children: new Set(), states: [] };
+        found.set(node, entry);
+      }
       entry.states.push(state);
       entry.children.add(child);
     }
@@ -247,74 +251,6 @@ function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput)
   };
 }
 
-/**
- * Bound on ‖Q Q† − 1‖_F from its computed elements. Each is a sum of at most m products, in error by at most
- * √2 γ_{m+2} ‖q_μ‖ ‖q_ν‖; two vectors with no common ket are exactly orthogonal.
- */
-export function gramDefect(vectors: Csr): number {
-  const error = Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * 1.01;
-  let sum = 0;
-  forEachProduct(vectors, vectors, (r, c, re, im, common) => {
-    if (common === 0) return;
-    const x = re - (r === c ? 1 : 0);
-    if (x === 0 && im === 0 && single(vectors, r) && single(vectors, c)) return;
-    sum += (r === c ? 1 : 2) * (Math.sqrt(x * x + im * im) + error) ** 2;
-  });
-  return roundUp(Math.sqrt(sum), vectors.rows * vectors.rows + 8);
-}
-
-/** A row that is one ket with coefficient 1: its products are exact. */
-function single(vectors: Csr, row: number): boolean {
-  const p = vectors.ptr[row] as number;
-  return (vectors.ptr[row + 1] as number) - p === 1 && vectors.re[p] === 1;
-}
-
-/**
- * Calls back with Σ_k conj(a_rk) b_ck for every r ≤ c, and whether the two rows share a ket.
- *
- * Each row of `b` is spread out once and every row of `a` gathered from it.
- */
-function forEachProduct(
-  a: Csr,
-  b: Csr,
-  visit: (r: number, c: number, re: number, im: number, common: number) => void,
-): void {
-  const spreadRe = new Float64Array(b.cols);
-  const spreadIm = new Float64Array(b.cols);
-  const mark = new Int32Array(b.cols).fill(-1);
-  for (let c = 0; c < b.rows; c++) {
-    for (let q = b.ptr[c] as number; q < (b.ptr[c + 1] as number); q++) {
-      const k = b.col[q] as number;
-      mark[k] = c;
-      spreadRe[k] = b.re[q] as number;
-      spreadIm[k] = b.im === undefined ? 0 : (b.im[q] as number);
-    }
-    for (let r = 0; r <= c; r++) {
-      let re = 0;
-      let im = 0;
-      let common = 0;
-      const end = a.ptr[r + 1] as number;
-      for (let p = a.ptr[r] as number; p < end; p++) {
-        const k = a.col[p] as number;
-        if (mark[k] !== c) continue;
-        common++;
-        const x = a.re[p] as number;
-        const u = spreadRe[k] as number;
-        const v = spreadIm[k] as number;
-        if (a.im === undefined) {
-          re += x * u;
-          im += x * v;
-        } else {
-          const y = a.im[p] as number;
-          re += x * u + y * v;
-          im += x * v - y * u;
-        }
-      }
-      visit(r, c, re, im, common);
-    }
-  }
-}
-
 /** One perturbation inside one part: where its elements go. */
 interface Pass {
   readonly name: string;
@@ -326,12 +262,6 @@ interface Pass {
   readonly largest: Map<number, number>;
   readonly threshold: number;
   readonly worst: PairElement[];
-}
-
-/** Bound on the error of one element: the image's error, and a sum of at most m products with ‖q‖ ‖Vq‖ as the scale. */
-function elementErrorBound(operator: Operator, vectors: Csr): number {
-  const sum = Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * operator.norm;
-  return roundUp((imageError(operator) + sum) * (1 + 2 ** -18));
 }
 
 function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: number; withinLeaves: number } {

@@ -1,10 +1,10 @@
 import type { PreparedProblem } from "../audit/problem.js";
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import { compositionRowError } from "../refine/descent.js";
-import type { Complex } from "../refine/eigenspaces.js";
 import { alignByLadders } from "../refine/ladder.js";
 import { fixPhases } from "../refine/phase.js";
 import type { ResolvedLevel } from "../refine/resolve.js";

@@ -35,7 +35,8 @@ export class Reader {
   /** Refuses an object with any field but these. */
   only(names: readonly string[]): void {
     for (const name of Object.keys(this.#object())) {
-      if (!names.includes(name)) throw new Reader(this.field(name).#value, join(this.#path, name)).malformed("no such field");
+      if (!names.includes(name))
+        throw new Reader(this.field(name).#value, join(this.#path, name)).malformed("no such field");
     }
   }
 

@@ -1,8 +1,8 @@
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
-import type { Complex } from "../refine/eigenspaces.js";
 
 /** Rows (A q)ᵀ for vectors q stored as rows: Q Aᵀ. */
 export function images(vectors: Csr, operator: Operator): Csr {

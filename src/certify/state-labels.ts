@@ -1,10 +1,10 @@
 import type { Audit } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH } from "../audit/resolution.js";
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
-import type { Complex } from "../refine/eigenspaces.js";
 import { labelFamily, type StateLabel, sharpLabel, vagueLabel } from "../refine/label.js";
 import type { TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";

@@ -1,8 +1,8 @@
 import type { Audit, CandidateFinding } from "../audit/audit.js";
 import type { CommutatorFinding } from "../audit/commutators.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import type { Complex } from "../numerics/complex.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import type { Complex } from "../refine/eigenspaces.js";
 import type { Sector, Sectors } from "../refine/sectors.js";
 import type { TreeNode } from "../refine/tree.js";
 import { adjointImages, imageError, images, residualBounds, residualRows, rootSumSquares } from "./residuals.js";

@@ -76,7 +76,10 @@ export function perturb<K extends string>(basis: GoodBasis<K>, options: PerturbO
   const byLevel = new Map<number, LevelSecondOrder>();
   const level = (place: number): LevelSecondOrder => {
     let found = byLevel.get(place);
-    if (found === undefined) byLevel.set(place, (found = levelSecondOrder(study, internals, place)));
+    if (found === undefined) {
+      found = levelSecondOrder(study, internals, place);
+      byLevel.set(place, found);
+    }
     return found;
   };
   return {

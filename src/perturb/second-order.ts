@@ -3,7 +3,7 @@ import type { StateVector, Study } from "../certify/outcome.js";
 import { imageError, images } from "../certify/residuals.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
-import { add, adjoint, conjugate, maxRowEntries, multiply, selectRows, transpose } from "../numerics/sparse.js";
+import { add, adjoint, maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
 import type { Sector } from "../refine/sectors.js";
 import type { Bounded } from "./bounded.js";
 
@@ -43,7 +43,10 @@ export function levelSecondOrder(study: Study, internals: StudyInternals, place:
   const part = (k: number): PartSecondOrder => {
     const number = states?.states[k]?.part ?? 0;
     let found = parts.get(number);
-    if (found === undefined) parts.set(number, (found = solvePart(study, internals, place, number)));
+    if (found === undefined) {
+      found = solvePart(study, internals, place, number);
+      parts.set(number, found);
+    }
     return found;
   };
   return {

@@ -1,15 +1,9 @@
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
-import { gamma } from "../numerics/rounding.js";
 import { type Components, connectedComponents } from "./components.js";
 import { orthonormalityDefect } from "./gram.js";
 import { type Cycle, cycleThrough, solveCycle } from "./orbits.js";
-
-/** A complex number. */
-export interface Complex {
-  readonly re: number;
-  readonly im: number;
-}
 
 /** An eigenspace of an operator inside a block. */
 export interface Eigenspace {

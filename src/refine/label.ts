@@ -1,5 +1,5 @@
 import { type FamilyMember, type LabelDeclaration, onlyMember, recogniseFamily } from "../audit/label-family.js";
-import type { Complex } from "./eigenspaces.js";
+import type { Complex } from "../numerics/complex.js";
 
 /**
  * How a label came to be.

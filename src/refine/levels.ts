@@ -74,7 +74,10 @@ export function formLevels(sectors: readonly Sector[], width: number, choice: Le
       const level = levels[i] as number;
       if (!chosen.has(level)) continue;
       let bySector = parts.get(level);
-      if (bySector === undefined) parts.set(level, (bySector = new Map()));
+      if (bySector === undefined) {
+        bySector = new Map();
+        parts.set(level, bySector);
+      }
       const list = bySector.get(sector);
       if (list === undefined) bySector.set(sector, [i]);
       else list.push(i);

@@ -1,12 +1,13 @@
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, LEVEL_WIDTH, NOISE } from "../audit/resolution.js";
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { conjugate, diagonalCsr, multiply, selectRows, submatrix, transpose } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import type { Operator } from "../operator/operator.js";
 import { type DescentStep, descentStep, rotateAll, rotationError } from "./descent.js";
-import { type Complex, type Eigenspace, splitIntoEigenspaces } from "./eigenspaces.js";
+import { type Eigenspace, splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { PathStep, TreeBuilder } from "./tree.js";
 

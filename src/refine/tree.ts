@@ -1,4 +1,4 @@
-import type { Complex } from "./eigenspaces.js";
+import type { Complex } from "../numerics/complex.js";
 
 /**
  * What a node of the refinement tree refines by.

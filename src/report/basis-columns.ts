@@ -107,7 +107,7 @@ export function columnsFor<K extends string>(name: string, source: ColumnSource<
     case "safe":
       return [
         {
-          column: blank("safe", "safe orders", "text"),
+          column: blank("safe", "safe E/ψ", "text"),
           cell: (state) => ({ kind: "text", text: safeText(state.safe) }),
         },
       ];
@@ -138,7 +138,7 @@ export function columnsFor<K extends string>(name: string, source: ColumnSource<
 }
 
 function blank(key: string, title: string, kind: TableColumn["kind"]): TableColumn {
-  return { key, title, unit: "", kind, showsPlusMinus: false, perLevel: false, complex: false };
+  return { key, title, remark: "", unit: "", kind, showsPlusMinus: false, perLevel: false, complex: false };
 }
 
 function number<K extends string>(
@@ -155,10 +155,11 @@ function number<K extends string>(
 
 function labelColumn<K extends string>(study: Study<K>, candidate: K): FilledColumn<K> {
   const finding = study.audit.candidates.find((own) => own.name === candidate);
-  const role = finding === undefined || finding.conserved ? "" : finding.descriptive ? " (descriptive)" : " (broken)";
+  const remark = finding === undefined || finding.conserved ? "" : finding.descriptive ? "descriptive" : "broken";
   return {
     column: {
-      ...blank(`label:${candidate}`, candidate + role, "label"),
+      ...blank(`label:${candidate}`, candidate, "label"),
+      remark,
       complex: finding !== undefined && finding.kind !== "hermitian",
     },
     cell: (state) => {
@@ -224,15 +225,22 @@ function secondCell(safe: SafeOrders, shifts: SecondOrderShifts, p: number, q: n
 export function evidenceText(study: Study, safe: SafeOrders, level: LevelResult): string {
   if (safe.states === "none") return "none";
   if (safe.energies === "all") return level.degeneracy === 1 ? "single" : "labels";
-  if (safe.energies <= 2) return study.perturbations.length === 1 ? (study.perturbations[0] ?? "V") : "V";
+  if (safe.energies <= 2) return separatorName(study, level);
   return `${ordinal(safe.energies - 1)} order`;
+}
+
+/** The perturbation that tells states of the level apart, by name where it is one alone. */
+function separatorName({ perturbations }: Study, { evidence }: LevelResult): string {
+  const used = new Set(evidence.nodes.filter((node) => node.kind === "perturbation").map((node) => node.operator));
+  const names = perturbations.filter((name) => used.has(name));
+  return names.length === 1 ? (names[0] ?? "V") : perturbations.length === 1 ? (perturbations[0] ?? "V") : "V";
 }
 
 function ordinal(order: number): string {
   return order === 2 ? "2nd" : order === 3 ? "3rd" : `${order}th`;
 }
 
-/** Safe orders as printed: `"E: 2, ψ: 0"`. */
+/** Safe orders as printed, energies first: `"2/0"`. */
 export function safeText(safe: SafeOrders): string {
-  return `E: ${safe.energies}, ψ: ${safe.states}`;
+  return `${safe.energies}/${safe.states}`;
 }

@@ -50,7 +50,7 @@ export function basisNotes(
   const evidence = columns.findIndex((column) => column.key === "evidence");
   if (evidence >= 0) notes.push(...evidenceNotes(study, rows, evidence));
   if (columns.some((column) => column.key === "safe")) {
-    notes.push("safe orders: the short formulas hold through this order, for energies (E) and for states (ψ).");
+    notes.push("safe: the short formulas hold through this order, for energies (E) and for states (ψ).");
   }
   return notes;
 }
@@ -64,8 +64,9 @@ function evidenceNotes(study: Study, rows: readonly TableRow[], column: number):
   );
   const meanings: string[] = [];
   if (words.has("labels")) meanings.push("labels: a conserved label tells it from every partner in its level");
-  const name = study.perturbations.length === 1 ? (study.perturbations[0] ?? "V") : "V";
-  if (words.has(name)) meanings.push(`${name}: only the first-order shift tells it from a partner`);
+  for (const name of new Set([...study.perturbations, "V"])) {
+    if (words.has(name)) meanings.push(`${name}: only the first-order shift tells it from a partner`);
+  }
   if ([...words].some((word) => word.endsWith(" order"))) {
     meanings.push("2nd order: only the effective operator of that order does");
   }

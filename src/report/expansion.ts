@@ -41,26 +41,36 @@ export const PLAIN_EXPANSION: ExpansionStyle = {
   dots: "…",
 };
 
-/** Writes an expansion. */
+/** Writes an expansion; a modulus that all of three or more real coefficients have in common is written once. */
 export function expansionText(expansion: Expansion, style: ExpansionStyle = PLAIN_EXPANSION): string {
+  const factor = commonFactor(expansion.terms);
   const minus = style.number("−");
   let text = "";
   expansion.terms.forEach(({ re, im, ket }, k) => {
     const { sign, coefficient } = split(re, im);
     if (k === 0) text = sign < 0 ? minus : "";
     else text += ` ${sign < 0 ? minus : "+"} `;
-    text += `${coefficient === "1" ? "" : `${style.number(coefficient)} `}${style.ket(ket)}`;
+    const bare = factor !== undefined || coefficient === "1";
+    text += `${bare ? "" : `${style.number(coefficient)} `}${style.ket(ket)}`;
   });
+  if (factor !== undefined) text = `${style.number(factor)} (${text})`;
   const { terms, weight } = expansion.leftOut;
   if (terms === 0) return text === "" ? "0" : text;
   const rest = `${style.dots} (+${terms}, weight ${style.number(boundText(weight))})`;
   return text === "" ? rest : `${text} ${rest}`;
 }
 
+/** The modulus that three or more real coefficients have in common to the digits printed. */
+function commonFactor(terms: readonly ExpansionTerm[]): string | undefined {
+  const sizes = new Set(terms.map(({ re, im }) => (im === 0 ? numberText(Math.abs(re)) : "")));
+  const [only = ""] = sizes;
+  return terms.length >= 3 && sizes.size === 1 && only !== "" ? only : undefined;
+}
+
 /** A coefficient without its sign; one that is truly complex stands in parentheses. */
 function split(re: number, im: number): { sign: number; coefficient: string } {
   if (im === 0) return { sign: Math.sign(re), coefficient: numberText(Math.abs(re)) };
   const text = complexText(re, im);
-  if (text.includes(" ")) return { sign: 1, coefficient: `(${text})` };
+  if (/.[+−]/u.test(text.replace(/e−/gu, "e"))) return { sign: 1, coefficient: `(${text})` };
   return text.startsWith("−") ? { sign: -1, coefficient: text.slice(1) } : { sign: 1, coefficient: text };
 }

@@ -48,8 +48,7 @@ export function formatAudit(audit: Audit, options: FormatAuditOptions = {}): str
 
 /** The candidates as a table, the reasons below it, and conserved pairs that do not commute. */
 export function auditLines(audit: Audit, width: number): string[] {
-  if (audit.candidates.length === 0)
-    return ["No candidates were given: nothing but H0 and V is there to label states."];
+  if (audit.candidates.length === 0) return ["  none given: nothing but H0 and V is there to label states"];
   const perturbations = audit.candidates[0]?.withPerturbations.map((finding) => finding.right) ?? [];
   const lines = grid(
     [

@@ -199,10 +199,13 @@ function worth(study: Study): string[] {
     `‖H0 − H0′‖ ≤ ${unit(eta0)}`,
     ...study.perturbations.map((name, p) => `‖${name} − ${name}′‖ ≤ ${unit(eta[p] ?? 0)}`),
   ].join(", ");
+  const labelled = study.audit.candidates.some((candidate) => candidate.conserved);
   return [
-    exact
-      ? "The labels used are conserved exactly by the given matrices."
-      : `The labels used are exact for a nearby model: ${distances}.`,
+    !labelled
+      ? "No label is used."
+      : exact
+        ? "The labels used are conserved exactly by the given matrices."
+        : `The labels used are exact for a nearby model: ${distances}.`,
     "Every bound is rigorous for the given matrices, rounding and stated entry uncertainty included. The certificate carries " +
       "them all as plain JSON with a hash of every operator, and recheck verifies it with code of its own.",
   ];

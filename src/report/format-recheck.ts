@@ -1,13 +1,6 @@
+import type { RecheckReport } from "../certify/recheck-report.js";
 import { visible, wrapProse } from "./characters.js";
 import { counted } from "./sentences.js";
-
-/** What {@link formatRecheck} needs of a re-check. */
-export interface RecheckSummary {
-  readonly ok: boolean;
-  /** How many statements were checked. */
-  readonly checked: number;
-  readonly findings: readonly { readonly path: string; readonly message: string }[];
-}
 
 /**
  * The report of a re-check as text to read: whether the certificate stands, and otherwise where it fails.
@@ -24,7 +17,7 @@ export interface RecheckSummary {
  * ```
  */
 export function formatRecheck(
-  report: RecheckSummary,
+  report: RecheckReport,
   options: { readonly width?: number; readonly findings?: number } = {},
 ): string {
   const { width = 100, findings: most = 20 } = options;

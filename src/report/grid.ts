@@ -6,6 +6,8 @@ export type Alignment = "left" | "right" | "point";
 /** A column of a plain-text grid. */
 export interface GridColumn {
   readonly title: string;
+  /** A second line of the title. */
+  readonly under?: string;
   readonly align: Alignment;
   /** Where its cells may be broken when the grid is too wide; never, if absent. */
   readonly wrap?: "words" | "terms";
@@ -23,6 +25,9 @@ export interface GridOptions {
 
 const GAP = "  ";
 
+/** A column is not made narrower than this: one short word a line reads worse than a line too long. */
+const LEAST_WIDTH = 36;
+
 /** Sets rows of cells in aligned columns under their titles; returns the lines, without blanks at their ends. */
 export function grid(
   columns: readonly GridColumn[],
@@ -34,7 +39,7 @@ export function grid(
     const cells = rows.map((row) => row[c] ?? "");
     return column.align === "point" ? alignPoints(cells) : cells;
   });
-  const widths = columns.map((column, c) => Math.max(textWidth(column.title), ...(set[c] ?? []).map(textWidth)));
+  const widths = columns.map((column, c) => Math.max(titleWidth(column), ...(set[c] ?? []).map(textWidth)));
   if (options.maxWidth !== undefined) shrink(columns, set, widths, options.maxWidth - textWidth(indent));
   const total = widths.reduce((sum, width) => sum + width, GAP.length * Math.max(0, widths.length - 1));
   const line = (cells: readonly string[]): string => {
@@ -45,7 +50,10 @@ export function grid(
     return (indent + padded.join(GAP)).trimEnd();
   };
   const rule = (stroke: string): string => indent + stroke.repeat(total);
-  const lines = [line(columns.map((column) => column.title)), rule("─")];
+  const under = columns.map((column) => column.under ?? "");
+  const lines = [line(columns.map((column) => column.title))];
+  if (under.some((title) => title !== "")) lines.push(line(under));
+  lines.push(rule("─"));
   rows.forEach((_, r) => {
     if (r > 0 && rulesBefore?.has(r) === true) lines.push(rule("┈"));
     const broken = columns.map((column, c) => breakCell(set[c]?.[r] ?? "", column.wrap, widths[c] ?? 0));
@@ -53,6 +61,10 @@ export function grid(
     for (let k = 0; k < height; k++) lines.push(line(broken.map((part) => part[k] ?? "")));
   });
   return lines;
+}
+
+function titleWidth({ title, under = "" }: GridColumn): number {
+  return Math.max(textWidth(title), textWidth(under));
 }
 
 /** Takes width from the columns whose cells may be broken, the widest first, until the grid fits or cannot shrink further. */
@@ -65,9 +77,13 @@ function shrink(
   const least = columns.map((column, c) =>
     column.wrap === undefined
       ? (widths[c] ?? 0)
-      : Math.max(
-          textWidth(column.title),
-          ...(set[c] ?? []).flatMap((cell) => chunksOf(cell, column.wrap).map((chunk) => textWidth(chunk) + 2)),
+      : Math.min(
+          widths[c] ?? 0,
+          Math.max(
+            LEAST_WIDTH,
+            titleWidth(column),
+            ...(set[c] ?? []).flatMap((cell) => chunksOf(cell, column.wrap).map((chunk) => textWidth(chunk) + 2)),
+          ),
         ),
   );
   let excess = widths.reduce((sum, width) => sum + width, GAP.length * Math.max(0, widths.length - 1)) - maxWidth;

@@ -13,7 +13,7 @@ type Json = string | number | boolean | null | readonly Json[] | { readonly [key
 export function jsonTable(table: Table): string {
   const json: Json = {
     unit: table.unit,
-    columns: table.columns.map(({ key, title, unit, kind }): Json => ({ key, title, unit, kind })),
+    columns: table.columns.map(({ key, title, remark, unit, kind }): Json => ({ key, title, remark, unit, kind })),
     rows: table.rows.map(
       (row): Json => ({
         at: { state: row.state, level: row.level },

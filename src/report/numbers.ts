@@ -40,6 +40,12 @@ export function numberText(x: number, digits = 6): string {
   return typeset(exponent < -4 || exponent >= 15 ? scientific : String(Number(scientific)));
 }
 
+/** A number of which only the size matters: two digits, with an exponent from a million on. */
+export function roughText(x: number): string {
+  const text = numberText(x, 2);
+  return Math.abs(x) >= 1e6 && Number.isFinite(x) ? typeset(stripZeros(x.toExponential(1))) : text;
+}
+
 /**
  * A bound, rounded up to one digit, or to two where the first is 1: `"4e−15"`, `"1.3e−15"`, `"0.03"`. What is printed is never
  * smaller than what was proved.
@@ -117,7 +123,7 @@ function plain(rounded: number, place: number | undefined): string {
   return place === undefined || place > 0 ? String(rounded) : rounded.toFixed(-place);
 }
 
-/** A complex number to so many digits: `"0.5 + 0.5i"`, `"−0.5i"`; both parts are rounded at the same place. */
+/** A complex number to so many digits: `"0.5+0.5i"`, `"−0.5i"`; both parts are rounded at the same place. */
 export function complexText(re: number, im: number, digits = 6): string {
   const place = exponentOf(Math.hypot(re, im)) - digits + 1;
   const part = (x: number): string => typeset(stripZeros(roundedTo(x, place)));
@@ -126,5 +132,5 @@ export function complexText(re: number, im: number, digits = 6): string {
   if (size === "0") return real;
   const imaginary = size === "1" ? "i" : `${size}i`;
   if (real === "0") return im < 0 ? `${MINUS}${imaginary}` : imaginary;
-  return `${real} ${im < 0 ? MINUS : "+"} ${imaginary}`;
+  return `${real}${im < 0 ? MINUS : "+"}${imaginary}`;
 }

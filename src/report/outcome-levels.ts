@@ -1,6 +1,6 @@
 import type { LevelResult, Study } from "../certify/outcome.js";
 import { type GridColumn, grid } from "./grid.js";
-import { boundText, NOTHING, numberText } from "./numbers.js";
+import { boundText, NOTHING, numberText, roughText, supportedText } from "./numbers.js";
 import { counted, withUnit } from "./sentences.js";
 
 /** One line a level: energy, verdict, what tells its states apart, the largest |V| bound, the guard, the safe orders. */
@@ -23,14 +23,12 @@ export function levelLines(study: Study, most: number): string[] {
   ];
   const rows = shown.map((level) => [
     String(level.place),
-    numberText(level.energy, 10),
+    energyText(study, level),
     String(level.degeneracy),
     level.verdict,
     toldApart(level),
-    ...study.perturbations.map((_, p) =>
-      level.degeneracy === 1 ? NOTHING : boundText(level.evidence.largest[p] ?? 0),
-    ),
-    numberText(Math.max(level.guard.outside, level.guard.inside), 2),
+    ...study.perturbations.map((_, p) => couplingText(level, p)),
+    roughText(Math.max(level.guard.outside, level.guard.inside)),
     String(level.safe.energies),
     String(level.safe.states),
   ]);
@@ -44,17 +42,28 @@ export function levelLines(study: Study, most: number): string[] {
 export function levelLegend(study: Study): string[] {
   const guard = study.levels[0]?.guard;
   if (guard === undefined) return [];
-  const lambda = `λ = ${numberText(guard.lambda, 4)}${guard.stated ? "" : " (not stated)"}`;
+  const lambda = `λ\u00a0=\u00a0${numberText(guard.lambda, 4)}${guard.stated ? "" : " (not stated)"}`;
   const radii = study.levels.flatMap((level) => level.guard.radius.flatMap((radius) => radius ?? []));
   const radius =
     radii.length === 0
       ? ""
-      : ` Kato's bound: every series converges at least for |λ| < ${numberText(roundedDown(Math.min(...radii)), 2)}.`;
+      : ` Kato's bound: the series of these levels converge at least for |λ|\u00a0<\u00a0${numberText(roundedDown(Math.min(...radii)), 2)}.`;
   return [
     `guard: largest ratio of coupling to distance in energy, over other levels and inside the level, at ${lambda}; refused ` +
       `above ${numberText(guard.refuseAbove)}.${radius}`,
     "safe: the short formulas hold through this order, for energies (E) and for states (ψ).",
   ];
+}
+
+/** The energy as far as its enclosure and the width of the level allow. */
+function energyText(study: Study, level: LevelResult): string {
+  return supportedText(level.energy, study.whole.energyEnclosure + level.spread, 10);
+}
+
+/** The largest bound on an element inside the level; with more digits where it is an element and not mere rounding. */
+function couplingText({ degeneracy, evidence, couplings }: LevelResult, p: number): string {
+  if (degeneracy === 1) return NOTHING;
+  return boundText(evidence.largest[p] ?? 0, couplings.length > 0 ? 3 : undefined);
 }
 
 /** Two digits, never more than was proved. */
@@ -93,5 +102,5 @@ function verdictCounts(levels: readonly LevelResult[], shown: readonly LevelResu
 export function levelName(study: Study, index: number): string {
   const level = study.levels[index];
   if (level === undefined) return `level ${index}`;
-  return `level ${level.place} (E0 = ${withUnit(numberText(level.energy, 10), study.unit)})`;
+  return `level ${level.place} (E0 = ${withUnit(energyText(study, level), study.unit)})`;
 }

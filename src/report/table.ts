@@ -28,8 +28,10 @@ export type Cell =
 export interface TableColumn {
   /** Unique: `"level"`, `"E0"`, `"label:Jz"`, `"E1:V"`, `"E2:V·V"`, `"expansion"` and so on. */
   readonly key: string;
-  /** What stands at its head, without the unit. */
+  /** What stands at its head, without remark and unit. */
   readonly title: string;
+  /** For labels that are no evidence: `descriptive` or `broken`. */
+  readonly remark: "" | "descriptive" | "broken";
   /** Empty where the column has none. */
   readonly unit: string;
   /** The kind of its cells; any of them may be `none`. */

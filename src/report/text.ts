@@ -1,34 +1,35 @@
-import { wrapProse } from "./characters.js";
+import { visible, wrapProse } from "./characters.js";
 import { type GridColumn, grid } from "./grid.js";
 import type { Table, TableColumn } from "./table.js";
-import { bodyText, headText, levelStarts } from "./typeset-cell.js";
+import { bodyText, headRemark, levelStarts } from "./typeset-cell.js";
 
-const NOTES_WIDTH = 100;
+const DEFAULT_WIDTH = 120;
 
 /** Aligned columns with rules between levels, and the notes below. */
-export function textTable(table: Table, digits: number, notes: boolean, maxWidth: number | undefined): string {
+export function textTable(table: Table, digits: number, notes: boolean, maxWidth: number = DEFAULT_WIDTH): string {
   const lines = grid(table.columns.map(gridColumn), bodyText(table, digits), {
     rulesBefore: levelStarts(table),
-    ...(maxWidth === undefined ? {} : { maxWidth }),
+    maxWidth,
   });
   if (notes && table.notes.length > 0) {
-    lines.push("", ...table.notes.flatMap((note) => wrapProse(note, maxWidth ?? NOTES_WIDTH, "  ")));
+    lines.push("", ...table.notes.flatMap((note) => wrapProse(note, maxWidth, "  ")));
   }
   return lines.join("\n");
 }
 
 function gridColumn(column: TableColumn): GridColumn {
-  const title = headText(column);
+  const title = visible(column.title);
+  const under = visible(headRemark(column));
   switch (column.kind) {
     case "number":
     case "label":
-      return { title, align: "right" };
+      return { title, under, align: "right" };
     case "bounded":
-      return { title, align: "point" };
+      return { title, under, align: "point" };
     case "text":
-      return { title, align: "left" };
+      return { title, under, align: "left" };
     case "expansion":
-      return { title, align: "left", wrap: "terms" };
+      return { title, under, align: "left", wrap: "terms" };
     default:
       return column.kind satisfies never;
   }

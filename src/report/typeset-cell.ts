@@ -32,9 +32,15 @@ export function cellText(
   }
 }
 
-/** The head of a column with its unit. */
+/** The head of a column with its remark and unit: "J2 (descriptive)", "E0 [cm⁻¹]". */
 export function headText(column: TableColumn): string {
-  return visible(column.unit === "" ? column.title : `${column.title} [${column.unit}]`);
+  const remark = headRemark(column);
+  return visible(remark === "" ? column.title : `${column.title} ${remark}`);
+}
+
+/** What stands beside or below a title. */
+export function headRemark({ remark, unit }: TableColumn): string {
+  return [remark === "" ? "" : `(${remark})`, unit === "" ? "" : `[${unit}]`].filter((part) => part !== "").join(" ");
 }
 
 /** All cells as text; what the row above in the same level says already is left out in columns that speak of levels. */

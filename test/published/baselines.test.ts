@@ -1,7 +1,18 @@
 import { describe, expect, it } from "vitest";
 import { Operator } from "../../src/index.js";
 import { oscillator } from "../../src/models/oscillator.js";
-import { bruteForce, expectAllOrders, expectEnclosed, expectNear, expectValues, goodBasis, pick, second, shift, symmetric } from "./support.js";
+import {
+  bruteForce,
+  expectAllOrders,
+  expectEnclosed,
+  expectNear,
+  expectValues,
+  goodBasis,
+  pick,
+  second,
+  shift,
+  symmetric,
+} from "./support.js";
 
 // Bender and Wu, Phys. Rev. 184, 1231 (1969): E = 1/2 + (3/4)λ − (21/8)λ² + …; from memory. E1 = (6n² + 6n + 3)/4 and
 // E2 = −(34n³ + 51n² + 59n + 21)/8 of the excited states are from memory too.
@@ -43,7 +54,10 @@ describe("quartic anharmonic oscillator", () => {
 // Exact roots V0(1 − ε) and (V0/2)(3 ± √(1 + 4ε²)): Griffiths and Schroeter, Introduction to Quantum Mechanics; from memory.
 describe("three levels, two of them degenerate", () => {
   const h0 = Operator.diagonal([1, 1, 2]);
-  const v = symmetric(3, [[0, 0, -1], [1, 2, 1]]);
+  const v = symmetric(3, [
+    [0, 0, -1],
+    [1, 2, 1],
+  ]);
   const basis = goodBasis({ h0, v, candidates: { A: Operator.diagonal([1, 0, 0]) } }, { depth: "labels" });
 
   it("E1 = −1, 0, 0 and E2 = 0, −1, 1", () => {
@@ -59,7 +73,15 @@ describe("three levels, two of them degenerate", () => {
 
   it("agrees with the exact roots at ε = 0.3", () => {
     const root = Math.sqrt(1 + 4 * 0.09);
-    expectValues(bruteForce(h0.plus(v.scale(0.3))), [[0.7, 1], [(3 + root) / 2, 1], [(3 - root) / 2, 1]], 1e-12);
+    expectValues(
+      bruteForce(h0.plus(v.scale(0.3))),
+      [
+        [0.7, 1],
+        [(3 + root) / 2, 1],
+        [(3 - root) / 2, 1],
+      ],
+      1e-12,
+    );
   });
 
   it("needs no label to be good: V tells the pair apart at first order", () => {

@@ -53,7 +53,9 @@ describe("cubic box with a quarter of it raised", () => {
     expect(labelled.levels[0]?.couplings).toEqual([]);
     const basis = goodBasis(alone, { levels: { nearest: 6 } });
     for (const state of levelAt(basis, 6)) {
-      expect(state.safe).toEqual(state.labels.X.re > 0 ? { energies: 2, states: 0 } : { energies: "all", states: "all" });
+      expect(state.safe).toEqual(
+        state.labels.X.re > 0 ? { energies: 2, states: 0 } : { energies: "all", states: "all" },
+      );
     }
   });
 });

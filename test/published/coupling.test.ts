@@ -3,7 +3,16 @@ import { Operator } from "../../src/index.js";
 import { angularMomentum } from "../../src/models/angular-momentum.js";
 import { productSpace } from "../../src/models/product-space.js";
 import { spinChain } from "../../src/models/spin-chain.js";
-import { coefficient, expectAllOrders, expectEnclosed, expectNear, goodBasis, overlap, pick, shift } from "./support.js";
+import {
+  coefficient,
+  expectAllOrders,
+  expectEnclosed,
+  expectNear,
+  goodBasis,
+  overlap,
+  pick,
+  shift,
+} from "./support.js";
 
 // Particle Data Group, Review of Particle Physics, table of Clebsch–Gordan coefficients; values from memory, confirmed
 // against DLMF 34.2.4 with the phases of 34.1.1.
@@ -12,31 +21,116 @@ describe("Clebsch–Gordan coefficients", () => {
   const third = Math.sqrt(1 / 3);
   const thirds = Math.sqrt(2 / 3);
   const quarters = Math.sqrt(3 / 4);
-  type Row = { J: number; M: number; e1: number; components: readonly (readonly [m1: number, m2: number, c: number])[] };
+  type Row = {
+    J: number;
+    M: number;
+    e1: number;
+    components: readonly (readonly [m1: number, m2: number, c: number])[];
+  };
   const tables: { j1: number; rows: readonly Row[] }[] = [
     {
       j1: 0.5,
       rows: [
-        { J: 1, M: 0, e1: 0.25, components: [[0.5, -0.5, half], [-0.5, 0.5, half]] },
-        { J: 0, M: 0, e1: -0.75, components: [[0.5, -0.5, half], [-0.5, 0.5, -half]] },
+        {
+          J: 1,
+          M: 0,
+          e1: 0.25,
+          components: [
+            [0.5, -0.5, half],
+            [-0.5, 0.5, half],
+          ],
+        },
+        {
+          J: 0,
+          M: 0,
+          e1: -0.75,
+          components: [
+            [0.5, -0.5, half],
+            [-0.5, 0.5, -half],
+          ],
+        },
       ],
     },
     {
       j1: 1,
       rows: [
-        { J: 1.5, M: 0.5, e1: 0.5, components: [[1, -0.5, third], [0, 0.5, thirds]] },
-        { J: 0.5, M: 0.5, e1: -1, components: [[1, -0.5, thirds], [0, 0.5, -third]] },
-        { J: 1.5, M: -0.5, e1: 0.5, components: [[0, -0.5, thirds], [-1, 0.5, third]] },
-        { J: 0.5, M: -0.5, e1: -1, components: [[0, -0.5, third], [-1, 0.5, -thirds]] },
+        {
+          J: 1.5,
+          M: 0.5,
+          e1: 0.5,
+          components: [
+            [1, -0.5, third],
+            [0, 0.5, thirds],
+          ],
+        },
+        {
+          J: 0.5,
+          M: 0.5,
+          e1: -1,
+          components: [
+            [1, -0.5, thirds],
+            [0, 0.5, -third],
+          ],
+        },
+        {
+          J: 1.5,
+          M: -0.5,
+          e1: 0.5,
+          components: [
+            [0, -0.5, thirds],
+            [-1, 0.5, third],
+          ],
+        },
+        {
+          J: 0.5,
+          M: -0.5,
+          e1: -1,
+          components: [
+            [0, -0.5, third],
+            [-1, 0.5, -thirds],
+          ],
+        },
       ],
     },
     {
       j1: 1.5,
       rows: [
-        { J: 2, M: 1, e1: 0.75, components: [[1.5, -0.5, 0.5], [0.5, 0.5, quarters]] },
-        { J: 1, M: 1, e1: -1.25, components: [[1.5, -0.5, quarters], [0.5, 0.5, -0.5]] },
-        { J: 2, M: 0, e1: 0.75, components: [[0.5, -0.5, half], [-0.5, 0.5, half]] },
-        { J: 1, M: 0, e1: -1.25, components: [[0.5, -0.5, half], [-0.5, 0.5, -half]] },
+        {
+          J: 2,
+          M: 1,
+          e1: 0.75,
+          components: [
+            [1.5, -0.5, 0.5],
+            [0.5, 0.5, quarters],
+          ],
+        },
+        {
+          J: 1,
+          M: 1,
+          e1: -1.25,
+          components: [
+            [1.5, -0.5, quarters],
+            [0.5, 0.5, -0.5],
+          ],
+        },
+        {
+          J: 2,
+          M: 0,
+          e1: 0.75,
+          components: [
+            [0.5, -0.5, half],
+            [-0.5, 0.5, half],
+          ],
+        },
+        {
+          J: 1,
+          M: 0,
+          e1: -1.25,
+          components: [
+            [0.5, -0.5, half],
+            [-0.5, 0.5, -half],
+          ],
+        },
       ],
     },
   ];

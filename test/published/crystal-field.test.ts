@@ -42,9 +42,30 @@ const orbitals = [
 // −2.67 and 1.78 Dq seen in a public copy (table after Day and Selbin, 1962); the cube's −8/9 from memory.
 describe("d orbitals in cubic fields", () => {
   const fields = [
-    { field: "octahedral", scale: 1, values: [[6, 2], [-4, 3]] as const },
-    { field: "tetrahedral", scale: -4 / 9, values: [[-8 / 3, 2], [16 / 9, 3]] as const },
-    { field: "cubic", scale: -8 / 9, values: [[-16 / 3, 2], [32 / 9, 3]] as const },
+    {
+      field: "octahedral",
+      scale: 1,
+      values: [
+        [6, 2],
+        [-4, 3],
+      ] as const,
+    },
+    {
+      field: "tetrahedral",
+      scale: -4 / 9,
+      values: [
+        [-8 / 3, 2],
+        [16 / 9, 3],
+      ] as const,
+    },
+    {
+      field: "cubic",
+      scale: -8 / 9,
+      values: [
+        [-16 / 3, 2],
+        [32 / 9, 3],
+      ] as const,
+    },
   ];
   const h0 = Operator.zero(5);
 
@@ -129,7 +150,15 @@ describe("spin-1 zero-field splitting", () => {
     const basis = goodBasis({ h0: axial, v: rhombic, candidates: { C2x: rotation } }, { depth: "labels" });
     expectAllOrders(basis.study);
     const sums = basis.states.map((state) => state.energy + shift(state).value);
-    expectValues(sums, [[D / 3 + E, 1], [D / 3 - E, 1], [(-2 * D) / 3, 1]], 1e-10);
+    expectValues(
+      sums,
+      [
+        [D / 3 + E, 1],
+        [D / 3 - E, 1],
+        [(-2 * D) / 3, 1],
+      ],
+      1e-10,
+    );
   });
 
   it("T_x, with S_x T_x = 0, lies at D/3 − E", () => {
@@ -166,7 +195,14 @@ describe("spin-1 zero-field splitting", () => {
     const basis = goodBasis(problem);
     for (const state of levelAt(basis, D / 3)) expect(state.safe).toEqual({ energies: 2, states: 0 });
     expect(pick(basis, (-2 * D) / 3).safe).toEqual({ energies: "all", states: "all" });
-    expectValues(shifts(levelAt(basis, D / 3)), [[E, 1], [-E, 1]], 1e-10);
+    expectValues(
+      shifts(levelAt(basis, D / 3)),
+      [
+        [E, 1],
+        [-E, 1],
+      ],
+      1e-10,
+    );
     const { index } = pick(basis, (-2 * D) / 3);
     expect(perturb(basis, { states: 1, select: [index] }).states).toHaveLength(1);
     const unsafe = (): unknown => perturb(basis, { states: 1 });
@@ -203,7 +239,13 @@ describe("Kramers doublets in even crystal fields", () => {
     );
     // exp(−iπm): −i for m = 1/2, i for m = −1/2, period 2.
     const turn = Array.from({ length: n }, (_, k) => ({ re: 0, im: (((j - k - 0.5) % 2) + 2) % 2 === 0 ? -1 : 1 }));
-    const C2z = { operator: ketPermutation(turn.map((_, k) => k), turn), label: { root: 4 } } as const;
+    const C2z = {
+      operator: ketPermutation(
+        turn.map((_, k) => k),
+        turn,
+      ),
+      label: { root: 4 },
+    } as const;
     const basis = goodBasis({ h0: axialField(j), v, candidates: { C2z } }, { depth: "labels" });
     expectAllOrders(basis.study);
     expect(basis.levels.map((level) => level.degeneracy)).toEqual(new Array<number>(j + 0.5).fill(2));
@@ -268,7 +310,9 @@ function cubicHarmonic() {
     return sum;
   };
   const square = Math.sqrt(1 / 3);
-  const corners = [-1, 1].flatMap((a) => [-1, 1].flatMap((b) => [-1, 1].map((c) => [a * square, b * square, c * square])));
+  const corners = [-1, 1].flatMap((a) =>
+    [-1, 1].flatMap((b) => [-1, 1].map((c) => [a * square, b * square, c * square])),
+  );
   const faces = [0, 1, 2].flatMap((axis) => [-1, 1].map((sign) => [0, 1, 2].map((k) => (k === axis ? sign : 0))));
   const cubic = (points: readonly (readonly number[])[]): number =>
     points.reduce((sum, p) => sum + p.reduce((all, x) => all + x ** 4, 0) - 3 / 5, 0);

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { auditCommutators, findGoodBasis, Operator } from "../../src/index.js";
+import { auditCommutators, findGoodBasis, type Operator } from "../../src/index.js";
 import { angularMomentum } from "../../src/models/angular-momentum.js";
 import { productSpace } from "../../src/models/product-space.js";
 import { expectAllOrders, expectEnclosed, expectNear, goodBasis, pick, second, shift, solved } from "./support.js";
@@ -14,7 +14,12 @@ function pair(a: number, b: number) {
   const z = [first(one.z), other(two.z)] as const;
   const dot = first(one.z)
     .times(other(two.z))
-    .plus(first(one.plus).times(other(two.minus)).plus(first(one.minus).times(other(two.plus))).scale(0.5));
+    .plus(
+      first(one.plus)
+        .times(other(two.minus))
+        .plus(first(one.minus).times(other(two.plus)))
+        .scale(0.5),
+    );
   const squared = first(one.squared).plus(other(two.squared)).plus(dot.scale(2));
   return { n: space.n, z, dot, squared, kets: space.kets([one.kets, two.kets]) };
 }

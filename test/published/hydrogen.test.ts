@@ -29,7 +29,15 @@ describe("linear Stark effect of hydrogen, n = 2", () => {
   it("gives shifts 3, 0, 0, −3 with distinct labels (m, k)", () => {
     const basis = goodBasis({ h0, v: z, candidates: { Lz, Az }, kets }, { depth: "labels" });
     expectAllOrders(basis.study);
-    expectValues(shifts(basis.states), [[3, 1], [0, 2], [-3, 1]], 1e-9);
+    expectValues(
+      shifts(basis.states),
+      [
+        [3, 1],
+        [0, 2],
+        [-3, 1],
+      ],
+      1e-9,
+    );
     const labels = basis.states.map(({ labels: { Lz: m, Az: k } }) => `${m.text},${k.text}`);
     expect([...labels].sort()).toEqual(["0,1", "0,−1", "1,0", "−1,0"]);
     for (const state of basis.states) {
@@ -46,7 +54,15 @@ describe("linear Stark effect of hydrogen, n = 2", () => {
   });
 
   it("agrees with diagonalising z", () => {
-    expectValues(bruteForce(z), [[3, 1], [0, 2], [-3, 1]], 1e-9);
+    expectValues(
+      bruteForce(z),
+      [
+        [3, 1],
+        [0, 2],
+        [-3, 1],
+      ],
+      1e-9,
+    );
   });
 });
 
@@ -54,13 +70,21 @@ describe("linear Stark effect of hydrogen, n = 2", () => {
 // function −(r + r²/2) cos θ ψ of Dalgarno and Lewis lies in the span of 1s and two Laguerre functions of p type.
 describe("quadratic Stark effect of hydrogen 1s", () => {
   const root = Math.sqrt(5) / 10;
-  const h0 = symmetric(3, [[0, 0, -0.5], [1, 2, root], [2, 2, 0.4]]);
+  const h0 = symmetric(3, [
+    [0, 0, -0.5],
+    [1, 2, root],
+    [2, 2, 0.4],
+  ]);
   const v = symmetric(3, [[0, 1, 1]]);
 
   it("has the matrices of the stated functions", () => {
     // Overlaps of the radial functions, integrated in closed form: ∫ r^k e^{−2r} dr = k!/2^{k+1}.
     const { h, z } = laguerreMatrices();
-    const wanted = [[-0.5, 0, 0], [0, 0, root], [0, root, 0.4]];
+    const wanted = [
+      [-0.5, 0, 0],
+      [0, 0, root],
+      [0, root, 0.4],
+    ];
     wanted.forEach((row, i) => {
       row.forEach((value, j) => {
         expectNear(h[i]?.[j] ?? Number.NaN, value, 1e-12);
@@ -96,7 +120,10 @@ describe("quadratic Stark effect of hydrogen 1s", () => {
   it("falls short with 400 bound states as the closed form says", () => {
     const levels = Array.from({ length: 400 }, (_, k) => k + 1);
     const h0Bound = Operator.diagonal(levels.map((n) => -1 / (2 * n * n)));
-    const vBound = symmetric(400, levels.slice(1).map((n) => [0, n - 1, Math.sqrt(radialSquare(n) / 3)]));
+    const vBound = symmetric(
+      400,
+      levels.slice(1).map((n) => [0, n - 1, Math.sqrt(radialSquare(n) / 3)]),
+    );
     const basis = goodBasis({ h0: h0Bound, v: vBound }, { levels: { lowest: 1 } });
     const sum = levels.slice(1).reduce((all, n) => all + radialSquare(n) / 3 / (-0.5 + 1 / (2 * n * n)), 0);
     expectEnclosed(second(basis, pick(basis, -0.5)), sum, 1e-10);

@@ -14,7 +14,13 @@ function rotor(most: number, step: number, element: number) {
     kets.slice(step).map((k) => [k - step, k, element]),
   );
   const reflection = { operator: ketPermutation(kets.map((k) => n - 1 - k)), label: "parity" } as const;
-  const parity = { operator: ketPermutation(kets, kets.map((k) => ((most - k) % 2 === 0 ? 1 : -1))), label: "parity" } as const;
+  const parity = {
+    operator: ketPermutation(
+      kets,
+      kets.map((k) => ((most - k) % 2 === 0 ? 1 : -1)),
+    ),
+    label: "parity",
+  } as const;
   return { h0, v, reflection, parity };
 }
 

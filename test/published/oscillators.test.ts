@@ -31,9 +31,15 @@ function planeOscillator(most: number) {
   );
   const h0 = Operator.diagonal(kets.map(([x, y]) => x + y + 1));
   const v = symmetric(kets.length, elements);
-  const exchange = { operator: ketPermutation(kets.map(([x, y]) => place.get(`${y},${x}`) ?? -1)), label: "parity" } as const;
+  const exchange = {
+    operator: ketPermutation(kets.map(([x, y]) => place.get(`${y},${x}`) ?? -1)),
+    label: "parity",
+  } as const;
   const parity = {
-    operator: ketPermutation(kets.map((_, k) => k), kets.map(([x, y]) => ((x + y) % 2 === 0 ? 1 : -1))),
+    operator: ketPermutation(
+      kets.map((_, k) => k),
+      kets.map(([x, y]) => ((x + y) % 2 === 0 ? 1 : -1)),
+    ),
     label: "parity",
   } as const;
   return { h0, v, candidates: { exchange, parity } };
@@ -46,7 +52,15 @@ describe("isotropic oscillator in the plane with V = xy", () => {
 
   it("three kets: first-order shifts 0, 1/2, −1/2", () => {
     const basis = goodBasis(planeOscillator(1), { depth: "labels" });
-    expectValues(shifts(basis.states), [[0, 1], [0.5, 1], [-0.5, 1]], 1e-12);
+    expectValues(
+      shifts(basis.states),
+      [
+        [0, 1],
+        [0.5, 1],
+        [-0.5, 1],
+      ],
+      1e-12,
+    );
   });
 
   it("first excited level: E1 = ±1/2, E2 = −1/4, by exchange alone", () => {
@@ -81,7 +95,15 @@ describe("isotropic oscillator in the plane with V = xy", () => {
     const labelled = findGoodBasis(problem, { levels: { nearest: 3 }, depth: "labels" });
     expect(labelled.verdict).toBe("not good");
     const basis = goodBasis(problem, { levels: { nearest: 3 } });
-    expectValues(shifts(basis.states), [[1, 1], [0, 1], [-1, 1]], 1e-12);
+    expectValues(
+      shifts(basis.states),
+      [
+        [1, 1],
+        [0, 1],
+        [-1, 1],
+      ],
+      1e-12,
+    );
     const [odd, ...even] = [...levelAt(basis, 3)].sort((a, b) => a.labels.exchange.re - b.labels.exchange.re);
     expect(odd?.safe).toEqual({ energies: "all", states: "all" });
     for (const state of even) expect(state.safe).toEqual({ energies: 2, states: 0 });

@@ -10,7 +10,16 @@ import {
 import { angularMomentum } from "../../src/models/angular-momentum.js";
 import { ketPermutation } from "../../src/models/permutations.js";
 import { perturb } from "../../src/perturb/perturb.js";
-import { bruteForce, expectAllOrders, expectNear, expectValues, goodBasis, pick, shifts, symmetric } from "./support.js";
+import {
+  bruteForce,
+  expectAllOrders,
+  expectNear,
+  expectValues,
+  goodBasis,
+  pick,
+  shifts,
+  symmetric,
+} from "./support.js";
 
 // The linear Stark effect of hydrogen, n = 2, kets 2s, 2p m = +1, 0, −1.
 const stark = { h0: Operator.diagonal([-1 / 8, -1 / 8, -1 / 8, -1 / 8]), v: symmetric(4, [[0, 2, -3]]) };
@@ -84,7 +93,10 @@ describe("L_x and L_z together", () => {
 // Distinct eigenvalues are needed; common practice.
 describe("L_z alone for the n = 2 Stark effect", () => {
   it("is refused with labels: 2s and 2p0 share m = 0 and are coupled by 3", () => {
-    const outcome = findGoodBasis({ ...stark, candidates: { Lz: starkLz }, kets: ["2s", "2p+1", "2p0", "2p−1"] }, { depth: "labels" });
+    const outcome = findGoodBasis(
+      { ...stark, candidates: { Lz: starkLz }, kets: ["2s", "2p+1", "2p0", "2p−1"] },
+      { depth: "labels" },
+    );
     expect(outcome.verdict).toBe("not good");
     if (outcome.verdict !== "not good") return;
     expect(outcome.couplings).toHaveLength(1);
@@ -100,7 +112,15 @@ describe("L_z alone for the n = 2 Stark effect", () => {
 
   it("is good at full depth, V telling the pair apart, with energies safe through 2", () => {
     const basis = goodBasis({ ...stark, candidates: { Lz: starkLz } });
-    expectValues(shifts(basis.states), [[3, 1], [0, 2], [-3, 1]], 1e-9);
+    expectValues(
+      shifts(basis.states),
+      [
+        [3, 1],
+        [0, 2],
+        [-3, 1],
+      ],
+      1e-9,
+    );
     for (const state of basis.states) {
       const own = state.labels.Lz.text === "0" ? { energies: 2, states: 0 } : { energies: "all", states: "all" };
       expect(state.safe).toEqual(own);
@@ -114,12 +134,25 @@ describe("L_z alone for the n = 2 Stark effect", () => {
 // Elementary closed form; common practice.
 describe("levels 1e-9 apart that V couples by 1e-3", () => {
   const h0 = Operator.diagonal([0, 1e-9, 1]);
-  const v = symmetric(3, [[0, 1, 1e-3], [1, 2, 0.1]]);
+  const v = symmetric(3, [
+    [0, 1, 1e-3],
+    [1, 2, 0.1],
+  ]);
 
   it("the naive second order is −1000 where the truth is ±1e-3", () => {
     expectNear(-(v.entry(0, 1).re ** 2) / 1e-9, -1000, 1e-6);
-    const corner = symmetric(2, [[1, 1, 1e-9], [0, 1, 1e-3]]);
-    expectValues(bruteForce(corner), [[1e-3, 1], [-1e-3, 1]], 1e-8);
+    const corner = symmetric(2, [
+      [1, 1, 1e-9],
+      [0, 1, 1e-3],
+    ]);
+    expectValues(
+      bruteForce(corner),
+      [
+        [1e-3, 1],
+        [-1e-3, 1],
+      ],
+      1e-8,
+    );
   });
 
   it.each([
@@ -176,10 +209,33 @@ describe("bad input", () => {
   const one = Operator.identity(2);
   const { plus } = angularMomentum(1);
   const cases: { what: string; problem: Problem; code: ErrorCode; size?: number }[] = [
-    { what: "V not Hermitian", problem: { h0: one, v: [[0, 1], [0, 0]] }, code: "not-hermitian", size: Math.SQRT2 },
+    {
+      what: "V not Hermitian",
+      problem: {
+        h0: one,
+        v: [
+          [0, 1],
+          [0, 0],
+        ],
+      },
+      code: "not-hermitian",
+      size: Math.SQRT2,
+    },
     {
       what: "H0 symmetric but not Hermitian",
-      problem: { h0: { re: [[0, 0], [0, 0]], im: [[0, 1], [1, 0]] }, v: one },
+      problem: {
+        h0: {
+          re: [
+            [0, 0],
+            [0, 0],
+          ],
+          im: [
+            [0, 1],
+            [1, 0],
+          ],
+        },
+        v: one,
+      },
       code: "not-hermitian",
       size: 2 * Math.SQRT2,
     },
@@ -195,7 +251,17 @@ describe("bad input", () => {
       code: "shape",
     },
     { what: "V of another size", problem: { h0: Operator.zero(3), v: one }, code: "shape" },
-    { what: "NaN in V", problem: { h0: one, v: [[0, Number.NaN], [Number.NaN, 0]] }, code: "not-finite" },
+    {
+      what: "NaN in V",
+      problem: {
+        h0: one,
+        v: [
+          [0, Number.NaN],
+          [Number.NaN, 0],
+        ],
+      },
+      code: "not-finite",
+    },
     {
       what: "an infinite entry in a candidate",
       problem: { h0: one, v: one, candidates: { A: { diagonal: [1, Number.POSITIVE_INFINITY] } } },
@@ -213,7 +279,10 @@ describe("bad input", () => {
     const C4z = ketPermutation([0, 1, 2], [{ re: 0, im: -1 }, 1, { re: 0, im: 1 }]);
     const audit = auditCommutators({ h0: Operator.zero(3), v: Operator.diagonal([1, 2, 1]), candidates: { C4z } });
     expect(audit.candidates[0]).toMatchObject({ kind: "unitary", conserved: true });
-    const basis = goodBasis({ h0: Operator.zero(3), v: Operator.diagonal([1, 2, 1]), candidates: { C4z } }, { depth: "labels" });
+    const basis = goodBasis(
+      { h0: Operator.zero(3), v: Operator.diagonal([1, 2, 1]), candidates: { C4z } },
+      { depth: "labels" },
+    );
     expect(pick(basis, 0, { C4z: { re: 0, im: 1 } }).vector.kets).toEqual(Int32Array.of(2));
   });
 });

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { auditCommutators, Operator } from "../../src/index.js";
+import { auditCommutators, type Operator } from "../../src/index.js";
 import { type Bond, hopping } from "../../src/models/lattice.js";
 import { ketPermutation } from "../../src/models/permutations.js";
 import {
@@ -32,7 +32,16 @@ describe("benzene with one substituted atom", () => {
   const basis = goodBasis({ h0, v, candidates: { sigma } }, { depth: "labels" });
 
   it("has the levels −2, −1 (twice), 1 (twice), 2", () => {
-    expectValues(bruteForce(h0), [[-2, 1], [-1, 2], [1, 2], [2, 1]], 1e-10);
+    expectValues(
+      bruteForce(h0),
+      [
+        [-2, 1],
+        [-1, 2],
+        [1, 2],
+        [2, 1],
+      ],
+      1e-10,
+    );
     expectAllOrders(basis.study);
   });
 
@@ -65,12 +74,20 @@ describe("benzene with one substituted atom", () => {
   });
 
   it("labels by C6 where V has its symmetry", () => {
-    const next = hopping(6, Array.from({ length: 6 }, (_, i) => [i, (i + 2) % 6] as const));
+    const next = hopping(
+      6,
+      Array.from({ length: 6 }, (_, i) => [i, (i + 2) % 6] as const),
+    );
     const candidates = { C6: { operator: C6, label: { root: 6 } } } as const;
     const rotated = goodBasis({ h0, v: next, candidates }, { depth: "labels" });
     expectAllOrders(rotated.study);
     // Translation to the next atom has the eigenvalue exp(−2πik/6) on Σ exp(2πikj/6)|j⟩: both members of ±k.
-    for (const [energy, k] of [[-2, 0], [-1, 1], [1, 2], [2, 3]] as const) {
+    for (const [energy, k] of [
+      [-2, 0],
+      [-1, 1],
+      [1, 2],
+      [2, 3],
+    ] as const) {
       for (const sign of k === 0 || k === 3 ? [1] : [1, -1]) {
         const angle = (2 * Math.PI * sign * k) / 6;
         const state = pick(rotated, energy, { C6: { re: Math.cos(angle), im: Math.sin(angle) } });
@@ -86,11 +103,24 @@ describe("Hückel levels with reflection labels", () => {
   const golden = (1 + Math.sqrt(5)) / 2;
 
   it("butadiene: ±1.618, ±0.618", () => {
-    const chain = hopping(4, [[0, 1], [1, 2], [2, 3]]);
+    const chain = hopping(4, [
+      [0, 1],
+      [1, 2],
+      [2, 3],
+    ]);
     const sigma = ketPermutation([3, 2, 1, 0]);
     const basis = solved(chain, { sigma });
     const energies = basis.states.map((state) => state.energy);
-    expectValues(energies, [[golden, 1], [golden - 1, 1], [1 - golden, 1], [-golden, 1]], 1e-10);
+    expectValues(
+      energies,
+      [
+        [golden, 1],
+        [golden - 1, 1],
+        [1 - golden, 1],
+        [-golden, 1],
+      ],
+      1e-10,
+    );
     // Even and odd alternate; the nodeless one is even.
     expect(basis.states.map((state) => state.labels.sigma.text)).toEqual(["−1", "+1", "−1", "+1"]);
   });
@@ -101,8 +131,23 @@ describe("Hückel levels with reflection labels", () => {
     const candidates = { sigma: ketPermutation([1, 0, 3, 2]), C2: ketPermutation([2, 3, 0, 1]) };
     const basis = goodBasis({ h0, v, candidates }, { depth: "labels" });
     expectAllOrders(basis.study);
-    expectValues(bruteForce(h0), [[2, 1], [0, 2], [-2, 1]], 1e-10);
-    expectValues(shifts(levelAt(basis, 0)), [[2, 1], [-2, 1]], 1e-10);
+    expectValues(
+      bruteForce(h0),
+      [
+        [2, 1],
+        [0, 2],
+        [-2, 1],
+      ],
+      1e-10,
+    );
+    expectValues(
+      shifts(levelAt(basis, 0)),
+      [
+        [2, 1],
+        [-2, 1],
+      ],
+      1e-10,
+    );
   });
 
   it("naphthalene: ten levels, the top one (1 + √13)/2", () => {
@@ -116,7 +161,17 @@ describe("Hückel levels with reflection labels", () => {
       expectNear(value, printed[k] ?? 0, 5e-4);
     });
     const energies = basis.states.map((state) => state.energy);
-    expectValues(energies, upper.flatMap((value) => [[value, 1], [-value, 1]] as const), 1e-10);
+    expectValues(
+      energies,
+      upper.flatMap(
+        (value) =>
+          [
+            [value, 1],
+            [-value, 1],
+          ] as const,
+      ),
+      1e-10,
+    );
     expectNear(Math.max(...energies), (1 + root) / 2, 1e-11);
     for (const state of basis.states) {
       expect(["+1", "−1"]).toContain(state.labels.sx.text);

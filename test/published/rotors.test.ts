@@ -27,12 +27,27 @@ describe("asymmetric rotor", () => {
   function rotor(j: number) {
     const { n, z, plus, minus, squared } = angularMomentum(j);
     const h0 = squared.scale((B + C) / 2).plus(z.times(z).scale(A - (B + C) / 2));
-    const v = plus.power(2).plus(minus.power(2)).scale((B - C) / 4);
+    const v = plus
+      .power(2)
+      .plus(minus.power(2))
+      .scale((B - C) / 4);
     const kets = Array.from({ length: n }, (_, k) => k);
     const sign = (k: number): number => (k % 2 === 0 ? 1 : -1);
-    const Ra = { operator: ketPermutation(kets, kets.map((k) => sign(j - k))), label: parity };
+    const Ra = {
+      operator: ketPermutation(
+        kets,
+        kets.map((k) => sign(j - k)),
+      ),
+      label: parity,
+    };
     // exp(−iπJ_x)|J K⟩ = exp(−iπJ)|J, −K⟩.
-    const Rb = { operator: ketPermutation(kets.map((k) => n - 1 - k), kets.map(() => sign(j))), label: parity };
+    const Rb = {
+      operator: ketPermutation(
+        kets.map((k) => n - 1 - k),
+        kets.map(() => sign(j)),
+      ),
+      label: parity,
+    };
     return { h0, v, candidates: { Ra, Rb } };
   }
 
@@ -79,12 +94,16 @@ describe("asymmetric rotor", () => {
 // Spectroscopy, Encyclopedia of Physical Science and Technology, 3rd ed., 2001) seen in a public copy.
 describe("second-order Stark effect of a linear rotor", () => {
   const jMax = 8;
-  const kets = Array.from({ length: jMax + 1 }, (_, j) => Array.from({ length: 2 * j + 1 }, (_, k) => ({ j, m: j - k }))).flat();
+  const kets = Array.from({ length: jMax + 1 }, (_, j) =>
+    Array.from({ length: 2 * j + 1 }, (_, k) => ({ j, m: j - k })),
+  ).flat();
   const place = (j: number, m: number): number => j * j + j - m;
   const h0 = Operator.diagonal(kets.map(({ j }) => j * (j + 1)));
   const cosine = kets
     .filter(({ j, m }) => j > 0 && Math.abs(m) < j)
-    .map(({ j, m }) => [place(j - 1, m), place(j, m), Math.sqrt((j * j - m * m) / ((2 * j - 1) * (2 * j + 1)))] as const);
+    .map(
+      ({ j, m }) => [place(j - 1, m), place(j, m), Math.sqrt((j * j - m * m) / ((2 * j - 1) * (2 * j + 1)))] as const,
+    );
   const v = symmetric(kets.length, cosine).scale(-1);
   const Jz = { operator: Operator.diagonal(kets.map(({ m }) => m)), label: "m" } as const;
   const basis = goodBasis({ h0, v, candidates: { Jz } }, { depth: "labels" });

@@ -31,7 +31,15 @@ describe("two spins 1/2", () => {
     for (const m of [1, -1]) expectEnclosed(second(basis, pick(basis, 0.25, { Sz: m })), 0, 1e-10);
     const root = Math.sqrt(1 + 4 * 0.3 ** 2) / 2;
     const energies = bruteForce(dot.plus(staggered.scale(0.3)));
-    expectValues(energies, [[0.25, 2], [-0.25 + root, 1], [-0.25 - root, 1]], 1e-12);
+    expectValues(
+      energies,
+      [
+        [0.25, 2],
+        [-0.25 + root, 1],
+        [-0.25 - root, 1],
+      ],
+      1e-12,
+    );
   });
 
   it("weakly coupled AB pair: E1 = −1/4, E2 = ±1/4", () => {
@@ -63,13 +71,27 @@ describe("spin-1/2 triangle and square", () => {
   const C3 = { operator: sitePermutation(2, [1, 2, 0]), label: { root: 3 } } as const;
 
   it("triangle: levels ∓3/4, four-fold each", () => {
-    expectValues(bruteForce(h0), [[-0.75, 4], [0.75, 4]], 1e-12);
+    expectValues(
+      bruteForce(h0),
+      [
+        [-0.75, 4],
+        [0.75, 4],
+      ],
+      1e-12,
+    );
   });
 
   it("one bond changed: E1 = −3/4 for S12 = 0, 1/4 for S12 = 1", () => {
     const basis = goodBasis({ h0, v: dot(0, 1), candidates: { S2, Sz, pair } }, { depth: "labels" });
     expectAllOrders(basis.study);
-    expectValues(shifts(basis.states), [[-0.75, 2], [0.25, 6]], 1e-10);
+    expectValues(
+      shifts(basis.states),
+      [
+        [-0.75, 2],
+        [0.25, 6],
+      ],
+      1e-10,
+    );
     for (const state of basis.states) {
       expectEnclosed(shift(state), state.labels.pair.text === "0" ? -0.75 : 0.25, 1e-10);
     }
@@ -78,7 +100,15 @@ describe("spin-1/2 triangle and square", () => {
   it("chirality: E1 = ±√3/4, labelled by the cyclic permutation", () => {
     const basis = goodBasis({ h0, v: chirality, candidates: { S2, Sz, C3 } }, { depth: "labels" });
     expectAllOrders(basis.study);
-    expectValues(shifts(basis.states), [[Math.sqrt(3) / 4, 2], [-Math.sqrt(3) / 4, 2], [0, 4]], 1e-10);
+    expectValues(
+      shifts(basis.states),
+      [
+        [Math.sqrt(3) / 4, 2],
+        [-Math.sqrt(3) / 4, 2],
+        [0, 4],
+      ],
+      1e-10,
+    );
     for (const state of basis.states) {
       const turned = Math.abs(state.labels.C3.im) > 0.5;
       expectNear(Math.abs(shift(state).value), turned ? Math.sqrt(3) / 4 : 0, 1e-10);
@@ -97,7 +127,16 @@ describe("spin-1/2 triangle and square", () => {
     const square = spinChain(4);
     const bond = (i: number): Operator => square.szsz(i, (i + 1) % 4).plus(square.exchange(i, (i + 1) % 4));
     const energies = bruteForce(Operator.sum(bond(0), bond(1), bond(2), bond(3)));
-    expectValues(energies, [[-2, 1], [-1, 3], [0, 7], [1, 5]], 1e-12);
+    expectValues(
+      energies,
+      [
+        [-2, 1],
+        [-1, 3],
+        [0, 7],
+        [1, 5],
+      ],
+      1e-12,
+    );
   });
 });
 
@@ -145,6 +184,13 @@ describe("four-spin XXZ ring from the Ising limit", () => {
       { energies: 3, states: 0 },
       { energies: 3, states: 0 },
     ]);
-    expectValues(basis.states.map((state) => second(basis, state).value), [[-2, 1], [0, 1]], 1e-10);
+    expectValues(
+      basis.states.map((state) => second(basis, state).value),
+      [
+        [-2, 1],
+        [0, 1],
+      ],
+      1e-10,
+    );
   });
 });

@@ -48,7 +48,8 @@ export function pick<K extends string>(
   const [state] = found;
   if (state !== undefined && found.length === 1) return state;
   const list = basis.states.map(
-    (other) => `${other.energy}: ${Object.entries<BasisState["labels"][string]>(other.labels).map(([k, l]) => `${k} = ${l.text}`)}`,
+    (other) =>
+      `${other.energy}: ${Object.entries<BasisState["labels"][string]>(other.labels).map(([k, l]) => `${k} = ${l.text}`)}`,
   );
   throw new Error(`${found.length} states at ${energy} carry ${JSON.stringify(labels)}, of ${list.join("; ")}`);
 }
@@ -158,11 +159,19 @@ export function expectAllOrders(study: Pick<Study, "states">): void {
 }
 
 /** The Hermitian matrix of the given elements on and above the diagonal; exact integers stay exact. */
-export function symmetric(n: number, elements: readonly (readonly [row: number, col: number, value: number])[]): Operator {
+export function symmetric(
+  n: number,
+  elements: readonly (readonly [row: number, col: number, value: number])[],
+): Operator {
   return Operator.fromTriplets(
     n,
     elements.flatMap(([row, col, value]): [number, number, number][] =>
-      row === col ? [[row, col, value]] : [[row, col, value], [col, row, value]],
+      row === col
+        ? [[row, col, value]]
+        : [
+            [row, col, value],
+            [col, row, value],
+          ],
     ),
   );
 }

@@ -2,12 +2,25 @@ import { describe, expect, it } from "vitest";
 import { Operator } from "../../src/index.js";
 import { hopping } from "../../src/models/lattice.js";
 import { ketPermutation } from "../../src/models/permutations.js";
-import { bruteForce, expectAllOrders, expectEnclosed, expectNear, expectValues, goodBasis, pick, shift, symmetric } from "./support.js";
+import {
+  bruteForce,
+  expectAllOrders,
+  expectEnclosed,
+  expectNear,
+  expectValues,
+  goodBasis,
+  pick,
+  shift,
+  symmetric,
+} from "./support.js";
 
 // Rayleigh, The Theory of Sound, vol. I, on the effect of a small change of mass and on a ring with a small load; from memory.
 describe("ring of six equal masses with one changed", () => {
   const n = 6;
-  const ring = hopping(n, Array.from({ length: n }, (_, i) => [i, (i + 1) % n] as const));
+  const ring = hopping(
+    n,
+    Array.from({ length: n }, (_, i) => [i, (i + 1) % n] as const),
+  );
   const K = Operator.identity(n).scale(2).minus(ring);
   const P = symmetric(n, [[0, 0, 1]]);
   // M^{-1/2} K M^{-1/2} with M = 1 + ε P, to first order in ε.
@@ -16,7 +29,16 @@ describe("ring of six equal masses with one changed", () => {
   const basis = goodBasis({ h0: K, v, candidates: { reflection } }, { depth: "labels" });
 
   it("has the frequencies 4 sin²(πk/N), the pairs told apart by reflection", () => {
-    expectValues(bruteForce(K), [[0, 1], [1, 2], [3, 2], [4, 1]], 1e-10);
+    expectValues(
+      bruteForce(K),
+      [
+        [0, 1],
+        [1, 2],
+        [3, 2],
+        [4, 1],
+      ],
+      1e-10,
+    );
     expectAllOrders(basis.study);
   });
 
@@ -37,7 +59,16 @@ describe("ring of six equal masses with one changed", () => {
     const found = bruteForce(root.times(K).times(root)).sort((a, b) => a - b);
     const slopes = [0, 1, 1, 3, 3, 4].map((square, k) => ((found[k] ?? Number.NaN) - square) / epsilon);
     expect(slopes).toHaveLength(n);
-    expectValues(slopes, [[0, 3], [-1 / 3, 1], [-1, 1], [-2 / 3, 1]], 2e-5);
+    expectValues(
+      slopes,
+      [
+        [0, 3],
+        [-1 / 3, 1],
+        [-1, 1],
+        [-2 / 3, 1],
+      ],
+      2e-5,
+    );
     expectNear(slopes[0] ?? Number.NaN, 0, 2e-5);
   });
 });

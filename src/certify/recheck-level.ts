@@ -1,0 +1,223 @@
+import { roundUp } from "../numerics/rounding.js";
+import type { CertifiedLevel } from "./certificate-format.js";
+import { type OwnOperator, type OwnProblem, productRounding } from "./recheck-operators.js";
+import { type OwnTree, partingPlace } from "./recheck-tree.js";
+import type { Bench, Vectors } from "./recheck-vectors.js";
+
+/** A bound from the own evaluation, and the largest that an honest one could give. */
+export interface Pair {
+  readonly tight: number;
+  readonly loose: number;
+}
+
+/** One operator between all states of a level. */
+export interface OwnElements {
+  readonly diagonal: Float64Array;
+  /** Bounds on the 2-norm of what is off the diagonal. */
+  readonly offDiagonal: Pair;
+  /** Largest modulus off the diagonal. */
+  readonly largestOff: number;
+  /** For each node: largest modulus between states that part there; −1 where no two share a ket. */
+  readonly atNode: Float64Array;
+  /** For each node: the same with the error of each element. */
+  readonly atNodeBound: Float64Array;
+  /** Largest modulus inside leaves of several states, with its error; 0 where no two share a ket. */
+  readonly withinLeaves: number;
+  /** Error of one element: rounding of the image and the product, and the entries' own. */
+  readonly error: number;
+  readonly looseError: number;
+  /** The largest rigorous lower bound on an element, and its states; 0 where there is none. */
+  readonly worst: { readonly atLeast: number; readonly first: number; readonly second: number };
+}
+
+/** What the re-check evaluates of one level. */
+export interface OwnLevel {
+  readonly tree: OwnTree;
+  /** Bound on ‖Q Q† − 1‖₂. */
+  readonly orthonormality: Pair;
+  /** A lower bound on it. */
+  readonly orthonormalityAtLeast: number;
+  readonly h0: OwnElements;
+  /** Bounds on ‖H0 q − E q‖ of each state. */
+  readonly residuals: Float64Array;
+  readonly looseResiduals: Float64Array;
+  readonly perturbations: readonly OwnElements[];
+}
+
+/** Evaluates overlaps, H0 and every perturbation between the states of level `l`. */
+export function evaluateLevel(
+  problem: OwnProblem,
+  vectors: Vectors,
+  bench: Bench,
+  level: CertifiedLevel,
+  l: number,
+  tree: OwnTree,
+): OwnLevel {
+  const shape = levelShape(vectors, l);
+  const { n } = problem;
+  const gram = evaluateGram(vectors, bench, shape, n);
+  const nodes = level.nodes.length;
+  const h0 = evaluateElements(problem.h0, vectors, bench, shape, tree, nodes);
+  const d = shape.to - shape.from;
+  const residuals = new Float64Array(d);
+  const looseResiduals = new Float64Array(d);
+  for (let k = 0; k < d; k++) {
+    bench.image(problem.h0.columns, shape.from + k);
+    const rho = bench.residual(shape.from + k, level.states[k]?.energy ?? 0, 0);
+    const { rounding, looseRounding, operator } = problem.h0;
+    residuals[k] = roundUp(rho + rounding + operator.error, n + 16);
+    looseResiduals[k] = roundUp(rho + looseRounding + operator.error, n + 16);
+  }
+  return {
+    tree,
+    ...gram,
+    h0,
+    residuals,
+    looseResiduals,
+    perturbations: problem.perturbations.map((v) => evaluateElements(v, vectors, bench, shape, tree, nodes)),
+  };
+}
+
+/** Where a level's vectors lie and how they overlap. */
+interface Shape {
+  readonly from: number;
+  readonly to: number;
+  /** Most entries of one vector. */
+  readonly longest: number;
+  /** Upper bound on ‖|Q|‖₂ for the matrix of moduli. */
+  readonly moduli: number;
+}
+
+function levelShape(vectors: Vectors, l: number): Shape {
+  const from = vectors.first[l] as number;
+  const to = vectors.first[l + 1] as number;
+  const { ptr, ket, re, im } = vectors;
+  const byKet = new Map<number, number>();
+  let longest = 0;
+  let row = 0;
+  for (let s = from; s < to; s++) {
+    longest = Math.max(longest, (ptr[s + 1] as number) - (ptr[s] as number));
+    let sum = 0;
+    for (let p = ptr[s] as number; p < (ptr[s + 1] as number); p++) {
+      const size = Math.hypot(re[p] as number, im[p] as number);
+      sum += size;
+      byKet.set(ket[p] as number, (byKet.get(ket[p] as number) ?? 0) + size);
+    }
+    row = Math.max(row, sum);
+  }
+  let column = 0;
+  for (const sum of byKet.values()) column = Math.max(column, sum);
+  return { from, to, longest, moduli: roundUp(Math.sqrt(row * column), longest + to - from + 16) };
+}
+
+function evaluateGram(
+  vectors: Vectors,
+  bench: Bench,
+  { from, to, longest, moduli }: Shape,
+  n: number,
+): { orthonormality: Pair; orthonormalityAtLeast: number } {
+  const rows = new Float64Array(to - from);
+  const relative = productRounding(longest);
+  let bare = 0;
+  let padded = 0;
+  let atLeast = 0;
+  let touched = 0;
+  for (let r = from; r < to; r++) {
+    bench.take(r);
+    bench.project(from, r + 1, true);
+    for (let t = 0; t < bench.met; t++) {
+      const c = bench.partners[t] as number;
+      const size = Math.hypot((bench.re[c] as number) - (c === r ? 1 : 0), bench.im[c] as number);
+      const exact = vectors.unit[r] === 1 && vectors.unit[c] === 1;
+      const error = exact ? 0 : relative * 1.01;
+      if (size + error === 0) continue;
+      touched++;
+      const weight = c === r ? 1 : 2;
+      bare += weight * size * size;
+      padded += weight * (size + error) ** 2;
+      atLeast = Math.max(atLeast, size - error);
+      rows[r - from] = (rows[r - from] as number) + size;
+      if (c !== r) rows[c - from] = (rows[c - from] as number) + size;
+    }
+  }
+  const row = rows.reduce((most, x) => Math.max(most, x), 0);
+  const entrywise = Math.sqrt(padded);
+  const normwise = Math.min(row, Math.sqrt(bare)) + relative * moduli * moduli;
+  const tight = touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16);
+  return {
+    orthonormality: { tight, loose: entrywise + n * productRounding(2 * n) },
+    orthonormalityAtLeast: atLeast,
+  };
+}
+
+function evaluateElements(
+  v: OwnOperator,
+  vectors: Vectors,
+  bench: Bench,
+  { from, to, longest, moduli }: Shape,
+  tree: OwnTree,
+  nodes: number,
+): OwnElements {
+  const d = to - from;
+  const { norm, error: entries } = v.operator;
+  const relative = productRounding(longest) * norm;
+  const error = roundUp((v.rounding + relative + entries) * 1.001, 16);
+  const diagonal = new Float64Array(d);
+  const rows = new Float64Array(d);
+  const atNode = new Float64Array(nodes).fill(-1);
+  const atNodeBound = new Float64Array(nodes);
+  let bare = 0;
+  let padded = 0;
+  let withinLeaves = 0;
+  let touched = 0;
+  let largestOff = 0;
+  let worst = { atLeast: 0, first: -1, second: -1 };
+  for (let r = from; r < to; r++) {
+    bench.image(v.columns, r);
+    bench.project(from, r + 1, v.columns.im === undefined);
+    for (let t = 0; t < bench.met; t++) {
+      const c = bench.partners[t] as number;
+      const x = bench.re[c] as number;
+      if (c === r) {
+        diagonal[r - from] = x;
+        continue;
+      }
+      touched++;
+      const size = Math.hypot(x, bench.im[c] as number);
+      const rounding = (vectors.unit[r] === 1 ? 0 : v.rounding) + (vectors.unit[c] === 1 ? 0 : relative);
+      const own = size + rounding * 1.001 + entries;
+      bare += 2 * size * size;
+      padded += 2 * own * own;
+      rows[r - from] = (rows[r - from] as number) + size;
+      rows[c - from] = (rows[c - from] as number) + size;
+      if (size > largestOff) largestOff = size;
+      const node = partingPlace(tree, c - from, r - from);
+      if (node < 0) withinLeaves = Math.max(withinLeaves, size + error);
+      else {
+        if (size > (atNode[node] as number)) atNode[node] = size;
+        if (own > (atNodeBound[node] as number)) atNodeBound[node] = own;
+      }
+      const atLeast = size * (1 - 1e-12) - error;
+      if (atLeast > worst.atLeast) worst = { atLeast, first: c - from, second: r - from };
+    }
+  }
+  const row = rows.reduce((most, x) => Math.max(most, x), 0);
+  const normwise =
+    Math.min(row, Math.sqrt(bare)) + (v.rounding * moduli + relative * moduli * moduli) * 1.001 + entries;
+  const entrywise = Math.sqrt(padded);
+  const most = entrywise + vectors.n * productRounding(2 * vectors.n) * norm;
+  return {
+    diagonal,
+    offDiagonal: {
+      tight: touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16),
+      loose: most + entries * (nodes + 1),
+    },
+    largestOff,
+    atNode,
+    atNodeBound,
+    withinLeaves: roundUp(withinLeaves),
+    error,
+    looseError: error + v.looseRounding + productRounding(vectors.n) * norm,
+    worst,
+  };
+}

@@ -1,0 +1,384 @@
+import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
+import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
+import { GoodBasisError } from "../errors.js";
+import type { Complex } from "../numerics/complex.js";
+import type { Csr } from "../numerics/csr.js";
+import { roundDown, roundUp } from "../numerics/rounding.js";
+import { selectRows } from "../numerics/sparse.js";
+import { energyTolerance } from "../refine/sectors.js";
+import { type BasisColumns, readColumns } from "./columns.js";
+import { overall } from "./find.js";
+import { type GuardOptions, guardSetting } from "./guard.js";
+import { elementErrorBound, forEachProduct, gramDefect, gramElementError } from "./products.js";
+import { type Repair, repairLevel } from "./repair.js";
+import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import type { Verdict } from "./verdict.js";
+
+/** A label that somebody claims for a column: an eigenvalue, or a quantum number as text ("3/2", "-1"). */
+export type ClaimedLabel = number | Complex | string;
+
+/** Options of {@link validateBasis}. */
+export interface ValidateOptions extends GuardOptions {
+  /** What counts as vanished, relative to ‖V‖, ‖H0‖, ‖A‖ or 1. Default 1e-10. */
+  readonly resolution?: number;
+  /** Energies up to this far apart are one level; by default what rounding and the columns' residuals leave. */
+  readonly levelWidth?: number;
+}
+
+/** A checked claim: its bound from above and below, and whether it holds to the resolution. */
+export interface Checked {
+  readonly verdict: Verdict;
+  /** Rigorous bounds on the deviation. */
+  readonly atMost: number;
+  readonly atLeast: number;
+}
+
+/** What was found of one column. */
+export interface ColumnFinding {
+  readonly column: number;
+  /** ⟨q|H0|q⟩/⟨q|q⟩. */
+  readonly energy: number;
+  /** ‖H0 q − E q‖. */
+  readonly eigenvector: Checked;
+  /** ‖A q − a q‖ for every label claimed. */
+  readonly labels: Readonly<Record<string, Checked>>;
+}
+
+/** Two columns of one level that V couples. */
+export interface ColumnCoupling {
+  readonly perturbation: string;
+  readonly columns: readonly [number, number];
+  readonly size: number;
+  readonly atLeast: number;
+  readonly atMost: number;
+}
+
+/** What was found of one level of the basis. */
+export interface ValidatedLevel {
+  readonly energy: number;
+  readonly columns: readonly number[];
+  readonly verdict: Verdict;
+  /** Bound on the largest in-level element of each perturbation. */
+  readonly largest: readonly number[];
+  /** The pairs that are certainly coupled, largest first; at most ten. */
+  readonly worst: readonly ColumnCoupling[];
+  readonly repair: Repair;
+}
+
+/** What {@link validateBasis} found. */
+export interface Validation {
+  readonly verdict: Verdict;
+  readonly unit: string;
+  /** Whether the columns are as many as the kets; otherwise levels may lack partners and denominators are not checked. */
+  readonly complete: boolean;
+  /** ‖Q†Q − 1‖, and the pair of columns (or the one column, twice) that deviates most. */
+  readonly orthonormality: Checked & { readonly worst: readonly [number, number]; readonly size: number };
+  readonly columns: readonly ColumnFinding[];
+  readonly levels: readonly ValidatedLevel[];
+  /** Everything that stands between the basis and "good", one sentence each. */
+  readonly remarks: readonly string[];
+}
+
+/**
+ * Checks a basis that somebody brings: orthonormal? eigenvectors of H0? labelled rightly? and does V couple columns inside any
+ * level? If it does, the rotation inside each level that repairs it is returned.
+ *
+ * @param problem - H0, V and the candidates that the labels belong to
+ * @param columns - n rows, one column a state; need not be complete
+ * @param labels - for each label name, one claimed value a column; the names are candidates of the problem
+ * @throws GoodBasisError `shape`, `not-finite`, `name`, `option`, and whatever the problem itself throws
+ *
+ * @example
+ * ```ts
+ * import { validateBasis } from "goodbasis";
+ *
+ * const problem = { h0: { diagonal: [0, 0, 1] }, v: [[0, 0.1, 0], [0.1, 0, 0], [0, 0, 0]] };
+ * const validation = validateBasis(problem, [[1, 0, 0], [0, 1, 0], [0, 0, 1]]);
+ * console.log(validation.verdict, validation.levels[0]?.worst[0]?.size); // not good 0.1
+ * ```
+ */
+export function validateBasis<K extends string>(
+  problem: Problem<K>,
+  columns: BasisColumns,
+  labels?: Readonly<Partial<Record<K, readonly ClaimedLabel[]>>>,
+  options: ValidateOptions = {},
+): Validation {
+  const prepared = prepareProblem(problem);
+  const resolution = checkResolution(options.resolution ?? DEFAULT_RESOLUTION);
+  const vectors = readColumns(columns, prepared.n);
+  const orthonormality = checkOrthonormality(vectors, resolution);
+  const found = checkColumns(prepared, vectors, readClaims(prepared, labels ?? {}, vectors.rows), resolution);
+  const levels = checkLevels(prepared, vectors, found, resolution, options);
+  const complete = vectors.rows === prepared.n;
+  const remarks = [
+    ...orthonormalityRemarks(orthonormality),
+    ...columnRemarks(found),
+    ...levels.flatMap((level) => level.remarks),
+    ...(complete ? denominatorRemarks(prepared, vectors, levels, options) : []),
+  ];
+  const verdicts: Verdict[] = [
+    orthonormality.verdict,
+    ...found.flatMap(({ eigenvector, labels: own }) => [eigenvector, ...Object.values(own)].map((c) => c.verdict)),
+    ...levels.map((level) => level.level.verdict),
+    ...(remarks.length > 0 ? (["undecided"] as const) : []),
+  ];
+  return {
+    verdict: overall(verdicts),
+    unit: prepared.unit,
+    complete,
+    orthonormality,
+    columns: found,
+    levels: levels.map(({ level }) => level),
+    remarks,
+  };
+}
+
+function judge(atMost: number, atLeast: number, threshold: number): Checked {
+  return { atMost, atLeast, verdict: atMost <= threshold ? "good" : atLeast > threshold ? "not good" : "undecided" };
+}
+
+function checkOrthonormality(vectors: Csr, resolution: number): Validation["orthonormality"] {
+  const bound = gramDefect(vectors);
+  let worst: readonly [number, number] = [0, 0];
+  let size = 0;
+  forEachProduct(vectors, vectors, (r, c, re, im) => {
+    const deviation = Math.hypot(re - (r === c ? 1 : 0), im);
+    if (deviation > size) {
+      size = deviation;
+      worst = [r, c];
+    }
+  });
+  const atLeast = Math.max(0, roundDown(size) - gramElementError(vectors) * (1 + size));
+  return { ...judge(bound, atLeast, resolution), worst, size };
+}
+
+/** Claimed eigenvalues by candidate, one a column. */
+type Claims = readonly { readonly candidate: PreparedCandidate; readonly values: readonly Complex[] }[];
+
+function readClaims(
+  problem: PreparedProblem,
+  labels: Readonly<Record<string, readonly ClaimedLabel[] | undefined>>,
+  count: number,
+): Claims {
+  return Object.entries(labels).flatMap(([name, values]) => {
+    if (values === undefined) return [];
+    const candidate = problem.candidates.find((other) => other.name === name);
+    if (candidate === undefined) {
+      const known = problem.candidates.map((other) => other.name).join(", ") || "none";
+      throw new GoodBasisError("name", `label ${name} is no candidate of the problem (candidates: ${known})`, { name });
+    }
+    if (values.length !== count) {
+      throw new GoodBasisError("shape", `label ${name} has ${values.length} values for ${count} columns`, { name });
+    }
+    return [{ candidate, values: values.map((value, k) => readClaim(candidate, value, k)) }];
+  });
+}
+
+function readClaim(candidate: PreparedCandidate, value: ClaimedLabel, column: number): Complex {
+  const bad = (): GoodBasisError =>
+    new GoodBasisError(
+      "option",
+      `label ${candidate.name} of column ${column} is ${JSON.stringify(value)}; give an eigenvalue of ${candidate.name}, ` +
+        'or a quantum number such as "3/2"',
+      { name: candidate.name, column },
+    );
+  if (typeof value === "number") {
+    if (!Number.isFinite(value)) throw bad();
+    return { re: value, im: 0 };
+  }
+  if (typeof value !== "string") return value;
+  const match = /^([+-]?)(\d+)(?:\/(\d+))?$/.exec(value.trim().replace("−", "-"));
+  if (match === null || Number(match[3] ?? 1) === 0) throw bad();
+  const number = ((match[1] === "-" ? -1 : 1) * Number(match[2])) / Number(match[3] ?? 1);
+  return { re: candidate.label === "j" ? number * (number + 1) : number, im: 0 };
+}
+
+function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, resolution: number): ColumnFinding[] {
+  const energyRows = images(vectors, problem.h0);
+  const norms = Float64Array.from({ length: vectors.rows }, (_, k) => rowProduct(vectors, k, vectors, k).re);
+  const energies = norms.map((norm, k) => (norm > 0 ? rowProduct(vectors, k, energyRows, k).re / norm : 0));
+  const energyAt = (k: number): Complex => ({ re: energies[k] as number, im: 0 });
+  const error = imageError(problem.h0);
+  const residuals = residualBounds(energyRows, vectors, energyAt, error * Math.max(1, Math.sqrt(Math.max(...norms))));
+  const judged = claims.map(({ candidate, values }) => {
+    const own = imageError(candidate.operator);
+    const valueAt = (k: number): Complex => values[k] as Complex;
+    const direct = residualBounds(images(vectors, candidate.operator), vectors, valueAt, own);
+    const conjugate = (k: number): Complex => ({ re: valueAt(k).re, im: -valueAt(k).im });
+    const adjoint =
+      candidate.kind === "hermitian"
+        ? direct
+        : residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, own);
+    const { norm } = candidate.operator;
+    return { candidate, own, scale: norm, residual: direct.map((x, k) => Math.max(x, adjoint[k] as number)) };
+  });
+  return Array.from(energies, (energy, column): ColumnFinding => {
+    const residual = residuals[column] as number;
+    const labels: Record<string, Checked> = {};
+    for (const { candidate, own, scale, residual: all } of judged) {
+      const bound = all[column] as number;
+      labels[candidate.name] = judge(bound, Math.max(0, bound - 4 * own), resolution * Math.max(scale, 1e-300));
+    }
+    return {
+      column,
+      energy,
+      eigenvector: judge(residual, Math.max(0, residual - 4 * error), resolution * problem.h0.norm),
+      labels,
+    };
+  });
+}
+
+interface JudgedLevel {
+  readonly level: ValidatedLevel;
+  readonly remarks: readonly string[];
+}
+
+function checkLevels(
+  problem: PreparedProblem,
+  vectors: Csr,
+  found: readonly ColumnFinding[],
+  resolution: number,
+  options: ValidateOptions,
+): JudgedLevel[] {
+  const residual = found.reduce((most, column) => Math.max(most, column.eigenvector.atMost), 0);
+  const width = options.levelWidth ?? energyTolerance(problem, problem.n) + 2 * residual;
+  const order = [...found].sort((a, b) => a.energy - b.energy || a.column - b.column);
+  const groups: ColumnFinding[][] = [];
+  for (const column of order) {
+    const last = groups[groups.length - 1];
+    const previous = last?.[last.length - 1];
+    if (last === undefined || previous === undefined || column.energy - previous.energy > width) groups.push([column]);
+    else last.push(column);
+  }
+  const bottom = (g: number): number => groups[g]?.[0]?.energy ?? Number.POSITIVE_INFINITY;
+  const top = (g: number): number => groups[g]?.at(-1)?.energy ?? Number.NEGATIVE_INFINITY;
+  return groups.map((group, g): JudgedLevel => {
+    const columns = group.map((finding) => finding.column);
+    const own = selectRows(vectors, columns);
+    const inside = problem.perturbations.map(({ name, operator }) =>
+      insideLevel(name, operator, own, columns, resolution),
+    );
+    const worst = inside
+      .flatMap((found) => found.worst)
+      .sort((a, b) => b.size - a.size)
+      .slice(0, 10);
+    const largest = inside.map((found) => found.largest);
+    const undecided = inside.some((found, p) => {
+      const norm = problem.perturbations[p]?.operator.norm ?? 0;
+      return found.largest > resolution * norm;
+    });
+    const energy = (bottom(g) + top(g)) / 2;
+    const gap = Math.min(g === 0 ? Number.POSITIVE_INFINITY : bottom(g) - top(g - 1), bottom(g + 1) - top(g));
+    const spread = top(g) - bottom(g) + 2 * residual;
+    const remarks: string[] = [];
+    for (const pair of worst.slice(0, 3)) {
+      remarks.push(
+        `${pair.perturbation} couples columns ${pair.columns[0]} and ${pair.columns[1]} of the level at ${short(energy)} by ` +
+          `${short(pair.size)}${problem.unit === "" ? "" : ` ${problem.unit}`}; the rotation returned for this level repairs it`,
+      );
+    }
+    if (spread > FAR_BELOW * gap) {
+      remarks.push(
+        `the level at ${short(energy)} is ${short(spread)} wide and the next only ${short(gap)} away; ` +
+          "merge them with levelWidth or give sharper energies",
+      );
+    }
+    const verdict: Verdict = worst.length > 0 ? "not good" : undecided || remarks.length > 0 ? "undecided" : "good";
+    return { level: { energy, columns, verdict, largest, worst, repair: repairLevel(problem, own) }, remarks };
+  });
+}
+
+function insideLevel(
+  name: string,
+  operator: PreparedProblem["h0"],
+  own: Csr,
+  columns: readonly number[],
+  resolution: number,
+): { largest: number; worst: ColumnCoupling[] } {
+  const error = elementErrorBound(operator, own) * 2;
+  const threshold = resolution * operator.norm;
+  let largest = 0;
+  const worst: ColumnCoupling[] = [];
+  forEachProduct(own, images(own, operator), (r, c, re, im, common) => {
+    if (r === c || common === 0) return;
+    const size = Math.sqrt(re * re + im * im);
+    const atMost = roundUp(size) + error;
+    const atLeast = Math.max(0, roundDown(size) - error);
+    if (atMost > largest) largest = atMost;
+    if (atLeast <= threshold) return;
+    worst.push({ perturbation: name, columns: [columns[r] as number, columns[c] as number], size, atLeast, atMost });
+  });
+  worst.sort((a, b) => b.size - a.size || a.columns[0] - b.columns[0]);
+  return { largest, worst: worst.slice(0, 10) };
+}
+
+/** The blockwise denominators guard between the levels of a complete basis. */
+function denominatorRemarks(
+  problem: PreparedProblem,
+  vectors: Csr,
+  levels: readonly JudgedLevel[],
+  options: GuardOptions,
+): string[] {
+  const energies = levels.map(({ level }) => level.energy);
+  const setting = guardSetting(problem, (energies.at(-1) ?? 0) - (energies[0] ?? 0), options);
+  const levelOf = new Int32Array(vectors.rows);
+  levels.forEach(({ level }, l) => {
+    for (const column of level.columns) levelOf[column] = l;
+  });
+  return problem.perturbations.flatMap(({ name, operator }) => {
+    const squares = new Map<number, number>();
+    forEachProduct(vectors, images(vectors, operator), (r, c, re, im) => {
+      const a = levelOf[r] as number;
+      const b = levelOf[c] as number;
+      if (a === b) return;
+      const key = Math.min(a, b) * levels.length + Math.max(a, b);
+      squares.set(key, (squares.get(key) ?? 0) + re * re + im * im);
+    });
+    let worst = 0;
+    let pair: readonly [number, number] = [0, 0];
+    for (const [key, square] of squares) {
+      const a = Math.floor(key / levels.length);
+      const b = key % levels.length;
+      const ratio = (setting.lambda * Math.sqrt(square)) / Math.abs((energies[a] as number) - (energies[b] as number));
+      if (ratio > worst) {
+        worst = ratio;
+        pair = [a, b];
+      }
+    }
+    if (worst <= setting.refuseAbove) return [];
+    return [
+      `at λ = ${short(setting.lambda)}${setting.stated ? "" : " (not stated)"}, ${name} couples the levels at ` +
+        `${short(energies[pair[0]] as number)} and ${short(energies[pair[1]] as number)} ${short(worst)} times as strongly ` +
+        "as they are apart; merge them with levelWidth or state a smaller lambda",
+    ];
+  });
+}
+
+function orthonormalityRemarks({ verdict, worst, size }: Validation["orthonormality"]): string[] {
+  if (verdict === "good") return [];
+  const [a, b] = worst;
+  return [
+    a === b
+      ? `column ${a} is not normalised: ⟨q|q⟩ is off 1 by ${short(size)}`
+      : `columns ${a} and ${b} are not orthogonal: their overlap is ${short(size)}`,
+  ];
+}
+
+function columnRemarks(found: readonly ColumnFinding[]): string[] {
+  return found.flatMap(({ column, energy, eigenvector, labels }) => [
+    ...(eigenvector.verdict === "good"
+      ? []
+      : [
+          `column ${column} is no eigenvector of H0: ‖H0 q − E q‖ ≤ ${short(eigenvector.atMost)} at E = ${short(energy)}`,
+        ]),
+    ...Object.entries(labels).flatMap(([name, checked]) =>
+      checked.verdict === "good"
+        ? []
+        : [`column ${column} does not carry the label claimed for ${name}: ‖A q − a q‖ ≤ ${short(checked.atMost)}`],
+    ),
+  ]);
+}
+
+function short(x: number): string {
+  return String(Number(roundUp(Math.abs(x), 0).toPrecision(4)) * Math.sign(x)).replace("-", "−");
+}

@@ -1,0 +1,39 @@
+import { dirname, isAbsolute, join } from "node:path";
+import { GoodBasisError } from "../errors.js";
+import { type ReadProblem, readProblem } from "../problem/read.js";
+import type { Terminal } from "./terminal.js";
+
+/** The name by which messages call a file. */
+function nameOf(path: string): string {
+  return path === "-" ? "standard input" : path;
+}
+
+/**
+ * The text of a file.
+ *
+ * @throws GoodBasisError `file`
+ */
+export function readFile(terminal: Terminal, path: string): string {
+  try {
+    return terminal.read(path);
+  } catch (error) {
+    const reason = error instanceof Error ? error.message : String(error);
+    const message = `${nameOf(path)} cannot be read (${reason}); check the path and the rights to it`;
+    throw new GoodBasisError("file", message, { name: nameOf(path) });
+  }
+}
+
+/**
+ * Reads a problem file; matrix files are sought beside it.
+ *
+ * @throws GoodBasisError as readProblem does
+ */
+export function loadProblem(terminal: Terminal, path: string): ReadProblem {
+  return readProblem(readFile(terminal, path), { name: nameOf(path), loadMatrix: matrixLoader(terminal, path) });
+}
+
+/** Reads files whose paths are relative to the folder of `path`. */
+export function matrixLoader(terminal: Terminal, path: string): (matrix: string) => string {
+  const folder = path === "-" ? "." : dirname(path);
+  return (matrix) => readFile(terminal, isAbsolute(matrix) ? matrix : join(folder, matrix));
+}
