@@ -35,6 +35,11 @@ export interface NodeEvidence {
   /** Largest bound on ‖A q − a q‖ and ‖A†q − a*q‖ over the states below. */
   readonly residual: number;
   readonly couplings: readonly CouplingBound[];
+  /**
+   * Whether the label is conserved sharply enough, for its gap, to stand at every order: the selection rule bounds the
+   * elements of H0 and of every perturbation below the resolution. True for nodes that are no label.
+   */
+  readonly sharp: boolean;
 }
 
 /** A pair of states of one level with its element of one perturbation. */
@@ -84,6 +89,8 @@ export interface CouplingInput {
   readonly thresholds: readonly number[];
   /** Bound on ‖F F† − 1‖₂ of the whole basis. */
   readonly wholeDefect: number;
+  /** Elements of H0 between labels count as vanished below this. */
+  readonly energyThreshold: number;
 }
 
 /**
@@ -127,6 +134,15 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
           : roundUp((crossing + 2 * v * rowError + operator.error) * (1 + input.wholeDefect) * (1 + rowError) ** 2, 16);
       return { perturbation: name, selectionRule, direct, counted: Math.min(selectionRule, direct) };
     });
+    const h0 = problem.h0.norm + problem.h0.error;
+    const energyRule =
+      own === undefined
+        ? 0
+        : roundUp((((findings[place]?.withH0.bound ?? 0) * length + 2 * h0 * residual) * length) / gap, 16);
+    const sharp =
+      own === undefined ||
+      (energyRule <= input.energyThreshold &&
+        couplings.every(({ selectionRule }, p) => selectionRule <= (input.thresholds[p] ?? 0)));
     return {
       node: entry.node,
       operator: node.operator,
@@ -136,6 +152,7 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       commutators,
       residual,
       couplings,
+      sharp,
     };
   });
   return {

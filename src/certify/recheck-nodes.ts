@@ -53,7 +53,13 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
     const path = `${where}[${p}]`;
     const name = claimed.perturbation;
     const { tight, loose } = elements.offDiagonal;
-    ledger.bound(`${path}.offDiagonal`, `the off-diagonal block of ${name}`, claimed.offDiagonal, tight, loose + leak(given, p));
+    ledger.bound(
+      `${path}.offDiagonal`,
+      `the off-diagonal block of ${name}`,
+      claimed.offDiagonal,
+      tight,
+      loose + leak(given, p),
+    );
     const looseLeaf = elements.withinLeaves + elements.looseError;
     ledger.bound(
       `${path}.withinLeaves`,
@@ -66,7 +72,13 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
       (most, node) => Math.max(most, node.couplings[p]?.counted ?? 0),
       claimed.withinLeaves,
     );
-    ledger.near(`${path}.largest`, `the largest bound on ${name} that counts`, claimed.largest, largest, 1e-12 * largest);
+    ledger.near(
+      `${path}.largest`,
+      `the largest bound on ${name} that counts`,
+      claimed.largest,
+      largest,
+      1e-12 * largest,
+    );
   });
   return { bounds };
 }
@@ -90,7 +102,11 @@ function checkValues(ledger: Ledger, given: NodeCase, node: CertifiedNode, path:
   const p = problem.perturbations.findIndex((v) => v.name === node.operator);
   const place = problem.candidates.findIndex((c) => c.name === node.operator);
   const known =
-    node.kind === "label" ? place >= 0 : node.kind === "perturbation" ? p >= 0 : node.operator === (node.kind === "energy" ? "H0" : "W");
+    node.kind === "label"
+      ? place >= 0
+      : node.kind === "perturbation"
+        ? p >= 0
+        : node.operator === (node.kind === "energy" ? "H0" : "W");
   ledger.claim(known, `${path}.operator`, () => `no ${node.kind} node is made by "${node.operator}" in this problem`);
   if (node.kind === "label" && place >= 0) {
     ledger.claim(
@@ -108,7 +124,11 @@ function checkValues(ledger: Ledger, given: NodeCase, node: CertifiedNode, path:
           : undefined;
         const off = label === undefined ? Number.POSITIVE_INFINITY : Math.hypot(label.re - re, label.im - im);
         const norm = problem.candidates[place]?.norm ?? 0;
-        ledger.claim(off <= 1e-15 * norm, at, () => `claimed ${re} + ${im}i, but state ${state} is labelled ${off} off that`);
+        ledger.claim(
+          off <= 1e-15 * norm,
+          at,
+          () => `claimed ${re} + ${im}i, but state ${state} is labelled ${off} off that`,
+        );
       } else if (node.kind === "perturbation" || node.kind === "energy") {
         const elements = node.kind === "energy" ? own.h0 : own.perturbations[p];
         const operator = node.kind === "energy" ? problem.h0 : problem.perturbations[p];
@@ -151,7 +171,8 @@ function checkResidual(ledger: Ledger, given: NodeCase, node: CertifiedNode, pat
   ledger.claim(
     node.commutators.length === expected.length && expected.every((bound, p) => bound === node.commutators[p]),
     `${path}.commutators`,
-    () => `claimed ${node.commutators.join(", ") || "none"}, the certificate's own bounds are ${expected.join(", ") || "none"}`,
+    () =>
+      `claimed ${node.commutators.join(", ") || "none"}, the certificate's own bounds are ${expected.join(", ") || "none"}`,
   );
   if (own === undefined) {
     ledger.claim(node.residual === 0, `${path}.residual`, () => `claimed ${node.residual}; only labels leave one`);

@@ -26,7 +26,7 @@ export interface SafetyFinding {
  * | a conserved label | all | all |
  * | V: different E1 | 2 | 0 |
  * | the effective operator of order s | s + 1 | 0 |
- * | nothing studied | 1 | none |
+ * | nothing studied, or a label whose commutator bound over its gap exceeds the resolution | 1 | none |
  *
  * Two states that only V tells apart are mixed by W at first order already, c_μ = W_μν/(E1_ν − E1_μ), which adds
  * |W_μν|²/(E1_ν − E1_μ) to the third order: the short formulas miss both.
@@ -42,6 +42,15 @@ export function safeOrders(state: LevelState, evidence: ReadonlyMap<number, Node
     };
   }
   const onPath = state.path.flatMap((step) => evidence.get(step.node) ?? []);
+  const blurred = onPath.find((node) => !node.sharp);
+  if (blurred !== undefined) {
+    return {
+      safe: { energies: 1, states: "none" },
+      limitedBy:
+        `${blurred.operator} tells it from a partner by only ${blurred.gap.toPrecision(3)}, too little for how sharply it is ` +
+        "known to be conserved",
+    };
+  }
   const v = onPath.find((node) => node.kind === "perturbation");
   if (v !== undefined) {
     return {

@@ -133,6 +133,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     residuals: numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
     thresholds,
     wholeDefect: whole.orthonormality,
+    energyThreshold: settings.resolution * problem.h0.norm,
   });
   const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
   const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);

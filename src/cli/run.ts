@@ -7,8 +7,9 @@ import type { Terminal } from "./terminal.js";
 import type { Verb } from "./verb.js";
 import { auditVerb } from "./verbs/audit.js";
 import { findVerb, tableVerb } from "./verbs/find.js";
+import { validateVerb } from "./verbs/validate.js";
 
-const VERBS: readonly Verb[] = [auditVerb, findVerb, tableVerb];
+const VERBS: readonly Verb[] = [findVerb, tableVerb, auditVerb, validateVerb];
 
 /**
  * Runs the program.

@@ -1,7 +1,6 @@
 import type { Candidate, Problem } from "../audit/problem.js";
-import { GoodBasisError } from "../errors.js";
 import type { Operator } from "../operator/operator.js";
-import { jsonFault, lineAndColumn } from "./json-text.js";
+import { parseDocument } from "./document.js";
 import { looksLikeMatrix, readMatrixAt } from "./matrix.js";
 import type { MatrixContext } from "./names.js";
 import { fileError, inside, type Place, type ProblemDocument, showValue } from "./place.js";
@@ -21,6 +20,8 @@ export interface ReadProblemOptions {
 export interface ReadProblem {
   /** Ready for {@link findGoodBasis} and {@link auditCommutators}. */
   readonly problem: Problem;
+  /** Number of kets. */
+  readonly n: number;
   /** The options that the file asks for. */
   readonly options: ProblemOptions;
   readonly title: string | undefined;
@@ -59,7 +60,7 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
   const text = typeof source === "string" ? source : undefined;
   const document: ProblemDocument = { name: options.name ?? "problem", text };
   const place: Place = { document, path: [] };
-  const outline = conform(outlineSchema, place, text === undefined ? source : parse(document, text));
+  const outline = conform(outlineSchema, place, text === undefined ? source : parseDocument(document, text));
   const space = outline.space === undefined ? undefined : new Space(inside(place, "space"), outline.space);
   if (space !== undefined && outline.n !== undefined && outline.n !== space.n) {
     throw fileError(inside(place, "n"), `${space.n}, the number of kets of the space`, showValue(outline.n));
@@ -77,9 +78,11 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
     defined.set(name, readMatrixAt(at, value, context));
   }
   const kets = outline.kets ?? space?.kets();
+  const h0 = readMatrixAt(inside(place, "h0"), outline.h0, context);
   return {
+    n: h0.n,
     problem: {
-      h0: readMatrixAt(inside(place, "h0"), outline.h0, context),
+      h0,
       v: readPerturbations(inside(place, "v"), outline.v, context),
       candidates: readCandidates(inside(place, "candidates"), outline.candidates ?? {}, context),
       ...(kets === undefined ? {} : { kets }),
@@ -90,14 +93,6 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
     note: outline.note,
     invented: outline.invented ?? false,
   };
-}
-
-function parse(document: ProblemDocument, text: string): unknown {
-  const fault = jsonFault(text);
-  if (fault === undefined) return JSON.parse(text.replace(/^\uFEFF/, ""));
-  const { line, column } = lineAndColumn(text, fault.offset);
-  const message = `${document.name}, line ${line}, column ${column}: expected ${fault.expected}, got ${fault.came}; correct the JSON there`;
-  throw new GoodBasisError("file", message, { name: document.name, line, column, expected: fault.expected });
 }
 
 function readPerturbations(place: Place, value: unknown, context: MatrixContext): Problem["v"] {

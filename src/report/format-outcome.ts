@@ -145,14 +145,13 @@ function couplingLines(study: Study, couplings: readonly Coupling[], most: numbe
       { title: "between", align: "left" },
       { title: "and", align: "left" },
     ],
-    shown.map(({ level, perturbation, names, size, atLeast, atMost }) => {
+    shown.map(({ level, perturbation, states, names, size, atLeast, atMost }) => {
       const { value, plusMinus } = boundedText(size, Math.max(atMost - size, size - atLeast));
       return [
         String(study.levels[level]?.place ?? level),
         visible(perturbation),
         `${value} ± ${plusMinus}`,
-        visible(names[0]),
-        visible(names[1]),
+        ...names.map((name, k) => visible(names[0] === names[1] ? `state ${states[k]}, ${name}` : name)),
       ];
     }),
     { indent: "  " },

@@ -78,21 +78,19 @@ function toldApart(level: LevelResult): string {
   return names.length === 0 ? "nothing" : names.join(", ");
 }
 
-/** All that are not good, then good ones, up to the number wanted; in order of energy. */
+const BY_NEED = ["not good", "undecided", "good"] as const;
+
+/** The levels that need looking at, then good ones, up to the number wanted; in order of energy. */
 function chooseShown(levels: readonly LevelResult[], most: number): readonly LevelResult[] {
   if (levels.length <= most) return levels;
-  const byNeed = [
-    ...levels.filter((level) => level.verdict !== "good"),
-    ...levels.filter((level) => level.verdict === "good"),
-  ];
+  const byNeed = BY_NEED.flatMap((verdict) => levels.filter((level) => level.verdict === verdict));
   return byNeed.slice(0, most).sort((a, b) => a.index - b.index);
 }
 
 function verdictCounts(levels: readonly LevelResult[], shown: readonly LevelResult[]): string {
   const visibleOnes = new Set(shown);
   const rest = levels.filter((level) => !visibleOnes.has(level));
-  return (["good", "not good", "undecided"] as const)
-    .map((verdict) => ({ verdict, count: rest.filter((level) => level.verdict === verdict).length }))
+  return BY_NEED.map((verdict) => ({ verdict, count: rest.filter((level) => level.verdict === verdict).length }))
     .filter(({ count }) => count > 0)
     .map(({ verdict, count }) => `${count} ${verdict}`)
     .join(", ");

@@ -128,20 +128,20 @@ function row(
 describe("text", () => {
   test("aligns points and ±, and rules off levels", () => {
     expect(formatTable(small, "text").split("\n")).toEqual([
-      "level  E0        Jz             L2  E1                           E2                 evidence  state",
+      "level  E0        Jz             L2  E1                           E2              evidence  state",
       "       [cm⁻¹]        (descriptive)  [cm⁻¹]                       [cm⁻¹]",
-      "─".repeat(134),
-      "    0  −11.46   1/2            ⟨2⟩    0.666666666666667 ± 5e−15  0.00283 ± 0.00002  labels    0.816497 |1,−1/2⟩ − 0.57735 |0,1/2⟩",
-      "               −1/2            ⟨2⟩  −12.5               ± 3e−14  0.00283 ± 0.00002  V         |a|b⟩ … (+5, weight 0.013)",
-      "┈".repeat(134),
-      "    1    5.73   3/2            ⟨6⟩    —                          0.00283 ± 0.00002  none      −|=x_y⟩",
+      "─".repeat(126),
+      "    0  −11.46   1/2            ⟨2⟩    0.666666666666667 ± 5e−15  0.00283 ± 2e−5  labels    0.816497 |1,−1/2⟩ − 0.57735 |0,1/2⟩",
+      "               −1/2            ⟨2⟩  −12.5               ± 2e−14  0.00283 ± 2e−5  V         |a|b⟩ … (+5, weight 0.013)",
+      "┈".repeat(126),
+      "    1    5.73   3/2            ⟨6⟩    —                          0.00283 ± 2e−5  none      −|=x_y⟩",
       "",
       "L2: conserved by H0, names the states.",
     ]);
   });
 
   test("fewer digits widen the ±", () => {
-    expect(formatTable(small, "text", { digits: 3 })).toContain("0.667 ± 0.0004");
+    expect(formatTable(small, "text", { digits: 3 })).toContain("0.667 ± 4e−4");
   });
 
   test("notes can be left out", () => {
@@ -154,9 +154,9 @@ describe("markdown", () => {
     expect(formatTable(small, "markdown").split("\n")).toEqual([
       "| level | E0 [cm⁻¹] | Jz | L2 (descriptive) | E1 [cm⁻¹] | E2 [cm⁻¹] | evidence | state |",
       "| ---: | ---: | ---: | ---: | ---: | ---: | :--- | :--- |",
-      "| 0 | −11.46 | 1/2 | ⟨2⟩ | 0.666666666666667 ± 5e−15 | 0.00283 ± 0.00002 | labels | 0.816497 \\|1,−1/2⟩ − 0.57735 \\|0,1/2⟩ |",
-      "|  |  | −1/2 | ⟨2⟩ | −12.5 ± 3e−14 | 0.00283 ± 0.00002 | V | \\|a\\|b⟩ … (+5, weight 0.013) |",
-      "| 1 | 5.73 | 3/2 | ⟨6⟩ | — | 0.00283 ± 0.00002 | none | −\\|=x\\_y⟩ |",
+      "| 0 | −11.46 | 1/2 | ⟨2⟩ | 0.666666666666667 ± 5e−15 | 0.00283 ± 2e−5 | labels | 0.816497 \\|1,−1/2⟩ − 0.57735 \\|0,1/2⟩ |",
+      "|  |  | −1/2 | ⟨2⟩ | −12.5 ± 2e−14 | 0.00283 ± 2e−5 | V | \\|a\\|b⟩ … (+5, weight 0.013) |",
+      "| 1 | 5.73 | 3/2 | ⟨6⟩ | — | 0.00283 ± 2e−5 | none | −\\|=x\\_y⟩ |",
       "",
       "- L2: conserved by H0, names the states.",
     ]);
@@ -223,15 +223,16 @@ describe("json", () => {
 
 describe("latex", () => {
   test("is a plain tabular with kets, true minus signs and \\pm", () => {
+    const unit = ["{[}cm$^", "{-1}$", "{]}"].join("");
     expect(formatTable(small, "latex").split("\n")).toEqual([
       "\\begin{tabular}{rrrrrrll}",
       "\\hline",
-      "level & $E_0$ {[}cm$^{-1}${]} & Jz & L2 (descriptive) & $E_1$ {[}cm$^{-1}${]} & $E_2$ {[}cm$^{-1}${]} & evidence & state \\\\",
+      `level & $E_0$ ${unit} & Jz & L2 (descriptive) & $E_1$ ${unit} & $E_2$ ${unit} & evidence & state ${"\\\\"}`,
       "\\hline",
-      "$0$ & $-11.46$ & $1/2$ & $\\langle 2\\rangle$ & $0.666666666666667 \\pm 5\\times 10^{-15}$ & $0.00283 \\pm 0.00002$ & labels & $0.816497 |1,-1/2\\rangle - 0.57735 |0,1/2\\rangle$ \\\\",
-      " &  & $-1/2$ & $\\langle 2\\rangle$ & $-12.5 \\pm 3\\times 10^{-14}$ & $0.00283 \\pm 0.00002$ & V & $|\\mathrm{a|b}\\rangle \\ldots (+5, \\mbox{weight }0.013)$ \\\\",
+      "$0$ & $-11.46$ & $1/2$ & $\\langle 2\\rangle$ & $0.666666666666667 \\pm 5\\times 10^{-15}$ & $0.00283 \\pm 2\\times 10^{-5}$ & labels & $0.816497 |1,-1/2\\rangle - 0.57735 |0,1/2\\rangle$ \\\\",
+      " &  & $-1/2$ & $\\langle 2\\rangle$ & $-12.5 \\pm 2\\times 10^{-14}$ & $0.00283 \\pm 2\\times 10^{-5}$ & V & $|\\mathrm{a|b}\\rangle \\ldots (+5, \\mbox{weight }0.013)$ \\\\",
       "\\hline",
-      "$1$ & $5.73$ & $3/2$ & $\\langle 6\\rangle$ & --- & $0.00283 \\pm 0.00002$ & none & $-|\\mathrm{=x\\_y}\\rangle$ \\\\",
+      "$1$ & $5.73$ & $3/2$ & $\\langle 6\\rangle$ & --- & $0.00283 \\pm 2\\times 10^{-5}$ & none & $-|\\mathrm{=x\\_y}\\rangle$ \\\\",
       "\\hline",
       "\\end{tabular}",
       "\\par L2: conserved by H0, names the states.",

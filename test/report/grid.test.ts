@@ -17,18 +17,16 @@ test("decimal points and ± stand below each other", () => {
       ["4", ""],
     ],
   );
-  expect(lines).toEqual(
-    [
-      " n  E1",
-      "    [Eh]",
-      "────────────────────",
-      " 1  −12.5   ± 4e−15",
-      "10    3     ± 1.2e−14",
-      " 2    2e−9  ± 1e−14",
-      " 3    —",
-      " 4",
-    ].map((line, k) => (k === 2 ? "─".repeat(4 + textWidth("−12.5   ± 1.2e−14")) : line)),
-  );
+  expect(lines).toEqual([
+    " n  E1",
+    "    [Eh]",
+    "────────────────────",
+    " 1  −12.5  ± 4e−15",
+    "10    3    ± 1.2e−14",
+    " 2    2e−9 ± 1e−14",
+    " 3    —",
+    " 4",
+  ]);
 });
 
 test("combining marks take no column, arrows and bars take one", () => {

@@ -1,8 +1,8 @@
 import { type Audit, auditCommutators } from "../../audit/audit.js";
-import type { CommutatorFinding } from "../../audit/commutators.js";
 import type { ReadProblem } from "../../problem/read.js";
 import { formatAudit } from "../../report/format-audit.js";
 import { formatTable } from "../../report/format-table.js";
+import { commutatorText, reasons, useText } from "../../report/sentences.js";
 import type { Table } from "../../report/table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
@@ -69,22 +69,17 @@ function auditTable(read: ReadProblem, audit: Audit): Table {
       text("kind", "kind"),
       text("H0", "with H0"),
       ...names.map((name) => text(name, `with ${name}`)),
-      text("conserved", "conserved"),
+      text("verdict", "verdict"),
       text("reason", "reason"),
     ],
-    audit.candidates.map(({ name, kind, withH0, withPerturbations, conserved, reason }) => [
-      name,
-      kind,
-      finding(withH0),
-      ...withPerturbations.map(finding),
-      conserved ? "yes" : "no",
-      reason,
+    audit.candidates.map((candidate) => [
+      candidate.name,
+      candidate.kind,
+      commutatorText(candidate.withH0),
+      ...candidate.withPerturbations.map(commutatorText),
+      useText(candidate),
+      reasons(candidate).join(" "),
     ]),
   );
   return { ...table, notes: audit.remarks.map((remark) => `${remark}.`) };
-}
-
-function finding({ verdict, norm, bound }: CommutatorFinding): string {
-  if (verdict === "broken") return `broken, ‖…‖ = ${norm.toPrecision(6)}`;
-  return `${verdict}, ‖…‖ ≤ ${bound.toPrecision(2)}`;
 }

@@ -1,0 +1,194 @@
+import fc from "fast-check";
+import { describe, expect, it } from "vitest";
+import { type FindOptions, findGoodBasis, Operator, type Outcome } from "../../src/index.js";
+import { exactElement, exactMatrix, exactResidual, exactVector, type Modulus } from "./dyadic.js";
+import { type Plan, type Planted, plant } from "./planted.js";
+
+/** "Away from the resolution limit": by this factor. */
+const AWAY = 30;
+
+const plans: fc.Arbitrary<Plan> = fc.record({
+  seed: fc.integer({ min: 1, max: 2 ** 31 - 1 }),
+  blocks: fc.array(fc.integer({ min: 1, max: 4 }), { minLength: 2, maxLength: 4 }),
+  levels: fc.integer({ min: 1, max: 3 }),
+  hidden: fc.constantFrom("permutation", "unitary"),
+  complex: fc.boolean(),
+  label: fc.constantFrom("hermitian", "unitary"),
+  scalar: fc.boolean(),
+  breaking: fc.oneof(
+    fc.constant(0),
+    fc.double({ min: 1, max: 13, noNaN: true }).map((power) => 10 ** -power),
+  ),
+});
+
+const depths = ["labels", "first order", "second order", "full"] as const;
+
+function solve({ h0, v, label }: Planted, options: FindOptions): Outcome<"label"> {
+  return findGoodBasis({ h0, v, candidates: { label } }, options);
+}
+
+interface Pair {
+  readonly level: number;
+  readonly states: readonly [number, number];
+  readonly size: Modulus;
+}
+
+/** Every in-level element of V between the vectors handed over, exactly. */
+function exactPairs({ n, v }: Planted, outcome: Outcome): Pair[] {
+  const matrix = exactMatrix(v);
+  const vectors = outcome.states.map((state) => exactVector(state, n));
+  return outcome.levels.flatMap(({ index, firstState, degeneracy }) => {
+    const pairs: Pair[] = [];
+    for (let a = firstState; a < firstState + degeneracy; a++) {
+      for (let b = a + 1; b < firstState + degeneracy; b++) {
+        pairs.push({ level: index, states: [a, b], size: exactElement(vectors[a] ?? [], matrix, vectors[b] ?? []) });
+      }
+    }
+    return pairs;
+  });
+}
+
+/** The kets of the first block. */
+function firstBlock({ n, label }: Planted, kind: Plan["label"]): number[] {
+  const kets = Array.from({ length: n }, (_, ket) => ket);
+  return kets.filter((ket) => label.entry(ket, ket).re === (kind === "hermitian" ? 0 : 1));
+}
+
+describe("problems with planted symmetry and planted breaking", () => {
+  it("no in-level element exceeds its stated bound, and none of a good outcome the resolution", () => {
+    fc.assert(
+      fc.property(plans, fc.constantFrom(...depths), (plan, depth) => {
+        const problem = plant(plan);
+        const outcome = solve(problem, { depth });
+        const threshold = outcome.resolution * problem.v.norm;
+        for (const { level, size } of exactPairs(problem, outcome)) {
+          const { evidence } = outcome.levels[level] ?? {};
+          expect(size.atMost(evidence?.largest[0] ?? 0), `${size.value} within ${evidence?.largest[0]}`).toBe(true);
+          if (outcome.verdict === "good") expect(size.atMost(threshold)).toBe(true);
+        }
+      }),
+      { seed: 20240917, numRuns: 400 },
+    );
+  });
+
+  it("every coupling of a not-good outcome lies within its bounds and above the resolution", () => {
+    let seen = 0;
+    fc.assert(
+      fc.property(plans, (plan) => {
+        const problem = plant({ ...plan, scalar: false });
+        const outcome = solve(problem, { depth: "labels" });
+        if (outcome.verdict !== "not good") return;
+        seen++;
+        const threshold = outcome.resolution * problem.v.norm;
+        const pairs = exactPairs(problem, outcome);
+        for (const { states, atLeast, atMost, size } of outcome.couplings) {
+          const [a, b] = [...states].sort((x, y) => x - y);
+          const exact = pairs.find((pair) => pair.states[0] === a && pair.states[1] === b)?.size;
+          expect(exact?.atMost(atMost)).toBe(true);
+          expect(exact?.atMost(atLeast * (1 - 1e-15))).toBe(false);
+          expect(exact?.atMost(threshold)).toBe(false);
+          expect(size).toBeGreaterThanOrEqual(atLeast);
+          expect(size).toBeLessThanOrEqual(atMost);
+        }
+      }),
+      { seed: 31, numRuns: 300 },
+    );
+    expect(seen).toBeGreaterThan(50);
+  });
+
+  it("energies lie within their stated residuals", () => {
+    fc.assert(
+      fc.property(plans, (plan) => {
+        const problem = plant(plan);
+        const outcome = solve(problem, {});
+        const matrix = exactMatrix(problem.h0);
+        for (const state of outcome.states) {
+          const residual = exactResidual(matrix, exactVector(state, problem.n), state.energy);
+          expect(residual.atMost(state.energyPlusMinus)).toBe(true);
+        }
+      }),
+      { seed: 47, numRuns: 150 },
+    );
+  });
+
+  it("away from the resolution limit every problem is good at full depth", () => {
+    let broken = 0;
+    let kept = 0;
+    fc.assert(
+      fc.property(plans, (plan) => {
+        const problem = plant(plan);
+        const relative = problem.coupling / problem.v.norm;
+        const outcome = solve(problem, {});
+        if (relative > 0 && relative > outcome.resolution / AWAY && relative < outcome.resolution * AWAY) return;
+        if (outcome.audit.candidates[0]?.conserved) kept++;
+        else broken++;
+        const questions = outcome.levels.flatMap((level) => level.questions.map((question) => question.message));
+        expect(outcome.verdict, questions.join("; ")).toBe("good");
+      }),
+      { seed: 7, numRuns: 600 },
+    );
+    expect(kept).toBeGreaterThan(100);
+    expect(broken).toBeGreaterThan(100);
+  });
+
+  it("a symmetry broken below the resolution limit is still a label, one broken above it is not", () => {
+    fc.assert(
+      fc.property(plans, (plan) => {
+        const problem = plant({ ...plan, scalar: false });
+        const [finding] = solve(problem, {}).audit.candidates;
+        const commutator = finding?.withPerturbations[0];
+        const relative = (commutator?.norm ?? 0) / (problem.v.norm * problem.label.norm);
+        const limit = (commutator?.threshold ?? 0) / (problem.v.norm * problem.label.norm);
+        if (relative < limit / AWAY) expect(finding?.conserved).toBe(true);
+        if (relative > limit * AWAY) expect(commutator?.verdict).toBe("broken");
+      }),
+      { seed: 11, numRuns: 300 },
+    );
+  });
+
+  it("with labels only, a coupling well above the resolution inside equal labels is not good", () => {
+    fc.assert(
+      fc.property(plans, fc.double({ min: 1, max: 8, noNaN: true }), (plan, power) => {
+        // Two kets of one block and one level, coupled by a planted element and alike otherwise.
+        const base = plant({
+          ...plan,
+          scalar: true,
+          breaking: 0,
+          hidden: "permutation",
+          levels: 1,
+          blocks: [2, ...plan.blocks],
+        });
+        const [a = 0, b = 0] = firstBlock(base, plan.label);
+        const size = 10 ** -power;
+        const v = base.v.plus(
+          Operator.fromTriplets(base.n, [
+            [a, b, size],
+            [b, a, size],
+          ]),
+        );
+        const outcome = solve({ ...base, v }, { depth: "labels" });
+        expect(size).toBeGreaterThan(AWAY * outcome.resolution * v.norm);
+        expect(outcome.verdict).toBe("not good");
+        if (outcome.verdict !== "not good") return;
+        expect(outcome.couplings[0]?.size).toBeCloseTo(size, 12);
+        // V may finish: then it is good.
+        expect(solve({ ...base, v }, {}).verdict).toBe("good");
+      }),
+      { seed: 3, numRuns: 100 },
+    );
+  });
+
+  it("with labels only, the verdict on the vectors handed over follows their true elements", () => {
+    fc.assert(
+      fc.property(plans, (plan) => {
+        const problem = plant({ ...plan, scalar: false, breaking: 0 });
+        const outcome = solve(problem, { depth: "labels" });
+        const largest = exactPairs(problem, outcome).reduce((most, { size }) => Math.max(most, size.value), 0);
+        const threshold = outcome.resolution * problem.v.norm;
+        if (largest > AWAY * threshold) expect(outcome.verdict).toBe("not good");
+        if (largest < threshold / AWAY) expect(outcome.verdict).not.toBe("not good");
+      }),
+      { seed: 5, numRuns: 200 },
+    );
+  });
+});
