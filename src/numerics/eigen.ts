@@ -1,252 +1,198 @@
 import { GoodBasisError } from "../errors.js";
-import type { Dense } from "./dense.js";
-import { applyReflectorBlocks, applyReflectors } from "./eigen/back-transform.js";
-import { divideAndConquer, solveLeaf } from "./eigen/divide-and-conquer.js";
-import { eigen2 } from "./eigen/order-two.js";
-import { PRODUCT_SCRATCH } from "./eigen/packed-product.js";
-import type { Tridiagonal } from "./eigen/tridiagonal.js";
-import { tridiagonaliseComplex } from "./eigen/tridiagonalise-complex.js";
-import { tridiagonaliseReal } from "./eigen/tridiagonalise-real.js";
-import { UNIT_ROUNDOFF } from "./rounding.js";
+import { components } from "./eigen/components.js";
+import { plainEigen } from "./eigen/plain.js";
+import type { EigenEngine, EigenSolved, EigenTuning, EigenWindow, HermitianEigen } from "./eigen/types.js";
+import { refuseUpper, requireFinite, requireShape, requireWindow } from "./eigen/validate.js";
+import { wasmEigen } from "./wasm/eigen.js";
 
-/** All eigenpairs of a Hermitian matrix. Neither signs, phases nor bases of degenerate levels are normalised. */
-export interface HermitianEigen {
-  /** Dimension. */
-  readonly n: number;
-  /** The n eigenvalues, ascending. */
-  readonly values: Float64Array;
-  /** Row k (n numbers from k n on) is the eigenvector of `values[k]`, A v = values[k] v; real parts. */
-  readonly re: Float64Array;
-  /** Imaginary parts in the same order; absent for a real matrix. */
-  readonly im: Float64Array | undefined;
+export type { EigenWindow, HermitianEigen } from "./eigen/types.js";
+
+/** What {@link hermitianEigen} may be told besides the matrix. */
+export interface EigenOptions {
+  /** Which eigenpairs are wanted; all of them where absent. Vectors outside are not transformed back. */
+  readonly window?: EigenWindow;
+  /**
+   * `"ignore"` (the default) takes the lower triangle as the matrix; `"check"` refuses a matrix whose upper triangle is
+   * not the conjugate of the lower one to within n units roundoff of the largest entry.
+   */
+  readonly upper?: "ignore" | "check";
 }
-
-/** Sizes at which the algorithm changes; they alter speed, not what is promised. */
-export interface EigenTuning {
-  /** Tridiagonal blocks up to this order go to implicit QL, larger ones are divided. At least 1. */
-  readonly leaf: number;
-  /** From this order on, reflectors are applied in blocks. */
-  readonly blockedFrom: number;
-  /** Reflectors in a block. At least 1. */
-  readonly blockWidth: number;
-}
-
-/** The measured defaults of {@link EigenTuning}. */
-export const EIGEN_TUNING: EigenTuning = { leaf: 32, blockedFrom: 96, blockWidth: 32 };
 
 /**
- * All eigenvalues and orthonormal eigenvectors of a real symmetric or complex Hermitian matrix.
+ * Eigenvalues and orthonormal eigenvectors of a real symmetric or complex Hermitian matrix.
  *
  * Residual and loss of orthogonality are a small multiple of n u ‖A‖ and n u, u = 2^−53, whatever the spectrum; small
- * eigenvalues are not accurate relative to themselves. The same input gives the same output, bit for bit.
+ * eigenvalues are not accurate relative to themselves. The same input gives the same output, bit for bit, on every
+ * platform with WebAssembly; elsewhere the plain TypeScript twin answers, with other last digits.
  *
- * Scaling by a power of two; reduction by reflectors (Householder, J. ACM 5, 339 (1958)); implicit QL (Bowdler, Martin,
- * Reinsch and Wilkinson, Numer. Math. 11, 293 (1968)) or, for larger orders, divide and conquer (Cuppen, Numer. Math.
- * 36, 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl. 16, 172 (1995)).
+ * Connected components first, each solved by itself; scaling by a power of two; reduction by reflectors (Householder,
+ * J. ACM 5, 339 (1958)); implicit QL (Bowdler, Martin, Reinsch and Wilkinson, Numer. Math. 11, 293 (1968)) or, for
+ * larger orders, divide and conquer (Cuppen, Numer. Math. 36, 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl.
+ * 16, 172 (1995)).
  *
  * @param n - dimension, zero allowed
- * @param re - row-major n × n, real parts; only the lower triangle is read, nothing is changed
+ * @param re - row-major n × n, real parts; only the lower triangle is read unless `upper` says otherwise; nothing is
+ * changed
  * @param im - imaginary parts, those of the diagonal taken as zero; absent for a real symmetric matrix
+ * @param options - window of eigenpairs, check of the upper triangle
  * @returns eigenvalues ascending, eigenvectors as rows; `im` is absent exactly where it was absent in the input
  * @throws GoodBasisError `shape` when an array has not n² numbers; `not-finite` when an entry of the lower triangle is
- * NaN or infinite, or an eigenvalue lies beyond the largest double; `no-convergence` when an iteration exceeds its
- * bound
+ * NaN or infinite, or an eigenvalue lies beyond the largest double; `not-hermitian` when `upper` is `"check"` and the
+ * triangles differ; `option` for a window that is not one; `no-convergence` when an iteration exceeds its bound
  */
-export function hermitianEigen(n: number, re: Float64Array, im: Float64Array | undefined): HermitianEigen {
-  return hermitianEigenTuned(n, re, im, EIGEN_TUNING);
-}
-
-/**
- * {@link hermitianEigen} with its thresholds as an argument, so that small matrices can reach every branch.
- *
- * @param n - dimension
- * @param re - as there
- * @param im - as there
- * @param tuning - the thresholds
- * @throws as there
- * @internal
- */
-export function hermitianEigenTuned(
+export function hermitianEigen(
   n: number,
   re: Float64Array,
   im: Float64Array | undefined,
-  tuning: EigenTuning,
+  options: EigenOptions = {},
 ): HermitianEigen {
-  const largest = largestEntry(n, re, im);
-  const values = new Float64Array(n);
-  const result: HermitianEigen = {
-    n,
-    values,
-    re: new Float64Array(n * n),
-    im: im === undefined ? undefined : new Float64Array(n * n),
-  };
-  if (n <= 1 || largest === 0) {
-    for (let i = 0; i < n; i++) result.re[i * n + i] = 1;
-    if (n === 1) values[0] = (re[0] as number) + 0;
-    return result;
-  }
-  const scale = powerOfTwoNear(largest);
-  if (n === 2) eigen2(re, im, 1 / scale, result);
-  else solve(re, im, 1 / scale, result, tuning);
-  // Adding zero turns −0 into 0.
-  for (let i = 0; i < n; i++) values[i] = (values[i] as number) * scale + 0;
-  if (!Number.isFinite(values[0]) || !Number.isFinite(values[n - 1])) {
-    throw new GoodBasisError(
-      "not-finite",
-      `hermitianEigen: an eigenvalue of the ${n} × ${n} matrix exceeds the largest double; scale the matrix down`,
-      { n, largest },
-    );
-  }
-  return result;
+  return hermitianEigenBy(defaultEngine, n, re, im, options);
 }
 
-/** Largest modulus of a real or imaginary part in the lower triangle; refuses what is not finite. */
-function largestEntry(n: number, re: Float64Array, im: Float64Array | undefined): number {
-  if (!Number.isInteger(n) || n < 0 || re.length !== n * n || (im !== undefined && im.length !== n * n)) {
-    throw new GoodBasisError(
-      "shape",
-      `hermitianEigen: expected arrays of n² numbers for n = ${n}, got ${re.length}` +
-        `${im === undefined ? "" : ` and ${im.length}`}; pass the full square, row by row`,
-      { n, re: re.length, im: im?.length },
-    );
-  }
-  let largest = 0;
-  let probe = 0;
-  for (let i = 0; i < n; i++) {
-    for (let k = i * n; k <= i * n + i; k++) {
-      const x = re[k] as number;
-      probe += 0 * x;
-      largest = Math.max(largest, Math.abs(x));
-      if (im !== undefined) {
-        const y = im[k] as number;
-        probe += 0 * y;
-        if (k < i * n + i) largest = Math.max(largest, Math.abs(y));
-      }
-    }
-  }
-  if (probe !== 0) {
-    throw notFinite(n, re, im);
-  }
-  return largest;
-}
+/** The WebAssembly kernels where the platform runs them, else their plain twin. */
+const defaultEngine: EigenEngine = (job, tuning) => wasmEigen(job, tuning) ?? plainEigen(job, tuning);
 
-function notFinite(n: number, re: Float64Array, im: Float64Array | undefined): GoodBasisError {
-  const bad = (k: number): boolean => !Number.isFinite(re[k]) || (im !== undefined && !Number.isFinite(im[k]));
-  let row = 0;
-  let col = 0;
-  while (row < n - 1 && !bad(row * n + col)) {
-    if (col < row) col++;
-    else {
-      row++;
-      col = 0;
-    }
-  }
-  while (col < row && !bad(row * n + col)) col++;
-  const k = row * n + col;
-  return new GoodBasisError(
-    "not-finite",
-    `hermitianEigen: entry (${row}, ${col}) is ${re[k]}${im === undefined ? "" : ` + ${im[k]} i`}; ` +
-      "only finite entries have an eigenproblem",
-    { row, col },
-  );
-}
-
-/** The power of two just below x, kept where its inverse is a double as well. */
-function powerOfTwoNear(x: number): number {
-  return 2 ** Math.max(-1000, Math.min(1000, Math.floor(Math.log2(x))));
-}
-
-/** Arrays of one solution; matrices have n² numbers or more. */
-interface Workspace extends Tridiagonal {
-  readonly re: Float64Array;
-  readonly im: Float64Array;
-  readonly v: Float64Array;
-  readonly phases: Float64Array;
-  readonly work: Float64Array;
-  readonly order: Int32Array;
-}
-
-function makeWorkspace(n: number, complex: boolean): Workspace {
-  return {
-    re: new Float64Array(n * n),
-    im: new Float64Array(complex ? n * n : 0),
-    v: new Float64Array(n * n),
-    diagonal: new Float64Array(n),
-    off: new Float64Array(n),
-    tau: new Float64Array(n),
-    phases: new Float64Array(complex ? 2 * n : 0),
-    work: new Float64Array(complex ? 6 * n : 3 * n),
-    order: new Int32Array(n),
-  };
-}
-
-/** Order up to which {@link SMALL} serves. */
-const SMALL_ORDER = 32;
-/** Kept for small matrices, where making the arrays takes longer than using them; written before read in every call. */
-const SMALL: Workspace = makeWorkspace(SMALL_ORDER, true);
-
-/** Orders from three on: reduction, tridiagonal eigenproblem, back-transformation. */
-function solve(
+/**
+ * {@link hermitianEigen} by a given engine with given thresholds, so that small matrices can reach every branch of both.
+ *
+ * @param engine - the WebAssembly kernels or their plain twin
+ * @param n - dimension
+ * @param re - as there
+ * @param im - as there
+ * @param options - as there
+ * @param tuning - thresholds; those of the engine where absent
+ * @throws as there
+ * @internal
+ */
+export function hermitianEigenBy(
+  engine: EigenEngine,
+  n: number,
   re: Float64Array,
   im: Float64Array | undefined,
-  factor: number,
-  result: HermitianEigen,
-  tuning: EigenTuning,
-): void {
-  const { n, values } = result;
-  const space = n <= SMALL_ORDER ? SMALL : makeWorkspace(n, im !== undefined);
-  const { v, order, diagonal, phases } = space;
-  copyLower(n, re, factor, space.re);
-  if (im === undefined) tridiagonaliseReal(n, space.re, space, space.work);
-  else {
-    copyLower(n, im, factor, space.im);
-    tridiagonaliseComplex(n, space.re, space.im, space, phases, space.work);
-  }
-  const scratch = n > tuning.leaf || n >= tuning.blockedFrom ? new Float64Array(PRODUCT_SCRATCH) : undefined;
-  v.fill(0, 0, n * n);
-  solveTridiagonal(n, space, tuning, scratch);
-  for (let k = 0; k < n; k++) values[k] = diagonal[order[k] as number] as number;
-  gatherRows(n, v, order, phases, result);
-  const reflectors: Dense = { re: space.re, im: im === undefined ? undefined : space.im };
-  if (scratch === undefined || n < tuning.blockedFrom) applyReflectors(n, reflectors, space.tau, result);
-  else applyReflectorBlocks(n, reflectors, space.tau, result, tuning.blockWidth, scratch);
+  options: EigenOptions = {},
+  tuning?: EigenTuning,
+): HermitianEigen {
+  requireShape("hermitianEigen", n, 1, re, im);
+  const { window = {}, upper = "ignore" } = options;
+  requireWindow("hermitianEigen", n, window);
+  requireFinite("hermitianEigen", n, re, im);
+  if (upper === "check") refuseUpper("hermitianEigen", n, re, im);
+  const parts = components(n, re, im);
+  const found =
+    parts !== undefined
+      ? joinParts(
+          n,
+          parts.map((members) => solvePart(engine, n, re, im, members, window, tuning)),
+          im,
+          window,
+        )
+      : n < 2
+        ? trivial(n, re, im, window)
+        : ownCopy(n, solveWith(engine, { count: 1, n, re, im, window }, tuning));
+  requireRange(found);
+  return found;
 }
 
-function copyLower(n: number, from: Float64Array, factor: number, to: Float64Array): void {
-  for (let i = 0; i < n; i++) {
-    for (let k = i * n; k <= i * n + i; k++) to[k] = factor * (from[k] as number);
-  }
+function solveWith(engine: EigenEngine, ...[job, tuning]: Parameters<EigenEngine>): EigenSolved {
+  const solved = engine(job, tuning);
+  if (solved === undefined)
+    throw new GoodBasisError("option", "hermitianEigen: this platform lacks the engine asked for");
+  return solved;
 }
 
-/** Eigenvalues into the diagonal, eigenvectors into the rows of v, the ascending order into `order`. */
-function solveTridiagonal(n: number, space: Workspace, tuning: EigenTuning, scratch: Float64Array | undefined): void {
-  const { diagonal, off, v, order, work } = space;
-  let norm = Math.abs(diagonal[n - 1] as number);
-  for (let i = 0; i < n - 1; i++) {
-    norm = Math.max(norm, Math.abs(diagonal[i] as number), Math.abs(off[i] as number));
-  }
-  const floor = UNIT_ROUNDOFF * UNIT_ROUNDOFF * norm;
-  if (scratch === undefined || n <= tuning.leaf) {
-    solveLeaf(0, n, diagonal, off, v, n, order, floor, work);
-  } else {
-    divideAndConquer(n, diagonal, off, v, order, norm, tuning.leaf, floor, work, scratch);
-  }
+function ownCopy(n: number, { first, values, re, im }: EigenSolved): HermitianEigen {
+  return { n, first, values: values.slice(), re: re.slice(), im: im?.slice() };
 }
 
-/** Rows of v in ascending order, times the phases where the matrix is complex, into the result. */
-function gatherRows(n: number, v: Float64Array, order: Int32Array, phases: Float64Array, result: HermitianEigen): void {
-  const { re, im } = result;
-  for (let k = 0; k < n; k++) {
-    const from = (order[k] as number) * n;
-    const to = k * n;
-    if (im === undefined) {
-      for (let j = 0; j < n; j++) re[to + j] = v[from + j] as number;
-    } else {
-      for (let j = 0; j < n; j++) {
-        const x = v[from + j] as number;
-        re[to + j] = x * (phases[j] as number);
-        im[to + j] = x * (phases[n + j] as number);
-      }
-    }
+/** Orders zero and one. */
+function trivial(n: number, re: Float64Array, im: Float64Array | undefined, window: EigenWindow): HermitianEigen {
+  return joinParts(n, n === 0 ? [] : [singlePart(0, re[0] as number, window)], im, window);
+}
+
+/** Eigenpairs of one component inside a window of values, in its own coordinates. */
+interface Part extends EigenSolved {
+  readonly members: Int32Array;
+}
+
+function singlePart(index: number, value: number, { low, high }: EigenWindow): Part {
+  const below = low !== undefined && value < low;
+  const inside = !below && !(high !== undefined && value > high);
+  // Adding zero turns −0 into 0.
+  const values = Float64Array.from(inside ? [value + 0] : []);
+  return { members: Int32Array.of(index), first: below ? 1 : 0, values, re: Float64Array.of(1), im: undefined };
+}
+
+function solvePart(
+  engine: EigenEngine,
+  n: number,
+  re: Float64Array,
+  im: Float64Array | undefined,
+  members: Int32Array,
+  window: EigenWindow,
+  tuning: EigenTuning | undefined,
+): Part {
+  const size = members.length;
+  const [index = 0] = members;
+  if (size === 1) return singlePart(index, re[index * n + index] as number, window);
+  const job = {
+    count: 1,
+    n: size,
+    re: lowerPart(n, re, members),
+    im: im && lowerPart(n, im, members),
+    // Indices count across all components: joinParts sees to them.
+    window: { low: window.low ?? Number.NEGATIVE_INFINITY, high: window.high ?? Number.POSITIVE_INFINITY },
+  };
+  return { ...ownCopy(size, solveWith(engine, job, tuning)), members };
+}
+
+/** The lower triangle of the submatrix on ascending indices. */
+function lowerPart(n: number, from: Float64Array, members: Int32Array): Float64Array {
+  const size = members.length;
+  const part = new Float64Array(size * size);
+  for (let i = 0; i < size; i++) {
+    const row = (members[i] as number) * n;
+    for (let j = 0; j <= i; j++) part[i * size + j] = from[row + (members[j] as number)] as number;
   }
+  return part;
+}
+
+/** The eigenpairs of all components in ascending order, cut to the window of indices. */
+function joinParts(
+  n: number,
+  parts: readonly Part[],
+  im: Float64Array | undefined,
+  { from = 0, to = n }: EigenWindow,
+): HermitianEigen {
+  const below = parts.reduce((sum, part) => sum + part.first, 0);
+  const all = parts.flatMap((part) => Array.from(part.values, (value, row) => ({ part, row, value })));
+  all.sort((a, b) => a.value - b.value);
+  const first = Math.max(below, from);
+  const chosen = all.slice(first - below, Math.max(first, to) - below);
+  const out = {
+    n,
+    first,
+    values: Float64Array.from(chosen, ({ value }) => value),
+    re: new Float64Array(chosen.length * n),
+    im: im && new Float64Array(chosen.length * n),
+  };
+  chosen.forEach(({ part, row }, k) => {
+    scatterRow(part.re, row, part.members, out.re, k * n);
+    if (out.im !== undefined && part.im !== undefined) scatterRow(part.im, row, part.members, out.im, k * n);
+  });
+  return out;
+}
+
+function scatterRow(from: Float64Array, row: number, members: Int32Array, to: Float64Array, at: number): void {
+  const size = members.length;
+  for (let j = 0; j < size; j++) to[at + (members[j] as number)] = from[row * size + j] as number;
+}
+
+/** Refuses eigenvalues beyond the largest double. */
+function requireRange({ n, values }: HermitianEigen): void {
+  if (Number.isFinite(values[0] ?? 0) && Number.isFinite(values[values.length - 1] ?? 0)) return;
+  throw new GoodBasisError(
+    "not-finite",
+    `hermitianEigen: an eigenvalue of the ${n} × ${n} matrix exceeds the largest double; scale the matrix down`,
+    { n },
+  );
 }

@@ -2,13 +2,10 @@ import fc from "fast-check";
 import { EigenvalueDecomposition, Matrix } from "ml-matrix";
 import { describe, expect, it } from "vitest";
 import { GoodBasisError } from "../../src/errors.js";
-import {
-  EIGEN_TUNING,
-  type EigenTuning,
-  type HermitianEigen,
-  hermitianEigen,
-  hermitianEigenTuned,
-} from "../../src/numerics/eigen.js";
+import { plainEigen } from "../../src/numerics/eigen/plain.js";
+import type { EigenEngine, EigenTuning } from "../../src/numerics/eigen/types.js";
+import { type EigenOptions, type HermitianEigen, hermitianEigenBy } from "../../src/numerics/eigen.js";
+import { wasmEigen } from "../../src/numerics/wasm/eigen.js";
 import {
   conjugated,
   generator,
@@ -20,8 +17,14 @@ import {
   withSpectrum,
 } from "./eigen/matrices.js";
 
+/** Both implementations of every kernel; all tests run on each. */
+const ENGINES: readonly [string, EigenEngine][] = [
+  ["WebAssembly", wasmEigen],
+  ["plain TypeScript", plainEigen],
+];
+
 const TUNINGS: readonly EigenTuning[] = [
-  EIGEN_TUNING,
+  { leaf: 32, blockedFrom: 64, blockWidth: 32 },
   { leaf: 1, blockedFrom: 3, blockWidth: 1 },
   { leaf: 3, blockedFrom: 3, blockWidth: 5 },
   { leaf: 7, blockedFrom: 1000, blockWidth: 1 },
@@ -31,8 +34,8 @@ const TUNINGS: readonly EigenTuning[] = [
 /**
  * Solves, requires order and 20 n u in both norms (Frobenius, which bounds the spectral one), and hands the result on.
  */
-function solved(of: Sample, tuning: EigenTuning = EIGEN_TUNING): HermitianEigen {
-  const found = hermitianEigenTuned(of.n, of.re, of.im, tuning);
+function solvedBy(engine: EigenEngine, of: Sample, tuning?: EigenTuning): HermitianEigen {
+  const found = hermitianEigenBy(engine, of.n, of.re, of.im, {}, tuning);
   const { residual, orthogonality } = quality(of, found);
   const where = `n = ${of.n}, ${of.im ? "complex" : "real"}, ${JSON.stringify(tuning)}`;
   expect(residual, `residual, ${where}`).toBeLessThanOrEqual(20);
@@ -62,7 +65,11 @@ function codeOf(run: () => unknown): string {
 
 const list = (n: number, value: (k: number) => number): number[] => Array.from({ length: n }, (_, k) => value(k));
 
-describe("hermitianEigen", () => {
+describe.each(ENGINES)("hermitianEigen by %s", (_engine, engine) => {
+  const solved = (of: Sample, tuning?: EigenTuning): HermitianEigen => solvedBy(engine, of, tuning);
+  const hermitianEigen = (n: number, re: Float64Array, im?: Float64Array, options?: EigenOptions): HermitianEigen =>
+    hermitianEigenBy(engine, n, re, im, options);
+
   it.each([false, true])("solves random matrices of every order up to 70, and 128 and 200 (complex: %s)", (complex) => {
     for (const n of [...list(70, (k) => k + 1), 128, 200]) solved(randomSample(n, complex, n));
   });

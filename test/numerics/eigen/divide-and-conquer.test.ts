@@ -18,7 +18,7 @@ function tridiagonal(n: number, leaf: number, entry: (i: number) => [diagonal: n
     re.set(v.subarray(row * n, (row + 1) * n), k * n);
   });
   const values = Float64Array.from(order, (row) => diagonal[row] as number);
-  return { values, ...quality(of, { n, values, re, im: undefined }) };
+  return { values, ...quality(of, { n, first: 0, values, re, im: undefined }) };
 }
 
 describe("divideAndConquer", () => {

@@ -1,0 +1,59 @@
+/** Eigenpairs of a Hermitian matrix. Neither signs, phases nor bases of degenerate levels are normalised. */
+export interface HermitianEigen {
+  /** Dimension. */
+  readonly n: number;
+  /** Index of `values[0]` among all n eigenvalues in ascending order; 0 unless a window was asked for. */
+  readonly first: number;
+  /** The eigenvalues, ascending: all n, or those inside the window. */
+  readonly values: Float64Array;
+  /** Row k (n numbers from k n on) is the eigenvector of `values[k]`, A v = values[k] v; real parts. */
+  readonly re: Float64Array;
+  /** Imaginary parts in the same order; absent for a real matrix. */
+  readonly im: Float64Array | undefined;
+}
+
+/**
+ * Which eigenpairs are wanted: those with an index `from` ≤ k < `to` in ascending order and an eigenvalue from `low` to
+ * `high`, both included. What is absent does not restrict.
+ */
+export interface EigenWindow {
+  readonly from?: number;
+  readonly to?: number;
+  readonly low?: number;
+  readonly high?: number;
+}
+
+/** Sizes at which the algorithm changes; they alter speed, not what is promised. */
+export interface EigenTuning {
+  /** Tridiagonal blocks up to this order go to implicit QL, larger ones are divided. At least 1. */
+  readonly leaf: number;
+  /** From this order on, reflectors are applied in blocks. */
+  readonly blockedFrom: number;
+  /** Reflectors in a block. At least 1. */
+  readonly blockWidth: number;
+}
+
+/** Matrices of one order, one after the other, none of which falls into components. */
+export interface EigenJob {
+  readonly count: number;
+  readonly n: number;
+  /** `count` row-major matrices; only the lower triangles are read. */
+  readonly re: Float64Array;
+  readonly im: Float64Array | undefined;
+  /** At most one matrix where the window restricts anything. */
+  readonly window: EigenWindow;
+}
+
+/**
+ * What an engine found: the layout of {@link HermitianEigen}, one matrix after the other. The arrays may lie in memory
+ * that the next call overwrites: copy what is to be kept.
+ */
+export interface EigenSolved {
+  readonly first: number;
+  readonly values: Float64Array;
+  readonly re: Float64Array;
+  readonly im: Float64Array | undefined;
+}
+
+/** One of the implementations that {@link EigenJob} can be handed to; `undefined` where this platform lacks it. */
+export type EigenEngine = (job: EigenJob, tuning?: EigenTuning) => EigenSolved | undefined;

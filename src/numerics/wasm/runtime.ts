@@ -1,0 +1,142 @@
+import { KERNELS } from "./kernels.js";
+
+/** What the compiled kernels export; addresses are in bytes. The functions are documented at their sources. */
+export interface KernelExports {
+  readonly memory: { readonly buffer: ArrayBuffer; grow(pages: number): number };
+  readonly heapStart: { readonly value: number };
+  readonly windowStart: { readonly value: number };
+  eigenScratch(n: number, complex: boolean, leaf: number, blockedFrom: number, blockWidth: number): number;
+  solveHermitian(
+    count: number,
+    n: number,
+    re: number,
+    im: number,
+    values: number,
+    vectorsRe: number,
+    vectorsIm: number,
+    from: number,
+    to: number,
+    low: number,
+    high: number,
+    leaf: number,
+    blockedFrom: number,
+    blockWidth: number,
+    scratch: number,
+  ): number;
+}
+
+/** The part of the WebAssembly interface that is used; every platform names it the same. */
+interface Platform {
+  readonly Module: new (bytes: Uint8Array) => object;
+  readonly Instance: new (module: object) => { readonly exports: object };
+}
+
+const PAGE = 65536;
+/** Memory up to this size is kept from call to call; an instance that grew beyond is let go after the call. */
+const KEPT_BYTES = 64 * 2 ** 20;
+
+/**
+ * One instance of the kernels and its memory, laid out anew in every call: {@link Kernels.layout} reserves stretches from
+ * the first free byte on, and nothing outlives the call that asked for it.
+ */
+export class Kernels {
+  readonly exports: KernelExports;
+  #doubles: Float64Array;
+
+  /** @internal */
+  constructor(exports: KernelExports) {
+    this.exports = exports;
+    this.#doubles = new Float64Array(exports.memory.buffer);
+  }
+
+  /** Bytes of memory, used or not. */
+  get bytes(): number {
+    return this.exports.memory.buffer.byteLength;
+  }
+
+  /** All of memory as doubles; made again when memory has grown, which detaches every earlier view. */
+  get doubles(): Float64Array {
+    if (this.#doubles.length === 0) this.#doubles = new Float64Array(this.exports.memory.buffer);
+    return this.#doubles;
+  }
+
+  /**
+   * Addresses of stretches of the given lengths in bytes, each a multiple of 16, one after the other.
+   *
+   * @throws RangeError when the platform does not give the memory
+   */
+  layout(lengths: readonly number[]): number[] {
+    let end = Math.ceil(this.exports.heapStart.value / 16) * 16;
+    const starts = lengths.map((length) => {
+      const start = end;
+      end += Math.ceil(length / 16) * 16;
+      return start;
+    });
+    const missing = end - this.bytes;
+    if (missing > 0 && this.exports.memory.grow(Math.ceil(missing / PAGE)) < 0) {
+      throw new RangeError(`kernels: ${end} bytes of memory are not to be had; solve the matrix in smaller blocks`);
+    }
+    return starts;
+  }
+}
+
+/** Compiled at the first use; `null` where the platform has no WebAssembly with vectors of two doubles. */
+let compiled: { readonly platform: Platform; readonly module: object } | null | undefined;
+/** The instance that serves the calls of this thread, one after the other. */
+let kept: Kernels | undefined;
+
+function compile(): typeof compiled {
+  const platform = (globalThis as { readonly WebAssembly?: Platform }).WebAssembly;
+  if (platform === undefined) return null;
+  try {
+    return { platform, module: new platform.Module(fromBase64(KERNELS)) };
+  } catch {
+    // No vector instructions, or a page whose policy forbids to compile.
+    return null;
+  }
+}
+
+/** A new instance with a memory of its own, or `undefined` where the platform cannot run the kernels. */
+export function newKernels(): Kernels | undefined {
+  compiled ??= compile();
+  if (!compiled) return undefined;
+  return new Kernels(new compiled.platform.Instance(compiled.module).exports as KernelExports);
+}
+
+/** Runs something on the kept instance, or returns `undefined` at once where the platform cannot run the kernels. */
+export function withKernels<T>(run: (kernels: Kernels) => T): T | undefined {
+  kept ??= newKernels();
+  if (kept === undefined) return undefined;
+  try {
+    return run(kept);
+  } finally {
+    if (kept.bytes > KEPT_BYTES) kept = undefined;
+  }
+}
+
+/** Whether this platform runs the WebAssembly kernels; elsewhere the plain TypeScript ones take over. */
+export function kernelsAvailable(): boolean {
+  kept ??= newKernels();
+  return kept !== undefined;
+}
+
+const DIGITS = "ABCDEFGHIJKLMNOPQRSTUVWXYZabcdefghijklmnopqrstuvwxyz0123456789+/";
+
+/** Bytes of a base64 text. */
+function fromBase64(text: string): Uint8Array {
+  const digits = text.replace(/=+$/, "");
+  const bytes = new Uint8Array((digits.length * 3) >> 2);
+  const value = new Uint8Array(128);
+  for (let i = 0; i < DIGITS.length; i++) value[DIGITS.charCodeAt(i)] = i;
+  let bits = 0;
+  let held = 0;
+  let at = 0;
+  for (let i = 0; i < digits.length; i++) {
+    held = ((held << 6) | (value[digits.charCodeAt(i)] as number)) & 0xffff;
+    bits += 6;
+    if (bits < 8) continue;
+    bits -= 8;
+    bytes[at++] = held >> bits;
+  }
+  return bytes;
+}
