@@ -1,9 +1,8 @@
 import { GoodBasisError } from "../errors.js";
 import { components } from "./eigen/components.js";
-import { plainEigen } from "./eigen/plain.js";
+import { defaultEngine } from "./eigen/engine.js";
 import type { EigenEngine, EigenSolved, EigenTuning, EigenWindow, HermitianEigen } from "./eigen/types.js";
 import { refuseUpper, requireFinite, requireShape, requireWindow } from "./eigen/validate.js";
-import { wasmEigen } from "./wasm/eigen.js";
 
 export type { EigenWindow, HermitianEigen } from "./eigen/types.js";
 
@@ -48,9 +47,6 @@ export function hermitianEigen(
 ): HermitianEigen {
   return hermitianEigenBy(defaultEngine, n, re, im, options);
 }
-
-/** The WebAssembly kernels where the platform runs them, else their plain twin. */
-const defaultEngine: EigenEngine = (job, tuning) => wasmEigen(job, tuning) ?? plainEigen(job, tuning);
 
 /**
  * {@link hermitianEigen} by a given engine with given thresholds, so that small matrices can reach every branch of both.

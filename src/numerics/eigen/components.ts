@@ -16,7 +16,9 @@ export function components(
   im: Float64Array | undefined,
   at = 0,
 ): Int32Array[] | undefined {
-  if (n < 2) return undefined;
+  let full = 1;
+  while (full < n && (re[at + full * n] !== 0 || (im !== undefined && im[at + full * n] !== 0))) full++;
+  if (full >= n) return undefined;
   // Indices not reached yet, ascending; those reached by one index are taken out together.
   const open = new Int32Array(n - 1);
   for (let i = 0; i < n - 1; i++) open[i] = i + 1;

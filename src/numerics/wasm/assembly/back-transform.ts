@@ -42,9 +42,11 @@ export function reflectComplex(
   for (let i = 1; i < n; i++) {
     const t = get(tau, i);
     if (t === 0) continue;
-    for (let r = 0; r < count; r++) {
-      reflectRow(i, t, at(yRe, i * n), at(yIm, i * n), at(rowsRe, r * n), at(rowsIm, r * n));
-    }
+    const re = at(yRe, i * n);
+    const im = at(yIm, i * n);
+    let r = 0;
+    for (; r + 1 < count; r += 2) reflectTwoRows(i, t, re, im, at(rowsRe, r * n), at(rowsIm, r * n), (n as usize) << 3);
+    if (r < count) reflectRow(i, t, re, im, at(rowsRe, r * n), at(rowsIm, r * n));
   }
 }
 
@@ -82,6 +84,65 @@ function reflectRow(n: i32, t: f64, yr: usize, yi: usize, re: usize, im: usize):
     const b = get(yi, j);
     put(re, j, get(re, j) - (s * a - u * b));
     put(im, j, get(im, j) - (s * b + u * a));
+  }
+}
+
+/** {@link reflectRow} for two rows `step` bytes apart: they share the loads of y, and their sums overlap. */
+function reflectTwoRows(n: i32, t: f64, yr: usize, yi: usize, re: usize, im: usize, step: usize): void {
+  let S = f64x2.splat(0);
+  let T = S;
+  let U = S;
+  let V = S;
+  const end = ((n as usize) << 3) & ~15;
+  for (let o: usize = 0; o < end; o += 16) {
+    const a = v128.load(yr + o);
+    const b = v128.load(yi + o);
+    let x = v128.load(re + o);
+    let y = v128.load(im + o);
+    S = f64x2.add(S, f64x2.add(f64x2.mul(a, x), f64x2.mul(b, y)));
+    T = f64x2.add(T, f64x2.sub(f64x2.mul(a, y), f64x2.mul(b, x)));
+    x = v128.load(re + step + o);
+    y = v128.load(im + step + o);
+    U = f64x2.add(U, f64x2.add(f64x2.mul(a, x), f64x2.mul(b, y)));
+    V = f64x2.add(V, f64x2.sub(f64x2.mul(a, y), f64x2.mul(b, x)));
+  }
+  let s = lanes(S);
+  let w = lanes(T);
+  let p = lanes(U);
+  let q = lanes(V);
+  const re2 = re + step;
+  const im2 = im + step;
+  if (n & 1) {
+    const a = get(yr, n - 1);
+    const b = get(yi, n - 1);
+    s += a * get(re, n - 1) + b * get(im, n - 1);
+    w += a * get(im, n - 1) - b * get(re, n - 1);
+    p += a * get(re2, n - 1) + b * get(im2, n - 1);
+    q += a * get(im2, n - 1) - b * get(re2, n - 1);
+  }
+  s *= t;
+  w *= t;
+  p *= t;
+  q *= t;
+  S = f64x2.splat(s);
+  T = f64x2.splat(w);
+  U = f64x2.splat(p);
+  V = f64x2.splat(q);
+  for (let o: usize = 0; o < end; o += 16) {
+    const a = v128.load(yr + o);
+    const b = v128.load(yi + o);
+    v128.store(re + o, f64x2.sub(v128.load(re + o), f64x2.sub(f64x2.mul(S, a), f64x2.mul(T, b))));
+    v128.store(im + o, f64x2.sub(v128.load(im + o), f64x2.add(f64x2.mul(S, b), f64x2.mul(T, a))));
+    v128.store(re2 + o, f64x2.sub(v128.load(re2 + o), f64x2.sub(f64x2.mul(U, a), f64x2.mul(V, b))));
+    v128.store(im2 + o, f64x2.sub(v128.load(im2 + o), f64x2.add(f64x2.mul(U, b), f64x2.mul(V, a))));
+  }
+  if (n & 1) {
+    const a = get(yr, n - 1);
+    const b = get(yi, n - 1);
+    put(re, n - 1, get(re, n - 1) - (s * a - w * b));
+    put(im, n - 1, get(im, n - 1) - (s * b + w * a));
+    put(re2, n - 1, get(re2, n - 1) - (p * a - q * b));
+    put(im2, n - 1, get(im2, n - 1) - (p * b + q * a));
   }
 }
 

@@ -72,16 +72,25 @@ function qlSweep(low: i32, high: i32, diagonal: usize, off: usize, rotations: us
     const f = s * get(off, i);
     const b = c * get(off, i);
     const square = f * f + g * g;
-    const r = square > SAFE_SQUARE ? sqrt(square) : hypotenuse(f, g);
-    put(off, i + 1, r);
-    if (r === 0) {
-      // The chase met an exact zero: the block falls apart here, and the next sweep starts on the pieces.
-      put(diagonal, i + 1, get(diagonal, i + 1) - p);
-      put(off, high, 0);
-      return i + 1;
+    if (square > SAFE_SQUARE) {
+      // Square root and reciprocal wait for the square alone, not for each other: this chain is what a sweep costs.
+      const r = sqrt(square);
+      const inverse = r * (1 / square);
+      put(off, i + 1, r);
+      s = f * inverse;
+      c = g * inverse;
+    } else {
+      const r = hypotenuse(f, g);
+      put(off, i + 1, r);
+      if (r === 0) {
+        // The chase met an exact zero: the block falls apart here, and the next sweep starts on the pieces.
+        put(diagonal, i + 1, get(diagonal, i + 1) - p);
+        put(off, high, 0);
+        return i + 1;
+      }
+      s = f / r;
+      c = g / r;
     }
-    s = f / r;
-    c = g / r;
     g = get(diagonal, i + 1) - p;
     const h = (get(diagonal, i) - g) * s + 2 * c * b;
     p = s * h;

@@ -1,7 +1,7 @@
 // Complex Hermitian to real tridiagonal form: the complex companion of reduceReal, real and imaginary parts apart.
 
 import { at, clear, copy, dot, get, lanes, put, room, scale } from "./memory.ts";
-import { NEGLIGIBLE_SQUARE } from "./reduce-real.ts";
+import { combine, NEGLIGIBLE_SQUARE } from "./reduce-real.ts";
 
 /** Bytes of scratch that {@link reduceComplex} asks for. */
 export function reduceComplexScratch(n: i32): usize {
@@ -89,10 +89,8 @@ export function reduceComplex(
     clear(yi, i);
     updateAndMultiply(i, n, re, im, rowRe, rowIm);
     const shift = -0.5 * t * t * (dot(i, yr, rowRe) + dot(i, yi, rowIm));
-    for (let j = 0; j < i; j++) {
-      put(wr, j, t * get(yr, j) + shift * get(rowRe, j));
-      put(wi, j, t * get(yi, j) + shift * get(rowIm, j));
-    }
+    combine(i, t, shift, yr, rowRe, wr);
+    combine(i, t, shift, yi, rowIm, wi);
     copy(ur, rowRe, i);
     copy(ui, rowIm, i);
     pending = true;
@@ -129,14 +127,28 @@ function updateRow(i: i32, rowRe: usize, rowIm: usize): void {
   const b = get(ui, i);
   const c = get(wr, i);
   const d = get(wi, i);
-  for (let j = 0; j <= i; j++) {
-    const p = get(wr, j);
-    const q = get(wi, j);
-    const s = get(ur, j);
-    const t = get(ui, j);
-    put(rowRe, j, get(rowRe, j) - (a * p + b * q + (c * s + d * t)));
-    put(rowIm, j, get(rowIm, j) - (b * p - a * q + (d * s - c * t)));
+  const A = f64x2.splat(a);
+  const B = f64x2.splat(b);
+  const C = f64x2.splat(c);
+  const D = f64x2.splat(d);
+  const end = (((i + 1) as usize) << 3) & ~15;
+  for (let o: usize = 0; o < end; o += 16) {
+    const p = v128.load(wr + o);
+    const q = v128.load(wi + o);
+    const s = v128.load(ur + o);
+    const t = v128.load(ui + o);
+    const x = f64x2.add(f64x2.add(f64x2.mul(A, p), f64x2.mul(B, q)), f64x2.add(f64x2.mul(C, s), f64x2.mul(D, t)));
+    const y = f64x2.add(f64x2.sub(f64x2.mul(B, p), f64x2.mul(A, q)), f64x2.sub(f64x2.mul(D, s), f64x2.mul(C, t)));
+    v128.store(rowRe + o, f64x2.sub(v128.load(rowRe + o), x));
+    v128.store(rowIm + o, f64x2.sub(v128.load(rowIm + o), y));
   }
+  if (i & 1) return;
+  const p = get(wr, i);
+  const q = get(wi, i);
+  const s = get(ur, i);
+  const t = get(ui, i);
+  put(rowRe, i, get(rowRe, i) - (a * p + b * q + (c * s + d * t)));
+  put(rowIm, i, get(rowIm, i) - (b * p - a * q + (d * s - c * t)));
 }
 
 /** One pass over the leading m × m triangle: A ← A − u w† − w u†, y ← y + A x with the new A. */

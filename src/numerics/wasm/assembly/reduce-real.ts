@@ -77,7 +77,7 @@ function updateRow(n: i32, row: usize, u: usize, w: usize, ui: f64, wi: f64): vo
 }
 
 /** w_j ← t y_j + shift x_j over n doubles. */
-function combine(n: i32, t: f64, shift: f64, y: usize, x: usize, w: usize): void {
+export function combine(n: i32, t: f64, shift: f64, y: usize, x: usize, w: usize): void {
   const p = f64x2.splat(t);
   const q = f64x2.splat(shift);
   let j = 0;
