@@ -23,6 +23,43 @@ export interface KernelExports {
     blockWidth: number,
     scratch: number,
   ): number;
+  denseScratch(n: number, bothComplex: boolean): number;
+  multiplyDense(
+    n: number,
+    aRe: number,
+    aIm: number,
+    bRe: number,
+    bIm: number,
+    cRe: number,
+    cIm: number,
+    scratch: number,
+  ): void;
+  readonly errorSquares: { readonly value: number };
+  readonly mostTerms: { readonly value: number };
+  combineSparse(
+    rows: number,
+    commutes: boolean,
+    upper: boolean,
+    aPtr: number,
+    aCol: number,
+    aRe: number,
+    aIm: number,
+    normsA: number,
+    bPtr: number,
+    bCol: number,
+    bRe: number,
+    bIm: number,
+    normsB: number,
+    ptr: number,
+    col: number,
+    re: number,
+    im: number,
+    places: number,
+  ): number;
+  productCount(rows: number, aPtr: number, aCol: number, bPtr: number): number;
+  rowNorms(rows: number, ptr: number, re: number, im: number, norms: number): void;
+  sumOfSquares(rows: number, upper: boolean, ptr: number, col: number, re: number, im: number): number;
+  sortSparseRows(rows: number, ptr: number, col: number, re: number, im: number): void;
 }
 
 /** The part of the WebAssembly interface that is used; every platform names it the same. */
@@ -61,24 +98,39 @@ export class Kernels {
   }
 
   /**
-   * Addresses of stretches of the given lengths in bytes, each a multiple of 16, one after the other.
+   * Addresses of stretches of the given lengths in bytes from the first free byte on, each a multiple of 16.
    *
    * @throws RangeError when the platform does not give the memory
    */
   layout(lengths: readonly number[]): number[] {
-    let end = Math.ceil(this.exports.heapStart.value / 16) * 16;
+    return this.stretches(this.exports.heapStart.value, lengths);
+  }
+
+  /** {@link Kernels.layout} from a given address on. */
+  stretches(from: number, lengths: readonly number[]): number[] {
+    let end = align(from);
     const starts = lengths.map((length) => {
       const start = end;
-      end += Math.ceil(length / 16) * 16;
+      end += align(length);
       return start;
     });
     const missing = end - this.bytes;
-    if (missing > 0 && this.exports.memory.grow(Math.ceil(missing / PAGE)) < 0) {
-      throw new RangeError(`kernels: ${end} bytes of memory are not to be had; solve the matrix in smaller blocks`);
+    if (missing > 0 && !this.#grow(Math.ceil(missing / PAGE))) {
+      throw new RangeError(`kernels: ${end} bytes of memory are not to be had; split the problem into smaller blocks`);
     }
     return starts;
   }
+
+  #grow(pages: number): boolean {
+    try {
+      return this.exports.memory.grow(pages) >= 0;
+    } catch {
+      return false;
+    }
+  }
 }
+
+const align = (bytes: number): number => Math.ceil(bytes / 16) * 16;
 
 /** Compiled at the first use; `null` where the platform has no WebAssembly with vectors of two doubles. */
 let compiled: { readonly platform: Platform; readonly module: object } | null | undefined;

@@ -1,0 +1,142 @@
+import { GoodBasisError } from "../../errors.js";
+import type { Csr } from "../csr.js";
+import { gamma, roundUp, UNDERFLOW } from "../rounding.js";
+import { commutator, multiply } from "../sparse/product.js";
+import type { Bounded } from "./types.js";
+
+/**
+ * The product AB of two sparse matrices with a bound on its rounding, in plain TypeScript.
+ *
+ * The bound: entry (i, j) is a sum of at most m_i products, m_i the number of entries in row i of A. A real one is off by
+ * at most γ_{m_i} Σ |a_ik| |b_kj|, a complex one by √2 γ_{m_i + 1} Σ |a_ik| |b_kj| (one rounding more in each product;
+ * |re re'| + |im im'| and |re im'| + |im re'| are each at most |a| |b|). Over a row, the Euclidean norm of Σ_k |a_ik| |b_kj|
+ * is at most Σ_k |a_ik| ρ_k with ρ_k the norm of row k of B. Underflow: at most 2 m_i products a part, each off by half
+ * the smallest positive number η, doubled at most by additions: 3 m_i η an entry. The kernels for resident matrices
+ * (`wasm/assembly/sparse.ts`) use the same bound.
+ *
+ * @param a - left factor
+ * @param b - right factor, with as many rows as A has columns
+ * @throws GoodBasisError `shape` when the factors do not fit
+ */
+export function productSparse(a: Csr, b: Csr): Bounded<Csr> {
+  if (a.cols !== b.rows) throw shapeError("product", a, b);
+  const value = multiply(a, b);
+  const norms = rowNorms(b);
+  const bound = frobeniusBound(
+    a.rows,
+    complexPair(a, b),
+    (row) => weightedRow(a, row, norms),
+    (row) => rowLength(a, row),
+  );
+  return { value, error: finishBound(bound, a, b, value) };
+}
+
+/**
+ * The commutator AB − BA of two sparse square matrices with a bound on its rounding, in plain TypeScript.
+ *
+ * The bound is that of {@link productSparse} for the joint sum: m_i counts the entries of row i of A and of B, the moduli
+ * are Σ |a_ik| |b_kj| + |b_ik| |a_kj|. Where one matrix is diagonal an entry is (a_i − a_j) b_ij: two roundings (three if
+ * complex) times at most (|a_i| + |a_j|) |b_ij|, which the same expression covers, since m_i is then at least two.
+ *
+ * @param a - first matrix
+ * @param b - second matrix, of the same order
+ * @throws GoodBasisError `shape` when the matrices are not square of one order
+ */
+export function commutatorSparse(a: Csr, b: Csr): Bounded<Csr> {
+  if (a.rows !== a.cols || b.rows !== b.cols || a.rows !== b.rows) throw shapeError("commutator", a, b);
+  const value = commutator(a, b);
+  const normsA = rowNorms(a);
+  const normsB = rowNorms(b);
+  const bound = frobeniusBound(
+    a.rows,
+    complexPair(a, b),
+    (row) => weightedRow(a, row, normsB) + weightedRow(b, row, normsA),
+    (row) => rowLength(a, row) + rowLength(b, row),
+  );
+  return { value, error: finishBound(bound, a, b, value) };
+}
+
+const complexPair = (a: Csr, b: Csr): boolean => a.im !== undefined || b.im !== undefined;
+
+const rowLength = (a: Csr, row: number): number => (a.ptr[row + 1] as number) - (a.ptr[row] as number);
+
+function shapeError(where: string, a: Csr, b: Csr): GoodBasisError {
+  return new GoodBasisError(
+    "shape",
+    `${where}: a matrix of ${a.rows} × ${a.cols} and one of ${b.rows} × ${b.cols} do not fit; ` +
+      `${where === "product" ? "the left one needs as many columns as the right one has rows" : "pass squares of one order"}`,
+    { left: [a.rows, a.cols], right: [b.rows, b.cols] },
+  );
+}
+
+/** Euclidean norms of the rows; squares that underflow are made up for, so that only rounding is left to account for. */
+function rowNorms(a: Csr): Float64Array {
+  const norms = new Float64Array(a.rows);
+  for (let row = 0; row < a.rows; row++) {
+    let sum = 0;
+    const end = a.ptr[row + 1] as number;
+    for (let e = a.ptr[row] as number; e < end; e++) {
+      const x = a.re[e] as number;
+      const y = a.im === undefined ? 0 : (a.im[e] as number);
+      sum += x * x + y * y + 2 * UNDERFLOW;
+    }
+    norms[row] = Math.sqrt(sum);
+  }
+  return norms;
+}
+
+/** Σ_k |a_ik| ρ_k. */
+function weightedRow(a: Csr, row: number, norms: Float64Array): number {
+  let sum = 0;
+  const end = a.ptr[row + 1] as number;
+  for (let e = a.ptr[row] as number; e < end; e++) {
+    const x = Math.abs(a.re[e] as number);
+    const modulus = a.im === undefined ? x : Math.sqrt(x * x + (a.im[e] as number) ** 2 + 4 * UNDERFLOW);
+    sum += modulus * (norms[a.col[e] as number] as number);
+  }
+  return sum;
+}
+
+/** What {@link finishBound} completes. */
+interface RowBounds {
+  /** Sum of the squares of the bounds of all rows. */
+  readonly squares: number;
+  /** The largest number of products in an entry. */
+  readonly most: number;
+}
+
+function frobeniusBound(
+  rows: number,
+  complex: boolean,
+  moduli: (row: number) => number,
+  terms: (row: number) => number,
+): RowBounds {
+  let squares = 0;
+  let most = 0;
+  for (let row = 0; row < rows; row++) {
+    const count = terms(row);
+    const bound = (complex ? Math.SQRT2 * gamma(count + 1) : gamma(count)) * moduli(row);
+    if (bound !== 0) squares += bound * bound + UNDERFLOW;
+    if (count > most) most = count;
+  }
+  return { squares, most };
+}
+
+/**
+ * The bound on the Frobenius norm from those of the rows: the roundings of the bound itself, and underflow.
+ *
+ * @param bound - from the rows
+ * @param a - one factor; its size says how long the sums were
+ * @param b - the other factor
+ * @param value - the computed matrix
+ */
+export function finishBound(
+  { squares, most }: RowBounds,
+  a: Pick<Csr, "rows" | "cols">,
+  b: Pick<Csr, "rows" | "cols">,
+  value: { readonly col: ArrayLike<number> },
+): number {
+  const roundings = a.rows + 2 * most + 3 * Math.max(a.cols, b.cols) + 16;
+  const error = roundUp(Math.sqrt(squares), roundings) + 3 * most * value.col.length * UNDERFLOW;
+  return Number.isNaN(error) ? Number.POSITIVE_INFINITY : error;
+}
