@@ -16,6 +16,7 @@
  * | `file` | a problem, matrix or certificate file cannot be read or is malformed |
  * | `output` | an output path exists already or cannot be written |
  * | `no-convergence` | an iteration did not finish within its bound |
+ * | `worker` | a worker thread died or could not be started |
  */
 export type ErrorCode =
   | "shape"
@@ -30,7 +31,8 @@ export type ErrorCode =
   | "wrong-problem"
   | "file"
   | "output"
-  | "no-convergence";
+  | "no-convergence"
+  | "worker";
 
 /**
  * The one error class of goodbasis: thrown for misuse. Mathematics never throws; it returns a verdict.

@@ -13,6 +13,8 @@ export { batchedHermitianEigen, batchMember, type HermitianEigenBatch } from "./
 export { type EigenOptions, type EigenWindow, type HermitianEigen, hermitianEigen } from "./eigen.js";
 export { type Resident, SparseArena } from "./wasm/arena.js";
 export { kernelsAvailable } from "./wasm/runtime.js";
+export { type BrowserWorker, type BrowserWorkerScope, serveWebWorker, webWorker } from "./web-worker.js";
+export { KernelPool, type PoolOptions, type PoolWorker, type WorkerFactory } from "./workers.js";
 
 /**
  * The product AB with a rigorous bound on its rounding, of two dense square matrices or of two sparse ones.

@@ -1,0 +1,46 @@
+import { answerRequest, type PoolAnswer, type PoolRequest } from "./worker-protocol.js";
+import type { PoolWorker } from "./workers.js";
+
+/** The part of a browser's `Worker` that a pool uses. */
+export interface BrowserWorker {
+  postMessage(message: unknown, transfer: ArrayBuffer[]): void;
+  addEventListener(kind: "message", listener: (event: { readonly data: unknown }) => void): void;
+  addEventListener(kind: "error" | "messageerror", listener: (event: { readonly message?: string }) => void): void;
+  terminate(): void;
+}
+
+/** The part of a worker's global scope that it needs to answer. */
+export interface BrowserWorkerScope {
+  postMessage(message: unknown, transfer: ArrayBufferLike[]): void;
+  addEventListener(kind: "message", listener: (event: { readonly data: unknown }) => void): void;
+}
+
+/**
+ * A browser's worker as one of a pool. Its script is one line: `serveWebWorker(self)`.
+ *
+ * @param worker - a module worker whose script calls {@link serveWebWorker}
+ */
+export function webWorker(worker: BrowserWorker): PoolWorker {
+  return {
+    post: (request, transfer) => worker.postMessage(request, transfer),
+    listen: (onAnswer, onDeath) => {
+      worker.addEventListener("message", ({ data }) => onAnswer(data as PoolAnswer));
+      for (const kind of ["error", "messageerror"] as const) {
+        worker.addEventListener(kind, ({ message }) => onDeath(message ?? kind));
+      }
+    },
+    terminate: () => worker.terminate(),
+  };
+}
+
+/**
+ * Makes a browser's worker answer a pool; what goes wrong beyond the mathematics reaches the pool as an `error` event.
+ *
+ * @param scope - `self` of the worker
+ */
+export function serveWebWorker(scope: BrowserWorkerScope): void {
+  scope.addEventListener("message", ({ data }) => {
+    const { answer, transfer } = answerRequest(data as PoolRequest);
+    scope.postMessage(answer, transfer);
+  });
+}

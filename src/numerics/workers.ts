@@ -1,0 +1,253 @@
+import { GoodBasisError } from "../errors.js";
+import { batchedHermitianEigen, type HermitianEigenBatch } from "./eigen/batch.js";
+import type { EigenOptions } from "./eigen.js";
+import type { PoolAnswer, PoolRequest } from "./worker-protocol.js";
+
+/** One thread that answers {@link PoolRequest}s, whatever the platform calls it. */
+export interface PoolWorker {
+  /** Sends a request; the arrays in `transfer` move to the worker. */
+  post(request: PoolRequest, transfer: ArrayBuffer[]): void;
+  /** Says once who hears the answers and who hears that the worker is gone or cannot be understood. */
+  listen(onAnswer: (answer: PoolAnswer) => void, onDeath: (reason: string) => void): void;
+  /** Ends the thread. */
+  terminate(): void;
+}
+
+/** Starts a worker: `nodeWorker` of `goodbasis/node`, or `() => webWorker(new Worker(url, …))` in a browser. */
+export type WorkerFactory = () => PoolWorker;
+
+/** Settings of a {@link KernelPool}. */
+export interface PoolOptions {
+  /** How to start a worker. */
+  readonly factory: WorkerFactory;
+  /** Number of workers, the processors less one at most being sensible; 0 switches them off. */
+  readonly size: number;
+  /** Estimated nanoseconds of work below which the calling thread does it alone; 4e6 unless given. */
+  readonly worthwhile?: number;
+}
+
+/** A stretch of matrices that one worker solves at a time. */
+interface Task {
+  readonly first: number;
+  readonly orders: Int32Array;
+  readonly rowStart: number;
+  readonly start: number;
+  readonly end: number;
+}
+
+/** A batch under way. */
+interface Run {
+  readonly re: Float64Array;
+  readonly im: Float64Array | undefined;
+  readonly options: Pick<EigenOptions, "upper">;
+  readonly out: HermitianEigenBatch;
+  readonly tasks: Task[];
+  unfinished: number;
+  readonly resolve: (batch: HermitianEigenBatch) => void;
+  readonly reject: (error: unknown) => void;
+}
+
+/** A worker, and what it is doing. */
+interface Seat {
+  readonly worker: PoolWorker;
+  task: { readonly run: Run; readonly task: Task } | undefined;
+}
+
+/**
+ * A kept pool of workers that share out independent eigenproblems. Workers are started at first need and kept, since
+ * starting one costs as much as a thousand blocks of order twenty.
+ *
+ * The result is the same, bit for bit, with any number of workers and with none: every matrix is solved by the same code,
+ * whoever runs it. A worker that dies rejects the batch it worked for, naming the matrices; the next batch gets a new one.
+ */
+export class KernelPool {
+  readonly #factory: WorkerFactory;
+  readonly #size: number;
+  readonly #worthwhile: number;
+  readonly #seats: Seat[] = [];
+  readonly #queue: Run[] = [];
+  #closed = false;
+
+  /**
+   * @param options - factory and number of workers
+   * @throws GoodBasisError `option` for a number of workers that is not a whole number ≥ 0
+   */
+  constructor(options: PoolOptions) {
+    const { factory, size, worthwhile = 4e6 } = options;
+    if (!Number.isInteger(size) || size < 0) {
+      throw new GoodBasisError("option", `KernelPool: expected a whole number of workers ≥ 0, got ${size}`, { size });
+    }
+    this.#factory = factory;
+    this.#size = size;
+    this.#worthwhile = worthwhile;
+  }
+
+  /** Workers that are running now. */
+  get running(): number {
+    return this.#seats.length;
+  }
+
+  /**
+   * `batchedHermitianEigen`, shared out where there is enough work to pay for it.
+   *
+   * @param orders - the order n of each matrix
+   * @param re - the matrices one after the other; copied before they are sent
+   * @param im - imaginary parts, or absent where all are real
+   * @param options - check of the upper triangles
+   * @throws GoodBasisError (as a rejection) as `batchedHermitianEigen`; `worker` when a worker dies, with the first and
+   * last matrix it was working on
+   */
+  async batchedHermitianEigen(
+    orders: ArrayLike<number>,
+    re: Float64Array,
+    im: Float64Array | undefined,
+    options: Pick<EigenOptions, "upper"> = {},
+  ): Promise<HermitianEigenBatch> {
+    const work = Array.from(orders, (n) => costOf(n, im !== undefined));
+    const total = work.reduce((sum, cost) => sum + cost, 0);
+    const numbers = Array.from(orders).reduce((sum, n) => sum + n * n, 0);
+    const fits = re.length === numbers && (im === undefined || im.length === numbers);
+    // What does not fit is refused by the plain call, in its words.
+    if (this.#closed || this.#size === 0 || total < this.#worthwhile || !fits) {
+      return batchedHermitianEigen(orders, re, im, options);
+    }
+    const tasks = split(Int32Array.from(orders), work, total / (4 * this.#size));
+    return new Promise((resolve, reject) => {
+      const out = {
+        orders: Int32Array.from(orders),
+        values: new Float64Array(Array.from(orders).reduce((sum, n) => sum + n, 0)),
+        re: new Float64Array(numbers),
+        im: im && new Float64Array(numbers),
+      };
+      this.#queue.push({ re, im, options, out, tasks, unfinished: tasks.length, resolve, reject });
+      this.#deal();
+    });
+  }
+
+  /** Ends all workers; what is under way is rejected. The pool goes on in the calling thread. */
+  close(): void {
+    this.#closed = true;
+    const busy = this.#seats.splice(0);
+    for (const { worker } of busy) worker.terminate();
+    const error = new GoodBasisError("worker", "KernelPool: closed before the batch was finished; await it first");
+    for (const run of new Set([...this.#queue.splice(0), ...busy.flatMap(({ task }) => task?.run ?? [])])) {
+      run.reject(error);
+    }
+  }
+
+  /** Gives waiting tasks to idle workers, starting those that are missing. */
+  #deal(): void {
+    for (;;) {
+      const run = this.#queue.find(({ tasks }) => tasks.length > 0);
+      const task = run?.tasks[0];
+      if (run === undefined || task === undefined) return;
+      let seat = this.#seats.find((one) => one.task === undefined);
+      if (seat === undefined) {
+        if (this.#seats.length >= this.#size) return;
+        seat = this.#hire(run);
+        // It could not be started: that run has been rejected, the next one gets its own try.
+        if (seat === undefined) continue;
+      }
+      run.tasks.shift();
+      seat.task = { run, task };
+      const re = run.re.slice(task.start, task.end);
+      const im = run.im?.slice(task.start, task.end);
+      const transfer = im === undefined ? [re.buffer] : [re.buffer, im.buffer];
+      seat.worker.post({ orders: task.orders, re, im, upper: run.options.upper ?? "ignore" }, transfer);
+    }
+  }
+
+  #hire(run: Run): Seat | undefined {
+    try {
+      const seat: Seat = { worker: this.#factory(), task: undefined };
+      seat.worker.listen(
+        (answer) => this.#finish(seat, answer),
+        (reason) => this.#bury(seat, reason),
+      );
+      this.#seats.push(seat);
+      return seat;
+    } catch (error) {
+      const message = `KernelPool: a worker could not be started (${String(error)}); check the factory, or use size 0`;
+      this.#fail(run, new GoodBasisError("worker", message));
+      return undefined;
+    }
+  }
+
+  #finish(seat: Seat, answer: PoolAnswer): void {
+    const held = seat.task;
+    seat.task = undefined;
+    if (held !== undefined) {
+      const { run, task } = held;
+      if ("error" in answer) this.#fail(run, shifted(answer.error, task.first));
+      else {
+        run.out.values.set(answer.values, task.rowStart);
+        run.out.re.set(answer.re, task.start);
+        if (answer.im !== undefined) run.out.im?.set(answer.im, task.start);
+        run.unfinished--;
+        if (run.unfinished === 0 && this.#drop(run)) run.resolve(run.out);
+      }
+    }
+    this.#deal();
+  }
+
+  #bury(seat: Seat, reason: string): void {
+    const at = this.#seats.indexOf(seat);
+    if (at >= 0) this.#seats.splice(at, 1);
+    if (seat.task !== undefined) {
+      const { run, task } = seat.task;
+      const last = task.first + task.orders.length - 1;
+      const which = last === task.first ? `matrix ${last}` : `matrices ${task.first} to ${last}`;
+      const message = `KernelPool: a worker died while it solved ${which} of the batch (${reason}); run the batch again, or with size 0`;
+      seat.task = undefined;
+      this.#fail(run, new GoodBasisError("worker", message, { first: task.first, last, reason }));
+    }
+    this.#deal();
+  }
+
+  #fail(run: Run, error: GoodBasisError): void {
+    if (this.#drop(run)) run.reject(error);
+  }
+
+  /** Takes a run out of the queue; false when it has been taken out before. */
+  #drop(run: Run): boolean {
+    const at = this.#queue.indexOf(run);
+    if (at >= 0) this.#queue.splice(at, 1);
+    return at >= 0;
+  }
+}
+
+/** Rough nanoseconds for one matrix. */
+function costOf(n: number, complex: boolean): number {
+  return (complex ? 3 : 1) * (n ** 3 + 10 * n ** 2);
+}
+
+/** Stretches of about the given amount of work each. */
+function split(orders: Int32Array, work: readonly number[], share: number): Task[] {
+  const tasks: Task[] = [];
+  let first = 0;
+  let rowStart = 0;
+  let start = 0;
+  let load = 0;
+  let row = 0;
+  let at = 0;
+  orders.forEach((n, k) => {
+    load += work[k] as number;
+    row += n;
+    at += n * n;
+    if (load < share && k < orders.length - 1) return;
+    tasks.push({ first, orders: orders.slice(first, k + 1), rowStart, start, end: at });
+    first = k + 1;
+    rowStart = row;
+    start = at;
+    load = 0;
+  });
+  return tasks;
+}
+
+/** The error of a worker, its matrix counted from the beginning of the batch. */
+function shifted(error: Extract<PoolAnswer, { error: unknown }>["error"], first: number): GoodBasisError {
+  const own = error.details["matrix"];
+  const matrix = first + (typeof own === "number" ? own : 0);
+  const message = error.message.replace(/^matrix \d+ of the batch/, `matrix ${matrix} of the batch`);
+  return new GoodBasisError(error.code, message, { ...error.details, matrix });
+}
