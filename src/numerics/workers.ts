@@ -174,6 +174,8 @@ export class KernelPool {
   }
 
   #finish(seat: Seat, answer: PoolAnswer): void {
+    // A worker that was given up may still answer.
+    if (!this.#seats.includes(seat)) return;
     const held = seat.task;
     seat.task = undefined;
     if (held !== undefined) {
@@ -192,7 +194,10 @@ export class KernelPool {
 
   #bury(seat: Seat, reason: string): void {
     const at = this.#seats.indexOf(seat);
-    if (at >= 0) this.#seats.splice(at, 1);
+    if (at < 0) return;
+    this.#seats.splice(at, 1);
+    // A browser's worker lives on after an error.
+    seat.worker.terminate();
     if (seat.task !== undefined) {
       const { run, task } = seat.task;
       const last = task.first + task.orders.length - 1;

@@ -4,7 +4,12 @@ import { describe, expect, it } from "vitest";
 import { GoodBasisError } from "../../src/errors.js";
 import { plainEigen } from "../../src/numerics/eigen/plain.js";
 import type { EigenEngine, EigenTuning } from "../../src/numerics/eigen/types.js";
-import { type EigenOptions, type HermitianEigen, hermitianEigenBy } from "../../src/numerics/eigen.js";
+import {
+  type EigenOptions,
+  type EigenWindow,
+  type HermitianEigen,
+  hermitianEigenBy,
+} from "../../src/numerics/eigen.js";
 import { wasmEigen } from "../../src/numerics/wasm/eigen.js";
 import {
   conjugated,
@@ -70,9 +75,56 @@ describe.each(ENGINES)("hermitianEigen by %s", (_engine, engine) => {
   const hermitianEigen = (n: number, re: Float64Array, im?: Float64Array, options?: EigenOptions): HermitianEigen =>
     hermitianEigenBy(engine, n, re, im, options);
 
-  it.each([false, true])("solves random matrices of every order up to 70, and 128 and 200 (complex: %s)", (complex) => {
-    for (const n of [...list(70, (k) => k + 1), 128, 200]) solved(randomSample(n, complex, n));
+  it.each([false, true])(
+    "solves random matrices of orders up to 70 and next to every bound (complex: %s)",
+    (complex) => {
+      for (const n of [...list(70, (k) => k + 1), 95, 96, 97, 98, 127, 128, 129, 130, 191, 192, 193, 194]) {
+        solved(randomSample(n, complex, n));
+      }
+    },
+  );
+
+  it.each([false, true])("solves random matrices of large orders (complex: %s)", (complex) => {
+    for (const n of engine === wasmEigen ? [255, 256, 257, 258, 511, 512, 513, 600] : [257]) {
+      const of = randomSample(n, complex, n);
+      const found = hermitianEigen(n, of.re, of.im);
+      const { residual, orthogonality } = quality(
+        of,
+        found,
+        list(24, (k) => Math.floor((k * (n - 1)) / 23)),
+      );
+      expect(residual).toBeLessThanOrEqual(20);
+      expect(orthogonality).toBeLessThanOrEqual(20);
+    }
   });
+
+  it.each([false, true])(
+    "keeps 512 vectors orthogonal to 1e-14 in every entry, ten distinct eigenvalues (%s)",
+    (complex) => {
+      const n = engine === wasmEigen ? 512 : 200;
+      const of = conjugated(
+        sample(n, complex, (i, j) => [i === j ? i % 10 : 0, 0]),
+        12,
+        3,
+      );
+      const { re, im } = hermitianEigen(n, of.re, of.im);
+      let worst = 0;
+      for (let i = 0; i < n; i++) {
+        for (let k = 0; k <= i; k += 1 + (i % 5)) {
+          let p = i === k ? -1 : 0;
+          let q = 0;
+          for (let j = 0; j < n; j++) {
+            const [a, b] = [re[i * n + j] as number, im?.[i * n + j] ?? 0];
+            const [c, d] = [re[k * n + j] as number, im?.[k * n + j] ?? 0];
+            p += a * c + b * d;
+            q += a * d - b * c;
+          }
+          worst = Math.max(worst, Math.abs(p), Math.abs(q));
+        }
+      }
+      expect(worst).toBeLessThanOrEqual(1e-14);
+    },
+  );
 
   it.each(TUNINGS)("solves with the thresholds $leaf, $blockedFrom, $blockWidth", (tuning) => {
     for (const complex of [false, true]) {
@@ -319,6 +371,98 @@ describe.each(ENGINES)("hermitianEigen by %s", (_engine, engine) => {
       }),
       { seed: 20, numRuns: 300 },
     );
+  });
+
+  describe("windows", () => {
+    const of = randomSample(37, true, 4);
+    const blocks = sample(24, true, (i, j) => {
+      const at = i * 37 + j;
+      return i % 3 === j % 3 ? [of.re[at] as number, of.im?.[at] ?? 0] : [0, 0];
+    });
+    it.each([
+      ["in one piece", of],
+      ["in three pieces", blocks],
+    ])("give the stretch of all eigenpairs that they name (%s)", (_, { n, re, im }) => {
+      const all = hermitianEigen(n, re, im);
+      const middle = all.values[10] as number;
+      const cases: [EigenWindow, number, number][] = [
+        [{}, 0, n],
+        [{ from: 3, to: 9 }, 3, 9],
+        [{ from: 5, to: 5 }, 5, 5],
+        [{ low: middle }, 10, n],
+        [{ high: middle }, 0, 11],
+        [{ low: middle, high: middle }, 10, 11],
+        [{ low: middle, from: 12, to: 20 }, 12, 20],
+        [{ low: middle, from: 2, to: 13 }, 10, 13],
+        [{ low: 1e9 }, n, n],
+        [{ high: -1e9 }, 0, 0],
+      ];
+      for (const tuning of [undefined, { leaf: 3, blockedFrom: 3, blockWidth: 4 }]) {
+        const whole = hermitianEigenBy(engine, n, re, im, {}, tuning);
+        for (const [window, from, to] of cases) {
+          // The last digit of the eigenvalue that bounds a window may change with the thresholds.
+          if (tuning !== undefined && ("low" in window || "high" in window)) continue;
+          const found = hermitianEigenBy(engine, n, re, im, { window }, tuning);
+          expect([found.first, found.values.length]).toEqual([from, to - from]);
+          expect(found.values).toEqual(whole.values.slice(from, to));
+          // Rows pass through products of another height; the sums that make an entry are the same.
+          expect(found.re).toEqual(whole.re.slice(from * n, to * n));
+          expect(found.im).toEqual(whole.im?.slice(from * n, to * n));
+        }
+      }
+    });
+
+    it("of orders zero and one", () => {
+      const one = Float64Array.of(5);
+      expect(hermitianEigen(1, one, undefined, { window: { low: 6 } })).toMatchObject({ n: 1, first: 1 });
+      expect(hermitianEigen(1, one, undefined, { window: { high: 4 } }).values.length).toBe(0);
+      expect(hermitianEigen(1, one, one, { window: { low: 5 } })).toMatchObject({
+        values: one,
+        im: Float64Array.of(0),
+      });
+    });
+
+    it("that are none are refused", () => {
+      const bad: EigenWindow[] = [
+        { from: -1 },
+        { from: 3, to: 2 },
+        { to: 38 },
+        { from: 0.5 },
+        { low: 1, high: 0 },
+        { low: Number.NaN },
+      ];
+      for (const window of bad) {
+        expect(codeOf(() => hermitianEigen(37, of.re, of.im, { window }))).toBe("option");
+      }
+    });
+  });
+
+  it("refuses a matrix that is not Hermitian where the upper triangle is to be checked", () => {
+    for (const complex of [false, true]) {
+      const { n, re, im } = randomSample(6, complex, 5);
+      const check = (a: Float64Array, b?: Float64Array): string =>
+        codeOf(() => hermitianEigen(n, a, b, { upper: "check" }));
+      const spoil = (m: Float64Array, at: number, x: number): Float64Array => m.map((y, k) => (k === at ? y + x : y));
+      expect(check(re, im)).toBe("nothing thrown");
+      expect(check(spoil(re, 4, 1e-16), im)).toBe("nothing thrown");
+      expect(check(spoil(re, 4, 1e-14), im)).toBe("not-hermitian");
+      expect(check(spoil(re, 4, Number.NaN), im)).toBe("not-hermitian");
+      if (im === undefined) continue;
+      expect(check(re, spoil(im, 4, 1e-14))).toBe("not-hermitian");
+      expect(check(re, spoil(im, 7, 1e-14))).toBe("not-hermitian");
+    }
+  });
+
+  it("solves in pieces what falls into pieces", () => {
+    for (const complex of [false, true]) {
+      const random = generator(8);
+      const scattered = sample(60, complex, (i, j) => ((i - j) % 7 === 0 ? [random(), random()] : [0, 0]));
+      const found = solved(scattered);
+      for (let k = 0; k < 60; k++) {
+        const support = list(60, (j) => j).filter((j) => found.re[k * 60 + j] !== 0);
+        expect(new Set(support.map((j) => j % 7)).size).toBe(1);
+      }
+    }
   });
 
   it("is measured by a check that notices a wrong digit", () => {

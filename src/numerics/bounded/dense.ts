@@ -121,7 +121,8 @@ function productError(a: Square, b: Square): number {
       const modulus = a.im === undefined ? x : Math.sqrt(x * x + (a.im[k] as number) ** 2 + 4 * UNDERFLOW);
       sum += modulus * (norms[k - i * n] as number);
     }
-    if (sum > 0) squares += sum * sum + UNDERFLOW;
+    // NaN, from zero times an infinite norm, goes on and makes the bound infinite.
+    if (sum !== 0) squares += sum * sum + UNDERFLOW;
   }
   const bothComplex = a.im !== undefined && b.im !== undefined;
   const constant = bothComplex ? Math.sqrt(10) * gamma(n + 4) : gamma(n);

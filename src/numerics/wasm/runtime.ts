@@ -70,7 +70,7 @@ interface Platform {
 
 const PAGE = 65536;
 /** Memory up to this size is kept from call to call; an instance that grew beyond is let go after the call. */
-const KEPT_BYTES = 64 * 2 ** 20;
+const KEPT_BYTES = 32 * 2 ** 20;
 
 /**
  * One instance of the kernels and its memory, laid out anew in every call: {@link Kernels.layout} reserves stretches from

@@ -108,8 +108,15 @@ export function conjugated(of: Sample, times: number, seed: number): Sample {
   return { n, re, im: complex ? im : undefined };
 }
 
-/** Frobenius norms in units of n u: of A Q − Q Λ beside the largest |eigenvalue|, and of Q† Q − 1. */
-export function quality(of: Sample, found: HermitianEigen): { residual: number; orthogonality: number } {
+/**
+ * Frobenius norms in units of n u: of A Q − Q Λ beside the largest |eigenvalue|, and of Q† Q − 1; of the columns `which`
+ * of both where given.
+ */
+export function quality(
+  of: Sample,
+  found: HermitianEigen,
+  which?: readonly number[],
+): { residual: number; orthogonality: number } {
   const { n, re, im } = of;
   const norm = Math.max(Math.abs(found.values[0] ?? 0), Math.abs(found.values[n - 1] ?? 0)) || 1;
   const a = re.map((x) => x / norm);
@@ -118,7 +125,7 @@ export function quality(of: Sample, found: HermitianEigen): { residual: number; 
   const vi = found.im ?? new Float64Array(n * n);
   let residual = 0;
   let orthogonality = 0;
-  for (let k = 0; k < n; k++) {
+  for (const k of which ?? found.values.keys()) {
     const value = (found.values[k] as number) / norm;
     for (let i = 0; i < n; i++) {
       let s = -value * (vr[k * n + i] as number);

@@ -90,8 +90,8 @@ export function combineSparse(
     const ku = ((complex ? terms + 1 : terms) as f64) * UNIT_ROUNDOFF;
     const gamma = (ku / (1 - ku)) * (1 + 4 * UNIT_ROUNDOFF);
     const bound = (complex ? ROOT_TWO : 1) * gamma * moduli;
-    // Where the square underflows it is off by half of what is added.
-    if (bound > 0) errorSquares += bound * bound + UNDERFLOW;
+    // Where the square underflows it is off by half of what is added; NaN goes on and makes the bound infinite.
+    if (bound !== 0) errorSquares += bound * bound + UNDERFLOW;
     mostTerms = max(mostTerms, terms);
     putInt(ptr, i + 1, filled);
   }

@@ -1,0 +1,243 @@
+import { describe, expect, it } from "vitest";
+import { commutatorSparse, productSparse } from "../../../src/numerics/bounded/sparse.js";
+import type { Bounded } from "../../../src/numerics/bounded/types.js";
+import type { Csr } from "../../../src/numerics/csr.js";
+import { add, adjoint, diagonalCsr, fromDense, fromTriplets, toDense } from "../../../src/numerics/sparse.js";
+import { type Resident, SparseArena } from "../../../src/numerics/wasm/arena.js";
+import { generator } from "../eigen/matrices.js";
+import { distance } from "./exact.js";
+
+function random(rows: number, cols: number, density: number, complex: boolean, seed: number, scale = 1): Csr {
+  const next = generator(seed);
+  const some = (): number => (next() + 0.5 < density ? scale * next() : 0);
+  const re = Float64Array.from({ length: rows * cols }, some);
+  const im = Float64Array.from({ length: rows * cols }, some);
+  return fromDense(rows, cols, re, complex ? im : undefined);
+}
+
+interface Kernels {
+  product(a: Csr, b: Csr): Bounded<Csr>;
+  commutator(a: Csr, b: Csr): Bounded<Csr>;
+}
+
+function inArena(make: () => SparseArena): Kernels {
+  const run = (combine: (arena: SparseArena, a: Resident, b: Resident) => Bounded<Resident>) => (a: Csr, b: Csr) => {
+    const arena = make();
+    const { value, error } = combine(arena, arena.load(a), arena.load(b));
+    return { value: arena.read(value), error };
+  };
+  return {
+    product: run((arena, a, b) => arena.product(a, b)),
+    commutator: run((arena, a, b) => arena.commutator(a, b)),
+  };
+}
+
+const KERNELS: readonly [string, Kernels][] = [
+  ["plain TypeScript", { product: productSparse, commutator: commutatorSparse }],
+  ["a WebAssembly arena", inArena(() => new SparseArena())],
+  ["an arena of plain arrays", inArena(() => new SparseArena({ own: undefined }))],
+];
+
+const square = (n: number, complex: boolean, seed: number, scale = 1): Csr => random(n, n, 0.4, complex, seed, scale);
+
+describe.each(KERNELS)("sparse products and commutators by %s", (_, { product, commutator }) => {
+  const kinds: [boolean, boolean][] = [
+    [false, false],
+    [true, false],
+    [false, true],
+    [true, true],
+  ];
+
+  it.each(kinds)("stay inside their bounds (complex: %s and %s)", (left, right) => {
+    for (const n of [1, 2, 5, 12]) {
+      const a = square(n, left, n + 1);
+      const b = square(n, right, n + 2);
+      const [x, y] = [toDense(a), toDense(b)];
+      const ab = product(a, b);
+      const c = commutator(a, b);
+      expect(distance(n, [[1, x, y]], toDense(ab.value))).toBeLessThanOrEqual(ab.error);
+      const off = distance(
+        n,
+        [
+          [1, x, y],
+          [-1, y, x],
+        ],
+        toDense(c.value),
+      );
+      expect(off).toBeLessThanOrEqual(c.error);
+      if (n === 12) expect(c.error).toBeLessThanOrEqual(400 * off);
+    }
+  });
+
+  it("stay inside them with a diagonal matrix, with tiny numbers and with rows of very different size", () => {
+    const n = 6;
+    const next = generator(4);
+    const numbers = (): Float64Array => Float64Array.from({ length: n }, next);
+    const spread = (a: Csr): Csr => ({ ...a, re: a.re.map((x, e) => x * 10 ** (((e * 37) % 60) - 30)) });
+    const pairs: [Csr, Csr][] = [
+      [diagonalCsr(numbers()), square(n, true, 1)],
+      [square(n, false, 2), diagonalCsr(numbers(), numbers())],
+      [square(n, true, 3, 1e-160), square(n, true, 4, 1e-155)],
+      [square(n, false, 3, 1e-200), square(n, true, 4, 1e-121)],
+      [spread(square(n, true, 5)), spread(square(n, true, 6))],
+    ];
+    for (const [a, b] of pairs) {
+      const [x, y] = [toDense(a), toDense(b)];
+      const ab = product(a, b);
+      expect(distance(n, [[1, x, y]], toDense(ab.value))).toBeLessThanOrEqual(ab.error);
+      const { value, error } = commutator(a, b);
+      expect(
+        distance(
+          n,
+          [
+            [1, x, y],
+            [-1, y, x],
+          ],
+          toDense(value),
+        ),
+      ).toBeLessThanOrEqual(error);
+    }
+  });
+
+  it("multiply rectangles of integers exactly, columns ascending", () => {
+    const round = (a: Csr): Csr => ({
+      ...a,
+      re: a.re.map((x) => Math.round(20 * x)),
+      im: a.im?.map((x) => Math.round(20 * x)),
+    });
+    const a = round(random(7, 40, 0.3, true, 1));
+    const b = round(random(40, 90, 0.5, true, 2));
+    const { value } = product(a, b);
+    const [x, y, z] = [toDense(a), toDense(b), toDense(value)];
+    for (let i = 0; i < 7; i++) {
+      for (let j = 0; j < 90; j++) {
+        let re = 0;
+        let im = 0;
+        for (let k = 0; k < 40; k++) {
+          const [p, q] = [x.re[i * 40 + k] as number, x.im?.[i * 40 + k] ?? 0];
+          const [r, s] = [y.re[k * 90 + j] as number, y.im?.[k * 90 + j] ?? 0];
+          re += p * r - q * s;
+          im += p * s + q * r;
+        }
+        expect([z.re[i * 90 + j], z.im?.[i * 90 + j]]).toEqual([re + 0, im + 0]);
+      }
+      const columns = value.col.subarray(value.ptr[i] as number, value.ptr[i + 1] as number);
+      expect([...columns]).toEqual([...columns].sort((p, q) => p - q));
+    }
+  });
+
+  it("bound by infinity what overflows, and refuse what does not fit", () => {
+    const huge = square(4, true, 1, 1e200);
+    expect(product(huge, huge).error).toBe(Number.POSITIVE_INFINITY);
+    expect(commutator(huge, huge).error).toBe(Number.POSITIVE_INFINITY);
+    // A stored zero that meets an infinite norm does not hide the row.
+    const zero: Csr = { ...fromDense(2, 2, [1, 1, 0, 1]), re: Float64Array.of(0, 1, 1) };
+    expect(product(zero, fromDense(2, 2, [1e200, 0, 0, 1])).error).toBe(Number.POSITIVE_INFINITY);
+    const wide = random(2, 3, 1, false, 1);
+    for (const run of [() => product(wide, wide), () => commutator(wide, wide), () => commutator(wide, huge)]) {
+      expect(run).toThrow(expect.objectContaining({ code: "shape" }));
+    }
+  });
+});
+
+describe.each([
+  ["WebAssembly memory", () => new SparseArena()],
+  ["plain arrays", () => new SparseArena({ own: undefined })],
+])("SparseArena on %s", (_, make) => {
+  it("gives back what was loaded", () => {
+    const arena = make();
+    for (const a of [square(5, true, 1), square(8, false, 2), random(3, 9, 0.2, true, 3)]) {
+      expect(arena.read(arena.load(a))).toEqual(a);
+      expect(
+        Math.abs(
+          arena.frobenius(arena.load(a)) ** 2 -
+            a.re.reduce((s, x) => s + x * x, 0) -
+            (a.im?.reduce((s, x) => s + x * x, 0) ?? 0),
+        ),
+      ).toBeLessThan(1e-13);
+    }
+  });
+
+  it("takes commutators of Hermitian matrices by half, with the same entries", () => {
+    for (const complex of [false, true]) {
+      const arena = make();
+      const [x, y] = [square(14, complex, 1), square(14, complex, 2)];
+      const [a, b] = [add(1, x, 1, adjoint(x)), add(1, y, 1, adjoint(y))];
+      const whole = arena.commutator(arena.load(a), arena.load(b));
+      const half = arena.commutator(arena.load(a, { hermitian: true }), arena.load(b, { hermitian: true }));
+      const [c, d] = [toDense(arena.read(whole.value)), toDense(arena.read(half.value))];
+      const scale = Math.max(...c.re.map(Math.abs));
+      c.re.forEach((value, k) => {
+        expect(Math.abs(value - (d.re[k] as number))).toBeLessThanOrEqual(1e-14 * scale);
+        expect(Math.abs((c.im?.[k] ?? 0) - (d.im?.[k] ?? 0))).toBeLessThanOrEqual(1e-14 * scale);
+      });
+      const [p, q] = [toDense(a), toDense(b)];
+      expect(
+        distance(
+          14,
+          [
+            [1, p, q],
+            [-1, q, p],
+          ],
+          d,
+        ),
+      ).toBeLessThanOrEqual(half.error);
+      expect(Math.abs(arena.frobenius(half.value) / arena.frobenius(whole.value) - 1)).toBeLessThan(1e-14);
+    }
+    const arena = make();
+    expect(() => arena.load(square(5, true, 1), { hermitian: true })).toThrow(
+      expect.objectContaining({ code: "not-hermitian" }),
+    );
+  });
+
+  it("frees what came after a mark, and refuses its use", () => {
+    const arena = make();
+    const a = arena.load(square(20, true, 1));
+    const b = arena.load(square(20, true, 2));
+    const mark = arena.mark();
+    const before = arena.bytes;
+    const known = arena.read(arena.commutator(a, b).value);
+    for (let k = 0; k < 3; k++) {
+      const c = arena.commutator(a, b).value;
+      const d = arena.product(c, a).value;
+      arena.release(mark);
+      expect(arena.bytes).toBe(before);
+      for (const gone of [c, d]) {
+        expect(() => arena.read(gone)).toThrow(expect.objectContaining({ code: "shape" }));
+      }
+    }
+    expect(arena.read(arena.commutator(a, b).value)).toEqual(known);
+    expect(() => make().product(a, b)).toThrow(expect.objectContaining({ code: "shape" }));
+  });
+});
+
+describe("a large operator in WebAssembly memory", () => {
+  it("takes its own size and eight bytes a row, and commutators of it no copies", () => {
+    const n = 1_000_000;
+    const steps = [-1000, -1, 0, 1, 1000];
+    const pairs = { i: new Int32Array(5 * n), j: new Int32Array(5 * n), x: new Float64Array(5 * n) };
+    let count = 0;
+    for (let r = 0; r < n; r++) {
+      for (const step of steps) {
+        if (r + step < 0 || r + step >= n) continue;
+        pairs.i[count] = r;
+        pairs.j[count] = r + step;
+        pairs.x[count] = step === 0 ? r % 7 : 1;
+        count++;
+      }
+    }
+    const a = fromTriplets(n, n, pairs.i.subarray(0, count), pairs.j.subarray(0, count), pairs.x.subarray(0, count));
+    const arena = new SparseArena();
+    const empty = arena.bytes;
+    const resident = arena.load(a);
+    const size = 12 * count + 4 * (n + 1);
+    expect(arena.bytes - empty).toBeLessThanOrEqual(size + 8 * n + 100);
+    const mark = arena.mark();
+    const { value, error } = arena.commutator(resident, resident);
+    // [A, A] = 0: what is left is rounding, and here the sums are exact.
+    expect(arena.frobenius(value)).toBe(0);
+    expect(error).toBeGreaterThan(0);
+    arena.release(mark);
+    expect(arena.bytes - empty).toBeLessThanOrEqual(size + 8 * n + 100);
+  });
+});

@@ -1,0 +1,112 @@
+import { readFileSync } from "node:fs";
+import { fileURLToPath } from "node:url";
+import { afterEach, describe, expect, it, vi } from "vitest";
+import { productDense } from "../../../src/numerics/bounded/dense.js";
+import { multiplyDense } from "../../../src/numerics/dense.js";
+import { batchedHermitianEigen } from "../../../src/numerics/eigen/batch.js";
+import { plainEigen } from "../../../src/numerics/eigen/plain.js";
+import { hermitianEigen, hermitianEigenBy } from "../../../src/numerics/eigen.js";
+import { wasmEigen } from "../../../src/numerics/wasm/eigen.js";
+import { kernelsAvailable, newKernels, withKernels } from "../../../src/numerics/wasm/runtime.js";
+import { randomSample } from "../eigen/matrices.js";
+
+const assembly = new URL("../../../src/numerics/wasm/assembly/", import.meta.url);
+
+describe("the compiled kernels", () => {
+  it("are what their sources compile to, byte for byte", async () => {
+    const { compileKernels } = (await import(/* @vite-ignore */ new URL("build.js", assembly).href)) as {
+      compileKernels: () => Promise<string>;
+    };
+    expect(await compileKernels()).toBe(readFileSync(fileURLToPath(new URL("../kernels.ts", assembly)), "utf8"));
+  });
+
+  it("run here, so that the tests of both engines test two things", () => {
+    expect(kernelsAvailable()).toBe(true);
+    const { n, re, im } = randomSample(40, true, 1);
+    const fast = hermitianEigenBy(wasmEigen, n, re, im);
+    expect(hermitianEigen(n, re, im)).toEqual(fast);
+    expect(hermitianEigenBy(plainEigen, n, re, im).re).not.toEqual(fast.re);
+  });
+});
+
+describe("without WebAssembly", () => {
+  afterEach(() => {
+    vi.unstubAllGlobals();
+    vi.resetModules();
+  });
+
+  const broken = {
+    Module: class {
+      constructor() {
+        throw new Error("no vectors here");
+      }
+    },
+    Instance: class {},
+  };
+  it.each([
+    ["absent", undefined],
+    ["refusing to compile", broken],
+  ])("the plain kernels take over (%s)", async (_, platform) => {
+    vi.resetModules();
+    const fresh = await import("../../../src/numerics/kernels.js");
+    const { wasmEigen: absent } = await import("../../../src/numerics/wasm/eigen.js");
+    const { n, re, im } = randomSample(40, true, 2);
+    const square = { n, re, im };
+    // The platform itself uses WebAssembly now and then: it is gone only while nothing is awaited.
+    vi.stubGlobal("WebAssembly", platform);
+    const found = [
+      fresh.kernelsAvailable(),
+      absent({ count: 1, n, re, im, window: {} }),
+      fresh.hermitianEigen(n, re, im),
+      fresh.product(square, square),
+    ];
+    vi.unstubAllGlobals();
+    const value = { n, ...multiplyDense(n, square, square) };
+    expect(found).toEqual([
+      false,
+      undefined,
+      hermitianEigenBy(plainEigen, n, re, im),
+      { value, error: productDense(square, square).error },
+    ]);
+  });
+});
+
+describe("memory", () => {
+  const bytes = (): number => withKernels((kernels) => kernels.bytes) ?? 0;
+
+  it("does not grow over a hundred thousand small calls", () => {
+    const small = [2, 3, 5, 8].map((n) => randomSample(n, true, n));
+    for (const { n, re, im } of small) hermitianEigen(n, re, im);
+    const before = bytes();
+    for (let k = 0; k < 100_000; k++) {
+      const { n, re, im } = small[k % 4] as (typeof small)[number];
+      hermitianEigen(n, re, im);
+    }
+    expect(bytes()).toBe(before);
+    expect(before).toBeLessThanOrEqual(2 ** 21);
+  });
+
+  it("does not grow with the length of a batch", () => {
+    const orders = new Int32Array(5000).fill(12);
+    const re = Float64Array.from({ length: 5000 * 144 }, (_, k) => Math.sin(k));
+    batchedHermitianEigen(orders.subarray(0, 500), re.subarray(0, 500 * 144), undefined);
+    const before = bytes();
+    batchedHermitianEigen(orders, re, undefined);
+    expect(bytes()).toBe(before);
+  });
+
+  it("is let go after a call that needed much, and views are made anew after it has grown", () => {
+    const { n, re, im } = randomSample(1200, false, 1);
+    expect(hermitianEigen(n, re, im, { window: { from: 0, to: 1 } }).values.length).toBe(1);
+    expect(bytes()).toBeLessThanOrEqual(2 ** 21);
+    const kernels = newKernels();
+    const [start = 0] = kernels?.layout([8 * 2 ** 18]) ?? [];
+    kernels?.doubles.fill(7, start / 8, start / 8 + 2 ** 18);
+    kernels?.layout([8 * 2 ** 20]);
+    expect(kernels?.doubles[start / 8 + 2 ** 18 - 1]).toBe(7);
+  });
+
+  it("that is not to be had is an error", () => {
+    expect(() => newKernels()?.layout([2 ** 40])).toThrow(RangeError);
+  });
+});
