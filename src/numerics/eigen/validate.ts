@@ -31,14 +31,20 @@ export function requireShape(
  * @throws GoodBasisError `not-finite`, with row and column
  */
 export function requireFinite(where: string, n: number, re: Float64Array, im: Float64Array | undefined, at = 0): void {
+  // 0 · x is NaN where x is not finite. Two sums, so that neither addition waits for the other.
   let probe = 0;
+  let probeIm = 0;
   for (let i = 0; i < n; i++) {
     const row = at + i * n;
-    for (let k = row; k <= row + i; k++) probe += 0 * (re[k] as number);
-    if (im === undefined) continue;
-    for (let k = row; k <= row + i; k++) probe += 0 * (im[k] as number);
+    if (im === undefined) for (let k = row; k <= row + i; k++) probe += 0 * (re[k] as number);
+    else {
+      for (let k = row; k <= row + i; k++) {
+        probe += 0 * (re[k] as number);
+        probeIm += 0 * (im[k] as number);
+      }
+    }
   }
-  if (probe === 0) return;
+  if (probe + probeIm === 0) return;
   for (let i = 0; i < n; i++) {
     for (let j = 0; j <= i; j++) {
       const k = at + i * n + j;

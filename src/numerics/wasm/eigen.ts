@@ -2,18 +2,26 @@ import { GoodBasisError } from "../../errors.js";
 import type { EigenJob, EigenSolved, EigenTuning } from "../eigen/types.js";
 import { type Kernels, withKernels } from "./runtime.js";
 
-/** The measured sizes at which the WebAssembly kernels change their algorithm. */
-export const WASM_TUNING: EigenTuning = { leaf: 32, blockedFrom: 64, blockWidth: 32 };
+/**
+ * The measured sizes at which the WebAssembly kernels change their algorithm. Complex reflectors are applied one by one for
+ * long: the arithmetic that blocks save by three multiplications only then outweighs what they add.
+ */
+export function wasmTuning(n: number, complex: boolean): EigenTuning {
+  return { leaf: 32, blockedFrom: complex ? 300 : 80, blockWidth: n < 200 ? 16 : 32 };
+}
 
 /**
  * Eigenpairs of matrices of one order by the WebAssembly kernels, in one call.
  *
  * @param job - finite matrices
- * @param tuning - sizes at which the algorithm changes
+ * @param tuning - sizes at which the algorithm changes; {@link wasmTuning} where absent
  * @returns views of memory that the next call overwrites; `undefined` where the platform cannot run the kernels
  * @throws GoodBasisError `no-convergence` when an iteration exceeds its bound
  */
-export function wasmEigen(job: EigenJob, tuning: EigenTuning = WASM_TUNING): EigenSolved | undefined {
+export function wasmEigen(
+  job: EigenJob,
+  tuning: EigenTuning = wasmTuning(job.n, job.im !== undefined),
+): EigenSolved | undefined {
   return withKernels((kernels) => solve(kernels, job, tuning));
 }
 

@@ -4,18 +4,95 @@ import { at, clear, dot, get, lanes, put, room } from "./memory.ts";
 import { addProduct } from "./packed-product.ts";
 
 /** Rows that pass through a block of reflectors together; their strips of products stay in the second-level cache. */
-const STRIP: i32 = 64;
+const STRIP: i32 = 128;
 
 /** Applies real reflectors one by one to `count` rows of n doubles; row i of `y` holds y_i in its columns 0 … i − 1. */
 export function reflectReal(n: i32, y: usize, tau: usize, count: i32, rows: usize): void {
-  for (let i = 1; i < n; i++) {
-    const t = get(tau, i);
-    if (t === 0) continue;
-    const yi = at(y, i * n);
-    for (let r = 0; r < count; r++) {
-      const row = at(rows, r * n);
-      addMultiple(i, -t * dot(i, yi, row), yi, row);
+  // Four rows stay in the first-level cache while all reflectors pass over them.
+  const step = (n as usize) << 3;
+  let r = 0;
+  for (; r + 3 < count; r += 4) {
+    for (let i = 1; i < n; i++) {
+      const t = get(tau, i);
+      if (t !== 0) reflectFourRows(i, t, at(y, i * n), at(rows, r * n), step);
     }
+  }
+  for (; r < count; r++) {
+    const row = at(rows, r * n);
+    for (let i = 1; i < n; i++) {
+      const t = get(tau, i);
+      if (t !== 0) addMultiple(i, -t * dot(i, at(y, i * n), row), at(y, i * n), row);
+    }
+  }
+}
+
+/** row ← row − t (yᵀ row) y over n doubles, for four rows `step` bytes apart. */
+function reflectFourRows(n: i32, t: f64, y: usize, row0: usize, step: usize): void {
+  const row1 = row0 + step;
+  const row2 = row1 + step;
+  const row3 = row2 + step;
+  let a0 = f64x2.splat(0);
+  let a1 = a0;
+  let a2 = a0;
+  let a3 = a0;
+  let b0 = a0;
+  let b1 = a0;
+  let b2 = a0;
+  let b3 = a0;
+  const end = ((n as usize) << 3) & ~15;
+  let o: usize = 0;
+  // Two sums a row: one alone would wait for its own last addition.
+  for (; o + 16 < end; o += 32) {
+    const p = v128.load(y + o);
+    const q = v128.load(y + o, 16);
+    a0 = f64x2.add(a0, f64x2.mul(p, v128.load(row0 + o)));
+    b0 = f64x2.add(b0, f64x2.mul(q, v128.load(row0 + o, 16)));
+    a1 = f64x2.add(a1, f64x2.mul(p, v128.load(row1 + o)));
+    b1 = f64x2.add(b1, f64x2.mul(q, v128.load(row1 + o, 16)));
+    a2 = f64x2.add(a2, f64x2.mul(p, v128.load(row2 + o)));
+    b2 = f64x2.add(b2, f64x2.mul(q, v128.load(row2 + o, 16)));
+    a3 = f64x2.add(a3, f64x2.mul(p, v128.load(row3 + o)));
+    b3 = f64x2.add(b3, f64x2.mul(q, v128.load(row3 + o, 16)));
+  }
+  if (o < end) {
+    const p = v128.load(y + o);
+    a0 = f64x2.add(a0, f64x2.mul(p, v128.load(row0 + o)));
+    a1 = f64x2.add(a1, f64x2.mul(p, v128.load(row1 + o)));
+    a2 = f64x2.add(a2, f64x2.mul(p, v128.load(row2 + o)));
+    a3 = f64x2.add(a3, f64x2.mul(p, v128.load(row3 + o)));
+  }
+  let s0 = lanes(f64x2.add(a0, b0));
+  let s1 = lanes(f64x2.add(a1, b1));
+  let s2 = lanes(f64x2.add(a2, b2));
+  let s3 = lanes(f64x2.add(a3, b3));
+  if (n & 1) {
+    const p = get(y, n - 1);
+    s0 += p * get(row0, n - 1);
+    s1 += p * get(row1, n - 1);
+    s2 += p * get(row2, n - 1);
+    s3 += p * get(row3, n - 1);
+  }
+  s0 *= t;
+  s1 *= t;
+  s2 *= t;
+  s3 *= t;
+  a0 = f64x2.splat(s0);
+  a1 = f64x2.splat(s1);
+  a2 = f64x2.splat(s2);
+  a3 = f64x2.splat(s3);
+  for (o = 0; o < end; o += 16) {
+    const p = v128.load(y + o);
+    v128.store(row0 + o, f64x2.sub(v128.load(row0 + o), f64x2.mul(a0, p)));
+    v128.store(row1 + o, f64x2.sub(v128.load(row1 + o), f64x2.mul(a1, p)));
+    v128.store(row2 + o, f64x2.sub(v128.load(row2 + o), f64x2.mul(a2, p)));
+    v128.store(row3 + o, f64x2.sub(v128.load(row3 + o), f64x2.mul(a3, p)));
+  }
+  if (n & 1) {
+    const p = get(y, n - 1);
+    put(row0, n - 1, get(row0, n - 1) - s0 * p);
+    put(row1, n - 1, get(row1, n - 1) - s1 * p);
+    put(row2, n - 1, get(row2, n - 1) - s2 * p);
+    put(row3, n - 1, get(row3, n - 1) - s3 * p);
   }
 }
 
@@ -39,14 +116,19 @@ export function reflectComplex(
   rowsRe: usize,
   rowsIm: usize,
 ): void {
+  // A pair of rows stays in the first-level cache while all reflectors pass over it.
+  const step = (n as usize) << 3;
+  let r = 0;
+  for (; r + 1 < count; r += 2) {
+    for (let i = 1; i < n; i++) {
+      const t = get(tau, i);
+      if (t === 0) continue;
+      reflectTwoRows(i, t, at(yRe, i * n), at(yIm, i * n), at(rowsRe, r * n), at(rowsIm, r * n), step);
+    }
+  }
+  if (r === count) return;
   for (let i = 1; i < n; i++) {
-    const t = get(tau, i);
-    if (t === 0) continue;
-    const re = at(yRe, i * n);
-    const im = at(yIm, i * n);
-    let r = 0;
-    for (; r + 1 < count; r += 2) reflectTwoRows(i, t, re, im, at(rowsRe, r * n), at(rowsIm, r * n), (n as usize) << 3);
-    if (r < count) reflectRow(i, t, re, im, at(rowsRe, r * n), at(rowsIm, r * n));
+    reflectRow(i, get(tau, i), at(yRe, i * n), at(yIm, i * n), at(rowsRe, r * n), at(rowsIm, r * n));
   }
 }
 
@@ -146,12 +228,12 @@ function reflectTwoRows(n: i32, t: f64, yr: usize, yi: usize, re: usize, im: usi
   }
 }
 
-/** Bytes of scratch for {@link reflectBlocksReal} (`parts` 1) or {@link reflectBlocksComplex} (`parts` 3). */
-export function reflectScratch(n: i32, width: i32, parts: i32): usize {
-  const p = parts as usize;
-  return (
-    p * (2 * room(width * width) + room(width * n) + 2 * room(STRIP * width)) + p * (room(width * n) + room(STRIP * n))
-  );
+/** Bytes of scratch for {@link reflectBlocksReal} and {@link reflectBlocksComplex}. */
+export function reflectScratch(n: i32, width: i32, complex: bool): usize {
+  const square = room(width * width);
+  const wide = room(width * n);
+  if (!complex) return 2 * square + 2 * wide;
+  return 4 * square + 4 * wide + 3 * room(STRIP * width) + 2 * room(STRIP * n);
 }
 
 /**
@@ -187,13 +269,9 @@ export function reflectBlocksReal(
     compactFactor(k, at(tau, first), gram, 0, factor, 0);
     clear(scaled, k * length);
     addProduct(k, length, k, 1, factor, k, 1, block, n, 1, scaled, length, forProducts);
-    for (let r = 0; r < count; r += STRIP) {
-      const height = min(STRIP, count - r);
-      const strip = at(rows, r * n);
-      clear(overlap, height * k);
-      addProduct(height, k, length, 1, strip, n, 1, block, 1, n, overlap, k, forProducts);
-      addProduct(height, length, k, -1, overlap, k, 1, scaled, length, 1, strip, n, forProducts);
-    }
+    clear(overlap, count * k);
+    addProduct(count, k, length, 1, rows, n, 1, block, 1, n, overlap, k, forProducts);
+    addProduct(count, length, k, -1, overlap, k, 1, scaled, length, 1, rows, n, forProducts);
   }
 }
 

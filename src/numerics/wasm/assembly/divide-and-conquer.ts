@@ -40,7 +40,7 @@ let productRoom: usize = 0;
 
 /** Bytes of scratch that {@link divideAndConquer} asks for besides its matrices. */
 export function divideScratch(size: i32): usize {
-  return 5 * room(size) + room(2 * size) + 4 * room(size);
+  return 5 * room(size) + room(4 * size) + 4 * room(size);
 }
 
 /** Doubles of the second matrix that {@link divideAndConquer} asks for (the first has n²). */
@@ -95,7 +95,7 @@ export function divideAndConquer(
   signed = weights + step;
   temporary = signed + step;
   rotations = temporary + step;
-  kept = rotations + room(2 * size);
+  kept = rotations + room(4 * size);
   deflated = kept + step;
   span = deflated + step;
   list = span + step;

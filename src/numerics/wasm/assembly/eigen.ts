@@ -23,7 +23,7 @@ export function eigenScratch(n: i32, complex: bool, leaf: i32, blockedFrom: i32,
   const reduction = complex ? reduceComplexScratch(n) : reduceRealScratch(n);
   const divided = n > leaf;
   const merges: usize = complex || !divided ? 0 : room(mergeRoom(n));
-  const blocks: usize = n >= blockedFrom ? reflectScratch(n, blockWidth, complex ? 3 : 1) : 0;
+  const blocks: usize = n >= blockedFrom ? reflectScratch(n, blockWidth, complex) : 0;
   const products: usize = divided || n >= blockedFrom ? productScratch() : 0;
   return vectors + reduction + divideScratch(n) + room(n * n) + merges + blocks + products;
 }

@@ -19,7 +19,7 @@ const SAFE_SQUARE: f64 = reinterpret<f64>((1023 - 900) << 52);
  * @param off - entry i couples i and i + 1; `size` doubles, destroyed
  * @param v - first number of the block in rows of `stride` doubles; holds the identity, comes back as eigenvectors
  * @param floor - absolute threshold for off-diagonal entries
- * @param rotations - scratch, 2 · `size` doubles
+ * @param rotations - scratch, 4 · `size` doubles
  * @returns whether it converged
  */
 export function implicitQl(
@@ -31,15 +31,24 @@ export function implicitQl(
   floor: f64,
   rotations: usize,
 ): bool {
+  // A sweep waits for its own square roots and divisions; the rotations of the sweep before are applied meanwhile.
+  let fresh = rotations;
+  let pending = at(rotations, 2 * size);
+  let pendingLow = 0;
+  let pendingHigh = 0;
   for (let low = 0; low < size; low++) {
     for (let sweep = 0; ; sweep++) {
       const high = firstNegligible(low, size - 1, diagonal, off, floor);
       if (high === low) break;
       if (sweep === MAX_SWEEPS) return false;
-      const reached = qlSweep(low, high, diagonal, off, rotations);
-      applySweep(reached, high, size, v, stride, rotations);
+      pendingLow = qlSweep(low, high, diagonal, off, fresh, pendingLow, pendingHigh, pending, size, v, stride);
+      pendingHigh = high;
+      const applied = pending;
+      pending = fresh;
+      fresh = applied;
     }
   }
+  for (let i = pendingHigh - 1; i >= pendingLow; i--) rotate(i, pending, size, v, stride);
   return true;
 }
 
@@ -55,11 +64,26 @@ function firstNegligible(low: i32, last: i32, diagonal: usize, off: usize, floor
 
 /**
  * One implicit sweep from row `high` up to row `low`. Cosine and sine of the rotation of rows i and i + 1 go to the
- * doubles 2 i and 2 i + 1 of `rotations`.
+ * doubles 2 i and 2 i + 1 of `rotations`; those of the sweep before, `pendingLow` ≤ i < `pendingHigh`, are applied to the
+ * first `cols` columns of v.
  *
  * @returns the index of the last rotation, `low` unless the sweep broke off
  */
-function qlSweep(low: i32, high: i32, diagonal: usize, off: usize, rotations: usize): i32 {
+function qlSweep(
+  low: i32,
+  high: i32,
+  diagonal: usize,
+  off: usize,
+  rotations: usize,
+  pendingLow: i32,
+  pendingHigh: i32,
+  pending: usize,
+  cols: i32,
+  v: usize,
+  stride: i32,
+): i32 {
+  let reached = low;
+  let next = pendingHigh - 1;
   const first = get(diagonal, low);
   const coupling = get(off, low);
   const ratio = (get(diagonal, low + 1) - first) / (2 * coupling);
@@ -85,8 +109,8 @@ function qlSweep(low: i32, high: i32, diagonal: usize, off: usize, rotations: us
       if (r === 0) {
         // The chase met an exact zero: the block falls apart here, and the next sweep starts on the pieces.
         put(diagonal, i + 1, get(diagonal, i + 1) - p);
-        put(off, high, 0);
-        return i + 1;
+        reached = i + 1;
+        break;
       }
       s = f / r;
       c = g / r;
@@ -98,11 +122,15 @@ function qlSweep(low: i32, high: i32, diagonal: usize, off: usize, rotations: us
     g = c * h - b;
     put(rotations, 2 * i, c);
     put(rotations, 2 * i + 1, s);
+    if (next >= pendingLow) rotate(next--, pending, cols, v, stride);
   }
-  put(diagonal, low, get(diagonal, low) - p);
-  put(off, low, g);
+  for (; next >= pendingLow; next--) rotate(next, pending, cols, v, stride);
+  if (reached === low) {
+    put(diagonal, low, get(diagonal, low) - p);
+    put(off, low, g);
+  }
   put(off, high, 0);
-  return low;
+  return reached;
 }
 
 /** √(x² + y²) for numbers whose squares underflow; NaN stays NaN. */
@@ -114,48 +142,25 @@ function hypotenuse(x: f64, y: f64): f64 {
   return large * sqrt(a * a + b * b);
 }
 
-/**
- * Applies a sweep of rotations of the rows i and i + 1, i = `high` − 1 down to `low`, to the first `cols` columns: four
- * at a time, the row that two rotations share held in registers between them.
- */
-function applySweep(low: i32, high: i32, cols: i32, v: usize, stride: i32, rotations: usize): void {
-  const step = (stride as usize) << 3;
-  const last = at(rotations, 2 * (high - 1));
-  let k = 0;
-  for (; k + 3 < cols; k += 4) {
-    let p = at(v, high * stride + k);
-    let y0 = v128.load(p);
-    let y1 = v128.load(p, 16);
-    let rotation = last;
-    for (let i = high - 1; i >= low; i--) {
-      const c = v128.load64_splat(rotation);
-      const s = v128.load64_splat(rotation, 8);
-      const q = p - step;
-      const x0 = v128.load(q);
-      const x1 = v128.load(q, 16);
-      v128.store(p, f64x2.add(f64x2.mul(s, x0), f64x2.mul(c, y0)));
-      v128.store(p, f64x2.add(f64x2.mul(s, x1), f64x2.mul(c, y1)), 16);
-      y0 = f64x2.sub(f64x2.mul(c, x0), f64x2.mul(s, y0));
-      y1 = f64x2.sub(f64x2.mul(c, x1), f64x2.mul(s, y1));
-      p = q;
-      rotation -= 16;
-    }
-    v128.store(p, y0);
-    v128.store(p, y1, 16);
+/** Applies rotation i of a sweep to the first `cols` columns of the rows i and i + 1: (x, y) ← (c x − s y, s x + c y). */
+function rotate(i: i32, rotations: usize, cols: i32, v: usize, stride: i32): void {
+  const c = v128.load64_splat(at(rotations, 2 * i));
+  const s = v128.load64_splat(at(rotations, 2 * i + 1));
+  let p = at(v, i * stride);
+  let q = at(p, stride);
+  const end = p + (((cols as usize) << 3) & ~15);
+  while (p < end) {
+    const x = v128.load(p);
+    const y = v128.load(q);
+    v128.store(q, f64x2.add(f64x2.mul(s, x), f64x2.mul(c, y)));
+    v128.store(p, f64x2.sub(f64x2.mul(c, x), f64x2.mul(s, y)));
+    p += 16;
+    q += 16;
   }
-  for (; k < cols; k++) {
-    let p = at(v, high * stride + k);
-    let y = f64.load(p);
-    let rotation = last;
-    for (let i = high - 1; i >= low; i--) {
-      const c = f64.load(rotation);
-      const s = f64.load(rotation, 8);
-      const x = f64.load(p - step);
-      f64.store(p, s * x + c * y);
-      y = c * x - s * y;
-      p -= step;
-      rotation -= 16;
-    }
-    f64.store(p, y);
+  if (cols & 1) {
+    const x = f64.load(p);
+    const y = f64.load(q);
+    f64.store(q, f64x2.extract_lane(s, 0) * x + f64x2.extract_lane(c, 0) * y);
+    f64.store(p, f64x2.extract_lane(c, 0) * x - f64x2.extract_lane(s, 0) * y);
   }
 }
