@@ -47,11 +47,14 @@ interface Run {
   readonly reject: (error: unknown) => void;
 }
 
-/** A worker, and what it is doing. */
+/** A worker, and what it was given: what it is doing, and what it finds waiting when that is done. */
 interface Seat {
   readonly worker: PoolWorker;
-  task: { readonly run: Run; readonly task: Task } | undefined;
+  readonly held: { readonly run: Run; readonly task: Task }[];
 }
+
+/** Tasks that a worker holds: one to work on and one more, so that it never waits for the calling thread. */
+const HELD = 2;
 
 /**
  * A kept pool of workers that share out independent eigenproblems. Workers are started at first need and kept, since
@@ -111,7 +114,7 @@ export class KernelPool {
     if (this.#closed || this.#size === 0 || total < this.#worthwhile || !fits) {
       return batchedHermitianEigen(orders, re, im, options);
     }
-    const tasks = split(Int32Array.from(orders), work, total / (4 * this.#size));
+    const tasks = split(Int32Array.from(orders), work, total / (8 * this.#size));
     return new Promise((resolve, reject) => {
       const out = {
         orders: Int32Array.from(orders),
@@ -130,7 +133,7 @@ export class KernelPool {
     const busy = this.#seats.splice(0);
     for (const { worker } of busy) worker.terminate();
     const error = new GoodBasisError("worker", "KernelPool: closed before the batch was finished; await it first");
-    for (const run of new Set([...this.#queue.splice(0), ...busy.flatMap(({ task }) => task?.run ?? [])])) {
+    for (const run of new Set([...this.#queue.splice(0), ...busy.flatMap(({ held }) => held.map(({ run }) => run))])) {
       run.reject(error);
     }
   }
@@ -141,15 +144,13 @@ export class KernelPool {
       const run = this.#queue.find(({ tasks }) => tasks.length > 0);
       const task = run?.tasks[0];
       if (run === undefined || task === undefined) return;
-      let seat = this.#seats.find((one) => one.task === undefined);
-      if (seat === undefined) {
-        if (this.#seats.length >= this.#size) return;
-        seat = this.#hire(run);
-        // It could not be started: that run has been rejected, the next one gets its own try.
-        if (seat === undefined) continue;
-      }
+      const idle = this.#seats.find(({ held }) => held.length === 0);
+      const seat = idle ?? this.#hire(run) ?? this.#seats.find(({ held }) => held.length < HELD);
+      // Where a worker could not be started that run has been rejected; the next one gets its own try.
+      if (!this.#queue.includes(run)) continue;
+      if (seat === undefined) return;
       run.tasks.shift();
-      seat.task = { run, task };
+      seat.held.push({ run, task });
       const re = run.re.slice(task.start, task.end);
       const im = run.im?.slice(task.start, task.end);
       const transfer = im === undefined ? [re.buffer] : [re.buffer, im.buffer];
@@ -158,8 +159,9 @@ export class KernelPool {
   }
 
   #hire(run: Run): Seat | undefined {
+    if (this.#seats.length >= this.#size) return undefined;
     try {
-      const seat: Seat = { worker: this.#factory(), task: undefined };
+      const seat: Seat = { worker: this.#factory(), held: [] };
       seat.worker.listen(
         (answer) => this.#finish(seat, answer),
         (reason) => this.#bury(seat, reason),
@@ -176,10 +178,9 @@ export class KernelPool {
   #finish(seat: Seat, answer: PoolAnswer): void {
     // A worker that was given up may still answer.
     if (!this.#seats.includes(seat)) return;
-    const held = seat.task;
-    seat.task = undefined;
-    if (held !== undefined) {
-      const { run, task } = held;
+    const done = seat.held.shift();
+    if (done !== undefined) {
+      const { run, task } = done;
       if ("error" in answer) this.#fail(run, shifted(answer.error, task.first));
       else {
         run.out.values.set(answer.values, task.rowStart);
@@ -198,12 +199,13 @@ export class KernelPool {
     this.#seats.splice(at, 1);
     // A browser's worker lives on after an error.
     seat.worker.terminate();
-    if (seat.task !== undefined) {
-      const { run, task } = seat.task;
+    const [current, ...waiting] = seat.held;
+    for (const { run, task } of waiting) run.tasks.unshift(task);
+    if (current !== undefined) {
+      const { run, task } = current;
       const last = task.first + task.orders.length - 1;
       const which = last === task.first ? `matrix ${last}` : `matrices ${task.first} to ${last}`;
       const message = `KernelPool: a worker died while it solved ${which} of the batch (${reason}); run the batch again, or with size 0`;
-      seat.task = undefined;
       this.#fail(run, new GoodBasisError("worker", message, { first: task.first, last, reason }));
     }
     this.#deal();

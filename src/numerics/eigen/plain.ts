@@ -10,7 +10,7 @@ import { tridiagonaliseReal } from "./tridiagonalise-real.js";
 import type { EigenJob, EigenSolved, EigenTuning } from "./types.js";
 
 /** The measured sizes at which the plain kernels change their algorithm. */
-export const PLAIN_TUNING: EigenTuning = { leaf: 32, blockedFrom: 96, blockWidth: 32 };
+const PLAIN_TUNING: EigenTuning = { leaf: 32, blockedFrom: 96, blockWidth: 32 };
 
 /**
  * Eigenpairs of matrices of one order in plain TypeScript: the twin of the WebAssembly kernels, for platforms without.

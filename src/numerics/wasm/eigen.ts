@@ -6,7 +6,7 @@ import { type Kernels, withKernels } from "./runtime.js";
  * The measured sizes at which the WebAssembly kernels change their algorithm. Complex reflectors are applied one by one for
  * long: the arithmetic that blocks save by three multiplications only then outweighs what they add.
  */
-export function wasmTuning(n: number, complex: boolean): EigenTuning {
+function wasmTuning(n: number, complex: boolean): EigenTuning {
   return { leaf: 32, blockedFrom: complex ? 300 : 80, blockWidth: n < 200 ? 16 : 32 };
 }
 
