@@ -68,6 +68,9 @@ interface Platform {
   readonly Instance: new (module: object) => { readonly exports: object };
 }
 
+/** The platform does not give the memory, or more than the four gigabytes that addresses reach were asked for. */
+class OutOfMemory extends RangeError {}
+
 const PAGE = 65536;
 /** Memory up to this size is kept from call to call; an instance that grew beyond is let go after the call. */
 const KEPT_BYTES = 32 * 2 ** 20;
@@ -116,7 +119,7 @@ export class Kernels {
     });
     const missing = end - this.bytes;
     if (missing > 0 && !this.#grow(Math.ceil(missing / PAGE))) {
-      throw new RangeError(`kernels: ${end} bytes of memory are not to be had; split the problem into smaller blocks`);
+      throw new OutOfMemory(`kernels: ${end} bytes of memory are not to be had; split the problem into smaller blocks`);
     }
     return starts;
   }
@@ -155,12 +158,18 @@ export function newKernels(): Kernels | undefined {
   return new Kernels(new compiled.platform.Instance(compiled.module).exports as KernelExports);
 }
 
-/** Runs something on the kept instance, or returns `undefined` at once where the platform cannot run the kernels. */
+/**
+ * Runs something on the kept instance; `undefined` where the platform cannot run the kernels or does not give the memory,
+ * so that the plain ones can take over.
+ */
 export function withKernels<T>(run: (kernels: Kernels) => T): T | undefined {
   kept ??= newKernels();
   if (kept === undefined) return undefined;
   try {
     return run(kept);
+  } catch (error) {
+    if (error instanceof OutOfMemory) return undefined;
+    throw error;
   } finally {
     if (kept.bytes > KEPT_BYTES) kept = undefined;
   }

@@ -1,18 +1,13 @@
 // The Hermitian eigenproblem from beginning to end, one call for a batch of matrices of one order.
 
-import {
-  reflectBlocksComplex,
-  reflectBlocksReal,
-  reflectComplex,
-  reflectReal,
-  reflectScratch,
-} from "./back-transform.ts";
 import { divideAndConquer, divideScratch, mergeRoom } from "./divide-and-conquer.ts";
 import { at, clear, copy, get, getInt, put, room, scale } from "./memory.ts";
 import { eigenOfOrderTwo } from "./order-two.ts";
 import { productScratch } from "./packed-product.ts";
 import { reduceComplex, reduceComplexScratch } from "./reduce-complex.ts";
 import { reduceReal, reduceRealScratch } from "./reduce-real.ts";
+import { reflectComplex, reflectReal } from "./reflect.ts";
+import { reflectBlocksComplex, reflectBlocksReal, reflectScratch } from "./reflect-blocks.ts";
 
 /** Index of the first eigenpair that the last call found inside its window. */
 export let windowStart: i32 = 0;
