@@ -113,17 +113,17 @@ function productError(a: Square, b: Square): number {
   const norms = new Float64Array(n);
   for (let k = 0; k < n; k++) norms[k] = rowNorm(n, b, k);
   let squares = 0;
+  let rows = 0;
   for (let i = 0; i < n; i++) {
     let sum = 0;
-    for (let k = i * n; k < i * n + n; k++) {
-      const x = Math.abs(a.re[k] as number);
-      // √(x² + y²) ≤ x + y would cost up to √2; the square root is worth it.
-      const modulus = a.im === undefined ? x : Math.sqrt(x * x + (a.im[k] as number) ** 2 + 4 * UNDERFLOW);
-      sum += modulus * (norms[k - i * n] as number);
-    }
+    for (let k = 0; k < n; k++) sum += modulusAbove(a, i * n + k) * (norms[k] as number);
     // NaN, from zero times an infinite norm, goes on and makes the bound infinite.
-    if (sum !== 0) squares += sum * sum + UNDERFLOW;
+    if (sum === 0) continue;
+    squares += sum * sum;
+    rows++;
   }
+  // A square that underflows is off by half the smallest positive number at most.
+  squares += rows * UNDERFLOW;
   const bothComplex = a.im !== undefined && b.im !== undefined;
   const constant = bothComplex ? Math.sqrt(10) * gamma(n + 4) : gamma(n);
   // 2 n + n roundings in the sums on the longest path, and a handful.
@@ -132,26 +132,33 @@ function productError(a: Square, b: Square): number {
     : roundUp(constant * Math.sqrt(squares), 4 * n + 16) + 5 * n * n * UNDERFLOW;
 }
 
+/** The modulus of entry `e`, an upper bound but for rounding; where the squares underflow, |re| + |im|. */
+function modulusAbove({ re, im }: Dense, e: number): number {
+  const x = re[e] as number;
+  if (im === undefined) return Math.abs(x);
+  const y = im[e] as number;
+  const square = x * x + y * y;
+  return square > SAFE_SQUARE ? Math.sqrt(square) : Math.abs(x) + Math.abs(y);
+}
+
+/** Above this a sum of two squares has lost nothing to underflow that its rounding does not cover. */
+const SAFE_SQUARE = 2 ** -900;
+
 /** Euclidean norm of row k; squares that underflow are made up for, so that only rounding is left to account for. */
 function rowNorm(n: number, { re, im }: Dense, k: number): number {
   let sum = 0;
-  for (let e = k * n; e < k * n + n; e++) {
-    const x = re[e] as number;
-    sum += x * x + UNDERFLOW;
-    if (im === undefined) continue;
-    const y = im[e] as number;
-    sum += y * y + UNDERFLOW;
-  }
-  return Math.sqrt(sum);
+  for (let e = k * n; e < k * n + n; e++) sum += (re[e] as number) * (re[e] as number);
+  if (im !== undefined) for (let e = k * n; e < k * n + n; e++) sum += (im[e] as number) * (im[e] as number);
+  return Math.sqrt(sum + 2 * n * UNDERFLOW);
 }
 
 /** Bound on a computed difference of two matrices with the given bounds. */
 function differenceError(value: Dense, first: number, second: number): number {
   let squares = 0;
   for (const part of value.im === undefined ? [value.re] : [value.re, value.im]) {
-    for (let e = 0; e < part.length; e++) squares += (part[e] as number) ** 2 + UNDERFLOW;
+    for (let e = 0; e < part.length; e++) squares += (part[e] as number) * (part[e] as number);
   }
-  const size = roundUp(Math.sqrt(squares), 2 * value.re.length + 8);
+  const size = roundUp(Math.sqrt(squares + 2 * value.re.length * UNDERFLOW), 2 * value.re.length + 8);
   const error = roundUp(first + second + UNIT_ROUNDOFF * size, 4);
   return Number.isNaN(error) ? Number.POSITIVE_INFINITY : error;
 }

@@ -78,9 +78,9 @@ function rowNorms(a: Csr): Float64Array {
     for (let e = a.ptr[row] as number; e < end; e++) {
       const x = a.re[e] as number;
       const y = a.im === undefined ? 0 : (a.im[e] as number);
-      sum += x * x + y * y + 2 * UNDERFLOW;
+      sum += x * x + y * y;
     }
-    norms[row] = Math.sqrt(sum);
+    norms[row] = Math.sqrt(sum + 2 * rowLength(a, row) * UNDERFLOW);
   }
   return norms;
 }
@@ -90,12 +90,22 @@ function weightedRow(a: Csr, row: number, norms: Float64Array): number {
   let sum = 0;
   const end = a.ptr[row + 1] as number;
   for (let e = a.ptr[row] as number; e < end; e++) {
-    const x = Math.abs(a.re[e] as number);
-    const modulus = a.im === undefined ? x : Math.sqrt(x * x + (a.im[e] as number) ** 2 + 4 * UNDERFLOW);
-    sum += modulus * (norms[a.col[e] as number] as number);
+    sum += modulusAbove(a, e) * (norms[a.col[e] as number] as number);
   }
   return sum;
 }
+
+/** The modulus of entry `e`, an upper bound but for rounding; where the squares underflow, |re| + |im|. */
+function modulusAbove({ re, im }: Csr, e: number): number {
+  const x = re[e] as number;
+  if (im === undefined) return Math.abs(x);
+  const y = im[e] as number;
+  const square = x * x + y * y;
+  return square > SAFE_SQUARE ? Math.sqrt(square) : Math.abs(x) + Math.abs(y);
+}
+
+/** Above this a sum of two squares has lost nothing to underflow that its rounding does not cover. */
+const SAFE_SQUARE = 2 ** -900;
 
 /** What {@link finishBound} completes. */
 interface RowBounds {
@@ -112,14 +122,19 @@ function frobeniusBound(
   terms: (row: number) => number,
 ): RowBounds {
   let squares = 0;
+  let bounded = 0;
   let most = 0;
   for (let row = 0; row < rows; row++) {
     const count = terms(row);
     const bound = (complex ? Math.SQRT2 * gamma(count + 1) : gamma(count)) * moduli(row);
-    if (bound !== 0) squares += bound * bound + UNDERFLOW;
     if (count > most) most = count;
+    // NaN, from zero times an infinite norm, goes on and makes the bound infinite.
+    if (bound === 0) continue;
+    squares += bound * bound;
+    bounded++;
   }
-  return { squares, most };
+  // A square that underflows is off by half the smallest positive number at most.
+  return { squares: squares + bounded * UNDERFLOW, most };
 }
 
 /**

@@ -4,7 +4,7 @@ import { at, clear, get, put, room } from "./memory.ts";
 import { addProduct, productScratch } from "./packed-product.ts";
 
 /** Rows of A that are multiplied together; what belongs to them stays in the second-level cache. */
-const STRIP: i32 = 64;
+const STRIP: i32 = 256;
 
 /** Bytes of scratch that {@link multiplyDense} asks for. */
 export function denseScratch(n: i32, bothComplex: bool): usize {

@@ -8,6 +8,8 @@ import { at, get, getInt, put, putInt } from "./memory.ts";
 const UNIT_ROUNDOFF: f64 = 1.1102230246251565e-16;
 /** Smallest positive number. */
 const UNDERFLOW: f64 = reinterpret<f64>(1);
+/** Above this a sum of two squares has lost nothing to underflow that its rounding does not cover. */
+const SAFE_SQUARE: f64 = reinterpret<f64>((1023 - 900) << 52);
 /** √2; the double lies above it. */
 const ROOT_TWO: f64 = Math.SQRT2;
 
@@ -74,6 +76,7 @@ export function combineSparse(
   errorSquares = 0;
   mostTerms = 0;
   const complex = im !== 0;
+  let bounded = 0;
   putInt(ptr, 0, 0);
   for (let i = 0; i < rows; i++) {
     rowStart = filled;
@@ -90,11 +93,16 @@ export function combineSparse(
     const ku = ((complex ? terms + 1 : terms) as f64) * UNIT_ROUNDOFF;
     const gamma = (ku / (1 - ku)) * (1 + 4 * UNIT_ROUNDOFF);
     const bound = (complex ? ROOT_TWO : 1) * gamma * moduli;
-    // Where the square underflows it is off by half of what is added; NaN goes on and makes the bound infinite.
-    if (bound !== 0) errorSquares += bound * bound + UNDERFLOW;
+    // NaN, from zero times an infinite norm, goes on and makes the bound infinite.
+    if (bound !== 0) {
+      errorSquares += bound * bound;
+      bounded++;
+    }
     mostTerms = max(mostTerms, terms);
     putInt(ptr, i + 1, filled);
   }
+  // A square that underflows is off by half the smallest positive number at most.
+  errorSquares += (bounded as f64) * UNDERFLOW;
   return filled;
 }
 
@@ -153,7 +161,9 @@ function scatterComplex(
     const k = getInt(aCol, e);
     const x = sign * get(aRe, e);
     const y = aIm === 0 ? 0 : sign * get(aIm, e);
-    moduli += sqrt(x * x + y * y + 4 * UNDERFLOW) * get(norms, k);
+    const square = x * x + y * y;
+    // Where the squares underflow, |re| + |im| bounds the modulus.
+    moduli += (square > SAFE_SQUARE ? sqrt(square) : abs(x) + abs(y)) * get(norms, k);
     const stop = getInt(bPtr, k + 1);
     let f = getInt(bPtr, k);
     if (low > 0) f = firstFrom(f, stop, low, bCol);
@@ -205,16 +215,15 @@ export function productCount(rows: i32, aPtr: usize, aCol: usize, bPtr: usize): 
  */
 export function rowNorms(rows: i32, ptr: usize, re: usize, im: usize, norms: usize): void {
   for (let i = 0; i < rows; i++) {
+    const start = getInt(ptr, i);
     const end = getInt(ptr, i + 1);
     let sum: f64 = 0;
-    for (let e = getInt(ptr, i); e < end; e++) {
+    for (let e = start; e < end; e++) {
       const x = get(re, e);
-      sum += x * x + UNDERFLOW;
-      if (im === 0) continue;
-      const y = get(im, e);
-      sum += y * y + UNDERFLOW;
+      const y = im === 0 ? 0 : get(im, e);
+      sum += x * x + y * y;
     }
-    put(norms, i, sqrt(sum));
+    put(norms, i, sqrt(sum + 2 * ((end - start) as f64) * UNDERFLOW));
   }
 }
 
