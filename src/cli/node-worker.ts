@@ -10,15 +10,16 @@ import type { PoolWorker } from "../numerics/workers.js";
 export function nodeWorker(script: URL = new URL("./kernel-worker.js", import.meta.url)): PoolWorker {
   const worker = new Worker(script);
   worker.unref();
+  let unanswered = 0;
   return {
     post: (request, transfer) => {
-      worker.ref();
+      if (unanswered++ === 0) worker.ref();
       worker.postMessage(request, transfer);
     },
     listen: (onAnswer, onDeath) => {
       let reason: string | undefined;
       worker.on("message", (answer: PoolAnswer) => {
-        worker.unref();
+        if (--unanswered === 0) worker.unref();
         onAnswer(answer);
       });
       worker.on("messageerror", (error) => onDeath(String(error)));

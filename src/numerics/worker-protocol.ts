@@ -1,5 +1,6 @@
 import { type ErrorCode, GoodBasisError } from "../errors.js";
-import { batchedHermitianEigen } from "./eigen/batch.js";
+import { batchedHermitianEigen, batchedHermitianEigenBy, type HermitianEigenBatch } from "./eigen/batch.js";
+import { defaultEngine } from "./eigen/engine.js";
 
 /** What a pool asks of a worker: the eigenpairs of some matrices, laid out as for `batchedHermitianEigen`. */
 export interface PoolRequest {
@@ -7,10 +8,13 @@ export interface PoolRequest {
   readonly re: Float64Array;
   readonly im: Float64Array | undefined;
   readonly upper: "ignore" | "check";
+  /** Where the results go, in memory that both threads share; absent where they are to be sent back. */
+  readonly into: HermitianEigenBatch | undefined;
 }
 
-/** What a worker answers: eigenvalues and eigenvectors, or the error that it met. */
+/** What a worker answers: that the results are written, the results themselves, or the error that it met. */
 export type PoolAnswer =
+  | { readonly written: true }
   | { readonly values: Float64Array; readonly re: Float64Array; readonly im: Float64Array | undefined }
   | {
       readonly error: {
@@ -28,8 +32,13 @@ export type PoolAnswer =
  * @throws what is not a GoodBasisError: a defect, which ends the worker
  */
 export function answerRequest(request: PoolRequest): { answer: PoolAnswer; transfer: ArrayBufferLike[] } {
+  const { orders, upper, into } = request;
   try {
-    const { values, re, im } = batchedHermitianEigen(request.orders, request.re, request.im, { upper: request.upper });
+    if (into !== undefined) {
+      batchedHermitianEigenBy(defaultEngine, orders, request.re, request.im, { upper }, into);
+      return { answer: { written: true }, transfer: [] };
+    }
+    const { values, re, im } = batchedHermitianEigen(orders, request.re, request.im, { upper });
     const transfer = [values.buffer, re.buffer, ...(im === undefined ? [] : [im.buffer])];
     return { answer: { values, re, im }, transfer };
   } catch (error) {

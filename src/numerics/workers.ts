@@ -31,6 +31,7 @@ interface Task {
   readonly first: number;
   readonly orders: Int32Array;
   readonly rowStart: number;
+  readonly rows: number;
   readonly start: number;
   readonly end: number;
 }
@@ -59,6 +60,9 @@ const HELD = 2;
 /**
  * A kept pool of workers that share out independent eigenproblems. Workers are started at first need and kept, since
  * starting one costs as much as a thousand blocks of order twenty.
+ *
+ * Where threads can share memory, matrices are copied there once and results written where they stay: the arrays of a
+ * result then lie in shared memory. Elsewhere they are moved to and fro.
  *
  * The result is the same, bit for bit, with any number of workers and with none: every matrix is solved by the same code,
  * whoever runs it. A worker that dies rejects the batch it worked for, naming the matrices; the next batch gets a new one.
@@ -118,9 +122,9 @@ export class KernelPool {
     return new Promise((resolve, reject) => {
       const out = {
         orders: Int32Array.from(orders),
-        values: new Float64Array(Array.from(orders).reduce((sum, n) => sum + n, 0)),
-        re: new Float64Array(numbers),
-        im: im && new Float64Array(numbers),
+        values: numbersFor(Array.from(orders).reduce((sum, n) => sum + n, 0)),
+        re: numbersFor(numbers),
+        im: im && numbersFor(numbers),
       };
       this.#queue.push({ re, im, options, out, tasks, unfinished: tasks.length, resolve, reject });
       this.#deal();
@@ -151,10 +155,21 @@ export class KernelPool {
       if (seat === undefined) return;
       run.tasks.shift();
       seat.held.push({ run, task });
-      const re = run.re.slice(task.start, task.end);
-      const im = run.im?.slice(task.start, task.end);
-      const transfer = im === undefined ? [re.buffer] : [re.buffer, im.buffer];
-      seat.worker.post({ orders: task.orders, re, im, upper: run.options.upper ?? "ignore" }, transfer);
+      const { orders, rowStart, rows, start, end } = task;
+      const upper = run.options.upper ?? "ignore";
+      if (isShared(run.out.values)) {
+        const part = (m: Float64Array): Float64Array => m.subarray(start, end);
+        const values = run.out.values.subarray(rowStart, rowStart + rows);
+        const into = { orders, values, re: part(run.out.re), im: run.out.im && part(run.out.im) };
+        // Copied part by part, so that the first worker does not wait for the last copy.
+        const matrices = { re: shared(part(run.re)), im: run.im && shared(part(run.im)) };
+        seat.worker.post({ orders, ...matrices, upper, into }, []);
+      } else {
+        const re = run.re.slice(start, end);
+        const im = run.im?.slice(start, end);
+        const transfer = im === undefined ? [re.buffer] : [re.buffer, im.buffer];
+        seat.worker.post({ orders, re, im, upper, into: undefined }, transfer);
+      }
     }
   }
 
@@ -183,9 +198,11 @@ export class KernelPool {
       const { run, task } = done;
       if ("error" in answer) this.#fail(run, shifted(answer.error, task.first));
       else {
-        run.out.values.set(answer.values, task.rowStart);
-        run.out.re.set(answer.re, task.start);
-        if (answer.im !== undefined) run.out.im?.set(answer.im, task.start);
+        if ("values" in answer) {
+          run.out.values.set(answer.values, task.rowStart);
+          run.out.re.set(answer.re, task.start);
+          if (answer.im !== undefined) run.out.im?.set(answer.im, task.start);
+        }
         run.unfinished--;
         if (run.unfinished === 0 && this.#drop(run)) run.resolve(run.out);
       }
@@ -223,6 +240,26 @@ export class KernelPool {
   }
 }
 
+/** Memory that threads may share, where the platform has it: everywhere in Node, in browsers on isolated pages. */
+const Shared: (new (bytes: number) => ArrayBufferLike) | undefined = (
+  globalThis as { readonly SharedArrayBuffer?: new (bytes: number) => ArrayBufferLike }
+).SharedArrayBuffer;
+
+/** Zeros, shared where possible, so that workers write results where they stay. */
+function numbersFor(length: number): Float64Array {
+  return Shared === undefined ? new Float64Array(length) : new Float64Array(new Shared(8 * length));
+}
+
+const isShared = (m: Float64Array): boolean => Shared !== undefined && m.buffer instanceof Shared;
+
+/** A copy that threads may read; the array itself where there is no such memory, or where it lies there already. */
+function shared(m: Float64Array): Float64Array {
+  if (Shared === undefined || isShared(m)) return m;
+  const copy = numbersFor(m.length);
+  copy.set(m);
+  return copy;
+}
+
 /** Rough nanoseconds for one matrix. */
 function costOf(n: number, complex: boolean): number {
   return (complex ? 3 : 1) * (n ** 3 + 10 * n ** 2);
@@ -242,7 +279,7 @@ function split(orders: Int32Array, work: readonly number[], share: number): Task
     row += n;
     at += n * n;
     if (load < share && k < orders.length - 1) return;
-    tasks.push({ first, orders: orders.slice(first, k + 1), rowStart, start, end: at });
+    tasks.push({ first, orders: orders.slice(first, k + 1), rowStart, rows: row - rowStart, start, end: at });
     first = k + 1;
     rowStart = row;
     start = at;

@@ -1,10 +1,10 @@
 import { join } from "node:path";
 import { pathToFileURL } from "node:url";
 import { Worker } from "node:worker_threads";
-import { afterEach, describe, expect, it } from "vitest";
+import { afterEach, describe, expect, it, vi } from "vitest";
 import { batchedHermitianEigen, type HermitianEigenBatch } from "../../src/numerics/eigen/batch.js";
 import { type BrowserWorker, serveWebWorker, webWorker } from "../../src/numerics/web-worker.js";
-import { answerRequest } from "../../src/numerics/worker-protocol.js";
+import { answerRequest, type PoolRequest } from "../../src/numerics/worker-protocol.js";
 import { KernelPool, type PoolWorker, type WorkerFactory } from "../../src/numerics/workers.js";
 import { builtPackage } from "../build.js";
 import { generator } from "./eigen/matrices.js";
@@ -167,6 +167,38 @@ describe("KernelPool", () => {
     expect(pool.running).toBe(0);
   });
 
+  it("moves matrices and results where threads cannot share memory", async () => {
+    vi.resetModules();
+    vi.stubGlobal("SharedArrayBuffer", undefined);
+    const fresh = await import("../../src/numerics/workers.js");
+    vi.unstubAllGlobals();
+    const { orders, re, im } = batch(50);
+    const pool = new fresh.KernelPool({ factory: () => nodeWorker(), size: 2, worthwhile: 0 });
+    const found = await pool.batchedHermitianEigen(orders, re, im);
+    const real = await pool.batchedHermitianEigen(orders, re, undefined);
+    pool.close();
+    expect(bits(found)).toEqual(bits(batchedHermitianEigen(orders, re, im)));
+    expect(bits(real)).toEqual(bits(batchedHermitianEigen(orders, re, undefined)));
+    expect(found.re.buffer).toBeInstanceOf(ArrayBuffer);
+  });
+
+  it("reads matrices where they lie in shared memory already", async () => {
+    const { orders, re } = batch(50);
+    const there = new Float64Array(new SharedArrayBuffer(re.byteLength));
+    there.set(re);
+    const requests: PoolRequest[] = [];
+    const { factory } = later((worker) => ({
+      post: (request, transfer) => {
+        requests.push(request);
+        worker.post(request, transfer);
+      },
+    }));
+    const found = await open(factory, 2).batchedHermitianEigen(orders, there, undefined);
+    expect(bits(found)).toEqual(bits(batchedHermitianEigen(orders, re, undefined)));
+    expect(requests.length).toBeGreaterThan(2);
+    expect(new Set(requests.map((request) => request.re.buffer))).toEqual(new Set([there.buffer]));
+  });
+
   it("refuses a number of workers that is none", () => {
     for (const size of [-1, 0.5, Number.NaN]) {
       expect(() => new KernelPool({ factory: later().factory, size })).toThrow(
@@ -231,18 +263,20 @@ describe("web workers", () => {
 });
 
 describe("the script of a Node worker", () => {
-  it("does not keep a process alive once its work is done", async () => {
+  it("keeps a process alive while it works, and no longer", async () => {
     const pool = join(builtPackage, "numerics/workers.js");
     const node = join(builtPackage, "cli/node-worker.js");
     const code = `
       import { KernelPool } from ${JSON.stringify(pathToFileURL(pool).href)};
       import { nodeWorker } from ${JSON.stringify(pathToFileURL(node).href)};
       const pool = new KernelPool({ factory: () => nodeWorker(), size: 1, worthwhile: 0 });
-      const { values } = await pool.batchedHermitianEigen([3], new Float64Array(9).fill(1), undefined);
-      if (Math.abs(values[2] - 3) > 1e-14) throw new Error("wrong");
+      const { values } = await pool.batchedHermitianEigen(Array(40).fill(3), new Float64Array(360).fill(1), undefined);
+      if (Math.abs(values[119] - 3) > 1e-14) throw new Error("wrong");
+      process.exitCode = 7;
     `;
     const worker = new Worker(new URL(`data:text/javascript,${encodeURIComponent(code)}`));
     const exit = await new Promise((resolve) => worker.on("exit", resolve));
-    expect(exit).toBe(0);
+    // Reached the end, and only then.
+    expect(exit).toBe(7);
   });
 });

@@ -40,8 +40,14 @@ export function batchedHermitianEigen(
 }
 
 /**
- * {@link batchedHermitianEigen} by a given engine.
+ * {@link batchedHermitianEigen} by a given engine, into given arrays.
  *
+ * @param engine - the WebAssembly kernels or their plain twin
+ * @param orders - as there
+ * @param re - as there
+ * @param im - as there
+ * @param options - as there
+ * @param into - receives the results; made where absent
  * @throws as there
  * @internal
  */
@@ -51,6 +57,7 @@ export function batchedHermitianEigenBy(
   re: Float64Array,
   im: Float64Array | undefined,
   options: Pick<EigenOptions, "upper"> = {},
+  into?: HermitianEigenBatch,
 ): HermitianEigenBatch {
   const count = orders.length;
   let rows = 0;
@@ -65,7 +72,7 @@ export function batchedHermitianEigenBy(
     const got = `${re.length}${im === undefined ? "" : ` and ${im.length}`}`;
     throw shapeError(`expected ${numbers} numbers for ${count} matrices of the given orders, got ${got}`);
   }
-  const out = {
+  const out = into ?? {
     orders: Int32Array.from(orders),
     values: new Float64Array(rows),
     re: new Float64Array(numbers),
