@@ -65,6 +65,27 @@ describe.each(ENGINES)("productDense and commutatorDense by %s", (_, engine) => 
     }
   });
 
+  it("come close to the error in the worst of many small products, so that a smaller constant would be caught", () => {
+    const closest = (n: number, complex: boolean, run: typeof productDenseBy, signs: readonly number[]): number => {
+      let most = 0;
+      for (let seed = 1; seed <= 400; seed++) {
+        const [a, b] = [random(n, complex, seed), random(n, complex, seed + 1000)];
+        const { value, error } = run(engine, a, b);
+        const terms = signs.map((sign, k): [number, Square, Square] => (k === 0 ? [sign, a, b] : [sign, b, a]));
+        const ratio = distance(n, terms, value) / error;
+        expect(ratio).toBeLessThanOrEqual(1);
+        most = Math.max(most, ratio);
+      }
+      return most;
+    };
+    expect(closest(1, false, productDenseBy, [1])).toBeGreaterThan(0.9);
+    expect(closest(2, false, productDenseBy, [1])).toBeGreaterThan(0.5);
+    expect(closest(1, true, productDenseBy, [1])).toBeGreaterThan(0.08);
+    expect(closest(2, true, productDenseBy, [1])).toBeGreaterThan(0.04);
+    expect(closest(2, false, commutatorDenseBy, [1, -1])).toBeGreaterThan(0.3);
+    expect(closest(2, true, commutatorDenseBy, [1, -1])).toBeGreaterThan(0.04);
+  });
+
   it("hold where one factor is huge and its partner tiny, where products cancel, and where they underflow", () => {
     const n = 6;
     for (const [big, small] of [

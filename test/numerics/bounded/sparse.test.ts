@@ -69,6 +69,36 @@ describe.each(KERNELS)("sparse products and commutators by %s", (_, { product, c
     }
   });
 
+  it("come close to their bounds in the worst of many small cases, so that a smaller constant would be caught", () => {
+    const closest = (n: number, complex: boolean, run: (a: Csr, b: Csr) => Bounded<Csr>, both: boolean): number => {
+      let most = 0;
+      for (let seed = 1; seed <= 300; seed++) {
+        const [a, b] = [random(n, n, 1, complex, seed), random(n, n, 1, complex, seed + 1000)];
+        const { value, error } = run(a, b);
+        const [x, y] = [toDense(a), toDense(b)];
+        const off = distance(
+          n,
+          both
+            ? [
+                [1, x, y],
+                [-1, y, x],
+              ]
+            : [[1, x, y]],
+          toDense(value),
+        );
+        expect(off).toBeLessThanOrEqual(error);
+        most = Math.max(most, off / error);
+      }
+      return most;
+    };
+    expect(closest(1, false, product, false)).toBeGreaterThan(0.9);
+    expect(closest(2, false, product, false)).toBeGreaterThan(0.5);
+    expect(closest(1, true, product, false)).toBeGreaterThan(0.5);
+    expect(closest(2, true, product, false)).toBeGreaterThan(0.25);
+    expect(closest(2, false, commutator, true)).toBeGreaterThan(0.25);
+    expect(closest(2, true, commutator, true)).toBeGreaterThan(0.12);
+  });
+
   it("stay inside them with a diagonal matrix, with tiny numbers and with rows of very different size", () => {
     const n = 6;
     const next = generator(4);
