@@ -1,3 +1,4 @@
+import { Fraction } from "fraction.js";
 import { GoodBasisError } from "../errors.js";
 
 /**
@@ -109,26 +110,17 @@ function nearestMember(
 }
 
 function fraction(numerator: number, denominator: number): FamilyMember {
-  let a = Math.abs(numerator);
-  let b = denominator;
-  while (b !== 0) [a, b] = [b, a % b];
-  const p = numerator / (a || 1);
-  const q = denominator / (a || 1);
-  const sign = p < 0 ? "−" : "";
-  const digits = q === 1 ? String(Math.abs(p)) : `${Math.abs(p)}/${q}`;
-  return { re: p === 0 ? 0 : p / q, im: 0, text: `${sign}${digits}` };
+  const reduced = new Fraction(numerator, denominator);
+  return { re: reduced.valueOf(), im: 0, text: reduced.toFraction().replace("-", "−") };
 }
 
 function rootMember(k: number, order: number): FamilyMember {
-  let a = k;
-  let b = order;
-  while (b !== 0) [a, b] = [b, a % b];
-  const p = k / (a || 1);
-  const q = order / (a || 1);
-  const angle = (2 * Math.PI * p) / q;
-  if (q === 1 || p === 0) return { re: 1, im: 0, text: "+1" };
+  const turn = new Fraction(k, order);
+  const [p, q] = [Number(turn.n), Number(turn.d)];
+  if (q === 1) return { re: 1, im: 0, text: "+1" };
   if (q === 2) return { re: -1, im: 0, text: "−1" };
   if (q === 4) return p === 1 ? { re: 0, im: 1, text: "+i" } : { re: 0, im: -1, text: "−i" };
+  const angle = (2 * Math.PI * p) / q;
   return { re: Math.cos(angle), im: Math.sin(angle), text: `exp(2πi·${p}/${q})` };
 }
 

@@ -161,7 +161,9 @@ function countRuns(ledger: Ledger, certificate: Certificate, problem: OwnProblem
     if (!countable) continue;
     const states = levels.slice(a, b + 1).reduce((sum, level) => sum + level.states.length, 0);
     const end = (edge: number, gap: number | null, sign: number, open: number): number | undefined =>
-      gap === null ? undefined : edge + sign * Math.max(0, gap - 2 * whole.energyEnclosure) * (1 + open);
+      gap === null
+        ? undefined
+        : edge + sign * Math.max(0, gap + Math.sign(open) * 2 * whole.energyEnclosure) * (1 + open);
     const from = end(bottom(low), low.gapBelow, -1, -OPEN);
     const to = end(top(high), high.gapAbove, 1, -OPEN);
     const lower = from === undefined ? { below: 0, error: 0 } : spectrum.count(from);

@@ -83,8 +83,8 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
   return { bounds };
 }
 
-/** How much of V the commutators may leave between different labels. */
-function leak({ candidates, certificate, problem, level }: NodeCase, p: number): number {
+/** How much of one perturbation its commutators and the overlaps may leave between different labels. */
+export function leak({ candidates, certificate, problem, level }: NodeCase, p: number): number {
   let sum = 0;
   candidates.forEach((candidate, place) => {
     if (candidate.role !== "conserved") return;

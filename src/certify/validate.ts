@@ -1,3 +1,4 @@
+import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
@@ -189,7 +190,7 @@ function readClaim(candidate: PreparedCandidate, value: ClaimedLabel, column: nu
   if (typeof value !== "string") return value;
   const match = /^([+-]?)(\d+)(?:\/(\d+))?$/.exec(value.trim().replace("−", "-"));
   if (match === null || Number(match[3] ?? 1) === 0) throw bad();
-  const number = ((match[1] === "-" ? -1 : 1) * Number(match[2])) / Number(match[3] ?? 1);
+  const number = new Fraction(match[0]).valueOf();
   return { re: candidate.label === "j" ? number * (number + 1) : number, im: 0 };
 }
 

@@ -61,11 +61,13 @@ export const someText: Shape<string> = v.pipe(
   v.minLength(1, "text that is not empty"),
 );
 
+const NUMBER_FORM = 'a number, [re, im] or text such as "1+2i"';
+
 /** A real or complex number. */
 export const fileNumber: Shape<FileNumber> = v.pipe(
   v.union(
-    [v.number(), v.tuple([v.number(), v.number()]), v.pipe(v.string(), v.regex(COMPLEX_TEXT))],
-    'a number, [re, im] or text such as "1+2i"',
+    [v.number(NUMBER_FORM), v.tuple([v.number(), v.number()]), v.pipe(v.string(), v.regex(COMPLEX_TEXT, NUMBER_FORM))],
+    NUMBER_FORM,
   ),
   v.description('A real number, [re, im], or text such as "1+2i".'),
 );

@@ -166,5 +166,18 @@ export function conform<T>(schema: Shape<T>, place: Place, value: unknown): T {
   const [issue] = result.issues;
   const keys = (issue.path ?? []).map(({ key }) => (typeof key === "number" ? key : String(key)));
   const next = "goodbasis/problem-schema.json describes the format";
-  throw fileError(inside(place, ...keys), issue.message, showValue(issue.input), next);
+  throw fileError(inside(place, ...keys), expectation(issue), showValue(issue.input), next);
+}
+
+const PLAIN: Readonly<Record<string, string>> = {
+  Array: "a list",
+  Object: "an object",
+  string: "text",
+  number: "a number",
+};
+
+/** The custom message, which is a phrase, or what the schema says of itself. */
+function expectation({ message, expected }: v.BaseIssue<unknown>): string {
+  if (!message.startsWith("Invalid ")) return message;
+  return PLAIN[expected ?? ""] ?? expected ?? message;
 }
