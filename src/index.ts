@@ -28,6 +28,7 @@ export type {
 export type { GoodBasis } from "./certify/good-basis.js";
 export type { GuardFinding, GuardOptions, GuardSetting, LevelGuard, SectorGuard } from "./certify/guard.js";
 export type { GoodOutcome, NotGoodOutcome, Outcome, UndecidedOutcome } from "./certify/outcome.js";
+export { type RecheckFinding, type RecheckReport, recheck } from "./certify/recheck.js";
 export type { Repair } from "./certify/repair.js";
 export type { SafeOrders } from "./certify/safe-orders.js";
 export type { Progress } from "./certify/study.js";
@@ -60,8 +61,17 @@ export type { MatrixData, RealEntries, Triplet, Uncertainty } from "./operator/r
 export type { HermitianDefect } from "./operator/structure.js";
 export type { Bounded } from "./perturb/bounded.js";
 export { type Perturbation, type PerturbedState, type PerturbOptions, perturb } from "./perturb/perturb.js";
+export { type ReadProblem, type ReadProblemOptions, readProblem } from "./problem/read.js";
+export { type ReadBasis, type ReadBasisOptions, readBasis } from "./problem/read-basis.js";
 export type { LabelStatus, StateLabel } from "./refine/label.js";
 export type { LevelChoice } from "./refine/levels.js";
 export type { Depth } from "./refine/resolve.js";
 export type { NodeKind, PathStep, TreeNode } from "./refine/tree.js";
+export type { BasisColumn } from "./report/basis-columns.js";
+export { type BasisTableOptions, basisTable } from "./report/basis-table.js";
+export { type FormatAuditOptions, formatAudit } from "./report/format-audit.js";
+export { type FormatOutcomeOptions, formatOutcome } from "./report/format-outcome.js";
+export { formatRecheck } from "./report/format-recheck.js";
+export { type FormatTableOptions, formatTable, type TableFormat } from "./report/format-table.js";
+export type { Cell, Expansion, ExpansionTerm, Table, TableColumn, TableRow } from "./report/table.js";
 export { VERSION } from "./version.js";

@@ -114,10 +114,13 @@ export function auditPrepared(problem: PreparedProblem, resolution: number): Aud
 
 function explain(finding: CommutatorFinding): string {
   return finding.verdict === "broken"
-    ? `does not commute with ${finding.right}: ${size(finding)}`
+    ? `does not commute with ${finding.right}: ${size(finding)}${finding.edge ? EDGE_REMARK : ""}`
     : `whether it commutes with ${finding.right} is undecided: ${size(finding)}; ` +
         "smaller entry uncertainties or a coarser resolution would decide it";
 }
+
+const EDGE_REMARK =
+  "; only the last kets are concerned, a likely edge of a truncated space: build its matrix elements exactly, or enlarge it";
 
 function size(finding: CommutatorFinding): string {
   const worst = finding.largest[0];

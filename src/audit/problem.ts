@@ -124,7 +124,7 @@ function hermitian(name: string, operator: Operator): Operator {
 
 function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
   if (isMatrixInput(v)) return [{ name: "V", operator: hermitian("V", sameSize("V", read("V", v), n)) }];
-  const entries = Object.entries(v);
+  const entries = typeof v === "object" && v !== null ? Object.entries(v) : [];
   if (entries.length === 0) {
     throw new GoodBasisError("option", "no perturbation was given; pass v: matrix, or v: { name: matrix }", {});
   }
@@ -138,7 +138,7 @@ function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
 }
 
 function readCandidate(name: string, input: MatrixInput | Candidate, n: number): PreparedCandidate {
-  const given: Candidate = isMatrixInput(input) ? { operator: input } : input;
+  const given: Candidate = isMatrixInput(input) ? { operator: input } : (input ?? { operator: input });
   let operator = sameSize(name, read(name, given.operator), n);
   const kind = operator.kind;
   if (kind === "general") {
@@ -170,6 +170,9 @@ function checkName(what: string, name: string): void {
 }
 
 function checkKets(kets: readonly string[], n: number): readonly string[] {
+  if (!Array.isArray(kets)) {
+    throw new GoodBasisError("shape", `kets is no list; give an array of ${n} names`, { expected: n });
+  }
   if (kets.length !== n) {
     throw new GoodBasisError("shape", `kets lists ${kets.length} names but H0 is ${n} × ${n}; name every ket once`, {
       expected: n,
@@ -177,7 +180,7 @@ function checkKets(kets: readonly string[], n: number): readonly string[] {
     });
   }
   const seen = new Map<string, number>();
-  kets.forEach((ket, i) => {
+  [...kets].forEach((ket, i) => {
     if (typeof ket !== "string" || ket.trim() === "") {
       throw new GoodBasisError("name", `ket ${i} has an empty name; name every ket`, { ket: i });
     }

@@ -3,8 +3,8 @@ import { smallerGap } from "./recheck-bounds.js";
 import type { Sector } from "./recheck-intermediate.js";
 import type { OwnLevel } from "./recheck-level.js";
 import type { OwnProblem } from "./recheck-operators.js";
-import type { Ledger } from "./recheck-report.js";
 import { type OwnRatios, ratiosOf } from "./recheck-ratios.js";
+import type { Ledger } from "./recheck-report.js";
 
 /** Checks the denominators guard of one level: that it agrees with itself and, with all levels at hand, with an own evaluation. */
 export function checkGuard(
@@ -41,7 +41,9 @@ export function checkGuard(
     }
     guard.sectors.forEach((claimed, k) => {
       if (claimed.perturbation !== v.name) return;
-      const at = open.findIndex((part) => agree(part.first, claimed.first.ratio) && agree(part.second, claimed.second.ratio));
+      const at = open.findIndex(
+        (part) => agree(part.first, claimed.first.ratio) && agree(part.second, claimed.second.ratio),
+      );
       const part = open[at];
       ledger.claim(
         part !== undefined,
@@ -92,7 +94,11 @@ function checkItself(
 ): void {
   const { guard } = level;
   ledger.claim(guard.lambda > 0, `${path}.lambda`, () => `λ is ${guard.lambda}, not positive`);
-  ledger.claim(guard.refuseAbove > 0, `${path}.refuseAbove`, () => `the threshold is ${guard.refuseAbove}, not positive`);
+  ledger.claim(
+    guard.refuseAbove > 0,
+    `${path}.refuseAbove`,
+    () => `the threshold is ${guard.refuseAbove}, not positive`,
+  );
   const other = certificate.levels[0]?.guard ?? guard;
   ledger.claim(
     guard.lambda === other.lambda && guard.stated === other.stated && guard.refuseAbove === other.refuseAbove,
@@ -119,7 +125,11 @@ function checkItself(
   );
   const outside = guard.sectors.reduce((most, s) => Math.max(most, s.first.ratio, s.second.ratio), 0);
   const inside = guard.sectors.reduce((most, s) => Math.max(most, s.inside?.ratio ?? 0), 0);
-  ledger.claim(guard.outside === outside, `${path}.outside`, () => `claimed ${guard.outside}, its sectors say ${outside}`);
+  ledger.claim(
+    guard.outside === outside,
+    `${path}.outside`,
+    () => `claimed ${guard.outside}, its sectors say ${outside}`,
+  );
   ledger.claim(guard.inside === inside, `${path}.inside`, () => `claimed ${guard.inside}, its sectors say ${inside}`);
   ledger.claim(
     guard.radius.length === names.length,

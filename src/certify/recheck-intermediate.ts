@@ -79,12 +79,20 @@ function sectorsByLabel(
   problem.candidates.forEach((candidate, place) => {
     if (candidates[place]?.role !== "conserved") return;
     const labels = certificate.levels.flatMap((level) =>
-      level.states.map((state) => (Object.hasOwn(state.labels, candidate.name) ? state.labels[candidate.name] : undefined)),
+      level.states.map((state) =>
+        Object.hasOwn(state.labels, candidate.name) ? state.labels[candidate.name] : undefined,
+      ),
     );
     if (labels.some((label) => label === undefined || label.status === "not sharp")) return;
     const width = 2 ** -30 * candidate.norm;
-    const re = clusters(labels.map((label) => label?.re ?? 0), width);
-    const im = clusters(labels.map((label) => label?.im ?? 0), width);
+    const re = clusters(
+      labels.map((label) => label?.re ?? 0),
+      width,
+    );
+    const im = clusters(
+      labels.map((label) => label?.im ?? 0),
+      width,
+    );
     const numbers = new Map<string, number>();
     sector = sector.map((old, s) => {
       const key = `${old} ${re[s]} ${im[s]}`;

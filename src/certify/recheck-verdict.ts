@@ -38,7 +38,8 @@ export function checkLevelVerdict(
       ledger.claim(
         bound <= threshold,
         path,
-        () => `claimed good, but elements of ${v.name} inside the level are only bounded by ${bound}, above ${threshold}`,
+        () =>
+          `claimed good, but elements of ${v.name} inside the level are only bounded by ${bound}, above ${threshold}`,
       );
     }
     if (level.verdict !== "not good") {
@@ -50,7 +51,11 @@ export function checkLevelVerdict(
     }
   });
   if (level.verdict === "not good") {
-    ledger.claim(coupled, path, () => "claimed not good, but no element inside the level is certainly above the resolution");
+    ledger.claim(
+      coupled,
+      path,
+      () => "claimed not good, but no element inside the level is certainly above the resolution",
+    );
   } else {
     const verdict = level.questions.length === 0 ? "good" : "undecided";
     ledger.claim(
@@ -130,7 +135,8 @@ function splitting(level: CertifiedLevel, _own: OwnLevel): CertifiedLevel["nodes
 function merged(problem: OwnProblem, level: CertifiedLevel, own: OwnLevel): boolean | undefined {
   if (level.guard.stated || splitting(level, own).length === 0) return false;
   const { h0 } = problem;
-  const rounding = LEVEL_WIDTH * h0.operator.norm + 32 * h0.operator.error + 8 * Math.sqrt(problem.n) * 2 ** -53 * h0.operator.norm;
+  const rounding =
+    LEVEL_WIDTH * h0.operator.norm + 32 * h0.operator.error + 8 * Math.sqrt(problem.n) * 2 ** -53 * h0.operator.norm;
   const spread = new Map<number, { low: number; high: number }>();
   own.tree.labelGroup.forEach((group, state) => {
     const energy = own.h0.diagonal[state] as number;

@@ -34,7 +34,13 @@ export function checkWhole(
   );
   const enclosure =
     whole.energyResidual * (1 + whole.orthonormality) + 2 * h0.operator.norm * whole.orthonormality + h0.operator.error;
-  ledger.near("whole.energyEnclosure", "the enclosure of every energy", whole.energyEnclosure, enclosure, 1e-9 * enclosure);
+  ledger.near(
+    "whole.energyEnclosure",
+    "the enclosure of every energy",
+    whole.energyEnclosure,
+    enclosure,
+    1e-9 * enclosure,
+  );
   const step = own.reduce((most, level) => Math.max(most, level.orthonormality.tight), 0);
   const seen = own.reduce((most, level) => Math.max(most, level.orthonormalityAtLeast), 0);
   ledger.claim(
@@ -43,12 +49,23 @@ export function checkWhole(
     () => `claimed to be at most ${whole.orthonormality}, but an overlap inside a level is off by ${seen}`,
   );
   ledger.claim(whole.orthonormality < 0.5, "whole.orthonormality", () => `claimed ${whole.orthonormality}: no basis`);
-  const eta = (path: string, norm: number, of: (c: OwnCandidate) => OwnCommutator | undefined, element: number): void => {
+  const eta = (
+    path: string,
+    norm: number,
+    of: (c: OwnCandidate) => OwnCommutator | undefined,
+    element: number,
+  ): void => {
     const claimed = path === "whole.eta0" ? whole.eta0 : (whole.eta[Number(path.slice("whole.eta[".length, -1))] ?? 0);
     const { low, high } = modelDistance(certificate, problem, candidates, residuals, norm, of);
     const everywhere = isWhole(certificate);
     const least = Math.max(everywhere ? low : 0, 2 * norm * whole.orthonormality);
-    ledger.bound(path, "the distance to an exactly symmetric model", claimed, least, everywhere ? high : Number.POSITIVE_INFINITY);
+    ledger.bound(
+      path,
+      "the distance to an exactly symmetric model",
+      claimed,
+      least,
+      everywhere ? high : Number.POSITIVE_INFINITY,
+    );
     ledger.claim(
       claimed >= element,
       path,
@@ -98,10 +115,15 @@ function modelDistance(
       level.states.map((state) => (Object.hasOwn(state.labels, name) ? state.labels[name] : undefined)),
     );
     const sharp = labels.filter((label) => label !== undefined && label.status !== "not sharp");
-    const apart = smallestApart(sharp.map((label) => [label?.re ?? 0, label?.im ?? 0] as const), 2 ** -30 * size);
+    const apart = smallestApart(
+      sharp.map((label) => [label?.re ?? 0, label?.im ?? 0] as const),
+      2 ** -30 * size,
+    );
     const bound = of(candidate)?.frobeniusBound ?? 0;
     if (apart < Number.POSITIVE_INFINITY) {
-      high += (bound * (1 + epsilon) + 2 * norm * (rootSum(own.loose) + certificate.n * productRounding(certificate.n))) / apart;
+      high +=
+        (bound * (1 + epsilon) + 2 * norm * (rootSum(own.loose) + certificate.n * productRounding(certificate.n))) /
+        apart;
     }
     const gaps = certificate.levels.flatMap((level) =>
       level.nodes.filter((node) => node.kind === "label" && node.operator === name).map((node) => node.gap),
@@ -117,7 +139,9 @@ function modelDistance(
 
 /** Smallest distance above `width` between two of the points; both coordinates sorted into clusters first. */
 function smallestApart(points: readonly (readonly [number, number])[], width: number): number {
-  const distinct = [...new Map(points.map((point) => [`${point[0]} ${point[1]}`, point])).values()].sort((a, b) => a[0] - b[0]);
+  const distinct = [...new Map(points.map((point) => [`${point[0]} ${point[1]}`, point])).values()].sort(
+    (a, b) => a[0] - b[0],
+  );
   let least = Number.POSITIVE_INFINITY;
   for (let k = 0; k < distinct.length; k++) {
     for (let j = k + 1; j < distinct.length; j++) {

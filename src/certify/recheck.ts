@@ -1,4 +1,4 @@
-import { prepareProblem, type Problem } from "../audit/problem.js";
+import { type Problem, prepareProblem } from "../audit/problem.js";
 import { GoodBasisError } from "../errors.js";
 import type { Certificate } from "./certificate-format.js";
 import { checkBounds } from "./recheck-bounds.js";
@@ -58,7 +58,11 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
   const prepared = prepareProblem(problem);
   const own = ownProblem(prepared);
   const ledger = new Ledger();
-  requireSameNames(claims, [own.h0, ...own.perturbations, ...own.candidates].map((x) => x.name), own.n);
+  requireSameNames(
+    claims,
+    [own.h0, ...own.perturbations, ...own.candidates].map((x) => x.name),
+    own.n,
+  );
   checkSeals(ledger, claims);
   checkOperators(ledger, claims, [own.h0, ...own.perturbations, ...own.candidates], own.perturbations.length);
   ledger.claim(
@@ -123,20 +127,18 @@ function checkSeals(ledger: Ledger, claims: Certificate): void {
   const expected = computeSeals(claims);
   for (const [section, seal] of Object.entries(expected)) {
     const claimed = Object.hasOwn(claims.seals, section) ? claims.seals[section] : undefined;
-    ledger.claim(
-      claimed === seal,
-      section,
-      () =>
-        claimed === undefined
-          ? "this section has no seal: its seal was removed, or the section was added after writing"
-          : "this section does not agree with its seal: one of the two was altered after writing",
+    ledger.claim(claimed === seal, section, () =>
+      claimed === undefined
+        ? "this section has no seal: its seal was removed, or the section was added after writing"
+        : "this section does not agree with its seal: one of the two was altered after writing",
     );
   }
   for (const section of Object.keys(claims.seals)) {
     ledger.claim(
       Object.hasOwn(expected, section),
       Object.hasOwn(expected, section) ? section : "seals",
-      () => `there is a seal for "${section}", but no such section: it was removed after writing, or the seal was added`,
+      () =>
+        `there is a seal for "${section}", but no such section: it was removed after writing, or the seal was added`,
     );
   }
 }
@@ -159,7 +161,8 @@ function checkOperators(
     ledger.claim(
       claimed.hash === hash,
       `operators[${k}].hash`,
-      () => `${claimed.name} is not the operator that the certificate was written for: claimed ${claimed.hash}, found ${hash}`,
+      () =>
+        `${claimed.name} is not the operator that the certificate was written for: claimed ${claimed.hash}, found ${hash}`,
     );
   });
 }

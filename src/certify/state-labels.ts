@@ -111,8 +111,9 @@ export function nameLabels(
     ...nodes.filter((node) => node.kind === "label" && node.operator === candidate.name).flatMap((node) => node.values),
     ...numbers.filter((entry) => !entry.onPath && sharp(entry)).map((entry) => entry.value),
   ];
+  const all = numbers.every((entry) => entry.onPath || sharp(entry));
   const widest = numbers.reduce((most, entry) => (sharp(entry) ? Math.max(most, entry.radius) : most), 0);
-  const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm);
+  const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm, all);
   return numbers.map((entry) =>
     entry.onPath || sharp(entry)
       ? sharpLabel(family, entry.value, entry.radius, role)

@@ -23,7 +23,7 @@ export function invariance(frame: Csr, operator: Operator): Invariance {
   const matrix = multiply(conjugate(frame), images);
   const all = frobenius(images);
   const inside = frobenius(matrix);
-  const leak = Math.sqrt(Math.max(0, (all - inside) * (all + inside)));
+  const leak = Math.sqrt(Math.max(0, all - inside)) * Math.sqrt(all + inside);
   // the difference of squares loses half the digits; 2^−18 of the norm is well above that and well below any real leak
   return { invariant: leak <= Math.sqrt(LABEL_WIDTH) * operator.norm, matrix };
 }

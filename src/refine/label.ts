@@ -36,14 +36,15 @@ export interface LabelFamily {
   readonly declared: boolean;
 }
 
-/** Picks the family of one operator from all its eigenvalues and a bound on their errors. */
+/** Picks the family of one operator from its eigenvalues (all of them, or some) and a bound on their errors. */
 export function labelFamily(
   declared: LabelDeclaration | undefined,
   values: readonly Complex[],
   radius: number,
+  all = true,
 ): LabelFamily {
   if (declared !== undefined) return { family: declared, declared: true };
-  return { family: recogniseFamily(values, radius), declared: false };
+  return { family: recogniseFamily(values, radius, all), declared: false };
 }
 
 /** Names an eigenvalue known to lie within `radius` of `value`. */
@@ -70,7 +71,7 @@ export function vagueLabel(value: Complex, deviation: number, role: StateLabel["
 
 /** A complex number to six digits, with the trade's minus sign. */
 export function numberText(value: Complex): string {
-  const part = (x: number): string => String(Number(x.toPrecision(6))).replace("-", "−");
+  const part = (x: number): string => String(Number(x.toPrecision(6))).replaceAll("-", "−");
   const small = 1e-12 * Math.hypot(value.re, value.im);
   if (Math.abs(value.im) <= small) return part(value.re);
   if (Math.abs(value.re) <= small) return `${part(value.im)}i`;

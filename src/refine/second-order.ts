@@ -124,7 +124,7 @@ function outgoing(
       bare += square;
       weighted += square * weight * weight;
     }
-    scale = Math.max(scale, Math.sqrt(bare * weighted));
+    scale = Math.max(scale, Math.sqrt(bare) * Math.sqrt(weighted));
   }
   const shape = { rows, cols: columns.length, ptr, col };
   return { bare: { ...shape, re, im }, scaled: { ...shape, re: scaledRe, im: scaledIm }, columns, scale };

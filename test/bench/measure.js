@@ -1,5 +1,5 @@
 /**
- * Least time of each task over several rounds; in every round all tasks run one after the other, so that a slow moment of the
+ * Least processor time of each task over several rounds; in every round all tasks run one after the other, so that a slow moment of the
  * machine meets them alike.
  *
  * @param {readonly (() => () => void)[]} tasks - each prepares, not timed, and returns what is timed
@@ -17,7 +17,8 @@ export function interleaved(tasks, rounds) {
 }
 
 /**
- * Time of one run, after collecting what earlier ones left.
+ * Processor time of one run, after collecting what earlier ones left. It counts all threads of the process, so that memory
+ * collected on a second core is not had for nothing, and not what else the machine does meanwhile.
  *
  * @param {() => () => void} prepare - prepares, not timed, and returns what is timed
  * @returns {number} milliseconds
@@ -25,9 +26,10 @@ export function interleaved(tasks, rounds) {
 export function once(prepare) {
   const run = prepare();
   globalThis.gc?.();
-  const begun = performance.now();
+  const begun = process.cpuUsage();
   run();
-  return performance.now() - begun;
+  const { user, system } = process.cpuUsage(begun);
+  return (user + system) / 1000;
 }
 
 /**

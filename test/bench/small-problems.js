@@ -42,7 +42,12 @@ export function doublet(seed) {
   const spin = { z: space.embed(s.z, 1), plus: space.embed(s.plus, 1), minus: space.embed(s.minus, 1) };
   const turn = orbit.plus.times(spin.minus).plus(orbit.minus.times(spin.plus)).scale(0.5);
   return {
-    h0: rows(orbit.z.times(spin.z).plus(turn).scale(2 + draw())),
+    h0: rows(
+      orbit.z
+        .times(spin.z)
+        .plus(turn)
+        .scale(2 + draw()),
+    ),
     v: rows(orbit.z.plus(spin.z.scale(2)).scale(2 + draw())),
     candidates: {
       Jz: rows(orbit.z.plus(spin.z)),

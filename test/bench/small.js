@@ -51,8 +51,8 @@ export function smallProblems({ quick }) {
     ["problem", "n", "time", "per second", "goal", "growth", "verdict", "levels"],
     cells,
     [
-      `One thread; ${POOL} different problems of each kind in turn, given as plain arrays; least mean of a batch over`,
-      "interleaved rounds, after warm-up.",
+      `${POOL} different problems of each kind in turn, given as plain arrays; least mean of a batch over interleaved rounds,`,
+      "after warm-up. Times are processor times of all threads together: what one core would take.",
     ],
   );
 }

@@ -18,12 +18,12 @@ const fineStructure = (): Problem => {
   const l = angularMomentum(1);
   const s = angularMomentum(1 / 2);
   const space = productSpace([l.n, s.n]);
-  const lx = space.on(0, l.x);
-  const ly = space.on(0, l.y);
-  const lz = space.on(0, l.z);
-  const sx = space.on(1, s.x);
-  const sy = space.on(1, s.y);
-  const sz = space.on(1, s.z);
+  const lx = space.embed(l.x, 0);
+  const ly = space.embed(l.y, 0);
+  const lz = space.embed(l.z, 0);
+  const sx = space.embed(s.x, 1);
+  const sy = space.embed(s.y, 1);
+  const sz = space.embed(s.z, 1);
   const jx = lx.plus(sx);
   const jy = ly.plus(sy);
   const jz = lz.plus(sz);
@@ -203,8 +203,20 @@ export const CASES: Readonly<Record<string, Case>> = {
         [0, 0.1, 0],
       ],
     },
-    options: { levelWidth: 1e-7, lambda: 1 },
+    options: { levelWidth: 1e-7, lambda: 0.1 },
     verdict: "good",
+  },
+  "a merged level, λ too large": {
+    problem: {
+      h0: { diagonal: [0, 1e-9, 1] },
+      v: [
+        [0, 1e-3, 0],
+        [1e-3, 0, 0.1],
+        [0, 0.1, 0],
+      ],
+    },
+    options: { levelWidth: 1e-7, lambda: 1 },
+    verdict: "undecided",
   },
   "a near-degeneracy": {
     problem: {

@@ -52,7 +52,7 @@ describe("matrices of a problem file", () => {
       'file: p.json, line 4, h0: expected the number of kets, from "n" here, or "n", "space" or "kets" of the file, got none of these',
     );
     expect(errorOf(() => h0Of({ n: 1, triplets }))).toMatch(
-      /^file: p.json, line 9, h0.triplets\[0\]: expected row and col/,
+      /^file: p.json, line 7, h0.triplets\[0\]: expected row and col/,
     );
     expect(errorOf(() => h0Of({ n: 2, triplets, radii: [0, 0, 0] }))).toContain("every place once, as radii are given");
   });
@@ -166,20 +166,20 @@ describe("matrices of a problem file", () => {
           [3, 4],
         ]),
       ),
-    ).toBe('file: p.json, line 9, h0[0][1]: expected a finite number, [re, im] or text such as "1+2i", got "x"');
+    ).toBe('file: p.json, line 7, h0[0][1]: expected a finite number, [re, im] or text such as "1+2i", got "x"');
     expect(errorOf(() => h0Of({ diagonal: [1, null] }))).toMatch(
-      /^file: p.json, line 9, h0.diagonal\[1\]: .*got null$/,
+      /^file: p.json, line 7, h0.diagonal\[1\]: .*got null$/,
     );
     expect(errorOf(() => h0Of({ diag: [1] }))).toMatch(
-      /^file: p.json, line 6, h0: expected a matrix: .*got \{"diag":\[1\]\}/,
+      /^file: p.json, line 4, h0: expected a matrix: .*got \{"diag":\[1\]\}/,
     );
     expect(errorOf(() => h0Of({ diagonal: [1], rows: [[1]] }))).toMatch(/one of rows, triplets/);
     expect(errorOf(() => h0Of({ diagonal: [1], n: 1 }))).toMatch(
-      /^file: p.json, line 10, h0.n: expected no other fields than diagonal, on, uncertainty, got 1/,
+      /^file: p.json, line 8, h0.n: expected no other fields than diagonal, on, uncertainty, got 1/,
     );
-    expect(errorOf(() => h0Of({ permutation: [0, 0] }))).toMatch(/^shape: p.json, line 6, h0: .*0 occurs twice/);
+    expect(errorOf(() => h0Of({ permutation: [0, 0] }))).toMatch(/^shape: p.json, line 4, h0: .*0 occurs twice/);
     expect(errorOf(() => h0Of({ diagonal: [1], uncertainty: { relative: -1 } }))).toMatch(
-      /^file: p.json, line 10, h0.uncertainty: expected "exact" or/,
+      /^file: p.json, line 8, h0.uncertainty: expected "exact" or/,
     );
     expect(errorOf(() => h0Of([]))).toMatch(/at least one row/);
     expect(errorOf(() => h0Of(3))).toMatch(/^file: p.json, line 4, h0: expected a matrix: rows, a name/);

@@ -99,7 +99,7 @@ describe("the space of a problem file", () => {
     expect(bad({ name: "L" })).toMatch(/space\[0\]: expected a factor with one of the fields "spin"/);
     expect(bad({ name: "L", spin: 1, dimension: 3 })).toMatch(/one of the fields "spin"/);
     expect(bad({ name: "L", spin: 0.3 })).toMatch(
-      /^option: p.json, line 9, space\[0\]\.spin: angularMomentum: j must be/,
+      /^option: p.json, line 17, space\[0\]\.spin: angularMomentum: j must be/,
     );
     expect(bad({ name: "L", spin: "1/3" })).toMatch(/^file: .*space\[0\]\.spin: expected an angular momentum/);
     expect(bad({ name: "L.x", spin: 1 })).toMatch(/space\[0\]\.name: expected a name of letters, digits/);
