@@ -45,7 +45,8 @@ export function checkBounds(
 function checkEnergies(ledger: Ledger, problem: OwnProblem, level: CertifiedLevel, path: string, own: OwnLevel): void {
   const { h0 } = own;
   const rounding = h0.looseError + (own.orthonormality.tight + own.orthonormalityAtLeast) * problem.h0.norm;
-  const solver = 64 * Math.sqrt(problem.n) * (problem.h0.looseRounding + problem.h0.operator.error) + rounding;
+  const width = own.residuals.reduce((most, x) => Math.max(most, x), 0);
+  const solver = 64 * Math.sqrt(problem.n) * (problem.h0.looseRounding + problem.h0.operator.error) + rounding + 2 * width;
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
   level.states.forEach((state, k) => {
@@ -53,7 +54,8 @@ function checkEnergies(ledger: Ledger, problem: OwnProblem, level: CertifiedLeve
     low = Math.min(low, found);
     high = Math.max(high, found);
     const at = `${path}.states[${k}]`;
-    ledger.near(`${at}.energy`, "the energy ⟨H0⟩", state.energy, found, rounding);
+    // |⟨H0⟩ − E| ≤ ‖H0 q − E q‖, which is checked next
+    ledger.near(`${at}.energy`, "the energy ⟨H0⟩", state.energy, found, rounding + state.energyPlusMinus);
     const grow = 1 + 2 * own.orthonormality.tight;
     const tight = roundUp((own.residuals[k] as number) * grow);
     ledger.bound(

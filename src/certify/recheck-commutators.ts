@@ -27,8 +27,9 @@ export interface OwnCandidate {
   readonly withPerturbations: readonly OwnCommutator[];
   /** What the certificate's verdicts make of it. */
   readonly role: "conserved" | "descriptive" | "broken";
-  /** The certified bounds on ‖[A, V]‖₂. */
+  /** The certified bounds on ‖[A, V]‖₂, and on ‖[A, H0]‖₂. */
   readonly bounds: readonly number[];
+  readonly boundWithH0: number;
 }
 
 /** Checks every commutator of a certificate, and that none is missing. */
@@ -63,6 +64,7 @@ export function checkCommutators(ledger: Ledger, certificate: Certificate, probl
       withPerturbations: withPerturbations.map(({ own }) => own),
       role: conserved ? "conserved" : kept ? "descriptive" : "broken",
       bounds: withPerturbations.map(({ own, claimed }) => claimed?.bound ?? own.bound),
+      boundWithH0: withH0.claimed?.bound ?? withH0.own.bound,
     };
   });
   problem.candidates.forEach((left, a) => {
@@ -98,6 +100,12 @@ function checkOne(
     claimed.atLeast <= own.most && claimed.atLeast <= claimed.bound,
     `${path}.atLeast`,
     () => `‖${name}‖ is claimed to be at least ${claimed.atLeast}, but no element exceeds ${own.most}`,
+  );
+  const blur = 2 * (own.most - own.atLeast) + 1e-12 * own.most;
+  ledger.claim(
+    claimed.atLeast >= own.atLeast - blur,
+    `${path}.atLeast`,
+    () => `‖${name}‖ is claimed to be at least ${claimed.atLeast} only, but an element alone is ${own.atLeast}`,
   );
   const verdict = claimed.bound <= threshold ? "commutes" : claimed.atLeast > threshold ? "broken" : "undecided";
   ledger.claim(

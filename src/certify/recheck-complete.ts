@@ -35,7 +35,10 @@ export function checkCompleteness(
   const { levels, n, whole } = certificate;
   const total = levels.reduce((sum, level) => sum + level.states.length, 0);
   ledger.claim(
-    levels.length > 0 && levels.length <= whole.levels && (levels.length === whole.levels) === (total === n),
+    levels.length > 0 &&
+      levels.length <= whole.levels &&
+      whole.levels - levels.length <= n - total &&
+      (levels.length === whole.levels) === (total === n),
     "whole.levels",
     () => `${whole.levels} levels are claimed; ${levels.length} are certified with ${total} of ${n} states`,
   );

@@ -79,7 +79,7 @@ function checkEnergy(
   const { energy, ratio } = claimed;
   const place = certificate.levels.findIndex((level) => level.energy === energy);
   ledger.claim(
-    energy === null ? ratio <= slack : ratio <= slack || (own.get(place) ?? 0) >= ratio * (1 - 1e-3) - slack,
+    energy === null || (place >= 0 && (ratio <= slack || (own.get(place) ?? 0) >= ratio * (1 - 1e-3) - slack)),
     `${path}.energy`,
     () => `the ratio ${ratio} is claimed to be with the level at ${energy}, which does not have it`,
   );
@@ -99,6 +99,11 @@ function checkItself(
     `${path}.refuseAbove`,
     () => `the threshold is ${guard.refuseAbove}, not positive`,
   );
+  ledger.claim(
+    guard.stated || guard.lambda <= 1,
+    `${path}.lambda`,
+    () => `λ is ${guard.lambda}; where nobody states it, it is at most 1`,
+  );
   const other = certificate.levels[0]?.guard ?? guard;
   ledger.claim(
     guard.lambda === other.lambda && guard.stated === other.stated && guard.refuseAbove === other.refuseAbove,
@@ -112,6 +117,14 @@ function checkItself(
       `${path}.sectors[${k}]`,
       () => `expected sector ${Math.floor(k / names.length)} with ${names[k % names.length]} here`,
     );
+    for (const side of ["first", "second"] as const) {
+      const { ratio, energy } = sector[side];
+      ledger.claim(
+        (energy === null) === (ratio === 0),
+        `${path}.sectors[${k}].${side}.energy`,
+        () => `the ratio ${ratio} is claimed to be with ${energy === null ? "no level" : `the level at ${energy}`}`,
+      );
+    }
     ledger.claim(
       sector.inside === null || (names.length === 1 && sector.inside.energy === null),
       `${path}.sectors[${k}].inside`,

@@ -66,7 +66,9 @@ export function evaluateLevel(
     const rho = bench.residual(shape.from + k, level.states[k]?.energy ?? 0, 0);
     const { rounding, looseRounding, operator } = problem.h0;
     residuals[k] = roundUp(rho + rounding + operator.error, n + 16);
-    looseResiduals[k] = roundUp(rho + looseRounding + operator.error, n + 16);
+    // a state may be put together from d vectors whose errors add, and rounds once more in that
+    const each = rho + looseRounding + operator.error;
+    looseResiduals[k] = roundUp(Math.sqrt(d) * each + 2 * operator.norm * Math.sqrt(n) * productRounding(n), n + 16);
   }
   return {
     tree,

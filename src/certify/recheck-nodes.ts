@@ -193,6 +193,16 @@ function checkResidual(ledger: Ledger, given: NodeCase, node: CertifiedNode, pat
   return tight;
 }
 
+/**
+ * |V_μν| ≤ ( ‖[A, V]‖ ‖q_μ‖‖q_ν‖ + (‖s_μ‖ + ‖r_ν‖) ‖V‖ ‖q‖ ) / |a_μ − a_ν| for a label A with residuals r and s.
+ *
+ * @param defect - ‖Q Q† − 1‖, from which ‖q‖² ≤ 1 + defect
+ */
+function selectionRule(commutator: number, norm: number, residual: number, defect: number, gap: number): number {
+  const length = Math.sqrt(1 + defect);
+  return ((commutator * length + 2 * norm * residual) * length) / gap;
+}
+
 /** What a node says of each perturbation. */
 function checkBounds(
   ledger: Ledger,
@@ -220,12 +230,9 @@ function checkBounds(
     const tight = elements.atNodeBound[place] as number;
     const loose = Math.max(size, 0) + elements.looseError + elements.offDiagonal.loose + leak(given, p);
     ledger.bound(`${at}.direct`, `${v.name} between the states that part here`, claimed.direct, tight, loose);
-    const rule = (commutator: number, worst: number, defect: number): number => {
-      const length = Math.sqrt(1 + defect);
-      return ((commutator * length + 2 * v.norm * worst) * length) / node.gap;
-    };
     const byLabel = node.kind === "label" && node.commutators[p] !== undefined;
-    const expected = byLabel ? rule(node.commutators[p] as number, node.residual, level.orthonormality) : null;
+    const expected = byLabel ? selectionRule(node.commutators[p] as number, v.norm, node.residual, level.orthonormality, node.gap)
+      : null;
     ledger.claim(
       expected === null
         ? claimed.selectionRule === null
@@ -247,16 +254,18 @@ function checkBounds(
     const commutator = candidate?.withPerturbations[p]?.bound;
     const ownRule =
       byLabel && commutator !== undefined
-        ? roundUp(rule(commutator, residual, own.orthonormality.tight), 32)
+        ? roundUp(selectionRule(commutator, v.norm, residual, own.orthonormality.tight, node.gap), 32)
         : Number.POSITIVE_INFINITY;
     bounds[p] = Math.max(bounds[p] ?? 0, Math.min(ownRule, tight));
   });
 }
 
 /** Checks how far the short formulas are said to be safe: state by state, and their minimum. */
-export function checkSafeOrders(ledger: Ledger, { level, l, own }: NodeCase): void {
+export function checkSafeOrders(ledger: Ledger, given: NodeCase): void {
+  const { level, l } = given;
+  const blurred = level.nodes.map((node) => isBlurred(given, node));
   const found = level.states.map((state, k): Safe => {
-    const safe = safeOrders(level, own, k);
+    const safe = safeOrders(given, blurred, k);
     const path = `levels[${l}].states[${k}]`;
     ledger.claim(
       state.safe.energies === safe.energies && state.safe.states === safe.states,
@@ -279,13 +288,28 @@ export function checkSafeOrders(ledger: Ledger, { level, l, own }: NodeCase): vo
 }
 
 /** The weakest separator from any partner decides. */
-function safeOrders(level: CertifiedLevel, { tree }: OwnLevel, state: number): Safe {
+function safeOrders({ level, own }: NodeCase, blurred: readonly boolean[], state: number): Safe {
+  const { tree } = own;
   if ((tree.together[state] ?? 1) > 1) return { energies: 1, states: "none" };
-  const path = tree.paths[state] ?? [];
-  const kinds = path.flatMap((place, at) => (at % 2 === 0 ? (level.nodes[place]?.kind ?? []) : []));
+  const path = (tree.paths[state] ?? []).filter((_, at) => at % 2 === 0);
+  if (path.some((place) => blurred[place] === true)) return { energies: 1, states: "none" };
+  const kinds = path.flatMap((place) => level.nodes[place]?.kind ?? []);
   if (kinds.includes("perturbation")) return { energies: 2, states: 0 };
   if (kinds.includes("second order")) return { energies: 3, states: 0 };
   return { energies: "all", states: "all" };
+}
+
+/** Whether a label is conserved too loosely for its gap to count at every order, for H0 or for a perturbation. */
+function isBlurred({ certificate, problem, candidates, level }: NodeCase, node: CertifiedNode): boolean {
+  const candidate = candidates[problem.candidates.findIndex((c) => c.name === node.operator)];
+  if (node.kind !== "label" || candidate === undefined) return false;
+  const { resolution } = certificate;
+  const energyRule = selectionRule(candidate.boundWithH0, problem.h0.norm, node.residual, level.orthonormality, node.gap);
+  if (energyRule > resolution * problem.h0.operator.norm) return true;
+  return node.couplings.some(
+    (coupling, p) =>
+      (coupling.selectionRule ?? Number.POSITIVE_INFINITY) > resolution * (problem.perturbations[p]?.operator.norm ?? 0),
+  );
 }
 
 /** In the table both columns fall together, so the energies' order ranks a pair. */

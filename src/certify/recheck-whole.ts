@@ -57,7 +57,7 @@ export function checkWhole(
   ): void => {
     const claimed = path === "whole.eta0" ? whole.eta0 : (whole.eta[Number(path.slice("whole.eta[".length, -1))] ?? 0);
     const { low, high } = modelDistance(certificate, problem, candidates, residuals, norm, of);
-    const everywhere = isWhole(certificate);
+    const everywhere = isWhole(certificate) || candidates.every((candidate) => candidate.role !== "conserved");
     const least = Math.max(everywhere ? low : 0, 2 * norm * whole.orthonormality);
     ledger.bound(
       path,

@@ -149,6 +149,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     thresholds,
     residual,
     enclosure: whole.energyEnclosure,
+    nodes,
   });
   const evidence = new Map<number, NodeEvidence>(couplings.nodes.map((node) => [node.node, node]));
   const deviation = energies.reduce((most, energy) => Math.max(most, Math.abs(energy - level.energy)), 0);

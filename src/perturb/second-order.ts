@@ -1,6 +1,6 @@
 import type { StudyInternals } from "../certify/internals.js";
-import type { StateVector, Study } from "../certify/outcome.js";
-import { imageError, images } from "../certify/residuals.js";
+import type { LevelResult, StateVector, Study } from "../certify/outcome.js";
+import { imageError, images, rowProduct } from "../certify/residuals.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
 import { add, adjoint, maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
@@ -102,67 +102,130 @@ function solvePart(study: Study, internals: StudyInternals, place: number, numbe
   return { row, perturbations };
 }
 
+/** The numbers that every bound on a second-order element of one level is made of. */
+interface LevelScale {
+  /** Distance of any exact eigenvalue of H0 outside the level from the level. */
+  readonly isolation: number;
+  /** Bound on the distance of any exact energy of the level from the one computed with. */
+  readonly width: number;
+  readonly tilt: number;
+  readonly epsilon: number;
+  readonly norms: readonly number[];
+  readonly imageErrors: readonly number[];
+}
+
+function levelScale(study: Study, { problem }: StudyInternals, level: LevelResult): LevelScale {
+  const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
+  return {
+    isolation: gap - 2 * study.whole.energyEnclosure - level.spread,
+    width: study.states
+      .slice(level.firstState, level.firstState + level.degeneracy)
+      .reduce((most, state) => Math.max(most, Math.abs(state.energy - level.energy) + state.energyPlusMinus), 0),
+    tilt: level.tilt,
+    epsilon: level.evidence.orthonormality + study.whole.orthonormality,
+    norms: problem.perturbations.map(({ operator }) => operator.norm + operator.error),
+    imageErrors: problem.perturbations.map(({ operator }) => imageError(operator)),
+  };
+}
+
 /**
- * E2_pq = Re Σ_k ⟨μ|V_p|k⟩⟨k|V_q|μ⟩/(E0 − E_k) with a bound.
- *
- * With x the computed correction, w = Vμ, r = (1 − P)w − (E0 − H0)x and isolation d, the exact R w differs from x by at most
- * (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it; a state that is off its exact direction by δ changes
- * E2 by at most 2 δ ‖V_p‖‖V_q‖/d. δ collects the tilt of the level, the orthonormality defect, and at every node where the
- * state parts from others the residual (of the label, or of V's or W's block) over the gap there.
+ * E2_pq = Re Σ_k ⟨μ|V_p|k⟩⟨k|V_q|μ⟩/(E0 − E_k) with a bound: {@link elementError} and, for a state that is off its exact
+ * direction by δ, 2 δ ‖V_p‖‖V_q‖/d.
  */
 function secondOrderEnergies(
   study: Study,
   internals: StudyInternals,
   place: number,
   k: number,
-  { row, perturbations }: PartSecondOrder,
+  part: PartSecondOrder,
 ): Bounded[][] {
   const level = study.levels[place];
-  const r = row[k] as number;
   if (level === undefined) return [];
-  const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
-  const isolation = gap - 2 * study.whole.energyEnclosure - level.spread;
-  const { tilt } = level;
-  const epsilon = level.evidence.orthonormality + study.whole.orthonormality;
-  const norms = internals.problem.perturbations.map(({ operator }) => operator.norm + operator.error);
-  const directionError = stateError(study, internals, place, k);
-  return perturbations.map((left, p) =>
-    perturbations.map((right, q): Bounded => {
-      const value = (rowDot(left.outside, right.scaled, r) + rowDot(left.scaled, right.outside, r)) / 2;
+  const r = part.row[k] as number;
+  const scale = levelScale(study, internals, level);
+  const { isolation, norms } = scale;
+  const direction = directionError(internals, level, k, part, scale);
+  return part.perturbations.map((left, p) =>
+    part.perturbations.map((right, q): Bounded => {
       if (isolation === Number.POSITIVE_INFINITY) return { value: 0, plusMinus: 0 };
+      const value =
+        (rowProduct(left.outside, r, right.scaled, r).re + rowProduct(left.scaled, r, right.outside, r).re) / 2;
       if (!(isolation > 0)) return { value, plusMinus: Number.POSITIVE_INFINITY };
-      const w = left.imageNorm[r] as number;
-      const v = norms[p] as number;
-      const u = norms[q] as number;
-      const solve = ((right.residual[r] as number) + 2 * tilt * (right.imageNorm[r] as number)) / isolation;
-      const leak = (tilt + epsilon) * (right.correctionNorm[r] as number);
-      const turn = (2 * directionError * v * u) / isolation;
-      const rounding = 4 * gamma(maxRowEntries(left.outside) + 8) * w * (right.correctionNorm[r] as number);
-      const entries =
-        imageError(internals.problem.perturbations[p]?.operator ?? internals.problem.h0) *
-        (right.correctionNorm[r] as number);
-      return { value, plusMinus: roundUp(w * (solve + leak) * (1 + epsilon) + turn + rounding + entries, 32) };
+      const turn = (2 * direction * (norms[p] as number) * (norms[q] as number)) / isolation;
+      return { value, plusMinus: roundUp(elementError(left, right, p, r, r, scale) + turn, 16) };
     }),
   );
 }
 
-/** Bound on how far a state's vector is from its exact direction inside the nearby symmetric model. */
-function stateError(study: Study, internals: StudyInternals, place: number, k: number): number {
-  const level = study.levels[place];
-  const path = internals.states[place]?.states[k]?.path ?? [];
-  if (level === undefined) return Number.POSITIVE_INFINITY;
-  let error = level.tilt + level.evidence.orthonormality;
-  for (const node of level.evidence.nodes) {
-    if (!path.some((step) => step.node === node.node)) continue;
+/**
+ * Bound on the error of Σ_k ⟨μ|V_p|k⟩⟨k|V_q|ν⟩/(E0 − E_k) for the vectors as they are.
+ *
+ * With x the computed correction of ν, w = V_q ν, r = (1 − P)w − (E0 − H0)x for the exact E0 and isolation d, the exact R w differs from x by at
+ * most (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it.
+ */
+function elementError(
+  left: PartColumn,
+  right: PartColumn,
+  p: number,
+  r: number,
+  s: number,
+  { isolation, width, tilt, epsilon, imageErrors }: LevelScale,
+): number {
+  const w = left.imageNorm[r] as number;
+  const x = right.correctionNorm[s] as number;
+  const solve = ((right.residual[s] as number) + width * x + 2 * tilt * (right.imageNorm[s] as number)) / isolation;
+  const leak = (tilt + epsilon) * x;
+  const rounding = 4 * gamma(maxRowEntries(left.outside) + 8) * w * x;
+  return roundUp(w * (solve + leak) * (1 + epsilon) + rounding + (imageErrors[p] as number) * x, 32);
+}
+
+/**
+ * How far a state may be turned inside its block at a node of V: the exact matrix of V differs from the computed diagonal by Δ,
+ * what is off the diagonal, the evaluation, the width of the level, and the tilt so far times 2‖V‖; sinΘ ≤ Δ/(gap − Δ).
+ */
+function turnByPerturbation(node: NodeEvidence, level: LevelResult, error: number, { norms, width }: LevelScale): number {
+  const { offDiagonal, elementError: evaluation } = level.evidence;
+  const off = Math.max(0, ...offDiagonal) + Math.max(0, ...evaluation) + width + 2 * Math.max(...norms) * error;
+  return 2 * off < node.gap ? (3 * off) / node.gap : 2;
+}
+
+/**
+ * Bound on the angle between a state's vector and its exact direction inside the nearby symmetric model: the tilt of the level,
+ * the orthonormality defect, and at every node where the state parts from others the residual there (of the label, or of V's or
+ * W's block) over the gap (Davis and Kahan, SIAM J. Numer. Anal. 7, 1 (1970)).
+ */
+function directionError(
+  internals: StudyInternals,
+  level: LevelResult,
+  k: number,
+  part: PartSecondOrder,
+  scale: LevelScale,
+): number {
+  const states = internals.states[level.index]?.states ?? [];
+  const path = states[k]?.path ?? [];
+  const passes = (node: number, of: number): boolean => states[of]?.path.some((step) => step.node === node) === true;
+  const onPath = level.evidence.nodes.filter((node) => path.some((step) => step.node === node.node));
+  let error = Math.SQRT2 * level.tilt + level.evidence.orthonormality;
+  for (const node of onPath) {
     if (node.kind === "label") error += (2 * node.residual) / node.gap;
-    else {
-      const dropped = Math.max(0, ...level.evidence.offDiagonal);
-      const norm = Math.max(...internals.problem.perturbations.map(({ operator }) => operator.norm + operator.error));
-      const scale = node.kind === "perturbation" ? dropped : 2 ** -40 * norm;
-      error += (2 * scale) / node.gap;
-    }
+    if (node.kind === "perturbation") error += turnByPerturbation(node, level, error, scale);
   }
-  return error;
+  const only = part.perturbations[0];
+  for (const node of onPath) {
+    if (node.kind !== "second order" || only === undefined) continue;
+    const r = part.row[k] as number;
+    // the block W is taken on may itself be turned by the error so far
+    const turned = (2 * error * (scale.norms[0] as number) ** 2) / scale.isolation;
+    let square = 0;
+    states.forEach((_, other) => {
+      const s = part.row[other] as number;
+      if (other === k || s < 0 || !passes(node.node, other)) return;
+      const element = rowProduct(only.outside, r, only.scaled, s);
+      square += (Math.hypot(element.re, element.im) + elementError(only, only, 0, r, s, scale) + turned) ** 2;
+    });
+    error += (2 * Math.sqrt(square)) / node.gap;
+  }
+  return roundUp(error, 16 * (onPath.length + states.length));
 }
 
 function keepColumns(rows: Csr, keep: (column: number) => boolean): Csr {
@@ -202,26 +265,6 @@ function rowNorms(rows: Csr): Float64Array {
     norms[r] = Math.sqrt(sum);
   }
   return norms;
-}
-
-/** Re Σ conj(a_k) b_k over one row of two matrices of the same pattern origin. */
-function rowDot(a: Csr, b: Csr, row: number): number {
-  let sum = 0;
-  let p = a.ptr[row] as number;
-  let q = b.ptr[row] as number;
-  const pEnd = a.ptr[row + 1] as number;
-  const qEnd = b.ptr[row + 1] as number;
-  while (p < pEnd && q < qEnd) {
-    const i = a.col[p] as number;
-    const j = b.col[q] as number;
-    if (i === j) {
-      sum += (a.re[p] as number) * (b.re[q] as number);
-      if (a.im !== undefined && b.im !== undefined) sum += (a.im[p] as number) * (b.im[q] as number);
-    }
-    if (i <= j) p++;
-    if (j <= i) q++;
-  }
-  return sum;
 }
 
 function rowVector(rows: Csr, row: number): StateVector {

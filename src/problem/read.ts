@@ -74,7 +74,7 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
   };
   for (const [name, value] of Object.entries(outline.define ?? {})) {
     const at = inside(place, "define", name);
-    if (!/^[^.[\]^|+\s]+$/.test(name)) throw fileError(at, "a name without spaces and . [ ] ^ | +", showValue(name));
+    if (!/^[^.,[\]^|+\s]+$/.test(name)) throw fileError(at, "a name without spaces and . , [ ] ^ | +", showValue(name));
     defined.set(name, readMatrixAt(at, value, context));
   }
   const kets = outline.kets ?? space?.kets();

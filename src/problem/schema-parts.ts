@@ -27,14 +27,14 @@ export function about<T>(schema: Shape<T>, description: string): Shape<T> {
 /** 1, 2, 3, … */
 export const positiveWhole: Shape<number> = v.pipe(
   v.number("a whole number from 1 on"),
-  v.safeInteger("a whole number from 1 on"),
+  v.integer("a whole number from 1 on"),
   v.minValue(1, "a whole number from 1 on"),
 );
 
 /** 0, 1, 2, … */
 export const index: Shape<number> = v.pipe(
   v.number("a whole number from 0 on"),
-  v.safeInteger("a whole number from 0 on"),
+  v.integer("a whole number from 0 on"),
   v.minValue(0, "a whole number from 0 on"),
 );
 

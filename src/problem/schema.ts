@@ -59,10 +59,7 @@ const options: Shape<ProblemOptions> = closed({
 
 const factorShared = {
   name: about(
-    v.pipe(
-      v.string("the name of a factor"),
-      v.regex(/^[\p{L}_][\p{L}\p{N}_]*$/u, "a name of letters, digits and _ that begins with a letter"),
-    ),
+    v.pipe(v.string("the name of a factor"), v.regex(/^[^.,[\]^|+\s]+$/, "a name without spaces and . , [ ] ^ | +")),
     "How terms name the factor.",
   ),
   count: v.exactOptional(about(positiveWhole, 'Number of equal sites, named "ring[0]", "ring[1]", …')),

@@ -1,7 +1,17 @@
 import { describe, expect, it } from "vitest";
 import { auditCommutators, findGoodBasis, Operator } from "../../src/index.js";
 import { angularMomentum } from "../../src/models/angular-momentum.js";
-import { expectNear, expectValues, goodBasis, levelAt, shift, shifts, solved, weight } from "../published/support.js";
+import {
+  expectNear,
+  expectValues,
+  goodBasis,
+  levelAt,
+  second,
+  shift,
+  shifts,
+  solved,
+  weight,
+} from "../published/support.js";
 
 const exact = { uncertainty: "exact" } as const;
 
@@ -126,7 +136,7 @@ describe("levels 1e-10 apart that V couples by 1e-12", () => {
   });
 });
 
-describe("the ± on a first-order shift", () => {
+describe("the ± on a shift", () => {
   // H0 = Q D Qᵀ and V = Q B Qᵀ with an integer Q of orthogonal columns, QᵀQ = 30: exact in binary for dyadic D, B.
   const q = [
     [1, -2, -3, -4],
@@ -173,9 +183,27 @@ describe("the ± on a first-order shift", () => {
     expect(relative(0.5)).toBeLessThan(1e-12);
   });
 
-  it("covers the exact shifts of many such problems", () => {
-    for (const power of [-8, -12, -16, -20, -24, -28, -30]) expect(relative(2 ** power)).toBeGreaterThan(0);
-  });
+  it.each([-1, -4, -8, -12, -16, -20, -24, -28, -30])(
+    "covers the exact first order with a neighbour at 2^%d",
+    (power) => {
+      expect(relative(2 ** power)).toBeGreaterThan(0);
+    },
+  );
+
+  it.each([-1, -4, -8, -12, -16, -20, -24, -28, -30])(
+    "covers the exact second order with a neighbour at 2^%d",
+    (power) => {
+      const d = 2 ** power;
+      const basis = goodBasis({ h0: rotated(diagonal([0, 0, d, 1])), v }, { lambda: d / 4 });
+      // 30 Σ_k B_kμ²/(D_μ − D_k).
+      const pair = 30 * (-1 / d - 1);
+      const wanted = [pair, pair, 30 * (2 / d + 1 / (d - 1)), 30 * (2 + 1 / (1 - d))];
+      for (const [k, state] of basis.states.entries()) {
+        const { value, plusMinus } = second(basis, state);
+        expect(Math.abs(value - (wanted[k] ?? Number.NaN))).toBeLessThanOrEqual(plusMinus);
+      }
+    },
+  );
 });
 
 describe("three verdicts", () => {

@@ -175,7 +175,7 @@ describe("matrices of a problem file", () => {
     );
     expect(errorOf(() => h0Of({ diagonal: [1], rows: [[1]] }))).toMatch(/one of rows, triplets/);
     expect(errorOf(() => h0Of({ diagonal: [1], n: 1 }))).toMatch(
-      /^file: p.json, line 8, h0.n: expected no other fields than diagonal, on, uncertainty, got 1/,
+      /^file: p.json, line 8, h0.n: expected no other fields than diagonal, on, uncertainty, got "n"/,
     );
     expect(errorOf(() => h0Of({ permutation: [0, 0] }))).toMatch(/^shape: p.json, line 4, h0: .*0 occurs twice/);
     expect(errorOf(() => h0Of({ diagonal: [1], uncertainty: { relative: -1 } }))).toMatch(

@@ -32,10 +32,10 @@ describe("readProblem", () => {
     expect(Object.keys(problem.v)).toEqual(["a", "b"]);
     expect(rowsOf(readFieldsV({ diagonal: [2] }))).toEqual([[2]]);
     expect(errorOf(() => readFields({ v: {} }))).toMatch(
-      /^file: p.json, line 8, v: expected a matrix, or at least one named/,
+      /^file: p.json, line 9, v: expected a matrix, or at least one named/,
     );
     expect(errorOf(() => readFields({ v: { a: [[1]], b: { digonal: [2] } } }))).toMatch(
-      /line 14, v\.b: expected a matrix/,
+      /line 15, v\.b: expected a matrix/,
     );
   });
 
@@ -90,8 +90,9 @@ describe("readProblem", () => {
     expect(errorOf(() => readProblem("{ }"))).toMatch(
       /^file: problem, line 1, format: expected the field "format", got nothing/,
     );
-    expect(errorOf(() => readProblem("[]"))).toMatch(
-      /^file: problem, line 1: expected an object with the fields .*, got \[\]/,
+    expect(errorOf(() => readProblem("[]"))).toMatch(/^file: problem, line 1, format: expected the field "format"/);
+    expect(errorOf(() => readProblem("3"))).toMatch(
+      /^file: problem, line 1: expected an object with the fields .*, got 3;/,
     );
     expect(errorOf(() => readProblem(null))).toMatch(/^file: problem: expected an object/);
     expect(errorOf(() => readProblem('{\n "format": goodbasis }', { name: "x.json" }))).toBe(

@@ -3,7 +3,9 @@ import { fileURLToPath } from "node:url";
 import { toJsonSchema } from "@valibot/to-json-schema";
 import * as v from "valibot";
 import { describe, expect, it } from "vitest";
+import { anyMatrix } from "../../src/problem/matrix-schema.js";
 import { problemSchema } from "../../src/problem/schema.js";
+import { fileNumber, index, positiveWhole } from "../../src/problem/schema-parts.js";
 import { file, readFields } from "./files.js";
 
 const root = fileURLToPath(new URL("../../", import.meta.url));
@@ -11,7 +13,10 @@ const examples = readdirSync(`${root}docs/examples`).filter((name) => name.endsW
 
 /** The published JSON Schema; `npm run schema` writes it anew. */
 function publishedSchema(): string {
-  const { $schema, ...schema } = toJsonSchema(problemSchema, { errorMode: "throw" });
+  const { $schema, ...schema } = toJsonSchema(problemSchema, {
+    ignoreActions: ["finite"],
+    definitions: { matrix: anyMatrix, number: fileNumber, index, positiveWhole },
+  });
   return `${JSON.stringify({ $schema, $id: "goodbasis/problem-schema.json", ...schema }, undefined, 2)}\n`;
 }
 

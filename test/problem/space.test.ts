@@ -102,7 +102,7 @@ describe("the space of a problem file", () => {
       /^option: p.json, line 17, space\[0\]\.spin: angularMomentum: j must be/,
     );
     expect(bad({ name: "L", spin: "1/3" })).toMatch(/^file: .*space\[0\]\.spin: expected an angular momentum/);
-    expect(bad({ name: "L.x", spin: 1 })).toMatch(/space\[0\]\.name: expected a name of letters, digits/);
+    expect(bad({ name: "L.x", spin: 1 })).toMatch(/space\[0\]\.name: expected a name without spaces/);
     expect(bad({ name: "L", spin: 1 }, { name: "L", spin: 1 })).toMatch(/space\[1\]\.name: expected a name of its own/);
     expect(bad({ name: "L", spin: 1, kets: ["a", "b"] })).toMatch(/space\[0\]\.kets: expected 3 different names/);
     expect(bad({ name: "L", spin: 1, kets: ["a", "b", "a"] })).toMatch(/3 different names/);

@@ -275,7 +275,7 @@ export function checkWhole(exact: ExactProblem): { claims: Claims; study: StudyF
     total += frame.cols;
   }
   const all = matrix(exact.n, width, (i, j) => {
-    const place = starts.findLastIndex((start) => start <= j);
+    const place = starts.filter((start) => start <= j).length - 1;
     const frame = frames[place];
     return frame === undefined ? [0n, 0n] : at(frame, i, j - (starts[place] ?? 0));
   });

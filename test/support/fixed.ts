@@ -177,11 +177,15 @@ export function eigen(of: FixedMatrix): FixedEigen {
     let turned = false;
     for (let p = 0; p < n; p++) {
       for (let q = p + 1; q < n; q++) {
-        const r = modulus(a, p, q);
+        const [x, y] = at(a, p, q);
+        // raised to about 1, so that the phase has modulus 1 to the last digits however small the element is
+        const raise = BITS - BigInt(larger(size(x), size(y)).toString(2).length);
+        const [high, wide] = raise > 0n ? [x << raise, y << raise] : [x, y];
+        const length = root(times(high, high) + times(wide, wide));
+        const r = raise > 0n ? length >> raise : length;
         if (r <= floor + 16n) continue;
         turned = true;
-        const [x, y] = at(a, p, q);
-        const phase: readonly [bigint, bigint] = [over(x, r), over(-y, r)];
+        const phase: readonly [bigint, bigint] = [over(high, length), over(-wide, length)];
         const tau = over((a.re[q * n + q] ?? 0n) - (a.re[p * n + p] ?? 0n), 2n * r);
         const t = over(tau < 0n ? -ONE : ONE, size(tau) + root(ONE + times(tau, tau)));
         const c = over(ONE, root(ONE + times(t, t)));
