@@ -25,7 +25,7 @@ export type LabelDeclaration =
 
 /** One member of a discrete family: the exact eigenvalue and how it is written. */
 export interface FamilyMember {
-  /** The eigenvalue, to half a unit in the last place; a root of unity to within one. */
+  /** The eigenvalue, to half a unit in the last place; the parts of a root of unity to within two. */
   readonly re: number;
   readonly im: number;
   /** The quantum number as written in the trade: "3/2", "−1", "+1". */

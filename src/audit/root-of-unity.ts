@@ -1,6 +1,6 @@
 /**
- * e^{2πi k/N}, correctly rounded to within an ulp and exact at the multiples of a quarter and of a twelfth turn whose
- * coordinates are 0, ±1/2 or ±1.
+ * e^{2πi k/N}, each part to within two units in its last place, and exact at the multiples of a quarter and of a twelfth
+ * turn whose coordinates are 0, ±1/2 or ±1.
  *
  * @param k - any integer
  * @param order - N ≥ 1

@@ -1,5 +1,6 @@
 import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
@@ -7,7 +8,7 @@ import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
 import { elementErrorBound, forEachProduct, gramDefect } from "./products.js";
-import { images } from "./residuals.js";
+import { images, rootOfSquares } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */
@@ -130,7 +131,7 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       const crossing = node.crossings?.[p];
       const direct =
         crossing === undefined
-          ? (inside.largest[p]?.get(entry.node) ?? 0) + (inside.elementError[p] as number)
+          ? roundUp((inside.largest[p]?.get(entry.node) ?? 0) + (inside.elementError[p] as number))
           : roundUp((crossing + 2 * v * rowError + operator.error) * (1 + input.wholeDefect) * (1 + rowError) ** 2, 16);
       return { perturbation: name, selectionRule, direct, counted: Math.min(selectionRule, direct) };
     });
@@ -284,6 +285,7 @@ interface Pass {
 function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: number; withinLeaves: number } {
   const { name, members, states, error, diagonal, largest, threshold, worst } = pass;
   let sum = 0;
+  let terms = 0;
   let withinLeaves = 0;
   let floor = threshold;
   forEachProduct(vectors, images(vectors, operator), (r, c, re, im, common) => {
@@ -294,21 +296,23 @@ function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: 
       return;
     }
     if (common === 0) return;
-    const size = Math.sqrt(re * re + im * im);
-    sum += 2 * (size + error) ** 2;
+    const size = modulus(re, im);
+    const atMost = roundUp(size) + error;
+    sum += 2 * atMost ** 2;
+    terms += 2;
     const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
-    if (node === undefined) withinLeaves = Math.max(withinLeaves, size + error);
+    if (node === undefined) withinLeaves = Math.max(withinLeaves, roundUp(atMost));
     else if (size > (largest.get(node) ?? -1)) largest.set(node, size);
     const atLeast = roundDown(size) - error;
     if (atLeast <= floor) return;
-    worst.push({ perturbation: name, first, second, re, im, size, atLeast, atMost: roundUp(size) + error });
+    worst.push({ perturbation: name, first, second, re, im, size, atLeast, atMost });
     if (worst.length > 64 * WORST_KEPT) {
       worst.sort((a, b) => b.size - a.size);
       worst.length = WORST_KEPT;
       floor = Math.max(floor, (worst[WORST_KEPT - 1] as PairElement).atLeast);
     }
   });
-  return { offDiagonal: roundUp(Math.sqrt(sum), members.length * members.length + 8), withinLeaves };
+  return { offDiagonal: roundUp(rootOfSquares(sum, terms), members.length * members.length + 8), withinLeaves };
 }
 
 /** The node at which two states part company; undefined for two states of one leaf. */

@@ -1,5 +1,5 @@
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp } from "../numerics/rounding.js";
+import { gamma, roundUp, UNDERFLOW } from "../numerics/rounding.js";
 import { maxRowEntries } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import { imageError } from "./residuals.js";
@@ -80,5 +80,6 @@ export function forEachProduct(
 /** Bound on the error of one element: the image's error, and a sum of at most m products with ‖q‖ ‖Vq‖ as the scale. */
 export function elementErrorBound(operator: Operator, vectors: Csr): number {
   const sum = Math.SQRT2 * gamma(maxRowEntries(vectors) + 4) * operator.norm;
-  return roundUp((imageError(operator) + sum) * (1 + 2 ** -18));
+  const underflow = operator.norm === 0 ? 0 : 4 * maxRowEntries(vectors) * UNDERFLOW;
+  return roundUp((imageError(operator) + sum) * (1 + 2 ** -18) + underflow);
 }

@@ -46,7 +46,8 @@ function checkEnergies(ledger: Ledger, problem: OwnProblem, level: CertifiedLeve
   const { h0 } = own;
   const rounding = h0.looseError + (own.orthonormality.tight + own.orthonormalityAtLeast) * problem.h0.norm;
   const width = own.residuals.reduce((most, x) => Math.max(most, x), 0);
-  const solver = 64 * Math.sqrt(problem.n) * (problem.h0.looseRounding + problem.h0.operator.error) + rounding + 2 * width;
+  const solver =
+    64 * Math.sqrt(problem.n) * (problem.h0.looseRounding + problem.h0.operator.error) + rounding + 2 * width;
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
   level.states.forEach((state, k) => {

@@ -186,17 +186,26 @@ function countRuns(ledger: Ledger, certificate: Certificate, problem: OwnProblem
         `${upper.below - lower.below} eigenvalues there`,
     );
     if (spectrum.largest > SMALL_PART) continue;
-    const past = end(bottom(low), low.gapBelow, -1, OPEN);
-    const beyond = end(top(high), high.gapAbove, 1, OPEN);
-    ledger.claim(
-      past === undefined || low.gapBelow === 0 || spectrum.count(past).below < lower.below,
-      `levels[${a}].gapBelow`,
-      () => `claimed ${low.gapBelow}, but H0 has no eigenvalue there`,
-    );
-    ledger.claim(
-      beyond === undefined || high.gapAbove === 0 || spectrum.count(beyond).below > upper.below,
-      `levels[${b}].gapAbove`,
-      () => `claimed ${high.gapAbove}, but H0 has no eigenvalue there`,
-    );
+    // once the sharpness of the count is known, the neighbour can be looked for at the very end of the gap
+    const sides = [
+      { gap: low.gapBelow, edge: bottom(low), sign: -1, count: lower, path: `levels[${a}].gapBelow` },
+      { gap: high.gapAbove, edge: top(high), sign: 1, count: upper, path: `levels[${b}].gapAbove` },
+    ];
+    for (const { gap, edge, sign, count, path: at } of sides) {
+      if (gap === null || gap === 0) continue;
+      const open = Math.min(OPEN, Math.max(2 ** -30, (8 * count.error) / gap));
+      const before = end(edge, gap, sign, -open);
+      const behind = end(edge, gap, sign, open);
+      ledger.claim(
+        before === undefined || spectrum.count(before).below === count.below,
+        at,
+        () => `claimed ${gap}, but H0 has an eigenvalue nearer than that`,
+      );
+      ledger.claim(
+        behind === undefined || sign * (spectrum.count(behind).below - count.below) > 0,
+        at,
+        () => `claimed ${gap}, but H0 has no eigenvalue there`,
+      );
+    }
   }
 }

@@ -3,7 +3,7 @@ import { smallerGap } from "./recheck-bounds.js";
 import type { Sector } from "./recheck-intermediate.js";
 import type { OwnLevel } from "./recheck-level.js";
 import type { OwnProblem } from "./recheck-operators.js";
-import { type OwnRatios, ratiosOf } from "./recheck-ratios.js";
+import { type OwnPart, type OwnRatios, ratiosOf } from "./recheck-ratios.js";
 import type { Ledger } from "./recheck-report.js";
 
 /** Checks the denominators guard of one level: that it agrees with itself and, with all levels at hand, with an own evaluation. */
@@ -41,9 +41,14 @@ export function checkGuard(
     }
     guard.sectors.forEach((claimed, k) => {
       if (claimed.perturbation !== v.name) return;
-      const at = open.findIndex(
-        (part) => agree(part.first, claimed.first.ratio) && agree(part.second, claimed.second.ratio),
+      const alike = (part: OwnPart): boolean =>
+        agree(part.first, claimed.first.ratio) && agree(part.second, claimed.second.ratio);
+      const reaches = (side: GuardClaim, own: ReadonlyMap<number, number>): boolean =>
+        isWith(certificate, side, own, ratios);
+      const best = open.findIndex(
+        (part) => alike(part) && reaches(claimed.first, part.firstTo) && reaches(claimed.second, part.secondTo),
       );
+      const at = best < 0 ? open.findIndex(alike) : best;
       const part = open[at];
       ledger.claim(
         part !== undefined,
@@ -54,35 +59,41 @@ export function checkGuard(
       );
       if (part === undefined) return;
       open.splice(at, 1);
-      checkEnergy(ledger, certificate, `${path}.sectors[${k}].first`, claimed.first, part.firstTo, slack);
-      checkEnergy(ledger, certificate, `${path}.sectors[${k}].second`, claimed.second, part.secondTo, slack);
+      for (const [side, own] of [
+        ["first", part.firstTo],
+        ["second", part.secondTo],
+      ] as const) {
+        const { ratio, energy } = claimed[side];
+        ledger.claim(
+          reaches(claimed[side], own),
+          `${path}.sectors[${k}].${side}.energy`,
+          () => `the ratio ${ratio} is claimed to be with the level at ${energy}, which does not have it`,
+        );
+      }
     });
   });
   if (ratios.inside !== undefined) {
     const { inside } = ratios;
     ledger.claim(
-      guard.inside >= inside * (1 - 1e-6) - ratios.insideSlack,
+      guard.inside >= inside * (1 - ratios.relative) - ratios.insideSlack,
       `${path}.inside`,
       () => `claimed ${guard.inside}, found ${inside}`,
     );
   }
 }
 
-function checkEnergy(
-  ledger: Ledger,
+type GuardClaim = CertifiedLevel["guard"]["sectors"][number]["first"];
+
+/** Whether a claimed ratio is with the level that it names. */
+function isWith(
   certificate: Certificate,
-  path: string,
-  claimed: { readonly ratio: number; readonly energy: number | null },
+  { energy, ratio }: GuardClaim,
   own: ReadonlyMap<number, number>,
-  slack: number,
-): void {
-  const { energy, ratio } = claimed;
+  { slack, relative }: OwnRatios,
+): boolean {
   const place = certificate.levels.findIndex((level) => level.energy === energy);
-  ledger.claim(
-    energy === null || (place >= 0 && (ratio <= slack || (own.get(place) ?? 0) >= ratio * (1 - 1e-3) - slack)),
-    `${path}.energy`,
-    () => `the ratio ${ratio} is claimed to be with the level at ${energy}, which does not have it`,
-  );
+  if (energy === null) return true;
+  return place >= 0 && (ratio <= slack || (own.get(place) ?? 0) >= ratio * (1 - 1e-3 - relative) - slack);
 }
 
 function checkItself(

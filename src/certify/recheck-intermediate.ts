@@ -96,8 +96,8 @@ function sectorsByLabel(
     const numbers = new Map<string, number>();
     sector = sector.map((old, s) => {
       const key = `${old} ${re[s]} ${im[s]}`;
-      let number = numbers.get(key);
-      if (number === undefined) numbers.set(key, (number = numbers.size));
+      const number = numbers.get(key) ?? numbers.size;
+      numbers.set(key, number);
       return number;
     });
   });

@@ -117,7 +117,8 @@ function checkNumber(
   residuals.tight[s] = roundUp(rho + rounding + operator.error, terms);
   // a bound may be taken over a whole sector at once, whose vectors round in every step of the refinement
   const size = Math.sqrt(vectors.n);
-  const sector = size * (looseRounding + operator.error) + operator.norm * (2 * size * productRounding(vectors.n) + LABEL_WIDTH);
+  const sector =
+    size * (looseRounding + operator.error) + operator.norm * (2 * size * productRounding(vectors.n) + LABEL_WIDTH);
   residuals.loose[s] = roundUp(size * rho + sector, terms);
   const vague = label.status === "not sharp";
   const what = vague
@@ -190,19 +191,20 @@ function pickFamily(
   allSharp: boolean,
 ): LabelDeclaration | undefined {
   const values = sharp.map(({ label }) => label);
-  if (all) {
-    const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
-    return recogniseFamily(values, 4 * widest + LABEL_WIDTH * candidate.operator.norm);
-  }
-  if (values.every((label) => label.status === "measured")) return undefined;
-  return RECOGNISED.find((family) =>
+  const fits = (family: LabelDeclaration): boolean =>
     values.every((label) => {
       const member = onlyMember(family, label, label.radius);
-      return member === undefined
-        ? label.status === "measured"
-        : label.status === "proposed" && member.text === label.text;
-    }),
-  );
+      if (member === undefined) return label.status === "measured";
+      return label.status === "proposed" && member.text === label.text;
+    });
+  if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);
+  const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
+  const radius = 4 * widest + LABEL_WIDTH * candidate.operator.norm;
+  const distinct = [...new Map(values.map((label) => [`${label.re} ${label.im}`, label])).values()];
+  // how often a value occurs may tip the scales between a square and its root: both readings are honest
+  const once = recogniseFamily(distinct, radius, allSharp);
+  const often = recogniseFamily(values, radius, allSharp);
+  return often !== undefined && (once === undefined || fits(often)) ? often : once;
 }
 
 /** A number as labels write it: six digits, a true minus sign, the part left out that is negligible. */

@@ -71,7 +71,7 @@ export function ratiosOf(
     parts: work.parts(),
     inside,
     second,
-    relative: Math.min(1, 1e-6 + (8 * width) / gap),
+    relative: Math.min(1, 1e-6 + (16 * width) / gap),
     slack: gap === Number.POSITIVE_INFINITY ? 0 : work.lambda * (noise / gap) + 1e-11 * x * x,
     insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : (work.lambda * 1e-11 * weight) / smallest,
     secondSlack: (1e-9 + (8 * width) / gap) * weight,
@@ -171,8 +171,8 @@ class Work {
   }
 
   #add(squares: Map<string, Map<number, number>>, key: string, s: number, square: number): void {
-    let own = squares.get(key);
-    if (own === undefined) squares.set(key, (own = new Map()));
+    const own = squares.get(key) ?? new Map<number, number>();
+    squares.set(key, own);
     const level = this.levelOf(s);
     own.set(level, (own.get(level) ?? 0) + square);
   }

@@ -114,26 +114,49 @@ function couplingUndecided(
   return open;
 }
 
-/** Whether the level's width is far below the gap around it and below what V or W separates inside it. */
-function ambiguous({ whole }: Certificate, level: CertifiedLevel, own: OwnLevel): boolean {
+/**
+ * Whether the level's width is not far below the gap around it and what V or W separates inside it, or shifts that ought to be
+ * equal are not equal far below what W separates; undefined where the own evaluation does not decide the last.
+ */
+function ambiguous({ whole }: Certificate, level: CertifiedLevel, own: OwnLevel): boolean | undefined {
   const grow = 1 + 2 * level.orthonormality;
   const residual = level.states.reduce((most, state) => Math.max(most, state.energyPlusMinus), 0) / grow;
   const width = level.spread + 2 * residual;
   if (width > FAR_BELOW * (smallerGap(level) - 2 * whole.energyEnclosure)) return true;
   const { lambda } = level.guard;
-  return splitting(level, own).some((node) => {
+  let answer: boolean | undefined = false;
+  for (const node of splitting(level)) {
     const scale = node.kind === "perturbation" ? lambda : lambda * lambda;
-    return width > FAR_BELOW * scale * node.gap;
-  });
+    if (width > FAR_BELOW * scale * node.gap) return true;
+    if (node.kind === "perturbation") continue;
+    const shifts = shiftSpread(node, own);
+    const limit = FAR_BELOW * lambda * node.gap;
+    if (shifts.low > limit) return true;
+    if (shifts.high > limit) answer = undefined;
+  }
+  return answer;
 }
 
-function splitting(level: CertifiedLevel, _own: OwnLevel): CertifiedLevel["nodes"] {
+/** How far the first-order shifts of the states below a node may differ: the least and the most that an evaluation may say. */
+function shiftSpread(node: CertifiedLevel["nodes"][number], own: OwnLevel): { low: number; high: number } {
+  const elements = own.perturbations[0];
+  if (elements === undefined) return { low: 0, high: 0 };
+  const shifts = node.states.flat().map((state) => elements.diagonal[state] ?? 0);
+  const range = Math.max(...shifts) - Math.min(...shifts);
+  return {
+    low: Math.max(0, range - 2 * elements.looseError) + elements.error / 2,
+    high: 2 * range + 8 * elements.looseError,
+  };
+}
+
+/** The nodes at which V or the second-order operator tells states apart. */
+function splitting(level: CertifiedLevel): CertifiedLevel["nodes"] {
   return level.nodes.filter((node) => node.kind === "perturbation" || node.kind === "second order");
 }
 
 /** Whether V tells states apart that were merged over a real spread with no λ stated; undefined where that is not to be seen. */
 function merged(problem: OwnProblem, level: CertifiedLevel, own: OwnLevel): boolean | undefined {
-  if (level.guard.stated || splitting(level, own).length === 0) return false;
+  if (level.guard.stated || splitting(level).length === 0) return false;
   const { h0 } = problem;
   const rounding =
     LEVEL_WIDTH * h0.operator.norm + 32 * h0.operator.error + 8 * Math.sqrt(problem.n) * 2 ** -53 * h0.operator.norm;

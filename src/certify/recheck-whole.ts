@@ -1,10 +1,11 @@
 import type { Certificate } from "./certificate-format.js";
 import { rootSum } from "./recheck-bounds.js";
-import type { OwnCandidate, OwnCommutator } from "./recheck-commutators.js";
+import type { OwnCandidate } from "./recheck-commutators.js";
 import { isWhole } from "./recheck-complete.js";
 import type { OwnResiduals } from "./recheck-labels.js";
 import type { OwnLevel } from "./recheck-level.js";
 import { type OwnProblem, productRounding } from "./recheck-operators.js";
+import type { OwnCommutator } from "./recheck-own-commutator.js";
 import type { Ledger } from "./recheck-report.js";
 
 /** A level merged over more than this fraction of ‖H0‖ has other vectors than the energies were found with. */

@@ -1,6 +1,6 @@
 import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
-import { roundUp } from "../numerics/rounding.js";
+import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
 import { type Depth, type Leaf, type ResolvedLevel, type ResolvedPart, resolveLevel } from "../refine/resolve.js";
@@ -13,7 +13,7 @@ import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.
 import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
-import { rootSumSquares } from "./residuals.js";
+import { rootOfSquares, rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
 import type { Shift } from "./verdict.js";
@@ -237,8 +237,11 @@ function stateEnergies(
     let spread = 0;
     for (let p = from; p < to; p++) spread += weightAt(p) * (energyAt(p) - first - excess) ** 2;
     energies[k] = first + excess;
+    // the energy as stored differs from that of the sum by a rounding
+    const stored = excess === 0 ? 0 : 2 * UNIT_ROUNDOFF * Math.abs(energies[k] as number);
+    const roots = rootOfSquares(square, square === 0 ? 0 : to - from) + rootOfSquares(spread, excess === 0 ? 0 : to - from);
     residuals[k] = roundUp(
-      (Math.sqrt(square) + Math.sqrt(spread)) * (1 + whole.orthonormality) + composed,
+      (roots + stored) * (1 + whole.orthonormality) + composed,
       2 * (to - from) + 16,
     );
   });

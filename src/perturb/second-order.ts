@@ -1,3 +1,4 @@
+import type { NodeEvidence } from "../certify/couplings.js";
 import type { StudyInternals } from "../certify/internals.js";
 import type { LevelResult, StateVector, Study } from "../certify/outcome.js";
 import { imageError, images, rowProduct } from "../certify/residuals.js";
@@ -49,8 +50,11 @@ export function levelSecondOrder(study: Study, internals: StudyInternals, place:
     }
     return found;
   };
+  const level = study.levels[place];
+  const scale = level === undefined ? undefined : levelScale(study, internals, level);
   return {
-    energies: (k) => secondOrderEnergies(study, internals, place, k, part(k)),
+    energies: (k) =>
+      level === undefined || scale === undefined ? [] : secondOrderEnergies(internals, level, scale, k, part(k)),
     corrections: (k) => {
       const { row, perturbations } = part(k);
       return perturbations.map(({ correction }) => rowVector(correction, row[k] as number));
@@ -130,19 +134,16 @@ function levelScale(study: Study, { problem }: StudyInternals, level: LevelResul
 
 /**
  * E2_pq = Re Σ_k ⟨μ|V_p|k⟩⟨k|V_q|μ⟩/(E0 − E_k) with a bound: {@link elementError} and, for a state that is off its exact
- * direction by δ, 2 δ ‖V_p‖‖V_q‖/d.
+ * direction by δ, δ (‖V_p‖ ‖R V_q μ‖ + ‖V_q‖ ‖R V_p μ‖) + δ² ‖V_p‖‖V_q‖/d.
  */
 function secondOrderEnergies(
-  study: Study,
   internals: StudyInternals,
-  place: number,
+  level: LevelResult,
+  scale: LevelScale,
   k: number,
   part: PartSecondOrder,
 ): Bounded[][] {
-  const level = study.levels[place];
-  if (level === undefined) return [];
   const r = part.row[k] as number;
-  const scale = levelScale(study, internals, level);
   const { isolation, norms } = scale;
   const direction = directionError(internals, level, k, part, scale);
   return part.perturbations.map((left, p) =>
@@ -151,42 +152,56 @@ function secondOrderEnergies(
       const value =
         (rowProduct(left.outside, r, right.scaled, r).re + rowProduct(left.scaled, r, right.outside, r).re) / 2;
       if (!(isolation > 0)) return { value, plusMinus: Number.POSITIVE_INFINITY };
-      const turn = (2 * direction * (norms[p] as number) * (norms[q] as number)) / isolation;
+      const v = norms[p] as number;
+      const u = norms[q] as number;
+      const turn =
+        direction * (v * correctionBound(right, r, scale) + u * correctionBound(left, r, scale)) +
+        (direction * direction * v * u) / isolation;
       return { value, plusMinus: roundUp(elementError(left, right, p, r, r, scale) + turn, 16) };
     }),
   );
 }
 
 /**
- * Bound on the error of Σ_k ⟨μ|V_p|k⟩⟨k|V_q|ν⟩/(E0 − E_k) for the vectors as they are.
- *
- * With x the computed correction of ν, w = V_q ν, r = (1 − P)w − (E0 − H0)x for the exact E0 and isolation d, the exact R w differs from x by at
- * most (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it.
+ * Bound on the error of Σ_k ⟨μ|V_p|k⟩⟨k|V_q|ν⟩/(E0 − E_k) for the vectors as they are: ‖V_p μ‖ times that of R V_q ν, and the
+ * rounding of the sum.
  */
-function elementError(
-  left: PartColumn,
-  right: PartColumn,
-  p: number,
-  r: number,
-  s: number,
-  { isolation, width, tilt, epsilon, imageErrors }: LevelScale,
-): number {
+function elementError(left: PartColumn, right: PartColumn, p: number, r: number, s: number, scale: LevelScale): number {
   const w = left.imageNorm[r] as number;
   const x = right.correctionNorm[s] as number;
-  const solve = ((right.residual[s] as number) + width * x + 2 * tilt * (right.imageNorm[s] as number)) / isolation;
-  const leak = (tilt + epsilon) * x;
   const rounding = 4 * gamma(maxRowEntries(left.outside) + 8) * w * x;
-  return roundUp(w * (solve + leak) * (1 + epsilon) + rounding + (imageErrors[p] as number) * x, 32);
+  const image = scale.imageErrors[p] as number;
+  return roundUp(w * (1 + scale.epsilon) * correctionError(right, s, scale) + rounding + image * x, 32);
+}
+
+/**
+ * Bound on ‖x − R V ν‖ for the computed correction x: with w = V ν, r = (1 − P)w − (E0 − H0)x for the exact E0 and isolation d, at most
+ * (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it.
+ */
+function correctionError(column: PartColumn, s: number, { isolation, width, tilt, epsilon }: LevelScale): number {
+  const x = column.correctionNorm[s] as number;
+  const outside = (column.residual[s] as number) + width * x + 2 * tilt * (column.imageNorm[s] as number);
+  return outside / isolation + (tilt + epsilon) * x;
 }
 
 /**
  * How far a state may be turned inside its block at a node of V: the exact matrix of V differs from the computed diagonal by Δ,
  * what is off the diagonal, the evaluation, the width of the level, and the tilt so far times 2‖V‖; sinΘ ≤ Δ/(gap − Δ).
  */
-function turnByPerturbation(node: NodeEvidence, level: LevelResult, error: number, { norms, width }: LevelScale): number {
+function turnByPerturbation(
+  node: NodeEvidence,
+  level: LevelResult,
+  error: number,
+  { norms, width }: LevelScale,
+): number {
   const { offDiagonal, elementError: evaluation } = level.evidence;
   const off = Math.max(0, ...offDiagonal) + Math.max(0, ...evaluation) + width + 2 * Math.max(...norms) * error;
   return 2 * off < node.gap ? (3 * off) / node.gap : 2;
+}
+
+/** Upper bound on ‖R V ν‖. */
+function correctionBound(column: PartColumn, s: number, scale: LevelScale): number {
+  return (column.correctionNorm[s] as number) + correctionError(column, s, scale);
 }
 
 /**

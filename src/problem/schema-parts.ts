@@ -66,14 +66,18 @@ const NUMBER_FORM = 'a number, [re, im] or text such as "1+2i"';
 /** A real or complex number. */
 export const fileNumber: Shape<FileNumber> = v.pipe(
   v.union(
-    [v.number(NUMBER_FORM), v.tuple([v.number(), v.number()]), v.pipe(v.string(), v.regex(COMPLEX_TEXT, NUMBER_FORM))],
+    [
+      v.number(NUMBER_FORM),
+      v.strictTuple([v.number(), v.number()]),
+      v.pipe(v.string(), v.regex(COMPLEX_TEXT, NUMBER_FORM)),
+    ],
     NUMBER_FORM,
   ),
   v.description('A real number, [re, im], or text such as "1+2i".'),
 );
 
 /** Two sites. */
-export const bond: Shape<[number, number]> = v.tuple([index, index], "a pair [i, j] of sites, counted from 0");
+export const bond: Shape<[number, number]> = v.strictTuple([index, index], "a pair [i, j] of sites, counted from 0");
 
 /** An object whose keys are the caller's; its values are not looked into. */
 export const namedThings: Shape<Record<string, unknown>> = v.custom<Record<string, unknown>>(

@@ -105,7 +105,7 @@ function candidateOf<T>(matrix: Shape<T>): Shape<CandidateFile> {
   return closed({
     operator: matrix,
     label: v.exactOptional(label),
-    ladder: v.exactOptional(about(matrix, "An operator that raises the label by one step; it fixes relative phases.")),
+    ladder: v.exactOptional(matrix),
   });
 }
 
