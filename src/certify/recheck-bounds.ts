@@ -29,7 +29,7 @@ export function checkBounds(
     `${path}.orthonormality`,
     "‖Q Q† − 1‖",
     level.orthonormality,
-    own.orthonormality.tight,
+    own.orthonormality.least,
     own.orthonormality.loose + certificate.whole.orthonormality,
   );
   ledger.claim(
@@ -142,7 +142,7 @@ function checkShifts(
   const names = problem.perturbations.map((v) => v.name);
   const most = (list: Float64Array): number => list.reduce((a, b) => Math.max(a, b), 0);
   const deviation = own.h0.diagonal.reduce((a, energy) => Math.max(a, Math.abs(energy - level.energy)), 0);
-  const own2 = own.orthonormality.tight;
+  const defect = own.orthonormality.least;
   level.states.forEach((state, k) => {
     const at = `${path}.states[${k}].shifts`;
     const named = ledger.claim(
@@ -158,8 +158,8 @@ function checkShifts(
       const found = elements.diagonal[k] as number;
       ledger.near(`${at}[${p}].value`, `the shift ⟨${v.name}⟩`, shift.value, found, 2 * elements.looseError);
       const tight =
-        elements.offDiagonal.tight +
-        2 * v.norm * (own2 + tilt.tight) +
+        elements.offDiagonal.least +
+        2 * v.norm * (defect + tilt.tight) +
         deviation +
         most(own.residuals) +
         elements.error;

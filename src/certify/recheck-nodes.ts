@@ -50,12 +50,12 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
     if (elements === undefined) return;
     const path = `${where}[${p}]`;
     const name = claimed.perturbation;
-    const { tight, loose } = elements.offDiagonal;
+    const { least, loose } = elements.offDiagonal;
     ledger.bound(
       `${path}.offDiagonal`,
       `the off-diagonal block of ${name}`,
       claimed.offDiagonal,
-      tight,
+      least,
       loose + leak(given, p),
     );
     const looseLeaf = elements.withinLeaves + elements.looseError;

@@ -1,7 +1,7 @@
 import type { NodeEvidence } from "../certify/couplings.js";
 import type { StudyInternals } from "../certify/internals.js";
 import type { LevelResult, StateVector, Study } from "../certify/outcome.js";
-import { imageError, images, rowProduct } from "../certify/residuals.js";
+import { imageError, images, rootOfSquares, rowProduct } from "../certify/residuals.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
 import { add, adjoint, maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
@@ -156,7 +156,7 @@ function secondOrderEnergies(
       const u = norms[q] as number;
       const turn =
         direction * (v * correctionBound(right, r, scale) + u * correctionBound(left, r, scale)) +
-        (direction * direction * v * u) / isolation;
+        direction * direction * v * (u / isolation);
       return { value, plusMinus: roundUp(elementError(left, right, p, r, r, scale) + turn, 16) };
     }),
   );
@@ -230,15 +230,18 @@ function directionError(
     if (node.kind !== "second order" || only === undefined) continue;
     const r = part.row[k] as number;
     // the block W is taken on may itself be turned by the error so far
-    const turned = (2 * error * (scale.norms[0] as number) ** 2) / scale.isolation;
+    const norm = scale.norms[0] as number;
+    const turned = 2 * error * norm * (norm / scale.isolation);
     let square = 0;
+    let terms = 0;
     states.forEach((_, other) => {
       const s = part.row[other] as number;
       if (other === k || s < 0 || !passes(node.node, other)) return;
       const element = rowProduct(only.outside, r, only.scaled, s);
       square += (Math.hypot(element.re, element.im) + elementError(only, only, 0, r, s, scale) + turned) ** 2;
+      terms++;
     });
-    error += (2 * Math.sqrt(square)) / node.gap;
+    error += (2 * rootOfSquares(square, terms)) / node.gap;
   }
   return roundUp(error, 16 * (onPath.length + states.length));
 }
@@ -270,14 +273,17 @@ function scaleColumns(rows: Csr, weight: (column: number) => number): Csr {
   };
 }
 
+/** Upper bounds on the norms of all rows. */
 function rowNorms(rows: Csr): Float64Array {
   const norms = new Float64Array(rows.rows);
   for (let r = 0; r < rows.rows; r++) {
+    const from = rows.ptr[r] as number;
+    const to = rows.ptr[r + 1] as number;
     let sum = 0;
-    for (let p = rows.ptr[r] as number; p < (rows.ptr[r + 1] as number); p++) {
+    for (let p = from; p < to; p++) {
       sum += (rows.re[p] as number) ** 2 + (rows.im === undefined ? 0 : (rows.im[p] as number) ** 2);
     }
-    norms[r] = Math.sqrt(sum);
+    norms[r] = roundUp(rootOfSquares(sum, to - from), to - from + 8);
   }
   return norms;
 }

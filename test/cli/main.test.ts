@@ -73,9 +73,18 @@ describe("the program as a process", () => {
   });
 
   it("is on good terms with a reader that stops early", () => {
-    const command = `"${process.execPath}" "${join(builtPackage, "cli/main.js")}" find "${laboratory}" | head -n 1`;
+    // More than a pipe holds, so that the program still writes when the reader has gone.
+    const energies = Array.from({ length: 1000 }, (_, k) => k);
+    const large = {
+      format: "goodbasis-problem",
+      formatVersion: 1,
+      n: 1000,
+      h0: { diagonal: energies },
+      v: { triplets: [] },
+    };
+    writeFileSync(join(folder, "l.json"), JSON.stringify(large));
+    const command = `"${process.execPath}" "${join(builtPackage, "cli/main.js")}" table l.json --format json | head -n 1`;
     const { stdout, stderr } = spawnSync("sh", ["-c", command], { encoding: "utf8", cwd: folder });
-    expect(stdout).toMatch(/^A spin-1 defect/);
-    expect(stderr).toBe("");
+    expect({ stdout, stderr }).toEqual({ stdout: "{\n", stderr: "" });
   });
 });

@@ -2,8 +2,12 @@ import { readFileSync } from "node:fs";
 import { fileURLToPath } from "node:url";
 import { describe, expect, it } from "vitest";
 import { findGoodBasis } from "../../src/certify/find.js";
+import type { BasisState } from "../../src/certify/findings.js";
 import type { Outcome } from "../../src/certify/outcome.js";
+import { validateBasis } from "../../src/certify/validate.js";
+import { perturb } from "../../src/perturb/perturb.js";
 import { type ReadProblem, readProblem } from "../../src/problem/read.js";
+import { readBasis } from "../../src/problem/read-basis.js";
 
 function example(name: string): ReadProblem {
   return readProblem(
@@ -83,6 +87,25 @@ describe("the laboratory example", () => {
   });
 });
 
+/** The fences of a guide that hold a problem file. */
+function problemsIn(guide: string): string[] {
+  const text = readFileSync(fileURLToPath(new URL(`../../docs/${guide}`, import.meta.url)), "utf8");
+  return [...text.matchAll(/^```json\n(.*?)^```$/gms)].map(([, json = ""]) => json);
+}
+
+describe("the problem files in the guides", () => {
+  for (const guide of ["molecule.md", "oscillators.md"]) {
+    it(`of ${guide} work as they stand`, () => {
+      const found = problemsIn(guide);
+      expect(found).toHaveLength(1);
+      for (const json of found) {
+        const { problem, options } = readProblem(json, { name: guide });
+        expect(findGoodBasis(problem, options).verdict).toBe("good");
+      }
+    });
+  }
+});
+
 describe("the molecule example", () => {
   const outcome = study("benzene");
 
@@ -98,6 +121,46 @@ describe("the molecule example", () => {
     expect(pair.map(({ labels }) => labels["mirror"]?.text)).toEqual(["+1", "−1"]);
     expect(pair[0]?.shifts[0]?.value).toBeCloseTo(-0.4 / 3, 12);
     expect(pair[1]?.shifts[0]?.value).toBeCloseTo(0, 12);
+  });
+});
+
+describe("what the molecule guide says to try", () => {
+  it("leaves the pairs to V where the mirror is taken away: same states, lower safe orders", () => {
+    const { problem } = example("benzene");
+    const bare = findGoodBasis({ ...problem, candidates: {} });
+    expect(bare.verdict).toBe("good");
+    const pair = bare.states.filter(({ level }) => level === 1);
+    for (const { safe } of pair) expect(safe).toEqual({ energies: 2, states: 0 });
+    const weights = (states: readonly BasisState[]): number[][] =>
+      states.map(({ vector: { kets, re } }) => {
+        const row = new Array<number>(6).fill(0);
+        kets.forEach((ket, k) => {
+          row[ket] = Number((re[k] ?? 0).toFixed(12)) + 0;
+        });
+        return row;
+      });
+    const labelled = study("benzene").states.filter(({ level }) => level === 1);
+    expect(new Set(weights(pair).map(String))).toEqual(new Set(weights(labelled).map(String)));
+  });
+
+  it("finds the textbook states coupled, and repairs them", () => {
+    const { problem, n } = example("benzene");
+    const states = Array.from({ length: n }, (_, k) =>
+      Array.from({ length: n }, (_, site) => {
+        const angle = (2 * Math.PI * k * site) / n;
+        return [Math.cos(angle) / Math.sqrt(n), Math.sin(angle) / Math.sqrt(n)];
+      }),
+    );
+    const { columns, labels } = readBasis(states, { n });
+    const validation = validateBasis(problem, columns, labels);
+    expect(validation.verdict).toBe("not good");
+    const pairs = validation.levels.flatMap(({ worst }) => worst);
+    expect(pairs.map(({ columns: pair }) => [...pair].sort())).toEqual([
+      [1, 5],
+      [2, 4],
+    ]);
+    for (const { size } of pairs) expect(size).toBeCloseTo(0.4 / 6, 12);
+    for (const { repair } of validation.levels) expect(repair.left).toBeLessThan(1e-15);
   });
 });
 
@@ -121,5 +184,21 @@ describe("the oscillator example", () => {
     expect(pair.map(({ labels }) => labels["exchange"]?.text)).toEqual(["+1", "−1"]);
     expect(pair[0]?.shifts[0]?.value).toBeCloseTo(0.01 * 0.75 + 0.04 / 2, 12);
     expect(pair[1]?.shifts[0]?.value).toBeCloseTo(0.01 * 0.75 - 0.04 / 2, 12);
+  });
+
+  it("does not feel the cut", () => {
+    const file = JSON.parse(
+      readFileSync(fileURLToPath(new URL("../../docs/examples/oscillators.json", import.meta.url)), "utf8"),
+    );
+    for (const factor of file.space) factor.oscillator = 16;
+    const { problem, options } = readProblem(file);
+    const larger = findGoodBasis(problem, options);
+    if (larger.verdict !== "good" || outcome.verdict !== "good") throw new Error("not good");
+    const [few, many] = [outcome, larger].map(({ basis }) => perturb(basis, { order: 2 }).states);
+    expect(few).toHaveLength(10);
+    few?.forEach(({ first, second }, k) => {
+      expect(many?.[k]?.first?.[0]?.value).toBeCloseTo(first?.[0]?.value ?? Number.NaN, 12);
+      expect(many?.[k]?.second?.[0]?.[0]?.value).toBeCloseTo(second?.[0]?.[0]?.value ?? Number.NaN, 10);
+    });
   });
 });
