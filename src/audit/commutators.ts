@@ -9,9 +9,13 @@ export type CommutatorVerdict = "commutes" | "broken" | "undecided";
 
 /** An element of a commutator, with its kets. */
 export interface OffendingElement {
+  /** Number of the row's ket. */
   readonly row: number;
+  /** Number of the column's ket. */
   readonly column: number;
+  /** Name of the row's ket. */
   readonly rowKet: string;
+  /** Name of the column's ket. */
   readonly columnKet: string;
   /** Modulus of the element. */
   readonly size: number;
@@ -19,8 +23,11 @@ export interface OffendingElement {
 
 /** What is known of one commutator [A, B]. */
 export interface CommutatorFinding {
+  /** Name of A. */
   readonly left: string;
+  /** Name of B. */
   readonly right: string;
+  /** Whether [A, B] vanishes to the threshold. */
   readonly verdict: CommutatorVerdict;
   /** Frobenius norm as computed. */
   readonly norm: number;

@@ -33,10 +33,10 @@ export interface FamilyMember {
 }
 
 /** Denominators that a rational label may have when nothing is declared. */
-export const RECOGNISED_DENOMINATOR = 12;
+const RECOGNISED_DENOMINATOR = 12;
 
 /** Orders of a root of unity that are tried when nothing is declared. */
-export const RECOGNISED_ROOT_ORDER = 64;
+const RECOGNISED_ROOT_ORDER = 64;
 
 /**
  * Checks a declaration.

@@ -67,6 +67,9 @@ export interface PreparedProblem {
  * @throws GoodBasisError `shape`, `not-finite`, `not-hermitian`, `not-normal`, `name`: with the operator, the place and size
  */
 export function prepareProblem(problem: Problem): PreparedProblem {
+  if (typeof problem !== "object" || problem === null) {
+    throw new GoodBasisError("option", `the problem is ${String(problem)}; give { h0, v, candidates }`, { problem });
+  }
   const h0 = hermitian("H0", read("H0", problem.h0));
   const n = h0.n;
   const perturbations = readPerturbations(problem.v, n);

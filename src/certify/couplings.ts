@@ -1,5 +1,6 @@
 import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import type { Complex } from "../numerics/complex.js";
 import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp } from "../numerics/rounding.js";
@@ -13,6 +14,7 @@ import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */
 export interface CouplingBound {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** By the selection rule; Infinity where the node's operator says nothing about V. */
   readonly selectionRule: number;
@@ -24,17 +26,21 @@ export interface CouplingBound {
 
 /** What one node of the tree contributes to one level. */
 export interface NodeEvidence {
+  /** Number of the node in the tree. */
   readonly node: number;
+  /** Name of its operator. */
   readonly operator: string;
+  /** What kind of refinement it is. */
   readonly kind: NodeKind;
   /** Eigenvalues that occur in this level. */
-  readonly values: readonly { readonly re: number; readonly im: number }[];
+  readonly values: readonly Complex[];
   /** Smallest distance between them. */
   readonly gap: number;
   /** Bounds on ‖[A, V]‖₂, one a perturbation; empty where the node is no label. */
   readonly commutators: readonly number[];
   /** Largest bound on ‖A q − a q‖ and ‖A†q − a*q‖ over the states below. */
   readonly residual: number;
+  /** One bound for each perturbation. */
   readonly couplings: readonly CouplingBound[];
   /**
    * Whether the label is conserved sharply enough, for its gap, to stand at every order: the selection rule bounds the
@@ -45,20 +51,27 @@ export interface NodeEvidence {
 
 /** A pair of states of one level with its element of one perturbation. */
 export interface PairElement {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** Places of the two states within the level. */
   readonly first: number;
+  /** Place of the second state within the level. */
   readonly second: number;
+  /** Real part of the element. */
   readonly re: number;
+  /** Imaginary part of the element. */
   readonly im: number;
+  /** Its modulus, as computed. */
   readonly size: number;
   /** Rigorous lower and upper bounds on the modulus. */
   readonly atLeast: number;
+  /** Rigorous upper bound on the modulus. */
   readonly atMost: number;
 }
 
 /** All in-level elements of the perturbations, summarised. */
 export interface LevelCouplings {
+  /** The nodes at which states of the level part company. */
   readonly nodes: readonly NodeEvidence[];
   /** For each perturbation: V_μμ of each state. */
   readonly diagonals: readonly Float64Array[];

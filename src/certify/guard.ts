@@ -28,10 +28,13 @@ export interface GuardFinding {
 
 /** The guard of one level in one sector for one perturbation. */
 export interface SectorGuard {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** Which sector, as an index into the level's sectors. */
   readonly sector: number;
+  /** Largest ratio of V's blocks to other levels. */
   readonly first: GuardFinding;
+  /** Largest ratio of the second-order operator's blocks to other levels. */
   readonly second: GuardFinding;
   /** Null where V tells no states of this sector apart, or several perturbations are studied together. */
   readonly inside: GuardFinding | null;
@@ -39,6 +42,7 @@ export interface SectorGuard {
 
 /** The denominators guard of one level. */
 export interface LevelGuard extends GuardSetting {
+  /** One entry for each sector and perturbation. */
   readonly sectors: readonly SectorGuard[];
   /** Largest of all ratios over other levels. */
   readonly outside: number;

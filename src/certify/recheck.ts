@@ -21,6 +21,9 @@ import { computeSeals } from "./seal.js";
 
 export type { RecheckFinding, RecheckReport } from "./recheck-report.js";
 
+/** Operators smaller than this (or larger than its inverse) would lose their squares to underflow. */
+const SMALLEST_NORM = 2 ** -400;
+
 /**
  * Checks a certificate again from the operators, with code of its own: no product, bound or eigenvalue is taken from the code
  * that wrote it.
@@ -148,7 +151,7 @@ function checkSeals(ledger: Ledger, claims: Certificate): void {
 function checkOperators(
   ledger: Ledger,
   { operators }: Certificate,
-  own: readonly { readonly name: string; readonly operator: { readonly hash: string } }[],
+  own: readonly { readonly name: string; readonly operator: { readonly hash: string; readonly norm: number } }[],
   perturbations: number,
 ): void {
   operators.forEach((claimed, k) => {
@@ -157,6 +160,13 @@ function checkOperators(
       claimed.role === role,
       `operators[${k}].role`,
       () => `${claimed.name} is listed as ${claimed.role} where a ${role} belongs`,
+    );
+    const norm = own[k]?.operator.norm ?? 0;
+    ledger.claim(
+      norm === 0 || (norm > SMALLEST_NORM && norm < 1 / SMALLEST_NORM),
+      `operators[${k}]`,
+      () =>
+        `not checked: ‖${claimed.name}‖ is about ${norm}, whose squares leave the range of doubles; change the unit`,
     );
     const hash = own[k]?.operator.hash ?? "";
     ledger.claim(

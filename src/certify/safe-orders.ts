@@ -7,7 +7,9 @@ import type { LevelState } from "./level-states.js";
  * `"all"` means every order; `"none"` that the zeroth-order state itself is not settled.
  */
 export interface SafeOrders {
+  /** Highest order of the energies. */
   readonly energies: number | "all";
+  /** Highest order of the states. */
   readonly states: number | "all" | "none";
 }
 

@@ -22,8 +22,11 @@ import { type SectorEvidence, type WholeEvidence, wholeEvidence } from "./whole.
 
 /** A step of the work, for a progress display. */
 export interface Progress {
+  /** What is being done. */
   readonly stage: "audit" | "labels" | "levels";
+  /** Steps done of this stage. */
   readonly done: number;
+  /** Steps of this stage in all. */
   readonly of: number;
 }
 

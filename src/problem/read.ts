@@ -24,7 +24,9 @@ export interface ReadProblem {
   readonly n: number;
   /** The options that the file asks for. */
   readonly options: ProblemOptions;
+  /** What the problem is called. */
   readonly title: string | undefined;
+  /** What a reader should know of it. */
   readonly note: string | undefined;
   /** Whether the file says that its numbers are made up. */
   readonly invented: boolean;

@@ -5,7 +5,9 @@ import type { ProblemOptions } from "./problem-file.js";
 
 /** What a problem file holds besides the problem. */
 export interface WriteProblemOptions {
+  /** What the problem is called. */
   readonly title?: string;
+  /** What a reader should know of it. */
   readonly note?: string;
   /** Whether the numbers are made up. */
   readonly invented?: boolean;

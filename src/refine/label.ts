@@ -17,11 +17,13 @@ export type LabelStatus = "declared" | "proposed" | "measured" | "not sharp";
 export interface StateLabel {
   /** Eigenvalue of the operator (expectation value where the status is `not sharp`), real part. */
   readonly re: number;
+  /** Imaginary part of the same. */
   readonly im: number;
   /** Bound on the distance to the operator's nearest exact eigenvalue; for `not sharp` the standard deviation. */
   readonly radius: number;
   /** As written in the trade: "3/2", "−1", "exp(2πi·1/3)", or a number. */
   readonly text: string;
+  /** How the label came to be. */
   readonly status: LabelStatus;
   /**
    * `conserved`: H0 and V conserve it, so it is evidence; `descriptive`: V breaks it, so it only names the state;

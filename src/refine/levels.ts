@@ -124,7 +124,7 @@ function choose(
   }
   if (!("from" in choice) || !("to" in choice)) throw malformed(choice);
   const { from, to } = choice;
-  if (Number.isNaN(from) || Number.isNaN(to) || from > to) throw malformed(choice);
+  if (typeof from !== "number" || typeof to !== "number" || !(from <= to)) throw malformed(choice);
   const found = all.filter((place) => (high[place] as number) >= from && (low[place] as number) <= to);
   if (found.length > 0) return found;
   const outside = (place: number): number => Math.max(from - (high[place] as number), (low[place] as number) - to);

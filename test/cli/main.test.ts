@@ -61,6 +61,9 @@ describe("the program as a process", () => {
       /^error \[output\]: goodbasis find: new\.txt, no\/such\/folder\.json cannot be written \(ENOENT/,
     );
     expect(readdirSync(folder).sort()).toEqual(["c.json", "p.json", "r.txt"]);
+    const onto = program(["find", "p.json", "--out", "new.txt", "--certificate", ".", "--force"]);
+    expect(onto).toMatchObject({ status: 2, stdout: "", stderr: expect.stringContaining("is a folder") });
+    expect(readdirSync(folder).sort()).toEqual(["c.json", "p.json", "r.txt"]);
     expect(readFileSync(join(folder, "r.txt"), "utf8")).toBe(before);
   });
 

@@ -17,7 +17,8 @@ function publishedSchema(): string {
     ignoreActions: ["finite"],
     definitions: { matrix: anyMatrix, number: fileNumber, index, positiveWhole },
   });
-  return `${JSON.stringify({ $schema, $id: "goodbasis/problem-schema.json", ...schema }, undefined, 2)}\n`;
+  const text = JSON.stringify({ $schema, $id: "goodbasis/problem-schema.json", ...schema }, undefined, 2);
+  return `${text.replace(/\[\s+("[^"\n]*"(?:,\s+"[^"\n]*")*)\s+\]/g, (_, list: string) => `[${list.replace(/,\s+/g, ", ")}]`)}\n`;
 }
 
 describe("the JSON Schema of problem files", () => {

@@ -20,7 +20,6 @@ import {
   minus,
   modulus,
   norm2,
-  ONE,
   over,
   polar,
   product,
@@ -61,13 +60,21 @@ export function checkOutcome(exact: ExactProblem, options: FindOptions = {}): { 
       const state = outcome.states[k];
       if (state === undefined) continue;
       const energy = fixed(state.energy, units);
-      const nearest = exact.energies.reduce((least, x) => {
-        const distance = size(fixed(x) - energy);
-        return least === undefined || distance < least ? distance : least;
-      }, undefined as bigint | undefined);
+      const nearest = exact.energies.reduce(
+        (least, x) => {
+          const distance = size(fixed(x) - energy);
+          return least === undefined || distance < least ? distance : least;
+        },
+        undefined as bigint | undefined,
+      );
       claims.atMost(nearest ?? 0n, state.energyPlusMinus, `state ${k} energy`, units);
       const q = columns(states, [k]);
-      claims.atMost(frobenius(minus(product(h0, q), scaled(q, energy))), state.energyPlusMinus, `state ${k} residual`, units);
+      claims.atMost(
+        frobenius(minus(product(h0, q), scaled(q, energy))),
+        state.energyPlusMinus,
+        `state ${k} residual`,
+        units,
+      );
     }
     const e0 = exactEnergy(exact, level.energy);
     const members = exact.energies.flatMap((x, i) => (x === e0 ? [i] : []));
@@ -112,7 +119,12 @@ export function checkOutcome(exact: ExactProblem, options: FindOptions = {}): { 
       for (let i = 0; i < own.length; i++) {
         for (let j = 0; j < i; j++) {
           if (parted.has(`${i},${j}`)) continue;
-          claims.atMost(modulus(elements, i, j), evidence.withinLeaves[p] ?? Number.NaN, `${here} inside a leaf of V${p}`, units);
+          claims.atMost(
+            modulus(elements, i, j),
+            evidence.withinLeaves[p] ?? Number.NaN,
+            `${here} inside a leaf of V${p}`,
+            units,
+          );
         }
       }
       if (members.length === level.degeneracy) checkShifts(exact, outcome, l, p, members, claims);
@@ -136,11 +148,21 @@ function scaled(a: FixedMatrix, factor: bigint): FixedMatrix {
 
 function exactEnergy(exact: ExactProblem, energy: number): number {
   const unscaled = energy * 2 ** -exact.plan.scale;
-  return exact.energies.reduce((best, x) => (Math.abs(x - unscaled) < Math.abs(best - unscaled) ? x : best), exact.energies[0] ?? 0);
+  return exact.energies.reduce(
+    (best, x) => (Math.abs(x - unscaled) < Math.abs(best - unscaled) ? x : best),
+    exact.energies[0] ?? 0,
+  );
 }
 
 /** Sorted exact shifts of the exact level against the sorted ones stated. */
-function checkShifts(exact: ExactProblem, outcome: Outcome, l: number, p: number, members: readonly number[], claims: Claims): void {
+function checkShifts(
+  exact: ExactProblem,
+  outcome: Outcome,
+  l: number,
+  p: number,
+  members: readonly number[],
+  claims: Claims,
+): void {
   const level = outcome.levels[l];
   const inner = exact.inner[p];
   if (level === undefined || inner === undefined) return;
@@ -163,7 +185,10 @@ function checkLabels(exact: ExactProblem, outcome: Outcome, states: FixedMatrix,
       const label = Object.values(state.labels)[c];
       if (label === undefined) return;
       const q = columns(states, [k]);
-      for (const [side, sign] of [[a, 1], [adjoint(a), -1]] as const) {
+      for (const [side, sign] of [
+        [a, 1],
+        [adjoint(a), -1],
+      ] as const) {
         const image = product(side, q);
         const [x, y] = [fixed(label.re), fixed(sign * label.im)];
         const rest = matrix(exact.n, 1, (i) => {
@@ -180,7 +205,9 @@ function checkLabels(exact: ExactProblem, outcome: Outcome, states: FixedMatrix,
 /** E2 of every state that may have one against the exact one. */
 function checkSecondOrder(exact: ExactProblem, basis: GoodBasis, inner: FixedMatrix, claims: Claims): void {
   if (exact.plan.breaking !== 0) return;
-  const select = basis.states.filter(({ safe }) => safe.energies === "all" || safe.energies >= 2).map((state) => state.index);
+  const select = basis.states
+    .filter(({ safe }) => safe.energies === "all" || safe.energies >= 2)
+    .map((state) => state.index);
   if (select.length === 0) return;
   for (const found of perturb(basis, { select }).states) {
     const state = basis.states[found.index];
@@ -189,11 +216,14 @@ function checkSecondOrder(exact: ExactProblem, basis: GoodBasis, inner: FixedMat
     const e0 = exactEnergy(exact, level.energy);
     const weightIn = new Map<string, number>();
     exact.sectors.forEach((sector, i) => {
-      if (exact.energies[i] === e0) weightIn.set(sector, (weightIn.get(sector) ?? 0) + double(modulus(inner, i, found.index)) ** 2);
+      if (exact.energies[i] === e0)
+        weightIn.set(sector, (weightIn.get(sector) ?? 0) + double(modulus(inner, i, found.index)) ** 2);
     });
     const candidates = [...weightIn].filter(([, weight]) => weight > 1e-6);
     // where no label parts the sectors the state may spread over several
-    const members = exact.energies.flatMap((x, i) => (x === e0 && candidates.some(([s]) => s === exact.sectors[i]) ? [i] : []));
+    const members = exact.energies.flatMap((x, i) =>
+      x === e0 && candidates.some(([s]) => s === exact.sectors[i]) ? [i] : [],
+    );
     const truth = secondOrder(exact, members, e0, columns(inner, [found.index]));
     if (truth === undefined) continue;
     const units = -exact.plan.scale;
@@ -211,15 +241,26 @@ function checkSecondOrder(exact: ExactProblem, basis: GoodBasis, inner: FixedMat
 }
 
 /** Second-order energies of the exact state nearest to `y`; undefined where the exact states are not unique to first order. */
-function secondOrder(exact: ExactProblem, members: readonly number[], e0: number, y: FixedMatrix): bigint[][] | undefined {
+function secondOrder(
+  exact: ExactProblem,
+  members: readonly number[],
+  e0: number,
+  y: FixedMatrix,
+): bigint[][] | undefined {
   const others = exact.energies.flatMap((x, i) => (x === e0 ? [] : [i]));
   const rows = members.map((_, k) => k);
   let basis = identity(members.length);
   for (const inner of exact.inner) {
-    basis = refine(basis, product(product(adjoint(basis), block(inner, members, members)), basis), block(y, members, [0]));
+    basis = refine(
+      basis,
+      product(product(adjoint(basis), block(inner, members, members)), basis),
+      block(y, members, [0]),
+    );
     if (basis.cols === 1) break;
   }
-  const outside = exact.inner.map((inner) => product(block(inner, others, members), columns(basis, rows.slice(0, basis.cols))));
+  const outside = exact.inner.map((inner) =>
+    product(block(inner, others, members), columns(basis, rows.slice(0, basis.cols))),
+  );
   const resolved = (p: number, q: number): FixedMatrix => {
     const left = outside[p] ?? basis;
     const right = outside[q] ?? basis;
@@ -279,11 +320,20 @@ export function checkWhole(exact: ExactProblem): { claims: Claims; study: StudyF
     const frame = frames[place];
     return frame === undefined ? [0n, 0n] : at(frame, i, j - (starts[place] ?? 0));
   });
-  claims.atMost(spectralRadius(minus(product(adjoint(all), all), identity(width))), whole.orthonormality, "orthonormality of the whole");
+  claims.atMost(
+    spectralRadius(minus(product(adjoint(all), all), identity(width))),
+    whole.orthonormality,
+    "orthonormality of the whole",
+  );
   const found = study.sectors.sectors.flatMap((sector) => [...sector.energies]).sort((a, b) => a - b);
   const truth = [...exact.energies].sort((a, b) => a - b);
   found.forEach((energy, k) => {
-    claims.atMost(size(fixed(truth[k] ?? 0) - fixed(energy, units)), whole.energyEnclosure, `energy ${k} of the whole`, units);
+    claims.atMost(
+      size(fixed(truth[k] ?? 0) - fixed(energy, units)),
+      whole.energyEnclosure,
+      `energy ${k} of the whole`,
+      units,
+    );
   });
   const h0 = fixedOperator(exact.h0, units);
   let square = 0n;
@@ -328,6 +378,3 @@ export function checkWhole(exact: ExactProblem): { claims: Claims; study: StudyF
   }
   return { claims, study };
 }
-
-/** 1 in fixed point, for callers that build their own truths. */
-export const UNIT: bigint = ONE;

@@ -1,6 +1,6 @@
 import { Operator } from "../../src/operator/operator.js";
 import { generator } from "../numerics/eigen/matrices.js";
-import { type FixedMatrix, product as fixedProduct, adjoint as fixedAdjoint } from "./fixed.js";
+import { type FixedMatrix, adjoint as fixedAdjoint, product as fixedProduct } from "./fixed.js";
 import { fixedOperator } from "./oracle.js";
 
 /** How V looks between states of one level and one sector. */
@@ -77,7 +77,8 @@ export function exactProblem(plan: ExactPlan): ExactProblem {
   const hidden = (grid: Grid, scale: number, symmetric = true): Operator => {
     const moved = multiply(multiply(u, grid), star(u));
     const back = star(moved);
-    const mean = (a: number[][], b: number[][]): number[][] => a.map((row, i) => row.map((x, j) => (x + (b[i]?.[j] ?? 0)) / 2));
+    const mean = (a: number[][], b: number[][]): number[][] =>
+      a.map((row, i) => row.map((x, j) => (x + (b[i]?.[j] ?? 0)) / 2));
     const turned = symmetric ? { re: mean(moved.re, back.re), im: mean(moved.im, back.im) } : moved;
     const scaled = (rows: number[][]): number[][] => rows.map((row) => row.map((x) => x * 2 ** scale));
     const given = { re: scaled(turned.re), im: scaled(turned.im) };
@@ -97,20 +98,40 @@ export function exactProblem(plan: ExactPlan): ExactProblem {
     perturbations,
     labels: values.map((list) =>
       plan.unitary
-        ? hidden(diagonal((i) => [i4[(list[i] ?? 0) % 4] ?? 0, i4[((list[i] ?? 0) + 3) % 4] ?? 0]), 0, false)
-        : hidden(diagonal((i) => [list[i] ?? 0, 0]), 0),
+        ? hidden(
+            diagonal((i) => [i4[(list[i] ?? 0) % 4] ?? 0, i4[((list[i] ?? 0) + 3) % 4] ?? 0]),
+            0,
+            false,
+          )
+        : hidden(
+            diagonal((i) => [list[i] ?? 0, 0]),
+            0,
+          ),
     ),
     frame,
     energies,
     sectors,
-    inner: perturbations.map((v) => fixedProduct(fixedProduct(fixedAdjoint(frame), fixedOperator(v, -plan.scale)), frame)),
+    inner: perturbations.map((v) =>
+      fixedProduct(fixedProduct(fixedAdjoint(frame), fixedOperator(v, -plan.scale)), frame),
+    ),
   };
 }
 
 /** A product of three reflectors 1 − 2vv†/|v|² whose entries are whole multiples of 1/2. */
 function reflectors(n: number, complex: boolean, random: () => number): Grid {
-  const units: readonly [number, number][] = complex ? [[1, 0], [-1, 0], [0, 1], [0, -1]] : [[1, 0], [-1, 0]];
-  const pick = <T>(list: readonly T[]): T => list[Math.min(list.length - 1, Math.floor((random() + 0.5) * list.length))] as T;
+  const units: readonly [number, number][] = complex
+    ? [
+        [1, 0],
+        [-1, 0],
+        [0, 1],
+        [0, -1],
+      ]
+    : [
+        [1, 0],
+        [-1, 0],
+      ];
+  const pick = <T>(list: readonly T[]): T =>
+    list[Math.min(list.length - 1, Math.floor((random() + 0.5) * list.length))] as T;
   let u: Grid = { re: square(n, (i, j) => Number(i === j)), im: square(n, () => 0) };
   for (let k = 0; k < 3; k++) {
     const count = n >= 4 ? 4 : n >= 2 ? 2 : 0;

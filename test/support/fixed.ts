@@ -66,7 +66,11 @@ export function zeros(rows: number, cols: number): FixedMatrix {
 }
 
 /** The matrix of a rule. */
-export function matrix(rows: number, cols: number, entry: (i: number, j: number) => readonly [bigint, bigint]): FixedMatrix {
+export function matrix(
+  rows: number,
+  cols: number,
+  entry: (i: number, j: number) => readonly [bigint, bigint],
+): FixedMatrix {
   const out = zeros(rows, cols);
   for (let i = 0; i < rows; i++) {
     for (let j = 0; j < cols; j++) {
@@ -204,7 +208,14 @@ export function eigen(of: FixedMatrix): FixedEigen {
   return { values: order.map((k) => a.re[k * n + k] ?? 0n), vectors: columns(v, order) };
 }
 
-function turnColumns(a: FixedMatrix, p: number, q: number, c: bigint, s: bigint, [e, f]: readonly [bigint, bigint]): void {
+function turnColumns(
+  a: FixedMatrix,
+  p: number,
+  q: number,
+  c: bigint,
+  s: bigint,
+  [e, f]: readonly [bigint, bigint],
+): void {
   for (let i = 0; i < a.rows; i++) {
     const [x, y] = at(a, i, p);
     const [u, w] = at(a, i, q);

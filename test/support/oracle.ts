@@ -1,6 +1,6 @@
 import type { Csr } from "../../src/numerics/csr.js";
 import type { Operator } from "../../src/operator/operator.js";
-import { double, DUST, fixed, type FixedMatrix, matrix, zeros } from "./fixed.js";
+import { DUST, double, type FixedMatrix, fixed, matrix, zeros } from "./fixed.js";
 
 /** The entries of an operator times 2^shift, exactly. */
 export function fixedOperator(operator: Operator, shift = 0): FixedMatrix {
@@ -25,7 +25,9 @@ export function fixedColumns(rows: Csr): FixedMatrix {
 
 /** State vectors as columns. */
 export function fixedStates(
-  states: readonly { readonly vector: { readonly kets: Int32Array; readonly re: Float64Array; readonly im: Float64Array | undefined } }[],
+  states: readonly {
+    readonly vector: { readonly kets: Int32Array; readonly re: Float64Array; readonly im: Float64Array | undefined };
+  }[],
   n: number,
 ): FixedMatrix {
   const out = zeros(n, states.length);
