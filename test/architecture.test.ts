@@ -195,6 +195,11 @@ describe("the rules of the house say no", () => {
         "certify/recheck-hash.ts",
         'import { C } from "./certificate.js";\nconst later = await import("../refine/tree.js");',
       ],
+      [
+        "certify/recheck-labels.ts",
+        'import { p } from "../audit/problem.js";\nimport { s } from "./seal.js";\n' +
+          'import { r } from "../audit/resolution.js";\nimport { S } from "../exact/surd.js";',
+      ],
       ["problem/read.ts", 'let x: import("../refine/tree.js").Tree;'],
       ["problem/write.ts", 'import type { O } from "../certify/find.js";\nimport { f } from "../certify/find.js";'],
       ["attic/old.ts", ""],
@@ -219,6 +224,8 @@ describe("the rules of the house say no", () => {
       "certify/recheck.ts imports numerics/eigen.ts",
       "certify/recheck-hash.ts imports certify/certificate.ts",
       "certify/recheck-hash.ts imports refine/tree.ts",
+      "certify/recheck-labels.ts imports audit/resolution.ts",
+      "certify/recheck-labels.ts imports exact/surd.ts",
     ]);
   });
 

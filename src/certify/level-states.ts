@@ -81,7 +81,7 @@ export function levelStates(
 }
 
 /** The steps from the root to a step, root first. */
-function pathTo(step: PathStep, nodes: readonly TreeNode[]): PathStep[] {
+export function pathTo(step: PathStep, nodes: readonly TreeNode[]): PathStep[] {
   const path: PathStep[] = [];
   for (let at: PathStep | undefined = step; at !== undefined; at = nodes[at.node]?.from) path.push(at);
   return path.reverse();

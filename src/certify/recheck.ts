@@ -35,7 +35,9 @@ const SMALLEST_NORM = 2 ** -400;
  *
  * Not checked against the operators: the denominators guard of a certificate of some levels only, or of sectors too large to be
  * multiplied out again in reasonable time (it is then checked against itself); and completeness where a connected part of H0 has
- * more than 1500 kets and not all levels are certified (which is a finding).
+ * more than 1500 kets and not all levels are certified (which is a finding). Where only some levels are certified, the number of
+ * all levels and the bounds over the whole basis are checked as far as the certified states bear on them. The words of `limitedBy`,
+ * the resolution and the library's version are sealed but claim nothing.
  *
  * @param certificate - what `outcome.certificate()` wrote, or its JSON parsed
  * @param problem - the problem that it is about, with the same operators

@@ -243,4 +243,10 @@ describe("what is no certificate of this problem is refused", () => {
       );
     }
   });
+
+  it("or says so where the numbers are too small for it", () => {
+    const tiny: Problem = { h0: { diagonal: [1, 1, 2] }, v: { diagonal: [1e-200, 0, 0] } };
+    const { findings } = recheck(findGoodBasis(tiny).certificate(), tiny);
+    expect(findings).toContainEqual({ path: "operators[1]", message: expect.stringContaining("change the unit") });
+  });
 });

@@ -84,6 +84,23 @@ const ring = (sites: number): Problem => {
   };
 };
 
+/** H0 that is not diagonal in the kets: exchange between neighbours, disturbed by exchange between next neighbours. */
+const heisenberg = (sites: number): Problem => {
+  const chain = spinChain(sites);
+  const exchange = (distance: number): Operator =>
+    Operator.sum(
+      ...Array.from({ length: sites }, (_, i) => {
+        const k = (i + distance) % sites;
+        return chain.szsz(i, k).plus(chain.exchange(i, k));
+      }),
+    );
+  return {
+    h0: exchange(1),
+    v: exchange(2).scale(0.1),
+    candidates: { Sz: { operator: chain.totalSz, label: "m" }, T: translation(sites, 2), R: reflection(sites, 2) },
+  };
+};
+
 const rotor: Problem = {
   h0: { diagonal: [4, 1, 0, 1, 4] },
   v: [
@@ -138,6 +155,9 @@ export const CASES: Readonly<Record<string, Case>> = {
   "a benzene ring with reflections": { problem: benzene(), options: {}, verdict: "good" },
   "momenta on a ring of five spins": { problem: ring(5), options: {}, verdict: "good" },
   "some levels of a ring of six spins": { problem: ring(6), options: { levels: { lowest: 2 } }, verdict: "good" },
+  "all levels of a ring of six spins with exchange": { problem: heisenberg(6), options: {}, verdict: "good" },
+  "the lowest of them": { problem: heisenberg(6), options: { levels: { lowest: 3 } }, verdict: "good" },
+  "two in the middle": { problem: heisenberg(6), options: { levels: { nearest: 0, count: 2 } }, verdict: "good" },
   "second order on three kets": {
     problem: {
       h0: { diagonal: [0, 0, 2] },

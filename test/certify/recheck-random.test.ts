@@ -112,11 +112,12 @@ function planted(draft: Draft): Problem {
 
 describe("recheck", () => {
   it("passes every certificate of a problem with planted symmetries", () => {
+    const number = fc.double({ min: -1, max: 1, noNaN: true }).map((x) => (Math.abs(x) < 1e-100 ? 0 : x));
     const draft = fc.integer({ min: 2, max: 8 }).chain((n) =>
       fc.record({
         energies: fc.array(fc.constantFrom(0, 0, 1, 3), { minLength: n, maxLength: n }),
         labels: fc.array(fc.constantFrom(-1, 0, 1), { minLength: n, maxLength: n }),
-        elements: fc.array(fc.oneof(fc.constantFrom(0, 0.5), fc.double({ min: -1, max: 1, noNaN: true })), {
+        elements: fc.array(fc.oneof(fc.constantFrom(0, 0.5), number), {
           minLength: 17,
           maxLength: 17,
         }),

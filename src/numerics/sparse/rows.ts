@@ -118,7 +118,7 @@ const NO_IMAGINARY_PART = new Float64Array(0);
 const LARGEST_TAG = 2 ** 31 - 1;
 
 /** Results up to this many entries are gathered here before they are copied; larger ones get arrays of their own. */
-const KEPT_ENTRIES = 2 ** 15;
+const KEPT_ENTRIES = 2 ** 17;
 const GATHERED = {
   col: new Int32Array(KEPT_ENTRIES),
   re: new Float64Array(KEPT_ENTRIES),
