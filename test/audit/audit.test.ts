@@ -142,6 +142,33 @@ describe("auditCommutators", () => {
     ).toEqual(["commutes", "broken"]);
   });
 
+  it("two spins at zero field: every set, whatever the order of the candidates", () => {
+    const one = Operator.identity(2);
+    const [x, z] = [
+      Operator.from(
+        [
+          [0, 1],
+          [1, 0],
+        ],
+        exact,
+      ),
+      Operator.diagonal([1, -1], exact),
+    ];
+    const all = { "1x": x.kron(one), "2z": one.kron(z), "1z": z.kron(one), "2x": one.kron(x) };
+    const sets = (names: readonly (keyof typeof all)[]): string[] =>
+      auditCommutators({
+        h0: Operator.zero(4),
+        v: Operator.zero(4),
+        candidates: Object.fromEntries(names.map((name) => [`s${name}`, all[name]])),
+      })
+        .sets.map((set) => [...set].sort().join(" "))
+        .sort();
+    const wanted = ["s1x s2x", "s1x s2z", "s1z s2x", "s1z s2z"];
+    expect(sets(["1x", "2z", "1z", "2x"])).toEqual(wanted);
+    expect(sets(["2x", "1z", "2z", "1x"])).toEqual(wanted);
+    expect(sets(["1x", "1z", "2x", "2z"])).toEqual(wanted);
+  });
+
   it("points out an edge in the reason", () => {
     const n = 12;
     const number = Operator.diagonal(

@@ -70,6 +70,8 @@ describe("maximalCommutingSets", () => {
     expect(large.complete).toBe(false);
     expect(large.sets.length).toBeLessThanOrEqual(SET_BUDGET);
     expect(maximalCommutingSets(2, () => true, 0)).toEqual({ sets: [], complete: false });
+    expect(maximalCommutingSets(1, () => true, 1)).toEqual({ sets: [], complete: false });
+    expect(maximalCommutingSets(1, () => true, 2)).toEqual({ sets: [[0]], complete: true });
   });
 
   it("a budget that is just enough is complete", () => {

@@ -116,6 +116,26 @@ describe("a step down by combinations", () => {
     );
   });
 
+  it("bounds the products' own rounding where the vectors have none", () => {
+    let largest = 0;
+    fc.assert(
+      fc.property(shapes, ({ sizes, seed, complex }) => {
+        const d = sizes.reduce((a, b) => a + b, 0);
+        const next = random(seed);
+        const v = operatorOf(hermitian(d, next, complex), "exact");
+        const step = descentStep(children(orthonormal(d, d, next, complex), sizes), {
+          frame: diagonalCsr(new Float64Array(d).fill(1)),
+        });
+        const carried = rotateAll({ ...step, spaces: [space(step.rows)] }, v.csr).children[0] as Csr;
+        const truth = double(norm2(minus(fixedSquare(carried), elements(v, step.rows))));
+        largest = Math.max(largest, truth);
+        expect(truth).toBeLessThanOrEqual(rotationError({ ...step, compositionError: 0 }, v.csr, v, 0));
+      }),
+      { seed: 54, numRuns: 25 },
+    );
+    expect(largest).toBeGreaterThan(1e-17);
+  });
+
   it("bounds what lies between the children, and hands each its own part", () => {
     fc.assert(
       fc.property(shapes, ({ sizes, more, seed, complex }) => {

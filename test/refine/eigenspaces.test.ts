@@ -79,6 +79,17 @@ describe("a diagonal operator", () => {
     check(matrix, split, true, 0);
   });
 
+  it("a gap of exactly the cluster width joins", () => {
+    const matrix = csr([
+      [0, 0],
+      [0, 0.25],
+    ]);
+    expect(splitIntoEigenspaces(matrix, { hermitian: true, noise: 0, cluster: 0.25 }).spaces).toHaveLength(1);
+    expect(splitIntoEigenspaces(matrix, { hermitian: true, noise: 0, cluster: 0.25 - 2 ** -54 }).spaces).toHaveLength(
+      2,
+    );
+  });
+
   it("takes neighbours up to the cluster width as one value, by gaps, and states their spread", () => {
     const matrix = csr([
       [1, 0, 0, 0],
@@ -280,6 +291,24 @@ describe("a filled operator", () => {
     );
   });
 
+  it("values whose real parts were told apart by the imaginary ones keep their own real parts", () => {
+    const list = [
+      { re: 1, im: 1 },
+      { re: 1 + 1e-11, im: -1 },
+      { re: 1 + 2e-11, im: 0.5 },
+    ];
+    const matrix = csr(withEigenvalues(orthonormal(3, 3, random(12), true), list));
+    const { spaces } = splitIntoEigenspaces(matrix, { hermitian: false, noise: 1e-13, cluster: 1.5e-11 });
+    expect(spaces).toHaveLength(3);
+    for (const { value, spread, rows } of spaces) {
+      const own = list.find((z) => Math.abs(z.im - value.im) < 0.1);
+      // one chain of real parts: its middle, with half its length as the spread
+      expect(Math.abs((own?.re ?? 0) - value.re)).toBeLessThanOrEqual(spread + 1e-14);
+      expect(spread).toBeLessThan(1.1e-11);
+      expect(residual(naiveOfCsr(matrix), naiveOfCsr(rows), own ?? value)).toBeLessThan(1e-14);
+    }
+  });
+
   it("a real rotation has complex eigenvectors", () => {
     const matrix = csr([
       [0.6, -0.8, 0],
@@ -316,6 +345,19 @@ describe("a filled operator", () => {
       [0, 2],
     ]);
     check(matrix, split, true, 1e-14);
+  });
+
+  it("the defect is that of the worst part, whichever comes first", () => {
+    const large = hermitian(6, random(4), true);
+    const small = hermitian(2, random(5), false);
+    const zeros = (n: number): number[] => new Array<number>(n).fill(0);
+    const alone = (a: Naive): number => splitIntoEigenspaces(csr(a), options(true)).defect;
+    const both = [
+      csr([...large.map((row) => [...row, ...zeros(2)]), ...small.map((row) => [...zeros(6), ...row])]),
+      csr([...small.map((row) => [...row, ...zeros(6)]), ...large.map((row) => [...zeros(2), ...row])]),
+    ];
+    expect(alone(large)).toBeGreaterThan(alone(small));
+    for (const matrix of both) expect(splitIntoEigenspaces(matrix, options(true)).defect).toBe(alone(large));
   });
 
   it("entries up to the noise are left out, and only those", () => {

@@ -70,6 +70,21 @@ describe("orthonormalityDefect", () => {
     expect(orthonormalityDefect(2, 2, pair, undefined)).toBeGreaterThanOrEqual(truth(2, 2, pair, undefined));
   });
 
+  it("counts what small terms lose beside a large one, between rows as well", () => {
+    // unit rows whose product is 1/2 and a thousand terms that each round away
+    const length = 1003;
+    const re = new Float64Array(2 * length);
+    for (const row of [0, 1]) {
+      re.fill(2 ** -27.1, row * length, (row + 1) * length);
+      re[row * length] = Math.SQRT1_2;
+      re[row * length + length - 2] = row === 0 ? Math.SQRT1_2 : 0;
+      re[row * length + length - 1] = row === 0 ? 0 : Math.SQRT1_2;
+    }
+    const exact = truth(2, length, re, undefined);
+    expect(exact - Math.SQRT1_2).toBeGreaterThan(1e-14);
+    expect(orthonormalityDefect(2, length, re, undefined)).toBeGreaterThanOrEqual(exact);
+  });
+
   it("distinguishes a row from its conjugate", () => {
     const re = Float64Array.of(Math.SQRT1_2, 0, Math.SQRT1_2, 0);
     const im = Float64Array.of(0, Math.SQRT1_2, 0, -Math.SQRT1_2);

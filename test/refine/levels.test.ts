@@ -164,6 +164,11 @@ describe("formLevels refuses", () => {
     expect(refused({ from: 5, to: Number.POSITIVE_INFINITY }).details).toMatchObject({ nearest: 2 });
     expect(refused({ from: Number.NEGATIVE_INFINITY, to: -3 }).details).toMatchObject({ nearest: 0 });
     expect(refused({ from: 100, to: 1e300 }).details).toMatchObject({ nearest: 2 });
+    // distances are those of a level's edges: 0.85 to the first, 1.2 to the second
+    const wide = (from: number, to: number) => (): Levels =>
+      formLevels([sector(0, 0.9), sector(3, 3.9)], 1, { from, to });
+    expect(wide(1.75, 1.8)).toThrow(expect.objectContaining({ details: expect.objectContaining({ nearest: 0.45 }) }));
+    expect(wide(2.2, 2.25)).toThrow(expect.objectContaining({ details: expect.objectContaining({ nearest: 3.45 }) }));
   });
 
   it("every malformed choice", () => {

@@ -201,6 +201,19 @@ describe("several perturbations", () => {
     expect(found.leaves.every(({ leaf }) => leaf.second === undefined)).toBe(true);
   });
 
+  it("what they leave together stays together", () => {
+    const pull = Operator.from([
+      [0, 0, 0, 1],
+      [0, 0, 0, 0],
+      [0, 0, 0, 0],
+      [1, 0, 0, 0],
+    ]);
+    const found = resolve(prepare({ h0, v: { pull, none: Operator.zero(4) } }), "full");
+    expect(sizes(found)).toEqual([3]);
+    expect(found.nodes.some(({ kind }) => kind === "second order")).toBe(false);
+    expect(sizes(resolve(prepare({ h0, v: pull }), "full"))).toEqual([2, 1]);
+  });
+
   it("in the order in which they were given", () => {
     const found = resolve(prepare({ h0, v: { b, a } }), "full");
     expect(found.nodes.slice(1).map(({ operator, sizes: list }) => [operator, list])).toEqual([
@@ -292,8 +305,8 @@ describe("conserved candidates inside a level", () => {
       v: Operator.zero(2),
       candidates: {
         scalar: Operator.from([
-          [3, 1e-17],
-          [1e-17, 3],
+          [3, 2 ** -40],
+          [2 ** -40, 3],
         ]),
       },
     });

@@ -121,6 +121,26 @@ describe("secondOrder", () => {
     );
   });
 
+  it("large sectors with many levels, then small ones again: nothing is left over from call to call", () => {
+    for (const n of [150, 3, 80, 200, 2]) {
+      const next = random(n);
+      const levelEnergies = Array.from({ length: Math.ceil(n / 2) }, (_, l) => l + 0.3 * next());
+      const levelOf = Array.from({ length: n }, (_, i) => Math.floor(i / 2));
+      const v = hermitian(n, next, n % 4 === 0).map((row, i) =>
+        row.map((x, j) => ((i * j) % 7 < 2 ? x : { re: 0, im: 0 })),
+      );
+      const scene: Scene = { v, levelOf, energies: levelOf.map((l) => levelEnergies[l] as number), levelEnergies };
+      const level = Math.floor(levelEnergies.length / 2);
+      const [found, again, truth] = [run(scene, level), run(scene, level), bruteForce(scene, level)];
+      expect(again).toEqual(found);
+      expect(distance(naiveOfCsr(found.w), truth.w)).toBeLessThan(1e-11);
+      for (const kind of ["first", "second"] as const) {
+        const largest = Math.max(...truth[kind]);
+        expect(Math.abs(found[kind].ratio - largest)).toBeLessThan(1e-12 * (1 + largest));
+      }
+    }
+  });
+
   it("leaves the whole level out of the resolvent, also where V couples inside it", () => {
     const scene: Scene = {
       v: naive([
@@ -165,6 +185,16 @@ describe("secondOrder", () => {
     expect(first.ratio).toBeCloseTo(0.1, 12);
     expect(second.level).toBe(1);
     expect(second.ratio).toBeCloseTo(1e7, 0);
+  });
+
+  it("of equal ratios the first level counts", () => {
+    const v = naive([
+      [0, 1, 1],
+      [1, 0, 0],
+      [1, 0, 0],
+    ]);
+    const { first } = run({ v, levelOf: [1, 0, 2], energies: [0, -2, 2], levelEnergies: [-2, 0, 2] }, 1);
+    expect(first).toEqual({ ratio: 0.5, level: 0 });
   });
 
   it("keeps the scale of W where fourth powers of V vanish", () => {

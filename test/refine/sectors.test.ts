@@ -3,6 +3,8 @@ import type { PreparedProblem } from "../../src/audit/problem.js";
 import type { Csr } from "../../src/numerics/csr.js";
 import { stackRows } from "../../src/numerics/stack.js";
 import { Operator } from "../../src/operator/operator.js";
+import { descentStep } from "../../src/refine/descent.js";
+import { splitIntoEigenspaces } from "../../src/refine/eigenspaces.js";
 import { buildSectors, energyTolerance, inSpace, type Sectors } from "../../src/refine/sectors.js";
 import { TreeBuilder } from "../../src/refine/tree.js";
 import { distance, naiveOf } from "../operator/naive.js";
@@ -277,6 +279,68 @@ describe("buildSectors", () => {
     }
   });
 
+  it("adds up the eigensolver's defect and the rounding of the vectors made from it", () => {
+    const rows = orthonormal(6, 6, random(23), true);
+    const a = operatorOf(
+      withEigenvalues(
+        rows,
+        [0, 0, 1, 1, 2, 2].map((re) => ({ re, im: 0 })),
+      ),
+    );
+    const problem = prepare({ h0: Operator.zero(6), v: Operator.zero(6), candidates: { a } });
+    const operator = problem.candidates[0]?.operator ?? a;
+    const split = splitIntoEigenspaces(operator.csr, {
+      hermitian: true,
+      noise: 2 ** -43 * operator.norm,
+      cluster: 2 ** -36 * operator.norm,
+    });
+    const { compositionError } = descentStep(split.spaces, { frame: Operator.identity(6).csr });
+    const { defect } = build(problem, [0]);
+    expect(defect).toBeGreaterThanOrEqual(split.defect + 2 * compositionError);
+    expect(defect).toBeLessThan((split.defect + 2 * compositionError) * 1.001);
+    // two blocks at the same depth: their rounding errors add up in squares, the worse defect counts
+    const twice = prepare({
+      h0: Operator.zero(12),
+      v: Operator.zero(12),
+      candidates: {
+        a: a.kron(Operator.identity(2)),
+        side: Operator.identity(6).kron(Operator.diagonal([1, 0], exact)),
+      },
+    });
+    const both = build(twice, [0, 1]).defect;
+    expect(both).toBeGreaterThanOrEqual(split.defect + 2 * Math.SQRT2 * compositionError);
+    expect(both).toBeLessThan((split.defect + 2 * Math.SQRT2 * compositionError) * 1.001);
+    // one step after the other: defects add up
+    const b = operatorOf(
+      withEigenvalues(
+        rows,
+        [0, 1, 0, 1, 0, 1].map((re) => ({ re, im: 0 })),
+      ),
+    );
+    const steps = prepare({ h0: Operator.zero(6), v: Operator.zero(6), candidates: { a, b } });
+    const [first, whole] = [build(steps, [0]).defect, build(steps, [0, 1]).defect];
+    // the second step works on pairs only, so by itself it is far smaller than the first
+    expect(whole).toBeGreaterThan(first * 1.1);
+    // a smaller one beside it, before or after, hides nothing
+    const small = Operator.from([
+      [0, 1],
+      [1, 0.5],
+    ]);
+    for (const above of [1, -1]) {
+      const entries = [0, 1, 2, 3, 4, 5].flatMap((i) =>
+        [0, 1, 2, 3, 4, 5].map((j) => [i, j, a.entry(i, j).re, a.entry(i, j).im] as const),
+      );
+      const corner = [0, 1].flatMap((i) => [0, 1].map((j) => [6 + i, 6 + j, small.entry(i, j).re] as const));
+      const side = Operator.diagonal([...new Array<number>(6).fill(above), 0, 0], exact);
+      const mixed = prepare({
+        h0: Operator.zero(8),
+        v: Operator.zero(8),
+        candidates: { a: Operator.fromTriplets(8, [...entries, ...corner]), side },
+      });
+      expect(build(mixed, [0, 1]).defect).toBeGreaterThanOrEqual(split.defect + 2 * compositionError);
+    }
+  });
+
   it("bounds V between the children of a node, also where V does not conserve the label", () => {
     for (let seed = 1; seed < 6; seed++) {
       const next = random(seed);
@@ -351,6 +415,8 @@ describe("buildSectors", () => {
       [[[0, 2, 5], []]],
     );
     expect(built.sectors[0]?.from).toBeUndefined();
+    // the labels are judged on the vectors before H0 was diagonalised: here the kets
+    expect(naiveOfCsr(built.sectors[0]?.labelFrame as Csr)).toEqual(naiveOf(Operator.identity(3)));
     expect(built.tree.nodes).toHaveLength(1);
   });
 
