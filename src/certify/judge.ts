@@ -48,6 +48,15 @@ export function judgeLevel(level: LevelCase): LevelJudgement {
 
 function couplingQuestions({ problem, index, couplings, thresholds }: LevelCase): Question[] {
   return problem.perturbations.flatMap(({ name }, p): Question[] => {
+    if (!Number.isFinite((couplings.largest[p] ?? 0) + (couplings.offDiagonal[p] ?? 0) + (thresholds[p] ?? 0))) {
+      return [
+        {
+          code: "coupling-undecided",
+          level: index,
+          message: `elements of ${name} are too large for their bounds to be evaluated in double precision; choose a larger unit`,
+        },
+      ];
+    }
     const largest = couplings.largest[p] ?? 0;
     const threshold = thresholds[p] ?? 0;
     if (largest <= threshold || couplings.worst.some((pair) => pair.perturbation === name)) return [];

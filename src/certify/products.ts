@@ -1,6 +1,6 @@
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp, UNDERFLOW } from "../numerics/rounding.js";
-import { maxRowEntries } from "../numerics/sparse.js";
+import { maxRowEntries, transpose } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import { imageError } from "./residuals.js";
 
@@ -51,7 +51,7 @@ export function forEachProduct(
     for (let c = 0; c < b.rows; c++) for (let r = 0; r <= c; r++) visitPair(a, r, b, c, visit);
     return;
   }
-  const columns = occupiedColumns(a);
+  const columns = transpose(a);
   const re = new Float64Array(a.rows);
   const im = new Float64Array(a.rows);
   const common = new Int32Array(a.rows);
@@ -64,68 +64,18 @@ export function forEachProduct(
     else addComplex(columns, b, c, re, im, common);
     for (let r = 0; r <= c; r++) visit(r, c, re[r] as number, im[r] as number, common[r] as number);
   }
-  for (let e = 0; e < a.col.length; e++) columns.number[a.col[e] as number] = -1;
-  numbers = columns.number;
 }
 
-/** The columns of a matrix that hold entries, numbered as they first occur; rows ascend inside each. */
-interface Columns {
-  /** Number of a column; −1 for an empty one. */
-  readonly number: Int32Array;
-  readonly ptr: Int32Array;
-  readonly row: Int32Array;
-  readonly re: Float64Array;
-  readonly im: Float64Array | undefined;
-}
-
-const NO_NUMBERS = new Int32Array(0);
-/** Numbers of columns, all −1 between products, since filling it anew would cost more than most of them. */
-let numbers: Int32Array = NO_NUMBERS;
-
-function occupiedColumns(a: Csr): Columns {
-  const number = numbers.length < a.cols ? new Int32Array(a.cols).fill(-1) : numbers;
-  // Lent out: a product inside the callback makes its own.
-  numbers = NO_NUMBERS;
-  const total = a.col.length;
-  const counts = new Int32Array(Math.min(total, a.cols) + 1);
-  let distinct = 0;
-  for (let e = 0; e < total; e++) {
-    const c = a.col[e] as number;
-    if ((number[c] as number) < 0) number[c] = distinct++;
-    const place = number[c] as number;
-    counts[place] = (counts[place] as number) + 1;
-  }
-  const ptr = new Int32Array(distinct + 1);
-  for (let c = 0; c < distinct; c++) ptr[c + 1] = (ptr[c] as number) + (counts[c] as number);
-  const next = ptr.slice(0, distinct);
-  const row = new Int32Array(total);
-  const re = new Float64Array(total);
-  const im = a.im === undefined ? undefined : new Float64Array(total);
-  for (let r = 0; r < a.rows; r++) {
-    const end = a.ptr[r + 1] as number;
-    for (let e = a.ptr[r] as number; e < end; e++) {
-      const place = number[a.col[e] as number] as number;
-      const slot = next[place] as number;
-      next[place] = slot + 1;
-      row[slot] = r;
-      re[slot] = a.re[e] as number;
-      if (im !== undefined && a.im !== undefined) im[slot] = a.im[e] as number;
-    }
-  }
-  return { number, ptr, row, re, im };
-}
-
-/** Adds a_rk b_ck to the sums of all rows r ≤ c, for real factors. */
-function addReal(columns: Columns, b: Csr, c: number, re: Float64Array, common: Int32Array): void {
-  const { number, ptr, row, re: values } = columns;
+/** Adds a_rk b_ck to the sums of all rows r ≤ c, for real factors; `columns` is the transpose of a. */
+function addReal(columns: Csr, b: Csr, c: number, re: Float64Array, common: Int32Array): void {
+  const { ptr, col, re: values } = columns;
   const end = b.ptr[c + 1] as number;
   for (let q = b.ptr[c] as number; q < end; q++) {
-    const k = number[b.col[q] as number] as number;
-    if (k < 0) continue;
+    const k = b.col[q] as number;
     const u = b.re[q] as number;
     const stop = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < stop; p++) {
-      const r = row[p] as number;
+      const r = col[p] as number;
       if (r > c) break;
       re[r] = (re[r] as number) + (values[p] as number) * u;
       common[r] = (common[r] as number) + 1;
@@ -134,17 +84,16 @@ function addReal(columns: Columns, b: Csr, c: number, re: Float64Array, common: 
 }
 
 /** The same where a factor is complex. */
-function addComplex(columns: Columns, b: Csr, c: number, re: Float64Array, im: Float64Array, common: Int32Array): void {
-  const { number, ptr, row, re: values, im: imaginary } = columns;
+function addComplex(columns: Csr, b: Csr, c: number, re: Float64Array, im: Float64Array, common: Int32Array): void {
+  const { ptr, col, re: values, im: imaginary } = columns;
   const end = b.ptr[c + 1] as number;
   for (let q = b.ptr[c] as number; q < end; q++) {
-    const k = number[b.col[q] as number] as number;
-    if (k < 0) continue;
+    const k = b.col[q] as number;
     const u = b.re[q] as number;
     const v = b.im === undefined ? 0 : (b.im[q] as number);
     const stop = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < stop; p++) {
-      const r = row[p] as number;
+      const r = col[p] as number;
       if (r > c) break;
       const x = values[p] as number;
       const y = imaginary === undefined ? 0 : (imaginary[p] as number);
