@@ -70,11 +70,18 @@ export function prepareProblem(problem: Problem): PreparedProblem {
   if (typeof problem !== "object" || problem === null) {
     throw new GoodBasisError("option", `the problem is ${String(problem)}; give { h0, v, candidates }`, { problem });
   }
+  const { candidates: given = {}, unit = "" } = problem;
+  if (typeof given !== "object" || given === null || Array.isArray(given)) {
+    throw new GoodBasisError("option", "candidates must be an object, one operator by name: { Jz: matrix, … }", {});
+  }
+  if (typeof unit !== "string") {
+    throw new GoodBasisError("option", `unit is ${String(unit)}; give it as text, such as "cm⁻¹"`, { unit });
+  }
   const h0 = hermitian("H0", read("H0", problem.h0));
   const n = h0.n;
   const perturbations = readPerturbations(problem.v, n);
   const candidates: PreparedCandidate[] = [];
-  for (const [name, input] of Object.entries(problem.candidates ?? {})) {
+  for (const [name, input] of Object.entries(given)) {
     checkName("candidate", name);
     if (name === "H0" || perturbations.some((v) => v.name === name)) {
       throw new GoodBasisError("name", `candidate "${name}" has the name of H0 or of a perturbation; rename it`, {
@@ -91,7 +98,7 @@ export function prepareProblem(problem: Problem): PreparedProblem {
     candidates,
     kets,
     ket: kets === undefined ? (i) => String(i) : (i) => kets[i] as string,
-    unit: problem.unit ?? "",
+    unit,
   };
 }
 

@@ -3,7 +3,7 @@
  *
  * Doubles go in exactly (down to 2^−BITS); products lose at most one unit of 2^−BITS. It shares nothing with the library.
  */
-export const BITS = 320n;
+const BITS = 320n;
 
 /** 1 in fixed point. */
 export const ONE: bigint = 1n << BITS;
