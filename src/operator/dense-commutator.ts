@@ -13,11 +13,12 @@ export interface DenseCommutator {
 }
 
 /**
- * AB − BA with radii, in one pass over dense rows: per element
+ * AB − BA with radii, over dense rows: per element
  *
  *     Σ_k ( |a|(r_b + c|b|) + r_a(|b| + r_b) )  +  the same with a and b exchanged  +  underflow,
  *
- * c the relative error of a sum of `terms` products (see the sparse form in products.ts).
+ * c the relative error of a sum of `terms` products (see the sparse form in products.ts). For two matrices that are Hermitian to
+ * the last bit, BA is (AB)†: one product does.
  */
 export function denseCommutator(
   a: Uncertain,
@@ -27,27 +28,21 @@ export function denseCommutator(
   terms: number,
 ): DenseCommutator {
   const n = a.csr.rows;
-  const complex = a.csr.im !== undefined || b.csr.im !== undefined;
-  const [left, right] = [denseOf(a.csr, a.csr.re), denseOf(b.csr, b.csr.re)];
-  const [leftIm, rightIm] = [imaginaryOf(a.csr), imaginaryOf(b.csr)];
+  const left = denseForm(a.csr);
+  const right = denseForm(b.csr);
+  const hermitian = isHermitian(n, left) && isHermitian(n, right);
+  const forward = product(n, left, right);
+  const backward = hermitian ? undefined : product(n, right, left);
   const re = new Float64Array(n * n);
-  const im = complex ? new Float64Array(n * n) : undefined;
-  for (let i = 0; i < n; i++) {
-    for (let k = 0; k < n; k++) {
-      const x = left[i * n + k] as number;
-      const u = right[i * n + k] as number;
-      const y = leftIm === undefined ? 0 : (leftIm[i * n + k] as number);
-      const v = rightIm === undefined ? 0 : (rightIm[i * n + k] as number);
-      for (let j = 0, p = i * n, q = k * n; j < n; j++, p++, q++) {
-        const bRe = right[q] as number;
-        const aRe = left[q] as number;
-        re[p] = (re[p] as number) + (x * bRe - u * aRe);
-        if (im === undefined) continue;
-        const bIm = rightIm === undefined ? 0 : (rightIm[q] as number);
-        const aIm = leftIm === undefined ? 0 : (leftIm[q] as number);
-        re[p] = (re[p] as number) - (y * bIm - v * aIm);
-        im[p] = (im[p] as number) + (x * bIm + y * bRe - (u * aIm + v * aRe));
-      }
+  const im = forward.im === undefined ? undefined : new Float64Array(n * n);
+  for (let r = 0; r < n; r++) {
+    for (let c = 0; c < n; c++) {
+      const p = r * n + c;
+      const mirror = c * n + r;
+      re[p] = (forward.re[p] as number) - ((backward === undefined ? forward.re[mirror] : backward.re[p]) as number);
+      if (im === undefined || forward.im === undefined) continue;
+      const back = backward?.im === undefined ? -(forward.im[mirror] as number) : (backward.im[p] as number);
+      im[p] = (forward.im[p] as number) - back;
     }
   }
   return { value: { re, im }, radius: commutatorRadius(a, b, rounding, underflow, terms) };
@@ -63,34 +58,73 @@ function commutatorRadius(
   const n = a.csr.rows;
   const ua = uniformError(a.radius);
   const ub = uniformError(b.radius);
-  const out = new Float64Array(n * n);
   const modA = denseOf(a.csr, moduliAbove(a.csr));
   const modB = denseOf(b.csr, moduliAbove(b.csr));
+  const out = new Float64Array(n * n);
   if (ua !== undefined && ub !== undefined) {
     const relative = ua + ub + ua * ub + rounding;
-    addProducts(n, modA, modB, out);
-    addProducts(n, modB, modA, out);
+    addBothWays(n, modA, modB, out);
     for (let p = 0; p < out.length; p++) out[p] = bound(relative * (out[p] as number), underflow, terms);
     return out;
   }
   const radA = denseOf(a.csr, radiiOf(a));
   const radB = denseOf(b.csr, radiiOf(b));
-  const scaled = (mod: Float64Array, rad: Float64Array): Float64Array =>
-    mod.map((x, p) => (rad[p] as number) + rounding * x);
-  const wide = (mod: Float64Array, rad: Float64Array): Float64Array => mod.map((x, p) => x + (rad[p] as number));
-  addProducts(n, modA, scaled(modB, radB), out);
-  addProducts(n, radA, wide(modB, radB), out);
-  addProducts(n, modB, scaled(modA, radA), out);
-  addProducts(n, radB, wide(modA, radA), out);
+  // AB takes |a|(r_b + c|b|) + r_a(|b| + r_b), and BA the same four products the other way round
+  const first = modB.map((x, p) => (radB[p] as number) + rounding * x);
+  const second = modB.map((x, p) => x + (radB[p] as number));
+  addBothWays(n, modA, first, out);
+  addBothWays(n, radA, second, out);
   for (let p = 0; p < out.length; p++) out[p] = bound(out[p] as number, underflow, terms);
   return out;
+}
+
+/** out += XY + YX for non-negative dense matrices; one product where both are symmetric. */
+function addBothWays(n: number, x: Float64Array, y: Float64Array, out: Float64Array): void {
+  if (!isSymmetric(n, x, 1) || !isSymmetric(n, y, 1)) {
+    addProducts(n, x, y, out);
+    addProducts(n, y, x, out);
+    return;
+  }
+  const once = new Float64Array(n * n);
+  addProducts(n, x, y, once);
+  for (let r = 0; r < n; r++) {
+    for (let c = 0; c < n; c++) {
+      const p = r * n + c;
+      out[p] = (out[p] as number) + (once[p] as number) + (once[c * n + r] as number);
+    }
+  }
+}
+
+function product(n: number, a: Dense, b: Dense): Dense {
+  const re = new Float64Array(n * n);
+  addProducts(n, a.re, b.re, re);
+  if (a.im === undefined && b.im === undefined) return { re, im: undefined };
+  const im = new Float64Array(n * n);
+  if (a.im !== undefined) addProducts(n, a.im, b.re, im);
+  if (b.im !== undefined) addProducts(n, a.re, b.im, im);
+  if (a.im !== undefined && b.im !== undefined) {
+    const negated = a.im.map((y) => -y);
+    addProducts(n, negated, b.im, re);
+  }
+  return { re, im };
+}
+
+function isHermitian(n: number, a: Dense): boolean {
+  return isSymmetric(n, a.re, 1) && (a.im === undefined || isSymmetric(n, a.im, -1));
+}
+
+function isSymmetric(n: number, x: Float64Array, sign: number): boolean {
+  for (let r = 0; r < n; r++) {
+    for (let c = 0; c <= r; c++) if (x[r * n + c] !== sign * (x[c * n + r] as number)) return false;
+  }
+  return true;
 }
 
 function bound(sum: number, underflow: number, terms: number): number {
   return sum === 0 ? 0 : roundUp(sum + underflow, 4 * terms + 12);
 }
 
-/** out += XY for non-negative dense matrices. */
+/** out += XY. */
 function addProducts(n: number, x: Float64Array, y: Float64Array, out: Float64Array): void {
   for (let i = 0; i < n; i++) {
     for (let k = 0; k < n; k++) {
@@ -112,6 +146,6 @@ function denseOf(csr: Csr, values: Float64Array): Float64Array {
   return out;
 }
 
-function imaginaryOf(csr: Csr): Float64Array | undefined {
-  return csr.im === undefined ? undefined : denseOf(csr, csr.im);
+function denseForm(csr: Csr): Dense {
+  return { re: denseOf(csr, csr.re), im: csr.im === undefined ? undefined : denseOf(csr, csr.im) };
 }
