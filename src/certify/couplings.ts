@@ -5,11 +5,12 @@ import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
 import { elementErrorBound, forEachProduct, gramDefect } from "./products.js";
-import { images, rootOfSquares } from "./residuals.js";
+import { rootOfSquares } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */

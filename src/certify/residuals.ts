@@ -1,39 +1,8 @@
 import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp, UNDERFLOW, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
+import { longestColumn } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
-
-/** Rows (A q)ᵀ for vectors q stored as rows: Q Aᵀ. */
-export function images(vectors: Csr, operator: Operator): Csr {
-  return multiply(vectors, operator.isHermitian ? conjugated(operator) : transposed(operator));
-}
-
-/** Rows (A† q)ᵀ: Q conj(A). */
-export function adjointImages(vectors: Csr, operator: Operator): Csr {
-  return multiply(vectors, conjugated(operator));
-}
-
-/** Rearrangements of operators that images were taken of; operators never change. */
-const CONJUGATES = new WeakMap<Operator, Csr>();
-const TRANSPOSES = new WeakMap<Operator, Csr>();
-
-function conjugated(operator: Operator): Csr {
-  return remembered(CONJUGATES, operator, conjugate);
-}
-
-function transposed(operator: Operator): Csr {
-  return remembered(TRANSPOSES, operator, transpose);
-}
-
-function remembered(known: WeakMap<Operator, Csr>, operator: Operator, make: (csr: Csr) => Csr): Csr {
-  let csr = known.get(operator);
-  if (csr === undefined) {
-    csr = make(operator.csr);
-    known.set(operator, csr);
-  }
-  return csr;
-}
 
 /**
  * The root of a sum of squares of `terms` complex numbers that differ from zero, not rounded up: each square may have lost
@@ -50,13 +19,9 @@ export function rootOfSquares(sum: number, terms: number): number {
  * product may underflow.
  */
 export function imageError(operator: Operator): number {
-  const longest = Math.max(operator.rowEntries, columnEntries(operator));
+  const longest = Math.max(operator.rowEntries, longestColumn(operator));
   const underflow = operator.norm === 0 ? 0 : 4 * operator.n * longest * UNDERFLOW;
   return roundUp((Math.SQRT2 * gamma(longest + 4) * operator.norm + operator.error) * (1 + 2 ** -19) + underflow, 16);
-}
-
-function columnEntries(operator: Operator): number {
-  return operator.isHermitian ? operator.rowEntries : maxRowEntries(transposed(operator));
 }
 
 /**

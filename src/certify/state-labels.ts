@@ -5,10 +5,11 @@ import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { adjointImages, images } from "../operator/images.js";
 import { labelFamily, type StateLabel, sharpLabel, vagueLabel } from "../refine/label.js";
 import type { TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
-import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import { imageError, residualBounds, rowProduct } from "./residuals.js";
 import type { SectorEvidence } from "./whole.js";
 
 /** A candidate's number in one state, before it is named. */

@@ -6,6 +6,7 @@ import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { adjointImages, images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import { energyTolerance } from "../refine/sectors.js";
 import { type BasisColumns, readColumns } from "./columns.js";
@@ -14,7 +15,7 @@ import { type GuardOptions, guardSetting } from "./guard.js";
 import { checkLevelWidth, requireOptions } from "./options.js";
 import { elementErrorBound, forEachProduct, gramDefect, gramElementError } from "./products.js";
 import { type Repair, repairLevel } from "./repair.js";
-import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import { imageError, residualBounds, rowProduct } from "./residuals.js";
 import type { Verdict } from "./verdict.js";
 
 /** A label that somebody claims for a column: an eigenvalue, or a quantum number as text ("3/2", "-1"). */

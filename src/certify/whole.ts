@@ -3,9 +3,10 @@ import type { CommutatorFinding } from "../audit/commutators.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Complex } from "../numerics/complex.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { adjointImages, images } from "../operator/images.js";
 import type { Sector, Sectors } from "../refine/sectors.js";
 import type { TreeNode } from "../refine/tree.js";
-import { adjointImages, imageError, images, residualBounds, residualRows, rootSumSquares } from "./residuals.js";
+import { imageError, residualBounds, residualRows, rootSumSquares } from "./residuals.js";
 
 /** How sharply one candidate labels the whole basis. */
 export interface SeparatorEvidence {
