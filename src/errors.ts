@@ -49,6 +49,7 @@ export type ErrorCode =
  * ```
  */
 export class GoodBasisError extends Error {
+  /** Always "GoodBasisError". */
   override readonly name = "GoodBasisError";
   /** The stable code; branch on this, never on the message. */
   readonly code: ErrorCode;

@@ -5,7 +5,9 @@ import { checkResolution, DEFAULT_RESOLUTION } from "./resolution.js";
 
 /** What the audit found of one candidate. */
 export interface CandidateFinding {
+  /** Its name, as the caller wrote it. */
   readonly name: string;
+  /** What kind of normal operator it is. */
   readonly kind: "hermitian" | "unitary" | "normal";
   /** Whether it may serve as a label: it commutes with H0 and with every perturbation. */
   readonly conserved: boolean;
@@ -23,6 +25,7 @@ export interface CandidateFinding {
 
 /** Everything that commutators alone tell about a problem. */
 export interface Audit {
+  /** One finding for each candidate, in the caller's order. */
   readonly candidates: readonly CandidateFinding[];
   /** [A, B] for every pair of conserved candidates. */
   readonly pairs: readonly CommutatorFinding[];
@@ -114,10 +117,13 @@ export function auditPrepared(problem: PreparedProblem, resolution: number): Aud
 
 function explain(finding: CommutatorFinding): string {
   return finding.verdict === "broken"
-    ? `does not commute with ${finding.right}: ${size(finding)}`
+    ? `does not commute with ${finding.right}: ${size(finding)}${finding.edge ? EDGE_REMARK : ""}`
     : `whether it commutes with ${finding.right} is undecided: ${size(finding)}; ` +
         "smaller entry uncertainties or a coarser resolution would decide it";
 }
+
+const EDGE_REMARK =
+  "; only the last kets are concerned, a likely edge of a truncated space: build its matrix elements exactly, or enlarge it";
 
 function size(finding: CommutatorFinding): string {
   const worst = finding.largest[0];

@@ -1,4 +1,6 @@
+import { modulus } from "../numerics/complex.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
+import { euclidean, frobenius } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import { COMMUTATOR_SHARE } from "./resolution.js";
 
@@ -7,9 +9,13 @@ export type CommutatorVerdict = "commutes" | "broken" | "undecided";
 
 /** An element of a commutator, with its kets. */
 export interface OffendingElement {
+  /** Number of the row's ket. */
   readonly row: number;
+  /** Number of the column's ket. */
   readonly column: number;
+  /** Name of the row's ket. */
   readonly rowKet: string;
+  /** Name of the column's ket. */
   readonly columnKet: string;
   /** Modulus of the element. */
   readonly size: number;
@@ -17,8 +23,11 @@ export interface OffendingElement {
 
 /** What is known of one commutator [A, B]. */
 export interface CommutatorFinding {
+  /** Name of A. */
   readonly left: string;
+  /** Name of B. */
   readonly right: string;
+  /** Whether [A, B] vanishes to the threshold. */
   readonly verdict: CommutatorVerdict;
   /** Frobenius norm as computed. */
   readonly norm: number;
@@ -32,9 +41,20 @@ export interface CommutatorFinding {
   readonly threshold: number;
   /** The largest elements, in descending order; empty where the operators commute. */
   readonly largest: readonly OffendingElement[];
+  /**
+   * Whether the commutator fails at the last kets only: the likely edge of a truncated space (the last rows of a product of
+   * truncated oscillator matrices, say) rather than physics.
+   */
+  readonly edge: boolean;
 }
 
 const LARGEST_SHOWN = 3;
+
+/** Failures among this share of the kets, the last ones, are pointed out as a likely edge. */
+const EDGE_SHARE = 1 / 6;
+
+/** Fewer kets than this are not taken for a truncated space. */
+const SMALLEST_TRUNCATED = 6;
 
 /**
  * Bounds a commutator from both sides and gives the verdict.
@@ -55,21 +75,24 @@ export function judgeCommutator(
   const threshold = resolution * COMMUTATOR_SHARE * scale;
   const { csr } = commutator;
   const entries = csr.re.length;
-  let sum = 0;
-  let radii = 0;
   let atLeast = 0;
+  const edgeFrom = csr.rows - Math.ceil(csr.rows * EDGE_SHARE);
+  let outsideEdge = 0;
+  let row = 0;
   for (let p = 0; p < entries; p++) {
-    const x = csr.re[p] as number;
-    const y = csr.im === undefined ? 0 : (csr.im[p] as number);
-    const square = x * x + y * y;
-    const radius = commutator.radius === undefined ? gamma(1) * Math.sqrt(square) : (commutator.radius[p] as number);
-    sum += square;
-    radii += radius * radius;
-    const low = Math.sqrt(square) * (1 - 4 * gamma(1)) - radius;
+    while (p >= (csr.ptr[row + 1] as number)) row++;
+    // scaled where squares would overflow or vanish: a lost element must not pass for zero
+    const element = modulus(csr.re[p] as number, csr.im === undefined ? 0 : (csr.im[p] as number));
+    const radius = commutator.radius === undefined ? gamma(1) * element : (commutator.radius[p] as number);
+    const low = element * (1 - 16 * gamma(1)) - radius;
     if (low > atLeast) atLeast = low;
+    if (row < edgeFrom && (csr.col[p] as number) < edgeFrom) {
+      outsideEdge = Math.max(outsideEdge, element + radius);
+    }
   }
-  const norm = Math.sqrt(sum);
-  const frobeniusBound = roundUp(norm + Math.sqrt(radii), entries + 8);
+  const norm = frobenius(csr);
+  const radii = commutator.radius === undefined ? gamma(2) * norm : euclidean(commutator.radius);
+  const frobeniusBound = roundUp(norm + radii, entries + 16);
   const bound = Math.min(frobeniusBound, roundUp(commutator.norm + commutator.error));
   const verdict = bound <= threshold ? "commutes" : atLeast > threshold ? "broken" : "undecided";
   return {
@@ -82,6 +105,7 @@ export function judgeCommutator(
     atLeast: Math.min(atLeast, bound),
     threshold,
     largest: verdict === "commutes" ? [] : largestElements(commutator, ket),
+    edge: verdict === "broken" && csr.rows >= SMALLEST_TRUNCATED && outsideEdge <= threshold,
   };
 }
 
@@ -90,9 +114,7 @@ function largestElements(operator: Operator, ket: (i: number) => string): Offend
   const best: OffendingElement[] = [];
   for (let i = 0; i < csr.rows; i++) {
     for (let p = csr.ptr[i] as number; p < (csr.ptr[i + 1] as number); p++) {
-      const x = csr.re[p] as number;
-      const y = csr.im === undefined ? 0 : (csr.im[p] as number);
-      const size = Math.sqrt(x * x + y * y);
+      const size = modulus(csr.re[p] as number, csr.im === undefined ? 0 : (csr.im[p] as number));
       const last = best[best.length - 1];
       if (size === 0 || (best.length === LARGEST_SHOWN && last !== undefined && size <= last.size)) continue;
       const column = csr.col[p] as number;

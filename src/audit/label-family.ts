@@ -1,4 +1,7 @@
+import { Fraction } from "fraction.js";
 import { GoodBasisError } from "../errors.js";
+import { UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { rootOfUnity } from "./root-of-unity.js";
 
 /**
  * The discrete family that the eigenvalues of a candidate belong to.
@@ -22,7 +25,7 @@ export type LabelDeclaration =
 
 /** One member of a discrete family: the exact eigenvalue and how it is written. */
 export interface FamilyMember {
-  /** The eigenvalue, correctly rounded. */
+  /** The eigenvalue, to half a unit in the last place; the parts of a root of unity to within two. */
   readonly re: number;
   readonly im: number;
   /** The quantum number as written in the trade: "3/2", "−1", "+1". */
@@ -30,10 +33,10 @@ export interface FamilyMember {
 }
 
 /** Denominators that a rational label may have when nothing is declared. */
-export const RECOGNISED_DENOMINATOR = 12;
+const RECOGNISED_DENOMINATOR = 12;
 
 /** Orders of a root of unity that are tried when nothing is declared. */
-export const RECOGNISED_ROOT_ORDER = 64;
+const RECOGNISED_ROOT_ORDER = 64;
 
 /**
  * Checks a declaration.
@@ -49,10 +52,14 @@ export function checkDeclaration(name: string, label: unknown): LabelDeclaration
   }
   throw new GoodBasisError(
     "option",
-    `the label of candidate ${name} is declared as ${JSON.stringify(label)}; ` +
+    `the label of candidate ${name} is declared as ${written(label)}; ` +
       'give "j", "m", "parity", "number", { root: N } or { rational: Q } with a whole number from 1 to 1000000',
     { name, label },
   );
+}
+
+function written(label: unknown): string {
+  return JSON.stringify(label, (_, x: unknown) => (typeof x === "bigint" ? `${x}n` : x)) ?? String(label);
 }
 
 function isCount(x: unknown): x is number {
@@ -71,10 +78,19 @@ export function onlyMember(
   radius: number,
 ): FamilyMember | undefined {
   if (!(radius < 1 / 16)) return undefined;
+  // beyond this not every whole number is a double
+  if (!(Math.hypot(value.re, value.im) <= Number.MAX_SAFE_INTEGER)) return undefined;
   const member = nearestMember(family, value, radius);
   if (member === undefined) return undefined;
   const distance = Math.hypot(member.re - value.re, member.im - value.im);
-  return distance <= radius + 4 * Number.EPSILON * Math.hypot(member.re, member.im) ? member : undefined;
+  return distance <= radius + memberError(family, member) ? member : undefined;
+}
+
+/** How far the eigenvalue of a member may be rounded: not at all where it is a double itself. */
+function memberError(family: LabelDeclaration, { re, im }: FamilyMember): number {
+  if (typeof family === "string") return 0;
+  if ("root" in family) return re === 0 || im === 0 ? 0 : 4 * UNIT_ROUNDOFF;
+  return Number.isInteger(re * 2 ** 19) ? 0 : 2 * UNIT_ROUNDOFF * Math.abs(re);
 }
 
 function nearestMember(
@@ -100,54 +116,47 @@ function nearestMember(
     return rootMember(k, family.root);
   }
   // two fractions with denominators up to Q differ by at least 1/Q²
-  if (radius >= 1 / (2 * family.rational * family.rational)) return undefined;
+  const reach = radius + 4 * UNIT_ROUNDOFF * Math.abs(value.re);
+  if (reach >= 1 / (2 * family.rational * family.rational)) return undefined;
   for (let q = 1; q <= family.rational; q++) {
     const p = Math.round(value.re * q);
-    if (Math.abs(p / q - value.re) <= radius + 2 * Number.EPSILON * Math.abs(value.re)) return fraction(p, q);
+    if (Math.abs(p / q - value.re) <= reach) return fraction(p, q);
   }
   return undefined;
 }
 
 function fraction(numerator: number, denominator: number): FamilyMember {
-  let a = Math.abs(numerator);
-  let b = denominator;
-  while (b !== 0) [a, b] = [b, a % b];
-  const p = numerator / (a || 1);
-  const q = denominator / (a || 1);
-  const sign = p < 0 ? "−" : "";
-  const digits = q === 1 ? String(Math.abs(p)) : `${Math.abs(p)}/${q}`;
-  return { re: p === 0 ? 0 : p / q, im: 0, text: `${sign}${digits}` };
+  const reduced = new Fraction(numerator, denominator);
+  return { re: reduced.valueOf(), im: 0, text: reduced.toFraction().replace("-", "−") };
 }
 
 function rootMember(k: number, order: number): FamilyMember {
-  let a = k;
-  let b = order;
-  while (b !== 0) [a, b] = [b, a % b];
-  const p = k / (a || 1);
-  const q = order / (a || 1);
-  const angle = (2 * Math.PI * p) / q;
-  if (q === 1 || p === 0) return { re: 1, im: 0, text: "+1" };
+  const turn = new Fraction(k, order);
+  const [p, q] = [Number(turn.n), Number(turn.d)];
+  if (q === 1) return { re: 1, im: 0, text: "+1" };
   if (q === 2) return { re: -1, im: 0, text: "−1" };
   if (q === 4) return p === 1 ? { re: 0, im: 1, text: "+i" } : { re: 0, im: -1, text: "−i" };
-  return { re: Math.cos(angle), im: Math.sin(angle), text: `exp(2πi·${p}/${q})` };
+  return { ...rootOfUnity(p, q), text: `exp(2πi·${p}/${q})` };
 }
 
 /**
  * The family that a whole set of eigenvalues points to, as a proposal: the narrowest of parity, m, j and fractions for real
  * ones, the lowest order of a root of unity for others; undefined if none fits them all.
  *
- * @param values - all distinct eigenvalues of one operator
+ * @param values - distinct eigenvalues of one operator
  * @param radius - bound on the error of each
+ * @param all - whether these are all its eigenvalues; of some only, ±1 does not make a parity
  */
 export function recogniseFamily(
   values: readonly { readonly re: number; readonly im: number }[],
   radius: number,
+  all = true,
 ): LabelDeclaration | undefined {
   const fits = (family: LabelDeclaration): boolean =>
     values.every((value) => Math.abs(value.im) <= radius && onlyMember(family, value, radius) !== undefined);
   const real = values.every((value) => Math.abs(value.im) <= radius);
   if (real) {
-    if (fits("parity")) return "parity";
+    if (all && fits("parity")) return "parity";
     // 0, 2, 6, … or 3/4, 15/4, …: only a square of an angular momentum skips the steps between
     if (fits("j") && values.some((value) => value.re > 0.5) && !fits("m")) return "j";
     if (fits("m")) return looksLikeSquares(values) ? "j" : "m";

@@ -67,11 +67,21 @@ export interface PreparedProblem {
  * @throws GoodBasisError `shape`, `not-finite`, `not-hermitian`, `not-normal`, `name`: with the operator, the place and size
  */
 export function prepareProblem(problem: Problem): PreparedProblem {
+  if (typeof problem !== "object" || problem === null) {
+    throw new GoodBasisError("option", `the problem is ${String(problem)}; give { h0, v, candidates }`, { problem });
+  }
+  const { candidates: given = {}, unit = "" } = problem;
+  if (typeof given !== "object" || given === null || Array.isArray(given)) {
+    throw new GoodBasisError("option", "candidates must be an object, one operator by name: { Jz: matrix, … }", {});
+  }
+  if (typeof unit !== "string") {
+    throw new GoodBasisError("option", `unit is ${String(unit)}; give it as text, such as "cm⁻¹"`, { unit });
+  }
   const h0 = hermitian("H0", read("H0", problem.h0));
   const n = h0.n;
   const perturbations = readPerturbations(problem.v, n);
   const candidates: PreparedCandidate[] = [];
-  for (const [name, input] of Object.entries(problem.candidates ?? {})) {
+  for (const [name, input] of Object.entries(given)) {
     checkName("candidate", name);
     if (name === "H0" || perturbations.some((v) => v.name === name)) {
       throw new GoodBasisError("name", `candidate "${name}" has the name of H0 or of a perturbation; rename it`, {
@@ -88,7 +98,7 @@ export function prepareProblem(problem: Problem): PreparedProblem {
     candidates,
     kets,
     ket: kets === undefined ? (i) => String(i) : (i) => kets[i] as string,
-    unit: problem.unit ?? "",
+    unit,
   };
 }
 
@@ -124,7 +134,7 @@ function hermitian(name: string, operator: Operator): Operator {
 
 function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
   if (isMatrixInput(v)) return [{ name: "V", operator: hermitian("V", sameSize("V", read("V", v), n)) }];
-  const entries = Object.entries(v);
+  const entries = typeof v === "object" && v !== null ? Object.entries(v) : [];
   if (entries.length === 0) {
     throw new GoodBasisError("option", "no perturbation was given; pass v: matrix, or v: { name: matrix }", {});
   }
@@ -138,7 +148,7 @@ function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
 }
 
 function readCandidate(name: string, input: MatrixInput | Candidate, n: number): PreparedCandidate {
-  const given: Candidate = isMatrixInput(input) ? { operator: input } : input;
+  const given: Candidate = isMatrixInput(input) ? { operator: input } : (input ?? { operator: input });
   let operator = sameSize(name, read(name, given.operator), n);
   const kind = operator.kind;
   if (kind === "general") {
@@ -170,6 +180,9 @@ function checkName(what: string, name: string): void {
 }
 
 function checkKets(kets: readonly string[], n: number): readonly string[] {
+  if (!Array.isArray(kets)) {
+    throw new GoodBasisError("shape", `kets is no list; give an array of ${n} names`, { expected: n });
+  }
   if (kets.length !== n) {
     throw new GoodBasisError("shape", `kets lists ${kets.length} names but H0 is ${n} × ${n}; name every ket once`, {
       expected: n,
@@ -177,7 +190,7 @@ function checkKets(kets: readonly string[], n: number): readonly string[] {
     });
   }
   const seen = new Map<string, number>();
-  kets.forEach((ket, i) => {
+  [...kets].forEach((ket, i) => {
     if (typeof ket !== "string" || ket.trim() === "") {
       throw new GoodBasisError("name", `ket ${i} has an empty name; name every ket`, { ket: i });
     }

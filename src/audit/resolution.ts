@@ -38,10 +38,10 @@ export const REFUSE_ABOVE_UNSTATED = 100;
  * @throws GoodBasisError `option` unless it is a number above 0 and below 1
  */
 export function checkResolution(resolution: number): number {
-  if (resolution > 0 && resolution < 1) return resolution;
+  if (typeof resolution === "number" && resolution > 0 && resolution < 1) return resolution;
   throw new GoodBasisError(
     "option",
-    `resolution is ${resolution}; give a number above 0 and below 1, the fraction of ‖V‖ that counts as vanished`,
+    `resolution is ${String(resolution)}; give a number above 0 and below 1, the fraction of ‖V‖ that counts as vanished`,
     { resolution },
   );
 }

@@ -5,8 +5,11 @@ import { Operator } from "../operator/operator.js";
 
 /** A matrix with methods, such as an ml-matrix `Matrix`. */
 export interface MatrixLike {
+  /** Number of rows. */
   readonly rows: number;
+  /** Number of columns. */
   readonly columns: number;
+  /** The element in a row and column, from 0. */
   get(row: number, column: number): number;
 }
 

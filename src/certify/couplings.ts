@@ -1,17 +1,21 @@
 import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
+import type { Complex } from "../numerics/complex.js";
+import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
 import { elementErrorBound, forEachProduct, gramDefect } from "./products.js";
-import { images } from "./residuals.js";
+import { rootOfSquares } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */
 export interface CouplingBound {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** By the selection rule; Infinity where the node's operator says nothing about V. */
   readonly selectionRule: number;
@@ -23,17 +27,21 @@ export interface CouplingBound {
 
 /** What one node of the tree contributes to one level. */
 export interface NodeEvidence {
+  /** Number of the node in the tree. */
   readonly node: number;
+  /** Name of its operator. */
   readonly operator: string;
+  /** What kind of refinement it is. */
   readonly kind: NodeKind;
   /** Eigenvalues that occur in this level. */
-  readonly values: readonly { readonly re: number; readonly im: number }[];
+  readonly values: readonly Complex[];
   /** Smallest distance between them. */
   readonly gap: number;
   /** Bounds on ‖[A, V]‖₂, one a perturbation; empty where the node is no label. */
   readonly commutators: readonly number[];
   /** Largest bound on ‖A q − a q‖ and ‖A†q − a*q‖ over the states below. */
   readonly residual: number;
+  /** One bound for each perturbation. */
   readonly couplings: readonly CouplingBound[];
   /**
    * Whether the label is conserved sharply enough, for its gap, to stand at every order: the selection rule bounds the
@@ -44,20 +52,27 @@ export interface NodeEvidence {
 
 /** A pair of states of one level with its element of one perturbation. */
 export interface PairElement {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** Places of the two states within the level. */
   readonly first: number;
+  /** Place of the second state within the level. */
   readonly second: number;
+  /** Real part of the element. */
   readonly re: number;
+  /** Imaginary part of the element. */
   readonly im: number;
+  /** Its modulus, as computed. */
   readonly size: number;
   /** Rigorous lower and upper bounds on the modulus. */
   readonly atLeast: number;
+  /** Rigorous upper bound on the modulus. */
   readonly atMost: number;
 }
 
 /** All in-level elements of the perturbations, summarised. */
 export interface LevelCouplings {
+  /** The nodes at which states of the level part company. */
   readonly nodes: readonly NodeEvidence[];
   /** For each perturbation: V_μμ of each state. */
   readonly diagonals: readonly Float64Array[];
@@ -130,7 +145,7 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       const crossing = node.crossings?.[p];
       const direct =
         crossing === undefined
-          ? (inside.largest[p]?.get(entry.node) ?? 0) + (inside.elementError[p] as number)
+          ? roundUp((inside.largest[p]?.get(entry.node) ?? 0) + (inside.elementError[p] as number))
           : roundUp((crossing + 2 * v * rowError + operator.error) * (1 + input.wholeDefect) * (1 + rowError) ** 2, 16);
       return { perturbation: name, selectionRule, direct, counted: Math.min(selectionRule, direct) };
     });
@@ -284,6 +299,7 @@ interface Pass {
 function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: number; withinLeaves: number } {
   const { name, members, states, error, diagonal, largest, threshold, worst } = pass;
   let sum = 0;
+  let terms = 0;
   let withinLeaves = 0;
   let floor = threshold;
   forEachProduct(vectors, images(vectors, operator), (r, c, re, im, common) => {
@@ -294,21 +310,23 @@ function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: 
       return;
     }
     if (common === 0) return;
-    const size = Math.sqrt(re * re + im * im);
-    sum += 2 * (size + error) ** 2;
+    const size = modulus(re, im);
+    const atMost = roundUp(size) + error;
+    sum += 2 * atMost ** 2;
+    terms += 2;
     const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
-    if (node === undefined) withinLeaves = Math.max(withinLeaves, size + error);
+    if (node === undefined) withinLeaves = Math.max(withinLeaves, roundUp(atMost));
     else if (size > (largest.get(node) ?? -1)) largest.set(node, size);
     const atLeast = roundDown(size) - error;
     if (atLeast <= floor) return;
-    worst.push({ perturbation: name, first, second, re, im, size, atLeast, atMost: roundUp(size) + error });
+    worst.push({ perturbation: name, first, second, re, im, size, atLeast, atMost });
     if (worst.length > 64 * WORST_KEPT) {
       worst.sort((a, b) => b.size - a.size);
       worst.length = WORST_KEPT;
       floor = Math.max(floor, (worst[WORST_KEPT - 1] as PairElement).atLeast);
     }
   });
-  return { offDiagonal: roundUp(Math.sqrt(sum), members.length * members.length + 8), withinLeaves };
+  return { offDiagonal: roundUp(rootOfSquares(sum, terms), members.length * members.length + 8), withinLeaves };
 }
 
 /** The node at which two states part company; undefined for two states of one leaf. */

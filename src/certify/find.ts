@@ -8,6 +8,7 @@ import type { Certificate } from "./certificate-format.js";
 import { certifyBasis } from "./good-basis.js";
 import type { GuardOptions } from "./guard.js";
 import type { StudyInternals } from "./internals.js";
+import { checkLevelWidth, requireOptions } from "./options.js";
 import type { BasisState, Coupling, Outcome, Study, Verdict } from "./outcome.js";
 import { type Progress, runStudy, type StudySettings } from "./study.js";
 
@@ -122,6 +123,7 @@ export function overall(verdicts: readonly Verdict[]): Verdict {
 }
 
 function checkOptions(options: FindOptions): StudySettings {
+  requireOptions("findGoodBasis", options);
   const depth = options.depth ?? "full";
   if (!DEPTHS.includes(depth)) {
     throw new GoodBasisError(
@@ -132,10 +134,11 @@ function checkOptions(options: FindOptions): StudySettings {
       },
     );
   }
-  const { levelWidth } = options;
-  if (levelWidth !== undefined && !(levelWidth >= 0 && Number.isFinite(levelWidth))) {
-    throw new GoodBasisError("option", `levelWidth is ${levelWidth}; give an energy that is not negative`, {
-      levelWidth,
+  const { levelWidth, onProgress } = options;
+  checkLevelWidth(levelWidth);
+  if (onProgress !== undefined && typeof onProgress !== "function") {
+    throw new GoodBasisError("option", `onProgress is ${String(onProgress)}; give a function, or leave it out`, {
+      onProgress,
     });
   }
   return {
@@ -143,7 +146,7 @@ function checkOptions(options: FindOptions): StudySettings {
     depth,
     resolution: checkResolution(options.resolution ?? DEFAULT_RESOLUTION),
     levelWidth,
-    onProgress: options.onProgress,
+    onProgress,
     ...(options.lambda === undefined ? {} : { lambda: options.lambda }),
     ...(options.refuseAbove === undefined ? {} : { refuseAbove: options.refuseAbove }),
   };

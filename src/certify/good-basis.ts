@@ -48,6 +48,18 @@ export type GoodBasis<K extends string = string> = CertifiedBasis<K>;
 export function certifyBasis<K extends string>(study: Study<K>, internals: StudyInternals): GoodBasis<K> {
   const basis = new CertifiedBasis(KEY, study);
   internalsOf.set(basis, internals);
+  // what perturb reads its permissions and bounds from
+  for (const state of study.states) {
+    Object.freeze(state.safe);
+    Object.freeze(state);
+  }
+  for (const level of study.levels) {
+    Object.freeze(level.evidence);
+    Object.freeze(level);
+  }
+  Object.freeze(study.states);
+  Object.freeze(study.levels);
+  Object.freeze(study);
   Object.freeze(basis);
   return basis;
 }

@@ -4,9 +4,11 @@ import { GoodBasisError } from "../errors.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown } from "../numerics/rounding.js";
 import { stackRows } from "../numerics/stack.js";
-import type { ResolvedLevel, ResolvedPart } from "../refine/resolve.js";
+import type { Leaf, ResolvedLevel, ResolvedPart } from "../refine/resolve.js";
 import { inSpace } from "../refine/sectors.js";
 import type { PathStep, TreeNode } from "../refine/tree.js";
+import { partingNode } from "./couplings.js";
+import { pathTo } from "./level-states.js";
 
 /** The λ and the threshold that the denominators guard uses. */
 export interface GuardSetting {
@@ -28,10 +30,13 @@ export interface GuardFinding {
 
 /** The guard of one level in one sector for one perturbation. */
 export interface SectorGuard {
+  /** Name of the perturbation. */
   readonly perturbation: string;
   /** Which sector, as an index into the level's sectors. */
   readonly sector: number;
+  /** Largest ratio of V's blocks to other levels. */
   readonly first: GuardFinding;
+  /** Largest ratio of the second-order operator's blocks to other levels. */
   readonly second: GuardFinding;
   /** Null where V tells no states of this sector apart, or several perturbations are studied together. */
   readonly inside: GuardFinding | null;
@@ -39,6 +44,7 @@ export interface SectorGuard {
 
 /** The denominators guard of one level. */
 export interface LevelGuard extends GuardSetting {
+  /** One entry for each sector and perturbation. */
   readonly sectors: readonly SectorGuard[];
   /** Largest of all ratios over other levels. */
   readonly outside: number;
@@ -119,24 +125,29 @@ export function levelGuard(
 
 /** Largest |W_μν| / |E1_μ − E1_ν| over states of one sector that V tells apart; undefined if it tells none apart. */
 function insideRatio(part: ResolvedPart, w: Csr, nodes: readonly TreeNode[]): number | undefined {
-  const groups = part.leaves.map((leaf) => ({ leaf, e1: firstOrder(leaf.from, nodes) }));
-  const values = new Set(groups.map((group) => group.e1).filter((e1) => e1 !== undefined));
+  const { leaves } = part;
+  const values = new Set(leaves.map((leaf) => firstOrder(leaf.from, nodes)).filter((e1) => e1 !== undefined));
   if (values.size < 2) return undefined;
-  const e1: number[] = [];
-  for (const group of groups) for (let r = 0; r < group.leaf.rows.rows; r++) e1.push(group.e1 ?? Number.NaN);
+  const paths = leaves.map((leaf) => pathTo(leaf.from, nodes));
+  const leafOf = leaves.flatMap((leaf, index) => new Array<number>(leaf.rows.rows).fill(index));
   const all = stackRows(
-    groups.map((group) => group.leaf.rows),
+    leaves.map((leaf) => leaf.rows),
     w.rows,
   );
   const rotated = inSpace({ rows: all, indices: undefined }, w);
   let ratio = 0;
   for (let r = 0; r < rotated.rows; r++) {
+    const own = leafOf[r] as number;
     for (let p = rotated.ptr[r] as number; p < (rotated.ptr[r + 1] as number); p++) {
-      const difference = Math.abs((e1[r] as number) - (e1[rotated.col[p] as number] as number));
-      if (!(difference > 0)) continue;
+      const other = leafOf[rotated.col[p] as number] as number;
+      if (other === own) continue;
+      // only where V itself tells the two apart: a label found inside the level needs no denominator
+      const node = partingNode(paths[own] as PathStep[], paths[other] as PathStep[]);
+      if (node === undefined || nodes[node]?.kind !== "perturbation") continue;
+      const e1 = (leaf: number): number => firstOrder((leaves[leaf] as Leaf).from, nodes) ?? Number.NaN;
       const x = rotated.re[p] as number;
       const y = rotated.im === undefined ? 0 : (rotated.im[p] as number);
-      ratio = Math.max(ratio, Math.sqrt(x * x + y * y) / difference);
+      ratio = Math.max(ratio, Math.sqrt(x * x + y * y) / Math.abs(e1(own) - e1(other)));
     }
   }
   return ratio;

@@ -2,6 +2,7 @@ import type { PreparedProblem } from "../audit/problem.js";
 import { FAR_BELOW } from "../audit/resolution.js";
 import type { Depth, ResolvedLevel } from "../refine/resolve.js";
 import { energyTolerance, type Sector } from "../refine/sectors.js";
+import type { TreeNode } from "../refine/tree.js";
 import type { LevelCouplings } from "./couplings.js";
 import type { Question } from "./findings.js";
 import type { LevelGuard } from "./guard.js";
@@ -21,6 +22,7 @@ export interface LevelCase {
   /** Largest bound on ‖H0 q − E q‖ over the level's states, and on the error of any computed energy. */
   readonly residual: number;
   readonly enclosure: number;
+  readonly nodes: readonly TreeNode[];
 }
 
 /** The verdict on a level and what stands in the way. */
@@ -46,6 +48,15 @@ export function judgeLevel(level: LevelCase): LevelJudgement {
 
 function couplingQuestions({ problem, index, couplings, thresholds }: LevelCase): Question[] {
   return problem.perturbations.flatMap(({ name }, p): Question[] => {
+    if (!Number.isFinite((couplings.largest[p] ?? 0) + (couplings.offDiagonal[p] ?? 0) + (thresholds[p] ?? 0))) {
+      return [
+        {
+          code: "coupling-undecided",
+          level: index,
+          message: `elements of ${name} are too large for their bounds to be evaluated in double precision; choose a larger unit`,
+        },
+      ];
+    }
     const largest = couplings.largest[p] ?? 0;
     const threshold = thresholds[p] ?? 0;
     if (largest <= threshold || couplings.worst.some((pair) => pair.perturbation === name)) return [];
@@ -110,6 +121,17 @@ function levelQuestions(given: LevelCase): Question[] {
     });
   }
   for (const node of splitting) {
+    const shifts = firstOrderSpread(given, node.node);
+    if (node.kind === "second order" && shifts > FAR_BELOW * guard.lambda * node.gap) {
+      questions.push({
+        code: "ambiguous-level",
+        level: index,
+        message:
+          `the second-order operator separates states of the level at ${number(level.energy)} by ${number(node.gap)} λ², but ` +
+          `their first-order shifts are equal only to within ${number(shifts)} λ: not far below at λ = ${number(guard.lambda)}. ` +
+          "Give sharper entries of V, or find a label",
+      });
+    }
     const scale = node.kind === "perturbation" ? guard.lambda : guard.lambda * guard.lambda;
     if (spread <= FAR_BELOW * scale * node.gap) continue;
     questions.push({
@@ -122,6 +144,14 @@ function levelQuestions(given: LevelCase): Question[] {
     });
   }
   return questions;
+}
+
+/** How far the first-order shifts of the block of a second-order node may differ. */
+function firstOrderSpread({ couplings, nodes }: LevelCase, node: number): number {
+  const from = nodes[node]?.from;
+  const parent = from === undefined ? undefined : nodes[from.node];
+  if (from === undefined || parent?.kind !== "perturbation") return 0;
+  return 2 * ((parent.spreads[from.child] ?? 0) + Math.max(0, ...couplings.elementError));
 }
 
 function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {

@@ -5,7 +5,7 @@ import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import { compositionRowError } from "../refine/descent.js";
-import { alignByLadders } from "../refine/ladder.js";
+import { alignByLadders, DROPPED_PART } from "../refine/ladder.js";
 import { fixPhases } from "../refine/phase.js";
 import type { ResolvedLevel } from "../refine/resolve.js";
 import type { BlockLabel, Sector } from "../refine/sectors.js";
@@ -64,19 +64,23 @@ export function levelStates(
       }
       const kept = isIdentity(leaf.rows);
       stacks.push(kept ? frame : multiply(leaf.rows, frame));
-      const composed = kept ? 0 : compositionRowError(maxRowEntries(leaf.rows), frame);
-      rowError = Math.max(rowError, sector.rowError + composed);
+      const entries = maxRowEntries(leaf.rows);
+      const composed = kept ? 0 : compositionRowError(entries, frame);
+      // a unit row of m entries adds up m of the sector's errors, at most √m times as much
+      const carried = kept ? sector.rowError : Math.sqrt(entries) * 1.001 * sector.rowError;
+      rowError = Math.max(rowError, carried + composed);
       leafError = Math.max(leafError, composed);
     });
   });
   const order = states.map((_, k) => k).sort((a, b) => compare(problem, nodes, states[a], states[b]) || a - b);
   const stacked = fixPhases(selectRows(stackRows(stacks, problem.n), order));
   const sorted = order.map((k) => states[k] as LevelState);
+  const turned = PHASE_ERROR + DROPPED_PART * Math.sqrt(maxRowEntries(stacked));
   return {
     states: sorted,
     vectors: alignByLadders(problem, sorted, stacked),
-    rowError: rowError === 0 ? 0 : roundUp(rowError + PHASE_ERROR),
-    leafError: rowError === 0 ? 0 : roundUp(leafError + PHASE_ERROR),
+    rowError: rowError === 0 ? 0 : roundUp(rowError + turned),
+    leafError: rowError === 0 ? 0 : roundUp(leafError + turned),
   };
 }
 

@@ -6,6 +6,7 @@ export type * from "./verdict.js";
 
 /** Every level studied is good. */
 export interface GoodOutcome<K extends string = string> extends Study<K> {
+  /** Every level studied is good. */
   readonly verdict: "good";
   /** The certified basis, which {@link perturb} takes. */
   readonly basis: GoodBasis<K>;
@@ -13,14 +14,17 @@ export interface GoodOutcome<K extends string = string> extends Study<K> {
 
 /** V couples states inside a level. */
 export interface NotGoodOutcome<K extends string = string> extends Study<K> {
+  /** Some level is not good. */
   readonly verdict: "not good";
   /** Which states, and how strongly; largest first. */
   readonly couplings: readonly Coupling[];
+  /** What else stands in the way. */
   readonly questions: readonly Question[];
 }
 
 /** No coupling is proved, but something stands in the way of "good". */
 export interface UndecidedOutcome<K extends string = string> extends Study<K> {
+  /** No level is proved bad, and some not good. */
   readonly verdict: "undecided";
   /** What could not be told apart, and what would help. */
   readonly questions: readonly Question[];

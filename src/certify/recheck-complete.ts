@@ -35,7 +35,10 @@ export function checkCompleteness(
   const { levels, n, whole } = certificate;
   const total = levels.reduce((sum, level) => sum + level.states.length, 0);
   ledger.claim(
-    levels.length > 0 && levels.length <= whole.levels && (levels.length === whole.levels) === (total === n),
+    levels.length > 0 &&
+      levels.length <= whole.levels &&
+      whole.levels - levels.length <= n - total &&
+      (levels.length === whole.levels) === (total === n),
     "whole.levels",
     () => `${whole.levels} levels are claimed; ${levels.length} are certified with ${total} of ${n} states`,
   );
@@ -161,7 +164,9 @@ function countRuns(ledger: Ledger, certificate: Certificate, problem: OwnProblem
     if (!countable) continue;
     const states = levels.slice(a, b + 1).reduce((sum, level) => sum + level.states.length, 0);
     const end = (edge: number, gap: number | null, sign: number, open: number): number | undefined =>
-      gap === null ? undefined : edge + sign * Math.max(0, gap - 2 * whole.energyEnclosure) * (1 + open);
+      gap === null
+        ? undefined
+        : edge + sign * Math.max(0, gap + Math.sign(open) * 2 * whole.energyEnclosure) * (1 + open);
     const from = end(bottom(low), low.gapBelow, -1, -OPEN);
     const to = end(top(high), high.gapAbove, 1, -OPEN);
     const lower = from === undefined ? { below: 0, error: 0 } : spectrum.count(from);
@@ -181,17 +186,26 @@ function countRuns(ledger: Ledger, certificate: Certificate, problem: OwnProblem
         `${upper.below - lower.below} eigenvalues there`,
     );
     if (spectrum.largest > SMALL_PART) continue;
-    const past = end(bottom(low), low.gapBelow, -1, OPEN);
-    const beyond = end(top(high), high.gapAbove, 1, OPEN);
-    ledger.claim(
-      past === undefined || low.gapBelow === 0 || spectrum.count(past).below < lower.below,
-      `levels[${a}].gapBelow`,
-      () => `claimed ${low.gapBelow}, but H0 has no eigenvalue there`,
-    );
-    ledger.claim(
-      beyond === undefined || high.gapAbove === 0 || spectrum.count(beyond).below > upper.below,
-      `levels[${b}].gapAbove`,
-      () => `claimed ${high.gapAbove}, but H0 has no eigenvalue there`,
-    );
+    // once the sharpness of the count is known, the neighbour can be looked for at the very end of the gap
+    const sides = [
+      { gap: low.gapBelow, edge: bottom(low), sign: -1, count: lower, path: `levels[${a}].gapBelow` },
+      { gap: high.gapAbove, edge: top(high), sign: 1, count: upper, path: `levels[${b}].gapAbove` },
+    ];
+    for (const { gap, edge, sign, count, path: at } of sides) {
+      if (gap === null || gap === 0) continue;
+      const open = Math.min(OPEN, Math.max(2 ** -30, (8 * count.error) / gap));
+      const before = end(edge, gap, sign, -open);
+      const behind = end(edge, gap, sign, open);
+      ledger.claim(
+        before === undefined || spectrum.count(before).below === count.below,
+        at,
+        () => `claimed ${gap}, but H0 has an eigenvalue nearer than that`,
+      );
+      ledger.claim(
+        behind === undefined || sign * (spectrum.count(behind).below - count.below) > 0,
+        at,
+        () => `claimed ${gap}, but H0 has no eigenvalue there`,
+      );
+    }
   }
 }

@@ -3,7 +3,7 @@ import type { PreparedProblem } from "../audit/problem.js";
 import { roundUp } from "../numerics/rounding.js";
 import type { Certificate, CertifiedState } from "./certificate-format.js";
 import type { OwnCandidate } from "./recheck-commutators.js";
-import type { OwnOperator, OwnProblem } from "./recheck-operators.js";
+import { type OwnOperator, type OwnProblem, productRounding } from "./recheck-operators.js";
 import { join } from "./recheck-reader.js";
 import type { Ledger } from "./recheck-report.js";
 import type { OwnTree } from "./recheck-tree.js";
@@ -115,7 +115,11 @@ function checkNumber(
   }
   const terms = vectors.n + 16;
   residuals.tight[s] = roundUp(rho + rounding + operator.error, terms);
-  residuals.loose[s] = roundUp(rho + looseRounding + operator.error, terms);
+  // a bound may be taken over a whole sector at once, whose vectors round in every step of the refinement
+  const size = Math.sqrt(vectors.n);
+  const sector =
+    size * (looseRounding + operator.error) + operator.norm * (2 * size * productRounding(vectors.n) + LABEL_WIDTH);
+  residuals.loose[s] = roundUp(size * rho + sector, terms);
   const vague = label.status === "not sharp";
   const what = vague
     ? `the deviation of ${name}`
@@ -152,7 +156,7 @@ function checkTexts(
   all: boolean,
 ): void {
   const sharp = met.filter(({ label }) => label.status !== "not sharp");
-  const family = declared ?? pickFamily(candidate, sharp, all);
+  const family = declared ?? pickFamily(candidate, sharp, all, sharp.length === met.length);
   for (const { path, label } of met) {
     if (label.status === "not sharp") {
       const text = `⟨${writeNumber(label.re, label.im)}⟩`;
@@ -180,26 +184,32 @@ function checkTexts(
 }
 
 /** With all states at hand the family is recognised anew; otherwise it must be one that fits every text. */
-function pickFamily(candidate: OwnOperator, sharp: readonly Met[], all: boolean): LabelDeclaration | undefined {
+function pickFamily(
+  candidate: OwnOperator,
+  sharp: readonly Met[],
+  all: boolean,
+  allSharp: boolean,
+): LabelDeclaration | undefined {
   const values = sharp.map(({ label }) => label);
-  if (all) {
-    const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
-    return recogniseFamily(values, 4 * widest + LABEL_WIDTH * candidate.operator.norm);
-  }
-  if (values.every((label) => label.status === "measured")) return undefined;
-  return RECOGNISED.find((family) =>
+  const fits = (family: LabelDeclaration): boolean =>
     values.every((label) => {
       const member = onlyMember(family, label, label.radius);
-      return member === undefined
-        ? label.status === "measured"
-        : label.status === "proposed" && member.text === label.text;
-    }),
-  );
+      if (member === undefined) return label.status === "measured";
+      return label.status === "proposed" && member.text === label.text;
+    });
+  if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);
+  const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
+  const radius = 4 * widest + LABEL_WIDTH * candidate.operator.norm;
+  const distinct = [...new Map(values.map((label) => [`${label.re} ${label.im}`, label])).values()];
+  // how often a value occurs may tip the scales between a square and its root: both readings are honest
+  const once = recogniseFamily(distinct, radius, allSharp);
+  const often = recogniseFamily(values, radius, allSharp);
+  return often !== undefined && (once === undefined || fits(often)) ? often : once;
 }
 
 /** A number as labels write it: six digits, a true minus sign, the part left out that is negligible. */
 function writeNumber(re: number, im: number): string {
-  const digits = (x: number): string => `${Number(x.toPrecision(6))}`.replace("-", "−");
+  const digits = (x: number): string => `${Number(x.toPrecision(6))}`.replaceAll("-", "−");
   const negligible = 1e-12 * Math.hypot(re, im);
   if (Math.abs(im) <= negligible) return digits(re);
   if (Math.abs(re) <= negligible) return `${digits(im)}i`;

@@ -10,11 +10,17 @@ export interface Pair {
   readonly loose: number;
 }
 
+/** Bounds on the 2-norm of a matrix of evaluated elements. */
+export interface OwnNorm extends Pair {
+  /** What every honest bound reaches: the largest norm of one row, and the error of one element. */
+  readonly least: number;
+}
+
 /** One operator between all states of a level. */
 export interface OwnElements {
   readonly diagonal: Float64Array;
   /** Bounds on the 2-norm of what is off the diagonal. */
-  readonly offDiagonal: Pair;
+  readonly offDiagonal: OwnNorm;
   /** Largest modulus off the diagonal. */
   readonly largestOff: number;
   /** For each node: largest modulus between states that part there; −1 where no two share a ket. */
@@ -34,7 +40,7 @@ export interface OwnElements {
 export interface OwnLevel {
   readonly tree: OwnTree;
   /** Bound on ‖Q Q† − 1‖₂. */
-  readonly orthonormality: Pair;
+  readonly orthonormality: OwnNorm;
   /** A lower bound on it. */
   readonly orthonormalityAtLeast: number;
   readonly h0: OwnElements;
@@ -66,7 +72,9 @@ export function evaluateLevel(
     const rho = bench.residual(shape.from + k, level.states[k]?.energy ?? 0, 0);
     const { rounding, looseRounding, operator } = problem.h0;
     residuals[k] = roundUp(rho + rounding + operator.error, n + 16);
-    looseResiduals[k] = roundUp(rho + looseRounding + operator.error, n + 16);
+    // a state may be put together from d vectors whose errors add, and rounds once more in that
+    const each = rho + looseRounding + operator.error;
+    looseResiduals[k] = roundUp(Math.sqrt(d) * each + 2 * operator.norm * Math.sqrt(n) * productRounding(n), n + 16);
   }
   return {
     tree,
@@ -115,8 +123,10 @@ function evaluateGram(
   bench: Bench,
   { from, to, longest, moduli }: Shape,
   n: number,
-): { orthonormality: Pair; orthonormalityAtLeast: number } {
+): { orthonormality: OwnNorm; orthonormalityAtLeast: number } {
   const rows = new Float64Array(to - from);
+  const squares = new Float64Array(to - from);
+  let worstError = 0;
   const relative = productRounding(longest);
   let bare = 0;
   let padded = 0;
@@ -136,16 +146,21 @@ function evaluateGram(
       bare += weight * size * size;
       padded += weight * (size + error) ** 2;
       atLeast = Math.max(atLeast, size - error);
-      rows[r - from] = (rows[r - from] as number) + size;
-      if (c !== r) rows[c - from] = (rows[c - from] as number) + size;
+      worstError = Math.max(worstError, error);
+      addTo(rows, squares, r - from, size);
+      if (c !== r) addTo(rows, squares, c - from, size);
     }
   }
-  const row = rows.reduce((most, x) => Math.max(most, x), 0);
+  const row = largest(rows);
   const entrywise = Math.sqrt(padded);
   const normwise = Math.min(row, Math.sqrt(bare)) + relative * moduli * moduli;
   const tight = touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16);
   return {
-    orthonormality: { tight, loose: entrywise + n * productRounding(2 * n) },
+    orthonormality: {
+      least: Math.min(tight, Math.sqrt(largest(squares)) + worstError),
+      tight,
+      loose: entrywise + n * productRounding(2 * n),
+    },
     orthonormalityAtLeast: atLeast,
   };
 }
@@ -164,6 +179,8 @@ function evaluateElements(
   const error = roundUp((v.rounding + relative + entries) * 1.001, 16);
   const diagonal = new Float64Array(d);
   const rows = new Float64Array(d);
+  const squares = new Float64Array(d);
+  let worstError = 0;
   const atNode = new Float64Array(nodes).fill(-1);
   const atNodeBound = new Float64Array(nodes);
   let bare = 0;
@@ -188,8 +205,9 @@ function evaluateElements(
       const own = size + rounding * 1.001 + entries;
       bare += 2 * size * size;
       padded += 2 * own * own;
-      rows[r - from] = (rows[r - from] as number) + size;
-      rows[c - from] = (rows[c - from] as number) + size;
+      worstError = Math.max(worstError, own - size);
+      addTo(rows, squares, r - from, size);
+      addTo(rows, squares, c - from, size);
       if (size > largestOff) largestOff = size;
       const node = partingPlace(tree, c - from, r - from);
       if (node < 0) withinLeaves = Math.max(withinLeaves, size + error);
@@ -201,15 +219,17 @@ function evaluateElements(
       if (atLeast > worst.atLeast) worst = { atLeast, first: c - from, second: r - from };
     }
   }
-  const row = rows.reduce((most, x) => Math.max(most, x), 0);
+  const row = largest(rows);
   const normwise =
     Math.min(row, Math.sqrt(bare)) + (v.rounding * moduli + relative * moduli * moduli) * 1.001 + entries;
   const entrywise = Math.sqrt(padded);
   const most = entrywise + vectors.n * productRounding(2 * vectors.n) * norm;
+  const tight = touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16);
   return {
     diagonal,
     offDiagonal: {
-      tight: touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16),
+      least: Math.min(tight, Math.sqrt(largest(squares)) + worstError),
+      tight,
       loose: most + entries * (nodes + 1),
     },
     largestOff,
@@ -220,4 +240,14 @@ function evaluateElements(
     looseError: error + v.looseRounding + productRounding(vectors.n) * norm,
     worst,
   };
+}
+
+/** Adds an element to the sum and to the sum of squares of its row. */
+function addTo(rows: Float64Array, squares: Float64Array, row: number, size: number): void {
+  rows[row] = (rows[row] as number) + size;
+  squares[row] = (squares[row] as number) + size * size;
+}
+
+function largest(values: Float64Array): number {
+  return values.reduce((most, x) => Math.max(most, x), 0);
 }

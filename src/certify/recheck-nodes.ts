@@ -1,12 +1,10 @@
 import { roundUp } from "../numerics/rounding.js";
-import type { Certificate, CertifiedLevel, CertifiedNode, CertifiedState } from "./certificate-format.js";
+import type { Certificate, CertifiedLevel, CertifiedNode } from "./certificate-format.js";
 import type { OwnCandidate } from "./recheck-commutators.js";
 import type { OwnResiduals } from "./recheck-labels.js";
 import type { OwnLevel } from "./recheck-level.js";
 import type { OwnProblem } from "./recheck-operators.js";
 import type { Ledger } from "./recheck-report.js";
-
-type Safe = CertifiedState["safe"];
 
 /** Eigenvalues of V or of the second-order operator are clustered to this fraction of their scale. */
 const CLUSTER = 2 ** -35;
@@ -52,12 +50,12 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
     if (elements === undefined) return;
     const path = `${where}[${p}]`;
     const name = claimed.perturbation;
-    const { tight, loose } = elements.offDiagonal;
+    const { least, loose } = elements.offDiagonal;
     ledger.bound(
       `${path}.offDiagonal`,
       `the off-diagonal block of ${name}`,
       claimed.offDiagonal,
-      tight,
+      least,
       loose + leak(given, p),
     );
     const looseLeaf = elements.withinLeaves + elements.looseError;
@@ -83,8 +81,8 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
   return { bounds };
 }
 
-/** How much of V the commutators may leave between different labels. */
-function leak({ candidates, certificate, problem, level }: NodeCase, p: number): number {
+/** How much of one perturbation its commutators and the overlaps may leave between different labels. */
+export function leak({ candidates, certificate, problem, level }: NodeCase, p: number): number {
   let sum = 0;
   candidates.forEach((candidate, place) => {
     if (candidate.role !== "conserved") return;
@@ -193,6 +191,16 @@ function checkResidual(ledger: Ledger, given: NodeCase, node: CertifiedNode, pat
   return tight;
 }
 
+/**
+ * |V_μν| ≤ ( ‖[A, V]‖ ‖q_μ‖‖q_ν‖ + (‖s_μ‖ + ‖r_ν‖) ‖V‖ ‖q‖ ) / |a_μ − a_ν| for a label A with residuals r and s.
+ *
+ * @param defect - ‖Q Q† − 1‖, from which ‖q‖² ≤ 1 + defect
+ */
+export function selectionRule(commutator: number, norm: number, residual: number, defect: number, gap: number): number {
+  const length = Math.sqrt(1 + defect);
+  return ((commutator * length + 2 * norm * residual) * length) / gap;
+}
+
 /** What a node says of each perturbation. */
 function checkBounds(
   ledger: Ledger,
@@ -220,12 +228,10 @@ function checkBounds(
     const tight = elements.atNodeBound[place] as number;
     const loose = Math.max(size, 0) + elements.looseError + elements.offDiagonal.loose + leak(given, p);
     ledger.bound(`${at}.direct`, `${v.name} between the states that part here`, claimed.direct, tight, loose);
-    const rule = (commutator: number, worst: number, defect: number): number => {
-      const length = Math.sqrt(1 + defect);
-      return ((commutator * length + 2 * v.norm * worst) * length) / node.gap;
-    };
     const byLabel = node.kind === "label" && node.commutators[p] !== undefined;
-    const expected = byLabel ? rule(node.commutators[p] as number, node.residual, level.orthonormality) : null;
+    const expected = byLabel
+      ? selectionRule(node.commutators[p] as number, v.norm, node.residual, level.orthonormality, node.gap)
+      : null;
     ledger.claim(
       expected === null
         ? claimed.selectionRule === null
@@ -247,52 +253,8 @@ function checkBounds(
     const commutator = candidate?.withPerturbations[p]?.bound;
     const ownRule =
       byLabel && commutator !== undefined
-        ? roundUp(rule(commutator, residual, own.orthonormality.tight), 32)
+        ? roundUp(selectionRule(commutator, v.norm, residual, own.orthonormality.tight, node.gap), 32)
         : Number.POSITIVE_INFINITY;
     bounds[p] = Math.max(bounds[p] ?? 0, Math.min(ownRule, tight));
   });
-}
-
-/** Checks how far the short formulas are said to be safe: state by state, and their minimum. */
-export function checkSafeOrders(ledger: Ledger, { level, l, own }: NodeCase): void {
-  const found = level.states.map((state, k): Safe => {
-    const safe = safeOrders(level, own, k);
-    const path = `levels[${l}].states[${k}]`;
-    ledger.claim(
-      state.safe.energies === safe.energies && state.safe.states === safe.states,
-      `${path}.safe`,
-      () => `claimed safe through ${write(state.safe)}; its weakest separator allows ${write(safe)}`,
-    );
-    ledger.claim(
-      (state.limitedBy === "") === (safe.energies === "all" && safe.states === "all"),
-      `${path}.limitedBy`,
-      () => `"${state.limitedBy}" does not go with orders ${write(safe)}`,
-    );
-    return safe;
-  });
-  const least = found.reduce<Safe>((a, b) => (height(b) < height(a) ? b : a), { energies: "all", states: "all" });
-  ledger.claim(
-    level.safe.energies === least.energies && level.safe.states === least.states,
-    `levels[${l}].safe`,
-    () => `claimed safe through ${write(level.safe)}; its states allow ${write(least)}`,
-  );
-}
-
-/** The weakest separator from any partner decides. */
-function safeOrders(level: CertifiedLevel, { tree }: OwnLevel, state: number): Safe {
-  if ((tree.together[state] ?? 1) > 1) return { energies: 1, states: "none" };
-  const path = tree.paths[state] ?? [];
-  const kinds = path.flatMap((place, at) => (at % 2 === 0 ? (level.nodes[place]?.kind ?? []) : []));
-  if (kinds.includes("perturbation")) return { energies: 2, states: 0 };
-  if (kinds.includes("second order")) return { energies: 3, states: 0 };
-  return { energies: "all", states: "all" };
-}
-
-/** In the table both columns fall together, so the energies' order ranks a pair. */
-function height(safe: Safe): number {
-  return safe.energies === "all" ? Number.POSITIVE_INFINITY : safe.energies;
-}
-
-function write(safe: Safe): string {
-  return `${safe.energies} (energies) and ${safe.states} (states)`;
 }

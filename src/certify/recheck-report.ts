@@ -22,6 +22,9 @@ const TOO_LITTLE = 1 / 4;
 /** A bound more than this far above anything that rounding could leave was not written for this problem. */
 const TOO_MUCH = 64;
 
+/** Below this squares vanish, and a bound may say no more than that. */
+const UNDERFLOWN = 2 ** -500;
+
 /** After this many findings the rest is counted only. */
 const MOST_FINDINGS = 1000;
 
@@ -48,7 +51,7 @@ export class Ledger {
   /** Checks that a claimed number is the one found, to within a tolerance. */
   near(path: string, what: string, claimed: number, found: number, tolerance: number): boolean {
     return this.claim(
-      Math.abs(claimed - found) <= tolerance,
+      Math.abs(claimed - found) <= tolerance + UNDERFLOWN,
       path,
       () => `${what} is claimed to be ${claimed}, found ${found} (to within ${tolerance.toExponential(1)})`,
     );
@@ -67,7 +70,7 @@ export class Ledger {
       () => `claims too little: ${what} is claimed to be at most ${claimed}, found up to ${tight}`,
     );
     const fitting = this.claim(
-      claimed <= TOO_MUCH * loose + Number.MIN_VALUE * 2 ** 60,
+      claimed <= TOO_MUCH * loose + UNDERFLOWN,
       path,
       () =>
         `does not belong to this certificate: ${what} is claimed to be at most ${claimed}, ` +

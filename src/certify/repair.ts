@@ -3,9 +3,9 @@ import { LABEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
 import { adjoint, conjugate, diagonalCsr, multiply, toDense, transpose } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
+import { images } from "../operator/images.js";
 import { splitIntoEigenspaces } from "../refine/eigenspaces.js";
 import { inSpace } from "../refine/sectors.js";
-import { images } from "./residuals.js";
 
 /** The rotation inside a level that diagonalises V there. */
 export interface Repair {

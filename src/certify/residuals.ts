@@ -1,32 +1,27 @@
 import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import { conjugate, maxRowEntries, multiply, transpose } from "../numerics/sparse.js";
+import { gamma, roundUp, UNDERFLOW, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { longestColumn } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 
-/** Rows (A q)ᵀ for vectors q stored as rows: Q Aᵀ. */
-export function images(vectors: Csr, operator: Operator): Csr {
-  const transposed = operator.isHermitian ? conjugate(operator.csr) : transpose(operator.csr);
-  return multiply(vectors, transposed);
-}
-
-/** Rows (A† q)ᵀ: Q conj(A). */
-export function adjointImages(vectors: Csr, operator: Operator): Csr {
-  return multiply(vectors, conjugate(operator.csr));
+/**
+ * The root of a sum of squares of `terms` complex numbers that differ from zero, not rounded up: each square may have lost
+ * half the smallest positive number, twice, which no relative bound covers once the numbers are below 1e-154.
+ */
+export function rootOfSquares(sum: number, terms: number): number {
+  return terms === 0 ? 0 : Math.sqrt(sum + terms * UNDERFLOW);
 }
 
 /**
  * Bound on the rounding and entry errors of one computed image A q for ‖q‖ ≤ 1 + 2^−20: the k-th component is a sum of at
  * most m products (m the longest row of A, or of its adjoint), so its error is at most √2 γ_{m+2} (|A||q|)_k (complex
- * products, Higham ch. 3); ‖|A||q|‖ ≤ ‖|A|‖₂ ‖q‖. The entries' own errors add ‖ΔA‖₂ ‖q‖.
+ * products, Higham ch. 3); ‖|A||q|‖ ≤ ‖|A|‖₂ ‖q‖. The entries' own errors add ‖ΔA‖₂ ‖q‖, and every
+ * product may underflow.
  */
 export function imageError(operator: Operator): number {
-  const longest = operator.n < 64 ? operator.n : Math.max(operator.rowEntries, columnEntries(operator));
-  return roundUp((Math.SQRT2 * gamma(longest + 4) * operator.norm + operator.error) * (1 + 2 ** -19), 16);
-}
-
-function columnEntries(operator: Operator): number {
-  return operator.isHermitian ? operator.rowEntries : maxRowEntries(transpose(operator.csr));
+  const longest = Math.max(operator.rowEntries, longestColumn(operator));
+  const underflow = operator.norm === 0 ? 0 : 4 * operator.n * longest * UNDERFLOW;
+  return roundUp((Math.SQRT2 * gamma(longest + 4) * operator.norm + operator.error) * (1 + 2 ** -19) + underflow, 16);
 }
 
 /**
@@ -45,11 +40,11 @@ export function residualBounds(rows: Csr, vectors: Csr, value: (row: number) => 
     let terms = 0;
     forEachDifference(rows, vectors, r, a, (_, x, y) => {
       sum += x * x + y * y;
-      terms++;
+      if (x !== 0 || y !== 0) terms++;
     });
     // a q and the subtraction: at most 4 roundings of size |a||q_k| each, and one of the difference itself
     const rounding = 5 * UNIT_ROUNDOFF * (Math.abs(a.re) + Math.abs(a.im));
-    out[r] = roundUp(Math.sqrt(sum) + error + rounding, terms + 8);
+    out[r] = roundUp(rootOfSquares(sum, terms) + error + rounding, terms + 8);
   }
   return out;
 }
@@ -58,13 +53,15 @@ export function residualBounds(rows: Csr, vectors: Csr, value: (row: number) => 
 export function residualRows(rows: Csr, vectors: Csr, a: Complex): { norm: number; frobenius: number } {
   const columns = new Map<number, number>();
   let square = 0;
+  let terms = 0;
   let largestRow = 0;
   for (let r = 0; r < vectors.rows; r++) {
     let row = 0;
     forEachDifference(rows, vectors, r, a, (column, x, y) => {
       if (x === 0 && y === 0) return;
-      const size = Math.sqrt(x * x + y * y);
+      const size = rootOfSquares(x * x + y * y, 1);
       square += size * size;
+      terms++;
       row += size;
       columns.set(column, (columns.get(column) ?? 0) + size);
     });
@@ -74,8 +71,8 @@ export function residualRows(rows: Csr, vectors: Csr, a: Complex): { norm: numbe
   for (const sum of columns.values()) largestColumn = Math.max(largestColumn, sum);
   const operations = vectors.re.length + 8;
   return {
-    norm: roundUp(Math.sqrt(largestRow * largestColumn), operations),
-    frobenius: roundUp(Math.sqrt(square), operations),
+    norm: roundUp(Math.sqrt(largestRow) * Math.sqrt(largestColumn), operations),
+    frobenius: roundUp(rootOfSquares(square, terms), operations),
   };
 }
 
@@ -142,6 +139,10 @@ export function rowProduct(a: Csr, ra: number, b: Csr, rb: number): Complex {
 /** √(Σ x²), rounded up. */
 export function rootSumSquares(values: Float64Array): number {
   let sum = 0;
-  for (let k = 0; k < values.length; k++) sum += (values[k] as number) ** 2;
-  return roundUp(Math.sqrt(sum), values.length + 4);
+  let terms = 0;
+  for (let k = 0; k < values.length; k++) {
+    sum += (values[k] as number) ** 2;
+    if (values[k] !== 0) terms++;
+  }
+  return roundUp(rootOfSquares(sum, terms), values.length + 4);
 }

@@ -7,7 +7,9 @@ import type { LevelState } from "./level-states.js";
  * `"all"` means every order; `"none"` that the zeroth-order state itself is not settled.
  */
 export interface SafeOrders {
+  /** Highest order of the energies. */
   readonly energies: number | "all";
+  /** Highest order of the states. */
   readonly states: number | "all" | "none";
 }
 
@@ -31,9 +33,20 @@ export interface SafetyFinding {
  * Two states that only V tells apart are mixed by W at first order already, c_μ = W_μν/(E1_ν − E1_μ), which adds
  * |W_μν|²/(E1_ν − E1_μ) to the third order: the short formulas miss both.
  *
+ * With several perturbations the second order of a pair that only they tell apart exists along each ray of the λ's on which its
+ * first-order shifts differ. It is called safe where every perturbation alone tells the pair apart, so that each may be switched
+ * off; a ray on which the differences cancel is still excluded, and said to be.
+ *
  * @param evidence - the nodes at which states of this level part company
+ * @param several - whether several perturbations are studied together
+ * @param eachParts - whether every perturbation alone tells the state from all its partners that perturbations tell apart
  */
-export function safeOrders(state: LevelState, evidence: ReadonlyMap<number, NodeEvidence>): SafetyFinding {
+export function safeOrders(
+  state: LevelState,
+  evidence: ReadonlyMap<number, NodeEvidence>,
+  several: boolean,
+  eachParts: () => boolean,
+): SafetyFinding {
   if (state.together > 1) {
     const others = state.together === 2 ? "another state" : `${state.together - 1} other states`;
     return {
@@ -52,6 +65,18 @@ export function safeOrders(state: LevelState, evidence: ReadonlyMap<number, Node
     };
   }
   const v = onPath.find((node) => node.kind === "perturbation");
+  if (v !== undefined && several) {
+    const ray = "along a ray of the λ's on which the first-order shifts differ";
+    return eachParts()
+      ? {
+          safe: { energies: 2, states: 0 },
+          limitedBy: `only the perturbations tell it from a partner with the same labels; the second order holds ${ray}`,
+        }
+      : {
+          safe: { energies: 1, states: 0 },
+          limitedBy: `not every perturbation alone tells it from its partners; a second order exists only ${ray}`,
+        };
+  }
   if (v !== undefined) {
     return {
       safe: { energies: 2, states: 0 },

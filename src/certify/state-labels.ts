@@ -5,10 +5,11 @@ import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { adjointImages, images } from "../operator/images.js";
 import { labelFamily, type StateLabel, sharpLabel, vagueLabel } from "../refine/label.js";
 import type { TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
-import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import { imageError, residualBounds, rowProduct } from "./residuals.js";
 import type { SectorEvidence } from "./whole.js";
 
 /** A candidate's number in one state, before it is named. */
@@ -90,6 +91,12 @@ function adjointResiduals(
   return residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, error);
 }
 
+/** The values without those that repeat to ten digits. */
+function distinctValues(values: readonly Complex[]): Complex[] {
+  const digits = (x: number): string => (Math.abs(x) < 1e-9 ? "0" : x.toPrecision(10));
+  return [...new Map(values.map((value) => [`${digits(value.re)} ${digits(value.im)}`, value])).values()];
+}
+
 /**
  * Names the numbers of one candidate in all states studied.
  *
@@ -107,12 +114,13 @@ export function nameLabels(
   const finding = audit.candidates[place];
   const role = finding?.conserved === true ? "conserved" : finding?.descriptive === true ? "descriptive" : "broken";
   const sharp = (entry: LabelNumber): boolean => entry.radius <= 16 * LABEL_WIDTH * candidate.operator.norm;
-  const seen = [
+  const seen = distinctValues([
     ...nodes.filter((node) => node.kind === "label" && node.operator === candidate.name).flatMap((node) => node.values),
     ...numbers.filter((entry) => !entry.onPath && sharp(entry)).map((entry) => entry.value),
-  ];
+  ]);
+  const all = numbers.every((entry) => entry.onPath || sharp(entry));
   const widest = numbers.reduce((most, entry) => (sharp(entry) ? Math.max(most, entry.radius) : most), 0);
-  const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm);
+  const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm, all);
   return numbers.map((entry) =>
     entry.onPath || sharp(entry)
       ? sharpLabel(family, entry.value, entry.radius, role)

@@ -1,19 +1,20 @@
 import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
-import { roundUp } from "../numerics/rounding.js";
+import { LABEL_WIDTH } from "../audit/resolution.js";
+import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
 import { type Depth, type Leaf, type ResolvedLevel, type ResolvedPart, resolveLevel } from "../refine/resolve.js";
 import { buildSectors, energyTolerance, type Sector, type Sectors } from "../refine/sectors.js";
 import { TreeBuilder, type TreeNode } from "../refine/tree.js";
 import { type Backbone, chooseBackbone } from "./backbone.js";
-import { type LevelCouplings, levelCouplings, type NodeEvidence } from "./couplings.js";
+import { type LevelCouplings, levelCouplings, type NodeEvidence, partingNode } from "./couplings.js";
 import { describeState } from "./describe.js";
 import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
 import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
-import { rootSumSquares } from "./residuals.js";
+import { rootOfSquares, rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
 import type { Shift } from "./verdict.js";
@@ -21,8 +22,11 @@ import { type SectorEvidence, type WholeEvidence, wholeEvidence } from "./whole.
 
 /** A step of the work, for a progress display. */
 export interface Progress {
+  /** What is being done. */
   readonly stage: "audit" | "labels" | "levels";
+  /** Steps done of this stage. */
   readonly done: number;
+  /** Steps of this stage in all. */
   readonly of: number;
 }
 
@@ -149,12 +153,15 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     thresholds,
     residual,
     enclosure: whole.energyEnclosure,
+    nodes,
   });
   const evidence = new Map<number, NodeEvidence>(couplings.nodes.map((node) => [node.node, node]));
   const deviation = energies.reduce((most, energy) => Math.max(most, Math.abs(energy - level.energy)), 0);
   const spread = deviation + residual;
   const states = found.states.map((state, k) => {
-    const safety = safeOrders(state, evidence);
+    const safety = safeOrders(state, evidence, problem.perturbations.length > 1, () =>
+      eachPerturbationParts(problem, found, couplings, k),
+    );
     return {
       level: index,
       energy: energies[k] as number,
@@ -202,6 +209,25 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
   };
 }
 
+/** Whether every perturbation alone gives a state another first-order shift than each partner that perturbations part it from. */
+function eachPerturbationParts(
+  problem: PreparedProblem,
+  { states }: LevelStates,
+  { diagonals, elementError, nodes }: LevelCouplings,
+  k: number,
+): boolean {
+  const parting = new Set(nodes.filter((node) => node.kind === "perturbation").map((node) => node.node));
+  const path = states[k]?.path ?? [];
+  return states.every((other, j) => {
+    const node = partingNode(path, other.path);
+    if (node === undefined || !parting.has(node)) return true;
+    return problem.perturbations.every(({ operator }, p) => {
+      const difference = Math.abs((diagonals[p]?.[k] ?? 0) - (diagonals[p]?.[j] ?? 0));
+      return difference > LABEL_WIDTH * operator.norm + 2 * (elementError[p] ?? 0);
+    });
+  });
+}
+
 /**
  * Energies of a level's states and bounds on ‖H0 q − E q‖, from those of the sector's vectors they are made of: for
  * q = Σ u_i f_i with E = Σ|u_i|²E_i, the residual is at most √(Σ‖r_i‖²) + √(Σ|u_i|²(E_i − E)²), and rounding.
@@ -229,17 +255,22 @@ function stateEnergies(
     const first = energyAt(from);
     let excess = 0;
     let square = 0;
+    let inexact = false;
+    let uneven = false;
     for (let p = from; p < to; p++) {
+      const residual = own.energyResiduals[part.indices[rows.col[p] as number] as number] as number;
       excess += weightAt(p) * (energyAt(p) - first);
-      square += (own.energyResiduals[part.indices[rows.col[p] as number] as number] as number) ** 2;
+      square += residual ** 2;
+      if (residual !== 0) inexact = true;
+      if (energyAt(p) !== first) uneven = true;
     }
     let spread = 0;
     for (let p = from; p < to; p++) spread += weightAt(p) * (energyAt(p) - first - excess) ** 2;
     energies[k] = first + excess;
-    residuals[k] = roundUp(
-      (Math.sqrt(square) + Math.sqrt(spread)) * (1 + whole.orthonormality) + composed,
-      2 * (to - from) + 16,
-    );
+    // the energy as stored differs from that of the sum by a rounding
+    const stored = uneven ? 2 * UNIT_ROUNDOFF * Math.abs(energies[k] as number) : 0;
+    const roots = rootOfSquares(square, inexact ? to - from : 0) + rootOfSquares(spread, uneven ? to - from : 0);
+    residuals[k] = roundUp((roots + stored) * (1 + whole.orthonormality) + composed, 2 * (to - from) + 16);
   });
   return { energies, residuals };
 }

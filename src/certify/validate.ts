@@ -1,17 +1,21 @@
+import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
-import type { Complex } from "../numerics/complex.js";
+import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
-import { roundDown, roundUp } from "../numerics/rounding.js";
+import { roundDown, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
+import { adjointImages, images } from "../operator/images.js";
+import type { Operator } from "../operator/operator.js";
 import { energyTolerance } from "../refine/sectors.js";
 import { type BasisColumns, readColumns } from "./columns.js";
 import { overall } from "./find.js";
 import { type GuardOptions, guardSetting } from "./guard.js";
+import { checkLevelWidth, requireOptions } from "./options.js";
 import { elementErrorBound, forEachProduct, gramDefect, gramElementError } from "./products.js";
 import { type Repair, repairLevel } from "./repair.js";
-import { adjointImages, imageError, images, residualBounds, rowProduct } from "./residuals.js";
+import { imageError, residualBounds, rowProduct } from "./residuals.js";
 import type { Verdict } from "./verdict.js";
 
 /** A label that somebody claims for a column: an eigenvalue, or a quantum number as text ("3/2", "-1"). */
@@ -27,14 +31,17 @@ export interface ValidateOptions extends GuardOptions {
 
 /** A checked claim: its bound from above and below, and whether it holds to the resolution. */
 export interface Checked {
+  /** Whether the claim holds to the resolution. */
   readonly verdict: Verdict;
   /** Rigorous bounds on the deviation. */
   readonly atMost: number;
+  /** Rigorous lower bound on the deviation. */
   readonly atLeast: number;
 }
 
 /** What was found of one column. */
 export interface ColumnFinding {
+  /** Number of the column. */
   readonly column: number;
   /** ⟨q|H0|q⟩/⟨q|q⟩. */
   readonly energy: number;
@@ -46,34 +53,52 @@ export interface ColumnFinding {
 
 /** Two columns of one level that V couples. */
 export interface ColumnCoupling {
+  /** Name of the perturbation. */
   readonly perturbation: string;
+  /** Numbers of the two columns. */
   readonly columns: readonly [number, number];
+  /** |V_μν| in the problem's unit, as computed. */
   readonly size: number;
+  /** Rigorous lower bound on it. */
   readonly atLeast: number;
+  /** Rigorous upper bound on it. */
   readonly atMost: number;
 }
 
 /** What was found of one level of the basis. */
 export interface ValidatedLevel {
+  /** Middle of the columns' energies. */
   readonly energy: number;
+  /** Numbers of its columns, by energy. */
   readonly columns: readonly number[];
+  /** Whether V leaves its columns uncoupled. */
   readonly verdict: Verdict;
   /** Bound on the largest in-level element of each perturbation. */
   readonly largest: readonly number[];
   /** The pairs that are certainly coupled, largest first; at most ten. */
   readonly worst: readonly ColumnCoupling[];
+  /** The rotation inside the level that diagonalises V there. */
   readonly repair: Repair;
 }
 
 /** What {@link validateBasis} found. */
 export interface Validation {
+  /** The verdict on the whole basis. */
   readonly verdict: Verdict;
+  /** Unit of all energies. */
   readonly unit: string;
   /** Whether the columns are as many as the kets; otherwise levels may lack partners and denominators are not checked. */
   readonly complete: boolean;
   /** ‖Q†Q − 1‖, and the pair of columns (or the one column, twice) that deviates most. */
-  readonly orthonormality: Checked & { readonly worst: readonly [number, number]; readonly size: number };
+  readonly orthonormality: Checked & {
+    /** The two columns, or one column twice. */
+    readonly worst: readonly [number, number];
+    /** The element of Q†Q − 1 there. */
+    readonly size: number;
+  };
+  /** One finding for each column. */
   readonly columns: readonly ColumnFinding[];
+  /** The levels that the columns form, by ascending energy. */
   readonly levels: readonly ValidatedLevel[];
   /** Everything that stands between the basis and "good", one sentence each. */
   readonly remarks: readonly string[];
@@ -104,7 +129,9 @@ export function validateBasis<K extends string>(
   options: ValidateOptions = {},
 ): Validation {
   const prepared = prepareProblem(problem);
+  requireOptions("validateBasis", options);
   const resolution = checkResolution(options.resolution ?? DEFAULT_RESOLUTION);
+  checkLevelWidth(options.levelWidth);
   const vectors = readColumns(columns, prepared.n);
   const orthonormality = checkOrthonormality(vectors, resolution);
   const found = checkColumns(prepared, vectors, readClaims(prepared, labels ?? {}, vectors.rows), resolution);
@@ -137,8 +164,15 @@ function judge(atMost: number, atLeast: number, threshold: number): Checked {
   return { atMost, atLeast, verdict: atMost <= threshold ? "good" : atLeast > threshold ? "not good" : "undecided" };
 }
 
+/** Bound on the length of the longest column, at least 1: the rounding of everything computed from a column grows with it. */
+function longestColumn(vectors: Csr): number {
+  let most = 1;
+  for (let k = 0; k < vectors.rows; k++) most = Math.max(most, rowProduct(vectors, k, vectors, k).re);
+  return roundUp(Math.sqrt(most), vectors.cols + 8);
+}
+
 function checkOrthonormality(vectors: Csr, resolution: number): Validation["orthonormality"] {
-  const bound = gramDefect(vectors);
+  const bound = gramDefect(vectors, longestColumn(vectors));
   let worst: readonly [number, number] = [0, 0];
   let size = 0;
   forEachProduct(vectors, vectors, (r, c, re, im) => {
@@ -186,10 +220,13 @@ function readClaim(candidate: PreparedCandidate, value: ClaimedLabel, column: nu
     if (!Number.isFinite(value)) throw bad();
     return { re: value, im: 0 };
   }
-  if (typeof value !== "string") return value;
+  if (typeof value !== "string") {
+    if (!Number.isFinite(value?.re) || !Number.isFinite(value.im)) throw bad();
+    return { re: value.re, im: value.im };
+  }
   const match = /^([+-]?)(\d+)(?:\/(\d+))?$/.exec(value.trim().replace("−", "-"));
   if (match === null || Number(match[3] ?? 1) === 0) throw bad();
-  const number = ((match[1] === "-" ? -1 : 1) * Number(match[2])) / Number(match[3] ?? 1);
+  const number = new Fraction(match[0]).valueOf();
   return { re: candidate.label === "j" ? number * (number + 1) : number, im: 0 };
 }
 
@@ -198,10 +235,19 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
   const norms = Float64Array.from({ length: vectors.rows }, (_, k) => rowProduct(vectors, k, vectors, k).re);
   const energies = norms.map((norm, k) => (norm > 0 ? rowProduct(vectors, k, energyRows, k).re / norm : 0));
   const energyAt = (k: number): Complex => ({ re: energies[k] as number, im: 0 });
-  const error = imageError(problem.h0);
-  const residuals = residualBounds(energyRows, vectors, energyAt, error * Math.max(1, Math.sqrt(Math.max(...norms))));
+  const longest = longestColumn(vectors);
+  const allowance = (operator: Operator, largest: number): number =>
+    roundUp(longest * imageError(operator) + 5 * UNIT_ROUNDOFF * (longest - 1) * largest);
+  const error = allowance(
+    problem.h0,
+    energies.reduce((most, energy) => Math.max(most, Math.abs(energy)), 0),
+  );
+  const residuals = residualBounds(energyRows, vectors, energyAt, error);
   const judged = claims.map(({ candidate, values }) => {
-    const own = imageError(candidate.operator);
+    const own = allowance(
+      candidate.operator,
+      values.reduce((most, value) => Math.max(most, Math.abs(value.re) + Math.abs(value.im)), 0),
+    );
     const valueAt = (k: number): Complex => values[k] as Complex;
     const direct = residualBounds(images(vectors, candidate.operator), vectors, valueAt, own);
     const conjugate = (k: number): Complex => ({ re: valueAt(k).re, im: -valueAt(k).im });
@@ -210,22 +256,33 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
         ? direct
         : residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, own);
     const { norm } = candidate.operator;
-    return { candidate, own, scale: norm, residual: direct.map((x, k) => Math.max(x, adjoint[k] as number)) };
+    return { candidate, own, valueAt, scale: norm, residual: direct.map((x, k) => Math.max(x, adjoint[k] as number)) };
   });
   return Array.from(energies, (energy, column): ColumnFinding => {
     const residual = residuals[column] as number;
     const labels: Record<string, Checked> = {};
-    for (const { candidate, own, scale, residual: all } of judged) {
+    for (const { candidate, own, valueAt, scale, residual: all } of judged) {
       const bound = all[column] as number;
-      labels[candidate.name] = judge(bound, Math.max(0, bound - 4 * own), resolution * Math.max(scale, 1e-300));
+      const least = residualFloor(bound, own, valueAt(column), problem.n);
+      labels[candidate.name] = judge(bound, least, resolution * Math.max(scale, 1e-300));
     }
     return {
       column,
       energy,
-      eigenvector: judge(residual, Math.max(0, residual - 4 * error), resolution * problem.h0.norm),
+      eigenvector: judge(
+        residual,
+        residualFloor(residual, error, energyAt(column), problem.n),
+        resolution * problem.h0.norm,
+      ),
       labels,
     };
   });
+}
+
+/** The lower bound that belongs to an upper one of {@link residualBounds}: twice what was added there, taken off again. */
+function residualFloor(bound: number, error: number, value: Complex, n: number): number {
+  const added = error + 5 * UNIT_ROUNDOFF * (Math.abs(value.re) + Math.abs(value.im));
+  return Math.max(0, roundDown(bound, 2 * n + 24) - 2.01 * added);
 }
 
 interface JudgedLevel {
@@ -295,13 +352,13 @@ function insideLevel(
   columns: readonly number[],
   resolution: number,
 ): { largest: number; worst: ColumnCoupling[] } {
-  const error = elementErrorBound(operator, own) * 2;
+  const error = elementErrorBound(operator, own) * 2 * longestColumn(own) ** 2;
   const threshold = resolution * operator.norm;
   let largest = 0;
   const worst: ColumnCoupling[] = [];
   forEachProduct(own, images(own, operator), (r, c, re, im, common) => {
     if (r === c || common === 0) return;
-    const size = Math.sqrt(re * re + im * im);
+    const size = modulus(re, im);
     const atMost = roundUp(size) + error;
     const atLeast = Math.max(0, roundDown(size) - error);
     if (atMost > largest) largest = atMost;

@@ -3,7 +3,9 @@ export type Verdict = "good" | "not good" | "undecided";
 
 /** A first-order shift ⟨μ|V|μ⟩, in the problem's unit for λ = 1. */
 export interface Shift {
+  /** Name of the perturbation. */
   readonly perturbation: string;
+  /** ⟨μ|V|μ⟩. */
   readonly value: number;
   /**
    * Rigorous: the exact first-order shift of the exact level lies within this of `value`. Contains the in-level block of V

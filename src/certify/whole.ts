@@ -3,12 +3,14 @@ import type { CommutatorFinding } from "../audit/commutators.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Complex } from "../numerics/complex.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { adjointImages, images } from "../operator/images.js";
 import type { Sector, Sectors } from "../refine/sectors.js";
 import type { TreeNode } from "../refine/tree.js";
-import { adjointImages, imageError, images, residualBounds, residualRows, rootSumSquares } from "./residuals.js";
+import { imageError, residualBounds, residualRows, rootSumSquares } from "./residuals.js";
 
 /** How sharply one candidate labels the whole basis. */
 export interface SeparatorEvidence {
+  /** Place of the candidate among the problem's. */
   readonly candidate: number;
   /** Smallest distance between two of its eigenvalues that occur in one block; Infinity if it separates nothing. */
   readonly gap: number;
@@ -21,7 +23,9 @@ export interface SeparatorEvidence {
  * ‖H0 − H0'‖ ≤ eta0 and ‖V − V'‖ ≤ eta for each perturbation.
  */
 export interface NearbyModel {
+  /** Bound on ‖H0 − H0'‖. */
   readonly eta0: number;
+  /** Bound on ‖V − V'‖ for each perturbation. */
   readonly eta: readonly number[];
 }
 
@@ -33,8 +37,11 @@ export interface WholeEvidence {
   readonly energyResidual: number;
   /** Every exact eigenvalue of H0 lies within this of the computed one in the same place. */
   readonly energyEnclosure: number;
+  /** The candidates that label the basis. */
   readonly separators: readonly SeparatorEvidence[];
+  /** Distance to the nearest exactly symmetric model. */
   readonly nearby: NearbyModel;
+  /** Bounds sector by sector. */
   readonly sectors: readonly SectorEvidence[];
 }
 

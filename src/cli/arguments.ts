@@ -110,7 +110,7 @@ function readNumber(name: string, text: string): number {
   throw new GoodBasisError("option", `--${name} ${text}: give a number`, { [name]: text });
 }
 
-const NUMBER = "[+-]?(?:\\d+\\.?\\d*|\\.\\d+)(?:[eE][+-]?\\d+)?";
+const NUMBER = "[+-]?(?:\\d+(?:\\.\\d+)?|\\.\\d+)(?:[eE][+-]?\\d+)?";
 const WINDOW = new RegExp(`^(${NUMBER})\\.\\.(${NUMBER})$`);
 const NEAREST = new RegExp(`^nearest:(${NUMBER})(?::(\\d+))?$`);
 const LOWEST = /^lowest:(\d+)$/;

@@ -33,7 +33,7 @@ export function loadProblem(terminal: Terminal, path: string): ReadProblem {
 }
 
 /** Reads files whose paths are relative to the folder of `path`. */
-export function matrixLoader(terminal: Terminal, path: string): (matrix: string) => string {
+function matrixLoader(terminal: Terminal, path: string): (matrix: string) => string {
   const folder = path === "-" ? "." : dirname(path);
   return (matrix) => readFile(terminal, isAbsolute(matrix) ? matrix : join(folder, matrix));
 }

@@ -7,9 +7,10 @@ import type { Terminal } from "./terminal.js";
 import type { Verb } from "./verb.js";
 import { auditVerb } from "./verbs/audit.js";
 import { findVerb, tableVerb } from "./verbs/find.js";
+import { recheckVerb } from "./verbs/recheck.js";
 import { validateVerb } from "./verbs/validate.js";
 
-const VERBS: readonly Verb[] = [findVerb, tableVerb, auditVerb, validateVerb];
+const VERBS: readonly Verb[] = [findVerb, tableVerb, auditVerb, validateVerb, recheckVerb];
 
 /**
  * Runs the program.

@@ -1,5 +1,5 @@
 import { randomUUID } from "node:crypto";
-import { existsSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
+import { existsSync, readFileSync, renameSync, rmSync, statSync, writeFileSync } from "node:fs";
 import { basename, dirname, join } from "node:path";
 
 /** A file to be written. */
@@ -54,6 +54,7 @@ function writeFiles(files: readonly FileToWrite[]): void {
   const staged: { readonly temporary: string; readonly path: string }[] = [];
   try {
     for (const { path, text } of files) {
+      if (existsSync(path) && statSync(path).isDirectory()) throw new Error(`EISDIR: ${path} is a folder`);
       const temporary = join(dirname(path), `.${basename(path)}.${randomUUID()}.tmp`);
       staged.push({ temporary, path });
       writeFileSync(temporary, text, { flag: "wx" });

@@ -5,7 +5,9 @@
  * every imaginary part is zero. The arrays are shared, never copied for safety: treat them as read-only.
  */
 export interface Csr {
+  /** Number of rows. */
   readonly rows: number;
+  /** Number of columns. */
   readonly cols: number;
   /** Row starts, length `rows + 1`. */
   readonly ptr: Int32Array;

@@ -1,6 +1,8 @@
 /** A dense row-major matrix, real and imaginary parts apart; `im` absent for a real one. */
 export interface Dense {
+  /** Real parts, row-major. */
   readonly re: Float64Array;
+  /** Imaginary parts, row-major; undefined for a real matrix. */
   readonly im: Float64Array | undefined;
 }
 

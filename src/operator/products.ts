@@ -10,6 +10,7 @@ import {
   multiply,
   toDense,
 } from "../numerics/sparse.js";
+import { DENSE_COMMUTATOR_TO, denseCommutator } from "./dense-commutator.js";
 import {
   boundModulus,
   fitsGrid,
@@ -154,7 +155,11 @@ function spread(csr: Csr, values: Float64Array): Dense {
 
 /** Sparse rows of all places where the value or its radius is not zero. */
 function keepNonzero(n: number, value: Dense, bounds: Float64Array): [Csr, Float64Array] {
-  const pattern = fromDense(n, n, bounds, value.re);
+  const pattern = fromDense(
+    n,
+    n,
+    bounds.map((radius, k) => (radius !== 0 || value.re[k] !== 0 || (value.im?.[k] ?? 0) !== 0 ? 1 : 0)),
+  );
   const count = pattern.col.length;
   const re = new Float64Array(count);
   const im = value.im === undefined ? undefined : new Float64Array(count);
@@ -176,13 +181,24 @@ function keepNonzero(n: number, value: Dense, bounds: Float64Array): [Csr, Float
  * (a_i − a_j) b_ij with radius (r_i + r_j)(|b| + r_b) + |a_i − a_j| r_b and the rounding of a difference and a product.
  */
 export function uncertainCommutator(a: Uncertain, b: Uncertain): Uncertain {
-  const csr = commutator(a.csr, b.csr);
-  if (diagonalOf(a.csr) !== undefined) return settle("commutator", csr, diagonalRadius(csr, a, b));
-  if (diagonalOf(b.csr) !== undefined) return settle("commutator", csr, diagonalRadius(csr, b, a));
+  if (diagonalOf(a.csr) !== undefined) {
+    const csr = commutator(a.csr, b.csr);
+    return settle("commutator", csr, diagonalRadius(csr, a, b));
+  }
+  if (diagonalOf(b.csr) !== undefined) {
+    const csr = commutator(a.csr, b.csr);
+    return settle("commutator", csr, diagonalRadius(csr, b, a));
+  }
   const complex = a.csr.im !== undefined || b.csr.im !== undefined;
   const terms = maxRowEntries(a.csr) + maxRowEntries(b.csr);
   const rounding = isOnGrid(a.csr, b.csr, terms) ? 0 : productRounding(terms, complex);
   const underflow = rounding === 0 ? 0 : 2 * terms * UNDERFLOW;
+  const n = a.csr.rows;
+  if (n <= DENSE_COMMUTATOR_TO && isDenselyFilled(a.csr) && isDenselyFilled(b.csr)) {
+    const { value, radius } = denseCommutator(a, b, rounding, underflow, terms);
+    return settle("commutator", ...keepNonzero(n, value, radius));
+  }
+  const csr = commutator(a.csr, b.csr);
   const pairs = [
     [a, b],
     [b, a],

@@ -1,4 +1,5 @@
 import { type GoodBasis, requireCertified } from "../certify/good-basis.js";
+import { requireOptions } from "../certify/options.js";
 import type { BasisState, StateVector } from "../certify/outcome.js";
 import { GoodBasisError } from "../errors.js";
 import type { Bounded } from "./bounded.js";
@@ -18,7 +19,9 @@ export interface PerturbOptions {
  * One state's share of the series E(λ) = E0 + Σ_p λ_p E1_p + Σ_pq λ_p λ_q E2_pq, in the problem's unit.
  */
 export interface PerturbedState {
+  /** Index of the state in `basis.states`. */
   readonly index: number;
+  /** Its unperturbed energy. */
   readonly zeroth: Bounded;
   /** E1 for each perturbation; undefined below order 1. */
   readonly first: readonly Bounded[] | undefined;
@@ -33,6 +36,7 @@ export interface PerturbedState {
 
 /** What {@link perturb} returns. */
 export interface Perturbation {
+  /** Unit of all energies. */
   readonly unit: string;
   /** Names of the perturbations. */
   readonly perturbations: readonly string[];
@@ -68,10 +72,17 @@ export interface Perturbation {
  */
 export function perturb<K extends string>(basis: GoodBasis<K>, options: PerturbOptions = {}): Perturbation {
   const internals = requireCertified("perturb", basis);
+  requireOptions("perturb", options);
   const order = checkOrder("order", options.order ?? 2, 2);
   const stateOrder = checkOrder("states", options.states ?? 0, 1);
   const { study } = basis;
-  const chosen = (options.select ?? study.states.map((_, index) => index)).map((index) => pick(study.states, index));
+  const select = options.select ?? study.states.map((_, index) => index);
+  if (!Array.isArray(select)) {
+    throw new GoodBasisError("option", `perturb: select is ${String(select)}; give a list of state indices`, {
+      select,
+    });
+  }
+  const chosen = select.map((index: number) => pick(study.states, index));
   requireSafe(chosen, order, stateOrder, study.states.length);
   const byLevel = new Map<number, LevelSecondOrder>();
   const level = (place: number): LevelSecondOrder => {
@@ -108,11 +119,15 @@ function checkOrder(name: string, order: number, highest: number): number {
 }
 
 function pick<K extends string>(states: readonly BasisState<K>[], index: number): BasisState<K> {
-  const state = states[index];
+  const state = typeof index === "number" ? states[index] : undefined;
   if (state !== undefined) return state;
-  throw new GoodBasisError("option", `perturb: there is no state ${index}; states run from 0 to ${states.length - 1}`, {
-    index,
-  });
+  throw new GoodBasisError(
+    "option",
+    `perturb: there is no state ${String(index)}; states run from 0 to ${states.length - 1}`,
+    {
+      index,
+    },
+  );
 }
 
 function requireSafe(chosen: readonly BasisState[], order: number, stateOrder: number, all: number): void {

@@ -1,9 +1,11 @@
+import type { NodeEvidence } from "../certify/couplings.js";
 import type { StudyInternals } from "../certify/internals.js";
-import type { StateVector, Study } from "../certify/outcome.js";
-import { imageError, images } from "../certify/residuals.js";
+import type { LevelResult, StateVector, Study } from "../certify/outcome.js";
+import { imageError, rootOfSquares, rowProduct } from "../certify/residuals.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
 import { add, adjoint, maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
+import { images } from "../operator/images.js";
 import type { Sector } from "../refine/sectors.js";
 import type { Bounded } from "./bounded.js";
 
@@ -49,8 +51,11 @@ export function levelSecondOrder(study: Study, internals: StudyInternals, place:
     }
     return found;
   };
+  const level = study.levels[place];
+  const scale = level === undefined ? undefined : levelScale(study, internals, level);
   return {
-    energies: (k) => secondOrderEnergies(study, internals, place, k, part(k)),
+    energies: (k) =>
+      level === undefined || scale === undefined ? [] : secondOrderEnergies(internals, level, scale, k, part(k)),
     corrections: (k) => {
       const { row, perturbations } = part(k);
       return perturbations.map(({ correction }) => rowVector(correction, row[k] as number));
@@ -102,67 +107,144 @@ function solvePart(study: Study, internals: StudyInternals, place: number, numbe
   return { row, perturbations };
 }
 
+/** The numbers that every bound on a second-order element of one level is made of. */
+interface LevelScale {
+  /** Distance of any exact eigenvalue of H0 outside the level from the level. */
+  readonly isolation: number;
+  /** Bound on the distance of any exact energy of the level from the one computed with. */
+  readonly width: number;
+  readonly tilt: number;
+  readonly epsilon: number;
+  readonly norms: readonly number[];
+  readonly imageErrors: readonly number[];
+}
+
+function levelScale(study: Study, { problem }: StudyInternals, level: LevelResult): LevelScale {
+  const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
+  return {
+    isolation: gap - 2 * study.whole.energyEnclosure - level.spread,
+    width: study.states
+      .slice(level.firstState, level.firstState + level.degeneracy)
+      .reduce((most, state) => Math.max(most, Math.abs(state.energy - level.energy) + state.energyPlusMinus), 0),
+    tilt: level.tilt,
+    epsilon: level.evidence.orthonormality + study.whole.orthonormality,
+    norms: problem.perturbations.map(({ operator }) => operator.norm + operator.error),
+    imageErrors: problem.perturbations.map(({ operator }) => imageError(operator)),
+  };
+}
+
 /**
- * E2_pq = Re Σ_k ⟨μ|V_p|k⟩⟨k|V_q|μ⟩/(E0 − E_k) with a bound.
- *
- * With x the computed correction, w = Vμ, r = (1 − P)w − (E0 − H0)x and isolation d, the exact R w differs from x by at most
- * (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it; a state that is off its exact direction by δ changes
- * E2 by at most 2 δ ‖V_p‖‖V_q‖/d. δ collects the tilt of the level, the orthonormality defect, and at every node where the
- * state parts from others the residual (of the label, or of V's or W's block) over the gap there.
+ * E2_pq = Re Σ_k ⟨μ|V_p|k⟩⟨k|V_q|μ⟩/(E0 − E_k) with a bound: {@link elementError} and, for a state that is off its exact
+ * direction by δ, δ (‖V_p‖ ‖R V_q μ‖ + ‖V_q‖ ‖R V_p μ‖) + δ² ‖V_p‖‖V_q‖/d.
  */
 function secondOrderEnergies(
-  study: Study,
   internals: StudyInternals,
-  place: number,
+  level: LevelResult,
+  scale: LevelScale,
   k: number,
-  { row, perturbations }: PartSecondOrder,
+  part: PartSecondOrder,
 ): Bounded[][] {
-  const level = study.levels[place];
-  const r = row[k] as number;
-  if (level === undefined) return [];
-  const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
-  const isolation = gap - 2 * study.whole.energyEnclosure - level.spread;
-  const { tilt } = level;
-  const epsilon = level.evidence.orthonormality + study.whole.orthonormality;
-  const norms = internals.problem.perturbations.map(({ operator }) => operator.norm + operator.error);
-  const directionError = stateError(study, internals, place, k);
-  return perturbations.map((left, p) =>
-    perturbations.map((right, q): Bounded => {
-      const value = (rowDot(left.outside, right.scaled, r) + rowDot(left.scaled, right.outside, r)) / 2;
+  const r = part.row[k] as number;
+  const { isolation, norms } = scale;
+  const direction = directionError(internals, level, k, part, scale);
+  return part.perturbations.map((left, p) =>
+    part.perturbations.map((right, q): Bounded => {
       if (isolation === Number.POSITIVE_INFINITY) return { value: 0, plusMinus: 0 };
+      const value =
+        (rowProduct(left.outside, r, right.scaled, r).re + rowProduct(left.scaled, r, right.outside, r).re) / 2;
       if (!(isolation > 0)) return { value, plusMinus: Number.POSITIVE_INFINITY };
-      const w = left.imageNorm[r] as number;
       const v = norms[p] as number;
       const u = norms[q] as number;
-      const solve = ((right.residual[r] as number) + 2 * tilt * (right.imageNorm[r] as number)) / isolation;
-      const leak = (tilt + epsilon) * (right.correctionNorm[r] as number);
-      const turn = (2 * directionError * v * u) / isolation;
-      const rounding = 4 * gamma(maxRowEntries(left.outside) + 8) * w * (right.correctionNorm[r] as number);
-      const entries =
-        imageError(internals.problem.perturbations[p]?.operator ?? internals.problem.h0) *
-        (right.correctionNorm[r] as number);
-      return { value, plusMinus: roundUp(w * (solve + leak) * (1 + epsilon) + turn + rounding + entries, 32) };
+      const turn =
+        direction * (v * correctionBound(right, r, scale) + u * correctionBound(left, r, scale)) +
+        direction * direction * v * (u / isolation);
+      return { value, plusMinus: roundUp(elementError(left, right, p, r, r, scale) + turn, 16) };
     }),
   );
 }
 
-/** Bound on how far a state's vector is from its exact direction inside the nearby symmetric model. */
-function stateError(study: Study, internals: StudyInternals, place: number, k: number): number {
-  const level = study.levels[place];
-  const path = internals.states[place]?.states[k]?.path ?? [];
-  if (level === undefined) return Number.POSITIVE_INFINITY;
-  let error = level.tilt + level.evidence.orthonormality;
-  for (const node of level.evidence.nodes) {
-    if (!path.some((step) => step.node === node.node)) continue;
+/**
+ * Bound on the error of Σ_k ⟨μ|V_p|k⟩⟨k|V_q|ν⟩/(E0 − E_k) for the vectors as they are: ‖V_p μ‖ times that of R V_q ν, and the
+ * rounding of the sum.
+ */
+function elementError(left: PartColumn, right: PartColumn, p: number, r: number, s: number, scale: LevelScale): number {
+  const w = left.imageNorm[r] as number;
+  const x = right.correctionNorm[s] as number;
+  const rounding = 4 * gamma(maxRowEntries(left.outside) + 8) * w * x;
+  const image = scale.imageErrors[p] as number;
+  return roundUp(w * (1 + scale.epsilon) * correctionError(right, s, scale) + rounding + image * x, 32);
+}
+
+/**
+ * Bound on ‖x − R V ν‖ for the computed correction x: with w = V ν, r = (1 − P)w − (E0 − H0)x for the exact E0 and isolation d, at most
+ * (‖r‖ + 2 sinΘ ‖w‖)/d outside the level and (sinΘ + ε)‖x‖ inside it.
+ */
+function correctionError(column: PartColumn, s: number, { isolation, width, tilt, epsilon }: LevelScale): number {
+  const x = column.correctionNorm[s] as number;
+  const outside = (column.residual[s] as number) + width * x + 2 * tilt * (column.imageNorm[s] as number);
+  return outside / isolation + (tilt + epsilon) * x;
+}
+
+/**
+ * How far a state may be turned inside its block at a node of V: the exact matrix of V differs from the computed diagonal by Δ,
+ * what is off the diagonal, the evaluation, the width of the level, and the tilt so far times 2‖V‖; sinΘ ≤ Δ/(gap − Δ).
+ */
+function turnByPerturbation(
+  node: NodeEvidence,
+  level: LevelResult,
+  error: number,
+  { norms, width }: LevelScale,
+): number {
+  const { offDiagonal, elementError: evaluation } = level.evidence;
+  const off = Math.max(0, ...offDiagonal) + Math.max(0, ...evaluation) + width + 2 * Math.max(...norms) * error;
+  return 2 * off < node.gap ? (3 * off) / node.gap : 2;
+}
+
+/** Upper bound on ‖R V ν‖. */
+function correctionBound(column: PartColumn, s: number, scale: LevelScale): number {
+  return (column.correctionNorm[s] as number) + correctionError(column, s, scale);
+}
+
+/**
+ * Bound on the angle between a state's vector and its exact direction inside the nearby symmetric model: the tilt of the level,
+ * the orthonormality defect, and at every node where the state parts from others the residual there (of the label, or of V's or
+ * W's block) over the gap (Davis and Kahan, SIAM J. Numer. Anal. 7, 1 (1970)).
+ */
+function directionError(
+  internals: StudyInternals,
+  level: LevelResult,
+  k: number,
+  part: PartSecondOrder,
+  scale: LevelScale,
+): number {
+  const states = internals.states[level.index]?.states ?? [];
+  const path = states[k]?.path ?? [];
+  const passes = (node: number, of: number): boolean => states[of]?.path.some((step) => step.node === node) === true;
+  const onPath = level.evidence.nodes.filter((node) => path.some((step) => step.node === node.node));
+  let error = Math.SQRT2 * level.tilt + level.evidence.orthonormality;
+  for (const node of onPath) {
     if (node.kind === "label") error += (2 * node.residual) / node.gap;
-    else {
-      const dropped = Math.max(0, ...level.evidence.offDiagonal);
-      const norm = Math.max(...internals.problem.perturbations.map(({ operator }) => operator.norm + operator.error));
-      const scale = node.kind === "perturbation" ? dropped : 2 ** -40 * norm;
-      error += (2 * scale) / node.gap;
-    }
+    if (node.kind === "perturbation") error += turnByPerturbation(node, level, error, scale);
   }
-  return error;
+  const only = part.perturbations[0];
+  for (const node of onPath) {
+    if (node.kind !== "second order" || only === undefined) continue;
+    const r = part.row[k] as number;
+    // the block W is taken on may itself be turned by the error so far
+    const norm = scale.norms[0] as number;
+    const turned = 2 * error * norm * (norm / scale.isolation);
+    let square = 0;
+    let terms = 0;
+    states.forEach((_, other) => {
+      const s = part.row[other] as number;
+      if (other === k || s < 0 || !passes(node.node, other)) return;
+      const element = rowProduct(only.outside, r, only.scaled, s);
+      square += (Math.hypot(element.re, element.im) + elementError(only, only, 0, r, s, scale) + turned) ** 2;
+      terms++;
+    });
+    error += (2 * rootOfSquares(square, terms)) / node.gap;
+  }
+  return roundUp(error, 16 * (onPath.length + states.length));
 }
 
 function keepColumns(rows: Csr, keep: (column: number) => boolean): Csr {
@@ -192,36 +274,19 @@ function scaleColumns(rows: Csr, weight: (column: number) => number): Csr {
   };
 }
 
+/** Upper bounds on the norms of all rows. */
 function rowNorms(rows: Csr): Float64Array {
   const norms = new Float64Array(rows.rows);
   for (let r = 0; r < rows.rows; r++) {
+    const from = rows.ptr[r] as number;
+    const to = rows.ptr[r + 1] as number;
     let sum = 0;
-    for (let p = rows.ptr[r] as number; p < (rows.ptr[r + 1] as number); p++) {
+    for (let p = from; p < to; p++) {
       sum += (rows.re[p] as number) ** 2 + (rows.im === undefined ? 0 : (rows.im[p] as number) ** 2);
     }
-    norms[r] = Math.sqrt(sum);
+    norms[r] = roundUp(rootOfSquares(sum, to - from), to - from + 8);
   }
   return norms;
-}
-
-/** Re Σ conj(a_k) b_k over one row of two matrices of the same pattern origin. */
-function rowDot(a: Csr, b: Csr, row: number): number {
-  let sum = 0;
-  let p = a.ptr[row] as number;
-  let q = b.ptr[row] as number;
-  const pEnd = a.ptr[row + 1] as number;
-  const qEnd = b.ptr[row + 1] as number;
-  while (p < pEnd && q < qEnd) {
-    const i = a.col[p] as number;
-    const j = b.col[q] as number;
-    if (i === j) {
-      sum += (a.re[p] as number) * (b.re[q] as number);
-      if (a.im !== undefined && b.im !== undefined) sum += (a.im[p] as number) * (b.im[q] as number);
-    }
-    if (i <= j) p++;
-    if (j <= i) q++;
-  }
-  return sum;
 }
 
 function rowVector(rows: Csr, row: number): StateVector {

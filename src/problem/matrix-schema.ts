@@ -37,7 +37,7 @@ const term: Shape<TermFile> = about(
     ),
     dot: v.exactOptional(
       about(
-        v.tuple([someText, someText], "a pair of angular momenta"),
+        v.strictTuple([someText, someText], "a pair of angular momenta"),
         'The scalar product of two angular momenta, each a factor, a site or a sum: ["L", "S"], ["L + S", "L + S"].',
       ),
     ),
@@ -69,7 +69,9 @@ export function matrixSchemas(checked: boolean): MatrixSchemas {
     rows: closed({ rows: list(v.array(fileNumber)), ...shared }),
     triplets: closed({
       triplets: about(
-        list(v.union([v.tuple([index, index, v.number()]), v.tuple([index, index, v.number(), v.number()])])),
+        list(
+          v.union([v.strictTuple([index, index, v.number()]), v.strictTuple([index, index, v.number(), v.number()])]),
+        ),
         "[row, column, re] or [row, column, re, im], counted from 0; repeated places are summed.",
       ),
       n: v.exactOptional(about(positiveWhole, "Number of kets, where nothing else tells it.")),
@@ -111,7 +113,7 @@ export function matrixSchemas(checked: boolean): MatrixSchemas {
     }),
     exchange: closed({
       exchange: about(
-        v.tuple([someText, someText], "a pair of factors or sites"),
+        v.strictTuple([someText, someText], "a pair of factors or sites"),
         'Exchanges two equal factors or sites: ["x", "y"], ["ring[0]", "ring[3]"].',
       ),
     }),

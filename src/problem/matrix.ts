@@ -166,7 +166,8 @@ function load(place: Place, path: string, context: MatrixContext): Operator {
   if (context.loadMatrix === undefined) {
     throw fileError(place, "a way to read the matrix file", "none", "pass loadMatrix: (path) => string to readProblem");
   }
-  return readMatrixMarket(context.loadMatrix(path), { name: path });
+  const read = context.loadMatrix;
+  return atPlace(place, () => readMatrixMarket(read(path), { name: path }));
 }
 
 function readHopping(place: Place, file: MatrixForms["hopping"], context: MatrixContext): Operator {

@@ -31,7 +31,7 @@ export function operatorByName(place: Place, name: string, context: MatrixContex
 /**
  * The parts of a sum of names; the plus signs have spaces around them.
  */
-export function partsOfSum(text: string): string[] {
+function partsOfSum(text: string): string[] {
   return text.split(/\s\+\s/).map((part) => part.trim());
 }
 

@@ -1,5 +1,6 @@
+import { GoodBasisError } from "../errors.js";
 import type { Complex } from "../numerics/complex.js";
-import { fileError, inside, type Place, showValue } from "./place.js";
+import { fileError, inside, type Place, showValue, whereIs } from "./place.js";
 
 /** A number in a problem file: real, `[re, im]`, or text such as `"1+2i"`, `"-i"`. */
 export type FileNumber = number | readonly [re: number, im: number] | string;
@@ -41,7 +42,7 @@ export interface NumberList {
 /**
  * Reads a list of numbers.
  *
- * @throws GoodBasisError `file` - with the place of the element
+ * @throws GoodBasisError `file`, `not-finite` - with the place of the element
  */
 export function readNumbers(place: Place, values: readonly unknown[]): NumberList {
   const re = new Float64Array(values.length);
@@ -53,7 +54,7 @@ export function readNumbers(place: Place, values: readonly unknown[]): NumberLis
       continue;
     }
     const z = complexOf(value);
-    if (z === undefined) throw fileError(inside(place, k), FORM, shown(value));
+    if (z === undefined) throw badNumber(inside(place, k), value);
     re[k] = z.re;
     if (z.im === 0) continue;
     im ??= new Float64Array(values.length);
@@ -62,18 +63,21 @@ export function readNumbers(place: Place, values: readonly unknown[]): NumberLis
   return { re, im };
 }
 
-function shown(value: unknown): string {
-  // A literal such as 1e999 overflows to infinity, which JSON cannot show.
-  return typeof value === "number" ? String(value) : showValue(value);
+/** A literal such as 1e999 is infinite by the time it gets here. */
+function badNumber(place: Place, value: unknown): GoodBasisError {
+  if (typeof value !== "number") return fileError(place, FORM, showValue(value));
+  const { text, details } = whereIs(place);
+  const message = `${text}: the number is ${value}; every entry must be finite, below 1.8e308`;
+  return new GoodBasisError("not-finite", message, { ...details, value });
 }
 
 /**
  * Reads one number.
  *
- * @throws GoodBasisError `file`
+ * @throws GoodBasisError `file`, `not-finite`
  */
 export function readNumber(place: Place, value: unknown): Complex {
   const z = complexOf(value);
-  if (z === undefined) throw fileError(place, FORM, shown(value));
+  if (z === undefined) throw badNumber(place, value);
   return z;
 }

@@ -21,7 +21,7 @@ export function inside(place: Place, ...keys: JsonPath): Place {
 }
 
 /** The path as text: `candidates.Fz.ladder`, `v.terms[2].product[0]`. */
-export function pathText(path: JsonPath): string {
+function pathText(path: JsonPath): string {
   const parts = path.map((key, k) => {
     if (typeof key === "number") return `[${key}]`;
     const plain = /^[\p{L}_][\p{L}\p{N}_-]*$/u.test(key);

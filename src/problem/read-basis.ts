@@ -17,7 +17,9 @@ export interface ReadBasisOptions {
 
 /** A basis file that has been read, as {@link validateBasis} takes it. */
 export interface ReadBasis {
+  /** One row a ket, one column a state. */
   readonly columns: BasisColumns;
+  /** Claimed labels by candidate, one a state. */
   readonly labels: Readonly<Record<string, readonly ClaimedLabel[]>>;
 }
 

@@ -24,7 +24,9 @@ export interface ReadProblem {
   readonly n: number;
   /** The options that the file asks for. */
   readonly options: ProblemOptions;
+  /** What the problem is called. */
   readonly title: string | undefined;
+  /** What a reader should know of it. */
   readonly note: string | undefined;
   /** Whether the file says that its numbers are made up. */
   readonly invented: boolean;
@@ -74,7 +76,7 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
   };
   for (const [name, value] of Object.entries(outline.define ?? {})) {
     const at = inside(place, "define", name);
-    if (!/^[^.[\]^|+\s]+$/.test(name)) throw fileError(at, "a name without spaces and . [ ] ^ | +", showValue(name));
+    if (!/^[^.,[\]^|+\s]+$/.test(name)) throw fileError(at, "a name without spaces and . , [ ] ^ | +", showValue(name));
     defined.set(name, readMatrixAt(at, value, context));
   }
   const kets = outline.kets ?? space?.kets();

@@ -27,14 +27,14 @@ export function about<T>(schema: Shape<T>, description: string): Shape<T> {
 /** 1, 2, 3, … */
 export const positiveWhole: Shape<number> = v.pipe(
   v.number("a whole number from 1 on"),
-  v.safeInteger("a whole number from 1 on"),
+  v.integer("a whole number from 1 on"),
   v.minValue(1, "a whole number from 1 on"),
 );
 
 /** 0, 1, 2, … */
 export const index: Shape<number> = v.pipe(
   v.number("a whole number from 0 on"),
-  v.safeInteger("a whole number from 0 on"),
+  v.integer("a whole number from 0 on"),
   v.minValue(0, "a whole number from 0 on"),
 );
 
@@ -61,17 +61,23 @@ export const someText: Shape<string> = v.pipe(
   v.minLength(1, "text that is not empty"),
 );
 
+const NUMBER_FORM = 'a number, [re, im] or text such as "1+2i"';
+
 /** A real or complex number. */
 export const fileNumber: Shape<FileNumber> = v.pipe(
   v.union(
-    [v.number(), v.tuple([v.number(), v.number()]), v.pipe(v.string(), v.regex(COMPLEX_TEXT))],
-    'a number, [re, im] or text such as "1+2i"',
+    [
+      v.number(NUMBER_FORM),
+      v.strictTuple([v.number(), v.number()]),
+      v.pipe(v.string(), v.regex(COMPLEX_TEXT, NUMBER_FORM)),
+    ],
+    NUMBER_FORM,
   ),
   v.description('A real number, [re, im], or text such as "1+2i".'),
 );
 
 /** Two sites. */
-export const bond: Shape<[number, number]> = v.tuple([index, index], "a pair [i, j] of sites, counted from 0");
+export const bond: Shape<[number, number]> = v.strictTuple([index, index], "a pair [i, j] of sites, counted from 0");
 
 /** An object whose keys are the caller's; its values are not looked into. */
 export const namedThings: Shape<Record<string, unknown>> = v.custom<Record<string, unknown>>(

@@ -59,10 +59,7 @@ const options: Shape<ProblemOptions> = closed({
 
 const factorShared = {
   name: about(
-    v.pipe(
-      v.string("the name of a factor"),
-      v.regex(/^[\p{L}_][\p{L}\p{N}_]*$/u, "a name of letters, digits and _ that begins with a letter"),
-    ),
+    v.pipe(v.string("the name of a factor"), v.regex(/^[^.,[\]^|+\s]+$/, "a name without spaces and . , [ ] ^ | +")),
     "How terms name the factor.",
   ),
   count: v.exactOptional(about(positiveWhole, 'Number of equal sites, named "ring[0]", "ring[1]", …')),
@@ -108,7 +105,7 @@ function candidateOf<T>(matrix: Shape<T>): Shape<CandidateFile> {
   return closed({
     operator: matrix,
     label: v.exactOptional(label),
-    ladder: v.exactOptional(about(matrix, "An operator that raises the label by one step; it fixes relative phases.")),
+    ladder: v.exactOptional(matrix),
   });
 }
 
@@ -166,5 +163,18 @@ export function conform<T>(schema: Shape<T>, place: Place, value: unknown): T {
   const [issue] = result.issues;
   const keys = (issue.path ?? []).map(({ key }) => (typeof key === "number" ? key : String(key)));
   const next = "goodbasis/problem-schema.json describes the format";
-  throw fileError(inside(place, ...keys), issue.message, showValue(issue.input), next);
+  throw fileError(inside(place, ...keys), expectation(issue), showValue(issue.input), next);
+}
+
+const PLAIN: Readonly<Record<string, string>> = {
+  Array: "a list",
+  Object: "an object",
+  string: "text",
+  number: "a number",
+};
+
+/** The custom message, which is a phrase, or what the schema says of itself. */
+function expectation({ message, expected }: v.BaseIssue<unknown>): string {
+  if (!message.startsWith("Invalid ")) return message;
+  return PLAIN[expected ?? ""] ?? expected ?? message;
 }

@@ -1,3 +1,4 @@
+import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 
 /** The connected parts of the pattern of a square matrix, numbered by their first index. */
@@ -30,14 +31,11 @@ export function connectedComponents(matrix: Csr, noise: number): Components {
     return i;
   };
   const { ptr, col, re, im } = matrix;
-  const threshold = noise * noise;
   for (let i = 0; i < size; i++) {
     for (let p = ptr[i] as number; p < (ptr[i + 1] as number); p++) {
       const j = col[p] as number;
       if (j === i) continue;
-      const x = re[p] as number;
-      const y = im === undefined ? 0 : (im[p] as number);
-      if (x * x + y * y <= threshold) continue;
+      if (modulus(re[p] as number, im === undefined ? 0 : (im[p] as number)) <= noise) continue;
       const a = find(i);
       const b = find(j);
       if (a < b) parent[b] = a;

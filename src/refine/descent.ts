@@ -1,3 +1,4 @@
+import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
 import {
@@ -45,6 +46,16 @@ export function descentStep(spaces: readonly Eigenspace[], block: { readonly fra
  */
 export function compositionRowError(longest: number, frame: Csr): number {
   return roundUp(Math.SQRT2 * gamma(longest + 4) * Math.sqrt(longest) * longestRow(frame), 16);
+}
+
+/**
+ * Bound on the distance of each new vector from the exact combination of the kets that the tree describes, given the same for
+ * the block's vectors: a unit row of m entries adds up m of their errors, so these grow by at most Σ|u_i| ≤ √m.
+ *
+ * @param before - the bound for the block's vectors
+ */
+export function carriedRowError(step: DescentStep, before: number): number {
+  return roundUp(Math.sqrt(maxRowEntries(step.rows)) * before * 1.001 + step.rowError);
 }
 
 /** An operator carried through a step. */
@@ -120,9 +131,7 @@ function crossingNorm(matrix: Csr, bounds: readonly number[]): number {
     for (let p = matrix.ptr[r] as number; p < (matrix.ptr[r + 1] as number); p++) {
       const c = matrix.col[p] as number;
       if (c >= from && c < to) continue;
-      const x = matrix.re[p] as number;
-      const y = matrix.im === undefined ? 0 : (matrix.im[p] as number);
-      const size = Math.sqrt(x * x + y * y);
+      const size = modulus(matrix.re[p] as number, matrix.im === undefined ? 0 : (matrix.im[p] as number));
       row += size;
       columns[c] = (columns[c] as number) + size;
     }
@@ -130,7 +139,7 @@ function crossingNorm(matrix: Csr, bounds: readonly number[]): number {
   }
   let largestColumn = 0;
   for (const sum of columns) if (sum > largestColumn) largestColumn = sum;
-  return roundUp(Math.sqrt(largestRow * largestColumn), matrix.rows + 8);
+  return roundUp(Math.sqrt(largestRow) * Math.sqrt(largestColumn), matrix.rows + 16);
 }
 
 /**

@@ -1,4 +1,4 @@
-import type { Complex } from "../numerics/complex.js";
+import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
 import { type Components, connectedComponents } from "./components.js";
@@ -137,9 +137,7 @@ function monomialImage(matrix: Csr, noise: number): { image: Int32Array; positio
   for (let i = 0; i < matrix.rows; i++) {
     let found = 0;
     for (let p = matrix.ptr[i] as number; p < (matrix.ptr[i + 1] as number); p++) {
-      const x = matrix.re[p] as number;
-      const y = matrix.im === undefined ? 0 : (matrix.im[p] as number);
-      if (x * x + y * y <= noise * noise) continue;
+      if (modulus(matrix.re[p] as number, matrix.im === undefined ? 0 : (matrix.im[p] as number)) <= noise) continue;
       const j = matrix.col[p] as number;
       if (++found > 1 || (position[j] as number) >= 0) return undefined;
       image[j] = i;

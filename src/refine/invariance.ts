@@ -1,6 +1,7 @@
 import { LABEL_WIDTH } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
 import { conjugate, frobenius, multiply, transpose } from "../numerics/sparse.js";
+import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 
 /** Whether an operator maps a subspace into itself, and its matrix there. */
@@ -19,11 +20,11 @@ export interface Invariance {
  * @param frame - orthonormal vectors as rows over the kets
  */
 export function invariance(frame: Csr, operator: Operator): Invariance {
-  const images = multiply(operator.csr, transpose(frame));
-  const matrix = multiply(conjugate(frame), images);
-  const all = frobenius(images);
+  const rows = images(frame, operator);
+  const matrix = multiply(conjugate(frame), transpose(rows));
+  const all = frobenius(rows);
   const inside = frobenius(matrix);
-  const leak = Math.sqrt(Math.max(0, (all - inside) * (all + inside)));
+  const leak = Math.sqrt(Math.max(0, all - inside)) * Math.sqrt(all + inside);
   // the difference of squares loses half the digits; 2^−18 of the norm is well above that and well below any real leak
   return { invariant: leak <= Math.sqrt(LABEL_WIDTH) * operator.norm, matrix };
 }

@@ -17,11 +17,13 @@ export type LabelStatus = "declared" | "proposed" | "measured" | "not sharp";
 export interface StateLabel {
   /** Eigenvalue of the operator (expectation value where the status is `not sharp`), real part. */
   readonly re: number;
+  /** Imaginary part of the same. */
   readonly im: number;
   /** Bound on the distance to the operator's nearest exact eigenvalue; for `not sharp` the standard deviation. */
   readonly radius: number;
   /** As written in the trade: "3/2", "−1", "exp(2πi·1/3)", or a number. */
   readonly text: string;
+  /** How the label came to be. */
   readonly status: LabelStatus;
   /**
    * `conserved`: H0 and V conserve it, so it is evidence; `descriptive`: V breaks it, so it only names the state;
@@ -36,14 +38,15 @@ export interface LabelFamily {
   readonly declared: boolean;
 }
 
-/** Picks the family of one operator from all its eigenvalues and a bound on their errors. */
+/** Picks the family of one operator from its eigenvalues (all of them, or some) and a bound on their errors. */
 export function labelFamily(
   declared: LabelDeclaration | undefined,
   values: readonly Complex[],
   radius: number,
+  all = true,
 ): LabelFamily {
   if (declared !== undefined) return { family: declared, declared: true };
-  return { family: recogniseFamily(values, radius), declared: false };
+  return { family: recogniseFamily(values, radius, all), declared: false };
 }
 
 /** Names an eigenvalue known to lie within `radius` of `value`. */
@@ -70,7 +73,7 @@ export function vagueLabel(value: Complex, deviation: number, role: StateLabel["
 
 /** A complex number to six digits, with the trade's minus sign. */
 export function numberText(value: Complex): string {
-  const part = (x: number): string => String(Number(x.toPrecision(6))).replace("-", "−");
+  const part = (x: number): string => String(Number(x.toPrecision(6))).replaceAll("-", "−");
   const small = 1e-12 * Math.hypot(value.re, value.im);
   if (Math.abs(value.im) <= small) return part(value.re);
   if (Math.abs(value.re) <= small) return `${part(value.im)}i`;

@@ -9,6 +9,9 @@ interface Laddered {
   readonly together: number;
 }
 
+/** Imaginary parts below this, left over from turning a row, are dropped. */
+export const DROPPED_PART: number = 2 ** -54;
+
 /** A ladder element below this fraction of ‖L‖ fixes no phase. */
 const SMALLEST_ELEMENT = 1e-6;
 
@@ -49,7 +52,7 @@ export function alignByLadders(problem: PreparedProblem, states: readonly Ladder
       turnRow(re, im, vectors.ptr[lower] as number, vectors.ptr[lower + 1] as number, element.re, -element.im);
     }
   });
-  for (let p = 0; p < im.length; p++) if (Math.abs(im[p] as number) < 2 ** -54) im[p] = 0;
+  for (let p = 0; p < im.length; p++) if (Math.abs(im[p] as number) < DROPPED_PART) im[p] = 0;
   return { ...vectors, re, im: im.some((y) => y !== 0) ? im : undefined };
 }
 

@@ -124,12 +124,11 @@ function choose(
   }
   if (!("from" in choice) || !("to" in choice)) throw malformed(choice);
   const { from, to } = choice;
-  if (Number.isNaN(from) || Number.isNaN(to) || from > to) throw malformed(choice);
+  if (typeof from !== "number" || typeof to !== "number" || !(from <= to)) throw malformed(choice);
   const found = all.filter((place) => (high[place] as number) >= from && (low[place] as number) <= to);
   if (found.length > 0) return found;
-  const near = all.sort(
-    (a, b) => Math.abs((energies[a] as number) - (from + to) / 2) - Math.abs((energies[b] as number) - (from + to) / 2),
-  )[0] as number;
+  const outside = (place: number): number => Math.max(from - (high[place] as number), (low[place] as number) - to);
+  const near = all.sort((a, b) => outside(a) - outside(b))[0] as number;
   throw new GoodBasisError(
     "no-level",
     `no level lies between ${from} and ${to}; the ${energies.length} levels run from ${energies[0]} to ` +

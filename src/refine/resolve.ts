@@ -6,7 +6,7 @@ import { splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { Level, LevelPart, Levels } from "./levels.js";
 import { type SecondOrder, secondOrder } from "./second-order.js";
-import { type BlockLabel, inSpace, type Sector } from "./sectors.js";
+import { type BlockLabel, energyTolerance, inSpace, type Sector } from "./sectors.js";
 import type { NodeKind, PathStep, TreeBuilder } from "./tree.js";
 
 /**
@@ -109,11 +109,13 @@ function refinePart(
   });
   const only = outward[0];
   if (depth === "first order" || outward.length !== 1 || only === undefined) return blocks;
+  const norm = problem.perturbations[0]?.operator.norm ?? 0;
   const by = {
     kind: "second order",
     name: "W",
     noise: NOISE * only.scale,
-    cluster: LABEL_WIDTH * only.scale,
+    // below what H0's and V's own rounding leaves of a splitting, W tells nothing apart
+    cluster: Math.max(LABEL_WIDTH * only.scale, energyTolerance(problem, size) + NOISE * 8 * norm),
   } as const;
   return blocks.flatMap((block) => {
     if (block.rows.rows > 1) return refineBlock(block, only.w, by, tree);

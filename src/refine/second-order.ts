@@ -45,12 +45,40 @@ export function secondOrder(
   levelEnergies: Float64Array,
 ): SecondOrder {
   const out = outgoing(sector, v, part, levelOf, level, energy);
-  const w = multiply(out.scaled, adjoint(out.bare));
+  const squares = new LevelSums(levelEnergies.length);
   return {
-    w,
+    w: out.bare.rows === 1 ? scalarProduct(out) : multiply(out.scaled, adjoint(out.bare)),
     scale: out.scale,
-    first: firstGuard(out, levelOf, energy, levelEnergies),
-    second: secondGuard(out, v, levelOf, level, energy, levelEnergies),
+    first: firstGuard(out, levelOf, energy, levelEnergies, squares),
+    second: secondGuard(out, v, levelOf, level, energy, levelEnergies, squares),
+  };
+}
+
+/** The product of scaled and bare† for a single vector. */
+function scalarProduct({ bare, scaled }: Outgoing): Csr {
+  const count = bare.re.length;
+  let re = 0;
+  let im = 0;
+  for (let q = 0; q < count; q++) {
+    const x = scaled.re[q] as number;
+    const u = bare.re[q] as number;
+    if (bare.im === undefined || scaled.im === undefined) {
+      re += x * u;
+    } else {
+      const y = scaled.im[q] as number;
+      const v = 0 - (bare.im[q] as number);
+      re += x * u - y * v;
+      im += x * v + y * u;
+    }
+  }
+  const filled = Math.min(1, count);
+  return {
+    rows: 1,
+    cols: 1,
+    ptr: Int32Array.of(0, filled),
+    col: new Int32Array(filled),
+    re: filled === 1 ? Float64Array.of(re) : new Float64Array(0),
+    im: im === 0 ? undefined : Float64Array.of(im),
   };
 }
 
@@ -82,22 +110,27 @@ function outgoing(
     }
     ptr[r + 1] = total;
   }
-  const place = new Map<number, number>();
+  const space = borrow(v.rows, 1);
+  const { mark: place, list } = space;
+  const tag = space.firstTag;
   const source = new Int32Array(total);
   let at = 0;
+  let distinct = 0;
   for (let r = 0; r < rows; r++) {
     const i = part.indices[r] as number;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
       const k = v.col[p] as number;
       if (levelOf[k] === level) continue;
       source[at++] = p;
-      place.set(k, 0);
+      if (place[k] === tag) continue;
+      place[k] = tag;
+      list[distinct++] = k;
     }
   }
-  const columns = Int32Array.from(place.keys()).sort();
-  columns.forEach((k, c) => {
-    place.set(k, c);
-  });
+  // A single row of V is in order already.
+  const columns = list.slice(0, distinct);
+  if (rows > 1) columns.sort();
+  for (let c = 0; c < distinct; c++) list[columns[c] as number] = c;
   const col = new Int32Array(total);
   const re = new Float64Array(total);
   const im = v.im === undefined ? undefined : new Float64Array(total);
@@ -113,7 +146,7 @@ function outgoing(
       const weight = 1 / (energy - (sector.energies[k] as number));
       const x = v.re[p] as number;
       const y = v.im === undefined ? 0 : (v.im[p] as number);
-      col[q] = place.get(k) as number;
+      col[q] = list[k] as number;
       re[q] = x;
       scaledRe[q] = x * weight;
       if (im !== undefined && scaledIm !== undefined) {
@@ -124,22 +157,26 @@ function outgoing(
       bare += square;
       weighted += square * weight * weight;
     }
-    scale = Math.max(scale, Math.sqrt(bare * weighted));
+    scale = Math.max(scale, Math.sqrt(bare) * Math.sqrt(weighted));
   }
   const shape = { rows, cols: columns.length, ptr, col };
   return { bare: { ...shape, re, im }, scaled: { ...shape, re: scaledRe, im: scaledIm }, columns, scale };
 }
 
-function firstGuard(out: Outgoing, levelOf: Int32Array, energy: number, levelEnergies: Float64Array): GuardRatio {
-  const squares = new Map<number, number>();
+function firstGuard(
+  out: Outgoing,
+  levelOf: Int32Array,
+  energy: number,
+  levelEnergies: Float64Array,
+  squares: LevelSums,
+): GuardRatio {
   const { bare, columns } = out;
   for (let q = 0; q < bare.re.length; q++) {
-    const k = levelOf[columns[bare.col[q] as number] as number] as number;
     const x = bare.re[q] as number;
     const y = bare.im === undefined ? 0 : (bare.im[q] as number);
-    squares.set(k, (squares.get(k) ?? 0) + x * x + y * y);
+    squares.add(levelOf[columns[bare.col[q] as number] as number] as number, x * x, y * y);
   }
-  return largestRatio(squares, energy, levelEnergies);
+  return squares.largestRatio(energy, levelEnergies);
 }
 
 function secondGuard(
@@ -149,60 +186,163 @@ function secondGuard(
   level: number,
   energy: number,
   levelEnergies: Float64Array,
+  squares: LevelSums,
 ): GuardRatio {
-  const squares = new Map<number, number>();
-  const { scaled, columns } = out;
-  const size = v.rows;
-  const re = new Float64Array(size);
-  const im = new Float64Array(v.im === undefined ? 0 : size);
-  const mark = new Int32Array(size).fill(-1);
-  const touched = new Int32Array(size);
-  for (let r = 0; r < scaled.rows; r++) {
-    let count = 0;
-    for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-      const k = columns[scaled.col[q] as number] as number;
-      const a = scaled.re[q] as number;
-      const b = scaled.im === undefined ? 0 : (scaled.im[q] as number);
-      const end = v.ptr[k + 1] as number;
-      for (let p = v.ptr[k] as number; p < end; p++) {
-        const to = v.col[p] as number;
-        if (mark[to] !== r) {
-          mark[to] = r;
-          touched[count++] = to;
-          re[to] = 0;
-          if (v.im !== undefined) im[to] = 0;
-        }
-        const x = v.re[p] as number;
-        if (v.im === undefined) {
-          re[to] = (re[to] as number) + a * x;
-        } else {
-          const y = v.im[p] as number;
-          re[to] = (re[to] as number) + a * x - b * y;
-          im[to] = (im[to] as number) + a * y + b * x;
-        }
-      }
-    }
+  const rows = out.scaled.rows;
+  const space = borrow(v.rows, rows);
+  const { re, im, list } = space;
+  for (let r = 0; r < rows; r++) {
+    const tag = space.firstTag + r;
+    const count = v.im === undefined ? imageReal(out, r, v, space, tag) : imageComplex(out, r, v, v.im, space, tag);
     for (let t = 0; t < count; t++) {
-      const to = touched[t] as number;
+      const to = list[t] as number;
       const k = levelOf[to] as number;
       if (k === level) continue;
       const x = re[to] as number;
       const y = v.im === undefined ? 0 : (im[to] as number);
-      squares.set(k, (squares.get(k) ?? 0) + x * x + y * y);
+      squares.add(k, x * x, y * y);
     }
   }
-  return largestRatio(squares, energy, levelEnergies);
+  return squares.largestRatio(energy, levelEnergies);
 }
 
-function largestRatio(squares: Map<number, number>, energy: number, levelEnergies: Float64Array): GuardRatio {
-  let ratio = 0;
-  let level = -1;
-  for (const [k, square] of squares) {
-    const value = Math.sqrt(square) / Math.abs((levelEnergies[k] as number) - energy);
-    if (value > ratio) {
-      ratio = value;
-      level = k;
+/** Row r of V R V with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */
+function imageReal({ scaled, columns }: Outgoing, r: number, v: Csr, space: Scratch, tag: number): number {
+  const { re, mark, list } = space;
+  const { ptr, col, re: values } = v;
+  let count = 0;
+  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
+    const k = columns[scaled.col[q] as number] as number;
+    const a = scaled.re[q] as number;
+    const end = ptr[k + 1] as number;
+    for (let p = ptr[k] as number; p < end; p++) {
+      const to = col[p] as number;
+      if (mark[to] !== tag) {
+        mark[to] = tag;
+        list[count++] = to;
+        re[to] = 0;
+      }
+      re[to] = (re[to] as number) + a * (values[p] as number);
     }
   }
-  return { ratio, level };
+  return count;
+}
+
+/** The same for complex V. */
+function imageComplex(
+  { scaled, columns }: Outgoing,
+  r: number,
+  v: Csr,
+  imaginary: Float64Array,
+  space: Scratch,
+  tag: number,
+): number {
+  const { re, im, mark, list } = space;
+  const { ptr, col, re: values } = v;
+  let count = 0;
+  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
+    const k = columns[scaled.col[q] as number] as number;
+    const a = scaled.re[q] as number;
+    const b = scaled.im === undefined ? 0 : (scaled.im[q] as number);
+    const end = ptr[k + 1] as number;
+    for (let p = ptr[k] as number; p < end; p++) {
+      const to = col[p] as number;
+      if (mark[to] !== tag) {
+        mark[to] = tag;
+        list[count++] = to;
+        re[to] = 0;
+        im[to] = 0;
+      }
+      const x = values[p] as number;
+      const y = imaginary[p] as number;
+      re[to] = (re[to] as number) + a * x - b * y;
+      im[to] = (im[to] as number) + a * y + b * x;
+    }
+  }
+  return count;
+}
+
+/** Sums of squares by level; only the levels that occur cost anything. */
+class LevelSums {
+  readonly #sums: Float64Array;
+  readonly #mark: Int32Array;
+  readonly #list: Int32Array;
+  #tag: number;
+  #count = 0;
+
+  constructor(levels: number) {
+    const { re, mark, list, firstTag } = borrow(levels, 2, true);
+    this.#sums = re;
+    this.#mark = mark;
+    this.#list = list;
+    this.#tag = firstTag;
+  }
+
+  /** Adds a square and another one to the sum of a level. */
+  add(level: number, first: number, second: number): void {
+    if (this.#mark[level] !== this.#tag) {
+      this.#mark[level] = this.#tag;
+      this.#list[this.#count++] = level;
+      this.#sums[level] = 0;
+    }
+    this.#sums[level] = (this.#sums[level] as number) + first + second;
+  }
+
+  /** The largest ratio of a root to the distance of its level; clears the sums. */
+  largestRatio(energy: number, levelEnergies: Float64Array): GuardRatio {
+    let ratio = 0;
+    let level = -1;
+    for (let t = 0; t < this.#count; t++) {
+      const k = this.#list[t] as number;
+      const value = Math.sqrt(this.#sums[k] as number) / Math.abs((levelEnergies[k] as number) - energy);
+      if (value > ratio) {
+        ratio = value;
+        level = k;
+      }
+    }
+    this.#tag++;
+    this.#count = 0;
+    return { ratio, level };
+  }
+}
+
+/** A dense row with a tag for every place that has been written; tags only ever grow, so that nothing need be cleared. */
+interface Scratch {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  readonly mark: Int32Array;
+  readonly list: Int32Array;
+  readonly firstTag: number;
+}
+
+interface Kept extends Omit<Scratch, "firstTag"> {
+  nextTag: number;
+}
+
+const LARGEST_TAG = 2 ** 31 - 1;
+
+/** Kept from call to call, one over a sector's vectors and one over levels; every place is written before it is read. */
+const kept: { vectors: Kept; levels: Kept } = { vectors: makeKept(64), levels: makeKept(64) };
+
+function makeKept(size: number): Kept {
+  return {
+    re: new Float64Array(size),
+    im: new Float64Array(size),
+    mark: new Int32Array(size).fill(-1),
+    list: new Int32Array(size),
+    nextTag: 0,
+  };
+}
+
+/** A scratch of at least the given size, with so many tags that have not been used in it. */
+function borrow(size: number, tags: number, levels = false): Scratch {
+  const place = levels ? "levels" : "vectors";
+  let space = kept[place];
+  if (space.mark.length < size || space.nextTag > LARGEST_TAG - tags) {
+    space = makeKept(Math.max(size, 2 * space.mark.length));
+    kept[place] = space;
+  }
+  const firstTag = space.nextTag;
+  space.nextTag += tags;
+  return { re: space.re, im: space.im, mark: space.mark, list: space.list, firstTag };
 }

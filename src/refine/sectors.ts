@@ -6,7 +6,7 @@ import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { conjugate, diagonalCsr, multiply, selectRows, submatrix, transpose } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
 import type { Operator } from "../operator/operator.js";
-import { type DescentStep, descentStep, rotateAll, rotationError } from "./descent.js";
+import { carriedRowError, type DescentStep, descentStep, rotateAll, rotationError } from "./descent.js";
 import { type Eigenspace, splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { PathStep, TreeBuilder } from "./tree.js";
@@ -156,7 +156,7 @@ export function buildSectors(
         from: { node, child },
         depth: block.depth + 1,
         vErrors,
-        rowError: block.rowError + (step?.rowError ?? 0),
+        rowError: step === undefined ? block.rowError : carriedRowError(step, block.rowError),
       };
     });
   };
@@ -207,7 +207,7 @@ export function buildSectors(
       from: block.from,
       energyNode,
       energyChild,
-      rowError: block.rowError + (step?.rowError ?? 0),
+      rowError: step === undefined ? block.rowError : carriedRowError(step, block.rowError),
       labelFrame: block.frame,
     });
   };

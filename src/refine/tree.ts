@@ -14,9 +14,11 @@ export type NodeKind = "label" | "energy" | "perturbation" | "second order";
 
 /** A node of the refinement tree: one block, taken apart by one operator. */
 export interface TreeNode {
+  /** Number of the node, its place in the tree's list. */
   readonly id: number;
   /** The node and child that this block came from; undefined for the whole space. */
   readonly from: PathStep | undefined;
+  /** What kind of refinement it is. */
   readonly kind: NodeKind;
   /** Name of the operator. */
   readonly operator: string;
@@ -37,7 +39,9 @@ export interface TreeNode {
 
 /** A step from a node to one of its children. */
 export interface PathStep {
+  /** Number of the node. */
   readonly node: number;
+  /** Which child. */
   readonly child: number;
 }
 

@@ -222,7 +222,7 @@ function secondCell(safe: SafeOrders, shifts: SecondOrderShifts, p: number, q: n
 }
 
 /** The weakest link between a state and a partner of its level, in a word. */
-export function evidenceText(study: Study, safe: SafeOrders, level: LevelResult): string {
+function evidenceText(study: Study, safe: SafeOrders, level: LevelResult): string {
   if (safe.states === "none") return "none";
   if (safe.energies === "all") return level.degeneracy === 1 ? "single" : "labels";
   if (safe.energies <= 2) return separatorName(study, level);
@@ -241,6 +241,6 @@ function ordinal(order: number): string {
 }
 
 /** Safe orders as printed, energies first: `"2/0"`. */
-export function safeText(safe: SafeOrders): string {
+function safeText(safe: SafeOrders): string {
   return `${safe.energies}/${safe.states}`;
 }

@@ -70,7 +70,7 @@ function evidenceNotes(study: Study, rows: readonly TableRow[], column: number):
   if ([...words].some((word) => word.endsWith(" order"))) {
     meanings.push("2nd order: only the effective operator of that order does");
   }
-  if (words.has("none")) meanings.push("none: nothing studied tells it from a partner");
+  if (words.has("none")) meanings.push("none: nothing studied tells it from a partner surely enough");
   return meanings.length === 0 ? [] : [`evidence — ${meanings.join("; ")}.`];
 }
 
@@ -88,7 +88,7 @@ function isSquare(label: StateLabel): boolean {
 }
 
 /** "a", "a and b", "a, b and c". */
-export function listed(words: readonly string[]): string {
+function listed(words: readonly string[]): string {
   if (words.length < 2) return words.join("");
   return `${words.slice(0, -1).join(", ")} and ${words[words.length - 1]}`;
 }

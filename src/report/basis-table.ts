@@ -128,7 +128,8 @@ function chooseLevels(levels: readonly LevelResult[], chosen: readonly number[] 
     if (level !== undefined) return level;
     throw new GoodBasisError(
       "no-level",
-      `basisTable: there is no level ${index}; ${levels.length} levels were studied, so give numbers from 0 to ${levels.length - 1}`,
+      `basisTable: there is no level ${index}; ${levels.length} levels were studied, so give numbers from 0 to ` +
+        `${levels.length - 1}`,
       { level: index },
     );
   });

@@ -11,7 +11,10 @@ export type TableFormat = "text" | "markdown" | "csv" | "json" | "latex";
 
 /** Options of {@link formatTable}. */
 export interface FormatTableOptions {
-  /** Text only: longest line; expansions are broken to keep it, numbers never are, so a table of many numbers may be wider. Default 120. */
+  /**
+   * Text only: longest line. Expansions are broken to keep it, numbers never are, so that a table of many numbers may be
+   * wider. Default 120.
+   */
   readonly maxWidth?: number;
   /** Most significant digits in text, Markdown and LaTeX, from 1 to 17; a ± grows to cover the rounding. Default 17. */
   readonly digits?: number;

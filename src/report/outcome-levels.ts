@@ -47,7 +47,10 @@ export function levelLegend(study: Study): string[] {
   const radius =
     radii.length === 0
       ? ""
-      : ` Kato's bound: the series of these levels converge at least for |λ|\u00a0<\u00a0${numberText(roundedDown(Math.min(...radii)), 2)}.`;
+      : ` Kato's bound: the series of these levels converge at least for |λ|\u00a0<\u00a0${numberText(
+          roundedDown(Math.min(...radii)),
+          2,
+        )}.`;
   return [
     `guard: largest ratio of coupling to distance in energy, over other levels and inside the level, at ${lambda}; refused ` +
       `above ${numberText(guard.refuseAbove)}.${radius}`,

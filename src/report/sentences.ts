@@ -48,7 +48,12 @@ export function commutatorSentence(finding: CommutatorFinding): string {
   );
   const where = elements.length === 0 ? "" : `; largest elements ${elements.join(", ")}`;
   const size = `‖[${left}, ${right}]‖\u00a0=\u00a0${numberText(finding.norm)} (Frobenius)`;
-  if (finding.verdict === "broken") return `${left} does not commute with ${right}: ${size}${where}.`;
+  if (finding.verdict === "broken") {
+    const edge = finding.edge
+      ? " Only the last kets are concerned, a likely edge of a truncated space: build its matrix elements exactly, or enlarge it."
+      : "";
+    return `${left} does not commute with ${right}: ${size}${where}.${edge}`;
+  }
   return (
     `Whether ${left} commutes with ${right} is undecided: ${size}, bound ${boundText(finding.bound)} above the threshold ` +
     `${numberText(finding.threshold, 2)}${where}. Smaller entry uncertainties or a coarser resolution would decide it.`

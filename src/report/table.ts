@@ -3,16 +3,25 @@ import type { StateLabel } from "../refine/label.js";
 
 /** A term of an expansion: a coefficient and the name of its ket. */
 export interface ExpansionTerm {
+  /** Real part of the coefficient. */
   readonly re: number;
+  /** Imaginary part of the coefficient. */
   readonly im: number;
+  /** Name of the ket. */
   readonly ket: string;
 }
 
 /** A state in the caller's kets, the largest coefficients first. */
 export interface Expansion {
+  /** The terms shown, largest first. */
   readonly terms: readonly ExpansionTerm[];
   /** How many terms were left out, and the sum of their squared moduli. */
-  readonly leftOut: { readonly terms: number; readonly weight: number };
+  readonly leftOut: {
+    /** How many. */
+    readonly terms: number;
+    /** The sum of their squared moduli. */
+    readonly weight: number;
+  };
 }
 
 /** A cell of a {@link Table}; branch on `kind`. */
@@ -56,7 +65,9 @@ export interface TableRow {
 
 /** A table of states, ready for {@link formatTable} or for a program. */
 export interface Table {
+  /** Unit of all energies. */
   readonly unit: string;
+  /** The columns, in order. */
   readonly columns: readonly TableColumn[];
   /** Level by level, in the order of the states. */
   readonly rows: readonly TableRow[];

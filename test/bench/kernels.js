@@ -85,14 +85,25 @@ async function startReference() {
   };
   const version = await next();
   if (version === undefined) return undefined;
+  /** @param {unknown} request */
   const ask = (request) => {
     python.stdin.write(`${JSON.stringify(request)}\n`);
     return next();
   };
-  return { version, prepare: (...request) => ask(request), run: () => ask(null), end: () => python.stdin.end() };
+  return {
+    version,
+    /** @param {readonly [kind: string, n: number, count: number]} request */
+    prepare: (request) => ask(request),
+    run: () => ask(null),
+    end: () => python.stdin.end(),
+  };
 }
 
-/** Uniform numbers in [−1/2, 1/2), always the same (mulberry32, a value from memory). */
+/**
+ * Uniform numbers in [−1/2, 1/2), always the same (mulberry32, a value from memory).
+ *
+ * @param {number} seed
+ */
 function generator(seed) {
   let state = seed;
   return () => {
@@ -103,7 +114,14 @@ function generator(seed) {
   };
 }
 
-/** `count` random Hermitian matrices one after the other; `entry` may replace those of the lower triangle. */
+/**
+ * Random Hermitian matrices one after the other.
+ *
+ * @param {number} n
+ * @param {boolean} complex
+ * @param {number} count
+ * @param {(i: number, j: number) => boolean} keep - which entries of the lower triangle are not zero
+ */
 function hermitian(n, complex, count = 1, keep = () => true) {
   const next = generator(n + count);
   const re = new Float64Array(count * n * n);
@@ -125,51 +143,83 @@ function hermitian(n, complex, count = 1, keep = () => true) {
   return { n, re, im };
 }
 
-/** A Hermitian matrix with the eigenvalues 0 … kinds − 1, conjugated by random eigenvectors. */
+/**
+ * A complex Hermitian matrix with the eigenvalues 0 … kinds − 1, conjugated by random eigenvectors.
+ *
+ * @param {number} n
+ * @param {number} kinds
+ */
 function distinct(n, kinds) {
   const random = hermitian(n, true);
-  const { re, im } = hermitianEigen(n, random.re, random.im);
-  const scaled = (m) => m.map((x, k) => x * (Math.floor(k / n) % kinds));
+  const { re, im = zeros(n) } = hermitianEigen(n, random.re, random.im);
+  /** @param {Float64Array} m */
+  const scaled = (m) =>
+    transposed(
+      n,
+      m.map((x, k) => x * (Math.floor(k / n) % kinds)),
+    );
   // Rows of `re` and `im` are eigenvectors v_k: Σ_k λ_k v_k v_k†, as (Vᵀ λ) times the conjugate of V.
-  const left = { n, re: transposed(n, scaled(re)), im: transposed(n, scaled(im)) };
-  const { value } = product(left, { n, re, im: im.map((y) => -y) });
+  const { value } = product({ n, re: scaled(re), im: scaled(im) }, { n, re, im: im.map((y) => -y) });
+  const whole = { n, re: value.re, im: value.im ?? zeros(n) };
   for (let i = 0; i < n; i++) {
     for (let j = 0; j < i; j++) {
-      value.re[j * n + i] = value.re[i * n + j];
-      value.im[j * n + i] = -value.im[i * n + j];
+      whole.re[j * n + i] = Number(whole.re[i * n + j]);
+      whole.im[j * n + i] = -Number(whole.im[i * n + j]);
     }
   }
-  return value;
+  return whole;
 }
 
-const transposed = (n, m) => m.map((_, k) => m[(k % n) * n + Math.floor(k / n)]);
+/** @param {number} n */
+const zeros = (n) => new Float64Array(n * n);
 
-/** The real symmetric matrix of twice the order, [[A, −B], [B, A]], for ml-matrix; a real one as it is. */
+/**
+ * @param {number} n
+ * @param {Float64Array} m
+ */
+const transposed = (n, m) => m.map((_, k) => Number(m[(k % n) * n + Math.floor(k / n)]));
+
+/** @typedef {{ readonly n: number, readonly re: Float64Array, readonly im: Float64Array | undefined }} Square */
+
+/**
+ * The real symmetric matrix of twice the order, [[A, −B], [B, A]], for ml-matrix; a real one as it is.
+ *
+ * @param {Square} matrix
+ * @param {number} start - index of its first entry
+ */
 function forMlMatrix({ n, re, im }, start = 0) {
   const size = im === undefined ? n : 2 * n;
   const rows = Array.from({ length: size }, (_, i) =>
     Array.from({ length: size }, (_, j) => {
       const k = start + (i % n) * n + (j % n);
-      if (i < n === j < n) return re[k];
-      return (i < n ? -1 : 1) * im[k];
+      if (i < n === j < n) return Number(re[k]);
+      return (i < n ? -1 : 1) * Number(im?.[k]);
     }),
   );
   return new Matrix(rows);
 }
 
+/** @param {Matrix} matrix */
 const mlEigen = (matrix) => () => new EigenvalueDecomposition(matrix, { assumeSymmetric: true });
 
-/** Largest entry of Q† Q − 1 in modulus. */
-function worstOverlap({ n, re, im }) {
+/**
+ * Largest entry of Q† Q − 1 in modulus.
+ *
+ * @param {Square} vectors - as rows
+ */
+function worstOverlap({ n, re, im = zeros(n) }) {
   const { value } = product({ n, re, im: im.map((y) => -y) }, { n, re: transposed(n, re), im: transposed(n, im) });
-  let worst = 0;
-  for (let k = 0; k < n * n; k++) {
-    const x = value.re[k] - (k % (n + 1) === 0 ? 1 : 0);
-    worst = Math.max(worst, Math.hypot(x, value.im[k]));
-  }
-  return worst;
+  return value.re.reduce((worst, x, k) => {
+    const diagonal = k % (n + 1) === 0 ? 1 : 0;
+    return Math.max(worst, Math.hypot(x - diagonal, Number(value.im?.[k])));
+  }, 0);
 }
 
+/**
+ * @param {number} n
+ * @param {number} perRow
+ * @param {number} seed
+ */
 function randomSparse(n, perRow, seed) {
   const next = generator(seed);
   const rows = Int32Array.from({ length: n * perRow }, (_, k) => Math.floor(k / perRow));
@@ -178,16 +228,32 @@ function randomSparse(n, perRow, seed) {
 }
 
 /**
+ * @typedef {object} Row
+ * @property {string} name
+ * @property {() => unknown} ours
+ * @property {readonly [kind: string, n: number, count: number]} [python]
+ * @property {number} [reach]
+ * @property {() => unknown} [ml]
+ * @property {number} [factor]
+ * @property {() => unknown} [beside]
+ * @property {string} [besideName]
+ * @property {number} [reachBeside]
+ * @property {() => string} [note]
+ */
+
+/**
  * The rows. `ours` is timed; `python` names the reference case and `reach` the ratio to it that is wanted; `ml` is
  * ml-matrix on the same work, with the factor wanted; `beside` is another run of ours and `reachBeside` the ratio to it.
  */
 function makeRows() {
+  /** @type {Row[]} */
   const rows = [];
   const full = hermitian(512, true);
+  /** @param {Square} matrix */
   const solve = ({ n, re, im }) => hermitianEigen(n, re, im);
-  for (const [name, complex, reach, factor] of [
-    ["complex Hermitian, n = 512", true, 1.2, 50],
-    ["real symmetric, n = 512", false, 1.5, 20],
+  for (const { name, complex, reach, factor } of [
+    { name: "complex Hermitian, n = 512", complex: true, reach: 1.2, factor: 50 },
+    { name: "real symmetric, n = 512", complex: false, reach: 1.5, factor: 20 },
   ]) {
     const of = complex ? full : hermitian(512, false);
     const ml = mlEigen(forMlMatrix(of));
@@ -202,20 +268,21 @@ function makeRows() {
     ml: mlEigen(forMlMatrix(ten)),
     note: () => `largest entry of Q†Q − 1: ${worstOverlap(solve(ten)).toExponential(1)} (at most 1e-14)`,
   });
-  const blocks = (i, j) => i >> 4 === j >> 4;
-  for (const [name, keep] of [
-    ["block-diagonal 512, 32 blocks of 16, complex", blocks],
+  /** @type {[string, (i: number, j: number) => boolean][]} */
+  const pieces = [
+    ["block-diagonal 512, 32 blocks of 16, complex", (i, j) => i >> 4 === j >> 4],
     ["diagonal 512, complex", (i, j) => i === j],
     ["zero 512, complex", () => false],
-  ]) {
+  ];
+  for (const [name, keep] of pieces) {
     const of = hermitian(512, true, 1, keep);
     rows.push({ name, ours: () => solve(of), beside: () => solve(full), besideName: "full", reachBeside: 0.1 });
   }
-  for (const [n, count, reach] of [
-    [20, 1000, 0.4],
-    [2, 10_000, 0.5],
-    [4, 10_000, 0.5],
-    [8, 4000, 0.5],
+  for (const { n, count, reach } of [
+    { n: 20, count: 1000, reach: 0.4 },
+    { n: 2, count: 10_000, reach: 0.5 },
+    { n: 4, count: 10_000, reach: 0.5 },
+    { n: 8, count: 4000, reach: 0.5 },
   ]) {
     const of = hermitian(n, true, count);
     const orders = new Int32Array(count).fill(n);
@@ -253,21 +320,22 @@ function makeRows() {
     python: ["sparse", 1e5, 10],
     reach: 0.6,
   });
-  const halves = [a, b].map((m) => add(0.5, m, 0.5, transpose(m)));
-  const fullArena = new SparseArena();
+  const [c, d] = [add(0.5, a, 0.5, transpose(a)), add(0.5, b, 0.5, transpose(b))];
+  const generalArena = new SparseArena();
+  const [e, f] = [generalArena.load(c), generalArena.load(d)];
+  const generalMark = generalArena.mark();
   const halfArena = new SparseArena();
-  const general = halves.map((m) => fullArena.load(m));
-  const known = halves.map((m) => halfArena.load(m, { hermitian: true }));
-  const [generalMark, knownMark] = [fullArena.mark(), halfArena.mark()];
+  const [g, h] = [halfArena.load(c, { hermitian: true }), halfArena.load(d, { hermitian: true })];
+  const halfMark = halfArena.mark();
   rows.push({
     name: "sparse commutator of Hermitian matrices, 1e5 rows, 20 a row, resident",
     ours: () => {
-      halfArena.release(knownMark);
-      return halfArena.commutator(...known);
+      halfArena.release(halfMark);
+      return halfArena.commutator(g, h);
     },
     beside: () => {
-      fullArena.release(generalMark);
-      return fullArena.commutator(...general);
+      generalArena.release(generalMark);
+      return generalArena.commutator(e, f);
     },
     besideName: "without the short cut",
   });
@@ -287,13 +355,24 @@ function makeRows() {
   return rows;
 }
 
+/** @param {() => unknown} run */
 async function timed(run) {
   const begun = performance.now();
   await run();
   return performance.now() - begun;
 }
 
-const ratio = (x, y) => (y === undefined ? "" : (x / y).toPrecision(3));
+/**
+ * @param {number} x
+ * @param {number} y
+ */
+const ratio = (x, y) => (x / y).toPrecision(3);
+
+/**
+ * @param {number | undefined} limit
+ * @param {string} sign
+ */
+const wanted = (limit, sign) => (limit === undefined ? "" : ` (wanted ${sign} ${limit.toPrecision(2)})`);
 
 /**
  * Runs the rows, prints a line for each, and returns what was measured.
@@ -310,7 +389,7 @@ export async function benchKernels({ only = "", seconds = 4, print = console.log
   const measured = [];
   for (const { name, ours, python, reach, ml, factor, beside, besideName, reachBeside, note } of makeRows()) {
     if (!name.includes(only)) continue;
-    const withPython = python !== undefined && reference !== undefined && (await reference.prepare(...python));
+    const withPython = python !== undefined && reference !== undefined && (await reference.prepare(python));
     const best = { ours: Number.POSITIVE_INFINITY, python: Number.POSITIVE_INFINITY, beside: Number.POSITIVE_INFINITY };
     const end = performance.now() + 1000 * seconds;
     for (let round = 0; round < 3 || performance.now() < end; round++) {
@@ -323,14 +402,13 @@ export async function benchKernels({ only = "", seconds = 4, print = console.log
       ms: best.ours,
       numpyMs: withPython ? best.python : undefined,
       besideMs: beside ? best.beside : undefined,
-      mlMatrixMs: ml ? await timed(ml) : undefined,
+      mlMatrixMs: ml === undefined ? undefined : await timed(ml),
     };
     measured.push(row);
     const parts = [`${name}: ${row.ms.toPrecision(4)} ms`];
-    const wanted = (limit, sign) => (limit === undefined ? "" : ` (wanted ${sign} ${limit.toPrecision(2)})`);
-    if (withPython) parts.push(`${ratio(row.ms, row.numpyMs)} × NumPy or SciPy${wanted(reach, "≤")}`);
-    if (beside) parts.push(`${ratio(row.ms, row.besideMs)} × ${besideName}${wanted(reachBeside, "≤")}`);
-    if (ml) parts.push(`${ratio(row.mlMatrixMs, row.ms)} times as fast as ml-matrix${wanted(factor, "≥")}`);
+    if (withPython) parts.push(`${ratio(row.ms, best.python)} × NumPy or SciPy${wanted(reach, "≤")}`);
+    if (beside) parts.push(`${ratio(row.ms, best.beside)} × ${besideName}${wanted(reachBeside, "≤")}`);
+    if (row.mlMatrixMs) parts.push(`${ratio(row.mlMatrixMs, row.ms)} times as fast as ml-matrix${wanted(factor, "≥")}`);
     if (note) parts.push(note());
     print(`  ${parts.join("; ")}`);
   }

@@ -186,8 +186,10 @@ describe("levels 1e-9 apart that V couples by 1e-3", () => {
     expect(outcome.levels[0]?.questions.map((question) => question.code)).toContain("merged-level");
   });
 
-  it("merged with λ = 1 it is still not good", () => {
-    expect(findGoodBasis({ h0, v }, { levelWidth: 1e-7, lambda: 1 }).verdict).not.toBe("good");
+  it.each([{ lambda: 1 }, {}])("merged with %o it is never good, at any depth", (options) => {
+    for (const depth of ["labels", "first order", "second order", "full"] as const) {
+      expect(findGoodBasis({ h0, v }, { levelWidth: 1e-7, depth, ...options }).verdict).not.toBe("good");
+    }
   });
 });
 

@@ -4,17 +4,20 @@ import { hopping } from "../../src/models/lattice.js";
 import { ketPermutation } from "../../src/models/permutations.js";
 import { productSpace } from "../../src/models/product-space.js";
 
-/** Hydrogen n = 1 and 2 in a field along z (the 1s–2p0 element is rounded): L² is broken, and one pair is left to V. */
+/** e z F on 1s, 2s, 2p−1, 2p0, 2p+1; the 1s–2p0 element is rounded. */
+export const STARK: readonly (readonly number[])[] = [
+  [0, 0, 0, 0.745, 0],
+  [0, 0, 0, -3, 0],
+  [0, 0, 0, 0, 0],
+  [0.745, -3, 0, 0, 0],
+  [0, 0, 0, 0, 0],
+];
+
+/** Hydrogen n = 1 and 2 in a field along z: L² is broken, and one pair is left to V. */
 export function stark(): Problem<"L2" | "Lz"> {
   return {
     h0: { diagonal: [-0.5, -0.125, -0.125, -0.125, -0.125] },
-    v: [
-      [0, 0, 0, 0.745, 0],
-      [0, 0, 0, -3, 0],
-      [0, 0, 0, 0, 0],
-      [0.745, -3, 0, 0, 0],
-      [0, 0, 0, 0, 0],
-    ],
+    v: STARK,
     kets: ["1s", "2s", "2p−1", "2p0", "2p+1"],
     unit: "Eh",
     candidates: {

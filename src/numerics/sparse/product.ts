@@ -9,43 +9,107 @@ import { RowAccumulator } from "./rows.js";
  */
 export function multiply(a: Csr, b: Csr): Csr {
   const complex = a.im !== undefined || b.im !== undefined;
-  const out = new RowAccumulator(a.rows, b.cols, complex, a.col.length + b.col.length);
+  const out = new RowAccumulator(a.rows, b.cols, complex);
   for (let row = 0; row < a.rows; row++) out.finishRow(row, scatterRow(out, row, a, b, 1, 0));
   return out.finish();
 }
 
 /** Adds sign · (row of A) · B to the accumulator, which holds `count` columns already; returns their new number. */
 function scatterRow(out: RowAccumulator, row: number, a: Csr, b: Csr, sign: number, count: number): number {
-  const { re, im, mark, list } = out;
+  if (out.im.length === 0) return scatterReal(out, row, a, b, sign, count);
+  return b.im === undefined
+    ? scatterComplexReal(out, row, a, b, sign, count)
+    : scatterComplex(out, row, a, b, b.im, sign, count);
+}
+
+function scatterReal(out: RowAccumulator, row: number, a: Csr, b: Csr, sign: number, count: number): number {
+  const { re, mark, list } = out;
+  const { ptr, col, re: bRe } = b;
   const tag = out.firstTag + row;
-  const complex = im.length > 0;
+  let filled = count;
+  const end = a.ptr[row + 1] as number;
+  for (let e = a.ptr[row] as number; e < end; e++) {
+    const k = a.col[e] as number;
+    const x = sign * (a.re[e] as number);
+    const stop = ptr[k + 1] as number;
+    for (let f = ptr[k] as number; f < stop; f++) {
+      const c = col[f] as number;
+      const term = x * (bRe[f] as number);
+      if (mark[c] === tag) {
+        re[c] = (re[c] as number) + term;
+      } else {
+        mark[c] = tag;
+        list[filled++] = c;
+        // Adding zero turns −0 into 0, as in every sum.
+        re[c] = term + 0;
+      }
+    }
+  }
+  return filled;
+}
+
+/** B real, the accumulator complex; A may be either. */
+function scatterComplexReal(out: RowAccumulator, row: number, a: Csr, b: Csr, sign: number, count: number): number {
+  const { re, im, mark, list } = out;
+  const { ptr, col, re: bRe } = b;
   const aIm = a.im;
-  const bIm = b.im;
+  const tag = out.firstTag + row;
   let filled = count;
   const end = a.ptr[row + 1] as number;
   for (let e = a.ptr[row] as number; e < end; e++) {
     const k = a.col[e] as number;
     const x = sign * (a.re[e] as number);
     const y = aIm === undefined ? 0 : sign * (aIm[e] as number);
-    const stop = b.ptr[k + 1] as number;
-    for (let f = b.ptr[k] as number; f < stop; f++) {
-      const c = b.col[f] as number;
-      const u = b.re[f] as number;
-      if (mark[c] !== tag) {
-        mark[c] = tag;
-        list[filled++] = c;
-        re[c] = 0;
-        if (complex) im[c] = 0;
-      }
-      if (!complex) {
-        re[c] = (re[c] as number) + x * u;
-      } else if (bIm === undefined) {
+    const stop = ptr[k + 1] as number;
+    for (let f = ptr[k] as number; f < stop; f++) {
+      const c = col[f] as number;
+      const u = bRe[f] as number;
+      if (mark[c] === tag) {
         re[c] = (re[c] as number) + x * u;
         im[c] = (im[c] as number) + y * u;
       } else {
-        const v = bIm[f] as number;
+        mark[c] = tag;
+        list[filled++] = c;
+        re[c] = x * u + 0;
+        im[c] = y * u + 0;
+      }
+    }
+  }
+  return filled;
+}
+
+function scatterComplex(
+  out: RowAccumulator,
+  row: number,
+  a: Csr,
+  b: Csr,
+  bIm: Float64Array,
+  sign: number,
+  count: number,
+): number {
+  const { re, im, mark, list } = out;
+  const { ptr, col, re: bRe } = b;
+  const aIm = a.im;
+  const tag = out.firstTag + row;
+  let filled = count;
+  const end = a.ptr[row + 1] as number;
+  for (let e = a.ptr[row] as number; e < end; e++) {
+    const k = a.col[e] as number;
+    const x = sign * (a.re[e] as number);
+    const y = aIm === undefined ? 0 : sign * (aIm[e] as number);
+    const stop = ptr[k + 1] as number;
+    for (let f = ptr[k] as number; f < stop; f++) {
+      const c = col[f] as number;
+      const u = bRe[f] as number;
+      const v = bIm[f] as number;
+      if (mark[c] === tag) {
         re[c] = (re[c] as number) + (x * u - y * v);
         im[c] = (im[c] as number) + (x * v + y * u);
+      } else {
+        mark[c] = tag;
+        list[filled++] = c;
+        re[c] = x * u - y * v + 0;
+        im[c] = x * v + y * u + 0;
       }
     }
   }
@@ -65,7 +129,7 @@ export function commutator(a: Csr, b: Csr): Csr {
   const right = diagonalOf(b);
   if (right !== undefined) return diagonalCommutator(right, a, -1);
   const complex = a.im !== undefined || b.im !== undefined;
-  const out = new RowAccumulator(a.rows, a.cols, complex, 2 * (a.col.length + b.col.length));
+  const out = new RowAccumulator(a.rows, a.cols, complex);
   for (let row = 0; row < a.rows; row++) {
     const count = scatterRow(out, row, a, b, 1, 0);
     out.finishRow(row, scatterRow(out, row, b, a, -1, count));

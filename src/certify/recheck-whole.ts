@@ -1,0 +1,157 @@
+import type { Certificate } from "./certificate-format.js";
+import { rootSum } from "./recheck-bounds.js";
+import type { OwnCandidate } from "./recheck-commutators.js";
+import { isWhole } from "./recheck-complete.js";
+import type { OwnResiduals } from "./recheck-labels.js";
+import type { OwnLevel } from "./recheck-level.js";
+import { type OwnProblem, productRounding } from "./recheck-operators.js";
+import type { OwnCommutator } from "./recheck-own-commutator.js";
+import type { Ledger } from "./recheck-report.js";
+
+/** A level merged over more than this fraction of ‖H0‖ has other vectors than the energies were found with. */
+const MERGED = 2 ** -40;
+
+/** Checks what is said of the whole space: orthonormality, energies, and the distance to an exactly symmetric model. */
+export function checkWhole(
+  ledger: Ledger,
+  certificate: Certificate,
+  problem: OwnProblem,
+  candidates: readonly OwnCandidate[],
+  residuals: readonly OwnResiduals[],
+  own: readonly OwnLevel[],
+): void {
+  const { whole, levels } = certificate;
+  const { h0 } = problem;
+  const plain = own.filter((_, l) => (levels[l]?.spread ?? 0) <= MERGED * h0.norm);
+  const residual = rootSum(plain.map((level) => rootSum(level.residuals)));
+  const everything = isWhole(certificate) && plain.length === own.length;
+  const loose = rootSum(plain.map((level) => rootSum(level.looseResiduals)));
+  ledger.bound(
+    "whole.energyResidual",
+    "the norm of all residuals H0 q − E q",
+    whole.energyResidual,
+    residual,
+    everything ? loose + Math.sqrt(problem.n) * h0.looseRounding : Number.POSITIVE_INFINITY,
+  );
+  const enclosure =
+    whole.energyResidual * (1 + whole.orthonormality) + 2 * h0.operator.norm * whole.orthonormality + h0.operator.error;
+  ledger.near(
+    "whole.energyEnclosure",
+    "the enclosure of every energy",
+    whole.energyEnclosure,
+    enclosure,
+    1e-9 * enclosure,
+  );
+  const step = own.reduce((most, level) => Math.max(most, level.orthonormality.tight), 0);
+  const seen = own.reduce((most, level) => Math.max(most, level.orthonormalityAtLeast), 0);
+  ledger.claim(
+    whole.orthonormality >= seen - step - productRounding(problem.n),
+    "whole.orthonormality",
+    () => `claimed to be at most ${whole.orthonormality}, but an overlap inside a level is off by ${seen}`,
+  );
+  ledger.claim(whole.orthonormality < 0.5, "whole.orthonormality", () => `claimed ${whole.orthonormality}: no basis`);
+  const eta = (
+    path: string,
+    norm: number,
+    of: (c: OwnCandidate) => OwnCommutator | undefined,
+    element: number,
+  ): void => {
+    const claimed = path === "whole.eta0" ? whole.eta0 : (whole.eta[Number(path.slice("whole.eta[".length, -1))] ?? 0);
+    const { low, high } = modelDistance(certificate, problem, candidates, residuals, norm, of);
+    const everywhere = isWhole(certificate) || candidates.every((candidate) => candidate.role !== "conserved");
+    const least = Math.max(everywhere ? low : 0, 2 * norm * whole.orthonormality);
+    ledger.bound(
+      path,
+      "the distance to an exactly symmetric model",
+      claimed,
+      least,
+      everywhere ? high : Number.POSITIVE_INFINITY,
+    );
+    ledger.claim(
+      claimed >= element,
+      path,
+      () => `claimed to be at most ${claimed}, but an element between different labels alone is ${element}`,
+    );
+  };
+  eta("whole.eta0", h0.norm, (c) => c.withH0, 0);
+  const counted = ledger.claim(
+    whole.eta.length === problem.perturbations.length,
+    "whole.eta",
+    () => `${whole.eta.length} distances for ${problem.perturbations.length} perturbations`,
+  );
+  if (!counted) return;
+  problem.perturbations.forEach((v, p) => {
+    let element = 0;
+    levels.forEach((level, l) => {
+      level.nodes.forEach((node, place) => {
+        const elements = own[l]?.perturbations[p];
+        if (node.kind !== "label" || elements === undefined) return;
+        element = Math.max(element, (elements.atNode[place] as number) - elements.looseError);
+      });
+    });
+    eta(`whole.eta[${p}]`, v.norm, (c) => c.withPerturbations[p], element);
+  });
+}
+
+/**
+ * (‖C‖_F (1 + ε) + 2‖V‖ρ)/gap summed over the labels, plus 2‖V‖ε: once with what is certainly part of it, once with everything that
+ * may be.
+ */
+function modelDistance(
+  certificate: Certificate,
+  problem: OwnProblem,
+  candidates: readonly OwnCandidate[],
+  residuals: readonly OwnResiduals[],
+  norm: number,
+  of: (candidate: OwnCandidate) => OwnCommutator | undefined,
+): { low: number; high: number } {
+  const epsilon = certificate.whole.orthonormality;
+  let low = 2 * norm * epsilon;
+  let high = low;
+  problem.candidates.forEach(({ name, norm: size }, place) => {
+    const candidate = candidates[place];
+    const own = residuals[place];
+    if (candidate?.role !== "conserved" || own === undefined) return;
+    const labels = certificate.levels.flatMap((level) =>
+      level.states.map((state) => (Object.hasOwn(state.labels, name) ? state.labels[name] : undefined)),
+    );
+    const sharp = labels.filter((label) => label !== undefined && label.status !== "not sharp");
+    const apart = smallestApart(
+      sharp.map((label) => [label?.re ?? 0, label?.im ?? 0] as const),
+      2 ** -30 * size,
+    );
+    const bound = of(candidate)?.frobeniusBound ?? 0;
+    if (apart < Number.POSITIVE_INFINITY) {
+      high +=
+        (bound * (1 + epsilon) + 2 * norm * (rootSum(own.loose) + certificate.n * productRounding(certificate.n))) /
+        apart;
+    }
+    const gaps = certificate.levels.flatMap((level) =>
+      level.nodes.filter((node) => node.kind === "label" && node.operator === name).map((node) => node.gap),
+    );
+    // a label of every state is one that the whole space was refined by
+    if (gaps.length > 0 && sharp.length === labels.length) {
+      const gap = gaps.reduce((least, x) => Math.min(least, x), Number.POSITIVE_INFINITY);
+      low += (bound * (1 + epsilon) + 2 * norm * rootSum(own.tight)) / gap;
+    }
+  });
+  return { low, high };
+}
+
+/** Smallest distance above `width` between two of the points; both coordinates sorted into clusters first. */
+function smallestApart(points: readonly (readonly [number, number])[], width: number): number {
+  const distinct = [...new Map(points.map((point) => [`${point[0]} ${point[1]}`, point])).values()].sort(
+    (a, b) => a[0] - b[0],
+  );
+  let least = Number.POSITIVE_INFINITY;
+  for (let k = 0; k < distinct.length; k++) {
+    for (let j = k + 1; j < distinct.length; j++) {
+      const a = distinct[k] as readonly [number, number];
+      const b = distinct[j] as readonly [number, number];
+      if (b[0] - a[0] > least) break;
+      const distance = Math.hypot(a[0] - b[0], a[1] - b[1]);
+      if (distance > width) least = Math.min(least, distance);
+    }
+  }
+  return least;
+}

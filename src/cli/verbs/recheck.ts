@@ -1,0 +1,61 @@
+import { recheck } from "../../certify/recheck.js";
+import type { RecheckReport } from "../../certify/recheck-report.js";
+import { parseDocument } from "../../problem/document.js";
+import { formatRecheck } from "../../report/format-recheck.js";
+import { formatTable } from "../../report/format-table.js";
+import type { Settings } from "../arguments.js";
+import { markFirstWord } from "../colour.js";
+import { loadProblem, readFile } from "../input.js";
+import { checkOutputs, deliver } from "../output.js";
+import { plainTable } from "../plain-table.js";
+import type { Verb } from "../verb.js";
+
+/** Whether a certificate stands. */
+export const recheckVerb: Verb = {
+  name: "recheck",
+  usage: "recheck CERTIFICATE FILE",
+  files: 2,
+  summary: "verify a certificate against its problem",
+  about:
+    "Derives every claim of a certificate again from the operators, with code that shares nothing with the search. A changed\n" +
+    "number, label, vector or operator is named. Exit status 0 if every claim stands, 1 if not.",
+  options: ["format", "out", "force"],
+  examples: [
+    "goodbasis recheck problem.certificate.json problem.json",
+    "goodbasis recheck problem.certificate.json problem.json --format json",
+  ],
+  run: (terminal, settings, [certificatePath = "", problemPath = ""]) => {
+    checkOutputs(terminal, settings);
+    const text = readFile(terminal, certificatePath);
+    const certificate = parseDocument({ name: certificatePath, text }, text);
+    const report = recheck(certificate, loadProblem(terminal, problemPath).problem);
+    const colours = terminal.colours.print && settings.out === undefined;
+    deliver(terminal, settings, { text: textOf(settings, report, colours) });
+    return report.ok ? 0 : 1;
+  },
+};
+
+function textOf({ format }: Settings, report: RecheckReport, colours: boolean): string {
+  switch (format) {
+    case "text":
+      return markFirstWord(formatRecheck(report), report.ok ? "good" : "bad", colours);
+    case "json":
+      return JSON.stringify(report, undefined, 2);
+    case "markdown":
+    case "csv":
+    case "latex":
+      return formatTable(
+        plainTable(
+          "",
+          [
+            { key: "path", title: "place", kind: "text" },
+            { key: "message", title: "finding", kind: "text" },
+          ],
+          report.findings.map(({ path, message }) => [path, message]),
+        ),
+        format,
+      );
+    default:
+      return format satisfies never;
+  }
+}

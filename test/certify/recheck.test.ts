@@ -1,0 +1,19 @@
+import { describe, expect, it } from "vitest";
+import { findGoodBasis } from "../../src/certify/find.js";
+import { recheck } from "../../src/certify/recheck.js";
+import { CASES } from "./recheck-problems.js";
+
+describe("recheck passes what findGoodBasis wrote", () => {
+  for (const [name, { problem, options, verdict }] of Object.entries(CASES)) {
+    it(name, () => {
+      const outcome = findGoodBasis(problem, options);
+      expect(outcome.verdict).toBe(verdict);
+      const certificate = outcome.certificate();
+      const report = recheck(certificate, problem);
+      expect(report.findings).toEqual([]);
+      expect(report.ok).toBe(true);
+      expect(report.checked).toBeGreaterThan(50);
+      expect(recheck(JSON.parse(JSON.stringify(certificate)), problem)).toEqual(report);
+    });
+  }
+});
