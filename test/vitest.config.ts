@@ -21,6 +21,8 @@ const config: ViteUserConfig = defineConfig({
     coverage: {
       provider: "v8",
       include: ["src/**/*.ts"],
+      // compiled to WebAssembly, where coverage does not reach
+      exclude: ["src/numerics/wasm/assembly/**"],
       reporter: ["text-summary", "json-summary", "html"],
       reportsDirectory: "coverage",
     },
