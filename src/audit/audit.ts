@@ -132,5 +132,5 @@ function size(finding: CommutatorFinding): string {
       ? ""
       : `, largest element ${worst.size.toPrecision(4)} at ⟨${worst.rowKet}|…|${worst.columnKet}⟩`;
   const name = `[${finding.left}, ${finding.right}]`;
-  return `‖${name}‖ = ${finding.norm.toPrecision(6)} (Frobenius), bound ${finding.bound.toExponential(1)}${where}`;
+  return `‖${name}‖ = ${finding.norm.toPrecision(6)} (Frobenius), 2-norm at most ${finding.bound.toExponential(1)}${where}`;
 }

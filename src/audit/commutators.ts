@@ -51,10 +51,10 @@ export interface CommutatorFinding {
 const LARGEST_SHOWN = 3;
 
 /** Failures among this share of the kets, the last ones, are pointed out as a likely edge. */
-const EDGE_SHARE = 1 / 6;
+const EDGE_SHARE = 1 / 4;
 
 /** Fewer kets than this are not taken for a truncated space. */
-const SMALLEST_TRUNCATED = 6;
+const SMALLEST_TRUNCATED = 8;
 
 /**
  * Bounds a commutator from both sides and gives the verdict.
@@ -86,7 +86,7 @@ export function judgeCommutator(
     const radius = commutator.radius === undefined ? gamma(1) * element : (commutator.radius[p] as number);
     const low = element * (1 - 16 * gamma(1)) - radius;
     if (low > atLeast) atLeast = low;
-    if (row < edgeFrom && (csr.col[p] as number) < edgeFrom) {
+    if (row < edgeFrom || (csr.col[p] as number) < edgeFrom) {
       outsideEdge = Math.max(outsideEdge, element + radius);
     }
   }

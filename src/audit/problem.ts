@@ -71,7 +71,7 @@ export function prepareProblem(problem: Problem): PreparedProblem {
     throw new GoodBasisError("option", `the problem is ${String(problem)}; give { h0, v, candidates }`, { problem });
   }
   const { candidates: given = {}, unit = "" } = problem;
-  if (typeof given !== "object" || given === null || Array.isArray(given)) {
+  if (typeof given !== "object" || given === null || Array.isArray(given) || given instanceof Map) {
     throw new GoodBasisError("option", "candidates must be an object, one operator by name: { Jz: matrix, … }", {});
   }
   if (typeof unit !== "string") {
@@ -174,6 +174,9 @@ function readCandidate(name: string, input: MatrixInput | Candidate, n: number):
 }
 
 function checkName(what: string, name: string): void {
+  if (name === "__proto__") {
+    throw new GoodBasisError("name", `a ${what} may not be called "__proto__"; rename it`, { name });
+  }
   if (name.trim() === "") {
     throw new GoodBasisError("name", `a ${what} has an empty name; name it as its label should read`, { name });
   }

@@ -30,7 +30,7 @@ export const NOISE: number = 2 ** -43;
 export const REFUSE_ABOVE = 1;
 
 /** With no λ stated: the same ratio, λ being the smaller of 1 and spread(H0)/‖V‖; only a near-degeneracy exceeds it. */
-export const REFUSE_ABOVE_UNSTATED = 100;
+export const REFUSE_ABOVE_UNSTATED = 8;
 
 /**
  * Checks a resolution.

@@ -12,8 +12,8 @@ export interface Backbone {
   readonly reports: readonly SetReport[];
 }
 
-/** At most this many sets are compared; the audit lists all it found. */
-const SETS_COMPARED = 16;
+/** At most this many sets are compared, the largest first; the audit lists all it found. */
+const SETS_COMPARED = 256;
 
 /**
  * Picks the maximal commuting set that leaves the fewest pairs of states together; the first listed among equals.
@@ -24,7 +24,10 @@ const SETS_COMPARED = 16;
 export function chooseBackbone(problem: PreparedProblem, audit: Audit): Backbone {
   const place = new Map(problem.candidates.map((candidate, k) => [candidate.name, k]));
   const conserved = audit.candidates.flatMap((finding, k) => (finding.conserved ? [k] : []));
-  const sets = audit.sets.slice(0, SETS_COMPARED).map((names) => names.map((name) => place.get(name) as number));
+  const sets = [...audit.sets]
+    .sort((a, b) => b.length - a.length)
+    .slice(0, SETS_COMPARED)
+    .map((names) => names.map((name) => place.get(name) as number));
   const only = sets[0];
   if (sets.length <= 1) return { members: only ?? [], others: [], reports: [] };
   const tried = sets.map((members) => {

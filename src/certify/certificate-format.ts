@@ -96,7 +96,7 @@ export interface CertifiedState {
 export interface CertifiedCoupling {
   /** Name of the perturbation. */
   readonly perturbation: string;
-  /** Bound on the Frobenius norm of all off-diagonal elements. */
+  /** Bound on the 2-norm of all off-diagonal elements together. */
   readonly offDiagonal: number;
   /** Bound on the elements inside leaves of several states. */
   readonly withinLeaves: number;

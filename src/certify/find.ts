@@ -29,6 +29,8 @@ export interface FindOptions extends GuardOptions {
   readonly onProgress?: (progress: Progress) => void;
 }
 
+const OPTIONS = ["levels", "depth", "resolution", "levelWidth", "lambda", "refuseAbove", "onProgress"];
+
 const DEPTHS: readonly Depth[] = ["labels", "first order", "second order", "full"];
 
 /**
@@ -123,7 +125,7 @@ export function overall(verdicts: readonly Verdict[]): Verdict {
 }
 
 function checkOptions(options: FindOptions): StudySettings {
-  requireOptions("findGoodBasis", options);
+  requireOptions("findGoodBasis", options, OPTIONS);
   const depth = options.depth ?? "full";
   if (!DEPTHS.includes(depth)) {
     throw new GoodBasisError(

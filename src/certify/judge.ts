@@ -140,7 +140,7 @@ function levelQuestions(given: LevelCase): Question[] {
       message:
         `${node.operator} separates states of the level at ${number(level.energy)} by ${number(scale * node.gap)} at ` +
         `λ = ${number(guard.lambda)}, which its width ${number(spread)} is not far below (1/${1 / FAR_BELOW}). ` +
-        "Treat them as separate levels (a smaller levelWidth), give sharper energies, or find a label",
+        "Treat them as separate levels (a smaller levelWidth), give sharper energies, subtract a common offset from H0, or find a label",
     });
   }
   return questions;

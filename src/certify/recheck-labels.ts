@@ -132,7 +132,8 @@ function checkNumber(
   );
   const distance = Math.hypot(label.re - mean.re, label.im - mean.im);
   if (vague || !onPath) {
-    const error = 4 * (rounding + looseRounding);
+    // a sharp label is the middle of eigenvalues that were not told apart: its radius covers them
+    const error = 4 * (rounding + looseRounding) + (vague ? 0 : label.radius);
     ledger.claim(
       distance <= error,
       path,
@@ -159,7 +160,9 @@ function checkTexts(
   const family = declared ?? pickFamily(candidate, sharp, all, sharp.length === met.length);
   for (const { path, label } of met) {
     if (label.status === "not sharp") {
-      const text = `⟨${writeNumber(label.re, label.im)}⟩`;
+      // a mean far below the deviation is rounding
+      const clean = (x: number): number => (Math.abs(x) < 1e-12 * label.radius ? 0 : x);
+      const text = `⟨${writeNumber(clean(label.re), clean(label.im))}⟩`;
       ledger.claim(
         label.text === text,
         `${path}.text`,
@@ -168,7 +171,8 @@ function checkTexts(
       continue;
     }
     const member: FamilyMember | undefined = family === undefined ? undefined : onlyMember(family, label, label.radius);
-    const text = member?.text ?? writeNumber(label.re, label.im);
+    const number = writeNumber(label.re, label.im);
+    const text = member?.text ?? (family === "j" ? `eigenvalue ${number}` : number);
     const status = member === undefined ? "measured" : declared === undefined ? "proposed" : "declared";
     ledger.claim(
       label.status === status,

@@ -1,3 +1,5 @@
+import type { Verdict } from "./verdict.js";
+
 /** One claim of a certificate that does not stand. */
 export interface RecheckFinding {
   /** Where in the JSON, such as `levels[0].states[2].labels.Jz`. */
@@ -10,6 +12,8 @@ export interface RecheckFinding {
 export interface RecheckReport {
   /** Whether every claim that was checked stands. */
   readonly ok: boolean;
+  /** The verdict that the certificate claims, which may be "not good" and stand all the same. */
+  readonly verdict?: Verdict;
   /** Number of claims checked. */
   readonly checked: number;
   /** The claims that do not stand: altered sections first, then in the order of checking. */

@@ -107,7 +107,7 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
   checkCompleteness(ledger, claims, own, vectors, bench, levels);
   checkWhole(ledger, claims, own, candidates, residuals, levels);
   checkVerdict(ledger, claims);
-  return ledger.report();
+  return { ...ledger.report(), verdict: claims.verdict };
 }
 
 function requireSameNames({ n, operators }: Certificate, names: readonly string[], expected: number): void {

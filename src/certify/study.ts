@@ -116,7 +116,7 @@ interface LevelDraft {
   readonly levelStates: LevelStates;
   readonly couplings: LevelCouplings;
   readonly numbers: readonly (readonly LabelNumber[])[];
-  readonly states: readonly Omit<BasisState, "labels" | "index">[];
+  readonly states: readonly Omit<BasisState, "labels" | "index" | "vector">[];
   readonly result: Omit<LevelResult, "couplings" | "firstState">;
 }
 
@@ -182,7 +182,6 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
         };
       }),
       ...safety,
-      vector: stateVector(found, k),
     };
   });
   return {
@@ -321,7 +320,16 @@ function nameAll(
       problem.candidates.forEach((candidate, place) => {
         labels[candidate.name] = named[place]?.[index] as StateLabel;
       });
-      states.push({ index, labels, ...state });
+      const row = index - firstState;
+      states.push({
+        index,
+        labels,
+        ...state,
+        // typed arrays cannot be frozen: every reader gets a copy
+        get vector() {
+          return stateVector(draft.levelStates, row);
+        },
+      });
     }
     const name = (k: number): string => {
       const state = states[firstState + k] as BasisState;

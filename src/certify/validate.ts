@@ -340,6 +340,9 @@ function checkLevels(
           "merge them with levelWidth or give sharper energies",
       );
     }
+    if (group.some((finding) => finding.eigenvector.verdict !== "good")) {
+      remarks.push(`the level at ${short(energy)} holds columns that are no eigenvectors of H0`);
+    }
     const verdict: Verdict = worst.length > 0 ? "not good" : undecided || remarks.length > 0 ? "undecided" : "good";
     return { level: { energy, columns, verdict, largest, worst, repair: repairLevel(problem, own) }, remarks };
   });

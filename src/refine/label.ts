@@ -54,7 +54,9 @@ export function sharpLabel(family: LabelFamily, value: Complex, radius: number, 
   const member: FamilyMember | undefined =
     family.family === undefined ? undefined : onlyMember(family.family, value, radius);
   if (member === undefined) {
-    return { re: value.re, im: value.im, radius, text: numberText(value), status: "measured", role };
+    // in a column of j a bare eigenvalue would be read as j
+    const text = family.family === "j" ? `eigenvalue ${numberText(value)}` : numberText(value);
+    return { re: value.re, im: value.im, radius, text, status: "measured", role };
   }
   return {
     re: value.re,
@@ -68,7 +70,9 @@ export function sharpLabel(family: LabelFamily, value: Complex, radius: number, 
 
 /** An expectation value with its standard deviation, for a state that is no eigenvector. */
 export function vagueLabel(value: Complex, deviation: number, role: StateLabel["role"]): StateLabel {
-  return { re: value.re, im: value.im, radius: deviation, text: `⟨${numberText(value)}⟩`, status: "not sharp", role };
+  const clean = (x: number): number => (Math.abs(x) < 1e-12 * deviation ? 0 : x);
+  const text = `⟨${numberText({ re: clean(value.re), im: clean(value.im) })}⟩`;
+  return { re: value.re, im: value.im, radius: deviation, text, status: "not sharp", role };
 }
 
 /** A complex number to six digits, with the trade's minus sign. */

@@ -63,6 +63,9 @@ export function basisTable<K extends string>(
     threshold: checkThreshold(options.threshold ?? DEFAULT_THRESHOLD),
   };
   const names = options.columns ?? defaultColumns(certified);
+  if (!Array.isArray(names)) {
+    throw new GoodBasisError("option", `basisTable: columns is ${String(names)}; give a list of column names`, {});
+  }
   const filled = names.flatMap((name) => columnsFor(name, columnSource));
   checkRepeats(filled);
   const rows = levels.flatMap((level) =>

@@ -23,7 +23,8 @@ export function formatRecheck(
   const { width = 100, findings: most = 20 } = options;
   const { ok, checked, findings } = report;
   const statements = counted(checked, "statement");
-  if (ok) return `VERIFIED: all ${statements} of the certificate hold for these operators`;
+  const claim = report.verdict === undefined ? "" : `; its verdict is ${report.verdict.toUpperCase()}`;
+  if (ok) return `VERIFIED: all ${statements} of the certificate hold for these operators${claim}`;
   const lines = [`REFUSED: ${counted(findings.length, "finding")} among ${statements}`, ""];
   for (const { path, message } of findings.slice(0, most)) {
     lines.push(`  ${visible(path)}`);

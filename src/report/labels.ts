@@ -10,8 +10,10 @@ export function labelText(label: StateLabel): string {
     case "declared":
     case "proposed":
       return label.text;
-    case "measured":
-      return label.im === 0 ? supportedText(label.re, label.radius, 6) : complexText(label.re, label.im, 6);
+    case "measured": {
+      const number = label.im === 0 ? supportedText(label.re, label.radius, 6) : complexText(label.re, label.im, 6);
+      return label.text.startsWith("eigenvalue ") ? `eigenvalue ${number}` : number;
+    }
     case "not sharp": {
       const clean = (x: number): number => (Math.abs(x) < 1e-6 * label.radius ? 0 : x);
       const re = clean(label.re);

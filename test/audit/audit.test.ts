@@ -53,7 +53,7 @@ describe("auditCommutators", () => {
     expect(audit.setsComplete).toBe(true);
     expect(audit.remarks).toHaveLength(2);
     expect(audit.remarks[0]).toMatch(
-      /^T and R are both conserved but do not commute: ‖\[T, R\]‖ = 3\.46410 \(Frobenius\), bound \d/,
+      /^T and R are both conserved but do not commute: ‖\[T, R\]‖ = 3\.46410 \(Frobenius\), 2-norm at most \d/,
     );
     expect(audit.remarks[1]).toMatch(/^R and T2 are both conserved but do not commute/);
   });
@@ -86,7 +86,7 @@ describe("auditCommutators", () => {
     ]);
     expect(found.withPerturbations[1]?.norm).toBeCloseTo(Math.sqrt(8), 12);
     expect(found.reason).toMatch(
-      /^does not commute with zeeman: ‖\[J2, zeeman\]‖ = 2\.82843 \(Frobenius\), bound 1\.4e\+0, largest element 1\.414 at ⟨(1↓|0↑|0↓|−1↑)\|…\|(1↓|0↑|0↓|−1↑)⟩$/,
+      /^does not commute with zeeman: ‖\[J2, zeeman\]‖ = 2\.82843 \(Frobenius\), 2-norm at most 1\.4e\+0, largest element 1\.414 at ⟨(1↓|0↑|0↓|−1↑)\|…\|(1↓|0↑|0↓|−1↑)⟩$/,
     );
     expect(named(audit, "Lz").reason).toMatch(/^does not commute with H0: .*; does not commute with spinOrbit: /);
     expect(audit.sets).toEqual([["Jz"]]);

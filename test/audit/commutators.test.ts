@@ -256,14 +256,17 @@ describe("judgeCommutator points out a likely edge", () => {
       ),
     );
 
-  it("where every failing element touches the last kets", () => {
+  it("where every failing element lies among the last kets", () => {
     expect(judge(number(12), edged(12, 1))).toMatchObject({ verdict: "broken", edge: true });
-    expect(judge(number(12), edged(12, 5))).toMatchObject({ edge: true });
-    expect(judge(number(6), edged(6, 1)).edge).toBe(true);
+    expect(judge(number(12), edged(12, 2))).toMatchObject({ edge: true });
+    expect(judge(number(8), edged(8, 1)).edge).toBe(true);
   });
 
   it("not in a small space, not for a failure elsewhere, not where nothing is broken", () => {
-    expect(judge(number(5), edged(5, 1))).toMatchObject({ verdict: "broken", edge: false });
+    expect(judge(number(7), edged(7, 1))).toMatchObject({ verdict: "broken", edge: false });
+    // an element that reaches out of the last quarter is no edge: a mirror of a ring fails between the first and the last ket
+    expect(judge(number(12), edged(12, 5))).toMatchObject({ verdict: "broken", edge: false });
+    expect(judge(number(12), edged(12, 11))).toMatchObject({ verdict: "broken", edge: false });
     const inner = edged(12, 1).plus(
       Operator.fromTriplets(
         12,

@@ -18,7 +18,8 @@ export const recheckVerb: Verb = {
   summary: "verify a certificate against its problem",
   about:
     "Derives every claim of a certificate again from the operators, with code that shares nothing with the search. A changed\n" +
-    "number, label, vector or operator is named. Exit status 0 if every claim stands, 1 if not.",
+    "number, label, vector or operator is named. Exit status 0 if every claim stands and the\n" +
+    "certified verdict is good, 1 if not.",
   options: ["format", "out", "force"],
   examples: [
     "goodbasis recheck problem.certificate.json problem.json",
@@ -31,7 +32,7 @@ export const recheckVerb: Verb = {
     const report = recheck(certificate, loadProblem(terminal, problemPath).problem);
     const colours = terminal.colours.print && settings.out === undefined;
     deliver(terminal, settings, { text: textOf(settings, report, colours) });
-    return report.ok ? 0 : 1;
+    return report.ok && report.verdict === "good" ? 0 : 1;
   },
 };
 

@@ -1,0 +1,160 @@
+import { describe, expect, it } from "vitest";
+import { findGoodBasis, GoodBasisError, perturb, recheck, validateBasis } from "../../src/index.js";
+
+const code = (work: () => unknown): string => {
+  try {
+    work();
+  } catch (error) {
+    if (error instanceof GoodBasisError) return error.code;
+    throw error;
+  }
+  return "none";
+};
+
+describe("certificates stand up to their own re-check", () => {
+  it("with a complex V and a candidate broken near the resolution", () => {
+    for (const e of [1e-9, 1e-10, 1e-11, 1e-12, 1e-14]) {
+      for (let k = 1; k <= 40; k++) {
+        const a = k / 64;
+        const c = (41 - k) / 64;
+        const problem = {
+          h0: { diagonal: [0, 0, 1] },
+          v: {
+            re: [
+              [0, 0, a],
+              [0, 0, a + e],
+              [a, a + e, 0],
+            ],
+            im: [
+              [0, 0, c],
+              [0, 0, c],
+              [-c, -c, 0],
+            ],
+          },
+          candidates: { P: { permutation: [1, 0, 2] } },
+        };
+        const report = recheck(findGoodBasis(problem, { lambda: 0.1 }).certificate(), problem);
+        expect(report.findings).toEqual([]);
+      }
+    }
+  });
+
+  it("with labels that are nearly equal", () => {
+    const problem = {
+      h0: { diagonal: [0, 0, 1] },
+      v: [
+        [0, 0, 0.1],
+        [0, 0, 0.1],
+        [0.1, 0.1, 0],
+      ],
+      candidates: { A: { diagonal: [1, 1 + 1e-12, 1] } },
+    };
+    expect(recheck(findGoodBasis(problem).certificate(), problem).findings).toEqual([]);
+  });
+
+  it("and say which verdict they carry", () => {
+    const problem = {
+      h0: { diagonal: [0, 0] },
+      v: [
+        [0, 1],
+        [1, 0],
+      ],
+    };
+    const report = recheck(findGoodBasis(problem, { depth: "labels" }).certificate(), problem);
+    expect(report).toMatchObject({ ok: true, verdict: "not good" });
+  });
+});
+
+describe("runaway denominators without a stated λ", () => {
+  const coupled = (gap: number): { h0: { diagonal: number[] }; v: number[][] } => ({
+    h0: { diagonal: [0, gap, 1] },
+    v: [
+      [0, 0, 0.1],
+      [0, 0, 0.1],
+      [0.1, 0.1, 0],
+    ],
+  });
+
+  it("are refused where second order is wrong by all of its size", () => {
+    for (const gap of [1e-3, 1e-6, 1e-9]) {
+      const outcome = findGoodBasis(coupled(gap));
+      expect(outcome.verdict).toBe("undecided");
+      expect(outcome.levels.flatMap((level) => level.questions.map((question) => question.code))).toContain(
+        "near-degenerate",
+      );
+    }
+  });
+
+  it("are accepted once λ is stated small enough", () => {
+    const outcome = findGoodBasis(coupled(1e-3), { lambda: 1e-2 });
+    expect(outcome.verdict).toBe("good");
+  });
+});
+
+describe("what plain JavaScript may get wrong", () => {
+  const problem = { h0: { diagonal: [0, 0] }, v: { diagonal: [1, 2] } };
+
+  it("a misspelt option is named, not passed over", () => {
+    expect(code(() => findGoodBasis(problem, JSON.parse('{ "lamda": 3 }')))).toBe("option");
+  });
+
+  it("a candidate called __proto__ is refused", () => {
+    const candidates = JSON.parse('{ "__proto__": { "diagonal": [1, 2] } }');
+    expect(code(() => findGoodBasis({ ...problem, candidates }))).toBe("name");
+  });
+
+  it("a vector that was handed out can be written to without harm", () => {
+    const outcome = findGoodBasis(problem);
+    if (outcome.verdict !== "good") throw new Error(outcome.verdict);
+    const vector = outcome.basis.states[0]?.vector;
+    if (vector === undefined) throw new Error("no state");
+    vector.re[0] = 9;
+    expect(outcome.basis.states[0]?.vector.re[0]).toBe(1);
+    expect(outcome.certificate().levels[0]?.states[0]?.vector.re).toEqual([1]);
+    expect(perturb(outcome.basis, { order: 1 }).states.length).toBe(2);
+  });
+});
+
+describe("labels and levels that could mislead", () => {
+  it("an eigenvalue outside a declared family of j says that it is an eigenvalue", () => {
+    const outcome = findGoodBasis({
+      h0: { diagonal: [0, 0, 0] },
+      v: { diagonal: [1, 2, 3] },
+      candidates: { J2: { operator: { diagonal: [-1, 2, 5] }, label: "j" as const } },
+    });
+    expect(outcome.states.map((state) => state.labels.J2.text)).toEqual(["eigenvalue 5", "1", "eigenvalue −1"]);
+  });
+
+  it("a level of columns that are no eigenvectors of H0 is not called good", () => {
+    const h0 = [
+      [0, 1],
+      [1, 0],
+    ];
+    const validation = validateBasis({ h0, v: { diagonal: [0, 0] } }, [
+      [1, 0],
+      [0, 1],
+    ]);
+    expect(validation.levels.map((level) => level.verdict)).not.toContain("good");
+  });
+
+  it("more commuting sets than a few are all compared", () => {
+    // on each of five sites of three kets, two candidates that do not commute: 32 maximal sets
+    const sites = 5;
+    const n = 3 ** sites;
+    const digit = (ket: number, site: number): number => Math.floor(ket / 3 ** site) % 3;
+    const candidates: Record<string, { diagonal: number[] } | { permutation: number[] }> = {};
+    for (let site = 0; site < sites; site++) {
+      const swap = (ket: number): number => {
+        const d = digit(ket, site);
+        return d === 2 ? ket : ket + (d === 0 ? 1 : -1) * 3 ** site;
+      };
+      candidates[`w${site}`] = { permutation: Array.from({ length: n }, (_, ket) => swap(ket)) };
+      candidates[`x${site}`] = { diagonal: Array.from({ length: n }, (_, ket) => digit(ket, site)) };
+    }
+    const zero = { diagonal: new Array<number>(n).fill(0) };
+    const outcome = findGoodBasis({ h0: zero, v: zero, candidates }, { depth: "labels" });
+    expect(outcome.sets).toHaveLength(32);
+    expect(outcome.sets.find((set) => set.chosen)?.pairsTogether).toBe(0);
+    expect(outcome.verdict).toBe("good");
+  });
+});
