@@ -104,6 +104,18 @@ function levelQuestions(given: LevelCase): Question[] {
     });
   }
   const rounding = energyTolerance(problem, problem.n);
+  const strength = guard.lambda * Math.max(...problem.perturbations.map(({ operator }) => operator.norm));
+  const mixed = residual > rounding && 2 * residual > FAR_BELOW * strength && strength > 0;
+  if (mixed && couplings.nodes.some((node) => node.kind === "label")) {
+    questions.push({
+      code: "ambiguous-level",
+      level: index,
+      message:
+        `states of the level at ${number(level.energy)} are off eigenvectors of H0 by ${number(residual)}, not far below ` +
+        `λ‖V‖ = ${number(strength)}: H0 breaks a label about as strongly as V acts, and may decide the states. Use ` +
+        "candidates that H0 conserves more sharply",
+    });
+  }
   const mixedParts = resolved.parts.filter((part) => {
     const energies = sectors[part.sector]?.energies;
     if (energies === undefined) return false;

@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { findGoodBasis, GoodBasisError, perturb, recheck, validateBasis } from "../../src/index.js";
+import { findGoodBasis, GoodBasisError, Operator, perturb, recheck, validateBasis } from "../../src/index.js";
 
 const code = (work: () => unknown): string => {
   try {
@@ -88,6 +88,30 @@ describe("runaway denominators without a stated λ", () => {
   it("are accepted once λ is stated small enough", () => {
     const outcome = findGoodBasis(coupled(1e-3), { lambda: 1e-2 });
     expect(outcome.verdict).toBe("good");
+  });
+});
+
+describe("a label that H0 breaks as strongly as V acts", () => {
+  it("does not make two equal mixtures of states that H0 tells apart", () => {
+    const exact = { uncertainty: "exact" } as const;
+    const h0 = Operator.diagonal([0, 1e-12, 1], exact);
+    const v = Operator.from(
+      [
+        [0, 1e-14, 0],
+        [1e-14, 0, 0],
+        [0, 0, 1e-13],
+      ],
+      exact,
+    );
+    const swap = Operator.from(
+      [
+        [0, 1, 0],
+        [1, 0, 0],
+        [0, 0, 0],
+      ],
+      exact,
+    );
+    expect(findGoodBasis({ h0, v, candidates: { swap } }).verdict).not.toBe("good");
   });
 });
 
