@@ -271,7 +271,8 @@ function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput)
   }
   worst.sort((a, b) => b.size - a.size || a.first - b.first || a.second - b.second);
   // overlaps between parts are within the defect of the whole basis and the rounding of these vectors
-  const between = parts.size < 2 ? 0 : wholeDefect * (1 + 2 * defect) + 2 * Math.sqrt(states.length) * rowError * 1.01;
+  const between =
+    parts.size < 2 ? 0 : 2 * wholeDefect * (1 + 2 * defect) + 2 * Math.sqrt(states.length) * rowError * 1.01;
   return {
     diagonals,
     elementError,

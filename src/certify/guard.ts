@@ -52,7 +52,8 @@ export interface LevelGuard extends GuardSetting {
   readonly inside: number;
   /**
    * For each perturbation, Kato's lower bound on the radius of convergence, d/(2‖V‖) with d the level's isolation
-   * (Perturbation Theory for Linear Operators, 1966, ch. II); null where there is no other level or V is zero.
+   * (Perturbation Theory for Linear Operators, 1966, ch. II), for the level as a whole (its projection and mean energy): the
+   * series of one state may converge less far where V splits the level. Null where there is no other level or V is zero.
    */
   readonly radius: readonly (number | null)[];
 }

@@ -105,14 +105,14 @@ function levelQuestions(given: LevelCase): Question[] {
   }
   const rounding = energyTolerance(problem, problem.n);
   const strength = guard.lambda * Math.max(...problem.perturbations.map(({ operator }) => operator.norm));
-  const mixed = residual > rounding && 2 * residual > FAR_BELOW * strength && strength > 0;
+  const mixed = (residual > rounding && 2 * residual > FAR_BELOW * strength && strength > 0) || residual > 4 * rounding;
   if (mixed && couplings.nodes.some((node) => node.kind === "label")) {
     questions.push({
       code: "ambiguous-level",
       level: index,
       message:
         `states of the level at ${number(level.energy)} are off eigenvectors of H0 by ${number(residual)}, not far below ` +
-        `λ‖V‖ = ${number(strength)}: H0 breaks a label about as strongly as V acts, and may decide the states. Use ` +
+        `λ‖V‖ = ${number(strength)} or above what rounding leaves: H0 breaks a label, and may decide the states. Use ` +
         "candidates that H0 conserves more sharply",
     });
   }
@@ -142,6 +142,16 @@ function levelQuestions(given: LevelCase): Question[] {
           `the second-order operator separates states of the level at ${number(level.energy)} by ${number(node.gap)} λ², but ` +
           `their first-order shifts are equal only to within ${number(shifts)} λ: not far below at λ = ${number(guard.lambda)}. ` +
           "Give sharper entries of V, or find a label",
+      });
+    }
+    const blur = 4 * Math.max(0, ...couplings.elementError);
+    if (node.kind === "perturbation" && node.gap <= blur) {
+      questions.push({
+        code: "ambiguous-level",
+        level: index,
+        message:
+          `${node.operator} separates states of the level at ${number(level.energy)} by ${number(node.gap)} λ, within the ` +
+          `uncertainty ${number(blur)} of its elements. Give sharper entries of ${node.operator}, or find a label`,
       });
     }
     const scale = node.kind === "perturbation" ? guard.lambda : guard.lambda * guard.lambda;

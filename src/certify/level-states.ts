@@ -36,7 +36,7 @@ export interface LevelStates {
 }
 
 /** Fixing a phase costs at most three rounded operations a component, twice. */
-const PHASE_ERROR = 8 * UNIT_ROUNDOFF;
+const PHASE_ERROR = 12 * UNIT_ROUNDOFF;
 
 /**
  * Lists the states of a level and writes their vectors over the kets, with phases fixed.

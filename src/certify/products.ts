@@ -30,7 +30,7 @@ export function gramElementError(vectors: Csr): number {
 /** A row that is one ket with coefficient 1: its products are exact. */
 function single(vectors: Csr, row: number): boolean {
   const p = vectors.ptr[row] as number;
-  return (vectors.ptr[row + 1] as number) - p === 1 && vectors.re[p] === 1;
+  return (vectors.ptr[row + 1] as number) - p === 1 && vectors.re[p] === 1 && (vectors.im?.[p] ?? 0) === 0;
 }
 
 /** Up to this many rows are multiplied pair by pair; more of them through the transpose of the left factor. */

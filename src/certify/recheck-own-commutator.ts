@@ -217,6 +217,7 @@ function dyadic({ re, im }: Csr): { most: number; bits: number } {
       const x = Math.abs(part[e] as number);
       if (x > most) most = x;
       while (bits <= 60 && !Number.isInteger(x * 2 ** bits)) bits++;
+      if (bits > 60) return { most: Number.POSITIVE_INFINITY, bits };
     }
   }
   return { most, bits };

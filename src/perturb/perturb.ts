@@ -49,7 +49,9 @@ export interface Perturbation {
  * its certificate calls safe.
  *
  * E1 = ⟨μ|V|μ⟩, E2 = Σ_k |⟨k|V|μ⟩|²/(E0 − E_k), |1⟩ = Σ_k |k⟩⟨k|V|μ⟩/(E0 − E_k), k outside the level of μ
- * (Messiah, Quantum Mechanics II, ch. XVI). Each bound holds for the given matrices within their stated uncertainty.
+ * (Messiah, Quantum Mechanics II, ch. XVI). Each bound on E1 holds for the given
+ * matrices within their stated uncertainty; one on E2 for the nearby model (`study.whole.nearby`) in which V does not couple
+ * different labels and is a number on every block that only the second order tells apart.
  *
  * @param basis - `outcome.basis` of a good outcome
  * @throws GoodBasisError `not-certified` for any other object, `unsafe-order` where a state asked for is not safe at that

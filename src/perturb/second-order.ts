@@ -95,7 +95,7 @@ function solvePart(study: Study, internals: StudyInternals, place: number, numbe
     const imageNorm = rowNorms(image);
     const correctionNorm = rowNorms(correction);
     const v = operator.norm + operator.error;
-    const terms = maxRowEntries(vectors) + maxRowEntries(sector.frame) + 16;
+    const terms = maxRowEntries(vectors) + maxRowEntries(sector.frame) + own.length + 16;
     const rounding = 4 * gamma(terms);
     const residual = rowNorms(difference).map((norm, r) => {
       const x = correctionNorm[r] as number;
