@@ -5,7 +5,7 @@ import { GoodBasisError } from "../errors.js";
  * resolution against which a verdict is given.
  */
 
-/** A coupling inside a level counts as vanished when its bound is below this fraction of ‖V‖. */
+/** A coupling inside a level counts as vanished when its bound is below this fraction of `operator.norm`, √(‖V‖₁‖V‖_∞) ≥ ‖V‖₂. */
 export const DEFAULT_RESOLUTION = 1e-10;
 
 /**

@@ -47,7 +47,7 @@ export function levelLegend(study: Study): string[] {
   const radius =
     radii.length === 0
       ? ""
-      : ` Kato's bound: the series of these levels converge at least for |λ|\u00a0<\u00a0${numberText(
+      : ` Kato's bound: the series of these levels, each taken as a whole, converge at least for |λ|\u00a0<\u00a0${numberText(
           roundedDown(Math.min(...radii)),
           2,
         )}.`;
