@@ -1,16 +1,17 @@
 import { GoodBasisError } from "../errors.js";
+import type { Operator } from "../operator/operator.js";
 
 /**
  * The named thresholds of the library, in one place. All are relative; none enters a certificate except as the stated
  * resolution against which a verdict is given.
  */
 
-/** A coupling inside a level counts as vanished when its bound is below this fraction of `operator.norm`, √(‖V‖₁‖V‖_∞) ≥ ‖V‖₂. */
+/** A coupling inside a level counts as vanished when its bound is below this fraction of {@link couplingScale}. */
 export const DEFAULT_RESOLUTION = 1e-10;
 
 /**
- * A commutator counts as vanished when its bound is below this fraction of resolution · ‖A‖ ‖B‖: a label must be conserved
- * more sharply than the couplings it is to rule out, since these are the commutator divided by a difference of labels.
+ * A commutator counts as vanished when its bound is below this fraction of resolution · {@link commutatorScale}: a label must be
+ * conserved more sharply than the couplings it is to rule out, since these are the commutator divided by a difference of labels.
  */
 export const COMMUTATOR_SHARE: number = 1 / 64;
 
@@ -31,6 +32,23 @@ export const REFUSE_ABOVE = 1;
 
 /** With no λ stated: the same ratio, λ being the smaller of 1 and spread(H0)/‖V‖; only a near-degeneracy exceeds it. */
 export const REFUSE_ABOVE_UNSTATED = 8;
+
+/**
+ * What couplings by V are measured against: ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least 1/1024 of ‖V‖, lest a
+ * bare multiple of 1 be judged by its rounding; both as rigorous lower bounds.
+ */
+export function couplingScale({ variation, normAtLeast }: Operator): number {
+  return Math.max(variation, normAtLeast / 1024);
+}
+
+/**
+ * What a commutator [A, B] is measured against: the product of ‖A − tr A/n‖ and ‖B − tr B/n‖, each at least 1/16 of ‖A‖ or ‖B‖: the
+ * rounding of a commutator grows with the whole norms.
+ */
+export function commutatorScale(a: Operator, b: Operator): number {
+  const scale = ({ variation, normAtLeast }: Operator): number => Math.max(variation, normAtLeast / 16);
+  return scale(a) * scale(b);
+}
 
 /**
  * Checks a resolution.

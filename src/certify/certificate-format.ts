@@ -162,7 +162,7 @@ export interface Certificate {
   readonly unit: string;
   /** The operators it is about. */
   readonly operators: readonly CertifiedOperator[];
-  /** The fraction of √(‖V‖₁‖V‖_∞) ≥ ‖V‖₂ below which an in-level element counts as vanished. */
+  /** The fraction of ‖V − tr V/n‖ below which an in-level element counts as vanished. */
   readonly resolution: number;
   /** The verdict on all levels studied. */
   readonly verdict: Verdict;

@@ -21,7 +21,7 @@ export interface FindOptions extends GuardOptions {
    * far as the library goes. Default `"full"`.
    */
   readonly depth?: Depth;
-  /** An in-level element counts as vanished below this fraction of √(‖V‖₁‖V‖_∞) ≥ ‖V‖₂. Default 1e-10. */
+  /** An in-level element counts as vanished below this fraction of ‖V − tr V/n‖. Default 1e-10. */
   readonly resolution?: number;
   /** Energies up to this far apart, in the problem's unit, are one level; by default what rounding may leave. */
   readonly levelWidth?: number;

@@ -128,7 +128,7 @@ export interface Study<K extends string = string> {
   readonly candidates: readonly K[];
   /** Name of ket i. */
   readonly ket: (i: number) => string;
-  /** The fraction of √(‖V‖₁‖V‖_∞) ≥ ‖V‖₂ below which an in-level element counts as vanished. */
+  /** The fraction of ‖V − tr V/n‖ below which an in-level element counts as vanished. */
   readonly resolution: number;
   /** Commutators and what follows from them. */
   readonly audit: Audit;

@@ -17,6 +17,11 @@ export interface OwnCandidate {
   readonly boundWithH0: number;
 }
 
+/** ‖A − tr A/n‖, but at least 1/16 of ‖A‖, as the audit states it. */
+function commuting({ operator }: OwnOperator): number {
+  return Math.max(operator.variation, operator.normAtLeast / 16);
+}
+
 /** Checks every commutator of a certificate, and that none is missing. */
 export function checkCommutators(ledger: Ledger, certificate: Certificate, problem: OwnProblem): OwnCandidate[] {
   const { commutators, resolution } = certificate;
@@ -35,7 +40,7 @@ export function checkCommutators(ledger: Ledger, certificate: Certificate, probl
       () => `expected the commutator ${name} here, found ${claimed ? `[${claimed.left}, ${claimed.right}]` : "none"}`,
     );
     if (!there || claimed === undefined) return { own, claimed: undefined };
-    const threshold = resolution * SHARE * left.operator.norm * right.operator.norm;
+    const threshold = resolution * SHARE * (commuting(left) * commuting(right));
     checkOne(ledger, path, name, claimed, own, threshold);
     return { own, claimed };
   };

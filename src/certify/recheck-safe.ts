@@ -97,11 +97,11 @@ function isBlurred({ certificate, problem, candidates, level }: NodeCase, node: 
     level.orthonormality,
     node.gap,
   );
-  if (energyRule > resolution * problem.h0.operator.norm) return true;
+  if (energyRule > resolution * problem.h0.scale) return true;
   return node.couplings.some(
     (coupling, p) =>
       (coupling.selectionRule ?? Number.POSITIVE_INFINITY) >
-      resolution * (problem.perturbations[p]?.operator.norm ?? 0),
+      resolution * (problem.perturbations[p]?.scale ?? 0),
   );
 }
 

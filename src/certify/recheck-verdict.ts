@@ -29,7 +29,7 @@ export function checkLevelVerdict(
   problem.perturbations.forEach((v, p) => {
     const elements = own.perturbations[p];
     if (elements === undefined) return;
-    const threshold = resolution * v.operator.norm;
+    const threshold = resolution * v.scale;
     const bound = couplings.bounds[p] ?? 0;
     const { atLeast, first, second } = elements.worst;
     const sure = level.verdict === "not good" ? atLeast : atLeast - 64 * elements.looseError;
@@ -104,7 +104,7 @@ function couplingUndecided(
 ): boolean | undefined {
   let open: boolean | undefined = false;
   problem.perturbations.forEach((v, p) => {
-    const threshold = resolution * v.operator.norm;
+    const threshold = resolution * v.scale;
     const atLeast = own.perturbations[p]?.worst.atLeast ?? 0;
     if ((level.couplings[p]?.largest ?? 0) <= threshold) return;
     if (atLeast > threshold + 64 * (own.perturbations[p]?.looseError ?? 0)) return;

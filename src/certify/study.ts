@@ -1,6 +1,6 @@
 import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
-import { LABEL_WIDTH } from "../audit/resolution.js";
+import { couplingScale, LABEL_WIDTH } from "../audit/resolution.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
@@ -128,7 +128,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
   const residual = residuals.reduce((most, x) => Math.max(most, x), 0);
   const sectorOf = (part: number): SectorEvidence | undefined => whole.sectors[resolved.parts[part]?.sector ?? -1];
   const numbers = problem.candidates.map((candidate, place) => labelNumbers(candidate, place, found, sectorOf));
-  const thresholds = problem.perturbations.map(({ operator }) => settings.resolution * operator.norm);
+  const thresholds = problem.perturbations.map(({ operator }) => settings.resolution * couplingScale(operator));
   const couplings = levelCouplings({
     problem,
     findings: audit.candidates,
@@ -137,7 +137,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     residuals: numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
     thresholds,
     wholeDefect: whole.orthonormality,
-    energyThreshold: settings.resolution * problem.h0.norm,
+    energyThreshold: settings.resolution * couplingScale(problem.h0),
   });
   const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
   const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);

@@ -1,6 +1,6 @@
 import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
-import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
+import { checkResolution, couplingScale, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
@@ -255,8 +255,8 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
       candidate.kind === "hermitian"
         ? direct
         : residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, own);
-    const { norm } = candidate.operator;
-    return { candidate, own, valueAt, scale: norm, residual: direct.map((x, k) => Math.max(x, adjoint[k] as number)) };
+    const scale = couplingScale(candidate.operator);
+    return { candidate, own, valueAt, scale, residual: direct.map((x, k) => Math.max(x, adjoint[k] as number)) };
   });
   return Array.from(energies, (energy, column): ColumnFinding => {
     const residual = residuals[column] as number;
@@ -272,7 +272,7 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
       eigenvector: judge(
         residual,
         residualFloor(residual, error, energyAt(column), problem.n),
-        resolution * problem.h0.norm,
+        resolution * couplingScale(problem.h0),
       ),
       labels,
     };
@@ -321,8 +321,8 @@ function checkLevels(
       .slice(0, 10);
     const largest = inside.map((found) => found.largest);
     const undecided = inside.some((found, p) => {
-      const norm = problem.perturbations[p]?.operator.norm ?? 0;
-      return found.largest > resolution * norm;
+      const operator = problem.perturbations[p]?.operator;
+      return operator !== undefined && found.largest > resolution * couplingScale(operator);
     });
     const energy = (bottom(g) + top(g)) / 2;
     const gap = Math.min(g === 0 ? Number.POSITIVE_INFINITY : bottom(g) - top(g - 1), bottom(g + 1) - top(g));
@@ -356,7 +356,7 @@ function insideLevel(
   resolution: number,
 ): { largest: number; worst: ColumnCoupling[] } {
   const error = elementErrorBound(operator, own) * 2 * longestColumn(own) ** 2;
-  const threshold = resolution * operator.norm;
+  const threshold = resolution * couplingScale(operator);
   let largest = 0;
   const worst: ColumnCoupling[] = [];
   forEachProduct(own, images(own, operator), (r, c, re, im, common) => {

@@ -3,10 +3,11 @@ import { GoodBasisError } from "../errors.js";
 import { type Complex, imaginaryPart, realPart, type Scalar } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import type { Dense } from "../numerics/dense.js";
+import { roundDown } from "../numerics/rounding.js";
 import { findEntry, frobenius, maxRowEntries, toDense } from "../numerics/sparse.js";
 import { uncertainAdjoint, uncertainKron, uncertainScale, uncertainSum } from "./arithmetic.js";
 import { hashOf } from "./hash.js";
-import { errorBound, normBound } from "./norms.js";
+import { diagonalMean, errorBound, normBound, normFloor } from "./norms.js";
 import { isDenselyFilled, uncertainCommutator, uncertainProduct } from "./products.js";
 import { type Radius, radiiOf, type Uncertain } from "./radius.js";
 import {
@@ -53,6 +54,8 @@ export class Operator {
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
   #norm: number | undefined;
+  #normAtLeast: number | undefined;
+  #variation: number | undefined;
   #error: number | undefined;
   #frobenius: number | undefined;
   #rowEntries: number | undefined;
@@ -206,6 +209,25 @@ export class Operator {
   get norm(): number {
     this.#norm ??= normBound(this.#core.csr);
     return this.#norm;
+  }
+
+  /** A rigorous lower bound on the 2-norm of every matrix within the radii. */
+  get normAtLeast(): number {
+    this.#normAtLeast ??= this.#known(normFloor(this.csr, this.norm));
+    return this.#normAtLeast;
+  }
+
+  /**
+   * A rigorous lower bound on ‖A − tr A/n‖₂ for every matrix within the radii: how much of the operator can tell states apart, since
+   * a multiple of 1 couples nothing and commutes with everything.
+   */
+  get variation(): number {
+    if (this.#variation === undefined) {
+      const mean = diagonalMean(this.csr);
+      const centred = mean.re === 0 && mean.im === 0;
+      this.#variation = centred ? this.normAtLeast : this.#known(normFloor(this.csr, this.norm, mean));
+    }
+    return this.#variation;
   }
 
   /** A rigorous upper bound on the 2-norm of the matrix of radii. */
@@ -440,6 +462,11 @@ export class Operator {
   /** The number of connected parts. */
   get componentCount(): number {
     return this.#traits.parts.count;
+  }
+
+  /** What is left of a lower bound when the entries are anywhere within their radii. */
+  #known(floor: number): number {
+    return roundDown(Math.max(0, floor - this.error));
   }
 
   #requireSame(verb: string, other: Operator): void {
