@@ -34,11 +34,11 @@ export const REFUSE_ABOVE = 1;
 export const REFUSE_ABOVE_UNSTATED = 8;
 
 /**
- * What couplings by V are measured against: ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least 1/1024 of ‖V‖, lest a
+ * What couplings by V are measured against: ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least 1/128 of ‖V‖, lest a
  * bare multiple of 1 be judged by its rounding; both as rigorous lower bounds.
  */
 export function couplingScale({ variation, normAtLeast }: Operator): number {
-  return Math.max(variation, normAtLeast / 1024);
+  return Math.max(variation, normAtLeast / 128);
 }
 
 /**

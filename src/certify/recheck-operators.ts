@@ -10,7 +10,7 @@ export interface OwnOperator {
   readonly columns: Columns;
   /** Columns of A†; undefined where A is Hermitian. */
   readonly adjoint: Columns | undefined;
-  /** What couplings are measured against: a lower bound on ‖A − tr A/n‖, but at least 1/1024 of one on ‖A‖. */
+  /** What couplings are measured against: a lower bound on ‖A − tr A/n‖, but at least 1/128 of one on ‖A‖. */
   readonly scale: number;
   /** Upper bound on ‖A‖₂, entry uncertainties included. */
   readonly norm: number;
@@ -51,7 +51,7 @@ function ownOperator(name: string, operator: Operator, hermitian: boolean): OwnO
     operator,
     columns,
     adjoint,
-    scale: Math.max(operator.variation, operator.normAtLeast / 1024),
+    scale: Math.max(operator.variation, operator.normAtLeast / 128),
     norm: roundUp(operator.norm + operator.error),
     rounding: roundUp(scale * gamma(longest + 4)),
     looseRounding: roundUp(scale * gamma(operator.n + 4)),
