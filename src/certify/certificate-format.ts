@@ -76,6 +76,8 @@ export interface CertifiedVector {
 
 /** A state in a certificate. */
 export interface CertifiedState {
+  /** Number of its symmetry sector, over all levels. */
+  readonly sector: number;
   /** Unperturbed energy. */
   readonly energy: number;
   /** An exact eigenvalue of H0 lies within this of it. */

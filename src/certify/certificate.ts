@@ -107,6 +107,7 @@ function writeLevel(study: Study, level: LevelResult, internals: StudyInternals)
     }),
     guard: level.guard,
     states: study.states.slice(level.firstState, level.firstState + level.degeneracy).map((state) => ({
+      sector: state.sector,
       energy: state.energy,
       energyPlusMinus: state.energyPlusMinus,
       labels: state.labels,

@@ -43,6 +43,8 @@ export interface NodeEvidence {
   readonly residual: number;
   /** One bound for each perturbation. */
   readonly couplings: readonly CouplingBound[];
+  /** Bound on H0's elements between the states that part here, by the selection rule or their residuals; 0 where it is no label. */
+  readonly energyCoupling: number;
   /**
    * Whether the label is conserved sharply enough, for its gap, to stand at every order: the selection rule bounds the
    * elements of H0 and of every perturbation below the resolution. True for nodes that are no label.
@@ -100,6 +102,8 @@ export interface CouplingInput {
   readonly nodes: readonly TreeNode[];
   /** For each candidate: bounds on the residuals of each state (used where the state carries the label). */
   readonly residuals: readonly (Float64Array | undefined)[];
+  /** Bounds on ‖H0 q − E q‖ of each state. */
+  readonly energyResiduals: Float64Array;
   /** For each perturbation: elements certainly above this are listed. */
   readonly thresholds: readonly number[];
   /** Bound on ‖F F† − 1‖₂ of the whole basis. */
@@ -126,6 +130,8 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
   const { orthonormality } = inside;
   const length = Math.sqrt(1 + orthonormality);
   const found = nodesOf(states.map((state) => state.path));
+  const worstResidual = (members: readonly number[]): number =>
+    members.reduce((most, k) => Math.max(most, input.energyResiduals[k] as number), 0);
   const separating = [...found.values()].filter((entry) => entry.children.size > 1);
   const evidence = separating.map((entry): NodeEvidence => {
     const node = nodes[entry.node] as TreeNode;
@@ -167,6 +173,8 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       commutators,
       residual,
       couplings,
+      energyCoupling:
+        own === undefined ? 0 : Math.min(energyRule, roundUp(worstResidual(entry.states) * (1 + 2 * orthonormality))),
       sharp,
     };
   });

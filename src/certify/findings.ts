@@ -24,6 +24,8 @@ export interface BasisState<K extends string = string> {
   readonly index: number;
   /** Place of its level among the levels studied. */
   readonly level: number;
+  /** Number of its symmetry sector: states of different sectors differ in labels that hold for whole sectors, over all levels. */
+  readonly sector: number;
   /** Unperturbed energy ⟨μ|H0|μ⟩. */
   readonly energy: number;
   /** An exact eigenvalue of H0 lies within this of `energy`. */

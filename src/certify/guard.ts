@@ -1,21 +1,22 @@
 import type { PreparedProblem } from "../audit/problem.js";
-import { REFUSE_ABOVE, REFUSE_ABOVE_UNSTATED } from "../audit/resolution.js";
+import { LABEL_WIDTH, REFUSE_ABOVE, REFUSE_ABOVE_UNSTATED } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
+import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown } from "../numerics/rounding.js";
+import { filterEntries, findEntry, submatrix } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
-import type { Leaf, ResolvedLevel, ResolvedPart } from "../refine/resolve.js";
-import { inSpace } from "../refine/sectors.js";
+import { normBound, normFloor } from "../operator/norms.js";
+import type { ResolvedLevel, ResolvedPart } from "../refine/resolve.js";
+import { inSpace, type Sector } from "../refine/sectors.js";
 import type { PathStep, TreeNode } from "../refine/tree.js";
 import { partingNode } from "./couplings.js";
 import { pathTo } from "./level-states.js";
 
-/** The λ and the threshold that the denominators guard uses. */
+/** The λ that a caller stated, if any, and the threshold of the denominators guard. */
 export interface GuardSetting {
-  /** The λ at which ratios are taken. */
-  readonly lambda: number;
-  /** Whether the caller stated λ; otherwise it is the smaller of 1 and spread(H0)/‖V‖. */
-  readonly stated: boolean;
+  /** The λ at which ratios are taken; undefined where nobody stated one. */
+  readonly lambda: number | undefined;
   /** A ratio above this is refused. */
   readonly refuseAbove: number;
 }
@@ -32,18 +33,26 @@ export interface GuardFinding {
 export interface SectorGuard {
   /** Name of the perturbation. */
   readonly perturbation: string;
-  /** Which sector, as an index into the level's sectors. */
+  /** Number of the sector among all of the whole space. */
   readonly sector: number;
+  /** The λ of this sector's ratios: as stated, or the smaller of 1 and range(H0)/‖V‖ here, without V's blocks inside levels. */
+  readonly lambda: number;
   /** Largest ratio of V's blocks to other levels. */
   readonly first: GuardFinding;
   /** Largest ratio of the second-order operator's blocks to other levels. */
   readonly second: GuardFinding;
-  /** Null where V tells no states of this sector apart, or several perturbations are studied together. */
+  /** The largest ratio inside the level for this perturbation alone; null where it tells no states of this sector apart. */
   readonly inside: GuardFinding | null;
 }
 
 /** The denominators guard of one level. */
-export interface LevelGuard extends GuardSetting {
+export interface LevelGuard {
+  /** The λ for everything that concerns the level as a whole: as stated, or the smallest of its sectors'. */
+  readonly lambda: number;
+  /** Whether the caller stated λ. */
+  readonly stated: boolean;
+  /** A ratio above this is refused. */
+  readonly refuseAbove: number;
   /** One entry for each sector and perturbation. */
   readonly sectors: readonly SectorGuard[];
   /** Largest of all ratios over other levels. */
@@ -67,56 +76,83 @@ export interface GuardOptions {
 }
 
 /**
- * The λ and threshold for a problem: as stated, or, with no λ stated, a λ that makes V at most as strong as H0's range and a
- * threshold that only a near-degeneracy exceeds.
+ * The λ and threshold as stated; with no λ stated the threshold is one that only a near-degeneracy exceeds.
  *
  * @throws GoodBasisError `option` for a λ or threshold that is not a positive number
  */
-export function guardSetting(problem: PreparedProblem, energyRange: number, options: GuardOptions): GuardSetting {
+export function guardSetting(options: GuardOptions): GuardSetting {
   const { lambda, refuseAbove } = options;
   for (const [name, value] of Object.entries({ lambda, refuseAbove })) {
     if (value !== undefined && !(value > 0 && Number.isFinite(value))) {
       throw new GoodBasisError("option", `${name} is ${value}; give a positive number`, { [name]: value });
     }
   }
-  if (lambda !== undefined) return { lambda, stated: true, refuseAbove: refuseAbove ?? REFUSE_ABOVE };
-  const norm = Math.max(...problem.perturbations.map(({ operator }) => operator.norm));
-  const natural = norm > 0 && energyRange > 0 ? Math.min(1, energyRange / norm) : 1;
-  return { lambda: natural, stated: false, refuseAbove: refuseAbove ?? REFUSE_ABOVE_UNSTATED };
+  const threshold = lambda === undefined ? REFUSE_ABOVE_UNSTATED : REFUSE_ABOVE;
+  return { lambda, refuseAbove: refuseAbove ?? threshold };
 }
 
-/** Evaluates the guard of one level: blockwise, per sector, outside and inside the level. */
+/**
+ * The λ of one sector where nobody stated one: V, without its blocks inside levels, as strong as H0's range there, and at most V as
+ * it stands. What V does inside levels, an offset above all, brings no denominators, and neither do other sectors.
+ *
+ * @param v - the perturbation in the sector's basis
+ * @param energies - energy of each vector
+ * @param levelOf - level of each vector
+ */
+export function naturalLambda(v: Csr, energies: Float64Array, levelOf: Int32Array): number {
+  const between = filterEntries(v, (r, c) => levelOf[r] !== levelOf[c]);
+  const strength = normFloor(between, normBound(between));
+  let low = Number.POSITIVE_INFINITY;
+  let high = Number.NEGATIVE_INFINITY;
+  for (const energy of energies) {
+    low = Math.min(low, energy);
+    high = Math.max(high, energy);
+  }
+  return strength > 0 ? Math.min(1, (high - low) / strength) : 1;
+}
+
+/**
+ * Evaluates the guard of one level: blockwise, per sector, outside and inside the level.
+ *
+ * @param natural - the λ of a sector and a perturbation where none is stated, see {@link naturalLambda}
+ */
 export function levelGuard(
   problem: PreparedProblem,
+  sectors: readonly Sector[],
   resolved: ResolvedLevel,
   nodes: readonly TreeNode[],
   levelEnergies: Float64Array,
   enclosure: number,
   setting: GuardSetting,
+  natural: (sector: number, perturbation: number) => number,
 ): LevelGuard {
-  const { lambda } = setting;
-  const sectors = resolved.parts.flatMap((part, sector) =>
-    part.outward.map((outward, p): SectorGuard => {
+  const entries = resolved.parts.flatMap((part) => {
+    const insides = insideRatios(problem, sectors[part.sector] as Sector, part, nodes);
+    return part.outward.map((outward, p): SectorGuard => {
+      const lambda = setting.lambda ?? natural(part.sector, p);
       const finding = (x: { readonly ratio: number; readonly level: number }): GuardFinding => ({
         ratio: lambda * x.ratio,
         energy: x.level < 0 ? null : (levelEnergies[x.level] as number),
       });
-      const inside = part.outward.length === 1 ? insideRatio(part, outward.w, nodes) : undefined;
+      const inside = insides[p];
       return {
         perturbation: problem.perturbations[p]?.name ?? "",
-        sector,
+        sector: part.sector,
+        lambda,
         first: finding(outward.first),
         second: { ...finding(outward.second), ratio: lambda * lambda * outward.second.ratio },
         inside: inside === undefined ? null : { ratio: lambda * inside, energy: null },
       };
-    }),
-  );
+    });
+  });
   const isolation = Math.min(resolved.level.gapBelow, resolved.level.gapAbove) - 2 * enclosure;
   return {
-    ...setting,
-    sectors,
-    outside: Math.max(0, ...sectors.map((s) => Math.max(s.first.ratio, s.second.ratio))),
-    inside: Math.max(0, ...sectors.map((s) => s.inside?.ratio ?? 0)),
+    lambda: entries.reduce((least, entry) => Math.min(least, entry.lambda), setting.lambda ?? 1),
+    stated: setting.lambda !== undefined,
+    refuseAbove: setting.refuseAbove,
+    sectors: entries,
+    outside: Math.max(0, ...entries.map((s) => Math.max(s.first.ratio, s.second.ratio))),
+    inside: Math.max(0, ...entries.map((s) => s.inside?.ratio ?? 0)),
     radius: problem.perturbations.map(({ operator }) => {
       const norm = operator.norm + operator.error;
       return norm > 0 && Number.isFinite(isolation) ? roundDown(Math.max(0, isolation) / (2 * norm)) : null;
@@ -124,41 +160,57 @@ export function levelGuard(
   };
 }
 
-/** Largest |W_μν| / |E1_μ − E1_ν| over states of one sector that V tells apart; undefined if it tells none apart. */
-function insideRatio(part: ResolvedPart, w: Csr, nodes: readonly TreeNode[]): number | undefined {
+/**
+ * For each perturbation alone, the largest |W_μν| / |E1_μ − E1_ν| over states of one sector that perturbations tell apart and to which
+ * this one gives different shifts; undefined if there are none. Labels found inside the level need no denominator.
+ */
+function insideRatios(
+  problem: PreparedProblem,
+  sector: Sector,
+  part: ResolvedPart,
+  nodes: readonly TreeNode[],
+): (number | undefined)[] {
   const { leaves } = part;
-  const values = new Set(leaves.map((leaf) => firstOrder(leaf.from, nodes)).filter((e1) => e1 !== undefined));
-  if (values.size < 2) return undefined;
+  const split = leaves.some((leaf) =>
+    pathTo(leaf.from, nodes).some((step) => nodes[step.node]?.kind === "perturbation"),
+  );
+  if (!split || leaves.length < 2) return part.outward.map(() => undefined);
   const paths = leaves.map((leaf) => pathTo(leaf.from, nodes));
   const leafOf = leaves.flatMap((leaf, index) => new Array<number>(leaf.rows.rows).fill(index));
   const all = stackRows(
     leaves.map((leaf) => leaf.rows),
-    w.rows,
+    part.indices.length,
   );
-  const rotated = inSpace({ rows: all, indices: undefined }, w);
-  let ratio = 0;
-  for (let r = 0; r < rotated.rows; r++) {
-    const own = leafOf[r] as number;
-    for (let p = rotated.ptr[r] as number; p < (rotated.ptr[r + 1] as number); p++) {
-      const other = leafOf[rotated.col[p] as number] as number;
-      if (other === own) continue;
-      // only where V itself tells the two apart: a label found inside the level needs no denominator
-      const node = partingNode(paths[own] as PathStep[], paths[other] as PathStep[]);
-      if (node === undefined || nodes[node]?.kind !== "perturbation") continue;
-      const e1 = (leaf: number): number => firstOrder((leaves[leaf] as Leaf).from, nodes) ?? Number.NaN;
-      const x = rotated.re[p] as number;
-      const y = rotated.im === undefined ? 0 : (rotated.im[p] as number);
-      ratio = Math.max(ratio, Math.sqrt(x * x + y * y) / Math.abs(e1(own) - e1(other)));
+  const partedByPerturbation = (a: number, b: number): boolean => {
+    const node = partingNode(paths[a] as PathStep[], paths[b] as PathStep[]);
+    return node !== undefined && nodes[node]?.kind === "perturbation";
+  };
+  const frame = { rows: all, indices: undefined };
+  return part.outward.map(({ w }, p): number | undefined => {
+    const { operator } = problem.perturbations[p] as (typeof problem.perturbations)[number];
+    const shifts = realDiagonal(inSpace(frame, submatrix(sector.perturbations[p] as Csr, part.indices)));
+    const equal = LABEL_WIDTH * operator.norm;
+    if (Math.max(...shifts) - Math.min(...shifts) <= equal) return undefined;
+    const rotated = inSpace(frame, w);
+    let ratio = 0;
+    for (let r = 0; r < rotated.rows; r++) {
+      const own = leafOf[r] as number;
+      for (let e = rotated.ptr[r] as number; e < (rotated.ptr[r + 1] as number); e++) {
+        const c = rotated.col[e] as number;
+        const other = leafOf[c] as number;
+        const apart = Math.abs((shifts[r] as number) - (shifts[c] as number));
+        if (other === own || apart <= equal || !partedByPerturbation(own, other)) continue;
+        const size = modulus(rotated.re[e] as number, rotated.im === undefined ? 0 : (rotated.im[e] as number));
+        ratio = Math.max(ratio, size / apart);
+      }
     }
-  }
-  return ratio;
+    return ratio;
+  });
 }
 
-/** The eigenvalue at the last perturbation node on the way to a leaf. */
-function firstOrder(from: PathStep, nodes: readonly TreeNode[]): number | undefined {
-  for (let at: PathStep | undefined = from; at !== undefined; at = nodes[at.node]?.from) {
-    const node = nodes[at.node];
-    if (node?.kind === "perturbation") return node.values[at.child]?.re;
-  }
-  return undefined;
+function realDiagonal(matrix: Csr): Float64Array {
+  return Float64Array.from({ length: matrix.rows }, (_, r) => {
+    const e = findEntry(matrix, r, r);
+    return e < 0 ? 0 : (matrix.re[e] as number);
+  });
 }

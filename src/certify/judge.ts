@@ -1,3 +1,4 @@
+import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
 import { FAR_BELOW } from "../audit/resolution.js";
 import type { Depth, ResolvedLevel } from "../refine/resolve.js";
@@ -6,6 +7,8 @@ import type { TreeNode } from "../refine/tree.js";
 import type { LevelCouplings } from "./couplings.js";
 import type { Question } from "./findings.js";
 import type { LevelGuard } from "./guard.js";
+import type { LevelState } from "./level-states.js";
+import { short } from "./short.js";
 import type { Verdict } from "./verdict.js";
 
 /** Everything that the verdict on one level rests on. */
@@ -17,11 +20,16 @@ export interface LevelCase {
   readonly depth: Depth;
   readonly couplings: LevelCouplings;
   readonly guard: LevelGuard;
+  readonly findings: readonly CandidateFinding[];
+  /** The level's states, in their order. */
+  readonly states: readonly LevelState[];
   /** For each perturbation: the largest element that counts as vanished. */
   readonly thresholds: readonly number[];
   /** Largest bound on ‖H0 q − E q‖ over the level's states, and on the error of any computed energy. */
   readonly residual: number;
   readonly enclosure: number;
+  /** Bound on the sine of the angle between the computed and the exact level. */
+  readonly tilt: number;
   readonly nodes: readonly TreeNode[];
 }
 
@@ -65,7 +73,7 @@ function couplingQuestions({ problem, index, couplings, thresholds }: LevelCase)
         code: "coupling-undecided",
         level: index,
         message:
-          `in-level elements of ${name} are bounded by ${number(largest)} only, above the resolution ${number(threshold)}; ` +
+          `in-level elements of ${name} are bounded by ${short(largest)} only, above the resolution ${short(threshold)}; ` +
           "smaller entry uncertainties or a coarser resolution would decide it",
       },
     ];
@@ -99,23 +107,12 @@ function levelQuestions(given: LevelCase): Question[] {
       code: "ambiguous-level",
       level: index,
       message:
-        `the level at ${number(level.energy)} is ${number(spread)} wide and the next one only ${number(gap)} away: not far ` +
-        `below (1/${1 / FAR_BELOW}). Merge them (levelWidth above ${number(level.spread + gap)}) or give sharper energies`,
+        `the level at ${short(level.energy)} is ${short(spread)} wide and the next one only ${short(gap)} away: not far ` +
+        `below (1/${1 / FAR_BELOW}). Merge them (levelWidth above ${short(level.spread + gap)}) or give sharper energies`,
     });
   }
   const rounding = energyTolerance(problem, problem.n);
-  const strength = guard.lambda * Math.max(...problem.perturbations.map(({ operator }) => operator.norm));
-  const mixed = (residual > rounding && 2 * residual > FAR_BELOW * strength && strength > 0) || residual > 4 * rounding;
-  if (mixed && couplings.nodes.some((node) => node.kind === "label")) {
-    questions.push({
-      code: "ambiguous-level",
-      level: index,
-      message:
-        `states of the level at ${number(level.energy)} are off eigenvectors of H0 by ${number(residual)}, not far below ` +
-        `λ‖V‖ = ${number(strength)} or above what rounding leaves: H0 breaks a label, and may decide the states. Use ` +
-        "candidates that H0 conserves more sharply",
-    });
-  }
+  questions.push(...brokenLabelQuestions(given, rounding));
   const mixedParts = resolved.parts.filter((part) => {
     const energies = sectors[part.sector]?.energies;
     if (energies === undefined) return false;
@@ -128,7 +125,7 @@ function levelQuestions(given: LevelCase): Question[] {
       code: "merged-level",
       level: index,
       message:
-        `the level at ${number(level.energy)} was merged over a real spread of ${number(level.spread)} and V tells its states ` +
+        `the level at ${short(level.energy)} was merged over a real spread of ${short(level.spread)} and V tells its states ` +
         "apart, which holds only for a λ large enough; state lambda",
     });
   }
@@ -139,19 +136,19 @@ function levelQuestions(given: LevelCase): Question[] {
         code: "ambiguous-level",
         level: index,
         message:
-          `the second-order operator separates states of the level at ${number(level.energy)} by ${number(node.gap)} λ², but ` +
-          `their first-order shifts are equal only to within ${number(shifts)} λ: not far below at λ = ${number(guard.lambda)}. ` +
+          `the second-order operator separates states of the level at ${short(level.energy)} by ${short(node.gap)} λ², but ` +
+          `their first-order shifts are equal only to within ${short(shifts)} λ: not far below at λ = ${short(guard.lambda)}. ` +
           "Give sharper entries of V, or find a label",
       });
     }
-    const blur = 4 * Math.max(0, ...couplings.elementError);
+    const blur = node.kind === "perturbation" ? shiftBlur(given, node.operator) : 0;
     if (node.kind === "perturbation" && node.gap <= blur) {
       questions.push({
         code: "ambiguous-level",
         level: index,
         message:
-          `${node.operator} separates states of the level at ${number(level.energy)} by ${number(node.gap)} λ, within the ` +
-          `uncertainty ${number(blur)} of its elements. Give sharper entries of ${node.operator}, or find a label`,
+          `${node.operator} separates states of the level at ${short(level.energy)} by ${short(node.gap)} λ, within the ` +
+          `uncertainty ${short(blur)} of such differences. Give sharper entries of ${node.operator}, or find a label`,
       });
     }
     const scale = node.kind === "perturbation" ? guard.lambda : guard.lambda * guard.lambda;
@@ -160,12 +157,81 @@ function levelQuestions(given: LevelCase): Question[] {
       code: "ambiguous-level",
       level: index,
       message:
-        `${node.operator} separates states of the level at ${number(level.energy)} by ${number(scale * node.gap)} at ` +
-        `λ = ${number(guard.lambda)}, which its width ${number(spread)} is not far below (1/${1 / FAR_BELOW}). ` +
+        `${node.operator} separates states of the level at ${short(level.energy)} by ${short(scale * node.gap)} at ` +
+        `λ = ${short(guard.lambda)}, which its width ${short(spread)} is not far below (1/${1 / FAR_BELOW}). ` +
         "Treat them as separate levels (a smaller levelWidth), give sharper energies, subtract a common offset from H0, or find a label",
     });
   }
   return questions;
+}
+
+/** Uncertainty of a difference of two first-order shifts, twice over: what was dropped, evaluation, overlaps and the level's tilt. */
+function shiftBlur({ problem, couplings, tilt }: LevelCase, name: string): number {
+  const p = problem.perturbations.findIndex((v) => v.name === name);
+  const operator = problem.perturbations[p]?.operator;
+  if (operator === undefined) return 0;
+  const norm = operator.norm + operator.error;
+  return (
+    4 *
+    ((couplings.offDiagonal[p] ?? 0) + (couplings.elementError[p] ?? 0) + 2 * norm * (tilt + couplings.orthonormality))
+  );
+}
+
+/**
+ * Labels that H0 itself breaks: between the states that such a label tells apart H0 has elements of up to h. Where h is more than
+ * rounding leaves, or H0 breaks the label provably, V must tell these states apart by far more (λ|ΔE1| ≫ h), or H0 decides the states.
+ * What is within rounding counts as broken by nobody where V gives both states the same shift; η0 states it.
+ */
+function brokenLabelQuestions(given: LevelCase, rounding: number): Question[] {
+  const { problem, index, resolved, couplings, guard, findings } = given;
+  for (const node of couplings.nodes) {
+    const h = node.energyCoupling;
+    const place = problem.candidates.findIndex((candidate) => candidate.name === node.operator);
+    const provable = (findings[place]?.withH0.atLeast ?? 0) > 0;
+    if (node.kind !== "label" || h === 0 || (h <= rounding && !provable)) continue;
+    const apart = leastApart(given, node.node, h > rounding);
+    if (h <= FAR_BELOW * guard.lambda * apart && (guard.stated || h <= rounding)) continue;
+    return [
+      {
+        code: "ambiguous-level",
+        level: index,
+        message:
+          `H0 breaks ${node.operator} by up to ${short(h)} between states of the level at ${short(resolved.level.energy)}, which ` +
+          `V tells apart by ${apart === 0 ? "nothing" : `${short(guard.lambda * apart)} at λ = ${short(guard.lambda)}`}: H0, and not ` +
+          "the label, may decide the states. Use candidates that H0 conserves more sharply" +
+          (guard.stated ? "" : ", or state lambda"),
+      },
+    ];
+  }
+  return [];
+}
+
+/**
+ * Smallest difference of first-order shifts, over all perturbations, between states below different children of a node; differences
+ * within their own uncertainty count as zero, or not at all.
+ */
+function leastApart({ problem, states, couplings }: LevelCase, node: number, countZero: boolean): number {
+  const below = states.flatMap(({ path }, k) => {
+    const step = path.find((at) => at.node === node);
+    return step === undefined ? [] : [{ k, child: step.child }];
+  });
+  let least = Number.POSITIVE_INFINITY;
+  problem.perturbations.forEach((_, p) => {
+    const shifts = couplings.diagonals[p] as Float64Array;
+    const blur = 2 * (couplings.elementError[p] ?? 0);
+    const order = [...below].sort((a, b) => (shifts[a.k] as number) - (shifts[b.k] as number));
+    order.forEach((a, at) => {
+      for (let next = at + 1; next < order.length; next++) {
+        const b = order[next] as (typeof order)[number];
+        const difference = (shifts[b.k] as number) - (shifts[a.k] as number);
+        if (difference >= least) break;
+        if (b.child === a.child) continue;
+        if (difference > blur) least = difference;
+        else if (countZero) least = 0;
+      }
+    });
+  });
+  return least;
 }
 
 /** How far the first-order shifts of the block of a second-order node may differ. */
@@ -178,7 +244,7 @@ function firstOrderSpread({ couplings, nodes }: LevelCase, node: number): number
 
 function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
   const questions: Question[] = [];
-  const at = `λ = ${number(guard.lambda)}${guard.stated ? "" : " (not stated)"}`;
+  const at = `λ = ${short(guard.lambda)}${guard.stated ? "" : " (not stated)"}`;
   if (guard.outside > guard.refuseAbove) {
     const worst = guard.sectors.reduce((a, b) => (ratioOf(b) > ratioOf(a) ? b : a));
     const energy = worst.first.ratio >= worst.second.ratio ? worst.first.energy : worst.second.energy;
@@ -186,10 +252,10 @@ function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
       code: "near-degenerate",
       level: index,
       message:
-        `at ${at}, ${worst.perturbation} couples the level at ${number(resolved.level.energy)} to the one at ` +
-        `${number(energy ?? 0)} ${number(guard.outside)} times as strongly as they are apart (refused above ` +
-        `${number(guard.refuseAbove)}). Merge the two levels (levelWidth), or state a lambda below ` +
-        `${number((guard.lambda * (guard.stated ? guard.refuseAbove : 1)) / guard.outside)}`,
+        `at ${at}, ${worst.perturbation} couples the level at ${short(resolved.level.energy)} to the one at ` +
+        `${short(energy ?? 0)} ${short(guard.outside)} times as strongly as they are apart (refused above ` +
+        `${short(guard.refuseAbove)}). Merge the two levels (levelWidth), or state a lambda below ` +
+        `${short((guard.lambda * (guard.stated ? guard.refuseAbove : 1)) / guard.outside)}`,
     });
   }
   if (guard.stated && guard.inside > guard.refuseAbove) {
@@ -197,8 +263,8 @@ function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
       code: "strong-mixing",
       level: index,
       message:
-        `at ${at}, the second-order operator couples states of the level at ${number(resolved.level.energy)} ` +
-        `${number(guard.inside)} times as strongly as V tells them apart (refused above ${number(guard.refuseAbove)}). ` +
+        `at ${at}, the second-order operator couples states of the level at ${short(resolved.level.energy)} ` +
+        `${short(guard.inside)} times as strongly as V tells them apart (refused above ${short(guard.refuseAbove)}). ` +
         "Find a label that tells them apart, or state a smaller lambda",
     });
   }
@@ -207,8 +273,4 @@ function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
 
 function ratioOf(sector: LevelGuard["sectors"][number]): number {
   return Math.max(sector.first.ratio, sector.second.ratio);
-}
-
-function number(x: number): string {
-  return String(Number(x.toPrecision(4))).replace("-", "−");
 }

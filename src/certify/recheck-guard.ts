@@ -1,10 +1,10 @@
 import type { Certificate, CertifiedLevel } from "./certificate-format.js";
 import { smallerGap } from "./recheck-bounds.js";
-import type { Sector } from "./recheck-intermediate.js";
 import type { OwnLevel } from "./recheck-level.js";
 import type { OwnProblem } from "./recheck-operators.js";
 import { type OwnPart, type OwnRatios, ratiosOf } from "./recheck-ratios.js";
 import type { Ledger } from "./recheck-report.js";
+import type { Sector } from "./recheck-sectors.js";
 
 /** Checks the denominators guard of one level: that it agrees with itself and, with all levels at hand, with an own evaluation. */
 export function checkGuard(
@@ -20,66 +20,67 @@ export function checkGuard(
   if (sectors === undefined) return;
   const path = `levels[${l}].guard`;
   const { guard } = level;
-  checkLambda(ledger, certificate, problem, level, path);
   const ratios = ratiosOf(certificate, problem, l, own, sectors);
   checkSeconds(ledger, level, l, ratios);
-  problem.perturbations.forEach((v, p) => {
-    const open = ratios.parts.filter((part) => part.perturbation === p);
-    const matched = guard.sectors.filter((claimed) => claimed.perturbation === v.name);
-    const { slack } = ratios;
-    const agree = (a: number, b: number): boolean => Math.abs(a - b) <= slack + ratios.relative * Math.max(a, b);
-    const most = (list: readonly { first: number; second: number }[]): number =>
-      list.reduce((a, x) => Math.max(a, x.first, x.second), 0);
-    if (matched.length !== open.length) {
-      const claimed = most(matched.map((x) => ({ first: x.first.ratio, second: x.second.ratio })));
-      ledger.claim(
-        claimed >= most(open) * (1 - ratios.relative) - slack,
-        `${path}.outside`,
-        () => `claimed ${claimed} for ${v.name}, found ${most(open)}`,
-      );
-      return;
+  const found = new Map(ratios.parts.map((part) => [`${part.sector} ${part.perturbation}`, part]));
+  guard.sectors.forEach((claimed, k) => {
+    const at = `${path}.sectors[${k}]`;
+    const p = problem.perturbations.findIndex((v) => v.name === claimed.perturbation);
+    const part = found.get(`${claimed.sector} ${p}`);
+    const there = ledger.claim(
+      part !== undefined,
+      `${at}.sector`,
+      () => `no state of this level is in sector ${claimed.sector}, or it is listed twice`,
+    );
+    if (!there || part === undefined) return;
+    found.delete(`${claimed.sector} ${p}`);
+    if (!guard.stated) {
+      const slack = 1e-6 * part.natural + (ratios.relative - 1e-6) * part.natural;
+      ledger.near(`${at}.lambda`, "λ, which nobody stated,", claimed.lambda, part.natural, slack);
     }
-    guard.sectors.forEach((claimed, k) => {
-      if (claimed.perturbation !== v.name) return;
-      const alike = (part: OwnPart): boolean =>
-        agree(part.first, claimed.first.ratio) && agree(part.second, claimed.second.ratio);
-      const reaches = (side: GuardClaim, own: ReadonlyMap<number, number>): boolean =>
-        isWith(certificate, side, own, ratios);
-      const best = open.findIndex(
-        (part) => alike(part) && reaches(claimed.first, part.firstTo) && reaches(claimed.second, part.secondTo),
-      );
-      const at = best < 0 ? open.findIndex(alike) : best;
-      const part = open[at];
-      ledger.claim(
-        part !== undefined,
-        `${path}.sectors[${k}]`,
-        () =>
-          `${v.name} is claimed to reach ${claimed.first.ratio} at first and ${claimed.second.ratio} at second order; ` +
-          `found ${open.map((x) => `${x.first} and ${x.second}`).join(", ") || "nothing left"}`,
-      );
-      if (part === undefined) return;
-      open.splice(at, 1);
-      for (const [side, own] of [
-        ["first", part.firstTo],
-        ["second", part.secondTo],
-      ] as const) {
-        const { ratio, energy } = claimed[side];
-        ledger.claim(
-          reaches(claimed[side], own),
-          `${path}.sectors[${k}].${side}.energy`,
-          () => `the ratio ${ratio} is claimed to be with the level at ${energy}, which does not have it`,
-        );
-      }
-    });
+    checkPart(ledger, certificate, claimed, part, ratios, at);
   });
-  if (ratios.inside !== undefined) {
-    const { inside } = ratios;
+  ledger.claim(
+    found.size === 0,
+    `${path}.sectors`,
+    () => `nothing is said of ${[...found.values()].map((part) => `sector ${part.sector}`).join(", ")}`,
+  );
+}
+
+/** The ratios of one sector and perturbation. */
+function checkPart(
+  ledger: Ledger,
+  certificate: Certificate,
+  claimed: CertifiedLevel["guard"]["sectors"][number],
+  part: OwnPart,
+  ratios: OwnRatios,
+  at: string,
+): void {
+  const { lambda } = claimed;
+  const slack = ratios.slack(lambda);
+  for (const [side, own, to, factor] of [
+    ["first", part.first, part.firstTo, lambda],
+    ["second", part.second, part.secondTo, lambda * lambda],
+  ] as const) {
+    const { ratio } = claimed[side];
+    const expected = factor * own;
     ledger.claim(
-      guard.inside >= inside * (1 - ratios.relative) - ratios.insideSlack,
-      `${path}.inside`,
-      () => `claimed ${guard.inside}, found ${inside}`,
+      Math.abs(ratio - expected) <= slack + ratios.relative * Math.max(ratio, expected),
+      `${at}.${side}.ratio`,
+      () => `claimed ${ratio}, found ${expected}`,
+    );
+    ledger.claim(
+      isWith(certificate, claimed[side], to, factor, slack, ratios.relative),
+      `${at}.${side}.energy`,
+      () => `the ratio ${ratio} is claimed to be with the level at ${claimed[side].energy}, which does not have it`,
     );
   }
+  const inside = claimed.inside?.ratio ?? 0;
+  ledger.claim(
+    inside >= lambda * (part.inside * (1 - ratios.relative) - part.insideSlack),
+    `${at}.inside`,
+    () => `claimed ${inside}, found ${lambda * part.inside}`,
+  );
 }
 
 type GuardClaim = CertifiedLevel["guard"]["sectors"][number]["first"];
@@ -89,11 +90,13 @@ function isWith(
   certificate: Certificate,
   { energy, ratio }: GuardClaim,
   own: ReadonlyMap<number, number>,
-  { slack, relative }: OwnRatios,
+  factor: number,
+  slack: number,
+  relative: number,
 ): boolean {
-  const place = certificate.levels.findIndex((level) => level.energy === energy);
   if (energy === null) return true;
-  return place >= 0 && (ratio <= slack || (own.get(place) ?? 0) >= ratio * (1 - 1e-3 - relative) - slack);
+  const place = certificate.levels.findIndex((level) => level.energy === energy);
+  return place >= 0 && (ratio <= slack || factor * (own.get(place) ?? 0) >= ratio * (1 - 1e-3 - relative) - slack);
 }
 
 function checkItself(
@@ -117,16 +120,33 @@ function checkItself(
   );
   const other = certificate.levels[0]?.guard ?? guard;
   ledger.claim(
-    guard.lambda === other.lambda && guard.stated === other.stated && guard.refuseAbove === other.refuseAbove,
+    guard.stated === other.stated &&
+      guard.refuseAbove === other.refuseAbove &&
+      (!guard.stated || guard.lambda === other.lambda),
     path,
-    () => "λ, whether it was stated, and the threshold are the same for all levels of one certificate",
+    () => "a stated λ, whether it was stated, and the threshold are the same for all levels of one certificate",
+  );
+  const smallest = guard.sectors.reduce(
+    (least, sector) => Math.min(least, sector.lambda),
+    guard.stated ? guard.lambda : 1,
+  );
+  ledger.claim(
+    guard.lambda === smallest &&
+      guard.sectors.every((s) => s.lambda > 0 && (!guard.stated || s.lambda === guard.lambda)),
+    `${path}.lambda`,
+    () => `claimed ${guard.lambda}; its sectors make it ${smallest}`,
   );
   const names = problem.perturbations.map((v) => v.name);
   guard.sectors.forEach((sector, k) => {
     ledger.claim(
-      sector.perturbation === names[k % names.length] && sector.sector === Math.floor(k / names.length),
+      sector.perturbation === names[k % names.length],
       `${path}.sectors[${k}]`,
-      () => `expected sector ${Math.floor(k / names.length)} with ${names[k % names.length]} here`,
+      () => `expected ${names[k % names.length]} here`,
+    );
+    ledger.claim(
+      level.states.some((state) => state.sector === sector.sector),
+      `${path}.sectors[${k}].sector`,
+      () => `no state of this level is in sector ${sector.sector}`,
     );
     for (const side of ["first", "second"] as const) {
       const { ratio, energy } = sector[side];
@@ -137,9 +157,9 @@ function checkItself(
       );
     }
     ledger.claim(
-      sector.inside === null || (names.length === 1 && sector.inside.energy === null),
+      sector.inside === null || sector.inside.energy === null,
       `${path}.sectors[${k}].inside`,
-      () => "a ratio inside the level has no other level, and needs a single perturbation",
+      () => "a ratio inside the level is with no other level",
     );
   });
   ledger.claim(
@@ -173,21 +193,6 @@ function checkItself(
       () => `the series is claimed to converge within ${claimed}; isolation and ‖V‖ give ${radius ?? "no limit"}`,
     );
   });
-}
-
-/** With no λ stated it makes the strongest V as large as H0's range, and at most 1. */
-function checkLambda(
-  ledger: Ledger,
-  { levels }: Certificate,
-  problem: OwnProblem,
-  { guard }: CertifiedLevel,
-  path: string,
-): void {
-  if (guard.stated) return;
-  const norm = problem.perturbations.reduce((most, v) => Math.max(most, v.operator.norm), 0);
-  const range = (levels[levels.length - 1]?.energy ?? 0) - (levels[0]?.energy ?? 0);
-  const lambda = norm > 0 && range > 0 ? Math.min(1, range / norm) : 1;
-  ledger.near(`${path}.lambda`, "λ, which nobody stated,", guard.lambda, lambda, 1e-9 * lambda);
 }
 
 /** Values of second-order nodes against the own operator. */

@@ -1,12 +1,24 @@
 import type { Certificate } from "./certificate-format.js";
 import { smallerGap } from "./recheck-bounds.js";
-import type { Sector } from "./recheck-intermediate.js";
+import type { Sector } from "./recheck-sectors.js";
+import { partingPlace } from "./recheck-tree.js";
+
+/** Shifts closer than this fraction of ‖V‖ do not tell two states apart, as the refinement states it. */
+const SHIFT_WIDTH = 2 ** -36;
+
 import type { OwnLevel } from "./recheck-level.js";
 import type { OwnProblem } from "./recheck-operators.js";
 
-/** Ratios of one perturbation and one group of equal labels, at the guard's λ. */
+/** Ratios of one perturbation in one sector, at the λ that the certificate states for them. */
 export interface OwnPart {
   readonly perturbation: number;
+  /** Number of the sector. */
+  readonly sector: number;
+  /** The λ where nobody stated one. */
+  readonly natural: number;
+  /** Largest |W_μν|/|E1_μ − E1_ν| for this perturbation alone, without λ; 0 where there is none. */
+  readonly inside: number;
+  readonly insideSlack: number;
   readonly first: number;
   readonly second: number;
   /** The ratio with each other level, by place. */
@@ -17,12 +29,10 @@ export interface OwnPart {
 /** The own denominators guard of one level, and its second-order values. */
 export interface OwnRatios {
   readonly parts: readonly OwnPart[];
-  /** Largest λ|W_μν|/|E1_μ − E1_ν| between states that V tells apart; undefined with several perturbations. */
-  readonly inside: number | undefined;
   /** ⟨W⟩ of each state; empty with several perturbations. */
   readonly second: readonly number[];
-  readonly slack: number;
-  readonly insideSlack: number;
+  /** Absolute uncertainty of a ratio at λ. */
+  readonly slack: (lambda: number) => number;
   readonly secondSlack: number;
   /** Relative difference that the width of the levels explains. */
   readonly relative: number;
@@ -38,42 +48,56 @@ export function ratiosOf(
   own: OwnLevel,
   sectors: readonly Sector[],
 ): OwnRatios {
-  const work = new Work(certificate, l, own);
   const single = problem.perturbations.length === 1;
   const size = certificate.levels[l]?.states.length ?? 0;
   const second: number[] = single ? new Array<number>(size).fill(0) : [];
-  let inside = single ? 0 : undefined;
-  let smallest = Number.POSITIVE_INFINITY;
-  for (const sector of sectors) {
-    if (!sector.members.some((s) => work.levelOf(s) === l)) continue;
-    problem.perturbations.forEach((_, p) => {
-      const w = work.reach(sector, p);
-      if (!single || inside === undefined) return;
-      for (const [mu, row] of w) {
-        second[mu] = row.get(mu)?.re ?? 0;
-        for (const [nu, z] of row) {
-          const difference = work.firstOrder(mu) - work.firstOrder(nu);
-          if (!work.partedByV(mu, nu) || difference === 0) continue;
-          smallest = Math.min(smallest, Math.abs(difference));
-          inside = Math.max(inside, (work.lambda * Math.hypot(z.re, z.im)) / Math.abs(difference));
-        }
-      }
-    });
-  }
   const norm = problem.perturbations.reduce((most, v) => Math.max(most, v.norm), 0);
   const level = certificate.levels[l];
   const gap = level === undefined ? 1 : smallerGap(level);
+  const weight = gap === Number.POSITIVE_INFINITY ? 0 : (norm * norm) / gap;
+  const parts: OwnPart[] = [];
+  const work = new Work(certificate, l, own);
+  for (const sector of sectors) {
+    if (!sector.members.some((s) => work.levelOf(s) === l)) continue;
+    problem.perturbations.forEach((v, p) => {
+      const reach = work.reach(sector, p);
+      const equal = SHIFT_WIDTH * v.operator.norm;
+      let inside = 0;
+      let smallest = Number.POSITIVE_INFINITY;
+      for (const [mu, row] of reach.w) {
+        if (single) second[mu] = row.get(mu)?.re ?? 0;
+        for (const [nu, z] of row) {
+          const difference = Math.abs(work.firstOrder(mu, p) - work.firstOrder(nu, p));
+          // differences next to the limit may be taken either way
+          if (difference <= 2 * equal || !work.partedByPerturbation(mu, nu)) continue;
+          smallest = Math.min(smallest, difference);
+          inside = Math.max(inside, Math.hypot(z.re, z.im) / difference);
+        }
+      }
+      const most = (map: ReadonlyMap<number, number>): number => Math.max(0, ...map.values());
+      parts.push({
+        perturbation: p,
+        sector: sector.number,
+        natural: work.naturalLambda(sector, p),
+        inside,
+        insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : (1e-11 * weight) / smallest,
+        first: most(reach.firstTo),
+        second: most(reach.secondTo),
+        firstTo: reach.firstTo,
+        secondTo: reach.secondTo,
+      });
+    });
+  }
   const noise = 1e-11 * norm;
   const width = certificate.levels.reduce((most, x) => Math.max(most, x.spread), 0);
-  const x = (work.lambda * norm) / gap;
-  const weight = gap === Number.POSITIVE_INFINITY ? 0 : (norm * norm) / gap;
   return {
-    parts: work.parts(),
-    inside,
+    parts,
     second,
     relative: Math.min(1, 1e-6 + (16 * width) / gap),
-    slack: gap === Number.POSITIVE_INFINITY ? 0 : work.lambda * (noise / gap) + 1e-11 * x * x,
-    insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : (work.lambda * 1e-11 * weight) / smallest,
+    slack: (lambda) => {
+      const x = (lambda * norm) / gap;
+      return gap === Number.POSITIVE_INFINITY ? 0 : lambda * (noise / gap) + 1e-11 * x * x;
+    },
     secondSlack: (1e-9 + (8 * width) / gap) * weight,
   };
 }
@@ -81,6 +105,16 @@ export function ratiosOf(
 interface Complex {
   readonly re: number;
   readonly im: number;
+}
+
+/** What one perturbation does in one sector, seen from one level; ratios without λ. */
+interface Reach {
+  /** ‖P_k V P_n‖_F/|E_k − E_n| for every other level k. */
+  readonly firstTo: ReadonlyMap<number, number>;
+  /** ‖P_k W P_n‖_F/|E_k − E_n|. */
+  readonly secondTo: ReadonlyMap<number, number>;
+  /** W between states of the level, by place within the level. */
+  readonly w: ReadonlyMap<number, ReadonlyMap<number, Complex>>;
 }
 
 /** The arithmetic of one level. */
@@ -91,9 +125,6 @@ class Work {
   readonly #level: number[] = [];
   readonly #energies: number[] = [];
   readonly #first: number;
-  readonly #firstSquares = new Map<string, Map<number, number>>();
-  readonly #secondSquares = new Map<string, Map<number, number>>();
-  readonly lambda: number;
 
   constructor(certificate: Certificate, l: number, own: OwnLevel) {
     this.#certificate = certificate;
@@ -106,47 +137,67 @@ class Work {
       }
     });
     this.#first = this.#level.indexOf(l);
-    this.lambda = certificate.levels[l]?.guard.lambda ?? 1;
   }
 
   levelOf(s: number): number {
     return this.#level[s] as number;
   }
 
-  firstOrder(state: number): number {
-    return this.#own.perturbations[0]?.diagonal[state] ?? 0;
+  firstOrder(state: number, p: number): number {
+    return this.#own.perturbations[p]?.diagonal[state] ?? 0;
   }
 
-  partedByV(a: number, b: number): boolean {
-    const p = this.#own.tree.paths[a] ?? [];
-    const q = this.#own.tree.paths[b] ?? [];
-    for (let k = 0; k < Math.min(p.length, q.length); k += 2) {
-      if (p[k] !== q[k]) return false;
-      if (p[k + 1] === q[k + 1]) continue;
-      return this.#certificate.levels[this.#l]?.nodes[p[k] as number]?.kind === "perturbation";
-    }
-    return false;
+  partedByPerturbation(a: number, b: number): boolean {
+    const node = partingPlace(this.#own.tree, a, b);
+    return this.#certificate.levels[this.#l]?.nodes[node]?.kind === "perturbation";
   }
 
-  /** Adds a sector's share; returns W between its states of the level, by place within the level. */
-  reach(sector: Sector, p: number): Map<number, Map<number, Complex>> {
+  /** V outside the blocks of the levels as strong as H0's range in the sector; at most 1. */
+  naturalLambda({ members, re, im }: Sector, p: number): number {
+    const d = members.length;
+    const vr = re[p] as Float64Array;
+    const vi = im[p] as Float64Array;
+    const rows: number[] = [];
+    const columns: number[] = [];
+    const x: number[] = [];
+    const y: number[] = [];
+    let low = Number.POSITIVE_INFINITY;
+    let high = Number.NEGATIVE_INFINITY;
+    members.forEach((s, i) => {
+      low = Math.min(low, this.#energies[s] as number);
+      high = Math.max(high, this.#energies[s] as number);
+      members.forEach((t, j) => {
+        const k = i * d + j;
+        if (this.#level[s] === this.#level[t] || (vr[k] === 0 && vi[k] === 0)) return;
+        rows.push(i);
+        columns.push(j);
+        x.push(vr[k] as number);
+        y.push(vi[k] as number);
+      });
+    });
+    const between = strengthOf(d, rows, columns, x, y);
+    return between > 0 ? Math.min(1, (high - low) / between) : 1;
+  }
+
+  /** What a sector's states of the level reach. */
+  reach(sector: Sector, p: number): Reach {
     const { members } = sector;
     const d = members.length;
     const vr = sector.re[p] as Float64Array;
     const vi = sector.im[p] as Float64Array;
     const energy = this.#certificate.levels[this.#l]?.energy ?? 0;
     const outside = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [] : [k]));
-    const out = new Map<number, Map<number, Complex>>();
+    const w = new Map<number, Map<number, Complex>>();
+    const first = new Map<number, number>();
+    const second = new Map<number, number>();
     const zr = new Float64Array(d);
     const zi = new Float64Array(d);
     members.forEach((s, j) => {
       if (this.levelOf(s) !== this.#l) return;
-      const state = s - this.#first;
-      const key = `${p} ${this.#own.tree.labelGroup[state]}`;
       for (const k of outside) {
         const x = vr[k * d + j] as number;
         const y = vi[k * d + j] as number;
-        this.#add(this.#firstSquares, key, members[k] as number, x * x + y * y);
+        this.#add(first, members[k] as number, x * x + y * y);
         const weight = 1 / (energy - (this.#energies[members[k] as number] as number));
         zr[k] = x * weight;
         zi[k] = y * weight;
@@ -163,43 +214,58 @@ class Work {
         }
         const to = members[i] as number;
         if (this.levelOf(to) === this.#l) row.set(to - this.#first, { re, im });
-        else this.#add(this.#secondSquares, key, to, re * re + im * im);
+        else this.#add(second, to, re * re + im * im);
       }
-      out.set(state, row);
+      w.set(s - this.#first, row);
     });
-    return out;
+    return { firstTo: this.#ratios(first), secondTo: this.#ratios(second), w };
   }
 
-  #add(squares: Map<string, Map<number, number>>, key: string, s: number, square: number): void {
-    const own = squares.get(key) ?? new Map<number, number>();
-    squares.set(key, own);
+  #add(squares: Map<number, number>, s: number, square: number): void {
     const level = this.levelOf(s);
-    own.set(level, (own.get(level) ?? 0) + square);
+    squares.set(level, (squares.get(level) ?? 0) + square);
   }
 
-  /** The ratios of every perturbation and group of labels. */
-  parts(): OwnPart[] {
-    const perturbations = this.#own.perturbations.length;
-    const parts: OwnPart[] = [];
-    for (let p = 0; p < perturbations; p++) {
-      for (let g = 0; g < this.#own.tree.labelGroups; g++) {
-        const key = `${p} ${g}`;
-        const firstTo = this.#ratios(this.#firstSquares.get(key), this.lambda);
-        const secondTo = this.#ratios(this.#secondSquares.get(key), this.lambda ** 2);
-        const most = (map: ReadonlyMap<number, number>): number => Math.max(0, ...map.values());
-        parts.push({ perturbation: p, first: most(firstTo), second: most(secondTo), firstTo, secondTo });
-      }
-    }
-    return parts;
-  }
-
-  #ratios(squares: ReadonlyMap<number, number> | undefined, factor: number): Map<number, number> {
+  #ratios(squares: ReadonlyMap<number, number>): Map<number, number> {
     const energy = this.#certificate.levels[this.#l]?.energy ?? 0;
     const out = new Map<number, number>();
-    for (const [level, square] of squares ?? []) {
+    for (const [level, square] of squares) {
       const other = this.#certificate.levels[level]?.energy ?? 0;
-      out.set(level, (factor * Math.sqrt(square)) / Math.abs(other - energy));
+      out.set(level, Math.sqrt(square) / Math.abs(other - energy));
     }
     return out;
   }
+}
+
+/** A lower bound on the norm of a Hermitian matrix: of its largest row r, or of one step of the power method from it. */
+function strengthOf(
+  n: number,
+  rows: readonly number[],
+  columns: readonly number[],
+  re: readonly number[],
+  im: readonly number[],
+): number {
+  const squares = new Float64Array(n);
+  rows.forEach((r, e) => {
+    squares[r] = (squares[r] as number) + (re[e] as number) ** 2 + (im[e] as number) ** 2;
+  });
+  const most = squares.reduce((a, b) => Math.max(a, b), 0);
+  if (most === 0) return 0;
+  const heaviest = squares.indexOf(most);
+  const xr = new Float64Array(n);
+  const xi = new Float64Array(n);
+  const yr = new Float64Array(n);
+  const yi = new Float64Array(n);
+  rows.forEach((r, e) => {
+    if (r !== heaviest) return;
+    xr[columns[e] as number] = re[e] as number;
+    xi[columns[e] as number] = -(im[e] as number);
+  });
+  rows.forEach((r, e) => {
+    const c = columns[e] as number;
+    yr[r] = (yr[r] as number) + (re[e] as number) * (xr[c] as number) - (im[e] as number) * (xi[c] as number);
+    yi[r] = (yi[r] as number) + (re[e] as number) * (xi[c] as number) + (im[e] as number) * (xr[c] as number);
+  });
+  const image = yr.reduce((sum, y, r) => sum + y * y + (yi[r] as number) ** 2, 0);
+  return Math.max(Math.sqrt(most), Math.sqrt(image / most));
 }

@@ -191,8 +191,9 @@ function readBound(item: Reader): CertifiedBound {
 }
 
 function readState(item: Reader, n: number): CertifiedState {
-  item.only(["energy", "energyPlusMinus", "labels", "shifts", "safe", "limitedBy", "vector"]);
+  item.only(["sector", "energy", "energyPlusMinus", "labels", "shifts", "safe", "limitedBy", "vector"]);
   return {
+    sector: item.field("sector").count(0),
     energy: item.field("energy").number(),
     energyPlusMinus: item.field("energyPlusMinus").bound(),
     labels: item.field("labels").record(readLabel),

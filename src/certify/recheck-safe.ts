@@ -100,8 +100,7 @@ function isBlurred({ certificate, problem, candidates, level }: NodeCase, node: 
   if (energyRule > resolution * problem.h0.scale) return true;
   return node.couplings.some(
     (coupling, p) =>
-      (coupling.selectionRule ?? Number.POSITIVE_INFINITY) >
-      resolution * (problem.perturbations[p]?.scale ?? 0),
+      (coupling.selectionRule ?? Number.POSITIVE_INFINITY) > resolution * (problem.perturbations[p]?.scale ?? 0),
   );
 }
 

@@ -7,6 +7,7 @@ import type { OwnLevel } from "./recheck-level.js";
 import { type OwnProblem, productRounding } from "./recheck-operators.js";
 import type { OwnCommutator } from "./recheck-own-commutator.js";
 import type { Ledger } from "./recheck-report.js";
+import { smallestApart } from "./recheck-sectors.js";
 
 /** A level merged over more than this fraction of ‖H0‖ has other vectors than the energies were found with. */
 const MERGED = 2 ** -40;
@@ -136,22 +137,4 @@ function modelDistance(
     }
   });
   return { low, high };
-}
-
-/** Smallest distance above `width` between two of the points; both coordinates sorted into clusters first. */
-function smallestApart(points: readonly (readonly [number, number])[], width: number): number {
-  const distinct = [...new Map(points.map((point) => [`${point[0]} ${point[1]}`, point])).values()].sort(
-    (a, b) => a[0] - b[0],
-  );
-  let least = Number.POSITIVE_INFINITY;
-  for (let k = 0; k < distinct.length; k++) {
-    for (let j = k + 1; j < distinct.length; j++) {
-      const a = distinct[k] as readonly [number, number];
-      const b = distinct[j] as readonly [number, number];
-      if (b[0] - a[0] > least) break;
-      const distance = Math.hypot(a[0] - b[0], a[1] - b[1]);
-      if (distance > width) least = Math.min(least, distance);
-    }
-  }
-  return least;
 }

@@ -5,7 +5,6 @@ import { checkBounds } from "./recheck-bounds.js";
 import { checkCommutators } from "./recheck-commutators.js";
 import { checkCompleteness, isWhole } from "./recheck-complete.js";
 import { checkGuard } from "./recheck-guard.js";
-import { gatherSectors } from "./recheck-intermediate.js";
 import { checkLabels } from "./recheck-labels.js";
 import { evaluateLevel } from "./recheck-level.js";
 import { checkNodes, leak, type NodeCase } from "./recheck-nodes.js";
@@ -13,6 +12,7 @@ import { ownProblem } from "./recheck-operators.js";
 import { readCertificate } from "./recheck-read.js";
 import { Ledger, type RecheckReport } from "./recheck-report.js";
 import { checkSafeOrders } from "./recheck-safe.js";
+import { checkSectors } from "./recheck-sectors.js";
 import { rebuildTree } from "./recheck-tree.js";
 import { Bench, gatherVectors } from "./recheck-vectors.js";
 import { checkLevelVerdict, checkVerdict } from "./recheck-verdict.js";
@@ -82,7 +82,7 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
   const trees = claims.levels.map((level, l) => rebuildTree(ledger, `levels[${l}]`, level));
   const all = isWhole(claims);
   const residuals = checkLabels(ledger, claims, prepared, own, candidates, vectors, bench, trees, all);
-  const sectors = all ? gatherSectors(claims, own, candidates, vectors, bench) : undefined;
+  const sectors = all ? checkSectors(ledger, claims, own, candidates, residuals, vectors, bench) : undefined;
   const levels = claims.levels.map((level, l) => {
     const tree = trees[l] as (typeof trees)[number];
     const evaluated = evaluateLevel(own, vectors, bench, level, l, tree);
@@ -101,7 +101,7 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
     checkBounds(ledger, claims, own, level, l, evaluated, leaks);
     checkSafeOrders(ledger, given);
     checkGuard(ledger, claims, own, level, l, evaluated, sectors);
-    checkLevelVerdict(ledger, claims, own, level, l, evaluated, couplings);
+    checkLevelVerdict(ledger, given, couplings);
     return evaluated;
   });
   checkCompleteness(ledger, claims, own, vectors, bench, levels);

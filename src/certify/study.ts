@@ -1,6 +1,7 @@
 import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
 import { couplingScale, LABEL_WIDTH } from "../audit/resolution.js";
+import type { Csr } from "../numerics/csr.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
@@ -11,7 +12,7 @@ import { type Backbone, chooseBackbone } from "./backbone.js";
 import { type LevelCouplings, levelCouplings, type NodeEvidence, partingNode } from "./couplings.js";
 import { describeState } from "./describe.js";
 import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
-import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
+import { type GuardOptions, type GuardSetting, guardSetting, levelGuard, naturalLambda } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
 import { rootOfSquares, rootSumSquares } from "./residuals.js";
@@ -67,7 +68,8 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
   const width = settings.levelWidth ?? energyTolerance(problem, problem.n);
   const levels = formLevels(sectors.sectors, width, settings.levels);
   const whole = wholeEvidence(problem, audit, sectors, tree.nodes);
-  const guard = guardSetting(problem, energyRange(levels), settings);
+  const guard = guardSetting(settings);
+  const natural = naturalLambdas(sectors, levels);
   const resolved: ResolvedLevel[] = [];
   const drafts: LevelDraft[] = [];
   levels.studied.forEach((level, index) => {
@@ -75,7 +77,11 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
     const refined = resolveLevel(problem, sectors.sectors, levels, level, backbone.others, settings.depth, tree);
     resolved.push(refined);
     drafts.push(
-      proveLevel({ problem, settings, audit, sectors, levels, whole, guard, nodes: tree.nodes }, refined, index),
+      proveLevel(
+        { problem, settings, audit, sectors, levels, whole, guard, natural, nodes: tree.nodes },
+        refined,
+        index,
+      ),
     );
   });
   report("levels", levels.studied.length, levels.studied.length);
@@ -94,9 +100,16 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
   };
 }
 
-/** Distance between the lowest and the highest level. */
-function energyRange({ energies }: Levels): number {
-  return (energies[energies.length - 1] ?? 0) - (energies[0] ?? 0);
+/** The λ of every sector and perturbation where none is stated, found when first asked for. */
+function naturalLambdas({ sectors }: Sectors, levels: Levels): Setting["natural"] {
+  const known = new Map<string, number>();
+  return (sector, p) => {
+    const key = `${sector} ${p}`;
+    const { perturbations, energies } = sectors[sector] as Sector;
+    const found = known.get(key) ?? naturalLambda(perturbations[p] as Csr, energies, levels.of[sector] as Int32Array);
+    known.set(key, found);
+    return found;
+  };
 }
 
 interface Setting {
@@ -107,6 +120,7 @@ interface Setting {
   readonly levels: Levels;
   readonly whole: WholeEvidence;
   readonly guard: GuardSetting;
+  readonly natural: (sector: number, perturbation: number) => number;
   readonly nodes: readonly TreeNode[];
 }
 
@@ -121,7 +135,7 @@ interface LevelDraft {
 }
 
 function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): LevelDraft {
-  const { problem, settings, audit, sectors, levels, whole, guard, nodes } = given;
+  const { problem, settings, audit, sectors, levels, whole, guard, natural, nodes } = given;
   const { level } = resolved;
   const found = levelStates(problem, resolved, sectors.sectors, nodes);
   const { energies, residuals } = stateEnergies(resolved, found, sectors, whole, problem);
@@ -135,13 +149,23 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     level: found,
     nodes,
     residuals: numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
+    energyResiduals: residuals,
     thresholds,
     wholeDefect: whole.orthonormality,
     energyThreshold: settings.resolution * couplingScale(problem.h0),
   });
   const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
   const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);
-  const ratios = levelGuard(problem, resolved, nodes, levels.energies, whole.energyEnclosure, guard);
+  const ratios = levelGuard(
+    problem,
+    sectors.sectors,
+    resolved,
+    nodes,
+    levels.energies,
+    whole.energyEnclosure,
+    guard,
+    natural,
+  );
   const { verdict, questions } = judgeLevel({
     problem,
     index,
@@ -150,8 +174,11 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     depth: settings.depth,
     couplings,
     guard: ratios,
+    findings: audit.candidates,
+    states: found.states,
     thresholds,
     residual,
+    tilt,
     enclosure: whole.energyEnclosure,
     nodes,
   });
@@ -164,6 +191,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     );
     return {
       level: index,
+      sector: resolved.parts[state.part]?.sector ?? 0,
       energy: energies[k] as number,
       energyPlusMinus: roundUp((residuals[k] as number) * (1 + 2 * couplings.orthonormality)),
       shifts: problem.perturbations.map(({ name, operator }, p): Shift => {

@@ -10,12 +10,14 @@ import { adjointImages, images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import { energyTolerance } from "../refine/sectors.js";
 import { type BasisColumns, readColumns } from "./columns.js";
+import { denominatorRemarks } from "./denominators.js";
 import { overall } from "./find.js";
 import { type GuardOptions, guardSetting } from "./guard.js";
 import { checkLevelWidth, requireOptions } from "./options.js";
 import { elementErrorBound, forEachProduct, gramDefect, gramElementError } from "./products.js";
 import { type Repair, repairLevel } from "./repair.js";
 import { imageError, residualBounds, rowProduct } from "./residuals.js";
+import { short } from "./short.js";
 import type { Verdict } from "./verdict.js";
 
 /** A label that somebody claims for a column: an eigenvalue, or a quantum number as text ("3/2", "-1"). */
@@ -141,7 +143,14 @@ export function validateBasis<K extends string>(
     ...orthonormalityRemarks(orthonormality),
     ...columnRemarks(found),
     ...levels.flatMap((level) => level.remarks),
-    ...(complete ? denominatorRemarks(prepared, vectors, levels, options) : []),
+    ...(complete
+      ? denominatorRemarks(
+          prepared,
+          vectors,
+          levels.map(({ level }) => level),
+          guardSetting(options),
+        )
+      : []),
   ];
   const verdicts: Verdict[] = [
     orthonormality.verdict,
@@ -372,48 +381,6 @@ function insideLevel(
   return { largest, worst: worst.slice(0, 10) };
 }
 
-/** The blockwise denominators guard between the levels of a complete basis. */
-function denominatorRemarks(
-  problem: PreparedProblem,
-  vectors: Csr,
-  levels: readonly JudgedLevel[],
-  options: GuardOptions,
-): string[] {
-  const energies = levels.map(({ level }) => level.energy);
-  const setting = guardSetting(problem, (energies.at(-1) ?? 0) - (energies[0] ?? 0), options);
-  const levelOf = new Int32Array(vectors.rows);
-  levels.forEach(({ level }, l) => {
-    for (const column of level.columns) levelOf[column] = l;
-  });
-  return problem.perturbations.flatMap(({ name, operator }) => {
-    const squares = new Map<number, number>();
-    forEachProduct(vectors, images(vectors, operator), (r, c, re, im) => {
-      const a = levelOf[r] as number;
-      const b = levelOf[c] as number;
-      if (a === b) return;
-      const key = Math.min(a, b) * levels.length + Math.max(a, b);
-      squares.set(key, (squares.get(key) ?? 0) + re * re + im * im);
-    });
-    let worst = 0;
-    let pair: readonly [number, number] = [0, 0];
-    for (const [key, square] of squares) {
-      const a = Math.floor(key / levels.length);
-      const b = key % levels.length;
-      const ratio = (setting.lambda * Math.sqrt(square)) / Math.abs((energies[a] as number) - (energies[b] as number));
-      if (ratio > worst) {
-        worst = ratio;
-        pair = [a, b];
-      }
-    }
-    if (worst <= setting.refuseAbove) return [];
-    return [
-      `at λ = ${short(setting.lambda)}${setting.stated ? "" : " (not stated)"}, ${name} couples the levels at ` +
-        `${short(energies[pair[0]] as number)} and ${short(energies[pair[1]] as number)} ${short(worst)} times as strongly ` +
-        "as they are apart; merge them with levelWidth or state a smaller lambda",
-    ];
-  });
-}
-
 function orthonormalityRemarks({ verdict, worst, size }: Validation["orthonormality"]): string[] {
   if (verdict === "good") return [];
   const [a, b] = worst;
@@ -437,8 +404,4 @@ function columnRemarks(found: readonly ColumnFinding[]): string[] {
         : [`column ${column} does not carry the label claimed for ${name}: ‖A q − a q‖ ≤ ${short(checked.atMost)}`],
     ),
   ]);
-}
-
-function short(x: number): string {
-  return String(Number(roundUp(Math.abs(x), 0).toPrecision(4)) * Math.sign(x)).replace("-", "−");
 }

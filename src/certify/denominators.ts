@@ -1,0 +1,129 @@
+import type { PreparedProblem } from "../audit/problem.js";
+import type { Csr } from "../numerics/csr.js";
+import { fromTriplets } from "../numerics/sparse.js";
+import { images } from "../operator/images.js";
+import type { Operator } from "../operator/operator.js";
+import { type GuardSetting, naturalLambda } from "./guard.js";
+import { elementErrorBound, forEachProduct } from "./products.js";
+import { short } from "./short.js";
+
+/** A level of a basis that somebody brings. */
+interface ColumnLevel {
+  readonly energy: number;
+  readonly columns: readonly number[];
+}
+
+/** The largest ratio found so far: columns of one part, between two levels. */
+interface Worst {
+  readonly ratio: number;
+  readonly lambda: number;
+  readonly levels: readonly [number, number];
+}
+
+/**
+ * The blockwise denominators guard between the levels of a complete basis, ‖P_k V P_n‖_F/|E_k − E_n|, one sentence for each
+ * perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts of their own, as
+ * symmetry sectors are; each has its own λ where none is stated.
+ */
+export function denominatorRemarks(
+  problem: PreparedProblem,
+  vectors: Csr,
+  levels: readonly ColumnLevel[],
+  setting: GuardSetting,
+): string[] {
+  const levelOf = new Int32Array(vectors.rows);
+  levels.forEach(({ columns }, l) => {
+    for (const column of columns) levelOf[column] = l;
+  });
+  return problem.perturbations.flatMap(({ name, operator }) => {
+    let worst: Worst = { ratio: 0, lambda: 0, levels: [0, 0] };
+    for (const part of partsOf(operator, vectors)) {
+      const found = largestRatio(part, levels, levelOf, setting);
+      if (found.ratio > worst.ratio) worst = found;
+    }
+    if (worst.ratio <= setting.refuseAbove) return [];
+    const energy = (l: number): string => short(levels[l]?.energy ?? 0);
+    return [
+      `at λ = ${short(worst.lambda)}${setting.lambda === undefined ? " (not stated)" : ""}, ${name} couples the levels at ` +
+        `${energy(worst.levels[0])} and ${energy(worst.levels[1])} ${short(worst.ratio)} times as strongly as they are apart; ` +
+        "merge them with levelWidth or state a smaller lambda",
+    ];
+  });
+}
+
+/** Columns that a perturbation connects, and its elements between them. */
+interface Part {
+  readonly columns: readonly number[];
+  readonly v: Csr;
+}
+
+/** The perturbation between the columns, taken apart into what it connects; elements within their own error do not connect. */
+function partsOf(operator: Operator, vectors: Csr): Part[] {
+  const error = elementErrorBound(operator, vectors);
+  const root = Int32Array.from({ length: vectors.rows }, (_, k) => k);
+  const find = (k: number): number => {
+    let at = k;
+    while (root[at] !== at) {
+      root[at] = root[root[at] as number] as number;
+      at = root[at] as number;
+    }
+    return at;
+  };
+  const elements: Element[] = [];
+  forEachProduct(vectors, images(vectors, operator), (r, c, re, im) => {
+    if (Math.hypot(re, im) <= error) return;
+    elements.push([r, c, re, im]);
+    root[find(r)] = find(c);
+  });
+  const members = new Map<number, number[]>();
+  const place = Int32Array.from({ length: vectors.rows }, (_, k) => {
+    const list = members.get(find(k));
+    if (list === undefined) members.set(find(k), [k]);
+    else list.push(k);
+    return (list?.length ?? 1) - 1;
+  });
+  const own = new Map<number, Element[]>();
+  for (const [r, c, re, im] of elements) {
+    const list = own.get(find(r)) ?? [];
+    own.set(find(r), list);
+    const [i, j] = [place[r] as number, place[c] as number];
+    list.push([i, j, re, im]);
+    if (i !== j) list.push([j, i, re, -im]);
+  }
+  return [...members].map(([key, columns]): Part => ({ columns, v: matrixOf(columns.length, own.get(key) ?? []) }));
+}
+
+/** Row, column, real and imaginary part. */
+type Element = readonly [number, number, number, number];
+
+function matrixOf(size: number, elements: readonly Element[]): Csr {
+  const part = (k: 0 | 1 | 2 | 3): number[] => elements.map((element) => element[k]);
+  return fromTriplets(size, size, part(0), part(1), part(2), part(3));
+}
+
+function largestRatio(
+  { columns, v }: Part,
+  levels: readonly ColumnLevel[],
+  levelOf: Int32Array,
+  setting: GuardSetting,
+): Worst {
+  const own = Int32Array.from(columns, (column) => levelOf[column] as number);
+  const energyOf = (l: number): number => levels[l]?.energy ?? 0;
+  const lambda = setting.lambda ?? naturalLambda(v, Float64Array.from(own, energyOf), own);
+  const squares = new Map<number, number>();
+  for (let r = 0; r < v.rows; r++) {
+    for (let e = v.ptr[r] as number; e < (v.ptr[r + 1] as number); e++) {
+      const [a, b] = [own[r] as number, own[v.col[e] as number] as number];
+      if (a >= b) continue;
+      const square = (v.re[e] as number) ** 2 + (v.im === undefined ? 0 : (v.im[e] as number) ** 2);
+      squares.set(a * levels.length + b, (squares.get(a * levels.length + b) ?? 0) + square);
+    }
+  }
+  let worst: Worst = { ratio: 0, lambda, levels: [0, 0] };
+  for (const [key, square] of squares) {
+    const pair = [Math.floor(key / levels.length), key % levels.length] as const;
+    const ratio = (lambda * Math.sqrt(square)) / Math.abs(energyOf(pair[0]) - energyOf(pair[1]));
+    if (ratio > worst.ratio) worst = { ratio, lambda, levels: pair };
+  }
+  return worst;
+}
