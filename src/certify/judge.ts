@@ -130,7 +130,7 @@ function levelQuestions(given: LevelCase): Question[] {
     });
   }
   for (const node of splitting) {
-    const shifts = firstOrderSpread(given, node.node);
+    const shifts = shiftSpread(couplings, given.nodes, node.node);
     if (node.kind === "second order" && shifts > FAR_BELOW * guard.lambda * node.gap) {
       questions.push({
         code: "ambiguous-level",
@@ -235,7 +235,7 @@ function leastApart({ problem, states, couplings }: LevelCase, node: number, cou
 }
 
 /** How far the first-order shifts of the block of a second-order node may differ. */
-function firstOrderSpread({ couplings, nodes }: LevelCase, node: number): number {
+export function shiftSpread(couplings: LevelCouplings, nodes: readonly TreeNode[], node: number): number {
   const from = nodes[node]?.from;
   const parent = from === undefined ? undefined : nodes[from.node];
   if (from === undefined || parent?.kind !== "perturbation") return 0;
@@ -244,7 +244,7 @@ function firstOrderSpread({ couplings, nodes }: LevelCase, node: number): number
 
 function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
   const questions: Question[] = [];
-  const at = `λ = ${short(guard.lambda)}${guard.stated ? "" : " (not stated)"}`;
+  const at = (lambda: number): string => `λ = ${short(lambda)}${guard.stated ? "" : " (not stated)"}`;
   if (guard.outside > guard.refuseAbove) {
     const worst = guard.sectors.reduce((a, b) => (ratioOf(b) > ratioOf(a) ? b : a));
     const energy = worst.first.ratio >= worst.second.ratio ? worst.first.energy : worst.second.energy;
@@ -252,10 +252,10 @@ function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
       code: "near-degenerate",
       level: index,
       message:
-        `at ${at}, ${worst.perturbation} couples the level at ${short(resolved.level.energy)} to the one at ` +
+        `at ${at(worst.lambda)}, ${worst.perturbation} couples the level at ${short(resolved.level.energy)} to the one at ` +
         `${short(energy ?? 0)} ${short(guard.outside)} times as strongly as they are apart (refused above ` +
         `${short(guard.refuseAbove)}). Merge the two levels (levelWidth), or state a lambda below ` +
-        `${short((guard.lambda * (guard.stated ? guard.refuseAbove : 1)) / guard.outside)}`,
+        `${short((worst.lambda * (guard.stated ? guard.refuseAbove : 1)) / guard.outside)}`,
     });
   }
   if (guard.stated && guard.inside > guard.refuseAbove) {
@@ -263,7 +263,7 @@ function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
       code: "strong-mixing",
       level: index,
       message:
-        `at ${at}, the second-order operator couples states of the level at ${short(resolved.level.energy)} ` +
+        `at ${at(guard.lambda)}, the second-order operator couples states of the level at ${short(resolved.level.energy)} ` +
         `${short(guard.inside)} times as strongly as V tells them apart (refused above ${short(guard.refuseAbove)}). ` +
         "Find a label that tells them apart, or state a smaller lambda",
     });

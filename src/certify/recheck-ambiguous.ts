@@ -1,4 +1,4 @@
-import type { CertifiedLevel, CertifiedNode } from "./certificate-format.js";
+import type { CertifiedNode } from "./certificate-format.js";
 import { smallerGap } from "./recheck-bounds.js";
 import type { OwnLevel } from "./recheck-level.js";
 import { type NodeCase, selectionRule } from "./recheck-nodes.js";

@@ -111,7 +111,7 @@ interface Complex {
 interface Reach {
   /** ‖P_k V P_n‖_F/|E_k − E_n| for every other level k. */
   readonly firstTo: ReadonlyMap<number, number>;
-  /** ‖P_k W P_n‖_F/|E_k − E_n|. */
+  /** ‖P_k (V − v) R V P_n‖_F/|E_k − E_n|, v the level's mean shift in the sector. */
   readonly secondTo: ReadonlyMap<number, number>;
   /** W between states of the level, by place within the level. */
   readonly w: ReadonlyMap<number, ReadonlyMap<number, Complex>>;
@@ -186,6 +186,8 @@ class Work {
     const vr = sector.re[p] as Float64Array;
     const vi = sector.im[p] as Float64Array;
     const energy = this.#certificate.levels[this.#l]?.energy ?? 0;
+    const inside = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [k] : []));
+    const shift = inside.reduce((sum, k) => sum + (vr[k * d + k] as number), 0) / inside.length;
     const outside = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [] : [k]));
     const w = new Map<number, Map<number, Complex>>();
     const first = new Map<number, number>();
@@ -214,7 +216,12 @@ class Work {
         }
         const to = members[i] as number;
         if (this.levelOf(to) === this.#l) row.set(to - this.#first, { re, im });
-        else this.#add(second, to, re * re + im * im);
+        else {
+          // the level's mean shift v taken off: (V − v) R V, which no offset of V changes
+          re -= shift * (zr[i] as number);
+          im -= shift * (zi[i] as number);
+          this.#add(second, to, re * re + im * im);
+        }
       }
       w.set(s - this.#first, row);
     });

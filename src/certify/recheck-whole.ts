@@ -51,22 +51,19 @@ export function checkWhole(
     () => `claimed to be at most ${whole.orthonormality}, but an overlap inside a level is off by ${seen}`,
   );
   ledger.claim(whole.orthonormality < 0.5, "whole.orthonormality", () => `claimed ${whole.orthonormality}: no basis`);
-  const eta = (
-    path: string,
-    norm: number,
-    of: (c: OwnCandidate) => OwnCommutator | undefined,
-    element: number,
-  ): void => {
-    const claimed = path === "whole.eta0" ? whole.eta0 : (whole.eta[Number(path.slice("whole.eta[".length, -1))] ?? 0);
+  const eta = (p: number, norm: number, of: (c: OwnCandidate) => OwnCommutator | undefined, element: number): void => {
+    const path = p < 0 ? "whole.eta0" : `whole.eta[${p}]`;
+    const claimed = p < 0 ? whole.eta0 : (whole.eta[p] ?? 0);
     const { low, high } = modelDistance(certificate, problem, candidates, residuals, norm, of);
+    const uneven = p < 0 ? { low: 0, high: 0 } : unevenness(certificate, own, p);
     const everywhere = isWhole(certificate) || candidates.every((candidate) => candidate.role !== "conserved");
-    const least = Math.max(everywhere ? low : 0, 2 * norm * whole.orthonormality);
+    const least = Math.max(everywhere ? low : 0, 2 * norm * whole.orthonormality) + uneven.low;
     ledger.bound(
       path,
       "the distance to an exactly symmetric model",
       claimed,
       least,
-      everywhere ? high : Number.POSITIVE_INFINITY,
+      everywhere ? high + uneven.high : Number.POSITIVE_INFINITY,
     );
     ledger.claim(
       claimed >= element,
@@ -74,7 +71,7 @@ export function checkWhole(
       () => `claimed to be at most ${claimed}, but an element between different labels alone is ${element}`,
     );
   };
-  eta("whole.eta0", h0.norm, (c) => c.withH0, 0);
+  eta(-1, h0.norm, (c) => c.withH0, 0);
   const counted = ledger.claim(
     whole.eta.length === problem.perturbations.length,
     "whole.eta",
@@ -90,8 +87,27 @@ export function checkWhole(
         element = Math.max(element, (elements.atNode[place] as number) - elements.looseError);
       });
     });
-    eta(`whole.eta[${p}]`, v.norm, (c) => c.withPerturbations[p], element);
+    eta(p, v.norm, (c) => c.withPerturbations[p], element);
   });
+}
+
+/** How far V is from scalar on the blocks that the second-order operator refines: spread of the shifts, and what is off the diagonal. */
+function unevenness({ levels }: Certificate, own: readonly OwnLevel[], p: number): { low: number; high: number } {
+  let low = 0;
+  let high = 0;
+  levels.forEach((level, l) => {
+    const elements = own[l]?.perturbations[p];
+    const blocks = level.nodes.filter((node) => node.kind === "second order");
+    if (blocks.length === 0 || elements === undefined) return;
+    const off = level.couplings[p]?.offDiagonal ?? 0;
+    for (const node of blocks) {
+      const shifts = node.states.flat().map((state) => elements.diagonal[state] ?? 0);
+      const range = Math.max(...shifts) - Math.min(...shifts);
+      low = Math.max(low, off);
+      high = Math.max(high, off + 2 * range + 8 * elements.looseError);
+    }
+  });
+  return { low, high };
 }
 
 /**

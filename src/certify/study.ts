@@ -15,11 +15,12 @@ import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.
 import { type GuardOptions, type GuardSetting, guardSetting, levelGuard, naturalLambda } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
+import { nearbyModel } from "./nearby.js";
 import { rootOfSquares, rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
 import type { Shift } from "./verdict.js";
-import { type SectorEvidence, type WholeEvidence, wholeEvidence } from "./whole.js";
+import { type SectorEvidence, type SpaceEvidence, type WholeEvidence, wholeEvidence } from "./whole.js";
 
 /** A step of the work, for a progress display. */
 export interface Progress {
@@ -67,7 +68,7 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
   const sectors = buildSectors(problem, backbone.members, backbone.others, tree);
   const width = settings.levelWidth ?? energyTolerance(problem, problem.n);
   const levels = formLevels(sectors.sectors, width, settings.levels);
-  const whole = wholeEvidence(problem, audit, sectors, tree.nodes);
+  const whole = wholeEvidence(problem, sectors, tree.nodes);
   const guard = guardSetting(settings);
   const natural = naturalLambdas(sectors, levels);
   const resolved: ResolvedLevel[] = [];
@@ -92,7 +93,16 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
     nodes: tree.nodes,
     sectors,
     levels,
-    whole,
+    whole: {
+      ...whole,
+      nearby: nearbyModel(
+        problem,
+        audit,
+        whole,
+        drafts.map((draft) => draft.couplings),
+        tree.nodes,
+      ),
+    },
     resolved,
     levelStates: drafts.map((draft) => draft.levelStates),
     results,
@@ -118,7 +128,7 @@ interface Setting {
   readonly audit: Audit;
   readonly sectors: Sectors;
   readonly levels: Levels;
-  readonly whole: WholeEvidence;
+  readonly whole: SpaceEvidence;
   readonly guard: GuardSetting;
   readonly natural: (sector: number, perturbation: number) => number;
   readonly nodes: readonly TreeNode[];
@@ -263,7 +273,7 @@ function stateEnergies(
   resolved: ResolvedLevel,
   found: LevelStates,
   { sectors }: Sectors,
-  whole: WholeEvidence,
+  whole: SpaceEvidence,
   { h0 }: PreparedProblem,
 ): { energies: Float64Array; residuals: Float64Array } {
   const energies = new Float64Array(found.states.length);

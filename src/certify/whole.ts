@@ -1,5 +1,3 @@
-import type { Audit, CandidateFinding } from "../audit/audit.js";
-import type { CommutatorFinding } from "../audit/commutators.js";
 import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Complex } from "../numerics/complex.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
@@ -20,7 +18,7 @@ export interface SeparatorEvidence {
 
 /**
  * The distance to the nearest exactly symmetric model: H0' and V' that commute with every label used, with
- * ‖H0 − H0'‖ ≤ eta0 and ‖V − V'‖ ≤ eta for each perturbation.
+ * ‖H0 − H0'‖ ≤ eta0 and ‖V − V'‖ ≤ eta for each perturbation, and in which V is scalar where the second order tells states apart.
  */
 export interface NearbyModel {
   /** Bound on ‖H0 − H0'‖. */
@@ -30,7 +28,7 @@ export interface NearbyModel {
 }
 
 /** What holds for the whole space, before any level is looked at. */
-export interface WholeEvidence {
+export interface SpaceEvidence {
   /** Bound on ‖F F† − 1‖₂ for the basis of all sectors. */
   readonly orthonormality: number;
   /** Bound on the Frobenius norm of all residuals H0 q − E q. */
@@ -39,10 +37,14 @@ export interface WholeEvidence {
   readonly energyEnclosure: number;
   /** The candidates that label the basis. */
   readonly separators: readonly SeparatorEvidence[];
-  /** Distance to the nearest exactly symmetric model. */
-  readonly nearby: NearbyModel;
   /** Bounds sector by sector. */
   readonly sectors: readonly SectorEvidence[];
+}
+
+/** What holds for the whole space. */
+export interface WholeEvidence extends SpaceEvidence {
+  /** Distance to the nearest exactly symmetric model. */
+  readonly nearby: NearbyModel;
 }
 
 /** What holds for the vectors of one sector. */
@@ -58,17 +60,8 @@ export interface SectorEvidence {
  *
  * *Energies.* With U the unitary polar factor of F, ‖F − U‖ ≤ ‖FF† − 1‖ = ε, and H0 U† − U†Λ is within the residuals plus
  * 2‖H0‖ε, so by Weyl's inequality every eigenvalue is within that of its computed partner.
- *
- * *The nearby model.* Dropping V's elements between blocks of different labels gives V' that commutes with the labels. For
- * the pairs that A tells apart, (a_μ − a_ν) V_μν = q_μ†C q_ν − s_μ†V q_ν + q_μ†V r_ν with C = [A, V], so the dropped part
- * has Frobenius norm at most (‖C‖_F + 2‖V‖ρ)/gap, ρ the Frobenius norm of all residuals; several labels add.
  */
-export function wholeEvidence(
-  problem: PreparedProblem,
-  audit: Audit,
-  sectors: Sectors,
-  nodes: readonly TreeNode[],
-): WholeEvidence {
+export function wholeEvidence(problem: PreparedProblem, sectors: Sectors, nodes: readonly TreeNode[]): SpaceEvidence {
   const { h0 } = problem;
   const error = imageError(h0);
   const epsilon = sectors.defect;
@@ -102,7 +95,6 @@ export function wholeEvidence(
     energyResidual,
     energyEnclosure: roundUp(energyResidual * (1 + epsilon) + 2 * h0.norm * epsilon + h0.error),
     separators,
-    nearby: nearbyModel(problem, audit, separators, epsilon),
     sectors: evidence,
   };
 }
@@ -149,29 +141,4 @@ export function smallestGap(values: readonly Complex[]): number {
     for (const b of values.slice(0, k)) gap = Math.min(gap, Math.hypot(a.re - b.re, a.im - b.im));
   });
   return gap;
-}
-
-function nearbyModel(
-  problem: PreparedProblem,
-  audit: Audit,
-  separators: readonly SeparatorEvidence[],
-  epsilon: number,
-): NearbyModel {
-  const distance = (norm: number, commutator: (finding: CandidateFinding) => CommutatorFinding | undefined): number => {
-    let sum = 0;
-    for (const { candidate, gap, residual } of separators) {
-      if (gap === Number.POSITIVE_INFINITY) continue;
-      const finding = audit.candidates[candidate];
-      const bound = finding === undefined ? undefined : commutator(finding)?.frobeniusBound;
-      if (bound === undefined) continue;
-      sum += (bound * (1 + epsilon) + 2 * norm * residual) / gap;
-    }
-    return roundUp(sum + 2 * norm * epsilon, 4 * separators.length + 8);
-  };
-  return {
-    eta0: distance(problem.h0.norm + problem.h0.error, (finding) => finding.withH0),
-    eta: problem.perturbations.map(({ operator }, k) =>
-      distance(operator.norm + operator.error, (finding) => finding.withPerturbations[k]),
-    ),
-  };
 }

@@ -1,5 +1,5 @@
 import type { Csr } from "../numerics/csr.js";
-import { adjoint, multiply } from "../numerics/sparse.js";
+import { adjoint, findEntry, multiply } from "../numerics/sparse.js";
 import type { LevelPart } from "./levels.js";
 import type { Sector } from "./sectors.js";
 
@@ -19,7 +19,7 @@ export interface SecondOrder {
   readonly scale: number;
   /** Blockwise over the other levels of the sector: ‖P_k V P_n‖ / |E_k − E_n|. */
   readonly first: GuardRatio;
-  /** Blockwise: ‖P_k W P_n‖ / |E_k − E_n|. */
+  /** Blockwise: ‖P_k (V − v) R V P_n‖ / |E_k − E_n|, v the mean first-order shift of the level here: an offset of V changes nothing. */
   readonly second: GuardRatio;
 }
 
@@ -50,7 +50,7 @@ export function secondOrder(
     w: out.bare.rows === 1 ? scalarProduct(out) : multiply(out.scaled, adjoint(out.bare)),
     scale: out.scale,
     first: firstGuard(out, levelOf, energy, levelEnergies, squares),
-    second: secondGuard(out, v, levelOf, level, energy, levelEnergies, squares),
+    second: secondGuard(out, v, meanShift(v, part), levelOf, level, energy, levelEnergies, squares),
   };
 }
 
@@ -182,6 +182,7 @@ function firstGuard(
 function secondGuard(
   out: Outgoing,
   v: Csr,
+  shift: number,
   levelOf: Int32Array,
   level: number,
   energy: number,
@@ -193,7 +194,8 @@ function secondGuard(
   const { re, im, list } = space;
   for (let r = 0; r < rows; r++) {
     const tag = space.firstTag + r;
-    const count = v.im === undefined ? imageReal(out, r, v, space, tag) : imageComplex(out, r, v, v.im, space, tag);
+    const reached = v.im === undefined ? imageReal(out, r, v, space, tag) : imageComplex(out, r, v, v.im, space, tag);
+    const count = shift === 0 ? reached : subtractShift(out, r, shift, space, tag, reached);
     for (let t = 0; t < count; t++) {
       const to = list[t] as number;
       const k = levelOf[to] as number;
@@ -204,6 +206,40 @@ function secondGuard(
     }
   }
   return squares.largestRatio(energy, levelEnergies);
+}
+
+/** Mean of V's diagonal elements over the level's vectors of the sector. */
+function meanShift(v: Csr, { indices }: LevelPart): number {
+  let sum = 0;
+  for (const i of indices) {
+    const e = findEntry(v, i, i);
+    if (e >= 0) sum += v.re[e] as number;
+  }
+  return sum / indices.length;
+}
+
+/** Takes v R V off the row in the scratch; returns the number of vectors that it reaches then. */
+function subtractShift(
+  { scaled, columns }: Outgoing,
+  r: number,
+  shift: number,
+  { re, im, mark, list }: Scratch,
+  tag: number,
+  reached: number,
+): number {
+  let count = reached;
+  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
+    const k = columns[scaled.col[q] as number] as number;
+    if (mark[k] !== tag) {
+      mark[k] = tag;
+      list[count++] = k;
+      re[k] = 0;
+      im[k] = 0;
+    }
+    re[k] = (re[k] as number) - shift * (scaled.re[q] as number);
+    if (scaled.im !== undefined) im[k] = (im[k] as number) - shift * (scaled.im[q] as number);
+  }
+  return count;
 }
 
 /** Row r of V R V with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */

@@ -1,5 +1,14 @@
 import { describe, expect, it } from "vitest";
-import { findGoodBasis, GoodBasisError, Operator, perturb, recheck, validateBasis } from "../../src/index.js";
+import {
+  type FindOptions,
+  findGoodBasis,
+  GoodBasisError,
+  Operator,
+  type Problem,
+  perturb,
+  recheck,
+  validateBasis,
+} from "../../src/index.js";
 
 const code = (work: () => unknown): string => {
   try {
@@ -180,5 +189,130 @@ describe("labels and levels that could mislead", () => {
     expect(outcome.sets).toHaveLength(32);
     expect(outcome.sets.find((set) => set.chosen)?.pairsTogether).toBe(0);
     expect(outcome.verdict).toBe("good");
+  });
+});
+
+/** A symmetric matrix from elements on and above the diagonal. */
+const symmetric = (n: number, elements: readonly (readonly [number, number, number])[]): number[][] => {
+  const rows = Array.from({ length: n }, () => new Array<number>(n).fill(0));
+  for (const [i, j, x] of elements) {
+    (rows[i] as number[])[j] = x;
+    (rows[j] as number[])[i] = x;
+  }
+  return rows;
+};
+
+/** The verdict, once the certificate has stood up to its own re-check. */
+const verdictOf = (problem: Problem, options: FindOptions = {}): string => {
+  const outcome = findGoodBasis(problem, options);
+  expect(recheck(outcome.certificate(), problem).findings).toEqual([]);
+  return outcome.verdict;
+};
+
+describe("what counts as vanished does not grow with what couples nothing", () => {
+  it("a filled matrix, whose norm bound is far above its norm", () => {
+    // normalised Hadamard matrix of 256 kets: ‖V‖₂ = 1, √(‖V‖₁‖V‖_∞) = 16
+    let signs = [[1]];
+    while (signs.length < 256) {
+      signs = [...signs.map((row) => [...row, ...row]), ...signs.map((row) => [...row, ...row.map((x) => -x)])];
+    }
+    const v = signs.map((row) => row.map((x) => x / 16));
+    (v[0] as number[])[1] = 4e-10;
+    (v[1] as number[])[0] = 4e-10;
+    (v[1] as number[])[1] = 1 / 16;
+    const h0 = { diagonal: Array.from({ length: 256 }, (_, k) => (k < 2 ? 0 : 10 * k)) };
+    const outcome = findGoodBasis({ h0, v }, { depth: "labels", levels: { lowest: 1 }, lambda: 1e-3 });
+    expect(outcome.verdict).toBe("not good");
+  });
+
+  it("an offset of V", () => {
+    for (const offset of [0, 1, 1e5, 1e12]) {
+      const v = symmetric(3, [
+        [0, 0, offset],
+        [1, 1, offset],
+        [2, 2, offset],
+        [0, 1, 1],
+      ]);
+      expect(verdictOf({ h0: { diagonal: [0, 0, 1] }, v }, { depth: "labels" })).toBe("not good");
+    }
+  });
+
+  it("a multiple of 1 for V or for H0, and no V at all, are good", () => {
+    const mixed = symmetric(3, [
+      [0, 1, 1],
+      [1, 2, 0.5],
+    ]);
+    expect(verdictOf({ h0: { diagonal: [0, 0, 1] }, v: { diagonal: [3, 3, 3] } })).toBe("good");
+    expect(verdictOf({ h0: { diagonal: [0, 0, 1] }, v: { diagonal: [0, 0, 0] } })).toBe("good");
+    expect(verdictOf({ h0: { diagonal: [5, 5, 5] }, v: mixed })).toBe("good");
+  });
+});
+
+describe("a near-degeneracy is not hidden, with no λ stated", () => {
+  const couplings = [
+    [0, 2, 0.1],
+    [1, 2, 0.1],
+  ] as const;
+
+  it("by an offset of V", () => {
+    for (const offset of [0, 1e5]) {
+      const diagonal = [0, 1, 2].map((k) => [k, k, offset] as const);
+      const v = symmetric(3, [...couplings, ...diagonal]);
+      expect(verdictOf({ h0: { diagonal: [0, 1e-8, 1] }, v })).toBe("undecided");
+    }
+  });
+
+  it("by a large element on a ket that V does not couple", () => {
+    const v = symmetric(4, [...couplings, [3, 3, 1e5]]);
+    expect(verdictOf({ h0: { diagonal: [0, 1e-8, 1, 2] }, v })).toBe("undecided");
+    const columns = [0, 1, 2, 3].map((k) => [0, 1, 2, 3].map((j) => (j === k ? 1 : 0)));
+    expect(validateBasis({ h0: { diagonal: [0, 1e-8, 1, 2] }, v }, columns).verdict).toBe("undecided");
+  });
+
+  it("by a strong coupling in another sector, or far levels there", () => {
+    const candidates = { A: { diagonal: [0, 0, 0, 1, 1] } };
+    const v = symmetric(5, [...couplings, [3, 4, 1e5]]);
+    for (const far of [5, 1e6]) {
+      const outcome = findGoodBasis({ h0: { diagonal: [0, 1e-8, 1, 0, far] }, v, candidates });
+      expect(outcome.levels[1]?.questions.map((question) => question.code)).toEqual(["near-degenerate"]);
+    }
+  });
+
+  it("by a second perturbation that tells the pair apart, where each is taken alone", () => {
+    const one = symmetric(3, [...couplings, [0, 0, 1e-6], [1, 1, -1e-6]]);
+    const two = { diagonal: [0.5, -0.5, 0] };
+    for (const v of [one, { one, two }]) {
+      const problem: Problem = { h0: { diagonal: [0, 0, 1] }, v };
+      expect(verdictOf(problem, { lambda: 1 })).toBe("undecided");
+      expect(verdictOf(problem, { lambda: 1e-4 })).toBe("good");
+    }
+  });
+});
+
+describe("a label that H0 breaks is held against what V makes of it", () => {
+  const candidates = { swap: { permutation: [1, 0, 2] } };
+  const problem = (energies: number[], v01: number, v22: number): Problem => ({
+    h0: { diagonal: energies },
+    v: symmetric(3, [
+      [0, 1, v01],
+      [2, 2, v22],
+    ]),
+    candidates,
+  });
+
+  it("where V is weaker than what H0 leaves between the labels", () => {
+    for (const lambda of [undefined, 1]) {
+      const options = lambda === undefined ? {} : { lambda };
+      for (const v22 of [0, 1]) {
+        expect(verdictOf(problem([1e4, 1e4 + 1e-8, 1e4 + 1], 1e-10, v22), options)).toBe("undecided");
+        expect(verdictOf(problem([1e4, 1e4 + 1e-9, 1e4 + 1], 1e-10, v22), options)).toBe("undecided");
+        expect(verdictOf(problem([0, 1e-6, 1e6], 1e-9, v22), options)).toBe("undecided");
+      }
+    }
+  });
+
+  it("where H0 conserves it exactly, or V is far stronger, it stands", () => {
+    expect(verdictOf(problem([1e4, 1e4, 1e4 + 1], 1e-10, 1))).toBe("good");
+    expect(verdictOf(problem([1, 1 + 1e-13, 2], 1e-3, 0))).toBe("good");
   });
 });

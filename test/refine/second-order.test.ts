@@ -52,6 +52,12 @@ function bruteForce({ v, levelOf, energies, levelEnergies }: Scene, level: numbe
     }
     return { re, im };
   };
+  const shift = own.reduce((sum, i) => sum + at(i, i).re, 0) / own.length;
+  const shifted = (i: number, k: number) => {
+    const { re, im } = through(i, k);
+    const weight = shift / (e0 - (energies[k] as number));
+    return { re: re - weight * at(i, k).re, im: im - weight * at(i, k).im };
+  };
   const norm = (list: readonly { re: number; im: number }[]): number =>
     Math.hypot(...list.flatMap((z) => [z.re, z.im]));
   const ratios = (element: typeof at) =>
@@ -76,7 +82,7 @@ function bruteForce({ v, levelOf, energies, levelEnergies }: Scene, level: numbe
       ),
     ),
     first: ratios(at),
-    second: ratios(through),
+    second: ratios(shifted),
   };
 }
 
@@ -158,9 +164,20 @@ describe("secondOrder", () => {
       [-0.5, -1],
     ]);
     expect(first).toEqual({ ratio: Math.sqrt(5) / 4, level: 1 });
-    // P_k W P_n goes through level 1 only, whose V inside is zero
-    expect(second).toEqual({ ratio: 0, level: -1 });
+    // P_k V R V P_n goes through level 1 only, whose V inside is zero; what is left is the mean shift 5 of the level itself
+    expect(second.level).toBe(1);
+    expect(second.ratio).toBeCloseTo((5 * Math.sqrt(5)) / 16, 14);
     expect(scale).toBe(1);
+  });
+
+  it("an offset of V changes neither ratio", () => {
+    const plain = hermitian(6, random(5), true);
+    const levelOf = [0, 1, 1, 2, 2, 0];
+    const scene = { levelOf, energies: levelOf.map((l) => [0, 1, 2.5][l] as number), levelEnergies: [0, 1, 2.5] };
+    const moved = plain.map((row, i) => row.map((x, j) => (i === j ? { re: x.re + 64, im: x.im } : x)));
+    const [here, there] = [run({ ...scene, v: plain }, 1), run({ ...scene, v: moved }, 1)];
+    expect(there.first).toEqual(here.first);
+    expect(there.second.ratio).toBeCloseTo(here.second.ratio, 10);
   });
 
   it("takes blocks, not single elements: many small couplings add up", () => {

@@ -56,7 +56,7 @@ describe("formatOutcome", () => {
     expect(head?.replace(/ {2,}/g, " | ")).toBe(
       " | level | E0 [Eh] | states | verdict | told apart by | |V_μν| ≤ [Eh] | guard | safe E | safe ψ",
     );
-    expect(first?.trim().split(/ {2,}/)).toEqual(["0", "−0.5", "1", "good", "—", "—", "0.2", "all", "all"]);
+    expect(first?.trim().split(/ {2,}/)).toEqual(["0", "−0.5", "1", "good", "—", "—", "4", "all", "all"]);
     expect(second?.trim().split(/ {2,}/)).toEqual([
       "1",
       "−0.125",
@@ -64,7 +64,7 @@ describe("formatOutcome", () => {
       "good",
       "Lz, V",
       expect.stringMatching(/^\d(\.\d)?e−1[4-6]$/),
-      "0.2",
+      "1",
       "2",
       "0",
     ]);
