@@ -3,6 +3,7 @@ import type { Csr } from "../numerics/csr.js";
 import { fromTriplets } from "../numerics/sparse.js";
 import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
+import { secondOrder } from "../refine/second-order.js";
 import { type GuardSetting, naturalLambda } from "./guard.js";
 import { elementErrorBound, forEachProduct } from "./products.js";
 import { short } from "./short.js";
@@ -21,8 +22,8 @@ interface Worst {
 }
 
 /**
- * The blockwise denominators guard between the levels of a complete basis, ‖P_k V P_n‖_F/|E_k − E_n|, one sentence for each
- * perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts of their own, as
+ * The blockwise denominators guard between the levels of a complete basis, ‖P_k V P_n‖_F/|E_k − E_n| and the same at second order,
+ * one sentence for each perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts of their own, as
  * symmetry sectors are; each has its own λ where none is stated.
  */
 export function denominatorRemarks(
@@ -108,22 +109,20 @@ function largestRatio(
   setting: GuardSetting,
 ): Worst {
   const own = Int32Array.from(columns, (column) => levelOf[column] as number);
-  const energyOf = (l: number): number => levels[l]?.energy ?? 0;
-  const lambda = setting.lambda ?? naturalLambda(v, Float64Array.from(own, energyOf), own);
-  const squares = new Map<number, number>();
-  for (let r = 0; r < v.rows; r++) {
-    for (let e = v.ptr[r] as number; e < (v.ptr[r + 1] as number); e++) {
-      const [a, b] = [own[r] as number, own[v.col[e] as number] as number];
-      if (a >= b) continue;
-      const square = (v.re[e] as number) ** 2 + (v.im === undefined ? 0 : (v.im[e] as number) ** 2);
-      squares.set(a * levels.length + b, (squares.get(a * levels.length + b) ?? 0) + square);
-    }
-  }
+  const levelEnergies = Float64Array.from(levels, ({ energy }) => energy);
+  const energies = Float64Array.from(own, (l) => levelEnergies[l] as number);
+  const lambda = setting.lambda ?? naturalLambda(v, energies, own);
   let worst: Worst = { ratio: 0, lambda, levels: [0, 0] };
-  for (const [key, square] of squares) {
-    const pair = [Math.floor(key / levels.length), key % levels.length] as const;
-    const ratio = (lambda * Math.sqrt(square)) / Math.abs(energyOf(pair[0]) - energyOf(pair[1]));
-    if (ratio > worst.ratio) worst = { ratio, lambda, levels: pair };
+  for (const l of new Set(own)) {
+    const indices = Int32Array.from([...own.keys()].filter((k) => own[k] === l));
+    const energy = levelEnergies[l] as number;
+    const { first, second } = secondOrder(energies, v, indices, own, l, energy, levelEnergies);
+    for (const { ratio, level } of [
+      { ...first, ratio: lambda * first.ratio },
+      { ...second, ratio: lambda * lambda * second.ratio },
+    ]) {
+      if (ratio > worst.ratio) worst = { ratio, lambda, levels: [l, level] };
+    }
   }
   return worst;
 }

@@ -65,7 +65,15 @@ export function resolveLevel(
   const parts = level.parts.map((part): ResolvedPart => {
     const sector = sectors[part.sector] as Sector;
     const outward = sector.perturbations.map((v) =>
-      secondOrder(sector, v, part, levels.of[part.sector] as Int32Array, level.place, level.energy, levels.energies),
+      secondOrder(
+        sector.energies,
+        v,
+        part.indices,
+        levels.of[part.sector] as Int32Array,
+        level.place,
+        level.energy,
+        levels.energies,
+      ),
     );
     return { ...part, outward, leaves: refinePart(problem, sector, part, outward, others, depth, tree) };
   });

@@ -1,7 +1,5 @@
 import type { Csr } from "../numerics/csr.js";
 import { adjoint, findEntry, multiply } from "../numerics/sparse.js";
-import type { LevelPart } from "./levels.js";
-import type { Sector } from "./sectors.js";
 
 /** The largest ratio of one kind in the denominators guard, and the level it is with. */
 export interface GuardRatio {
@@ -13,7 +11,7 @@ export interface GuardRatio {
 
 /** What reaches out of a level inside one sector, and what comes back at second order. */
 export interface SecondOrder {
-  /** W = V R V over the vectors of the part: W_ij = Σ_k V_ik V_kj / (E0 − E_k), k outside the level. */
+  /** W = V R V over the vectors of the level: W_ij = Σ_k V_ik V_kj / (E0 − E_k), k outside the level. */
   readonly w: Csr;
   /** Largest √(Σ|V_ik|²) √(Σ|V_ik/(E0 − E_k)|²) over the vectors i: the scale of W. */
   readonly scale: number;
@@ -29,28 +27,30 @@ export interface SecondOrder {
  * R = Σ_{k outside the level} |k⟩⟨k| / (E0 − E_k) excludes the whole level (Bloch, Nucl. Phys. 6, 329 (1958);
  * Messiah, Quantum Mechanics II, ch. XVI). V conserves the sector, so only its own vectors are intermediate states.
  *
+ * @param energies - H0 of each vector of the sector
  * @param v - the perturbation in the sector's basis
+ * @param indices - the vectors of the level
  * @param levelOf - level number of each vector of the sector
  * @param level - number of the level under study
  * @param energy - its energy E0
  * @param levelEnergies - energy of every level
  */
 export function secondOrder(
-  sector: Sector,
+  energies: Float64Array,
   v: Csr,
-  part: LevelPart,
+  indices: Int32Array,
   levelOf: Int32Array,
   level: number,
   energy: number,
   levelEnergies: Float64Array,
 ): SecondOrder {
-  const out = outgoing(sector, v, part, levelOf, level, energy);
+  const out = outgoing(energies, v, indices, levelOf, level, energy);
   const squares = new LevelSums(levelEnergies.length);
   return {
     w: out.bare.rows === 1 ? scalarProduct(out) : multiply(out.scaled, adjoint(out.bare)),
     scale: out.scale,
     first: firstGuard(out, levelOf, energy, levelEnergies, squares),
-    second: secondGuard(out, v, meanShift(v, part), levelOf, level, energy, levelEnergies, squares),
+    second: secondGuard(out, v, meanShift(v, indices), levelOf, level, energy, levelEnergies, squares),
   };
 }
 
@@ -93,18 +93,18 @@ interface Outgoing {
 }
 
 function outgoing(
-  sector: Sector,
+  energies: Float64Array,
   v: Csr,
-  part: LevelPart,
+  indices: Int32Array,
   levelOf: Int32Array,
   level: number,
   energy: number,
 ): Outgoing {
-  const rows = part.indices.length;
+  const rows = indices.length;
   const ptr = new Int32Array(rows + 1);
   let total = 0;
   for (let r = 0; r < rows; r++) {
-    const i = part.indices[r] as number;
+    const i = indices[r] as number;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
       if (levelOf[v.col[p] as number] !== level) total++;
     }
@@ -117,7 +117,7 @@ function outgoing(
   let at = 0;
   let distinct = 0;
   for (let r = 0; r < rows; r++) {
-    const i = part.indices[r] as number;
+    const i = indices[r] as number;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
       const k = v.col[p] as number;
       if (levelOf[k] === level) continue;
@@ -143,7 +143,7 @@ function outgoing(
     for (let q = ptr[r] as number; q < (ptr[r + 1] as number); q++) {
       const p = source[q] as number;
       const k = v.col[p] as number;
-      const weight = 1 / (energy - (sector.energies[k] as number));
+      const weight = 1 / (energy - (energies[k] as number));
       const x = v.re[p] as number;
       const y = v.im === undefined ? 0 : (v.im[p] as number);
       col[q] = list[k] as number;
@@ -209,7 +209,7 @@ function secondGuard(
 }
 
 /** Mean of V's diagonal elements over the level's vectors of the sector. */
-function meanShift(v: Csr, { indices }: LevelPart): number {
+function meanShift(v: Csr, indices: Int32Array): number {
   let sum = 0;
   for (const i of indices) {
     const e = findEntry(v, i, i);

@@ -292,7 +292,9 @@ describe("a basis that is wrong is told how", () => {
         [0.1, 0.1, 0],
       ]),
     };
-    expect(validateBasis(close, eye(3), undefined, { lambda: 1 }).verdict).toBe("good");
+    // through the third level, at second order
+    expect(validateBasis(close, eye(3), undefined, { lambda: 1 }).verdict).toBe("undecided");
+    expect(validateBasis(close, eye(3), undefined, { lambda: 1e-4 }).verdict).toBe("good");
     const direct = {
       ...close,
       v: Operator.from([

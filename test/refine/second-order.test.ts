@@ -1,9 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
 import type { Csr } from "../../src/numerics/csr.js";
-import { diagonalCsr } from "../../src/numerics/sparse.js";
 import { secondOrder } from "../../src/refine/second-order.js";
-import type { Sector } from "../../src/refine/sectors.js";
 import { distance, type Naive } from "../operator/naive.js";
 import { csr, hermitian, naive, naiveOfCsr, random } from "./support.js";
 
@@ -16,22 +14,17 @@ interface Scene {
 }
 
 const run = ({ v, levelOf, energies, levelEnergies }: Scene, level: number, matrix: Csr = csr(v)) => {
-  const frame = diagonalCsr(energies.map(() => 1));
-  const sector: Sector = {
-    frame,
-    energies: Float64Array.from(energies),
-    perturbations: [matrix],
-    labels: [],
-    from: undefined,
-    energyNode: 0,
-    energyChild: Int32Array.from(levelOf),
-    rowError: 0,
-    labelFrame: frame,
-  };
   const indices = Int32Array.from(levelOf.flatMap((l, i) => (l === level ? [i] : [])));
-  const part = { sector: 0, indices };
   const e0 = levelEnergies[level] ?? Number.NaN;
-  return secondOrder(sector, matrix, part, Int32Array.from(levelOf), level, e0, Float64Array.from(levelEnergies));
+  return secondOrder(
+    Float64Array.from(energies),
+    matrix,
+    indices,
+    Int32Array.from(levelOf),
+    level,
+    e0,
+    Float64Array.from(levelEnergies),
+  );
 };
 
 /** The formulas, index by index. */
