@@ -18,6 +18,7 @@ import { elementErrorBound, forEachProduct, gramDefect, gramElementError } from 
 import { type Repair, repairLevel } from "./repair.js";
 import { imageError, residualBounds, rowProduct } from "./residuals.js";
 import { short } from "./short.js";
+import { around, type Spectrum, spectrumOf } from "./spectrum.js";
 import type { Verdict } from "./verdict.js";
 
 /** A label that somebody claims for a column: an eigenvalue, or a quantum number as text ("3/2", "-1"). */
@@ -89,7 +90,10 @@ export interface Validation {
   readonly verdict: Verdict;
   /** Unit of all energies. */
   readonly unit: string;
-  /** Whether the columns are as many as the kets; otherwise levels may lack partners and denominators are not checked. */
+  /**
+   * Whether the columns are as many as the kets. Otherwise every level is counted against H0's spectrum, and one that lacks states is
+   * not called good; denominators are not checked.
+   */
   readonly complete: boolean;
   /** ‖Q†Q − 1‖, and the pair of columns (or the one column, twice) that deviates most. */
   readonly orthonormality: Checked & {
@@ -111,7 +115,7 @@ export interface Validation {
  * level? If it does, the rotation inside each level that repairs it is returned.
  *
  * @param problem - H0, V and the candidates that the labels belong to
- * @param columns - n rows, one column a state; need not be complete
+ * @param columns - n rows, one column a state; need not be complete, but levels must be
  * @param labels - for each label name, one claimed value a column; the names are candidates of the problem
  * @throws GoodBasisError `shape`, `not-finite`, `name`, `option`, and whatever the problem itself throws
  *
@@ -137,8 +141,9 @@ export function validateBasis<K extends string>(
   const vectors = readColumns(columns, prepared.n);
   const orthonormality = checkOrthonormality(vectors, resolution);
   const found = checkColumns(prepared, vectors, readClaims(prepared, labels ?? {}, vectors.rows), resolution);
-  const levels = checkLevels(prepared, vectors, found, resolution, options);
   const complete = vectors.rows === prepared.n;
+  const spectrum = complete ? undefined : spectrumOf(prepared);
+  const levels = checkLevels(prepared, vectors, found, resolution, options, spectrum);
   const remarks = [
     ...orthonormalityRemarks(orthonormality),
     ...columnRemarks(found),
@@ -305,6 +310,7 @@ function checkLevels(
   found: readonly ColumnFinding[],
   resolution: number,
   options: ValidateOptions,
+  spectrum: Spectrum | undefined,
 ): JudgedLevel[] {
   const residual = found.reduce((most, column) => Math.max(most, column.eigenvector.atMost), 0);
   const width = options.levelWidth ?? energyTolerance(problem, problem.n) + 2 * residual;
@@ -334,13 +340,21 @@ function checkLevels(
       return operator !== undefined && found.largest > resolution * couplingScale(operator);
     });
     const energy = (bottom(g) + top(g)) / 2;
-    const gap = Math.min(g === 0 ? Number.POSITIVE_INFINITY : bottom(g) - top(g - 1), bottom(g + 1) - top(g));
+    const near = spectrum === undefined ? undefined : around(spectrum, bottom(g), top(g), width);
+    const between = Math.min(g === 0 ? Number.POSITIVE_INFINITY : bottom(g) - top(g - 1), bottom(g + 1) - top(g));
+    const gap = Math.min(between, near?.gap ?? Number.POSITIVE_INFINITY);
     const spread = top(g) - bottom(g) + 2 * residual;
     const remarks: string[] = [];
     for (const pair of worst.slice(0, 3)) {
       remarks.push(
         `${pair.perturbation} couples columns ${pair.columns[0]} and ${pair.columns[1]} of the level at ${short(energy)} by ` +
           `${short(pair.size)}${problem.unit === "" ? "" : ` ${problem.unit}`}; the rotation returned for this level repairs it`,
+      );
+    }
+    if (near !== undefined && near.count > group.length) {
+      remarks.push(
+        `H0 has ${near.count} states at ${short(energy)}, of which the basis holds ${group.length}: whether V couples these to the ` +
+          "missing ones is not known; bring the whole level",
       );
     }
     if (spread > FAR_BELOW * gap) {

@@ -283,6 +283,26 @@ describe("a basis that is wrong is told how", () => {
     ).toBe("good");
   });
 
+  it("a level that lacks states of H0 is not called good; a whole level of many is", () => {
+    const problem = {
+      h0: [
+        [1, 0, 0, 0],
+        [0, 1, 0, 0],
+        [0, 0, 2, 1],
+        [0, 0, 1, 2],
+      ],
+      v: { diagonal: [1, -1, 0, 0] },
+    };
+    const half = Math.SQRT1_2;
+    const third = [0, 0, half, -half];
+    const columns = (...list: number[][]): number[][] => [0, 1, 2, 3].map((ket) => list.map((q) => q[ket] as number));
+    const lacking = validateBasis(problem, columns([1, 0, 0, 0], [0, 1, 0, 0]));
+    expect(lacking.verdict).toBe("undecided");
+    expect(lacking.remarks.join(" ")).toContain("H0 has 3 states at 1, of which the basis holds 2");
+    expect(validateBasis(problem, columns([1, 0, 0, 0], third, [0, 1, 0, 0])).verdict).toBe("good");
+    expect(validateBasis(problem, columns([0, 0, half, half])).verdict).toBe("good");
+  });
+
   it("neighbouring levels that V couples far more strongly than they are apart", () => {
     const close = {
       h0: Operator.diagonal([0, 1e-9, 1]),
