@@ -185,9 +185,11 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
     withinLeaves: inside.withinLeaves,
     orthonormality,
     worst: inside.worst,
-    offDiagonal: problem.perturbations.map((_, p) =>
-      roundUp((inside.offDiagonal[p] ?? 0) + betweenParts(evidence, nodes, p)),
-    ),
+    offDiagonal: problem.perturbations.map(({ operator }, p) => {
+      // a row's own error moves one element by 2‖V‖ times it, a block of d rows by up to √d times as much
+      const rows = 2.02 * (operator.norm + operator.error) * Math.sqrt(states.length) * rowError;
+      return roundUp((inside.offDiagonal[p] ?? 0) + betweenParts(evidence, nodes, p, rows));
+    }),
     largest: problem.perturbations.map((_, p) =>
       evidence.reduce((most, node) => Math.max(most, node.couplings[p]?.counted ?? 0), inside.withinLeaves[p] ?? 0),
     ),
@@ -195,11 +197,16 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
 }
 
 /** Norm of V's elements between parts: nodes of one operator act on disjoint blocks, different operators add. */
-function betweenParts(evidence: readonly NodeEvidence[], nodes: readonly TreeNode[], p: number): number {
+function betweenParts(
+  evidence: readonly NodeEvidence[],
+  nodes: readonly TreeNode[],
+  p: number,
+  rowErrors: number,
+): number {
   const byOperator = new Map<string, number>();
   for (const node of evidence) {
     if (nodes[node.node]?.crossings === undefined) continue;
-    const bound = node.couplings[p]?.direct ?? 0;
+    const bound = (node.couplings[p]?.direct ?? 0) + rowErrors;
     byOperator.set(node.operator, Math.max(byOperator.get(node.operator) ?? 0, bound));
   }
   let sum = 0;
