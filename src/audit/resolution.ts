@@ -30,7 +30,7 @@ export const NOISE: number = 2 ** -43;
 /** With λ stated by the caller: largest ratio λ‖P_k V P_n‖ / |E_k − E_n| that is not refused. */
 export const REFUSE_ABOVE = 1;
 
-/** With no λ stated: the same ratio, λ being the smaller of 1 and spread(H0)/‖V‖; only a near-degeneracy exceeds it. */
+/** With no λ stated: the same ratio at the λ of each sector, see `naturalLambda`; only a near-degeneracy exceeds it. */
 export const REFUSE_ABOVE_UNSTATED = 8;
 
 /**
