@@ -129,7 +129,7 @@ export function validateBasis<K extends string>(
   options: ValidateOptions = {},
 ): Validation {
   const prepared = prepareProblem(problem);
-  requireOptions("validateBasis", options);
+  requireOptions("validateBasis", options, ["resolution", "levelWidth", "lambda", "refuseAbove"]);
   const resolution = checkResolution(options.resolution ?? DEFAULT_RESOLUTION);
   checkLevelWidth(options.levelWidth);
   const vectors = readColumns(columns, prepared.n);

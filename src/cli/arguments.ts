@@ -61,6 +61,11 @@ export function readArguments(verb: string, args: readonly string[], allowed: re
     const value = values[name];
     return typeof value === "string" ? value : undefined;
   };
+  for (const name of ["out", "certificate", "basis"] as const) {
+    if (text(name)?.trim() === "")
+      throw new GoodBasisError("option", `--${name} is empty; give a path, or leave it out`);
+  }
+  if (positionals.includes("")) throw new GoodBasisError("option", `the name of a file is empty; ${next}`);
   const columns = text("columns");
   return {
     files: positionals,

@@ -1,6 +1,8 @@
 import { dirname, isAbsolute, join } from "node:path";
 import { GoodBasisError } from "../errors.js";
 import { type ReadProblem, readProblem } from "../problem/read.js";
+import { inSource } from "../problem/source.js";
+import type { Settings } from "./arguments.js";
 import type { Terminal } from "./terminal.js";
 
 /** The name by which messages call a file. */
@@ -36,4 +38,14 @@ export function loadProblem(terminal: Terminal, path: string): ReadProblem {
 function matrixLoader(terminal: Terminal, path: string): (matrix: string) => string {
   const folder = path === "-" ? "." : dirname(path);
   return (matrix) => readFile(terminal, isAbsolute(matrix) ? matrix : join(folder, matrix));
+}
+
+/**
+ * Runs `work` on a problem; its errors name the line of the problem file where they can.
+ *
+ * @param settings - options given here and not in the file
+ */
+export function onProblem<T>(read: ReadProblem, { find }: Settings, work: () => T): T {
+  const own = Object.keys(read.options).filter((name) => !Object.hasOwn(find, name));
+  return inSource(read, own, work);
 }

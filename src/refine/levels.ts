@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Sector } from "./sectors.js";
 
 /**
@@ -112,12 +113,14 @@ function choose(
   const all = Array.from(energies, (_, place) => place);
   if (choice === "all") return all;
   if (typeof choice !== "object" || choice === null) throw malformed(choice);
+  const fields = "lowest" in choice ? ["lowest"] : "nearest" in choice ? ["nearest", "count"] : ["from", "to"];
+  if (Object.keys(choice).some((name) => !fields.includes(name))) throw malformed(choice);
   if ("lowest" in choice) {
     if (!Number.isInteger(choice.lowest) || choice.lowest < 1) throw malformed(choice);
     return all.slice(0, choice.lowest);
   }
   if ("nearest" in choice) {
-    const count = choice.count ?? 1;
+    const count = choice.count === undefined ? 1 : choice.count;
     if (!Number.isFinite(choice.nearest) || !Number.isInteger(count) || count < 1) throw malformed(choice);
     const distance = (place: number): number => Math.abs((energies[place] as number) - choice.nearest);
     return all.sort((a, b) => distance(a) - distance(b) || a - b).slice(0, count);
@@ -140,7 +143,7 @@ function choose(
 function malformed(choice: unknown): GoodBasisError {
   return new GoodBasisError(
     "option",
-    `levels is ${JSON.stringify(choice)}; give "all", { lowest: k }, { nearest: energy, count: k } or ` +
+    `levels is ${shown(choice)}; give "all", { lowest: k }, { nearest: energy, count: k } or ` +
       "{ from: energy, to: energy } with whole k ≥ 1 and from ≤ to",
     { levels: choice },
   );

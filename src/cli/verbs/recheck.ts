@@ -5,7 +5,7 @@ import { formatRecheck } from "../../report/format-recheck.js";
 import { formatTable } from "../../report/format-table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
-import { loadProblem, readFile } from "../input.js";
+import { loadProblem, onProblem, readFile } from "../input.js";
 import { checkOutputs, deliver } from "../output.js";
 import { plainTable } from "../plain-table.js";
 import type { Verb } from "../verb.js";
@@ -29,7 +29,8 @@ export const recheckVerb: Verb = {
     checkOutputs(terminal, settings);
     const text = readFile(terminal, certificatePath);
     const certificate = parseDocument({ name: certificatePath, text }, text);
-    const report = recheck(certificate, loadProblem(terminal, problemPath).problem);
+    const read = loadProblem(terminal, problemPath);
+    const report = onProblem(read, settings, () => recheck(certificate, read.problem));
     const colours = terminal.colours.print && settings.out === undefined;
     deliver(terminal, settings, { text: textOf(settings, report, colours) });
     return report.ok && report.verdict === "good" ? 0 : 1;

@@ -1,0 +1,225 @@
+import { describe, expect, it } from "vitest";
+import * as goodbasis from "../src/index.js";
+
+const { findGoodBasis, GoodBasisError, Operator } = goodbasis;
+
+const problem = {
+  h0: { diagonal: [1, 1, 2] },
+  v: [
+    [-1, 0, 0],
+    [0, 0, 1],
+    [0, 1, 0],
+  ],
+  candidates: { A: { diagonal: [1, 0, 0] } },
+};
+const outcome = findGoodBasis(problem);
+if (outcome.verdict !== "good") throw new Error(outcome.verdict);
+const { basis } = outcome;
+const certificate = outcome.certificate();
+const two = Operator.diagonal([1, 2]);
+
+/** Arguments with which every exported function works; a function that is missing here fails the test below. */
+const WORKING: Readonly<Record<string, readonly unknown[]>> = {
+  GoodBasisError: ["shape", "a message", {}],
+  Operator: [],
+  angularMomentum: [1],
+  auditCommutators: [problem, { resolution: 1e-9 }],
+  basisTable: [basis, { terms: 2 }],
+  findGoodBasis: [problem, { depth: "full" }],
+  formatAudit: [outcome.audit, { width: 80 }],
+  formatOutcome: [outcome, { width: 80 }],
+  formatRecheck: [{ ok: true, checked: 1, findings: [] }, { width: 80 }],
+  formatTable: [goodbasis.basisTable(basis), "text", { digits: 5 }],
+  hopping: [2, [[0, 1]], [-1]],
+  ketPermutation: [
+    [1, 0],
+    [1, -1],
+  ],
+  oscillator: [3],
+  perturb: [basis, { order: 2, states: 0, select: [0] }],
+  productSpace: [[3, 2]],
+  readBasis: ["[[1, 0], [0, 1]]", { name: "b.json", n: 2 }],
+  readMatrixMarket: ["%%MatrixMarket matrix array real general\n1 1\n2\n", { name: "m.mtx" }],
+  readProblem: [goodbasis.writeProblem(problem), { name: "p.json" }],
+  recheck: [certificate, problem],
+  reflection: [3, 2, 0],
+  sitePermutation: [2, [1, 0]],
+  spinChain: [2, 0.5],
+  toMatrixMarket: [two],
+  translation: [3, 2],
+  validateBasis: [problem, Operator.identity(3), { A: [1, 0, 0] }, { resolution: 1e-9 }],
+  writeProblem: [problem, { title: "t" }],
+};
+
+/** Methods of the objects that builders return, and of operators. */
+const OBJECTS: Readonly<Record<string, object>> = {
+  productSpace: goodbasis.productSpace([3, 2]),
+  spinChain: goodbasis.spinChain(2),
+  oscillator: goodbasis.oscillator(3),
+  operator: Operator.from([
+    [1, 2],
+    [2, 5],
+  ]),
+  Operator,
+};
+
+/** What plain JavaScript may hand over by mistake. */
+const ODD: readonly (readonly [string, unknown])[] = [
+  ["undefined", undefined],
+  ["null", null],
+  ["{}", {}],
+  ["[]", []],
+  ["[[]]", [[]]],
+  ["7", 7],
+  ["-1", -1],
+  ["NaN", Number.NaN],
+  ["Infinity", Number.POSITIVE_INFINITY],
+  ['"x"', "x"],
+  ['""', ""],
+  ['"1"', "1"],
+  ["true", true],
+  ["() => 0", (): number => 0],
+  ["10n", 10n],
+  ["[10n]", [10n]],
+  ["{ n: 10n }", { n: 10n }],
+  ["Symbol()", Symbol("odd")],
+  ["[Symbol()]", [Symbol("odd")]],
+  ["new Map()", new Map()],
+  ["new Date()", new Date(0)],
+  ["a DataView", new DataView(new ArrayBuffer(8))],
+  ["Object.create(null)", Object.create(null)],
+  ["an operator", two],
+  ["a basis", basis],
+];
+
+const CODES = [
+  "shape",
+  "not-finite",
+  "not-hermitian",
+  "not-normal",
+  "name",
+  "option",
+  "no-level",
+  "unsafe-order",
+].concat(["not-certified", "wrong-problem", "file"]);
+
+/** What comes of a call: "returned", or the message of a typed error; anything else thrown is a defect. */
+function attempt(call: () => unknown): string {
+  try {
+    call();
+    return "returned";
+  } catch (error) {
+    if (!(error instanceof GoodBasisError)) return `raw ${String(error)}`;
+    if (!CODES.includes(error.code)) return `raw code ${error.code}`;
+    const poor =
+      error.message.length < 20 || /\[object |function \(|=>/.test(error.message.replace(/[(][)] => 0/g, ""));
+    return poor ? `raw message "${error.message}"` : error.message;
+  }
+}
+
+function callOf(name: string, value: unknown): (...args: readonly unknown[]) => unknown {
+  if (typeof value !== "function") throw new Error(`${name} is no function`);
+  const isClass = /^class\b/.test(Function.prototype.toString.call(value));
+  return (...args) => (isClass ? Reflect.construct(value, args) : Reflect.apply(value, undefined, args));
+}
+
+const functions = Object.entries(goodbasis).filter(([, value]) => typeof value === "function");
+
+describe("every exported function, from plain JavaScript", () => {
+  it("is in the list of this test", () => {
+    expect(functions.map(([name]) => name).sort()).toEqual(Object.keys(WORKING).sort());
+    for (const [name, args] of Object.entries(WORKING)) {
+      if (name === "Operator") continue;
+      expect(
+        attempt(() => callOf(name, Reflect.get(goodbasis, name))(...args)),
+        name,
+      ).toBe("returned");
+    }
+  });
+
+  for (const [name, value] of functions) {
+    const call = callOf(name, value);
+    if (name === "GoodBasisError") continue; // made to be thrown, with any message
+    const works = WORKING[name] ?? [];
+
+    it(`${name} refuses odd arguments with a typed error, whichever they are`, () => {
+      expect(attempt(() => call())).not.toMatch(/^raw/);
+      for (const [first, odd] of ODD) {
+        expect(
+          attempt(() => call(odd)),
+          `${name}(${first})`,
+        ).not.toMatch(/^raw/);
+        for (const [second, other] of ODD) {
+          expect(
+            attempt(() => call(odd, other)),
+            `${name}(${first}, ${second})`,
+          ).not.toMatch(/^raw/);
+        }
+        for (let k = 0; k < Math.max(1, works.length + 1); k++) {
+          const args = [...works];
+          args[k] = odd;
+          expect(
+            attempt(() => call(...args)),
+            `${name} with ${first} in place ${k}`,
+          ).not.toMatch(/^raw/);
+        }
+      }
+    });
+
+    it(`${name} takes none of nothing, null, {}, [], words, functions and NaN for its first argument`, () => {
+      expect(
+        attempt(() => call()),
+        `${name}()`,
+      ).not.toBe("returned");
+      for (const odd of [undefined, null, {}, [], "x", (): number => 0, Number.NaN]) {
+        expect(
+          attempt(() => call(odd)),
+          `${name}(${String(odd)})`,
+        ).not.toBe("returned");
+      }
+    });
+
+    it(`${name} refuses options that hold null or an unknown name`, () => {
+      const last = works.length - 1;
+      const options: unknown = works[last];
+      const isOptions =
+        typeof options === "object" && options !== null && Object.getPrototypeOf(options) === Object.prototype;
+      if (!isOptions || last < 1 || name === "recheck") return;
+      for (const key of Object.keys(options)) {
+        const message = attempt(() => call(...works.slice(0, last), { ...options, [key]: null }));
+        expect(message).toContain(`the option ${key} is null`);
+        expect(message).toContain(name);
+        const misspelt = attempt(() => call(...works.slice(0, last), { [`${key}s`]: 1 }));
+        expect(misspelt).toContain(`there is no option "${key}s"; did you mean "${key}"?`);
+      }
+    });
+  }
+});
+
+describe("the methods of what builders return", () => {
+  for (const [name, object] of Object.entries(OBJECTS)) {
+    const keys = new Set([
+      ...Object.getOwnPropertyNames(object),
+      ...Object.getOwnPropertyNames(Object.getPrototypeOf(object)),
+    ]);
+    for (const key of keys) {
+      const getter = Object.getOwnPropertyDescriptor(Object.getPrototypeOf(object), key)?.get;
+      const own =
+        Object.getOwnPropertyDescriptor(Function.prototype, key) ??
+        Object.getOwnPropertyDescriptor(Object.prototype, key);
+      const method: unknown = getter === undefined && own === undefined ? Reflect.get(object, key) : undefined;
+      if (typeof method !== "function") continue;
+      it(`${name}.${key}`, () => {
+        const call = (...args: readonly unknown[]): string => attempt(() => Reflect.apply(method, object, args));
+        expect(call()).not.toMatch(/^raw/);
+        for (const [first, odd] of ODD) {
+          expect(call(odd), `${key}(${first})`).not.toMatch(/^raw/);
+          for (const [second, other] of ODD) {
+            expect(call(odd, other), `${key}(${first}, ${second})`).not.toMatch(/^raw/);
+            expect(call(1, odd, other), `${key}(1, ${first}, ${second})`).not.toMatch(/^raw/);
+          }
+        }
+      });
+    }
+  }
+});
