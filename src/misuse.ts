@@ -53,15 +53,18 @@ export function didYouMean(wrong: string, known: readonly string[]): string {
   return `; did you mean "${best.name}"?`;
 }
 
-/** Least number of letters inserted, left out or changed (Levenshtein's distance). */
+/** Least number of letters inserted, left out, changed or swapped with a neighbour (Levenshtein's distance with swaps). */
 function distance(a: string, b: string): number {
-  let row = Array.from({ length: b.length + 1 }, (_, k) => k);
+  let before: readonly number[] = [];
+  let row: readonly number[] = Array.from({ length: b.length + 1 }, (_, k) => k);
   for (let i = 0; i < a.length; i++) {
     const next = [i + 1];
     for (let j = 0; j < b.length; j++) {
       const change = (row[j] as number) + (a[i] === b[j] ? 0 : 1);
-      next.push(Math.min(change, (row[j + 1] as number) + 1, (next[j] as number) + 1));
+      const swap = i > 0 && j > 0 && a[i] === b[j - 1] && a[i - 1] === b[j] ? (before[j - 1] as number) + 1 : change;
+      next.push(Math.min(change, swap, (row[j + 1] as number) + 1, (next[j] as number) + 1));
     }
+    before = row;
     row = next;
   }
   return row[b.length] as number;

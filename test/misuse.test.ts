@@ -1,5 +1,6 @@
 import { describe, expect, it } from "vitest";
 import * as goodbasis from "../src/index.js";
+import { didYouMean, shown } from "../src/misuse.js";
 
 const { findGoodBasis, GoodBasisError, Operator } = goodbasis;
 
@@ -194,6 +195,124 @@ describe("every exported function, from plain JavaScript", () => {
       }
     });
   }
+});
+
+describe("messages name the function, what was expected, what came and the next step", () => {
+  it.each<readonly [string, () => unknown, RegExp]>([
+    [
+      "a table",
+      () => Reflect.apply(goodbasis.formatTable, undefined, [{}]),
+      /^formatTable: expected a table .*got \{\}; pass what basisTable/,
+    ],
+    [
+      "a format",
+      () => Reflect.apply(goodbasis.formatTable, undefined, [goodbasis.basisTable(basis), "xls"]),
+      /^formatTable: there is no format "xls"; give "text"/,
+    ],
+    [
+      "an outcome",
+      () => Reflect.apply(goodbasis.formatOutcome, undefined, [basis]),
+      /^formatOutcome: expected an outcome, got an object of class CertifiedBasis; pass what findGoodBasis returns/,
+    ],
+    [
+      "an audit",
+      () => Reflect.apply(goodbasis.formatAudit, undefined, [7]),
+      /^formatAudit: expected an audit, got 7; pass what auditCommutators/,
+    ],
+    [
+      "a report",
+      () => Reflect.apply(goodbasis.formatRecheck, undefined, ["x"]),
+      /^formatRecheck: expected a report .*got "x"; pass what recheck returns/,
+    ],
+    [
+      "sites",
+      () => Reflect.apply(goodbasis.hopping, undefined, []),
+      /^hopping: expected a number of sites, 1, 2, …, got nothing/,
+    ],
+    [
+      "bonds",
+      () => Reflect.apply(goodbasis.hopping, undefined, [2]),
+      /^hopping: expected a list of bonds \[\[i, j\], …\] between sites, got nothing/,
+    ],
+    [
+      "an amplitude",
+      () => Reflect.apply(goodbasis.hopping, undefined, [2, [[0, 1]], "1"]),
+      /^hopping: the amplitude of bond 0 is "1"; expected a number/,
+    ],
+    [
+      "j as text",
+      () => Reflect.apply(goodbasis.angularMomentum, undefined, ["1"]),
+      /^angularMomentum: j must be one of the numbers .*got "1"/,
+    ],
+    ["j = null", () => Reflect.apply(goodbasis.angularMomentum, undefined, [null]), /^angularMomentum: .*got null/],
+    [
+      "dimensions",
+      () => Reflect.apply(goodbasis.productSpace, undefined, [7]),
+      /^productSpace: expected a list of dimensions such as \[3, 2\], got 7/,
+    ],
+    [
+      "a map",
+      () => Reflect.apply(goodbasis.sitePermutation, undefined, [2, 7]),
+      /^sitePermutation: expected a list, .*got 7/,
+    ],
+    [
+      "kets of a site",
+      () => Reflect.apply(goodbasis.translation, undefined, [3]),
+      /^translation: the number of kets of a site must be 1, 2, …, got nothing/,
+    ],
+    [
+      "a text",
+      () => Reflect.apply(goodbasis.readMatrixMarket, undefined, [7]),
+      /^readMatrixMarket: expected the text of a Matrix Market file, got 7; pass the contents/,
+    ],
+    [
+      "an operator",
+      () => Reflect.apply(goodbasis.toMatrixMarket, undefined, [[[1]]]),
+      /^toMatrixMarket: expected an Operator, got \[\[1\]\]; make one with Operator\.from/,
+    ],
+    [
+      "a problem",
+      () => Reflect.apply(goodbasis.writeProblem, undefined, []),
+      /^writeProblem: expected a problem, got nothing; give \{ h0, v/,
+    ],
+    [
+      "sparse rows",
+      () => Reflect.construct(Operator, []),
+      /^Operator: expected square sparse rows .*got nothing; make one with Operator\.from/,
+    ],
+    ["an operand", () => Reflect.apply(two.plus, two, [3]), /^plus: expected an Operator, got 3/],
+  ])("%s", (_, call, message) => {
+    expect(attempt(call)).toMatch(message);
+  });
+
+  it("whatever the value is", () => {
+    const circle: unknown[] = [];
+    circle.push(circle);
+    const cases: readonly (readonly [unknown, string])[] = [
+      [undefined, "nothing"],
+      [null, "null"],
+      [-0.5, "-0.5"],
+      ["a\nb", '"a\\nb"'],
+      [10n, "10n, a bigint"],
+      [{ a: [1] }, '{"a":[1]}'],
+      [circle, "an array of 1"],
+      [{ a: 1n }, "an object"],
+      [new Map(), "an object of class Map"],
+      [Object.create(null), "{}"],
+      ["x".repeat(99), `"${"x".repeat(56)}…`],
+    ];
+    for (const [value, text] of cases) expect(shown(value)).toBe(text);
+  });
+
+  it("with the name that was probably meant, or none", () => {
+    const known = ["candidates", "kets", "h0", "v", "unit"];
+    expect(didYouMean("candidate", known)).toBe('; did you mean "candidates"?');
+    expect(didYouMean("H0", known)).toBe('; did you mean "h0"?');
+    expect(didYouMean("untis", ["units"])).toBe('; did you mean "units"?');
+    expect(didYouMean("kats", known)).toBe('; did you mean "kets"?');
+    expect(didYouMean("temperature", known)).toBe("");
+    expect(didYouMean("anything", [])).toBe("");
+  });
 });
 
 describe("the methods of what builders return", () => {

@@ -133,7 +133,7 @@ function notTooLarge(name: string, operator: Operator, largest: number): Operato
       if (size <= largest) continue;
       const col = csr.col[e] as number;
       const message =
-        `${name}: entry (${row}, ${col}), counted from 0, is of size ${size.toPrecision(3)}, above ${largest}, the largest ` +
+        `entry (${row}, ${col}) of ${name}, counted from 0, is of size ${size.toPrecision(3)}, above ${largest}, the largest ` +
         "whose products are sure to be finite; give the operator in a larger unit";
       throw new GoodBasisError("not-finite", message, { operator: name, row, col, size, largest });
     }
@@ -208,8 +208,9 @@ function readCandidate(name: string, input: MatrixInput | Candidate, n: number):
     );
   }
   if (kind === "hermitian") operator = operator.hermitianPart();
+  const ladderName = `${name}.ladder`;
   const ladder =
-    given.ladder === undefined ? undefined : sameSize(name, read(`${name}.ladder`, given.ladder, LARGEST_CANDIDATE), n);
+    given.ladder === undefined ? undefined : sameSize(ladderName, read(ladderName, given.ladder, LARGEST_CANDIDATE), n);
   return {
     name,
     operator,

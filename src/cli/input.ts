@@ -6,8 +6,14 @@ import type { Settings } from "./arguments.js";
 import type { Terminal } from "./terminal.js";
 
 /** The name by which messages call a file. */
-function nameOf(path: string): string {
+export function nameOf(path: string): string {
   return path === "-" ? "standard input" : path;
+}
+
+/** What the platform says went wrong, without the call and the path that it was about. */
+export function reasonOf(error: unknown): string {
+  const message = error instanceof Error ? error.message : String(error);
+  return message.replace(/, (?:[a-z]+ '.*'|[a-z]+)$/s, "");
 }
 
 /**
@@ -19,7 +25,7 @@ export function readFile(terminal: Terminal, path: string): string {
   try {
     return terminal.read(path);
   } catch (error) {
-    const reason = error instanceof Error ? error.message : String(error);
+    const reason = reasonOf(error);
     const message = `${nameOf(path)} cannot be read (${reason}); check the path and the rights to it`;
     throw new GoodBasisError("file", message, { name: nameOf(path) });
   }

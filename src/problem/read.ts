@@ -161,10 +161,12 @@ const PROBLEM_FIELDS_OF_MATRICES = ["re", "im", "entries"];
 
 /** V given as one matrix; what is wrong with it may be that its fields were meant as names. */
 function readSingle(place: Place, value: object, context: MatrixContext): Operator {
+  const form = Object.keys(value).find((name) => looksLikeMatrix({ [name]: undefined }));
   try {
-    return readMatrixAt(place, value, context);
+    const operator = readMatrixAt(place, value, context);
+    if (form !== "diagonal" || operator.isHermitian) return operator;
+    throw misfit(place, "not-hermitian", "V is not Hermitian: numbers on its diagonal have imaginary parts");
   } catch (error) {
-    const form = Object.keys(value).find((name) => looksLikeMatrix({ [name]: undefined }));
     if (!(error instanceof GoodBasisError) || form === undefined) throw error;
     const hint = `v is read as one matrix, as it has the field "${form}"; if that is a perturbation's name, rename it`;
     throw new GoodBasisError(error.code, `${error.message} (${hint})`, error.details);

@@ -1,13 +1,18 @@
+import type { Problem } from "../audit/problem.js";
 import { GoodBasisError } from "../errors.js";
 import { isMatrixInput } from "../operator/input.js";
 import { inside, type Place, type ProblemDocument, whereIs } from "./place.js";
-import type { ReadProblem } from "./read.js";
+
+/** A problem that was read: a `ReadProblem`. */
+interface WithProblem {
+  readonly problem: Problem;
+}
 
 /** Where problems came from. */
 const documents = new WeakMap<object, ProblemDocument>();
 
 /** Keeps the document of a problem, so that errors found later can name a line of it. */
-export function rememberDocument(read: ReadProblem, document: ProblemDocument): void {
+export function rememberDocument(read: WithProblem, document: ProblemDocument): void {
   documents.set(read, document);
 }
 
@@ -18,7 +23,7 @@ export function rememberDocument(read: ReadProblem, document: ProblemDocument): 
  * @param own - the options that come from the file and not from elsewhere
  * @throws GoodBasisError with whatever code `work` throws
  */
-export function inSource<T>(read: ReadProblem, own: readonly string[], work: () => T): T {
+export function inSource<T>(read: WithProblem, own: readonly string[], work: () => T): T {
   try {
     return work();
   } catch (error) {
@@ -33,7 +38,7 @@ export function inSource<T>(read: ReadProblem, own: readonly string[], work: () 
 
 function placeOf(
   top: Place,
-  { problem }: ReadProblem,
+  { problem }: WithProblem,
   own: readonly string[],
   error: GoodBasisError,
 ): Place | undefined {

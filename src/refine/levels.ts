@@ -134,8 +134,11 @@ function choose(
   const near = all.sort((a, b) => outside(a) - outside(b))[0] as number;
   throw new GoodBasisError(
     "no-level",
-    `no level lies between ${from} and ${to}; the ${energies.length} levels run from ${energies[0]} to ` +
-      `${energies[energies.length - 1]}, and the nearest is at ${energies[near]}`,
+    `no level lies between ${from} and ${to}; ` +
+      (energies.length === 1
+        ? `the only level is at ${energies[0]}`
+        : `the ${energies.length} levels run from ${energies[0]} to ${energies[energies.length - 1]}, and the nearest is at ` +
+          `${energies[near]}`),
     { from, to, lowest: energies[0], highest: energies[energies.length - 1], nearest: energies[near] },
   );
 }

@@ -18,8 +18,8 @@ export interface FormatTableOptions {
    */
   readonly maxWidth?: number;
   /**
-   * Most significant digits in text, Markdown and LaTeX, from 1 to 17; a ± grows to cover the rounding. Default 17, in text 10 for
-   * a column that states one ± for all its numbers.
+   * Most significant digits in text, Markdown and LaTeX, from 1 to 17; a ± grows to cover the rounding. Default 17, in text 10
+   * for a column that states one ± for all its numbers; with `digits` given, every number has its own.
    */
   readonly digits?: number;
   /** Whether the notes follow in text, Markdown and LaTeX. Default true. */
@@ -31,7 +31,7 @@ export interface FormatTableOptions {
  *
  * Text, Markdown and LaTeX print values as far as their ± supports; CSV (RFC 4180) and JSON carry every digit, with value and
  * ± in fields of their own. Units stand in the headers. In text a column of which every ± is below 1e-9 of its largest number
- * states one ± in its head that holds for all. In CSV labels that are fractions are decimal numbers, and the safe orders for
+ * states one ± in its head that holds for all, rounding included. In CSV labels that are fractions are decimal numbers, and the safe orders for
  * energies and states are two fields, so that a spreadsheet takes neither for a date; JSON has the fractions as text, too.
  *
  * @param table - from {@link basisTable}

@@ -9,7 +9,9 @@ const DEFAULT_WIDTH = 120;
 /** Most digits of a column that states its ± once. */
 const COMMON_DIGITS = 10;
 
-const COMMON_NOTE = "± in the head of a column: it holds for every number below it.";
+const COMMON_NOTE =
+  `± in the head of a column: it holds for every number below, rounding to ${COMMON_DIGITS} digits included; CSV and JSON ` +
+  "carry each number with a ± of its own.";
 
 /** Aligned columns with rules between levels, and the notes below. */
 export function textTable(
@@ -19,7 +21,9 @@ export function textTable(
   maxWidth: number = DEFAULT_WIDTH,
 ): string {
   const body = bodyText(table, digits ?? 17);
-  const common = table.columns.map((column, c) => stateOnce(table, column, c, body, digits ?? COMMON_DIGITS));
+  const common = table.columns.map((column, c) =>
+    digits === undefined ? stateOnce(table, column, c, body) : undefined,
+  );
   const lines = grid(
     table.columns.map((column, c) => gridColumn(column, common[c])),
     body,
@@ -31,19 +35,13 @@ export function textTable(
 }
 
 /** Rewrites a column whose numbers can share one ±, and returns that ±. */
-function stateOnce(
-  table: Table,
-  { showsPlusMinus }: TableColumn,
-  c: number,
-  body: string[][],
-  digits: number,
-): string | undefined {
+function stateOnce(table: Table, { showsPlusMinus }: TableColumn, c: number, body: string[][]): string | undefined {
   if (!showsPlusMinus) return undefined;
   const bounded = table.rows.flatMap((row, r) => {
     const cell = row.cells[c];
     return cell?.kind === "bounded" ? [{ r, value: cell.value, plusMinus: cell.plusMinus }] : [];
   });
-  const found = commonBound(bounded, digits);
+  const found = commonBound(bounded, COMMON_DIGITS);
   if (found === undefined) return undefined;
   for (const [k, { r }] of bounded.entries()) {
     const row = body[r];
