@@ -87,8 +87,8 @@ export function requireKnown(whose: string, given: object, known: readonly strin
 }
 
 /**
- * Refuses options that are no object, have a name that is not known, or hold null: only what is left out or undefined takes its
- * default.
+ * Refuses options that are no object, have a name that is not known, or hold null, a bigint or a symbol: only what is left out or
+ * undefined takes its default.
  *
  * @param verb - the function, for the message
  * @param known - the names of its options
@@ -106,8 +106,8 @@ export function requireOptions(verb: string, options: unknown, known: readonly s
       const message = `${verb}: there is no option "${name}"${guess === "" ? ";" : guess} ${next}`;
       throw new GoodBasisError("option", message, { option: name });
     }
-    if (value === null) {
-      const message = `${verb}: the option ${name} is null; give a value, or leave it out for its default`;
+    if (value === null || typeof value === "bigint" || typeof value === "symbol") {
+      const message = `${verb}: the option ${name} is ${shown(value)}; give a value, or leave it out for its default`;
       throw new GoodBasisError("option", message, { option: name });
     }
   }

@@ -2,6 +2,7 @@ import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
+import { isObject, shown } from "../misuse.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
@@ -134,7 +135,12 @@ export function validateBasis<K extends string>(
   checkLevelWidth(options.levelWidth);
   const vectors = readColumns(columns, prepared.n);
   const orthonormality = checkOrthonormality(vectors, resolution);
-  const found = checkColumns(prepared, vectors, readClaims(prepared, labels ?? {}, vectors.rows), resolution);
+  const found = checkColumns(
+    prepared,
+    vectors,
+    readClaims(prepared, labels === undefined ? {} : labels, vectors.rows),
+    resolution,
+  );
   const levels = checkLevels(prepared, vectors, found, resolution, options);
   const complete = vectors.rows === prepared.n;
   const remarks = [
@@ -194,6 +200,9 @@ function readClaims(
   labels: Readonly<Record<string, readonly ClaimedLabel[] | undefined>>,
   count: number,
 ): Claims {
+  if (!isObject(labels) || Array.isArray(labels)) {
+    throw new GoodBasisError("shape", `labels is ${shown(labels)}; give an object, one list of values a label`, {});
+  }
   return Object.entries(labels).flatMap(([name, values]) => {
     if (values === undefined) return [];
     const candidate = problem.candidates.find((other) => other.name === name);
@@ -201,8 +210,11 @@ function readClaims(
       const known = problem.candidates.map((other) => other.name).join(", ") || "none";
       throw new GoodBasisError("name", `label ${name} is no candidate of the problem (candidates: ${known})`, { name });
     }
-    if (values.length !== count) {
-      throw new GoodBasisError("shape", `label ${name} has ${values.length} values for ${count} columns`, { name });
+    if (!Array.isArray(values) || values.length !== count) {
+      const came = Array.isArray(values) ? `${values.length} values` : shown(values);
+      throw new GoodBasisError("shape", `label ${name} has ${came} for ${count} columns; give a list, one a column`, {
+        name,
+      });
     }
     return [{ candidate, values: values.map((value, k) => readClaim(candidate, value, k)) }];
   });
@@ -212,7 +224,7 @@ function readClaim(candidate: PreparedCandidate, value: ClaimedLabel, column: nu
   const bad = (): GoodBasisError =>
     new GoodBasisError(
       "option",
-      `label ${candidate.name} of column ${column} is ${JSON.stringify(value)}; give an eigenvalue of ${candidate.name}, ` +
+      `label ${candidate.name} of column ${column} is ${shown(value)}; give an eigenvalue of ${candidate.name}, ` +
         'or a quantum number such as "3/2"',
       { name: candidate.name, column },
     );

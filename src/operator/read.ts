@@ -243,7 +243,7 @@ function duplicateRadius(csr: Csr, n: number, rows: number[], cols: number[], re
  * @throws GoodBasisError `shape`, `not-finite`
  */
 export function readDiagonal(verb: string, diagonal: ArrayLike<number>, imaginary?: ArrayLike<number>): Uncertain {
-  for (const list of [diagonal, imaginary ?? []]) {
+  for (const list of imaginary === undefined ? [diagonal] : [diagonal, imaginary]) {
     if (!hasLength(list)) throw badForm(verb, list, "a list of numbers, the diagonal");
   }
   const n = diagonal.length;

@@ -5,7 +5,7 @@ import { isMatrixInput, type MatrixInput } from "../operator/input.js";
 import { Operator } from "../operator/operator.js";
 import type { Place } from "./place.js";
 import type { ProblemOptions } from "./problem-file.js";
-import { conform, FORMS, outlineSchema } from "./schema.js";
+import { candidateSchema, conform, FORMS, outlineSchema } from "./schema.js";
 
 /** What a problem file holds besides the problem. */
 export interface WriteProblemOptions {
@@ -92,7 +92,11 @@ function candidate(input: MatrixInput | Candidate): unknown {
   if (isMatrixInput(input)) return matrix(input);
   if (!isObject(input))
     throw new GoodBasisError("shape", `writeProblem: a candidate is ${shown(input)}; give a matrix`);
-  requireKnown("writeProblem: a candidate", input, ["operator", "label", "ladder"]);
+  conform(candidateSchema, WRITTEN, {
+    ...input,
+    operator: null,
+    ...(input.ladder === undefined ? {} : { ladder: null }),
+  });
   const { operator, label, ladder } = input;
   return { operator: matrix(operator), label, ladder: ladder === undefined ? undefined : matrix(ladder) };
 }

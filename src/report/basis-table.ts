@@ -137,7 +137,7 @@ function chooseLevels(levels: readonly LevelResult[], chosen: readonly number[] 
   const next = "or leave it out for all levels";
   requireArgument(Array.isArray(chosen), "basisTable", "as levels a list of indices", chosen, next);
   return chosen.map((index) => {
-    const level = levels[index];
+    const level = typeof index === "number" ? levels[index] : undefined;
     if (level !== undefined) return level;
     throw new GoodBasisError(
       "no-level",
