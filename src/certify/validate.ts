@@ -2,7 +2,7 @@ import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
-import { isObject, shown } from "../misuse.js";
+import { isObject, requireArgument, shown } from "../misuse.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
@@ -135,12 +135,8 @@ export function validateBasis<K extends string>(
   checkLevelWidth(options.levelWidth);
   const vectors = readColumns(columns, prepared.n);
   const orthonormality = checkOrthonormality(vectors, resolution);
-  const found = checkColumns(
-    prepared,
-    vectors,
-    readClaims(prepared, labels === undefined ? {} : labels, vectors.rows),
-    resolution,
-  );
+  const claims = readClaims(prepared, labels === undefined ? {} : labels, vectors.rows);
+  const found = checkColumns(prepared, vectors, claims, resolution);
   const levels = checkLevels(prepared, vectors, found, resolution, options);
   const complete = vectors.rows === prepared.n;
   const remarks = [
@@ -200,9 +196,8 @@ function readClaims(
   labels: Readonly<Record<string, readonly ClaimedLabel[] | undefined>>,
   count: number,
 ): Claims {
-  if (!isObject(labels) || Array.isArray(labels)) {
-    throw new GoodBasisError("shape", `labels is ${shown(labels)}; give an object, one list of values a label`, {});
-  }
+  const named = isObject(labels) && !Array.isArray(labels);
+  requireArgument(named, "validateBasis", "as labels an object with lists of values", labels, "or leave it out");
   return Object.entries(labels).flatMap(([name, values]) => {
     if (values === undefined) return [];
     const candidate = problem.candidates.find((other) => other.name === name);
@@ -212,9 +207,7 @@ function readClaims(
     }
     if (!Array.isArray(values) || values.length !== count) {
       const came = Array.isArray(values) ? `${values.length} values` : shown(values);
-      throw new GoodBasisError("shape", `label ${name} has ${came} for ${count} columns; give a list, one a column`, {
-        name,
-      });
+      throw new GoodBasisError("shape", `label ${name} has ${came} for ${count} columns; give one a column`, { name });
     }
     return [{ candidate, values: values.map((value, k) => readClaim(candidate, value, k)) }];
   });
