@@ -4,11 +4,11 @@
  * | code | meaning |
  * |---|---|
  * | `shape` | a matrix, vector or list has the wrong size or form |
- * | `not-finite` | an entry is NaN or infinite |
+ * | `not-finite` | an entry is NaN, infinite, or so large that products of operators would overflow |
  * | `not-hermitian` | H0 or a perturbation is not Hermitian |
  * | `not-normal` | a candidate does not commute with its adjoint |
  * | `name` | an operator, ket or label name is empty, duplicate or unknown |
- * | `option` | an option has a value outside its range |
+ * | `option` | an argument or option is unknown, of the wrong kind, or outside its range |
  * | `no-level` | a choice of levels matches nothing |
  * | `unsafe-order` | an order was asked for that the certificate does not call safe |
  * | `not-certified` | an object that is not a certified basis was handed over |

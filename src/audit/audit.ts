@@ -1,3 +1,4 @@
+import { requireOptions } from "../misuse.js";
 import { type CommutatorFinding, judgeCommutator } from "./commutators.js";
 import { maximalCommutingSets } from "./commuting-sets.js";
 import { type PreparedProblem, type Problem, prepareProblem } from "./problem.js";
@@ -64,6 +65,7 @@ export interface AuditOptions {
  * ```
  */
 export function auditCommutators(problem: Problem, options: AuditOptions = {}): Audit {
+  requireOptions("auditCommutators", options, ["resolution"]);
   return auditPrepared(prepareProblem(problem), checkResolution(options.resolution ?? DEFAULT_RESOLUTION));
 }
 

@@ -1,7 +1,10 @@
 import { GoodBasisError } from "../errors.js";
+import { isObject, requireKnown, shown } from "../misuse.js";
 import { isMatrixInput, type MatrixInput } from "../operator/input.js";
 import { Operator } from "../operator/operator.js";
+import { modulusAbove } from "../operator/radius.js";
 import { checkDeclaration, type LabelDeclaration } from "./label-family.js";
+import { LARGEST_CANDIDATE, LARGEST_ENERGY } from "./resolution.js";
 
 /** A candidate conserved operator together with what the caller knows of it. */
 export interface Candidate {
@@ -61,23 +64,32 @@ export interface PreparedProblem {
   readonly unit: string;
 }
 
+const FIELDS = ["h0", "v", "candidates", "kets", "unit"];
+const CANDIDATE_FIELDS = ["operator", "label", "ladder"];
+
+/** Fields by which one matrix is told from a record of named ones; no perturbation may be called so. */
+const MATRIX_FIELDS = ["re", "im", "entries", "diagonal", "permutation"];
+
 /**
  * Reads and checks a problem.
  *
- * @throws GoodBasisError `shape`, `not-finite`, `not-hermitian`, `not-normal`, `name`: with the operator, the place and size
+ * @throws GoodBasisError `shape`, `not-finite`, `not-hermitian`, `not-normal`, `name`, `option`: with the operator, the place
+ *   and size
  */
 export function prepareProblem(problem: Problem): PreparedProblem {
-  if (typeof problem !== "object" || problem === null) {
-    throw new GoodBasisError("option", `the problem is ${String(problem)}; give { h0, v, candidates }`, { problem });
+  if (!isObject(problem) || Array.isArray(problem)) {
+    throw new GoodBasisError("option", `the problem is ${shown(problem)}; give { h0, v, candidates }`, { problem });
   }
+  requireKnown("the problem", problem, FIELDS);
   const { candidates: given = {}, unit = "" } = problem;
-  if (typeof given !== "object" || given === null || Array.isArray(given) || given instanceof Map) {
-    throw new GoodBasisError("option", "candidates must be an object, one operator by name: { Jz: matrix, … }", {});
+  if (!isObject(given) || Array.isArray(given) || given instanceof Map || given instanceof Operator) {
+    const message = `candidates is ${shown(given)}; give an object, one operator by name: { Jz: matrix, … }`;
+    throw new GoodBasisError("option", message, {});
   }
   if (typeof unit !== "string") {
-    throw new GoodBasisError("option", `unit is ${String(unit)}; give it as text, such as "cm⁻¹"`, { unit });
+    throw new GoodBasisError("option", `unit is ${shown(unit)}; give it as text, such as "cm⁻¹"`, { unit });
   }
-  const h0 = hermitian("H0", read("H0", problem.h0));
+  const h0 = hermitian("H0", read("H0", problem.h0, LARGEST_ENERGY));
   const n = h0.n;
   const perturbations = readPerturbations(problem.v, n);
   const candidates: PreparedCandidate[] = [];
@@ -102,13 +114,31 @@ export function prepareProblem(problem: Problem): PreparedProblem {
   };
 }
 
-function read(name: string, input: MatrixInput): Operator {
+function read(name: string, input: MatrixInput, largest: number): Operator {
   try {
-    return Operator.from(input);
+    return notTooLarge(name, Operator.from(input), largest);
   } catch (error) {
-    if (!(error instanceof GoodBasisError)) throw error;
+    if (!(error instanceof GoodBasisError) || "operator" in error.details) throw error;
     throw new GoodBasisError(error.code, `${name}: ${error.message}`, { ...error.details, operator: name });
   }
+}
+
+/** Refuses entries so large that products of operators would leave the range of doubles somewhere further on. */
+function notTooLarge(name: string, operator: Operator, largest: number): Operator {
+  const { csr } = operator;
+  const radius = operator.isExact ? undefined : operator.radius;
+  for (let row = 0; row < csr.rows; row++) {
+    for (let e = csr.ptr[row] as number; e < (csr.ptr[row + 1] as number); e++) {
+      const size = Math.max(modulusAbove(csr, e), radius === undefined ? 0 : (radius[e] as number));
+      if (size <= largest) continue;
+      const col = csr.col[e] as number;
+      const message =
+        `entry (${row}, ${col}) of ${name}, counted from 0, is of size ${size.toPrecision(3)}, above ${largest}, the largest ` +
+        "whose products are sure to be finite; give the operator in a larger unit";
+      throw new GoodBasisError("not-finite", message, { operator: name, row, col, size, largest });
+    }
+  }
+  return operator;
 }
 
 function sameSize(name: string, operator: Operator, n: number): Operator {
@@ -133,23 +163,39 @@ function hermitian(name: string, operator: Operator): Operator {
 }
 
 function readPerturbations(v: Problem["v"], n: number): NamedOperator[] {
-  if (isMatrixInput(v)) return [{ name: "V", operator: hermitian("V", sameSize("V", read("V", v), n)) }];
-  const entries = typeof v === "object" && v !== null ? Object.entries(v) : [];
+  if (isMatrixInput(v)) return [{ name: "V", operator: readSingle(v, n) }];
+  const entries = isObject(v) && !(v instanceof Map) ? Object.entries(v) : [];
   if (entries.length === 0) {
-    throw new GoodBasisError("option", "no perturbation was given; pass v: matrix, or v: { name: matrix }", {});
+    const message = `no perturbation was given: v is ${shown(v)}; pass v: matrix, or v: { name: matrix }`;
+    throw new GoodBasisError("option", message, {});
   }
   return entries.map(([name, input]) => {
     checkName("perturbation", name);
-    if (name === "H0") {
-      throw new GoodBasisError("name", 'a perturbation may not be called "H0"; rename it', { name });
+    if (name === "H0" || MATRIX_FIELDS.includes(name)) {
+      const why = name === "H0" ? "" : ", which is a field of a matrix";
+      throw new GoodBasisError("name", `a perturbation may not be called "${name}"${why}; rename it`, { name });
     }
-    return { name, operator: hermitian(name, sameSize(name, read(name, input), n)) };
+    return { name, operator: hermitian(name, sameSize(name, read(name, input, LARGEST_ENERGY), n)) };
   });
+}
+
+/** V given as one matrix; what is wrong with it may be that its fields were meant as names. */
+function readSingle(v: MatrixInput, n: number): Operator {
+  try {
+    return hermitian("V", sameSize("V", read("V", v, LARGEST_ENERGY), n));
+  } catch (error) {
+    const fields = v instanceof Operator || Array.isArray(v) ? [] : Object.keys(v);
+    const field = fields.find((name) => MATRIX_FIELDS.includes(name));
+    if (!(error instanceof GoodBasisError) || field === undefined) throw error;
+    const hint = `v is read as one matrix, as it has the field "${field}"; if that is a perturbation's name, rename it`;
+    throw new GoodBasisError(error.code, `${error.message} (${hint})`, error.details);
+  }
 }
 
 function readCandidate(name: string, input: MatrixInput | Candidate, n: number): PreparedCandidate {
   const given: Candidate = isMatrixInput(input) ? { operator: input } : (input ?? { operator: input });
-  let operator = sameSize(name, read(name, given.operator), n);
+  if (isObject(given) && "operator" in given) requireKnown(`candidate ${name}`, given, CANDIDATE_FIELDS);
+  let operator = sameSize(name, read(name, given.operator, LARGEST_CANDIDATE), n);
   const kind = operator.kind;
   if (kind === "general") {
     const size = operator.normalDefect;
@@ -162,7 +208,9 @@ function readCandidate(name: string, input: MatrixInput | Candidate, n: number):
     );
   }
   if (kind === "hermitian") operator = operator.hermitianPart();
-  const ladder = given.ladder === undefined ? undefined : sameSize(name, read(`${name}.ladder`, given.ladder), n);
+  const ladderName = `${name}.ladder`;
+  const ladder =
+    given.ladder === undefined ? undefined : sameSize(ladderName, read(ladderName, given.ladder, LARGEST_CANDIDATE), n);
   return {
     name,
     operator,
@@ -184,7 +232,7 @@ function checkName(what: string, name: string): void {
 
 function checkKets(kets: readonly string[], n: number): readonly string[] {
   if (!Array.isArray(kets)) {
-    throw new GoodBasisError("shape", `kets is no list; give an array of ${n} names`, { expected: n });
+    throw new GoodBasisError("shape", `kets is ${shown(kets)}; give an array of ${n} names`, { expected: n });
   }
   if (kets.length !== n) {
     throw new GoodBasisError("shape", `kets lists ${kets.length} names but H0 is ${n} × ${n}; name every ket once`, {
@@ -194,7 +242,11 @@ function checkKets(kets: readonly string[], n: number): readonly string[] {
   }
   const seen = new Map<string, number>();
   [...kets].forEach((ket, i) => {
-    if (typeof ket !== "string" || ket.trim() === "") {
+    if (typeof ket !== "string") {
+      const message = `ket ${i} is ${shown(ket)}; give every name as text, such as "${i}"`;
+      throw new GoodBasisError("name", message, { ket: i });
+    }
+    if (ket.trim() === "") {
       throw new GoodBasisError("name", `ket ${i} has an empty name; name every ket`, { ket: i });
     }
     const other = seen.get(ket);

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Operator } from "../operator/operator.js";
 
 /**
@@ -51,6 +52,15 @@ export function commutatorScale(a: Operator, b: Operator): number {
 }
 
 /**
+ * Entries of H0 and V may not be larger. Bounds take squares of products of two operators, summed over up to n⁴ places:
+ * 4 n⁴ (10⁶⁰)⁴ stays a double for every n below 2³¹. No unit of energy needs more.
+ */
+export const LARGEST_ENERGY = 1e60;
+
+/** Entries of candidates and ladder operators may not be larger: their squares must be doubles, as must their products with H0 and V. */
+export const LARGEST_CANDIDATE = 1e150;
+
+/**
  * Checks a resolution.
  *
  * @throws GoodBasisError `option` unless it is a number above 0 and below 1
@@ -59,7 +69,7 @@ export function checkResolution(resolution: number): number {
   if (typeof resolution === "number" && resolution > 0 && resolution < 1) return resolution;
   throw new GoodBasisError(
     "option",
-    `resolution is ${String(resolution)}; give a number above 0 and below 1, the fraction of ‖V‖ that counts as vanished`,
+    `resolution is ${shown(resolution)}; give a number above 0 and below 1, the fraction of ‖V‖ that counts as vanished`,
     { resolution },
   );
 }

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Csr } from "../numerics/csr.js";
 import { fromDense, transpose } from "../numerics/sparse.js";
 import { Operator } from "../operator/operator.js";
@@ -66,6 +67,11 @@ function readReal(input: RealColumns, n: number, part: string): { values: Float6
   const values = new Float64Array(n * count);
   for (let i = 0; i < n; i++) {
     const row = list ? (input[i] as readonly number[]) : undefined;
+    if (list && !Array.isArray(row) && !ArrayBuffer.isView(row)) {
+      throw new GoodBasisError("shape", `row ${i} of the basis is ${shown(row)}; give a list of ${count} numbers`, {
+        row: i,
+      });
+    }
     if (row !== undefined && row.length !== count) {
       throw new GoodBasisError("shape", `row ${i} of the basis has ${row.length} numbers, row 0 has ${count}`, {
         row: i,
@@ -74,7 +80,7 @@ function readReal(input: RealColumns, n: number, part: string): { values: Float6
     for (let k = 0; k < count; k++) {
       const x = row === undefined ? (input as MatrixLike).get(i, k) : row[k];
       if (typeof x !== "number" || !Number.isFinite(x)) {
-        throw new GoodBasisError("not-finite", `the basis has ${String(x)} in ${part} at row ${i}, column ${k}`, {
+        throw new GoodBasisError("not-finite", `the basis has ${shown(x)} in ${part} at row ${i}, column ${k}`, {
           row: i,
           column: k,
         });

@@ -1,6 +1,7 @@
 import { type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, DEFAULT_RESOLUTION } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { LevelChoice } from "../refine/levels.js";
 import type { Depth } from "../refine/resolve.js";
 import { writeCertificate } from "./certificate.js";
@@ -128,13 +129,9 @@ function checkOptions(options: FindOptions): StudySettings {
   requireOptions("findGoodBasis", options, OPTIONS);
   const depth = options.depth ?? "full";
   if (!DEPTHS.includes(depth)) {
-    throw new GoodBasisError(
-      "option",
-      `depth is ${JSON.stringify(depth)}; give ${DEPTHS.map((d) => `"${d}"`).join(", ")}`,
-      {
-        depth,
-      },
-    );
+    throw new GoodBasisError("option", `depth is ${shown(depth)}; give ${DEPTHS.map((d) => `"${d}"`).join(", ")}`, {
+      depth,
+    });
   }
   const { levelWidth, onProgress } = options;
   checkLevelWidth(levelWidth);

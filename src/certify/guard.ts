@@ -1,6 +1,7 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, REFUSE_ABOVE, REFUSE_ABOVE_UNSTATED } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown } from "../numerics/rounding.js";
@@ -83,8 +84,8 @@ export interface GuardOptions {
 export function guardSetting(options: GuardOptions): GuardSetting {
   const { lambda, refuseAbove } = options;
   for (const [name, value] of Object.entries({ lambda, refuseAbove })) {
-    if (value !== undefined && !(value > 0 && Number.isFinite(value))) {
-      throw new GoodBasisError("option", `${name} is ${value}; give a positive number`, { [name]: value });
+    if (value !== undefined && !(typeof value === "number" && value > 0 && Number.isFinite(value))) {
+      throw new GoodBasisError("option", `${name} is ${shown(value)}; give a positive number`, { [name]: value });
     }
   }
   const threshold = lambda === undefined ? REFUSE_ABOVE_UNSTATED : REFUSE_ABOVE;

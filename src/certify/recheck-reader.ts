@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 
 /** A value of a JSON document together with its path, and the types that it may be read as. */
 export class Reader {
@@ -11,7 +12,7 @@ export class Reader {
   }
 
   /** The error that says what was expected here and what came. */
-  malformed(expected: string, got: string = describe(this.#value)): GoodBasisError {
+  malformed(expected: string, got: string = shown(this.#value)): GoodBasisError {
     const place = this.#path === "" ? "the top" : this.#path;
     return new GoodBasisError(
       "file",
@@ -140,8 +141,18 @@ export function join(path: string, name: string): string {
   return path === "" ? name : `${path}.${name}`;
 }
 
-function describe(value: unknown): string {
-  if (value === undefined) return "nothing";
-  const text = JSON.stringify(value) ?? String(value);
-  return text.length > 60 ? `${text.slice(0, 60)}…` : text;
+/**
+ * A certificate that was handed over as text, parsed; anything else as it is.
+ *
+ * @throws GoodBasisError `file` - text that is not JSON
+ */
+export function parsedCertificate(certificate: unknown): unknown {
+  if (typeof certificate !== "string") return certificate;
+  try {
+    return JSON.parse(certificate.replace(/^\uFEFF/, ""));
+  } catch (error) {
+    const reason = error instanceof Error ? error.message : String(error);
+    const message = `recheck: the certificate is text that is not JSON (${reason}); hand over what outcome.certificate() wrote, or its JSON`;
+    throw new GoodBasisError("file", message, { path: "" });
+  }
 }

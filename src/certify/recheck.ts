@@ -10,6 +10,7 @@ import { evaluateLevel } from "./recheck-level.js";
 import { checkNodes, leak, type NodeCase } from "./recheck-nodes.js";
 import { ownProblem } from "./recheck-operators.js";
 import { readCertificate } from "./recheck-read.js";
+import { parsedCertificate } from "./recheck-reader.js";
 import { Ledger, type RecheckReport } from "./recheck-report.js";
 import { checkSafeOrders } from "./recheck-safe.js";
 import { checkSectors } from "./recheck-sectors.js";
@@ -39,10 +40,10 @@ const SMALLEST_NORM = 2 ** -400;
  * all levels and the bounds over the whole basis are checked as far as the certified states bear on them. The words of `limitedBy`,
  * the resolution and the library's version are sealed but claim nothing.
  *
- * @param certificate - what `outcome.certificate()` wrote, or its JSON parsed
+ * @param certificate - what `outcome.certificate()` wrote, or its JSON, as text or parsed
  * @param problem - the problem that it is about, with the same operators
  * @returns `ok`, the number of claims checked, and every claim that does not stand with its path in the JSON
- * @throws GoodBasisError `file` - a malformed certificate; `wrong-problem` - another dimension or other operator names; and what
+ * @throws GoodBasisError `file` - a malformed certificate, or text that is not JSON; `wrong-problem` - another dimension or other operator names; and what
  *   reading a problem throws
  *
  * @example
@@ -55,12 +56,12 @@ const SMALLEST_NORM = 2 ** -400;
  *   candidates: { A: { diagonal: [1, 0, 0] } },
  * };
  * const json = JSON.stringify(findGoodBasis(problem).certificate());
- * const report = recheck(JSON.parse(json), problem);
+ * const report = recheck(json, problem);
  * if (!report.ok) throw new Error(report.findings.map((finding) => `${finding.path}: ${finding.message}`).join("\n"));
  * ```
  */
 export function recheck(certificate: unknown, problem: Problem): RecheckReport {
-  const claims = readCertificate(certificate);
+  const claims = readCertificate(parsedCertificate(certificate));
   const prepared = prepareProblem(problem);
   const own = ownProblem(prepared);
   const ledger = new Ledger();

@@ -2,6 +2,7 @@ import { Fraction } from "fraction.js";
 import { type PreparedCandidate, type PreparedProblem, type Problem, prepareProblem } from "../audit/problem.js";
 import { checkResolution, couplingScale, DEFAULT_RESOLUTION, FAR_BELOW } from "../audit/resolution.js";
 import { GoodBasisError } from "../errors.js";
+import { isObject, requireArgument, shown } from "../misuse.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
@@ -135,12 +136,14 @@ export function validateBasis<K extends string>(
   options: ValidateOptions = {},
 ): Validation {
   const prepared = prepareProblem(problem);
-  requireOptions("validateBasis", options);
+  requireOptions("validateBasis", options, ["resolution", "levelWidth", "lambda", "refuseAbove"]);
   const resolution = checkResolution(options.resolution ?? DEFAULT_RESOLUTION);
   checkLevelWidth(options.levelWidth);
+  const setting = guardSetting(options);
   const vectors = readColumns(columns, prepared.n);
   const orthonormality = checkOrthonormality(vectors, resolution);
-  const found = checkColumns(prepared, vectors, readClaims(prepared, labels ?? {}, vectors.rows), resolution);
+  const claims = readClaims(prepared, labels === undefined ? {} : labels, vectors.rows);
+  const found = checkColumns(prepared, vectors, claims, resolution);
   const complete = vectors.rows === prepared.n;
   const spectrum = complete ? undefined : spectrumOf(prepared);
   const levels = checkLevels(prepared, vectors, found, resolution, options, spectrum);
@@ -153,7 +156,7 @@ export function validateBasis<K extends string>(
           prepared,
           vectors,
           levels.map(({ level }) => level),
-          guardSetting(options),
+          setting,
         )
       : []),
   ];
@@ -208,6 +211,8 @@ function readClaims(
   labels: Readonly<Record<string, readonly ClaimedLabel[] | undefined>>,
   count: number,
 ): Claims {
+  const named = isObject(labels) && !Array.isArray(labels);
+  requireArgument(named, "validateBasis", "as labels an object with lists of values", labels, "or leave it out");
   return Object.entries(labels).flatMap(([name, values]) => {
     if (values === undefined) return [];
     const candidate = problem.candidates.find((other) => other.name === name);
@@ -215,8 +220,9 @@ function readClaims(
       const known = problem.candidates.map((other) => other.name).join(", ") || "none";
       throw new GoodBasisError("name", `label ${name} is no candidate of the problem (candidates: ${known})`, { name });
     }
-    if (values.length !== count) {
-      throw new GoodBasisError("shape", `label ${name} has ${values.length} values for ${count} columns`, { name });
+    if (!Array.isArray(values) || values.length !== count) {
+      const came = Array.isArray(values) ? `${values.length} values` : shown(values);
+      throw new GoodBasisError("shape", `label ${name} has ${came} for ${count} columns; give one a column`, { name });
     }
     return [{ candidate, values: values.map((value, k) => readClaim(candidate, value, k)) }];
   });
@@ -226,7 +232,7 @@ function readClaim(candidate: PreparedCandidate, value: ClaimedLabel, column: nu
   const bad = (): GoodBasisError =>
     new GoodBasisError(
       "option",
-      `label ${candidate.name} of column ${column} is ${JSON.stringify(value)}; give an eigenvalue of ${candidate.name}, ` +
+      `label ${candidate.name} of column ${column} is ${shown(value)}; give an eigenvalue of ${candidate.name}, ` +
         'or a quantum number such as "3/2"',
       { name: candidate.name, column },
     );

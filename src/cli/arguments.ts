@@ -45,14 +45,10 @@ const FORMATS: readonly TableFormat[] = ["text", "markdown", "csv", "json", "lat
  */
 export function readArguments(verb: string, args: readonly string[], allowed: readonly OptionName[]): Settings {
   const next = `see goodbasis ${verb} --help`;
-  let parsed: { values: Partial<Record<OptionName, string | boolean>>; positionals: string[] };
-  try {
-    parsed = parseArgs({ args: [...args], options: OPTIONS, allowPositionals: true, strict: true });
-  } catch (error) {
-    const [reason = "the arguments cannot be read"] = error instanceof Error ? error.message.split("\n") : [];
-    throw new GoodBasisError("option", `${reason.replace(/\.$/, "")}; ${next}`);
+  const { values, positionals, repeated } = parse(args, next);
+  if (repeated !== undefined) {
+    throw new GoodBasisError("option", `--${repeated} is given twice; give it once (${next})`, { option: repeated });
   }
-  const { values, positionals } = parsed;
   for (const name of Object.keys(values)) {
     if (name === "help" || allowed.some((known) => known === name)) continue;
     throw new GoodBasisError("option", `--${name} is no option of goodbasis ${verb}; ${next}`, { option: name });
@@ -61,6 +57,11 @@ export function readArguments(verb: string, args: readonly string[], allowed: re
     const value = values[name];
     return typeof value === "string" ? value : undefined;
   };
+  for (const [name, value] of Object.entries(values)) {
+    if (typeof value !== "string" || value.trim() !== "") continue;
+    throw new GoodBasisError("option", `--${name} is empty; give a value, or leave it out (${next})`, { option: name });
+  }
+  if (positionals.includes("")) throw new GoodBasisError("option", `the name of a file is empty; ${next}`);
   const columns = text("columns");
   return {
     files: positionals,
@@ -73,6 +74,28 @@ export function readArguments(verb: string, args: readonly string[], allowed: re
     basis: text("basis"),
     find: readFindOptions(text),
   };
+}
+
+interface Parsed {
+  readonly values: Partial<Record<OptionName, string | boolean>>;
+  readonly positionals: readonly string[];
+  /** An option that stands there twice, of which one would be lost. */
+  readonly repeated: string | undefined;
+}
+
+function parse(args: readonly string[], next: string): Parsed {
+  try {
+    const parsed = parseArgs({ args: [...args], options: OPTIONS, allowPositionals: true, strict: true, tokens: true });
+    const names = parsed.tokens.flatMap((token) => (token.kind === "option" ? [token.name] : []));
+    return { ...parsed, repeated: names.find((name, k) => names.indexOf(name) !== k) };
+  } catch (error) {
+    const lines = error instanceof Error ? error.message.split("\n") : ["the arguments cannot be read"];
+    // the last line, where there are several, says how to write a value that begins with a dash
+    const reasons = [...new Set([lines[0], lines.at(-1)])].map((line = "") =>
+      line.replace(/\.$/, "").replace(/^To /, "to "),
+    );
+    throw new GoodBasisError("option", `${reasons.join("; ")}; ${next}`);
+  }
 }
 
 function readFormat(text: string): TableFormat {
@@ -118,14 +141,15 @@ const LOWEST = /^lowest:(\d+)$/;
 function readLevels(text: string): NonNullable<FindOptions["levels"]> {
   if (text === "all") return "all";
   const lowest = LOWEST.exec(text);
-  if (lowest !== null) return { lowest: Number(lowest[1]) };
+  if (lowest !== null && Number(lowest[1]) >= 1) return { lowest: Number(lowest[1]) };
   const nearest = NEAREST.exec(text);
-  if (nearest !== null) {
+  if (nearest !== null && Number.isFinite(Number(nearest[1])) && Number(nearest[2] ?? 1) >= 1) {
     const count = nearest[2] === undefined ? {} : { count: Number(nearest[2]) };
     return { nearest: Number(nearest[1]), ...count };
   }
   const window = WINDOW.exec(text);
-  if (window !== null) return { from: Number(window[1]), to: Number(window[2]) };
-  const message = `--levels ${text}: give all, lowest:3, nearest:1350, nearest:1350:2 or 0..2000`;
+  if (window !== null && Number(window[1]) <= Number(window[2]))
+    return { from: Number(window[1]), to: Number(window[2]) };
+  const message = `--levels ${text}: give all, lowest:3, nearest:1350, nearest:1350:2 or 0..2000 (from 1 level on, windows upwards)`;
   throw new GoodBasisError("option", message, { levels: text });
 }

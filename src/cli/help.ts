@@ -24,8 +24,8 @@ const OPTION_HELP: Readonly<Record<OptionName, readonly [form: string, text: str
   ],
   basis: [
     "    --basis PATH",
-    "the basis to be checked, one state a column: a Matrix Market file (.mtx), or JSON\n" +
-      "with rows, triplets or any other matrix form of problem files",
+    "the basis to be checked: a Matrix Market file (.mtx) with one state a column, or JSON,\n" +
+      'a list of states, each a list of numbers or { "ket": coefficient, … }',
   ],
   levels: ["    --levels WHICH", "all, lowest:3, nearest:1350, nearest:1350:2 or a window 0..2000"],
   depth: ["    --depth DEPTH", "labels, first, second or full: how far states may be told apart by V"],

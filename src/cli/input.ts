@@ -1,11 +1,19 @@
 import { dirname, isAbsolute, join } from "node:path";
 import { GoodBasisError } from "../errors.js";
 import { type ReadProblem, readProblem } from "../problem/read.js";
+import { inSource } from "../problem/source.js";
+import type { Settings } from "./arguments.js";
 import type { Terminal } from "./terminal.js";
 
 /** The name by which messages call a file. */
-function nameOf(path: string): string {
+export function nameOf(path: string): string {
   return path === "-" ? "standard input" : path;
+}
+
+/** What the platform says went wrong, without the call and the path that it was about. */
+export function reasonOf(error: unknown): string {
+  const message = error instanceof Error ? error.message : String(error);
+  return message.replace(/, (?:[a-z]+ '.*'|[a-z]+)$/s, "");
 }
 
 /**
@@ -17,7 +25,7 @@ export function readFile(terminal: Terminal, path: string): string {
   try {
     return terminal.read(path);
   } catch (error) {
-    const reason = error instanceof Error ? error.message : String(error);
+    const reason = reasonOf(error);
     const message = `${nameOf(path)} cannot be read (${reason}); check the path and the rights to it`;
     throw new GoodBasisError("file", message, { name: nameOf(path) });
   }
@@ -36,4 +44,14 @@ export function loadProblem(terminal: Terminal, path: string): ReadProblem {
 function matrixLoader(terminal: Terminal, path: string): (matrix: string) => string {
   const folder = path === "-" ? "." : dirname(path);
   return (matrix) => readFile(terminal, isAbsolute(matrix) ? matrix : join(folder, matrix));
+}
+
+/**
+ * Runs `work` on a problem; its errors name the line of the problem file where they can.
+ *
+ * @param settings - options given here and not in the file
+ */
+export function onProblem<T>(read: ReadProblem, { find }: Settings, work: () => T): T {
+  const own = Object.keys(read.options).filter((name) => !Object.hasOwn(find, name));
+  return inSource(read, own, work);
 }

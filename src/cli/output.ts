@@ -1,6 +1,7 @@
 import { resolve } from "node:path";
 import { GoodBasisError } from "../errors.js";
 import type { Settings } from "./arguments.js";
+import { reasonOf } from "./input.js";
 import type { FileToWrite, Terminal } from "./terminal.js";
 
 /**
@@ -44,10 +45,9 @@ function writeAll(terminal: Terminal, files: readonly FileToWrite[]): void {
     terminal.write(files);
   } catch (error) {
     const paths = files.map(({ path }) => path).join(", ");
-    const reason = error instanceof Error ? error.message : String(error);
     throw new GoodBasisError(
       "output",
-      `${paths} cannot be written (${reason}); check the folder and the rights to it`,
+      `${paths} cannot be written (${reasonOf(error)}); check the folder and the rights to it`,
       {
         paths,
       },

@@ -68,7 +68,10 @@ function named(error: unknown, file: string): unknown {
 }
 
 function complaint(verb: string, error: unknown): string {
-  if (error instanceof GoodBasisError) return `error [${error.code}]: goodbasis ${verb}: ${error.message}`;
+  if (error instanceof GoodBasisError) {
+    const message = error.message.startsWith(`${verb}: `) ? error.message.slice(verb.length + 2) : error.message;
+    return `error [${error.code}]: goodbasis ${verb}: ${message}`;
+  }
   const reason = error instanceof Error ? `${error.name}: ${error.message}` : String(error);
   return `error [unexpected]: goodbasis ${verb}: ${reason}; please report this together with the input`;
 }

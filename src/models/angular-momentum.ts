@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
 
@@ -29,7 +30,7 @@ export interface AngularMomentum {
  * Atomic Spectra, 1935, ch. III). Roots that are whole or half numbers are exact, others carry half a unit in the last place.
  *
  * @param j - 0, 1/2, 1, 3/2, …
- * @throws GoodBasisError `option` - j is not a whole or half number from 0 on
+ * @throws GoodBasisError `option` - j is not a whole or half number from 0 to below 2^20
  *
  * @example
  * ```ts
@@ -73,8 +74,9 @@ function ladderElement(j: number, k: number): { value: number; radius: number } 
  * @throws GoodBasisError `option` - j is not a whole or half number from 0 on
  */
 export function multiplicity(verb: string, j: number): number {
-  if (Number.isInteger(2 * j) && j >= 0 && j < 2 ** 20) return 2 * j + 1;
-  throw new GoodBasisError("option", `${verb}: j must be 0, 1/2, 1, 3/2, …, got ${j}`, { j });
+  if (typeof j === "number" && Number.isInteger(2 * j) && j >= 0 && j < 2 ** 20) return 2 * j + 1;
+  const message = `${verb}: j must be one of the numbers 0, 1/2, 1, 3/2, …, below 2^20, got ${shown(j)}`;
+  throw new GoodBasisError("option", message, { j });
 }
 
 /** A whole or half number as text: `"3/2"`, `"-1"`. */

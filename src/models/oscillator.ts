@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { gamma } from "../numerics/rounding.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
@@ -48,7 +49,9 @@ export interface Oscillator {
  */
 export function oscillator(levels: number): Oscillator {
   if (!Number.isInteger(levels) || levels < 1 || levels > 2 ** 24) {
-    throw new GoodBasisError("option", `oscillator: the number of levels must be 1, 2, …, got ${levels}`, { levels });
+    throw new GoodBasisError("option", `oscillator: the number of levels must be 1, 2, …, got ${shown(levels)}`, {
+      levels,
+    });
   }
   const lower = new EntryList(levels);
   const position = new EntryList(levels);
@@ -82,7 +85,7 @@ export function oscillator(levels: number): Oscillator {
  */
 function xPower(levels: number, power: number): Operator {
   if (!Number.isInteger(power) || power < 0 || power > 64) {
-    throw new GoodBasisError("option", `xPower: the power must be 0, 1, …, 64, got ${power}`, { power });
+    throw new GoodBasisError("option", `xPower: the power must be 0, 1, …, 64, got ${shown(power)}`, { power });
   }
   const list = new EntryList(levels);
   for (let l = 0; l < levels; l++) {

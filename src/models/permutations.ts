@@ -1,6 +1,8 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Scalar } from "../numerics/complex.js";
 import { Operator } from "../operator/operator.js";
+import { readPermutation } from "../operator/read.js";
 
 /**
  * The operator that sends ket j to ket `map[j]`, times `phases[j]` where phases are given.
@@ -18,7 +20,8 @@ import { Operator } from "../operator/operator.js";
  * ```
  */
 export function ketPermutation(map: ArrayLike<number>, phases?: readonly Scalar[]): Operator {
-  return Operator.permutation(map, phases);
+  const { csr, radius } = readPermutation("ketPermutation", map, phases);
+  return Operator.fromCsr(csr, radius);
 }
 
 /**
@@ -38,15 +41,16 @@ export function ketPermutation(map: ArrayLike<number>, phases?: readonly Scalar[
  * ```
  */
 export function sitePermutation(siteDimension: number, map: readonly number[]): Operator {
-  const n = siteDimension ** map.length;
-  if (!Number.isInteger(siteDimension) || siteDimension < 1 || n >= 2 ** 31) {
-    const message = `sitePermutation: expected a whole site dimension from 1 on and fewer than 2^31 kets, got ${siteDimension} on ${map.length} sites`;
+  readPermutation("sitePermutation", map);
+  const whole = Number.isInteger(siteDimension) && siteDimension >= 1;
+  const n = whole ? siteDimension ** map.length : 0;
+  if (!whole || n >= 2 ** 31) {
+    const message = `sitePermutation: expected a whole site dimension from 1 on and fewer than 2^31 kets, got ${shown(siteDimension)} on ${map.length} sites`;
     throw new GoodBasisError("option", message, { siteDimension, sites: map.length });
   }
-  Operator.permutation(map); // refuses what is not a permutation
   // Weight of the digit of site s before and after.
   const sites = map.length;
-  const weight = map.map((image) => siteDimension ** (sites - 1 - image));
+  const weight = Array.from(map, (image) => siteDimension ** (sites - 1 - image));
   const image = new Int32Array(n);
   // The images of all kets whose leading digits are fixed follow from those of fewer digits.
   let filled = 1;
@@ -79,7 +83,7 @@ export function sitePermutation(siteDimension: number, map: readonly number[]): 
 export function translation(sites: number, siteDimension: number): Operator {
   return sitePermutation(
     siteDimension,
-    siteMap("translation", sites, (s) => (s + 1) % sites),
+    siteMap("translation", sites, siteDimension, (s) => (s + 1) % sites),
   );
 }
 
@@ -99,16 +103,26 @@ export function translation(sites: number, siteDimension: number): Operator {
  * console.log(reflection(4, 2).isHermitian); // true
  * ```
  */
-export function reflection(sites: number, siteDimension: number, centre: number = sites - 1): Operator {
+export function reflection(sites: number, siteDimension: number, centre?: number): Operator {
+  if (centre !== undefined && !Number.isInteger(centre)) {
+    const message = `reflection: the centre must be a whole number, twice the position of the mirror, got ${shown(centre)}`;
+    throw new GoodBasisError("option", message, { centre });
+  }
+  const twice = (): number => centre ?? sites - 1;
   return sitePermutation(
     siteDimension,
-    siteMap("reflection", sites, (s) => (((centre - s) % sites) + sites) % sites),
+    siteMap("reflection", sites, siteDimension, (s) => (((twice() - s) % sites) + sites) % sites),
   );
 }
 
-function siteMap(verb: string, sites: number, image: (site: number) => number): number[] {
+function siteMap(verb: string, sites: number, siteDimension: number, image: (site: number) => number): number[] {
   if (!Number.isInteger(sites) || sites < 1 || sites > 64) {
-    throw new GoodBasisError("option", `${verb}: the number of sites must be 1, 2, …, 64, got ${sites}`, { sites });
+    const message = `${verb}: the number of sites must be 1, 2, …, 64, got ${shown(sites)}`;
+    throw new GoodBasisError("option", message, { sites });
+  }
+  if (!Number.isInteger(siteDimension) || siteDimension < 1) {
+    const message = `${verb}: the number of kets of a site must be 1, 2, …, got ${shown(siteDimension)}`;
+    throw new GoodBasisError("option", message, { siteDimension });
   }
   return Array.from({ length: sites }, (_, s) => image(s));
 }

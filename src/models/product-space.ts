@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Csr } from "../numerics/csr.js";
 import { Operator } from "../operator/operator.js";
 
@@ -43,11 +44,15 @@ export interface ProductSpace {
  * ```
  */
 export function productSpace(dimensions: readonly number[]): ProductSpace {
-  const sizes = [...dimensions];
+  if (!Array.isArray(dimensions)) {
+    const message = `productSpace: expected a list of dimensions such as [3, 2], got ${shown(dimensions)}`;
+    throw new GoodBasisError("option", message, { dimensions });
+  }
+  const sizes: readonly number[] = [...dimensions];
   let n = 1;
   for (const size of sizes) {
     if (!Number.isInteger(size) || size < 1) {
-      throw new GoodBasisError("option", `productSpace: a dimension must be 1, 2, 3, …, got ${size}`, {
+      throw new GoodBasisError("option", `productSpace: a dimension must be 1, 2, 3, …, got ${shown(size)}`, {
         dimensions: sizes,
       });
     }
@@ -66,10 +71,14 @@ export function productSpace(dimensions: readonly number[]): ProductSpace {
 }
 
 function embed(sizes: readonly number[], operator: Operator, position: number): Operator {
-  const size = sizes[position];
+  const size = Number.isInteger(position) ? sizes[position] : undefined;
+  if (!(operator instanceof Operator)) {
+    const message = `embed: expected an Operator, got ${shown(operator)}; make one with Operator.from`;
+    throw new GoodBasisError("shape", message, { position, dimensions: sizes });
+  }
   if (size === undefined || operator.n !== size) {
     const expected = size === undefined ? `a factor 0 … ${sizes.length - 1}` : `an operator on ${size} kets`;
-    const message = `embed: expected ${expected}, got an operator on ${operator.n} kets for factor ${position}`;
+    const message = `embed: expected ${expected}, got an operator on ${operator.n} kets for factor ${shown(position)}`;
     throw new GoodBasisError("shape", message, { position, dimensions: sizes, n: operator.n });
   }
   const left = sizes.slice(0, position).reduce((product, d) => product * d, 1);
@@ -114,9 +123,19 @@ function repeat(a: Csr, left: number, right: number): { csr: Csr; order: Int32Ar
 }
 
 function productKets(sizes: readonly number[], names: readonly (readonly string[])[], separator: string): string[] {
+  const expected = `lists of [${sizes.join(", ")}] names`;
+  if (!Array.isArray(names) || !names.every((list) => Array.isArray(list))) {
+    const message = `kets: expected ${expected}, one list a factor, got ${shown(names)}`;
+    throw new GoodBasisError("shape", message, { dimensions: sizes });
+  }
+  if (typeof separator !== "string") {
+    throw new GoodBasisError("option", `kets: expected a separator such as ",", got ${shown(separator)}`, {
+      separator,
+    });
+  }
   if (names.length !== sizes.length || names.some((list, k) => list.length !== sizes[k])) {
     const came = names.map((list) => list.length).join(", ");
-    const message = `kets: expected lists of [${sizes.join(", ")}] names, got lists of [${came}]`;
+    const message = `kets: expected ${expected}, got lists of [${came}]`;
     throw new GoodBasisError("shape", message, { dimensions: sizes });
   }
   return names

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
 import { type AngularMomentum, angularMomentum, halfText, multiplicity } from "./angular-momentum.js";
@@ -56,7 +57,7 @@ export interface SpinChain {
 export function spinChain(sites: number, j = 0.5): SpinChain {
   const d = multiplicity("spinChain", j);
   if (!Number.isInteger(sites) || sites < 1 || d ** sites >= 2 ** 30) {
-    const message = `spinChain: expected at least one site and fewer than 2^30 kets, got ${sites} sites of ${d} kets`;
+    const message = `spinChain: expected at least one site and fewer than 2^30 kets, got ${shown(sites)} sites of ${d} kets`;
     throw new GoodBasisError("option", message, { sites, j });
   }
   const n = d ** sites;
@@ -66,7 +67,7 @@ export function spinChain(sites: number, j = 0.5): SpinChain {
   const check = (...chosen: number[]): void => {
     const good = chosen.every((site) => Number.isInteger(site) && site >= 0 && site < sites);
     if (good && new Set(chosen).size === chosen.length) return;
-    const message = `spinChain: expected different sites of 0 … ${sites - 1}, got ${chosen.join(" and ")}`;
+    const message = `spinChain: expected different sites of 0 … ${sites - 1}, got ${chosen.map(shown).join(" and ")}`;
     throw new GoodBasisError("shape", message, { sites, chosen });
   };
   const single = (operator: Operator, site: number): Operator => {

@@ -9,6 +9,13 @@ export interface Complex {
 /** A real number, or a complex one as `{ re, im }`. */
 export type Scalar = number | Complex;
 
+/** Whether a value is a number, or an object with two numbers `re` and `im`. */
+export function isScalar(value: unknown): value is Scalar {
+  if (typeof value === "number") return true;
+  if (typeof value !== "object" || value === null || !("re" in value) || !("im" in value)) return false;
+  return typeof value.re === "number" && typeof value.im === "number";
+}
+
 /** The real part of a scalar. */
 export function realPart(value: Scalar): number {
   return typeof value === "number" ? value : value.re;

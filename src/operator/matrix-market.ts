@@ -1,4 +1,6 @@
 import { GoodBasisError } from "../errors.js";
+import { requireOptions, shown } from "../misuse.js";
+import { wrongOperand } from "./checks.js";
 import { Operator, type OperatorOptions } from "./operator.js";
 import { readTriplets, type Triplet, withUncertainty } from "./read.js";
 
@@ -29,7 +31,8 @@ const NUMBER = /^[+-]?(\d+\.?\d*|\.\d+)([eEdD][+-]?\d+)?$/;
  *
  * @param text - the contents of the file
  * @param options - name of the file for messages, uncertainty of the entries
- * @throws GoodBasisError `file` - malformed; the message and `details` name line and field
+ * @throws GoodBasisError `file` - malformed, or an entry that is given twice (the format leaves its meaning open); the message and
+ *   `details` name line and field
  * @throws GoodBasisError `option` - a negative or infinite uncertainty
  *
  * @example
@@ -41,6 +44,11 @@ const NUMBER = /^[+-]?(\d+\.?\d*|\.\d+)([eEdD][+-]?\d+)?$/;
  * ```
  */
 export function readMatrixMarket(text: string, options: MatrixMarketOptions = {}): Operator {
+  requireOptions("readMatrixMarket", options, ["name", "uncertainty"]);
+  if (typeof text !== "string") {
+    const message = `readMatrixMarket: expected the text of a Matrix Market file, got ${shown(text)}; pass the contents, read as UTF-8`;
+    throw new GoodBasisError("file", message, {});
+  }
   return new Reader(text, options.name ?? "matrix").read(options);
 }
 
@@ -211,6 +219,7 @@ function numbersPerEntry(field: Field): number {
  *
  * @param operator - the operator
  * @returns the text of the file
+ * @throws GoodBasisError `shape` - not an operator
  *
  * @example
  * ```ts
@@ -220,6 +229,7 @@ function numbersPerEntry(field: Field): number {
  * ```
  */
 export function toMatrixMarket(operator: Operator): string {
+  if (!(operator instanceof Operator)) throw wrongOperand("toMatrixMarket", operator);
   const { csr, n } = operator;
   const lines = [`%%MatrixMarket matrix coordinate ${csr.im === undefined ? "real" : "complex"} general`];
   lines.push(`${n} ${n} ${csr.col.length}`);

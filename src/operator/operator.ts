@@ -1,11 +1,13 @@
 import { Matrix } from "ml-matrix";
 import { GoodBasisError } from "../errors.js";
-import { type Complex, imaginaryPart, realPart, type Scalar } from "../numerics/complex.js";
+import { shown } from "../misuse.js";
+import type { Complex, Scalar } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import type { Dense } from "../numerics/dense.js";
 import { roundDown } from "../numerics/rounding.js";
 import { findEntry, frobenius, maxRowEntries, toDense } from "../numerics/sparse.js";
 import { uncertainAdjoint, uncertainKron, uncertainScale, uncertainSum } from "./arithmetic.js";
+import { requireIndex, requireOperatorOptions, requireRows, requireScalar, wrongOperand } from "./checks.js";
 import { hashOf } from "./hash.js";
 import { diagonalMean, errorBound, normBound, normFloor } from "./norms.js";
 import { isDenselyFilled, uncertainCommutator, uncertainProduct } from "./products.js";
@@ -62,6 +64,7 @@ export class Operator {
   #hash: string | undefined;
 
   private constructor(core: Uncertain) {
+    requireRows(core);
     this.#core = core;
     this.#traits = new Traits(core);
   }
@@ -74,30 +77,32 @@ export class Operator {
    * @throws GoodBasisError `shape`, `not-finite`, `option`
    */
   static from(input: Operator | MatrixData, options: OperatorOptions = {}): Operator {
+    requireOperatorOptions("Operator.from", options);
     if (input instanceof Operator && options.uncertainty === undefined) return input;
     const core = input instanceof Operator ? input.#core : readMatrix("Operator.from", input);
     return new Operator(withUncertainty("Operator.from", core, options.uncertainty));
   }
 
   /**
-   * Wraps sparse rows without copying or checking them: columns must ascend within each row.
+   * Wraps sparse rows without copying them, and without looking at every entry: columns must ascend within each row.
    *
    * @param csr - square sparse rows
    * @param radius - `"default"`, `"exact"` or one bound for each stored entry
+   * @throws GoodBasisError `shape` - no square sparse rows, or arrays of lengths that do not belong together
    */
   static fromCsr(csr: Csr, radius: Radius = "default"): Operator {
     return new Operator({ csr, radius });
   }
 
   /**
-   * The operator of the given triplets `[row, col, re, im?]`, 0-based; duplicates are summed.
+   * The operator of the given triplets `[row, col, re, im?]`, 0-based; those of the same place are summed.
    *
    * @throws GoodBasisError `shape`, `not-finite`, `option`
    */
   static fromTriplets(n: number, entries: readonly Triplet[], options: OperatorOptions = {}): Operator {
-    return new Operator(
-      withUncertainty("Operator.fromTriplets", readTriplets("Operator.fromTriplets", n, entries), options.uncertainty),
-    );
+    const verb = "Operator.fromTriplets";
+    requireOperatorOptions(verb, options);
+    return new Operator(withUncertainty(verb, readTriplets(verb, n, entries), options.uncertainty));
   }
 
   /**
@@ -126,9 +131,9 @@ export class Operator {
    * @throws GoodBasisError `shape`, `not-finite`, `option`
    */
   static diagonal(values: ArrayLike<number>, options: OperatorOptions = {}): Operator {
-    return new Operator(
-      withUncertainty("Operator.diagonal", readDiagonal("Operator.diagonal", values), options.uncertainty),
-    );
+    const verb = "Operator.diagonal";
+    requireOperatorOptions(verb, options);
+    return new Operator(withUncertainty(verb, readDiagonal(verb, values), options.uncertainty));
   }
 
   /**
@@ -139,13 +144,9 @@ export class Operator {
    * @throws GoodBasisError `shape`, `not-finite`, `option`
    */
   static permutation(map: ArrayLike<number>, phases?: readonly Scalar[], options: OperatorOptions = {}): Operator {
-    return new Operator(
-      withUncertainty(
-        "Operator.permutation",
-        readPermutation("Operator.permutation", map, phases),
-        options.uncertainty,
-      ),
-    );
+    const verb = "Operator.permutation";
+    requireOperatorOptions(verb, options);
+    return new Operator(withUncertainty(verb, readPermutation(verb, map, phases), options.uncertainty));
   }
 
   /**
@@ -154,6 +155,7 @@ export class Operator {
    * @throws GoodBasisError `shape` - no operator, or different dimensions
    */
   static sum(...terms: readonly Operator[]): Operator {
+    for (const term of terms) if (!(term instanceof Operator)) throw wrongOperand("Operator.sum", term);
     let level: readonly Operator[] = terms;
     while (level.length > 1) {
       const next: Operator[] = [];
@@ -280,11 +282,7 @@ export class Operator {
    * @throws GoodBasisError `not-finite` - the factor is not finite, or overflow
    */
   scale(factor: Scalar): Operator {
-    const z: Complex = { re: realPart(factor), im: imaginaryPart(factor) };
-    if (!Number.isFinite(z.re) || !Number.isFinite(z.im)) {
-      throw new GoodBasisError("not-finite", `scale: the factor must be finite, got ${z.re} + ${z.im}i`, { factor });
-    }
-    return new Operator(uncertainScale(this.#core, z));
+    return new Operator(uncertainScale(this.#core, requireScalar("scale", factor)));
   }
 
   /**
@@ -308,6 +306,7 @@ export class Operator {
    * @throws GoodBasisError `not-finite` - overflow
    */
   kron(other: Operator): Operator {
+    if (!(other instanceof Operator)) throw wrongOperand("kron", other);
     return new Operator(uncertainKron(this.#core, other.#core));
   }
 
@@ -319,7 +318,9 @@ export class Operator {
    */
   power(exponent: number): Operator {
     if (!Number.isInteger(exponent) || exponent < 0) {
-      throw new GoodBasisError("option", `power: the exponent must be 0, 1, 2, …, got ${exponent}`, { exponent });
+      throw new GoodBasisError("option", `power: the exponent must be 0, 1, 2, …, got ${shown(exponent)}`, {
+        exponent,
+      });
     }
     if (exponent === 0) return Operator.identity(this.n);
     if (exponent === 1) return this;
@@ -355,6 +356,7 @@ export class Operator {
    * @throws GoodBasisError `shape` - another number of columns, or no row
    */
   restrict(frame: Csr): Operator {
+    requireRows({ csr: frame, radius: "exact" }, "restrict");
     if (frame.cols !== this.n || frame.rows === 0) {
       const message = `restrict: expected a frame of vectors with ${this.n} components, got ${frame.rows} × ${frame.cols}`;
       throw new GoodBasisError("shape", message, { rows: frame.rows, cols: frame.cols, n: this.n });
@@ -375,14 +377,7 @@ export class Operator {
    */
   entry(row: number, col: number): Complex {
     const { csr } = this.#core;
-    for (const index of [row, col]) {
-      if (Number.isInteger(index) && index >= 0 && index < this.n) continue;
-      throw new GoodBasisError("shape", `entry: (${row}, ${col}) is outside 0 … ${this.n - 1}`, {
-        row,
-        col,
-        n: this.n,
-      });
-    }
+    requireIndex("entry", row, col, this.n);
     const e = findEntry(csr, row, col);
     if (e < 0) return { re: 0, im: 0 };
     return { re: (csr.re[e] as number) + 0, im: csr.im === undefined ? 0 : (csr.im[e] as number) + 0 };
@@ -470,6 +465,7 @@ export class Operator {
   }
 
   #requireSame(verb: string, other: Operator): void {
+    if (!(other instanceof Operator)) throw wrongOperand(verb, other);
     if (other.n === this.n) return;
     const message = `${verb}: the operators act on ${this.n} and ${other.n} kets; both need the same kets`;
     throw new GoodBasisError("shape", message, { left: this.n, right: other.n });

@@ -1,6 +1,7 @@
 import type { Matrix } from "ml-matrix";
 import { GoodBasisError } from "../errors.js";
-import { type Complex, imaginaryPart, realPart, type Scalar } from "../numerics/complex.js";
+import { didYouMean, isObject, shown } from "../misuse.js";
+import { imaginaryPart, isScalar, realPart, type Scalar } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { gamma, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { diagonalCsr, fromDense, fromTriplets } from "../numerics/sparse.js";
@@ -14,8 +15,9 @@ export type Triplet = readonly [row: number, col: number, re: number, im?: numbe
 
 /**
  * Everything but an operator that a matrix can be read from: an ml-matrix `Matrix`, nested arrays, a flat row-major typed array
- * of n² numbers, `{ re, im }` of either form, triplets (0-based, duplicates are summed), a diagonal, or a permutation (the
- * image of ket j is ket `permutation[j]`, times `phases[j]`).
+ * of n² numbers, `{ re, im }` of either form, triplets (0-based; triplets of the same place are summed, so that a matrix can be
+ * assembled from contributions), a diagonal, or a permutation (the image of ket j is ket `permutation[j]`, times `phases[j]`).
+ * The objects may not have other fields.
  */
 export type MatrixData =
   | Matrix
@@ -44,15 +46,15 @@ const FORMS =
  * @throws GoodBasisError `not-finite` - an entry is NaN or infinite
  */
 export function readMatrix(verb: string, input: MatrixData): Uncertain {
-  if (typeof input !== "object" || input === null) throw badForm(verb, input);
+  if (!isObject(input)) throw badForm(verb, input);
   if (isList(input) || isMatrix(input)) {
     const { n, values } = flatten(verb, input, undefined);
     return { csr: fromDense(n, n, values), radius: "default" };
   }
+  requireForm(verb, input);
   if ("entries" in input) return readTriplets(verb, input.n, input.entries);
   if ("diagonal" in input) return readDiagonal(verb, input.diagonal, input.imaginary);
   if ("permutation" in input) return readPermutation(verb, input.permutation, input.phases);
-  if (!("re" in input)) throw badForm(verb, input);
   const re = flatten(verb, input.re, input.n);
   const im = input.im === undefined ? undefined : flatten(verb, input.im, input.n);
   if (im !== undefined && im.n !== re.n) {
@@ -62,8 +64,32 @@ export function readMatrix(verb: string, input: MatrixData): Uncertain {
   return { csr: fromDense(re.n, re.n, re.values, im?.values), radius: "default" };
 }
 
+/** The fields of every form of a matrix as an object, by the one that tells it from the others. */
+const FIELDS: Readonly<Record<"re" | "entries" | "diagonal" | "permutation", readonly string[]>> = {
+  re: ["re", "im", "n"],
+  entries: ["n", "entries"],
+  diagonal: ["diagonal", "imaginary"],
+  permutation: ["permutation", "phases"],
+};
+
+/** Refuses an object of no form or of two, and fields that would be passed over in silence. */
+function requireForm(verb: string, input: object): void {
+  const [form, fields] = Object.entries(FIELDS).find(([name]) => name in input) ?? [];
+  if (form === undefined || fields === undefined) throw badForm(verb, input);
+  const other = Object.keys(input).find((name) => !fields.includes(name));
+  if (other === undefined) return;
+  const guess = didYouMean(other, fields);
+  const message = `${verb}: a matrix given by its ${form} has no field "${other}"${guess === "" ? ";" : guess} there are ${fields.join(", ")}`;
+  throw new GoodBasisError("shape", message, { form, field: other });
+}
+
 function isList(value: unknown): value is readonly ArrayLike<number>[] | Float64Array {
-  return Array.isArray(value) || ArrayBuffer.isView(value);
+  return hasLength(value);
+}
+
+/** Arrays and typed arrays. */
+function hasLength(value: unknown): boolean {
+  return Array.isArray(value) || (ArrayBuffer.isView(value) && !(value instanceof DataView));
 }
 
 function isNumbers(list: ArrayLike<unknown>): list is ArrayLike<number> {
@@ -74,9 +100,8 @@ function isMatrix(value: object): value is Matrix {
   return "rows" in value && "columns" in value && "get" in value && typeof value.get === "function";
 }
 
-function badForm(verb: string, input: unknown): GoodBasisError {
-  const came = input === null ? "null" : typeof input === "object" ? "another object" : typeof input;
-  return new GoodBasisError("shape", `${verb}: expected ${FORMS}, got ${came}`);
+function badForm(verb: string, input: unknown, expected = FORMS): GoodBasisError {
+  return new GoodBasisError("shape", `${verb}: expected ${expected}, got ${shown(input)}`);
 }
 
 function flatten(
@@ -135,7 +160,7 @@ function notSquare(verb: string, rows: number, columns: number): GoodBasisError 
 }
 
 function notFinite(verb: string, row: number, col: number, value: unknown): GoodBasisError {
-  const message = `${verb}: entry (${row}, ${col}), counted from 0, is ${String(value)}; every entry must be a finite number`;
+  const message = `${verb}: entry (${row}, ${col}), counted from 0, is ${shown(value)}; every entry must be a finite number`;
   return new GoodBasisError("not-finite", message, { row, col, value });
 }
 
@@ -145,10 +170,14 @@ function notFinite(verb: string, row: number, col: number, value: unknown): Good
  * @throws GoodBasisError `shape`
  */
 export function requireDimension(verb: string, n: number): void {
-  if (Number.isInteger(n) && n >= 1) return;
-  throw new GoodBasisError("shape", `${verb}: the dimension n must be a positive whole number, got ${String(n)}`, {
-    n,
-  });
+  if (Number.isInteger(n) && n >= 1 && n < 2 ** 31) return;
+  throw new GoodBasisError(
+    "shape",
+    `${verb}: the dimension n must be a whole number from 1 to 2^31 − 1, got ${shown(n)}`,
+    {
+      n,
+    },
+  );
 }
 
 /**
@@ -158,16 +187,20 @@ export function requireDimension(verb: string, n: number): void {
  */
 export function readTriplets(verb: string, n: number, entries: readonly Triplet[]): Uncertain {
   requireDimension(verb, n);
-  if (!Array.isArray(entries)) throw badForm(verb, entries);
+  if (!Array.isArray(entries)) throw badForm(verb, entries, "a list of triplets [row, col, re, im?]");
   const rows: number[] = [];
   const cols: number[] = [];
   const re: number[] = [];
   const im: number[] = [];
   for (const [k, entry] of entries.entries()) {
-    const [row, col, x, y = 0] = entry;
+    if (!isTriplet(entry)) {
+      const message = `${verb}: triplet ${k} is ${shown(entry)}; give [row, col, re] or [row, col, re, im]`;
+      throw new GoodBasisError("shape", message, { triplet: k });
+    }
+    const [row, col, x, y = 0]: Triplet = entry;
     for (const index of [row, col]) {
       if (Number.isInteger(index) && index >= 0 && index < n) continue;
-      const message = `${verb}: triplet ${k} has index ${index}; indices are counted from 0 and lie below ${n}`;
+      const message = `${verb}: triplet ${k} has index ${shown(index)}; indices are counted from 0 and lie below ${n}`;
       throw new GoodBasisError("shape", message, { triplet: k, row, col, n });
     }
     if (typeof x !== "number" || typeof y !== "number" || x - x !== 0 || y - y !== 0) {
@@ -182,6 +215,10 @@ export function readTriplets(verb: string, n: number, entries: readonly Triplet[
   const csr = fromTriplets(n, n, rows, cols, re, im);
   if (csr.col.length === re.length) return { csr, radius: "default" };
   return { csr, radius: duplicateRadius(csr, n, rows, cols, re, im) };
+}
+
+function isTriplet(entry: unknown): boolean {
+  return Array.isArray(entry) && entry.length >= 3 && entry.length <= 4;
 }
 
 function duplicateRadius(csr: Csr, n: number, rows: number[], cols: number[], re: number[], im: number[]): Radius {
@@ -206,7 +243,9 @@ function duplicateRadius(csr: Csr, n: number, rows: number[], cols: number[], re
  * @throws GoodBasisError `shape`, `not-finite`
  */
 export function readDiagonal(verb: string, diagonal: ArrayLike<number>, imaginary?: ArrayLike<number>): Uncertain {
-  if (!isList(diagonal) || (imaginary !== undefined && !isList(imaginary))) throw badForm(verb, diagonal);
+  for (const list of imaginary === undefined ? [diagonal] : [diagonal, imaginary]) {
+    if (!hasLength(list)) throw badForm(verb, list, "a list of numbers, the diagonal");
+  }
   const n = diagonal.length;
   if (n === 0) throw notSquare(verb, 0, 0);
   if (imaginary !== undefined && imaginary.length !== n) {
@@ -225,7 +264,7 @@ export function readDiagonal(verb: string, diagonal: ArrayLike<number>, imaginar
  * @throws GoodBasisError `shape` - not a permutation of 0 … n − 1; `not-finite`
  */
 export function readPermutation(verb: string, map: ArrayLike<number>, phases?: readonly Scalar[]): Uncertain {
-  if (!isList(map) || map.length === 0) throw badForm(verb, map);
+  if (!hasLength(map) || map.length === 0) throw badForm(verb, map, "a list, the images of kets 0 … n − 1");
   const n = map.length;
   const source = new Int32Array(n).fill(-1);
   for (let j = 0; j < n; j++) {
@@ -237,12 +276,13 @@ export function readPermutation(verb: string, map: ArrayLike<number>, phases?: r
     }
     const problem = inRange
       ? `${image} occurs twice, at ${source[image]} and ${j}`
-      : `place ${j} holds ${String(image)}`;
+      : `place ${j} holds ${shown(image)}`;
     throw new GoodBasisError("shape", `${verb}: expected a permutation of 0 … ${n - 1}, but ${problem}`, {
       index: j,
       image,
     });
   }
+  if (phases !== undefined && !hasLength(phases)) throw badForm(verb, phases, "a list of phases, one a ket");
   if (phases !== undefined && phases.length !== n) {
     const message = `${verb}: the permutation has ${n} kets but ${phases.length} phases`;
     throw new GoodBasisError("shape", message, { kets: n, phases: phases.length });
@@ -253,8 +293,9 @@ export function readPermutation(verb: string, map: ArrayLike<number>, phases?: r
   for (let i = 0; i < n; i++) {
     ptr[i + 1] = i + 1;
     const j = source[i] as number;
-    const phase: Scalar | Complex | undefined = phases?.[j];
-    if (phase === undefined) continue;
+    if (phases === undefined) continue;
+    const phase = phases[j];
+    if (!isScalar(phase)) throw badForm(verb, phase, `a number or { re, im } as phase ${j}`);
     re[i] = realPart(phase);
     im[i] = imaginaryPart(phase);
     if (!Number.isFinite(re[i]) || !Number.isFinite(im[i])) throw notFinite(verb, i, j, `${re[i]} + ${im[i]}i`);
@@ -287,14 +328,22 @@ export function withUncertainty(verb: string, matrix: Uncertain, uncertainty: Un
   if (uncertainty === undefined) return matrix;
   const { csr } = matrix;
   if (uncertainty === "exact") return { csr, radius: "exact" };
+  requireUncertainty(verb, uncertainty);
   const { relative = 0, absolute = 0 } = uncertainty;
   for (const [name, value] of Object.entries({ relative, absolute })) {
-    if (Number.isFinite(value) && value >= 0) continue;
-    const message = `${verb}: uncertainty.${name} must be a finite number from 0 on, got ${value}`;
+    if (typeof value === "number" && Number.isFinite(value) && value >= 0) continue;
+    const message = `${verb}: uncertainty.${name} must be a finite number from 0 on, got ${shown(value)}`;
     throw new GoodBasisError("option", message, { [name]: value });
   }
   if (relative === 0 && absolute === 0) return { csr, radius: "exact" };
   const radius = new Float64Array(csr.col.length);
   for (let e = 0; e < radius.length; e++) radius[e] = roundUp(relative * modulusAbove(csr, e) + absolute);
   return { csr, radius };
+}
+
+function requireUncertainty(verb: string, given: unknown): void {
+  const known = ["relative", "absolute"];
+  if (isObject(given) && Object.keys(given).every((name) => known.includes(name))) return;
+  const message = `${verb}: uncertainty is ${shown(given)}; give "exact", or { relative, absolute } with one of the two or both`;
+  throw new GoodBasisError("option", message, { uncertainty: given });
 }

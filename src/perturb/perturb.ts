@@ -2,6 +2,7 @@ import { type GoodBasis, requireCertified } from "../certify/good-basis.js";
 import { requireOptions } from "../certify/options.js";
 import type { BasisState, StateVector } from "../certify/outcome.js";
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Bounded } from "./bounded.js";
 import { type LevelSecondOrder, levelSecondOrder } from "./second-order.js";
 
@@ -74,13 +75,13 @@ export interface Perturbation {
  */
 export function perturb<K extends string>(basis: GoodBasis<K>, options: PerturbOptions = {}): Perturbation {
   const internals = requireCertified("perturb", basis);
-  requireOptions("perturb", options);
+  requireOptions("perturb", options, ["order", "states", "select"]);
   const order = checkOrder("order", options.order ?? 2, 2);
   const stateOrder = checkOrder("states", options.states ?? 0, 1);
   const { study } = basis;
   const select = options.select ?? study.states.map((_, index) => index);
   if (!Array.isArray(select)) {
-    throw new GoodBasisError("option", `perturb: select is ${String(select)}; give a list of state indices`, {
+    throw new GoodBasisError("option", `perturb: select is ${shown(select)}; give a list of state indices`, {
       select,
     });
   }
@@ -115,7 +116,7 @@ function checkOrder(name: string, order: number, highest: number): number {
   if (Number.isInteger(order) && order >= 0 && order <= highest) return order;
   throw new GoodBasisError(
     "option",
-    `perturb: ${name} is ${order}; the short formulas are given through order ${highest}: ask for 0 to ${highest}`,
+    `perturb: ${name} is ${shown(order)}; the short formulas are given through order ${highest}: ask for 0 to ${highest}`,
     { [name]: order },
   );
 }
@@ -125,7 +126,7 @@ function pick<K extends string>(states: readonly BasisState<K>[], index: number)
   if (state !== undefined) return state;
   throw new GoodBasisError(
     "option",
-    `perturb: there is no state ${String(index)}; states run from 0 to ${states.length - 1}`,
+    `perturb: there is no state ${shown(index)}; states run from 0 to ${states.length - 1}`,
     {
       index,
     },

@@ -72,12 +72,10 @@ export function matrixSchemas(checked: boolean): MatrixSchemas {
         list(
           v.union([v.strictTuple([index, index, v.number()]), v.strictTuple([index, index, v.number(), v.number()])]),
         ),
-        "[row, column, re] or [row, column, re, im], counted from 0; repeated places are summed.",
+        "[row, column, re] or [row, column, re, im], counted from 0; every place at most once.",
       ),
       n: v.exactOptional(about(positiveWhole, "Number of kets, where nothing else tells it.")),
-      radii: v.exactOptional(
-        about(list(notNegative), "A bound on the error of each triplet; then no place may repeat."),
-      ),
+      radii: v.exactOptional(about(list(notNegative), "A bound on the error of each triplet.")),
       ...shared,
     }),
     diagonal: closed({ diagonal: list(fileNumber), ...shared }),

@@ -115,6 +115,7 @@ function readTriplets(place: Place, file: MatrixForms["triplets"], context: Matr
     throw fileError(place, 'the number of kets, from "n" here, or "n", "space" or "kets" of the file', "none of these");
   }
   const entries: Triplet[] = [];
+  const seen = new Set<number>();
   for (let k = 0; k < file.triplets.length; k++) {
     const triplet = file.triplets[k];
     const at = inside(place, "triplets", k);
@@ -125,6 +126,10 @@ function readTriplets(place: Place, file: MatrixForms["triplets"], context: Matr
     if (!isPlace(row, n) || !isPlace(col, n))
       throw fileError(at, `row and column from 0 to ${n - 1}`, showValue(triplet));
     if (!isFiniteNumber(re) || !isFiniteNumber(im)) throw fileError(at, "finite numbers", showValue(triplet));
+    if (seen.has(row * n + col)) {
+      throw fileError(at, "every place once", `(${row}, ${col}) again`, "write the sum of the two as one triplet");
+    }
+    seen.add(row * n + col);
     entries.push([row, col, re, im]);
   }
   return file.radii === undefined ? Operator.fromTriplets(n, entries) : withRadii(place, n, entries, file.radii);
@@ -144,14 +149,9 @@ function withRadii(place: Place, n: number, entries: readonly Triplet[], radii: 
     throw fileError(at, `one radius for each of the ${entries.length} triplets`, `${radii.length}`);
   }
   const list = new EntryList(n);
-  const seen = new Set<number>();
   for (const [k, [row, col, re, im = 0]] of entries.entries()) {
     const radius = radii[k];
     if (!isFiniteNumber(radius) || radius < 0) throw fileError(inside(at, k), "a number from 0 on", showValue(radius));
-    if (seen.has(row * n + col)) {
-      throw fileError(inside(place, "triplets", k), "every place once, as radii are given", `(${row}, ${col}) again`);
-    }
-    seen.add(row * n + col);
     list.add(row, col, re, im, radius);
   }
   return list.finish("readProblem");

@@ -1,4 +1,5 @@
-import { GoodBasisError } from "../errors.js";
+import { type ErrorCode, GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { type JsonPath, lineAndColumn, offsetOf } from "./json-text.js";
 
 /** The document that is being read. */
@@ -39,11 +40,9 @@ export function whereIs(place: Place): { text: string; details: Readonly<Record<
   return { text: parts.join(", "), details: { name, field, ...(spot ?? {}) } };
 }
 
-/** A short form of any JSON value, for messages. */
+/** A short form of any value, for messages. */
 export function showValue(value: unknown): string {
-  if (value === undefined) return "nothing";
-  const text = JSON.stringify(value) ?? String(value);
-  return text.length > 60 ? `${text.slice(0, 57)}…` : text;
+  return shown(value);
 }
 
 /** The error for a value of the wrong form. */
@@ -57,6 +56,16 @@ export function fileError(place: Place, expected: string, came: string, next = "
 export function nameError(place: Place, name: string, known: string): GoodBasisError {
   const { text, details } = whereIs(place);
   return new GoodBasisError("name", `${text}: there is no "${name}"; ${known}`, { ...details, unknown: name });
+}
+
+/**
+ * The error for something that the rest of the problem does not fit, with a code of its own.
+ *
+ * @param message - what does not fit, and the next step
+ */
+export function misfit(place: Place, code: ErrorCode, message: string): GoodBasisError {
+  const { text, details } = whereIs(place);
+  return new GoodBasisError(code, `${text}: ${message}`, details);
 }
 
 /**

@@ -1,5 +1,6 @@
 import type { BasisColumns } from "../certify/columns.js";
 import type { ClaimedLabel } from "../certify/validate.js";
+import { requireArgument, requireOptions } from "../misuse.js";
 import { readMatrixMarket } from "../operator/matrix-market.js";
 import { parseDocument } from "./document.js";
 import { complexOf, readNumbers } from "./numbers.js";
@@ -44,6 +45,7 @@ export interface ReadBasis {
  * ```
  */
 export function readBasis(source: unknown, options: ReadBasisOptions = {}): ReadBasis {
+  checkOptions(options);
   const name = options.name ?? "basis";
   if (typeof source === "string" && /^\uFEFF?%%MatrixMarket/i.test(source)) {
     return { columns: readMatrixMarket(source, { name }), labels: {} };
@@ -63,6 +65,16 @@ export function readBasis(source: unknown, options: ReadBasisOptions = {}): Read
     columns: readStates(inside(place, "states"), value.states, options),
     labels: readLabels(inside(place, "labels"), labels, value.states.length),
   };
+}
+
+function checkOptions(options: ReadBasisOptions): void {
+  requireOptions("readBasis", options, ["name", "kets", "n"]);
+  const { name, kets, n } = options;
+  const next = "or leave it out";
+  requireArgument(name === undefined || typeof name === "string", "readBasis", "as name a text", name, next);
+  requireArgument(kets === undefined || Array.isArray(kets), "readBasis", "as kets a list of names", kets, next);
+  const whole = n === undefined || (Number.isInteger(n) && n >= 1);
+  requireArgument(whole, "readBasis", "as n the number of kets, 1, 2, …", n, next);
 }
 
 function readStates(place: Place, states: readonly unknown[], { kets, n }: ReadBasisOptions): BasisColumns {

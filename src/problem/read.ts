@@ -1,11 +1,14 @@
 import type { Candidate, Problem } from "../audit/problem.js";
+import { GoodBasisError } from "../errors.js";
+import { requireOptions } from "../misuse.js";
 import type { Operator } from "../operator/operator.js";
 import { parseDocument } from "./document.js";
 import { looksLikeMatrix, readMatrixAt } from "./matrix.js";
 import type { MatrixContext } from "./names.js";
-import { fileError, inside, type Place, type ProblemDocument, showValue } from "./place.js";
+import { fileError, inside, misfit, type Place, type ProblemDocument, showValue } from "./place.js";
 import type { ProblemOptions, ProblemOutline } from "./problem-file.js";
 import { candidateSchema, conform, outlineSchema } from "./schema.js";
+import { rememberDocument } from "./source.js";
 import { Space } from "./space.js";
 
 /** Options of {@link readProblem}. */
@@ -59,6 +62,7 @@ export interface ReadProblem {
  * ```
  */
 export function readProblem(source: unknown, options: ReadProblemOptions = {}): ReadProblem {
+  checkOptions(options);
   const text = typeof source === "string" ? source : undefined;
   const document: ProblemDocument = { name: options.name ?? "problem", text };
   const place: Place = { document, path: [] };
@@ -81,7 +85,9 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
   }
   const kets = outline.kets ?? space?.kets();
   const h0 = readMatrixAt(inside(place, "h0"), outline.h0, context);
-  return {
+  if (kets !== undefined) checkKets(inside(place, outline.kets === undefined ? "space" : "kets"), kets, h0.n);
+  checkLevels(inside(place, "options", "levels"), outline.options?.levels);
+  const read: ReadProblem = {
     n: h0.n,
     problem: {
       h0,
@@ -95,15 +101,76 @@ export function readProblem(source: unknown, options: ReadProblemOptions = {}): 
     note: outline.note,
     invented: outline.invented ?? false,
   };
+  rememberDocument(read, document);
+  return read;
+}
+
+function checkOptions(options: ReadProblemOptions): void {
+  requireOptions("readProblem", options, ["name", "loadMatrix"]);
+  const { name, loadMatrix } = options;
+  if (name !== undefined && typeof name !== "string") {
+    throw new GoodBasisError(
+      "option",
+      `readProblem: name is ${showValue(name)}; give the name of the file as text`,
+      {},
+    );
+  }
+  if (loadMatrix !== undefined && typeof loadMatrix !== "function") {
+    const message = `readProblem: loadMatrix is ${showValue(loadMatrix)}; give a function (path) => text of the file`;
+    throw new GoodBasisError("option", message, {});
+  }
+}
+
+function checkKets(place: Place, kets: readonly string[], n: number): void {
+  if (kets.length !== n) {
+    const message = `${kets.length} kets are named, but h0 is ${n} × ${n}; name every ket once`;
+    throw misfit(place, "shape", message);
+  }
+  const first = new Map<string, number>();
+  for (const [k, ket] of kets.entries()) {
+    if (ket.trim() === "") throw misfit(inside(place, k), "name", "the name of the ket is empty; name every ket");
+    const other = first.get(ket);
+    if (other !== undefined) {
+      throw misfit(inside(place, k), "name", `kets ${other} and ${k} are both called "${ket}"; names must differ`);
+    }
+    first.set(ket, k);
+  }
+}
+
+function checkLevels(place: Place, levels: ProblemOptions["levels"]): void {
+  if (levels === undefined || levels === "all" || !("from" in levels) || levels.from <= levels.to) return;
+  throw misfit(place, "option", `the window runs from ${levels.from} down to ${levels.to}; give from ≤ to`);
 }
 
 function readPerturbations(place: Place, value: unknown, context: MatrixContext): Problem["v"] {
-  if (looksLikeMatrix(value) || typeof value !== "object" || value === null) return readMatrixAt(place, value, context);
+  if (typeof value !== "object" || value === null || Array.isArray(value)) return readMatrixAt(place, value, context);
   const entries = Object.entries(value);
+  if (looksLikeMatrix(value)) return readSingle(place, value, context);
   if (entries.length === 0) throw fileError(place, "a matrix, or at least one named one", "an empty object");
+  for (const [name] of entries) {
+    if (!PROBLEM_FIELDS_OF_MATRICES.includes(name)) continue;
+    throw misfit(inside(place, name), "name", `a perturbation may not be called "${name}"; rename it`);
+  }
   return Object.fromEntries(
     entries.map(([name, matrix]) => [name, readMatrixAt(inside(place, name), matrix, context)] as const),
   );
+}
+
+/** Fields by which matrices of a {@link Problem} are told from records of named ones. */
+const PROBLEM_FIELDS_OF_MATRICES = ["re", "im", "entries"];
+
+/** V given as one matrix; what is wrong with it may be that its fields were meant as names. */
+function readSingle(place: Place, value: object, context: MatrixContext): Operator {
+  const form = Object.keys(value).find((name) => looksLikeMatrix({ [name]: undefined }));
+  try {
+    const operator = readMatrixAt(place, value, context);
+    if (form !== "diagonal" || operator.isHermitian) return operator;
+    throw misfit(place, "not-hermitian", "V is not Hermitian: numbers on its diagonal have imaginary parts");
+  } catch (error) {
+    if (!(error instanceof GoodBasisError) || form === undefined) throw error;
+    const hint = `v is read as one matrix, as it has the field "${form}"; if that is a perturbation's name, rename it`;
+    throw new GoodBasisError(error.code, `${error.message} (${hint})`, error.details);
+  }
 }
 
 function readCandidates(

@@ -4,6 +4,9 @@ import { COMPLEX_TEXT, type FileNumber } from "./numbers.js";
 /** A schema for values of one type, whatever it is made of. */
 export type Shape<T> = v.GenericSchema<unknown, T>;
 
+/** How the refusal of an unknown field begins; the known ones follow, by commas. */
+export const NO_OTHER_FIELDS = "no other fields than ";
+
 /**
  * An object with these fields and no others; what is wrong with it is said in terms of its fields.
  *
@@ -14,7 +17,7 @@ export function closed<const T extends v.ObjectEntries>(
 ): v.StrictObjectSchema<T, (issue: v.StrictObjectIssue) => string> {
   const known = Object.keys(entries).join(", ");
   return v.strictObject(entries, (issue) => {
-    if (issue.expected === "never") return `no other fields than ${known}`;
+    if (issue.expected === "never") return `${NO_OTHER_FIELDS}${known}`;
     return issue.expected === "Object" ? `an object with the fields ${known}` : `the field ${issue.expected}`;
   });
 }

@@ -1,5 +1,6 @@
 import * as v from "valibot";
 import type { LabelDeclaration } from "../audit/label-family.js";
+import { didYouMean } from "../misuse.js";
 import { anyMatrix, type MatrixSchemas, matrixSchemas } from "./matrix-schema.js";
 import { fileError, inside, type Place, showValue } from "./place.js";
 import type { CandidateFile, FactorFile, MatrixForms, ProblemOptions, ProblemOutline } from "./problem-file.js";
@@ -8,6 +9,7 @@ import {
   anyList,
   closed,
   finite,
+  NO_OTHER_FIELDS,
   namedThings,
   notNegative,
   positive,
@@ -162,8 +164,11 @@ export function conform<T>(schema: Shape<T>, place: Place, value: unknown): T {
   if (result.success) return result.output;
   const [issue] = result.issues;
   const keys = (issue.path ?? []).map(({ key }) => (typeof key === "number" ? key : String(key)));
-  const next = "goodbasis/problem-schema.json describes the format";
-  throw fileError(inside(place, ...keys), expectation(issue), showValue(issue.input), next);
+  const expected = expectation(issue);
+  const known = expected.startsWith(NO_OTHER_FIELDS) ? expected.slice(NO_OTHER_FIELDS.length).split(", ") : [];
+  const guess = didYouMean(String(keys.at(-1) ?? ""), known).replace(/^; /, "");
+  const next = `${guess === "" ? "" : `${guess} `}goodbasis/problem-schema.json describes the format`;
+  throw fileError(inside(place, ...keys), expected, showValue(issue.input), next);
 }
 
 const PLAIN: Readonly<Record<string, string>> = {

@@ -1,7 +1,11 @@
 import type { Candidate, Problem } from "../audit/problem.js";
+import { GoodBasisError } from "../errors.js";
+import { isObject, requireArgument, requireKnown, requireOptions, shown } from "../misuse.js";
 import { isMatrixInput, type MatrixInput } from "../operator/input.js";
 import { Operator } from "../operator/operator.js";
+import type { Place } from "./place.js";
 import type { ProblemOptions } from "./problem-file.js";
+import { candidateSchema, conform, FORMS, outlineSchema } from "./schema.js";
 
 /** What a problem file holds besides the problem. */
 export interface WriteProblemOptions {
@@ -22,7 +26,8 @@ export interface WriteProblemOptions {
  * @param problem - the problem
  * @param extra - title, note and options
  * @returns JSON, one matrix a line
- * @throws GoodBasisError `shape`, `not-finite` - a matrix that cannot be read
+ * @throws GoodBasisError `shape`, `not-finite` - a matrix that cannot be read; `option` - no problem, or an unknown field; `name` - a
+ *   perturbation with the name of a form of matrices; `file` - title, note, kets or options that no file may hold
  *
  * @example
  * ```ts
@@ -33,18 +38,35 @@ export interface WriteProblemOptions {
  * ```
  */
 export function writeProblem(problem: Problem, extra: WriteProblemOptions = {}): string {
+  const next = "give { h0, v, candidates, kets, unit }";
+  requireArgument(isObject(problem) && !Array.isArray(problem), "writeProblem", "a problem", problem, next);
+  requireKnown("writeProblem: the problem", problem, ["h0", "v", "candidates", "kets", "unit"]);
+  requireOptions("writeProblem", extra, ["title", "note", "invented", "options"]);
   const { title, note, invented, options } = extra;
   const { h0, v, candidates, kets, unit } = problem;
   const fields: Record<string, unknown> = { format: "goodbasis-problem", formatVersion: 1 };
   Object.assign(fields, { title, invented, note, unit, kets });
+  const stated = Object.entries({ ...fields, options }).filter(([, value]) => value !== undefined);
+  conform(outlineSchema, WRITTEN, { ...Object.fromEntries(stated), h0: null, v: null });
   const lines = Object.entries(fields)
     .filter(([, value]) => value !== undefined)
     .map(([name, value]) => field(name, value));
   lines.push(field("h0", matrix(h0)));
-  lines.push(isMatrixInput(v) ? field("v", matrix(v)) : group("v", mapped(v, matrix)));
-  if (candidates !== undefined) lines.push(group("candidates", mapped(candidates, candidate)));
+  lines.push(isMatrixInput(v) ? field("v", matrix(v)) : group("v", mapped("v", v, matrix)));
+  for (const name of isMatrixInput(v) ? [] : Object.keys(v)) checkName(name);
+  if (candidates !== undefined) lines.push(group("candidates", mapped("candidates", candidates, candidate)));
   if (options !== undefined) lines.push(field("options", options));
   return `{\n  ${lines.join(",\n  ")}\n}\n`;
+}
+
+/** What messages about the document that is being written say of it. */
+const WRITTEN: Place = { document: { name: "writeProblem", text: undefined }, path: [] };
+
+/** Refuses a perturbation that a problem file would take for a field of one matrix. */
+function checkName(name: string): void {
+  if (!FORMS.some((form) => form === name)) return;
+  const message = `writeProblem: in a problem file a perturbation may not be called "${name}", a form of matrices; rename it`;
+  throw new GoodBasisError("name", message, { name });
 }
 
 function field(name: string, value: unknown): string {
@@ -57,12 +79,24 @@ function group(name: string, entries: readonly (readonly [string, unknown])[]): 
   return `${JSON.stringify(name)}: {\n${lines.join(",\n")}\n  }`;
 }
 
-function mapped<T>(record: Readonly<Record<string, T>>, write: (value: T) => unknown): (readonly [string, unknown])[] {
+function mapped<T>(
+  what: string,
+  record: Readonly<Record<string, T>>,
+  write: (value: T) => unknown,
+): (readonly [string, unknown])[] {
+  requireArgument(isObject(record), "writeProblem", `operators by name as ${what}`, record, "give { name: matrix, … }");
   return Object.entries(record).map(([key, value]) => [key, write(value)] as const);
 }
 
 function candidate(input: MatrixInput | Candidate): unknown {
   if (isMatrixInput(input)) return matrix(input);
+  if (!isObject(input))
+    throw new GoodBasisError("shape", `writeProblem: a candidate is ${shown(input)}; give a matrix`);
+  conform(candidateSchema, WRITTEN, {
+    ...input,
+    operator: null,
+    ...(input.ladder === undefined ? {} : { ladder: null }),
+  });
   const { operator, label, ladder } = input;
   return { operator: matrix(operator), label, ladder: ladder === undefined ? undefined : matrix(ladder) };
 }

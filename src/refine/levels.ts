@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Sector } from "./sectors.js";
 
 /**
@@ -112,12 +113,14 @@ function choose(
   const all = Array.from(energies, (_, place) => place);
   if (choice === "all") return all;
   if (typeof choice !== "object" || choice === null) throw malformed(choice);
+  const fields = "lowest" in choice ? ["lowest"] : "nearest" in choice ? ["nearest", "count"] : ["from", "to"];
+  if (Object.keys(choice).some((name) => !fields.includes(name))) throw malformed(choice);
   if ("lowest" in choice) {
     if (!Number.isInteger(choice.lowest) || choice.lowest < 1) throw malformed(choice);
     return all.slice(0, choice.lowest);
   }
   if ("nearest" in choice) {
-    const count = choice.count ?? 1;
+    const count = choice.count === undefined ? 1 : choice.count;
     if (!Number.isFinite(choice.nearest) || !Number.isInteger(count) || count < 1) throw malformed(choice);
     const distance = (place: number): number => Math.abs((energies[place] as number) - choice.nearest);
     return all.sort((a, b) => distance(a) - distance(b) || a - b).slice(0, count);
@@ -131,8 +134,11 @@ function choose(
   const near = all.sort((a, b) => outside(a) - outside(b))[0] as number;
   throw new GoodBasisError(
     "no-level",
-    `no level lies between ${from} and ${to}; the ${energies.length} levels run from ${energies[0]} to ` +
-      `${energies[energies.length - 1]}, and the nearest is at ${energies[near]}`,
+    `no level lies between ${from} and ${to}; ` +
+      (energies.length === 1
+        ? `the only level is at ${energies[0]}`
+        : `the ${energies.length} levels run from ${energies[0]} to ${energies[energies.length - 1]}, and the nearest is at ` +
+          `${energies[near]}`),
     { from, to, lowest: energies[0], highest: energies[energies.length - 1], nearest: energies[near] },
   );
 }
@@ -140,7 +146,7 @@ function choose(
 function malformed(choice: unknown): GoodBasisError {
   return new GoodBasisError(
     "option",
-    `levels is ${JSON.stringify(choice)}; give "all", { lowest: k }, { nearest: energy, count: k } or ` +
+    `levels is ${shown(choice)}; give "all", { lowest: k }, { nearest: energy, count: k } or ` +
       "{ from: energy, to: energy } with whole k ≥ 1 and from ≤ to",
     { levels: choice },
   );

@@ -1,6 +1,7 @@
 import type { BasisState, LevelResult, Study } from "../certify/outcome.js";
 import type { SafeOrders } from "../certify/safe-orders.js";
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import type { Bounded } from "../perturb/bounded.js";
 import type { StateLabel } from "../refine/label.js";
 import { expand } from "./expansion.js";
@@ -127,7 +128,7 @@ export function columnsFor<K extends string>(name: string, source: ColumnSource<
       const known = [...COLUMN_NAMES, ...study.candidates.map((own) => `label:${own}`)];
       throw new GoodBasisError(
         "option",
-        `basisTable: there is no column ${JSON.stringify(name)}; give names from ${known
+        `basisTable: there is no column ${shown(name)}; give names from ${known
           .filter((own) => own !== "label:…")
           .map((own) => `"${own}"`)
           .join(", ")}`,

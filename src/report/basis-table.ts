@@ -1,6 +1,7 @@
 import { type GoodBasis, requireCertified } from "../certify/good-basis.js";
 import type { BasisState, LevelResult, Study } from "../certify/outcome.js";
 import { GoodBasisError } from "../errors.js";
+import { isObject, requireArgument, requireOptions, shown } from "../misuse.js";
 import { perturb } from "../perturb/perturb.js";
 import { type BasisColumn, columnsFor, type FilledColumn, type SecondOrderShifts } from "./basis-columns.js";
 import { basisNotes } from "./basis-notes.js";
@@ -52,9 +53,11 @@ export function basisTable<K extends string>(
   source: GoodBasis<K> | Study<K>,
   options: BasisTableOptions<K> = {},
 ): Table {
-  const certified = !("audit" in source);
+  const certified = !isObject(source) || !("audit" in source);
   if (certified) requireCertified("basisTable", source);
   const study: Study<K> = certified ? source.study : source;
+  requireArgument(isStudy(study), "basisTable", "a basis or an outcome", source, "pass what findGoodBasis returned");
+  requireOptions("basisTable", options, ["columns", "terms", "threshold", "levels"]);
   const levels = chooseLevels(study.levels, options.levels);
   const columnSource = {
     study,
@@ -64,7 +67,7 @@ export function basisTable<K extends string>(
   };
   const names = options.columns ?? defaultColumns(certified);
   if (!Array.isArray(names)) {
-    throw new GoodBasisError("option", `basisTable: columns is ${String(names)}; give a list of column names`, {});
+    throw new GoodBasisError("option", `basisTable: columns is ${shown(names)}; give a list of column names`, {});
   }
   const filled = names.flatMap((name) => columnsFor(name, columnSource));
   checkRepeats(filled);
@@ -75,6 +78,11 @@ export function basisTable<K extends string>(
   );
   const columns = filled.map(({ column }) => column);
   return { unit: study.unit, columns, rows, notes: basisNotes(study, levels, columns, rows) };
+}
+
+function isStudy(study: unknown): boolean {
+  const lists = ["levels", "states", "candidates", "perturbations"];
+  return isObject(study) && lists.every((name) => Array.isArray(Reflect.get(study, name)));
 }
 
 function defaultColumns(second: boolean): readonly BasisColumn<never>[] {
@@ -126,12 +134,14 @@ function checkRepeats<K extends string>(columns: readonly FilledColumn<K>[]): vo
 
 function chooseLevels(levels: readonly LevelResult[], chosen: readonly number[] | undefined): readonly LevelResult[] {
   if (chosen === undefined) return levels;
+  const next = "or leave it out for all levels";
+  requireArgument(Array.isArray(chosen), "basisTable", "as levels a list of indices", chosen, next);
   return chosen.map((index) => {
-    const level = levels[index];
+    const level = typeof index === "number" ? levels[index] : undefined;
     if (level !== undefined) return level;
     throw new GoodBasisError(
       "no-level",
-      `basisTable: there is no level ${index}; ${levels.length} levels were studied, so give numbers from 0 to ` +
+      `basisTable: there is no level ${shown(index)}; ${levels.length} levels were studied, so give numbers from 0 to ` +
         `${levels.length - 1}`,
       { level: index },
     );
@@ -140,12 +150,12 @@ function chooseLevels(levels: readonly LevelResult[], chosen: readonly number[] 
 
 function checkTerms(terms: number): number {
   if (Number.isInteger(terms) && terms >= 1) return terms;
-  throw new GoodBasisError("option", `basisTable: terms is ${terms}; give a whole number from 1 on`, { terms });
+  throw new GoodBasisError("option", `basisTable: terms is ${shown(terms)}; give a whole number from 1 on`, { terms });
 }
 
 function checkThreshold(threshold: number): number {
-  if (threshold >= 0 && threshold < 1) return threshold;
-  throw new GoodBasisError("option", `basisTable: threshold is ${threshold}; give a number from 0 to below 1`, {
+  if (typeof threshold === "number" && threshold >= 0 && threshold < 1) return threshold;
+  throw new GoodBasisError("option", `basisTable: threshold is ${shown(threshold)}; give a number from 0 to below 1`, {
     threshold,
   });
 }

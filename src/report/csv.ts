@@ -6,13 +6,15 @@ import { headText } from "./typeset-cell.js";
 /**
  * Comma-separated values after RFC 4180, records separated by CR LF, with one header line.
  *
- * Numbers carry every digit and an ASCII minus sign; a value with a ± takes two fields. Labels that are whole or half numbers
- * are numbers, too. Text that a spreadsheet would take for a formula (it begins with = + - @, a tab or a line break) is
+ * Numbers carry every digit and an ASCII minus sign; a value with a ± takes two fields, and so do the two safe orders. Labels that
+ * are fractions are decimal numbers, the doubles nearest to them: exact where the denominator is a power of two. A spreadsheet
+ * would take 3/4 or 2/0 for a date. Text that a spreadsheet would take for a formula (it begins with = + - @, a tab or a line break) is
  * preceded by an apostrophe and quoted.
  */
 export function csvTable(table: Table): string {
   const heads = table.columns.flatMap((column) => {
     const head = headText(column);
+    if (isSafe(column)) return [textField("safe E"), textField("safe ψ")];
     if (column.kind !== "bounded") return [textField(head)];
     return [textField(head), textField(headText({ ...column, title: `${column.title} ±` }))];
   });
@@ -22,22 +24,27 @@ export function csvTable(table: Table): string {
   return [heads, ...records].map((record) => record.join(",")).join("\r\n");
 }
 
+/** The column of safe orders, "2/0" for energies and states. */
+function isSafe({ key }: TableColumn): boolean {
+  return key === "safe";
+}
+
 function fields(cell: Cell, column: TableColumn): string[] {
   switch (cell.kind) {
     case "none":
-      return column.kind === "bounded" ? ["", ""] : [""];
+      return column.kind === "bounded" || isSafe(column) ? ["", ""] : [""];
     case "number":
       return [numberField(cell.value)];
     case "bounded":
       return [numberField(cell.value), numberField(cell.plusMinus)];
     case "label": {
       const { label } = cell;
-      const number = /\/(?!2$)/.test(label.text) ? undefined : fractionValue(label.text);
+      const number = fractionValue(label.text);
       if (number !== undefined && label.status !== "measured") return [numberField(number)];
       return [label.status === "measured" && label.im === 0 ? numberField(label.re) : textField(labelText(label))];
     }
     case "text":
-      return [textField(cell.text)];
+      return isSafe(column) ? cell.text.split("/").map(textField) : [textField(cell.text)];
     case "expansion":
       return [textField(expansionText(cell))];
     default:

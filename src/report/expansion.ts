@@ -41,7 +41,7 @@ export const PLAIN_EXPANSION: ExpansionStyle = {
   dots: "…",
 };
 
-/** Writes an expansion; a modulus that all of three or more real coefficients have in common is written once. */
+/** Writes an expansion; a modulus that all of two or more real coefficients have in common is written once. */
 export function expansionText(expansion: Expansion, style: ExpansionStyle = PLAIN_EXPANSION): string {
   const factor = commonFactor(expansion.terms);
   const minus = style.number("−");
@@ -56,15 +56,15 @@ export function expansionText(expansion: Expansion, style: ExpansionStyle = PLAI
   if (factor !== undefined) text = `${style.number(factor)} (${text})`;
   const { terms, weight } = expansion.leftOut;
   if (terms === 0) return text === "" ? "0" : text;
-  const rest = `${style.dots} (+${terms}, weight ${style.number(boundText(weight))})`;
+  const rest = `${style.dots} (+${terms}, weight ${style.number(boundText(weight, 2))})`;
   return text === "" ? rest : `${text} ${rest}`;
 }
 
-/** The modulus that three or more real coefficients have in common to the digits printed. */
+/** The modulus that two or more real coefficients have in common to the digits printed. */
 function commonFactor(terms: readonly ExpansionTerm[]): string | undefined {
   const sizes = new Set(terms.map(({ re, im }) => (im === 0 ? numberText(Math.abs(re)) : "")));
   const [only = ""] = sizes;
-  return terms.length >= 3 && sizes.size === 1 && only !== "" ? only : undefined;
+  return terms.length >= 2 && sizes.size === 1 && only !== "" ? only : undefined;
 }
 
 /** A coefficient without its sign; one that is truly complex stands in parentheses. */

@@ -1,4 +1,5 @@
 import type { Audit, CandidateFinding } from "../audit/audit.js";
+import { isObject, requireArgument, requireOptions } from "../misuse.js";
 import { visible, wrapProse } from "./characters.js";
 import { grid } from "./grid.js";
 import { commutatorSentence, commutatorText, counted, reasons, useText } from "./sentences.js";
@@ -17,6 +18,7 @@ const DEFAULT_WIDTH = 100;
  *
  * @param audit - from {@link auditCommutators}, or `outcome.audit`
  * @returns lines without a final line break
+ * @throws GoodBasisError `option` for something that is no audit, or an option that there is not
  *
  * @example
  * ```ts
@@ -31,7 +33,15 @@ const DEFAULT_WIDTH = 100;
  * ```
  */
 export function formatAudit(audit: Audit, options: FormatAuditOptions = {}): string {
-  const width = options.width ?? DEFAULT_WIDTH;
+  requireArgument(
+    isAudit(audit),
+    "formatAudit",
+    "an audit",
+    audit,
+    "pass what auditCommutators returns, or outcome.audit",
+  );
+  requireOptions("formatAudit", options, ["width"]);
+  const width = requireCount("formatAudit", "width", options.width ?? DEFAULT_WIDTH);
   const kept = audit.candidates.filter((candidate) => candidate.conserved).length;
   const heading = `AUDIT: ${kept} of ${counted(audit.candidates.length, "candidate")} conserved`;
   const sets =
@@ -88,4 +98,25 @@ function kindText(candidate: CandidateFinding): string {
     default:
       return candidate.kind satisfies never;
   }
+}
+
+/** Whether a value is built as an audit is. */
+export function isAudit(value: unknown): boolean {
+  return isObject(value) && ["candidates", "pairs", "sets"].every((name) => Array.isArray(Reflect.get(value, name)));
+}
+
+/**
+ * Refuses an option that is no number from 1 on.
+ *
+ * @throws GoodBasisError `option`
+ */
+export function requireCount(verb: string, name: string, value: unknown): number {
+  requireArgument(
+    typeof value === "number" && value >= 1,
+    verb,
+    `as ${name} a number from 1 on`,
+    value,
+    "or leave it out",
+  );
+  return Number(value);
 }

@@ -1,6 +1,7 @@
 import type { Coupling, Outcome, Question, Study } from "../certify/outcome.js";
+import { isObject, requireArgument, requireOptions } from "../misuse.js";
 import { visible, wrapProse } from "./characters.js";
-import { auditLines } from "./format-audit.js";
+import { auditLines, isAudit, requireCount } from "./format-audit.js";
 import { grid } from "./grid.js";
 import { boundedText, boundText, numberText } from "./numbers.js";
 import { levelLegend, levelLines, levelName } from "./outcome-levels.js";
@@ -25,6 +26,7 @@ const DEFAULTS = { width: 100, levels: 40, findings: 10 } as const;
  * @param outcome - from {@link findGoodBasis}
  * @param options - widths and lengths
  * @returns lines without a final line break
+ * @throws GoodBasisError `option` for something that is no outcome, or an option that there is not
  *
  * @example
  * ```ts
@@ -39,7 +41,12 @@ const DEFAULTS = { width: 100, levels: 40, findings: 10 } as const;
  * ```
  */
 export function formatOutcome(outcome: Outcome, options: FormatOutcomeOptions = {}): string {
-  const { width, levels, findings } = { ...DEFAULTS, ...options };
+  const next = "pass what findGoodBasis returns, not a part of it";
+  requireArgument(isOutcome(outcome), "formatOutcome", "an outcome", outcome, next);
+  requireOptions("formatOutcome", options, Object.keys(DEFAULTS));
+  const count = (name: keyof typeof DEFAULTS): number =>
+    requireCount("formatOutcome", name, options[name] ?? DEFAULTS[name]);
+  const [width, levels, findings] = [count("width"), count("levels"), count("findings")];
   const prose = (text: string): string[] => wrapProse(text, width - 2, "  ").map((line) => `  ${line}`);
   const lines = [
     heading(outcome),
@@ -69,6 +76,13 @@ export function formatOutcome(outcome: Outcome, options: FormatOutcomeOptions = 
   }
   lines.push("", "What it is worth", ...worth(outcome).flatMap(prose));
   return lines.join("\n");
+}
+
+function isOutcome(value: unknown): boolean {
+  if (!isObject(value) || !("verdict" in value) || !("audit" in value) || !isAudit(value.audit)) return false;
+  const verdicts: readonly unknown[] = ["good", "not good", "undecided"];
+  const lists = ["levels", "states", "sets"].every((name) => Array.isArray(Reflect.get(value, name)));
+  return verdicts.includes(value.verdict) && lists && "whole" in value && isObject(value.whole);
 }
 
 function heading(outcome: Outcome): string {

@@ -6,8 +6,8 @@ export type Alignment = "left" | "right" | "point";
 /** A column of a plain-text grid. */
 export interface GridColumn {
   readonly title: string;
-  /** A second line of the title. */
-  readonly under?: string;
+  /** Further lines of the title. */
+  readonly under?: readonly string[];
   readonly align: Alignment;
   /** Where its cells may be broken when the grid is too wide; never, if absent. */
   readonly wrap?: "words" | "terms";
@@ -50,9 +50,12 @@ export function grid(
     return (indent + padded.join(GAP)).trimEnd();
   };
   const rule = (stroke: string): string => indent + stroke.repeat(total);
-  const under = columns.map((column) => column.under ?? "");
   const lines = [line(columns.map((column) => column.title))];
-  if (under.some((title) => title !== "")) lines.push(line(under));
+  const heads = Math.max(0, ...columns.map(({ under = [] }) => under.length));
+  for (let k = 0; k < heads; k++) {
+    const below = columns.map(({ under = [] }) => under[k] ?? "");
+    if (below.some((title) => title !== "")) lines.push(line(below));
+  }
   lines.push(rule("─"));
   rows.forEach((_, r) => {
     if (r > 0 && rulesBefore?.has(r) === true) lines.push(rule("┈"));
@@ -63,8 +66,8 @@ export function grid(
   return lines;
 }
 
-function titleWidth({ title, under = "" }: GridColumn): number {
-  return Math.max(textWidth(title), textWidth(under));
+function titleWidth({ title, under = [] }: GridColumn): number {
+  return Math.max(textWidth(title), ...under.map(textWidth));
 }
 
 /** Takes width from the columns whose cells may be broken, the widest first, until the grid fits or cannot shrink further. */

@@ -96,6 +96,38 @@ export function supportedText(value: number, plusMinus: number, digits = 12): st
   return typeset(stripZeros(roundedTo(value, supportedPlace(value, plusMinus, digits))));
 }
 
+/** The numbers of a column that has one ± for all of them. */
+export interface CommonBound {
+  readonly values: readonly string[];
+  readonly plusMinus: string;
+}
+
+/** One ± is stated for a column where it is below this fraction of the largest value: nobody reads so many digits. */
+const COMMON_BOUND = 1e-9;
+
+/**
+ * Values rounded at one place, with one ± for all of them that covers the largest ± and all rounding; undefined where that
+ * would cost digits worth having.
+ *
+ * @param digits - most significant digits of the largest value
+ */
+export function commonBound(
+  numbers: readonly { readonly value: number; readonly plusMinus: number }[],
+  digits: number,
+): CommonBound | undefined {
+  if (numbers.length < 2) return undefined;
+  const largest = Math.max(...numbers.map(({ value }) => Math.abs(value)));
+  const widest = Math.max(...numbers.map(({ plusMinus }) => plusMinus));
+  if (!(largest < Number.POSITIVE_INFINITY) || !(widest <= COMMON_BOUND * largest)) return undefined;
+  const place = supportedPlace(largest, widest, digits);
+  const ascii = numbers.map(({ value }) => roundedTo(value, place));
+  const bound = Math.max(
+    ...numbers.map(({ value, plusMinus }, k) => Math.max(0, plusMinus) + Math.abs(value - Number(ascii[k]))),
+  );
+  const bare = bound < 1e-3 ? ascii.map(stripZeros) : ascii;
+  return { values: bare.map(typeset), plusMinus: boundText(bound) };
+}
+
 /** The power of ten of the last digit worth printing. */
 function supportedPlace(value: number, plusMinus: number, digits: number): number {
   const capped = exponentOf(value) - digits + 1;

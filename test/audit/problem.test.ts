@@ -2,6 +2,7 @@ import { Matrix } from "ml-matrix";
 import { describe, expect, it } from "vitest";
 import { type Problem, prepareProblem } from "../../src/audit/problem.js";
 import { GoodBasisError } from "../../src/errors.js";
+import { Operator } from "../../src/operator/operator.js";
 import { naiveOf } from "../operator/naive.js";
 
 const one = [
@@ -125,9 +126,8 @@ describe("prepareProblem refuses", () => {
     for (const [change, operator, details] of cases) {
       const error = refusal(change);
       expect(error.code, error.message).toBe("shape");
-      const named = operator === "A.ladder" && "expected" in details ? "A" : operator;
-      expect(error.details).toMatchObject({ ...details, operator: named });
-      expect(error.message.startsWith(named)).toBe(true);
+      expect(error.details).toMatchObject({ ...details, operator });
+      expect(error.message.startsWith(operator)).toBe(true);
     }
   });
 
@@ -228,6 +228,70 @@ describe("prepareProblem refuses", () => {
       code: "option",
       details: { name: "A", label: "spin" },
     });
+  });
+
+  it("fields that it would pass over, with the one that was meant", () => {
+    const misspelt = refusal({ candidate: { A: one } });
+    expect(misspelt).toMatchObject({ code: "option", details: { field: "candidate" } });
+    expect(misspelt.message).toBe(
+      'the problem has no field "candidate"; did you mean "candidates"? there are h0, v, candidates, kets, unit',
+    );
+    expect(refusal({ lambda: 1 }).message).toBe(
+      'the problem has no field "lambda"; there are h0, v, candidates, kets, unit',
+    );
+    expect(refusal({ candidates: { A: { operator: one, lable: "j" } } }).message).toMatch(
+      /^candidate A has no field "lable"; did you mean "label"\?/,
+    );
+    expect(refusal({ v: { entries: [[0, 0, 1]], n: 2, entires: [] } })).toMatchObject({ code: "shape" });
+    expect(refusal({ h0: { diagonal: [1, 2], imaginry: [1, 0] } }).message).toContain('did you mean "imaginary"?');
+  });
+
+  it("perturbations with the name of a field of a matrix, whatever they hold", () => {
+    const operator = Operator.from(one);
+    for (const name of ["re", "im", "entries", "diagonal", "permutation"]) {
+      for (const matrix of [operator, one]) {
+        for (const v of [{ [name]: matrix }, { [name]: matrix, zeeman: matrix }]) {
+          if (name === "re" && matrix === one && !("zeeman" in v)) continue; // the matrix itself, in either reading
+          const error = refusal({ v });
+          expect(["name", "shape", "not-finite"], name).toContain(error.code);
+          expect(error.message, name).toMatch(/rename it/);
+        }
+      }
+    }
+    const both = refusal({ v: { re: one, im: one } });
+    expect(both.code).toBe("not-hermitian");
+    expect(both.message).toContain('v is read as one matrix, as it has the field "re"; if that is a perturbation');
+    expect(prepareProblem({ ...good, v: { real: one } }).perturbations[0]?.name).toBe("real");
+  });
+
+  it("entries so large that products of operators would overflow", () => {
+    for (const size of [2e60, 1e300, -1e300]) {
+      const large = [
+        [0, 0],
+        [0, size],
+      ];
+      for (const [change, operator] of [
+        [{ h0: large }, "H0"],
+        [{ v: large }, "V"],
+        [{ v: { stark: large } }, "stark"],
+      ] as const) {
+        const error = refusal(change);
+        expect(error).toMatchObject({ code: "not-finite", details: { operator, row: 1, col: 1 } });
+        expect(error.message).toMatch(/entry \(1, 1\) of .*, counted from 0, is of size .* above 1e\+60.*larger unit/);
+      }
+    }
+    const uncertain = Operator.from(one, { uncertainty: { absolute: 1e61 } });
+    expect(refusal({ v: uncertain }).code).toBe("not-finite");
+    expect(refusal({ candidates: { A: { diagonal: [1e151, 0] } } }).code).toBe("not-finite");
+    expect(refusal({ candidates: { A: { operator: one, ladder: { diagonal: [1e151, 0] } } } }).code).toBe("not-finite");
+    const edge: Problem = { h0: { diagonal: [1e60, 0] }, v: one, candidates: { A: { diagonal: [1e150, 0] } } };
+    expect(prepareProblem(edge).n).toBe(2);
+  });
+
+  it("a ket that is no text, and says what came", () => {
+    expect(refusal({ kets: ["a", 7] }).message).toBe('ket 1 is 7; give every name as text, such as "1"');
+    expect(refusal({ kets: ["a", null] }).message).toContain("ket 1 is null");
+    expect(refusal({ kets: 7 }).message).toContain("kets is 7");
   });
 
   it("a failure that is not its own passes through unchanged", () => {

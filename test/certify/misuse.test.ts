@@ -1,5 +1,5 @@
 import { describe, expect, it } from "vitest";
-import { findGoodBasis, GoodBasisError, Operator, validateBasis } from "../../src/index.js";
+import { findGoodBasis, formatOutcome, GoodBasisError, Operator, recheck, validateBasis } from "../../src/index.js";
 
 const h0 = Operator.diagonal([1, 1, 2]);
 const v = Operator.from([
@@ -39,6 +39,15 @@ describe("options of findGoodBasis", () => {
     ["levels in words", { levels: "lowest" }],
     ["levels as a list", { levels: [0] }],
     ["no lowest level", { levels: { lowest: 0 } }],
+    ["levels = null", { levels: null }],
+    ["depth = null", { depth: null }],
+    ["resolution = null", { resolution: null }],
+    ["λ = null", { lambda: null }],
+    ["levelWidth = null", { levelWidth: null }],
+    ["onProgress = null", { onProgress: null }],
+    ["a misspelt choice of levels", { levels: { lowset: 1 } }],
+    ["two choices of levels", { levels: { lowest: 1, from: 0, to: 3 } }],
+    ["a count that is null", { levels: { nearest: 1, count: null } }],
     ["half a level", { levels: { lowest: 1.5 } }],
     ["lowest as text", { levels: { lowest: "2" } }],
     ["nearest to NaN", { levels: { nearest: Number.NaN } }],
@@ -165,6 +174,33 @@ describe("problems", () => {
   });
 });
 
+it("options that are undefined take their defaults", () => {
+  const stated = {
+    levels: undefined,
+    depth: undefined,
+    resolution: undefined,
+    lambda: undefined,
+    levelWidth: undefined,
+  };
+  const plain = findGoodBasis({ h0, v, candidates: { A } }).certificate();
+  expect(findGoodBasis({ h0, v, candidates: { A } }, untyped(stated)).certificate()).toEqual(plain);
+});
+
+it("H0 and V at the largest size that is taken: all numbers of the certificate are finite, and it stands", () => {
+  const scaled = (factor: number): readonly [Operator, Operator] => [h0.scale(factor), v.scale(factor)];
+  for (const [energy, field] of [
+    [4e59, 4e59],
+    [1, 4e59],
+    [4e59, 1],
+  ] as const) {
+    const problem = { h0: scaled(energy)[0], v: scaled(field)[1], candidates: { A: A.scale(energy) } };
+    const outcome = findGoodBasis(problem);
+    expect(JSON.stringify(outcome.audit)).not.toContain("null");
+    expect(recheck(JSON.stringify(outcome.certificate()), problem)).toMatchObject({ ok: true });
+    expect(formatOutcome(outcome)).not.toMatch(/∞|NaN|Infinity/);
+  }
+});
+
 describe("columns, claims and options of validateBasis", () => {
   it.each([
     ["null", null, "shape"],
@@ -215,6 +251,8 @@ describe("columns, claims and options of validateBasis", () => {
 
   it.each([
     ["null", null],
+    ["a misspelt option", { resolutoin: 1e-9 }],
+    ["resolution = null", { resolution: null }],
     ["resolution = 0", { resolution: 0 }],
     ["levelWidth < 0", { levelWidth: -1 }],
     ["levelWidth = NaN", { levelWidth: Number.NaN }],

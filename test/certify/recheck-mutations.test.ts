@@ -229,7 +229,8 @@ describe("what is no certificate of this problem is refused", () => {
     const bad: [unknown, string][] = [
       [undefined, ""],
       [[], ""],
-      ["{}", ""],
+      ["no JSON", ""],
+      ["{}", "format"],
       [{}, "format"],
       [{ ...certificate, formatVersion: 2 }, "formatVersion"],
       [{ ...certificate, resolution: "1e-10" }, "resolution"],

@@ -14,6 +14,8 @@ describe("recheck passes what findGoodBasis wrote", () => {
       expect(report.ok).toBe(true);
       expect(report.checked).toBeGreaterThan(50);
       expect(recheck(JSON.parse(JSON.stringify(certificate)), problem)).toEqual(report);
+      expect(recheck(JSON.stringify(certificate), problem)).toEqual(report);
+      expect(recheck(`\uFEFF${JSON.stringify(certificate, undefined, 2)}`, problem)).toEqual(report);
     });
   }
 });

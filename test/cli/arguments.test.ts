@@ -26,8 +26,8 @@ describe("arguments", () => {
     expect(levels("nearest:-1.5e3")).toEqual({ nearest: -1500 });
     expect(levels("nearest:2:4")).toEqual({ nearest: 2, count: 4 });
     expect(levels("-1..2.5")).toEqual({ from: -1, to: 2.5 });
-    expect(levels("1...5")).toEqual({ from: 1, to: 0.5 });
-    for (const bad of ["", "3", "lowest", "lowest:x", "nearest:", "1..", "1..2..3"]) {
+    expect(levels("0...5")).toEqual({ from: 0, to: 0.5 });
+    for (const bad of ["3", "lowest", "lowest:x", "lowest:0", "nearest:", "1..", "1..2..3", "1...5", "nearest:1e999"]) {
       expect(() => levels(bad), bad).toThrow(/--levels .*: give all, lowest:3/);
     }
   });

@@ -31,6 +31,8 @@ describe("the program as a process", () => {
     expect({ status, stderr }).toEqual({ status: 0, stderr: "" });
     expect(stdout).toContain("GOOD: V couples no two states inside any level studied");
     expect(stdout).not.toContain("\u001b");
+    // every sign of it is one column wide
+    expect(Math.max(...stdout.split("\n").map((line) => [...line].length))).toBeLessThanOrEqual(120);
   });
 
   it("gives the same bits twice", () => {
@@ -61,6 +63,8 @@ describe("the program as a process", () => {
       /^error \[output\]: goodbasis find: new\.txt, no\/such\/folder\.json cannot be written \(ENOENT/,
     );
     expect(readdirSync(folder).sort()).toEqual(["c.json", "p.json", "r.txt"]);
+    const lost = program(["find", "p.json", "--out", "no/such/r.txt"]);
+    expect(lost.stderr).toMatch(/no\/such\/r\.txt cannot be written \(ENOENT: no such file or directory\); check/);
     const onto = program(["find", "p.json", "--out", "new.txt", "--certificate", ".", "--force"]);
     expect(onto).toMatchObject({ status: 2, stdout: "", stderr: expect.stringContaining("is a folder") });
     expect(readdirSync(folder).sort()).toEqual(["c.json", "p.json", "r.txt"]);

@@ -76,7 +76,7 @@ describe("the program", () => {
       status: 2,
       out: "",
       err: expect.stringMatching(
-        /^error \[not-hermitian\]: goodbasis find: b\.json: H0 is not Hermitian: .*row 0, column 1.*correct the matrix/,
+        /^error \[not-hermitian\]: goodbasis find: b\.json, line 1, h0: H0 is not Hermitian: .*row 0, column 1.*correct the matrix/,
       ),
     });
     expect(runFake(["find", "b.json"], { files: { "b.json": "{\n  1 }" } }).err).toBe(
@@ -105,7 +105,7 @@ describe("goodbasis find", () => {
     expect(out).toMatch(/^A pair\nAll numbers of this problem are invented\.\n\nGOOD: /);
     expect(out).toContain("B does not commute with V");
     expect(out).toMatch(/\nStates\nlevel +E0 /);
-    expect(out).toContain("0.707107 |a⟩ + 0.707107 |b⟩");
+    expect(out).toContain("0.707107 (|a⟩ + |b⟩)");
     expect(out).not.toContain("\u001b");
   });
 
@@ -200,6 +200,28 @@ describe("goodbasis find", () => {
         .out.trimEnd()
         .split("\r\n"),
     ).toHaveLength(81);
+  });
+});
+
+describe("what is wrong with a problem file only when it is worked on", () => {
+  const stated = GOOD.replace('"h0"', '"options": { "levels": { "from": 7, "to": 8 } },\n  "h0"');
+
+  it("is said with its line; an option of the command line is not blamed on the file", () => {
+    expect(runFake(["find", "s.json"], { files: { "s.json": stated } }).err).toMatch(
+      /^error \[no-level\]: goodbasis find: s\.json, line \d+, options\.levels: no level lies between 7 and 8/,
+    );
+    expect(runFake(["find", "s.json", "--levels", "9..10"], { files: { "s.json": stated } }).err).toMatch(
+      /^error \[no-level\]: goodbasis find: no level lies between 9 and 10/,
+    );
+  });
+
+  it("as are levels that no command line may ask for", () => {
+    for (const levels of ["lowest:0", "3..1", "nearest:1e999", "nearest:1:0"]) {
+      expect(runFake(["find", "p.json", "--levels", levels], { files }).err).toContain(
+        `--levels ${levels}: give all, lowest:3`,
+      );
+    }
+    expect(runFake(["find", "p.json", "--lambda", "-1"], { files }).err).toContain("use '--lambda=-XYZ'");
   });
 });
 
@@ -320,6 +342,19 @@ describe("goodbasis recheck", () => {
       err: expect.stringMatching(/^error \[file\]: goodbasis recheck: c\.json, line \d+, column/),
     });
   });
+
+  it("reads one of its two files from standard input, not both", () => {
+    expect(runFake(["recheck", "-", "-"], { files: { "-": GOOD } })).toMatchObject({
+      status: 2,
+      err: expect.stringContaining("cannot both come from standard input"),
+    });
+    expect(runFake(["recheck", "-", "p.json"], { files: { ...files, "-": "{" } }).err).toMatch(
+      /^error \[file\]: goodbasis recheck: standard input, line 1, column 2: expected/,
+    );
+    expect(runFake(["recheck", "p.json", "p.json"], { files }).err).toMatch(
+      /^error \[file\]: goodbasis recheck: the certificate is malformed/,
+    );
+  });
 });
 
 describe("output files", () => {
@@ -356,6 +391,20 @@ describe("output files", () => {
     const { status, err } = runFake(["find", "p.json", "--out", "r", "--certificate", "./r"], { files });
     expect(status).toBe(2);
     expect(err).toMatch(/--out and --certificate both name r; give two paths/);
+  });
+
+  it("need names that are not empty, given once", () => {
+    for (const option of ["--out", "--certificate", "--levels", "--columns", "--format", "--depth"]) {
+      const { status, err, files: after } = runFake(["find", "p.json", option, ""], { files });
+      expect(status).toBe(2);
+      expect(err).toMatch(new RegExp(`^error \\[option\\]: goodbasis find: ${option} is empty; give a value`));
+      expect([...after.keys()]).toEqual(Object.keys(files));
+    }
+    expect(runFake(["validate", "p.json", "--basis", " "], { files }).err).toContain("--basis is empty");
+    expect(runFake(["find", ""], { files }).err).toContain("the name of a file is empty");
+    const twice = runFake(["find", "p.json", "--out=a", "--out=b"], { files });
+    expect(twice).toMatchObject({ status: 2, err: expect.stringContaining("--out is given twice") });
+    expect([...twice.files.keys()]).toEqual(Object.keys(files));
   });
 
   it("leave nothing behind where bad input or a full disk stops the work", () => {

@@ -28,8 +28,7 @@ describe("matrices of a problem file", () => {
   it("come as triplets", () => {
     const triplets = [
       [0, 1, 1],
-      [1, 0, 0.5],
-      [1, 0, 0.5],
+      [1, 0, 1],
     ];
     expect(rowsOf(h0Of({ n: 2, triplets }))).toEqual(X);
     expect(rowsOf(h0Of({ triplets }, { kets: ["a", "b"] }))).toEqual(X);
@@ -54,7 +53,12 @@ describe("matrices of a problem file", () => {
     expect(errorOf(() => h0Of({ n: 1, triplets }))).toMatch(
       /^file: p.json, line 7, h0.triplets\[0\]: expected row and col/,
     );
-    expect(errorOf(() => h0Of({ n: 2, triplets, radii: [0, 0, 0] }))).toContain("every place once, as radii are given");
+    const again = [...triplets, [1, 0, 0.5]];
+    for (const radii of [{}, { radii: [0, 0, 0] }]) {
+      expect(errorOf(() => h0Of({ n: 2, triplets: again, ...radii }))).toMatch(
+        /^file: p\.json, line \d+, h0\.triplets\[2\]: expected every place once, got \(1, 0\) again; write the sum/,
+      );
+    }
   });
 
   it("come with radii of their own", () => {

@@ -118,6 +118,45 @@ describe("readProblem", () => {
     );
   });
 
+  it("says where kets and levels are wrong", () => {
+    const two = { h0: { diagonal: [0, 1] }, v: { diagonal: [1, 0] } };
+    const bad = (fields: Readonly<Record<string, unknown>>): string => errorOf(() => readFields({ ...two, ...fields }));
+    expect(bad({ kets: ["a", "a"] })).toMatch(
+      /^name: p\.json, line \d+, kets\[1\]: kets 0 and 1 are both called "a"; names must differ/,
+    );
+    expect(bad({ kets: ["a", " "] })).toMatch(/^name: p\.json, line \d+, kets\[1\]: the name of the ket is empty/);
+    expect(bad({ kets: ["a", "b", "c"] })).toMatch(
+      /^shape: p\.json, line \d+, kets: 3 kets are named, but h0 is 2 × 2; name every ket once/,
+    );
+    expect(bad({ kets: ["a", 7] })).toMatch(
+      /^file: p\.json, line \d+, kets\[1\]: expected text in double quotes, got 7/,
+    );
+    expect(bad({ options: { levels: { from: 2, to: 1 } } })).toMatch(
+      /^option: p\.json, line \d+, options\.levels: the window runs from 2 down to 1; give from ≤ to/,
+    );
+    expect(bad({ options: { levels: null } })).toMatch(/^file: p\.json, line \d+, options\.levels: expected "all"/);
+    expect(bad({ kets: ["a", "b"], options: { levels: { from: 1, to: 1 } } })).toBe("no error");
+  });
+
+  it("says which field was probably meant", () => {
+    expect(errorOf(() => readFields({ candidate: {} }))).toMatch(
+      /candidate: expected no other fields than .*; did you mean "candidates"\? goodbasis\/problem-schema/,
+    );
+    expect(errorOf(() => readFields({ options: { lamda: 1 } }))).toContain('did you mean "lambda"?');
+  });
+
+  it("tells a perturbation by name from a field of one matrix, or says to rename it", () => {
+    const named = [[1]];
+    for (const name of ["re", "im", "entries", "rows", "exchange", "hopping", "terms", "triplets", "translation"]) {
+      const message = errorOf(() => readFields({ v: { [name]: [["x"]], zeeman: named } }));
+      expect(message, name).toMatch(/^(name|file): p\.json, line \d+, v.*rename it/);
+      expect(message, name).toContain(`"${name}"`);
+    }
+    const energies = errorOf(() => readFields({ h0: { diagonal: [0, 1] }, v: { diagonal: [[0, 1], 1] } }));
+    expect(energies).toMatch(/^not-hermitian: .*line \d+, v: V is not Hermitian.*"diagonal".*rename it/);
+    expect(Object.keys(readFields({ v: { real: named, zeeman: named } }).problem.v)).toEqual(["real", "zeeman"]);
+  });
+
   it("refuses two candidates of one name, of which JSON.parse would lose one", () => {
     const text =
       '{ "format": "goodbasis-problem", "formatVersion": 1, "h0": [[0]], "v": [[0]],\n "candidates": { "A": [[1]], "A": [[2]] } }';

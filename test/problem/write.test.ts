@@ -5,6 +5,7 @@ import { angularMomentum } from "../../src/models/angular-momentum.js";
 import { Operator } from "../../src/operator/operator.js";
 import { readProblem } from "../../src/problem/read.js";
 import { writeProblem } from "../../src/problem/write.js";
+import { errorOf } from "./files.js";
 
 const s = angularMomentum(3 / 2);
 const problem: Problem = {
@@ -25,6 +26,21 @@ const problem: Problem = {
 };
 
 describe("writeProblem", () => {
+  it("refuses what no problem file could hold", () => {
+    const one = [[1]];
+    const bad = (problem: unknown, extra: unknown = {}): string =>
+      errorOf(() => Reflect.apply(writeProblem, undefined, [problem, extra]));
+    expect(bad({ h0: one, v: one, candidate: {} })).toMatch(/^option: writeProblem: .*did you mean "candidates"/);
+    expect(bad({ h0: one, v: { exchange: one } })).toMatch(/^name: writeProblem: .*"exchange".*rename it/);
+    expect(bad({ h0: one, v: null })).toMatch(/^option: writeProblem: expected operators by name as v, got null/);
+    expect(bad({ h0: one, v: one, candidates: { A: 7 } })).toMatch(/^shape: writeProblem: a candidate is 7/);
+    expect(bad({ h0: one, v: one }, { title: 7 })).toMatch(/^file: writeProblem, title: expected text, got 7/);
+    expect(bad({ h0: one, v: one }, { options: { lambda: Number.NaN } })).toMatch(
+      /^file: writeProblem, options\.lambda/,
+    );
+    expect(bad({ h0: one, v: one }, { titel: "t" })).toMatch(/^option: writeProblem: .*did you mean "title"/);
+  });
+
   it("keeps every bit: the certificates name the same hashes", () => {
     const read = readProblem(
       writeProblem(problem, { title: "t", note: "n", invented: true, options: { levels: { lowest: 1 } } }),

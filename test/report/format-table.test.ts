@@ -128,20 +128,57 @@ function row(
 describe("text", () => {
   test("aligns points and ±, and rules off levels", () => {
     expect(formatTable(small, "text").split("\n")).toEqual([
-      "level  E0        Jz             L2  E1                           E2              evidence  state",
-      "       [cm⁻¹]        (descriptive)  [cm⁻¹]                       [cm⁻¹]",
-      "─".repeat(126),
-      "    0  −11.46   1/2            ⟨2⟩    0.666666666666667 ± 5e−15  0.00283 ± 2e−5  labels    0.816497 |1,−1/2⟩ − 0.57735 |0,1/2⟩",
-      "               −1/2            ⟨2⟩  −12.5               ± 2e−14  0.00283 ± 2e−5  V         |a|b⟩ … (+5, weight 0.013)",
-      "┈".repeat(126),
-      "    1    5.73   3/2            ⟨6⟩    —                          0.00283 ± 2e−5  none      −|=x_y⟩",
+      "level  E0        Jz        L2  E1            E2              evidence  state",
+      "       [cm⁻¹]        (descr.)  [cm⁻¹]        [cm⁻¹]",
+      "                               ±4e−9",
+      "─".repeat(106),
+      "    0  −11.46   1/2       ⟨2⟩    0.66666667  0.00283 ± 2e−5  labels    0.816497 |1,−1/2⟩ − 0.57735 |0,1/2⟩",
+      "               −1/2       ⟨2⟩  −12.5         0.00283 ± 2e−5  V         |a|b⟩ … (+5, weight 0.013)",
+      "┈".repeat(106),
+      "    1    5.73   3/2       ⟨6⟩    —           0.00283 ± 2e−5  none      −|=x_y⟩",
       "",
+      "± in the head of a column: it holds for every number below, rounding to 10 digits included; CSV and JSON carry each",
+      "  number with a ± of its own.",
       "L2: conserved by H0, names the states.",
     ]);
   });
 
   test("fewer digits widen the ±", () => {
     expect(formatTable(small, "text", { digits: 3 })).toContain("0.667 ± 4e−4");
+  });
+
+  test("states one ± for a column only where that costs nothing, and never with digits given", () => {
+    const shifts = (values: readonly (readonly [number, number])[]): Table => ({
+      unit: "",
+      columns: [column("E1:V", "bounded", { title: "E1" })],
+      rows: values.map(([value, plusMinus], state) => ({
+        state,
+        level: state,
+        cells: [{ kind: "bounded", value, plusMinus }],
+      })),
+      notes: [],
+    });
+    const fine = shifts([
+      [31.68932, 1.4e-11],
+      [-0.0107, 1e-12],
+      [0, 0],
+    ]);
+    expect(formatTable(fine, "text", { notes: false }).split("\n")).toEqual([
+      "E1",
+      "±1.4e−11",
+      "────────",
+      "31.68932",
+      "−0.0107",
+      " 0",
+    ]);
+    expect(formatTable(fine, "text", { digits: 17 })).toContain("−0.0107  ± 1e−12");
+    const coarse = shifts([
+      [31.68932, 1e-7],
+      [-0.0107, 1e-12],
+    ]);
+    expect(formatTable(coarse, "text")).toContain("31.68932 ± 1e−7");
+    expect(formatTable(coarse, "text")).toContain("−0.0107  ± 1e−12");
+    expect(formatTable(shifts([[1, 1e-14]]), "text")).toContain("1 ± 1e−14");
   });
 
   test("notes can be left out", () => {
@@ -174,6 +211,28 @@ describe("csv", () => {
       '0,-11.46,2e-14,0.5,⟨2⟩,0.6666666666666666,4e-15,0.00283,0.00002,labels,"0.816497 |1,−1/2⟩ − 0.57735 |0,1/2⟩"',
       '0,-11.46,2e-14,-0.5,⟨2⟩,-12.5,2e-14,0.00283,0.00002,V,"|a|b⟩ … (+5, weight 0.013)"',
       "1,5.73,2e-14,1.5,⟨6⟩,,,0.00283,0.00002,none,−|=x_y⟩",
+    ]);
+  });
+
+  test("has nothing that a spreadsheet takes for a date: fractions are decimals, safe orders two fields", () => {
+    const label = (text: string): Cell => ({
+      kind: "label",
+      label: { re: 0, im: 0, radius: 0, text, status: "declared", role: "conserved" },
+    });
+    const safe = (text: string): Cell => ({ kind: "text", text });
+    const rows = [
+      [label("−3/4"), safe("2/0")],
+      [label("1/3"), safe("all/all")],
+      [label("3/2"), safe("1/none")],
+      [label("exp(2πi·1/6)"), { kind: "none" }],
+    ].map((cells, state) => ({ state, level: 0, cells: cells as Cell[] }));
+    const columns = [column("label:Q", "label", { title: "Q" }), column("safe", "text", { title: "safe E/ψ" })];
+    expect(formatTable({ unit: "", columns, rows, notes: [] }, "csv").split("\r\n")).toEqual([
+      "Q,safe E,safe ψ",
+      "-0.75,2,0",
+      "0.3333333333333333,all,all",
+      "1.5,1,none",
+      "exp(2πi·1/6),,",
     ]);
   });
 
@@ -287,7 +346,7 @@ describe("expansions", () => {
         1,
         0.25,
       ),
-      "0.5 (|a⟩ − |b⟩ + |c⟩) … (+1, weight 0.3)",
+      "0.5 (|a⟩ − |b⟩ + |c⟩) … (+1, weight 0.25)",
     ],
     [text([[1, 0, "a"]], 2, 3e-33), "|a⟩ … (+2, weight 3e−33)"],
     [text([], 3, 1), "… (+3, weight 1)"],

@@ -7,7 +7,7 @@ test("decimal points and ± stand below each other", () => {
   const lines = grid(
     [
       { title: "n", align: "right" },
-      { title: "E1", under: "[Eh]", align: "point" },
+      { title: "E1", under: ["[Eh]"], align: "point" },
     ],
     [
       ["1", "−12.5 ± 4e−15"],

@@ -1,6 +1,14 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { boundedText, boundText, complexText, numberText, roughText, supportedText } from "../../src/report/numbers.js";
+import {
+  boundedText,
+  boundText,
+  commonBound,
+  complexText,
+  numberText,
+  roughText,
+  supportedText,
+} from "../../src/report/numbers.js";
 
 const SEED = { seed: 20240611, numRuns: 2000 };
 const ascii = (text: string): number => Number(text.replaceAll("−", "-"));
@@ -97,6 +105,43 @@ describe("boundedText", () => {
       }),
       SEED,
     );
+  });
+});
+
+describe("commonBound", () => {
+  const bounded = fc.record({
+    value: fc.double({ min: -1e6, max: 1e6, noNaN: true }),
+    plusMinus: fc.double({ min: 0, max: 1e-5, noNaN: true }),
+  });
+
+  test("what is printed contains what was proved, in every row", () => {
+    let shared = 0;
+    fc.assert(
+      fc.property(fc.array(bounded, { maxLength: 6 }), fc.integer({ min: 1, max: 17 }), (numbers, digits) => {
+        const found = commonBound(numbers, digits);
+        if (found === undefined) return;
+        shared++;
+        const bound = ascii(found.plusMinus);
+        expect(found.values).toHaveLength(numbers.length);
+        numbers.forEach(({ value, plusMinus }, k) => {
+          const printed = ascii(found.values[k] ?? "");
+          expect(Math.abs(printed - value) + plusMinus).toBeLessThanOrEqual(bound * (1 + 1e-15));
+        });
+      }),
+      { seed: 11, numRuns: 2000 },
+    );
+    expect(shared).toBeGreaterThan(100);
+  });
+
+  test("is refused where the ± would cost digits, and for a single number", () => {
+    const numbers = [
+      { value: 3, plusMinus: 4e-9 },
+      { value: 1, plusMinus: 1e-15 },
+    ];
+    expect(commonBound(numbers, 10)).toBeUndefined();
+    expect(commonBound([{ value: 3, plusMinus: 0 }], 10)).toBeUndefined();
+    expect(commonBound([...numbers, { value: 1e9, plusMinus: Number.POSITIVE_INFINITY }], 10)).toBeUndefined();
+    expect(commonBound([...numbers, { value: Number.NaN, plusMinus: 0 }], 10)).toBeUndefined();
   });
 });
 

@@ -7,7 +7,7 @@ import type { Table } from "../../report/table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
 import { headingLines, withHeading } from "../heading.js";
-import { loadProblem } from "../input.js";
+import { loadProblem, onProblem } from "../input.js";
 import { checkOutputs, deliver } from "../output.js";
 import { plainTable } from "../plain-table.js";
 import type { Terminal } from "../terminal.js";
@@ -31,7 +31,9 @@ function runAudit(terminal: Terminal, settings: Settings, [path = ""]: readonly 
   checkOutputs(terminal, settings);
   const read = loadProblem(terminal, path);
   const resolution = settings.find.resolution ?? read.options.resolution;
-  const audit = auditCommutators(read.problem, resolution === undefined ? {} : { resolution });
+  const audit = onProblem(read, settings, () =>
+    auditCommutators(read.problem, resolution === undefined ? {} : { resolution }),
+  );
   const good = audit.candidates.every(({ conserved }) => conserved);
   const colours = terminal.colours.print && settings.out === undefined;
   deliver(terminal, settings, { text: auditText(settings, read, audit, good, colours) });

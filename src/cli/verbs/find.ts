@@ -11,7 +11,7 @@ import type { Table } from "../../report/table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
 import { headingLines, withHeading } from "../heading.js";
-import { loadProblem } from "../input.js";
+import { loadProblem, onProblem } from "../input.js";
 import { checkOutputs, deliver } from "../output.js";
 import { withProgress } from "../progress.js";
 import type { Terminal } from "../terminal.js";
@@ -66,13 +66,12 @@ function study(terminal: Terminal, settings: Settings, path: string): { read: Re
   checkOutputs(terminal, settings);
   const read = loadProblem(terminal, path);
   checkColumns(settings, read.problem);
-  const outcome = withProgress(terminal, (onProgress) =>
-    findGoodBasis(read.problem, {
-      ...read.options,
-      ...settings.find,
-      ...(onProgress === undefined ? {} : { onProgress }),
-    }),
-  );
+  const outcome = withProgress(terminal, (onProgress) => {
+    const progress = onProgress === undefined ? {} : { onProgress };
+    return onProblem(read, settings, () =>
+      findGoodBasis(read.problem, { ...read.options, ...settings.find, ...progress }),
+    );
+  });
   return { read, outcome };
 }
 

@@ -1,11 +1,12 @@
 import { recheck } from "../../certify/recheck.js";
 import type { RecheckReport } from "../../certify/recheck-report.js";
+import { GoodBasisError } from "../../errors.js";
 import { parseDocument } from "../../problem/document.js";
 import { formatRecheck } from "../../report/format-recheck.js";
 import { formatTable } from "../../report/format-table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
-import { loadProblem, readFile } from "../input.js";
+import { loadProblem, nameOf, onProblem, readFile } from "../input.js";
 import { checkOutputs, deliver } from "../output.js";
 import { plainTable } from "../plain-table.js";
 import type { Verb } from "../verb.js";
@@ -27,9 +28,14 @@ export const recheckVerb: Verb = {
   ],
   run: (terminal, settings, [certificatePath = "", problemPath = ""]) => {
     checkOutputs(terminal, settings);
+    if (certificatePath === "-" && problemPath === "-") {
+      const message = "certificate and problem cannot both come from standard input; give a path for one of them";
+      throw new GoodBasisError("option", message, {});
+    }
     const text = readFile(terminal, certificatePath);
-    const certificate = parseDocument({ name: certificatePath, text }, text);
-    const report = recheck(certificate, loadProblem(terminal, problemPath).problem);
+    const certificate = parseDocument({ name: nameOf(certificatePath), text }, text);
+    const read = loadProblem(terminal, problemPath);
+    const report = onProblem(read, settings, () => recheck(certificate, read.problem));
     const colours = terminal.colours.print && settings.out === undefined;
     deliver(terminal, settings, { text: textOf(settings, report, colours) });
     return report.ok && report.verdict === "good" ? 0 : 1;

@@ -6,7 +6,7 @@ import { formatTable } from "../../report/format-table.js";
 import type { Settings } from "../arguments.js";
 import { markFirstWord } from "../colour.js";
 import { headingLines, withHeading } from "../heading.js";
-import { loadProblem, readFile } from "../input.js";
+import { loadProblem, onProblem, readFile } from "../input.js";
 import { checkOutputs, deliver } from "../output.js";
 import { plainTable } from "../plain-table.js";
 import { validationText } from "../validation-text.js";
@@ -39,12 +39,13 @@ export const validateVerb: Verb = {
       n: read.n,
     });
     const { resolution, lambda, refuseAbove, levelWidth } = { ...read.options, ...settings.find };
-    const validation = validateBasis(read.problem, columns, labels, {
+    const options = {
       ...(resolution === undefined ? {} : { resolution }),
       ...(lambda === undefined ? {} : { lambda }),
       ...(refuseAbove === undefined ? {} : { refuseAbove }),
       ...(levelWidth === undefined ? {} : { levelWidth }),
-    });
+    };
+    const validation = onProblem(read, settings, () => validateBasis(read.problem, columns, labels, options));
     const colours = terminal.colours.print && settings.out === undefined;
     deliver(terminal, settings, { text: textOf(settings, read, validation, colours) });
     return validation.verdict === "good" ? 0 : 1;
