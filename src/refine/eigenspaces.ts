@@ -3,6 +3,7 @@ import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
 import { type Components, connectedComponents } from "./components.js";
 import { orthonormalityDefect } from "./gram.js";
+import { normalEigen } from "./normal.js";
 import { type Cycle, cycleThrough, solveCycle } from "./orbits.js";
 
 /** An eigenspace of an operator inside a block. */
@@ -58,7 +59,7 @@ interface PartVectors {
  *
  * Where the restricted operator is diagonal, indices are grouped; a cycle of a monomial unitary one is solved in closed
  * form; the eigensolver sees only the connected parts that remain. A normal operator that is neither Hermitian nor
- * monomial is taken apart by its Hermitian part and then, inside each eigenspace of that, by its anti-Hermitian part.
+ * monomial is taken apart by its Hermitian and its anti-Hermitian part in turn, see {@link normalEigen}.
  *
  * @param matrix - the operator restricted to the block, d × d
  */
@@ -192,106 +193,8 @@ function solveDense(matrix: Csr, components: Components, part: number, options: 
     const defect = orthonormalityDefect(count, count, eigen.re, eigen.im);
     return { re: eigen.re, im: eigen.im, valuesRe: eigen.values, valuesIm: undefined, defect };
   }
-  return solveNormal(count, dense.re, dense.im ?? new Float64Array(count * count), options);
-}
-
-/** A normal matrix by two commuting Hermitian ones, X = (A + A†)/2 and then Y = (A − A†)/2i inside each eigenspace of X. */
-function solveNormal(n: number, re: Float64Array, im: Float64Array, options: SplitOptions): SolvedPart {
-  const xr = new Float64Array(n * n);
-  const xi = new Float64Array(n * n);
-  const yr = new Float64Array(n * n);
-  const yi = new Float64Array(n * n);
-  for (let i = 0; i < n; i++) {
-    for (let j = 0; j < n; j++) {
-      const a = re[i * n + j] as number;
-      const b = im[i * n + j] as number;
-      const c = re[j * n + i] as number;
-      const d = im[j * n + i] as number;
-      xr[i * n + j] = (a + c) / 2;
-      xi[i * n + j] = (b - d) / 2;
-      yr[i * n + j] = (b + d) / 2;
-      yi[i * n + j] = (c - a) / 2;
-    }
-  }
-  const first = hermitianEigen(n, xr, xi);
-  const outRe = new Float64Array(n * n);
-  const outIm = new Float64Array(n * n);
-  const valuesRe = new Float64Array(n);
-  const valuesIm = new Float64Array(n);
-  let from = 0;
-  while (from < n) {
-    let to = from + 1;
-    while (to < n && (first.values[to] as number) - (first.values[to - 1] as number) <= options.cluster) to++;
-    const d = to - from;
-    const inner = sandwich(n, yr, yi, first.re, first.im ?? new Float64Array(n * n), from, d);
-    const second = hermitianEigen(d, inner.re, inner.im);
-    for (let k = 0; k < d; k++) {
-      valuesIm[from + k] = second.values[k] as number;
-      let mean = 0;
-      for (let a = 0; a < d; a++) {
-        const ur = second.re[k * d + a] as number;
-        const ui = second.im === undefined ? 0 : (second.im[k * d + a] as number);
-        mean += (ur * ur + ui * ui) * (first.values[from + a] as number);
-        for (let c = 0; c < n; c++) {
-          const fr = first.re[(from + a) * n + c] as number;
-          const fi = first.im === undefined ? 0 : (first.im[(from + a) * n + c] as number);
-          const at = (from + k) * n + c;
-          outRe[at] = (outRe[at] as number) + ur * fr - ui * fi;
-          outIm[at] = (outIm[at] as number) + ur * fi + ui * fr;
-        }
-      }
-      valuesRe[from + k] = mean;
-    }
-    from = to;
-  }
-  return { re: outRe, im: outIm, valuesRe, valuesIm, defect: orthonormalityDefect(n, n, outRe, outIm) };
-}
-
-/** conj(Q) Y Qᵀ for the rows from .. from + d − 1 of Q: the matrix of Y in that subspace. */
-function sandwich(
-  n: number,
-  yr: Float64Array,
-  yi: Float64Array,
-  qr: Float64Array,
-  qi: Float64Array,
-  from: number,
-  d: number,
-): { re: Float64Array; im: Float64Array } {
-  const re = new Float64Array(d * d);
-  const im = new Float64Array(d * d);
-  const wr = new Float64Array(n);
-  const wi = new Float64Array(n);
-  for (let b = 0; b < d; b++) {
-    const q = (from + b) * n;
-    for (let i = 0; i < n; i++) {
-      let sr = 0;
-      let si = 0;
-      for (let j = 0; j < n; j++) {
-        const a = yr[i * n + j] as number;
-        const c = yi[i * n + j] as number;
-        const x = qr[q + j] as number;
-        const y = qi[q + j] as number;
-        sr += a * x - c * y;
-        si += a * y + c * x;
-      }
-      wr[i] = sr;
-      wi[i] = si;
-    }
-    for (let a = 0; a < d; a++) {
-      const p = (from + a) * n;
-      let sr = 0;
-      let si = 0;
-      for (let i = 0; i < n; i++) {
-        const x = qr[p + i] as number;
-        const y = qi[p + i] as number;
-        sr += x * (wr[i] as number) + y * (wi[i] as number);
-        si += x * (wi[i] as number) - y * (wr[i] as number);
-      }
-      re[a * d + b] = sr;
-      im[a * d + b] = si;
-    }
-  }
-  return { re, im };
+  const normal = normalEigen(count, dense, options.noise);
+  return { ...normal, defect: orthonormalityDefect(count, count, normal.re, normal.im) };
 }
 
 function denseSubmatrix(matrix: Csr, members: Int32Array): { re: Float64Array; im: Float64Array | undefined } {
@@ -327,48 +230,56 @@ interface Group {
 }
 
 function sortedGroups(pairs: Pairs, options: SplitOptions): Group[] {
-  const all = pairs.re.length;
-  const distinct = new Map<number, number[]>();
-  for (let k = 0; k < all; k++) {
-    const x = pairs.re[k] as number;
-    const list = distinct.get(x);
-    if (list === undefined) distinct.set(x, [k]);
-    else list.push(k);
-  }
-  const chains = chain(distinct, options.cluster);
+  const all = Array.from(pairs.re, (_, k) => k);
+  const byRe = chain(all, pairs.re, options.cluster);
   if (options.hermitian) {
-    return chains
+    return byRe
       .map((c) => ({ value: { re: c.middle, im: 0 }, spread: c.spread, pairs: c.members }))
       .sort((a, b) => b.value.re - a.value.re);
-  }
-  const groups: Group[] = [];
-  for (const c of chains) {
-    const inner = new Map<number, number[]>();
-    for (const k of c.members) {
-      const y = pairs.im[k] as number;
-      const list = inner.get(y);
-      if (list === undefined) inner.set(y, [k]);
-      else list.push(k);
-    }
-    for (const d of chain(inner, options.cluster)) {
-      groups.push({ value: { re: c.middle, im: d.middle }, spread: c.spread + d.spread, pairs: d.members });
-    }
   }
   const angle = (z: Complex): number => {
     if (Math.abs(z.im) <= options.cluster) return z.re < 0 ? Math.PI : 0;
     const a = Math.atan2(z.im, z.re);
     return a < 0 ? a + 2 * Math.PI : a;
   };
-  return groups.sort((a, b) => angle(a.value) - angle(b.value) || b.value.re - a.value.re);
+  return byRe
+    .flatMap((c) => resolved(c, pairs.re, pairs.im, options.cluster, false))
+    .sort((a, b) => angle(a.value) - angle(b.value) || b.value.re - a.value.re);
 }
 
-/** Clusters the keys of a map by gaps; members ascending. */
-function chain(
-  distinct: Map<number, number[]>,
-  tolerance: number,
-): { middle: number; spread: number; members: number[] }[] {
+/**
+ * Takes a chain of real parts apart by imaginary parts, what is left by real ones again, and so on until neither divides it:
+ * values that only others in between had linked are told apart, and each group has its own middle.
+ */
+function resolved(by: Chain, own: Float64Array, other: Float64Array, tolerance: number, swapped: boolean): Group[] {
+  const parts = chain(by.members, other, tolerance);
+  const [only] = parts;
+  if (parts.length > 1 || only === undefined) {
+    return parts.flatMap((part) => resolved(part, other, own, tolerance, !swapped));
+  }
+  const value = swapped ? { re: only.middle, im: by.middle } : { re: by.middle, im: only.middle };
+  return [{ value, spread: by.spread + only.spread, pairs: by.members }];
+}
+
+/** Values linked by gaps. */
+interface Chain {
+  readonly middle: number;
+  readonly spread: number;
+  /** Ascending. */
+  readonly members: number[];
+}
+
+/** Clusters members by the gaps between their values. */
+function chain(members: readonly number[], values: Float64Array, tolerance: number): Chain[] {
+  const distinct = new Map<number, number[]>();
+  for (const k of members) {
+    const x = values[k] as number;
+    const list = distinct.get(x);
+    if (list === undefined) distinct.set(x, [k]);
+    else list.push(k);
+  }
   const keys = Float64Array.from(distinct.keys()).sort();
-  const chains: { middle: number; spread: number; members: number[] }[] = [];
+  const chains: Chain[] = [];
   let from = 0;
   while (from < keys.length) {
     let to = from + 1;
@@ -376,16 +287,16 @@ function chain(
     const low = keys[from] as number;
     const high = keys[to - 1] as number;
     const middle = to === from + 1 ? low : low + (high - low) / 2;
-    let members = distinct.get(low) as number[];
+    let together = distinct.get(low) as number[];
     if (to > from + 1) {
-      members = members.slice();
+      together = together.slice();
       for (let k = from + 1; k < to; k++) {
         const more = distinct.get(keys[k] as number);
-        if (more !== undefined) for (const index of more) members.push(index);
+        if (more !== undefined) for (const index of more) together.push(index);
       }
-      members.sort((a, b) => a - b);
+      together.sort((a, b) => a - b);
     }
-    chains.push({ middle, spread: Math.max(middle - low, high - middle), members });
+    chains.push({ middle, spread: Math.max(middle - low, high - middle), members: together });
     from = to;
   }
   return chains;
