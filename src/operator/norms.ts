@@ -25,7 +25,8 @@ function boundFrom(csr: Csr, value: (e: number) => number, euclid: number): numb
   if (columns === 0) return 0;
   const rows = largestRowSum(csr, value);
   // Sums of at most n terms; the Frobenius sum has one for each entry, which pairwise bounds of n² would exceed.
-  const holder = roundUp(Math.sqrt(columns) * Math.sqrt(rows), csr.rows + csr.cols + 8);
+  // Equal ones, as of any Hermitian matrix, need no root: the bound then scales with the unit to the last bit.
+  const holder = roundUp(columns === rows ? columns : Math.sqrt(columns) * Math.sqrt(rows), csr.rows + csr.cols + 8);
   const entries = roundUp(euclid, 2 * csr.col.length + 16);
   return Math.min(holder, entries);
 }
