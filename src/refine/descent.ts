@@ -1,19 +1,10 @@
 import type { Csr } from "../numerics/csr.js";
 import { gamma, rootOfSquares, roundUp, UNDERFLOW } from "../numerics/rounding.js";
-import {
-  conjugate,
-  frobenius,
-  maxRowEntries,
-  multiply,
-  norm1,
-  normInf,
-  submatrix,
-  transpose,
-} from "../numerics/sparse.js";
-import { stackRows } from "../numerics/stack.js";
+import { frobenius, maxRowEntries, norm1, normInf, submatrix } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import { boundModulus } from "../operator/radius.js";
-import type { Eigenspace } from "./eigenspaces.js";
+import type { Eigenspace, Split } from "./eigenspaces.js";
+import { rotated } from "./rotate.js";
 
 /** One step down the tree: a block's vectors F replaced by U F, U the rows of all children. */
 export interface DescentStep {
@@ -29,15 +20,13 @@ export interface DescentStep {
 }
 
 /** Prepares a step; nothing is computed twice for the operators that go through it. */
-export function descentStep(spaces: readonly Eigenspace[], block: { readonly frame: Csr }): DescentStep {
-  const rows = stackRows(
-    spaces.map((space) => space.rows),
-    block.frame.rows,
-  );
-  const selection = spaces.every((space) => space.indices !== undefined);
-  if (selection) return { spaces, rows, indices: rows.col, compositionError: 0, rowError: 0 };
+export function descentStep(
+  { spaces, rows, indices }: Pick<Split, "spaces" | "rows" | "indices">,
+  block: { readonly frame: Csr },
+): DescentStep {
+  if (indices !== undefined) return { spaces, rows, indices, compositionError: 0, rowError: 0 };
   const rowError = compositionRowError(maxRowEntries(rows), block.frame);
-  return { spaces, rows, indices: undefined, rowError, compositionError: roundUp(frobenius(rows) * rowError * 1.01) };
+  return { spaces, rows, indices, rowError, compositionError: roundUp(frobenius(rows) * rowError * 1.01) };
 }
 
 /**
@@ -72,15 +61,12 @@ export interface Carried {
 /** Carries an operator through a step: conj(U) B Uᵀ, taken apart into the children and what lies between them. */
 export function rotateAll(step: DescentStep, operator: Csr): Carried {
   const { rows, indices, spaces } = step;
-  const all =
-    indices === undefined
-      ? multiply(conjugate(rows), multiply(operator, transpose(rows)))
-      : submatrix(operator, indices);
+  const all = indices === undefined ? rotated(rows, operator) : submatrix(operator, indices);
   const bounds: number[] = [];
   let at = 0;
   for (const space of spaces) {
     bounds.push(at);
-    at += space.rows.rows;
+    at += space.size;
   }
   bounds.push(at);
   return {

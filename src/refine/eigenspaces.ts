@@ -1,3 +1,4 @@
+import { clusterSorted } from "../numerics/cluster.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
@@ -5,6 +6,7 @@ import { type Components, connectedComponents } from "./components.js";
 import { orthonormalityDefect } from "./gram.js";
 import { normalEigen } from "./normal.js";
 import { type Cycle, cycleThrough, solveCycle } from "./orbits.js";
+import { rowRange } from "./rotate.js";
 
 /** An eigenspace of an operator inside a block. */
 export interface Eigenspace {
@@ -12,6 +14,8 @@ export interface Eigenspace {
   readonly value: Complex;
   /** Largest distance of a found value from `value`. */
   readonly spread: number;
+  /** Number of vectors. */
+  readonly size: number;
   /** Orthonormal vectors as rows of coefficients over the block's own basis. */
   readonly rows: Csr;
   /** Where every row is one basis vector of the block with coefficient 1: which; otherwise undefined. */
@@ -20,8 +24,12 @@ export interface Eigenspace {
 
 /** A block taken apart by one operator. */
 export interface Split {
-  /** Hermitian operators: by descending value; others: by ascending angle in [0, 2π). */
+  /** Hermitian operators: by descending value, or ascending where asked; others: by ascending angle in [0, 2π). */
   readonly spaces: readonly Eigenspace[];
+  /** The vectors of all spaces, space after space. */
+  readonly rows: Csr;
+  /** Where every row is one basis vector of the block with coefficient 1: which; otherwise undefined. */
+  readonly indices: Int32Array | undefined;
   /** Rigorous bound on ‖U U† − 1‖₂ for all rows together. */
   readonly defect: number;
 }
@@ -34,6 +42,8 @@ export interface SplitOptions {
   readonly noise: number;
   /** Neighbouring eigenvalues up to this far apart belong to one eigenspace. */
   readonly cluster: number;
+  /** True for eigenvalues of a Hermitian operator in ascending order. */
+  readonly ascending?: boolean;
 }
 
 /** Eigenpairs found in the connected parts, before they are gathered into eigenspaces. */
@@ -64,11 +74,70 @@ interface PartVectors {
  * @param matrix - the operator restricted to the block, d × d
  */
 export function splitIntoEigenspaces(matrix: Csr, options: SplitOptions): Split {
+  if (matrix.rows === 1) return single(diagonalEntry(matrix, 0), options);
   const components = connectedComponents(matrix, options.noise);
   const pairs = solveParts(matrix, components, options);
-  const order = sortedGroups(pairs, options);
-  const spaces = order.map((group) => gather(group, pairs, components, matrix.rows));
-  return { spaces, defect: pairs.defect };
+  const groups = sortedGroups(pairs, options);
+  const rows = gather(groups, pairs, components);
+  let from = 0;
+  const spaces = groups.map(({ value, spread, pairs: { length } }) => {
+    from += length;
+    return new RowRange(value, spread, rows, from - length, length);
+  });
+  return { spaces, rows, indices: selection(rows, 0, rows.rows), defect: pairs.defect };
+}
+
+const ONE: Csr = {
+  rows: 1,
+  cols: 1,
+  ptr: Int32Array.of(0, 1),
+  col: Int32Array.of(0),
+  re: Float64Array.of(1),
+  im: undefined,
+};
+
+/** A block of one vector. */
+function single(entry: Complex, { hermitian }: SplitOptions): Split {
+  const value = hermitian ? { re: entry.re, im: 0 } : entry;
+  return {
+    spaces: [{ value, spread: 0, size: 1, rows: ONE, indices: ONE.col }],
+    rows: ONE,
+    indices: ONE.col,
+    defect: 0,
+  };
+}
+
+/** An eigenspace whose vectors are some rows of a whole split; they are only written out where they are asked for. */
+class RowRange implements Eigenspace {
+  readonly value: Complex;
+  readonly spread: number;
+  readonly size: number;
+  readonly #all: Csr;
+  readonly #from: number;
+  #rows: Csr | undefined;
+
+  constructor(value: Complex, spread: number, all: Csr, from: number, size: number) {
+    this.value = value;
+    this.spread = spread;
+    this.size = size;
+    this.#all = all;
+    this.#from = from;
+  }
+
+  get rows(): Csr {
+    this.#rows ??= rowRange(this.#all, this.#from, this.size);
+    return this.#rows;
+  }
+
+  get indices(): Int32Array | undefined {
+    return selection(this.#all, this.#from, this.size);
+  }
+}
+
+/** Which basis vectors some rows are, where each is one with coefficient 1: a connected part of one index. */
+function selection({ ptr, col }: Csr, from: number, size: number): Int32Array | undefined {
+  const start = ptr[from] as number;
+  return (ptr[from + size] as number) - start === size ? col.slice(start, start + size) : undefined;
 }
 
 /** Value at (i, i). */
@@ -230,12 +299,11 @@ interface Group {
 }
 
 function sortedGroups(pairs: Pairs, options: SplitOptions): Group[] {
-  const all = Array.from(pairs.re, (_, k) => k);
+  const all = Array.from(pairs.row.keys());
   const byRe = chain(all, pairs.re, options.cluster);
   if (options.hermitian) {
-    return byRe
-      .map((c) => ({ value: { re: c.middle, im: 0 }, spread: c.spread, pairs: c.members }))
-      .sort((a, b) => b.value.re - a.value.re);
+    const groups = byRe.map((c) => ({ value: { re: c.middle, im: 0 }, spread: c.spread, pairs: c.members }));
+    return options.ascending === true ? groups : groups.reverse();
   }
   const angle = (z: Complex): number => {
     if (Math.abs(z.im) <= options.cluster) return z.re < 0 ? Math.PI : 0;
@@ -269,72 +337,66 @@ interface Chain {
   readonly members: number[];
 }
 
-/** Clusters members by the gaps between their values. */
+/** Clusters members by the gaps between their values, ascending. */
 function chain(members: readonly number[], values: Float64Array, tolerance: number): Chain[] {
-  const distinct = new Map<number, number[]>();
-  for (const k of members) {
-    const x = values[k] as number;
-    const list = distinct.get(x);
-    if (list === undefined) distinct.set(x, [k]);
-    else list.push(k);
-  }
-  const keys = Float64Array.from(distinct.keys()).sort();
+  const sorted = Float64Array.from(members, (k) => values[k] as number).sort();
+  const starts = clusterSorted(sorted, tolerance);
   const chains: Chain[] = [];
-  let from = 0;
-  while (from < keys.length) {
-    let to = from + 1;
-    while (to < keys.length && (keys[to] as number) - (keys[to - 1] as number) <= tolerance) to++;
-    const low = keys[from] as number;
-    const high = keys[to - 1] as number;
-    const middle = to === from + 1 ? low : low + (high - low) / 2;
-    let together = distinct.get(low) as number[];
-    if (to > from + 1) {
-      together = together.slice();
-      for (let k = from + 1; k < to; k++) {
-        const more = distinct.get(keys[k] as number);
-        if (more !== undefined) for (const index of more) together.push(index);
-      }
-      together.sort((a, b) => a - b);
-    }
-    chains.push({ middle, spread: Math.max(middle - low, high - middle), members: together });
-    from = to;
+  for (let c = 0; c + 1 < starts.length; c++) {
+    const low = sorted[starts[c] as number] as number;
+    const high = sorted[(starts[c + 1] as number) - 1] as number;
+    const middle = low === high ? low : low + (high - low) / 2;
+    chains.push({ middle, spread: Math.max(middle - low, high - middle), members: [] });
   }
+  const lows = Float64Array.from(chains, (_, c) => sorted[starts[c] as number] as number);
+  for (const k of members) chains[lastAtMost(lows, values[k] as number)]?.members.push(k);
   return chains;
 }
 
-function gather(group: Group, pairs: Pairs, components: Components, size: number): Eigenspace {
-  const rows = group.pairs.length;
-  const ptr = new Int32Array(rows + 1);
-  let complex = false;
-  for (let r = 0; r < rows; r++) {
-    const c = pairs.part[group.pairs[r] as number] as number;
-    const vectors = pairs.vectors[c];
-    if (vectors?.im !== undefined) complex = true;
-    const count = (components.starts[c + 1] as number) - (components.starts[c] as number);
-    ptr[r + 1] = (ptr[r] as number) + count;
+/** The last place of an ascending list with a number not above x. */
+function lastAtMost(list: Float64Array, x: number): number {
+  let low = 0;
+  let high = list.length;
+  while (high - low > 1) {
+    const middle = (low + high) >> 1;
+    if ((list[middle] as number) <= x) low = middle;
+    else high = middle;
   }
-  const total = ptr[rows] as number;
+  return low;
+}
+
+/** The vectors of all groups over the block's basis, group after group. */
+function gather(groups: readonly Group[], pairs: Pairs, { starts, members }: Components): Csr {
+  const size = pairs.re.length;
+  const ptr = new Int32Array(size + 1);
+  let row = 0;
+  let complex = false;
+  for (const group of groups) {
+    for (const pair of group.pairs) {
+      const c = pairs.part[pair] as number;
+      if (pairs.vectors[c]?.im !== undefined) complex = true;
+      ptr[row + 1] = (ptr[row] as number) + (starts[c + 1] as number) - (starts[c] as number);
+      row++;
+    }
+  }
+  const total = ptr[size] as number;
   const col = new Int32Array(total);
   const re = new Float64Array(total);
   const im = complex ? new Float64Array(total) : undefined;
-  for (let r = 0; r < rows; r++) {
-    const pair = group.pairs[r] as number;
-    const c = pairs.part[pair] as number;
-    const start = components.starts[c] as number;
-    const count = (components.starts[c + 1] as number) - start;
-    const vectors = pairs.vectors[c];
-    const base = (pairs.row[pair] as number) * count;
-    const at = ptr[r] as number;
-    for (let k = 0; k < count; k++) {
-      col[at + k] = components.members[start + k] as number;
-      re[at + k] = vectors === undefined ? 1 : (vectors.re[base + k] as number);
-      if (im !== undefined && vectors?.im !== undefined) im[at + k] = vectors.im[base + k] as number;
+  let at = 0;
+  for (const group of groups) {
+    for (const pair of group.pairs) {
+      const c = pairs.part[pair] as number;
+      const start = starts[c] as number;
+      const count = (starts[c + 1] as number) - start;
+      const vectors = pairs.vectors[c];
+      const base = (pairs.row[pair] as number) * count;
+      for (let k = 0; k < count; k++, at++) {
+        col[at] = members[start + k] as number;
+        re[at] = vectors === undefined ? 1 : (vectors.re[base + k] as number);
+        if (im !== undefined && vectors?.im !== undefined) im[at] = vectors.im[base + k] as number;
+      }
     }
   }
-  return {
-    value: group.value,
-    spread: group.spread,
-    rows: { rows, cols: size, ptr, col, re, im },
-    indices: total === rows ? col : undefined,
-  };
+  return { rows: size, cols: size, ptr, col, re, im };
 }

@@ -1,10 +1,11 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
-import { diagonalCsr, multiply, selectRows, submatrix } from "../numerics/sparse.js";
+import { diagonalCsr, selectRows, submatrix } from "../numerics/sparse.js";
 import { splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { Level, LevelPart, Levels } from "./levels.js";
+import { composed } from "./rotate.js";
 import { type SecondOrder, secondOrder } from "./second-order.js";
 import { type BlockLabel, energyTolerance, inSpace, type Sector } from "./sectors.js";
 import type { NodeKind, PathStep, TreeBuilder } from "./tree.js";
@@ -132,7 +133,7 @@ function refineByOthers(
 ): Block[] {
   return blocks.flatMap((block) => {
     if (block.rows.rows === 1) return [block];
-    const vectors = multiply(block.rows, frame);
+    const vectors = composed(block.rows, frame);
     for (const place of others) {
       if (block.labels.some((label) => label.candidate === place)) continue;
       const candidate = problem.candidates[place] as (typeof problem.candidates)[number];
@@ -177,7 +178,7 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
     size: block.rows.rows,
     values: split.spaces.map((space) => space.value),
     spreads: split.spaces.map((space) => space.spread),
-    sizes: split.spaces.map((space) => space.rows.rows),
+    sizes: split.spaces.map((space) => space.size),
   });
   const whole = split.spaces.length === 1;
   return split.spaces.map((space, child): Block => {
@@ -188,7 +189,7 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
       rows: keep
         ? block.rows
         : chosen === undefined
-          ? multiply(space.rows, block.rows)
+          ? composed(space.rows, block.rows)
           : selectRows(block.rows, chosen),
       indices: keep
         ? block.indices

@@ -3,6 +3,7 @@ import { describe, expect, it } from "vitest";
 import type { Complex } from "../../src/numerics/complex.js";
 import type { Csr } from "../../src/numerics/csr.js";
 import { diagonalCsr, multiply, toDense } from "../../src/numerics/sparse.js";
+import { stackRows } from "../../src/numerics/stack.js";
 import { Operator } from "../../src/operator/operator.js";
 import {
   carriedRowError,
@@ -30,7 +31,22 @@ import {
 import { fixedColumns, fixedOperator } from "../support/oracle.js";
 import { csr, hermitian, naiveOfCsr, operatorOf, orthonormal, random } from "./support.js";
 
-const space = (rows: Csr, indices?: Int32Array): Eigenspace => ({ value: { re: 0, im: 0 }, spread: 0, rows, indices });
+const space = (rows: Csr, indices?: Int32Array): Eigenspace => ({
+  value: { re: 0, im: 0 },
+  spread: 0,
+  size: rows.rows,
+  rows,
+  indices,
+});
+
+/** The step to some children. */
+function stepTo(spaces: readonly Eigenspace[], block: { readonly frame: Csr }): DescentStep {
+  const rows = stackRows(
+    spaces.map((child) => child.rows),
+    block.frame.rows,
+  );
+  return descentStep({ spaces, rows, indices: spaces.every((child) => child.indices) ? rows.col : undefined }, block);
+}
 
 /** Rows dealt out to children of the given sizes. */
 function children(rows: Naive, sizes: readonly number[]): Eigenspace[] {
@@ -59,7 +75,7 @@ function scene(n: number, d: number, seed: number, complex: boolean, sizes: read
   const frame = csr(orthonormal(d, n, next, complex));
   const v = operatorOf(hermitian(n, next, complex), "exact");
   const u = orthonormal(d, d, next, complex);
-  const step = descentStep(children(u, sizes), { frame });
+  const step = stepTo(children(u, sizes), { frame });
   return { frame, v, step };
 }
 
@@ -126,7 +142,7 @@ describe("a step down by combinations", () => {
         const d = sizes.reduce((a, b) => a + b, 0);
         const next = random(seed);
         const v = operatorOf(hermitian(d, next, complex), "exact");
-        const step = descentStep(children(orthonormal(d, d, next, complex), sizes), {
+        const step = stepTo(children(orthonormal(d, d, next, complex), sizes), {
           frame: diagonalCsr(new Float64Array(d).fill(1)),
         });
         const carried = rotateAll({ ...step, spaces: [space(step.rows)] }, v.csr).children[0] as Csr;
@@ -172,7 +188,7 @@ describe("a step down by combinations", () => {
   });
 
   it("an exact crossing is the square root of its largest row and column sums", () => {
-    const step: DescentStep = descentStep(
+    const step: DescentStep = stepTo(
       [
         space(csr([[1, 0, 0]]), Int32Array.of(0)),
         space(
@@ -216,7 +232,7 @@ describe("a step down by combinations", () => {
 
 describe("a step down by selection", () => {
   const frame = diagonalCsr([1, 1, 1]);
-  const step = descentStep(
+  const step = stepTo(
     [
       space(
         csr([
@@ -255,7 +271,7 @@ describe("a step down by selection", () => {
   });
 
   it("one child of combinations makes the whole step one of combinations", () => {
-    const mixed = descentStep(
+    const mixed = stepTo(
       [
         space(
           csr([
@@ -309,10 +325,9 @@ describe("carriedRowError", () => {
       [0, 0, 0, 1, delta],
     ]);
     const h = [0.5, 0.5, 0.5, 0.5];
-    const step = descentStep(
-      [space(csr([h, [0.5, 0.5, -0.5, -0.5], [0.5, -0.5, 0.5, -0.5], [0.5, -0.5, -0.5, 0.5]]))],
-      { frame },
-    );
+    const step = stepTo([space(csr([h, [0.5, 0.5, -0.5, -0.5], [0.5, -0.5, 0.5, -0.5], [0.5, -0.5, -0.5, 0.5]]))], {
+      frame,
+    });
     const moved = naiveOfCsr(multiply(step.rows, frame))[0]?.[4]?.re ?? 0;
     expect(moved).toBeGreaterThan(1.9 * delta);
     expect(carriedRowError(step, delta)).toBeGreaterThanOrEqual(moved);
@@ -323,7 +338,7 @@ describe("carriedRowError", () => {
 
   it("a selection carries errors as they are", () => {
     const frame = diagonalCsr([1, 1]);
-    const step = descentStep([space(csr([[0, 1]]), Int32Array.of(1)), space(csr([[1, 0]]), Int32Array.of(0))], {
+    const step = stepTo([space(csr([[0, 1]]), Int32Array.of(1)), space(csr([[1, 0]]), Int32Array.of(0))], {
       frame,
     });
     expect(carriedRowError(step, 1e-16)).toBeGreaterThanOrEqual(1e-16);
@@ -343,7 +358,7 @@ describe("at the lower end of the range", () => {
         const small = (a: Naive): Naive =>
           a.map((row) => row.map((x) => ({ re: x.re * 2 ** power, im: x.im * 2 ** power })));
         const frame = csr(small(orthonormal(n, n, next, complex)));
-        const step = descentStep(children(orthonormal(n, n, next, complex), [2, 3]), { frame });
+        const step = stepTo(children(orthonormal(n, n, next, complex), [2, 3]), { frame });
         const truth = distance(n, [[1, toDense(step.rows), toDense(frame)]], toDense(multiply(step.rows, frame)));
         expect(truth).toBeGreaterThan(0);
         expect(truth).toBeLessThanOrEqual(Math.sqrt(n) * step.rowError);
@@ -362,7 +377,7 @@ describe("at the lower end of the range", () => {
           given.map((row) => row.map((x) => ({ re: x.re * 2 ** power, im: x.im * 2 ** power }))),
           "exact",
         );
-        const step = descentStep(children(orthonormal(d, d, next, complex), [d]), {
+        const step = stepTo(children(orthonormal(d, d, next, complex), [d]), {
           frame: diagonalCsr(new Float64Array(d).fill(1)),
         });
         const carried = rotateAll(step, v.csr).children[0] as Csr;
@@ -379,7 +394,7 @@ describe("at the lower end of the range", () => {
   });
 
   it("keeps zeros: no operator, no error; real elements cross as they are", () => {
-    const step = descentStep(children(orthonormal(3, 3, random(63), true), [1, 2]), { frame: diagonalCsr([1, 1, 1]) });
+    const step = stepTo(children(orthonormal(3, 3, random(63), true), [1, 2]), { frame: diagonalCsr([1, 1, 1]) });
     const zero = Operator.zero(3);
     expect(rotationError(step, zero.csr, zero, 0)).toBe(0);
     expect(rotateAll(step, zero.csr).crossing).toBe(0);
@@ -389,7 +404,7 @@ describe("at the lower end of the range", () => {
           [0, x],
           [{ re: x.re, im: -x.im }, 0],
         ]);
-      const apart = descentStep([space(csr([[1, 0]]), Int32Array.of(0)), space(csr([[0, 1]]), Int32Array.of(1))], {
+      const apart = stepTo([space(csr([[1, 0]]), Int32Array.of(0)), space(csr([[0, 1]]), Int32Array.of(1))], {
         frame: diagonalCsr([1, 1]),
       });
       expect(rotateAll(apart, pair({ re: 3 * tiny, im: 0 })).crossing).toBeGreaterThanOrEqual(3 * tiny);
