@@ -1,11 +1,11 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
-import { diagonalCsr, selectRows, submatrix } from "../numerics/sparse.js";
+import { diagonalCsr, findEntry, selectRows, submatrix } from "../numerics/sparse.js";
 import { splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { Level, LevelPart, Levels } from "./levels.js";
-import { composed } from "./rotate.js";
+import { composed, isIdentity } from "./rotate.js";
 import { type SecondOrder, secondOrder } from "./second-order.js";
 import { type BlockLabel, energyTolerance, inSpace, type Sector } from "./sectors.js";
 import type { NodeKind, PathStep, TreeBuilder } from "./tree.js";
@@ -99,7 +99,7 @@ function refinePart(
   if (depth === "labels") return blocks;
   sector.perturbations.forEach((v, k) => {
     const { name, operator } = problem.perturbations[k] as (typeof problem.perturbations)[number];
-    const inside = size === v.rows ? v : submatrix(v, part.indices);
+    const inside = within(v, part.indices);
     const by = {
       kind: "perturbation",
       name,
@@ -122,6 +122,18 @@ function refinePart(
     if (block.rows.rows > 1) return refineBlock(block, only.w, by, tree);
     return [block];
   });
+}
+
+/** The submatrix on the vectors of a part. */
+function within(v: Csr, indices: Int32Array): Csr {
+  if (indices.length === v.rows) return v;
+  const [only] = indices;
+  if (indices.length > 1 || only === undefined) return submatrix(v, indices);
+  const p = findEntry(v, only, only);
+  return diagonalCsr(
+    [p < 0 ? 0 : (v.re[p] as number)],
+    v.im === undefined ? undefined : [p < 0 ? 0 : (v.im[p] as number)],
+  );
 }
 
 function refineByOthers(
@@ -165,7 +177,7 @@ interface RefineBy {
 
 /** Splits a block by an operator given over the part's vectors (or, if `restricted`, over the block's own). */
 function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilder, restricted = false): Block[] {
-  const matrix = restricted ? operator : inSpace(block, operator);
+  const matrix = restricted || isIdentity(block.rows) ? operator : inSpace(block, operator);
   const split = splitIntoEigenspaces(matrix, {
     hermitian: by.hermitian ?? true,
     noise: by.noise,
@@ -181,10 +193,11 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
     sizes: split.spaces.map((space) => space.size),
   });
   const whole = split.spaces.length === 1;
+  const same = isIdentity(split.rows);
   return split.spaces.map((space, child): Block => {
     const chosen = space.indices;
     // Vectors of a block that stays whole are kept: where V is scalar there, any basis serves.
-    const keep = whole && by.kind !== "perturbation";
+    const keep = whole && (same || by.kind !== "perturbation");
     return {
       rows: keep
         ? block.rows

@@ -44,156 +44,109 @@ export function secondOrder(
   energy: number,
   levelEnergies: Float64Array,
 ): SecondOrder {
-  const out = outgoing(sector, v, part, levelOf, level, energy);
+  const out: Outside = { v, indices: part.indices, energies: sector.energies, energy, levelOf, level };
   const squares = new LevelSums(levelEnergies.length);
+  let w: Csr | undefined;
   return {
-    w: out.bare.rows === 1 ? scalarProduct(out) : multiply(out.scaled, adjoint(out.bare)),
-    scale: out.scale,
-    first: firstGuard(out, levelOf, energy, levelEnergies, squares),
-    second: secondGuard(out, v, levelOf, level, energy, levelEnergies, squares),
+    // only what is still together after V asks for it
+    get w() {
+      w ??= effective(out);
+      return w;
+    },
+    scale: scaleOf(out),
+    first: firstGuard(out, levelEnergies, squares),
+    second: secondGuard(out, levelEnergies, squares),
   };
 }
 
-/** The product of scaled and bare† for a single vector. */
-function scalarProduct({ bare, scaled }: Outgoing): Csr {
-  const count = bare.re.length;
-  let re = 0;
-  let im = 0;
-  for (let q = 0; q < count; q++) {
-    const x = scaled.re[q] as number;
-    const u = bare.re[q] as number;
-    if (bare.im === undefined || scaled.im === undefined) {
-      re += x * u;
-    } else {
-      const y = scaled.im[q] as number;
-      const v = 0 - (bare.im[q] as number);
-      re += x * u - y * v;
-      im += x * v + y * u;
-    }
-  }
-  const filled = Math.min(1, count);
-  return {
-    rows: 1,
-    cols: 1,
-    ptr: Int32Array.of(0, filled),
-    col: new Int32Array(filled),
-    re: filled === 1 ? Float64Array.of(re) : new Float64Array(0),
-    im: im === 0 ? undefined : Float64Array.of(im),
-  };
+/** V between the vectors of a part and those outside its level. */
+interface Outside {
+  readonly v: Csr;
+  /** The part's vectors, as rows of V. */
+  readonly indices: Int32Array;
+  /** Energy of every vector of the sector. */
+  readonly energies: Float64Array;
+  readonly energy: number;
+  readonly levelOf: Int32Array;
+  readonly level: number;
 }
 
-interface Outgoing {
-  /** V_ik, k outside the level, columns renumbered to those that occur. */
-  readonly bare: Csr;
-  /** V_ik / (E0 − E_k). */
-  readonly scaled: Csr;
-  /** The sector's vector behind each column. */
-  readonly columns: Int32Array;
-  readonly scale: number;
+/** 1 / (E0 − E_k) for column k of V. */
+function weight({ energies, energy }: Outside, k: number): number {
+  return 1 / (energy - (energies[k] as number));
 }
 
-function outgoing(
-  sector: Sector,
-  v: Csr,
-  part: LevelPart,
-  levelOf: Int32Array,
-  level: number,
-  energy: number,
-): Outgoing {
-  const rows = part.indices.length;
+/** W = (V R) V†, over the columns that occur. */
+function effective(out: Outside): Csr {
+  const { v, indices, levelOf, level } = out;
+  const rows = indices.length;
   const ptr = new Int32Array(rows + 1);
-  let total = 0;
+  const source: number[] = [];
   for (let r = 0; r < rows; r++) {
-    const i = part.indices[r] as number;
+    const i = indices[r] as number;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
-      if (levelOf[v.col[p] as number] !== level) total++;
+      if (levelOf[v.col[p] as number] !== level) source.push(p);
     }
-    ptr[r + 1] = total;
+    ptr[r + 1] = source.length;
   }
-  const space = borrow(v.rows, 1);
-  const { mark: place, list } = space;
-  const tag = space.firstTag;
-  const source = new Int32Array(total);
-  let at = 0;
-  let distinct = 0;
-  for (let r = 0; r < rows; r++) {
-    const i = part.indices[r] as number;
+  const col = Int32Array.from(source, (p) => v.col[p] as number);
+  const columns = Int32Array.from(new Set(col)).sort();
+  const place = new Map(Array.from(columns, (k, c) => [k, c]));
+  const of = (values: Float64Array | undefined, weighted: boolean): Float64Array | undefined =>
+    values &&
+    Float64Array.from(source, (p) => (values[p] as number) * (weighted ? weight(out, v.col[p] as number) : 1));
+  const shape = { rows, cols: columns.length, ptr, col: col.map((k) => place.get(k) as number) };
+  const bare = { ...shape, re: of(v.re, false) as Float64Array, im: of(v.im, false) };
+  const scaled = { ...shape, re: of(v.re, true) as Float64Array, im: of(v.im, true) };
+  return multiply(scaled, adjoint(bare));
+}
+
+/** Largest √(Σ|V_ik|²) √(Σ|V_ik/(E0 − E_k)|²) over the vectors i. */
+function scaleOf(out: Outside): number {
+  const { v, indices, levelOf, level } = out;
+  let scale = 0;
+  for (let r = 0; r < indices.length; r++) {
+    const i = indices[r] as number;
+    let bare = 0;
+    let weighted = 0;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
       const k = v.col[p] as number;
       if (levelOf[k] === level) continue;
-      source[at++] = p;
-      if (place[k] === tag) continue;
-      place[k] = tag;
-      list[distinct++] = k;
-    }
-  }
-  // A single row of V is in order already.
-  const columns = list.slice(0, distinct);
-  if (rows > 1) columns.sort();
-  for (let c = 0; c < distinct; c++) list[columns[c] as number] = c;
-  const col = new Int32Array(total);
-  const re = new Float64Array(total);
-  const im = v.im === undefined ? undefined : new Float64Array(total);
-  const scaledRe = new Float64Array(total);
-  const scaledIm = v.im === undefined ? undefined : new Float64Array(total);
-  let scale = 0;
-  for (let r = 0; r < rows; r++) {
-    let bare = 0;
-    let weighted = 0;
-    for (let q = ptr[r] as number; q < (ptr[r + 1] as number); q++) {
-      const p = source[q] as number;
-      const k = v.col[p] as number;
-      const weight = 1 / (energy - (sector.energies[k] as number));
+      const w = weight(out, k);
       const x = v.re[p] as number;
       const y = v.im === undefined ? 0 : (v.im[p] as number);
-      col[q] = list[k] as number;
-      re[q] = x;
-      scaledRe[q] = x * weight;
-      if (im !== undefined && scaledIm !== undefined) {
-        im[q] = y;
-        scaledIm[q] = y * weight;
-      }
       const square = x * x + y * y;
       bare += square;
-      weighted += square * weight * weight;
+      weighted += square * w * w;
     }
     scale = Math.max(scale, Math.sqrt(bare) * Math.sqrt(weighted));
   }
-  const shape = { rows, cols: columns.length, ptr, col };
-  return { bare: { ...shape, re, im }, scaled: { ...shape, re: scaledRe, im: scaledIm }, columns, scale };
+  return scale;
 }
 
-function firstGuard(
-  out: Outgoing,
-  levelOf: Int32Array,
-  energy: number,
-  levelEnergies: Float64Array,
-  squares: LevelSums,
-): GuardRatio {
-  const { bare, columns } = out;
-  for (let q = 0; q < bare.re.length; q++) {
-    const x = bare.re[q] as number;
-    const y = bare.im === undefined ? 0 : (bare.im[q] as number);
-    squares.add(levelOf[columns[bare.col[q] as number] as number] as number, x * x, y * y);
+function firstGuard(out: Outside, levelEnergies: Float64Array, squares: LevelSums): GuardRatio {
+  const { v, indices, levelOf, level, energy } = out;
+  for (let r = 0; r < indices.length; r++) {
+    const i = indices[r] as number;
+    for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
+      const k = levelOf[v.col[p] as number] as number;
+      if (k === level) continue;
+      const x = v.re[p] as number;
+      const y = v.im === undefined ? 0 : (v.im[p] as number);
+      squares.add(k, x * x, y * y);
+    }
   }
   return squares.largestRatio(energy, levelEnergies);
 }
 
-function secondGuard(
-  out: Outgoing,
-  v: Csr,
-  levelOf: Int32Array,
-  level: number,
-  energy: number,
-  levelEnergies: Float64Array,
-  squares: LevelSums,
-): GuardRatio {
-  const rows = out.scaled.rows;
-  const space = borrow(v.rows, rows);
+function secondGuard(out: Outside, levelEnergies: Float64Array, squares: LevelSums): GuardRatio {
+  const { v, indices, levelOf, level, energy } = out;
+  const space = borrow(v.rows, indices.length);
   const { re, im, list } = space;
-  for (let r = 0; r < rows; r++) {
+  for (let r = 0; r < indices.length; r++) {
     const tag = space.firstTag + r;
-    const count = v.im === undefined ? imageReal(out, r, v, space, tag) : imageComplex(out, r, v, v.im, space, tag);
+    const i = indices[r] as number;
+    const count = v.im === undefined ? imageReal(out, i, space, tag) : imageComplex(out, i, v.im, space, tag);
     for (let t = 0; t < count; t++) {
       const to = list[t] as number;
       const k = levelOf[to] as number;
@@ -206,14 +159,16 @@ function secondGuard(
   return squares.largestRatio(energy, levelEnergies);
 }
 
-/** Row r of V R V with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */
-function imageReal({ scaled, columns }: Outgoing, r: number, v: Csr, space: Scratch, tag: number): number {
+/** Row i of V R V with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */
+function imageReal(out: Outside, i: number, space: Scratch, tag: number): number {
+  const { levelOf, level } = out;
   const { re, mark, list } = space;
-  const { ptr, col, re: values } = v;
+  const { ptr, col, re: values } = out.v;
   let count = 0;
-  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-    const k = columns[scaled.col[q] as number] as number;
-    const a = scaled.re[q] as number;
+  for (let q = ptr[i] as number; q < (ptr[i + 1] as number); q++) {
+    const k = col[q] as number;
+    if (levelOf[k] === level) continue;
+    const a = (values[q] as number) * weight(out, k);
     const end = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < end; p++) {
       const to = col[p] as number;
@@ -229,21 +184,17 @@ function imageReal({ scaled, columns }: Outgoing, r: number, v: Csr, space: Scra
 }
 
 /** The same for complex V. */
-function imageComplex(
-  { scaled, columns }: Outgoing,
-  r: number,
-  v: Csr,
-  imaginary: Float64Array,
-  space: Scratch,
-  tag: number,
-): number {
+function imageComplex(out: Outside, i: number, imaginary: Float64Array, space: Scratch, tag: number): number {
+  const { levelOf, level } = out;
   const { re, im, mark, list } = space;
-  const { ptr, col, re: values } = v;
+  const { ptr, col, re: values } = out.v;
   let count = 0;
-  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-    const k = columns[scaled.col[q] as number] as number;
-    const a = scaled.re[q] as number;
-    const b = scaled.im === undefined ? 0 : (scaled.im[q] as number);
+  for (let q = ptr[i] as number; q < (ptr[i + 1] as number); q++) {
+    const k = col[q] as number;
+    if (levelOf[k] === level) continue;
+    const w = weight(out, k);
+    const a = (values[q] as number) * w;
+    const b = (imaginary[q] as number) * w;
     const end = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < end; p++) {
       const to = col[p] as number;
