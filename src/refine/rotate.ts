@@ -1,5 +1,16 @@
 import type { Csr } from "../numerics/csr.js";
-import { conjugate, dropZeros, fromDense, multiply, toDense, transpose } from "../numerics/sparse.js";
+import type { Dense } from "../numerics/dense.js";
+import {
+  conjugate,
+  dropZeros,
+  fromDense,
+  fullCsr,
+  isFull,
+  multiply,
+  productOfRows,
+  toDense,
+  transpose,
+} from "../numerics/sparse.js";
 
 /** Up to this many columns plain loops over dense rows cost less than setting up sparse ones. */
 const DENSE_TO = 24;
@@ -20,7 +31,9 @@ export function rotated(rows: Csr, operator: Csr): Csr {
   if (!isFilled(rows)) return multiply(left, multiply(operator, transpose(rows)));
   const d = rows.rows;
   const n = rows.cols;
-  const half = isFilled(operator) ? product(d, n, n, dense(left), dense(operator)) : dense(multiply(left, operator));
+  const half = isFilled(operator)
+    ? productOfRows(d, n, n, dense(left), dense(operator))
+    : dense(multiply(left, operator));
   return sparse(d, d, productWithTranspose(d, d, n, half, dense(rows)));
 }
 
@@ -33,7 +46,7 @@ export function rotated(rows: Csr, operator: Csr): Csr {
 export function composed(rows: Csr, frame: Csr): Csr {
   if (isIdentity(frame)) return rows;
   if (!isFilled(rows) || !isFilled(frame)) return multiply(rows, frame);
-  return sparse(rows.rows, frame.cols, product(rows.rows, rows.cols, frame.cols, dense(rows), dense(frame)));
+  return sparse(rows.rows, frame.cols, productOfRows(rows.rows, rows.cols, frame.cols, dense(rows), dense(frame)));
 }
 
 /** `count` rows from a given one on. */
@@ -53,28 +66,18 @@ export function rowRange(a: Csr, from: number, count: number): Csr {
   };
 }
 
-interface Dense {
-  readonly re: Float64Array;
-  readonly im: Float64Array | undefined;
-}
-
 /** Row-major entries; those of a matrix without a gap are its own. */
 function dense(a: Csr): Dense {
-  return a.re.length === a.rows * a.cols ? a : toDense(a);
+  return isFull(a) ? a : toDense(a);
 }
 
 /** Entries that are exactly zero are not stored. */
-function sparse(rows: number, cols: number, { re, im }: Dense): Csr {
-  const size = rows * cols;
-  for (let k = 0; k < size; k++)
+function sparse(rows: number, cols: number, found: Dense): Csr {
+  const { re, im } = found;
+  for (let k = 0; k < re.length; k++) {
     if (re[k] === 0 && (im === undefined || im[k] === 0)) return fromDense(rows, cols, re, im);
-  const ptr = new Int32Array(rows + 1);
-  const col = new Int32Array(size);
-  for (let r = 0, k = 0; r < rows; r++) {
-    for (let c = 0; c < cols; c++) col[k++] = c;
-    ptr[r + 1] = k;
   }
-  return { rows, cols, ptr, col, re, im: dropZeros(im) };
+  return fullCsr(rows, cols, found);
 }
 
 /** Whether a matrix is the identity. */
@@ -82,36 +85,6 @@ export function isIdentity({ rows, cols, ptr, col, re, im }: Csr): boolean {
   if (rows !== cols || re.length !== rows || im !== undefined) return false;
   for (let k = 0; k < rows; k++) if (ptr[k] !== k || col[k] !== k || re[k] !== 1) return false;
   return true;
-}
-
-/** X Y for X m × k and Y k × n. */
-function product(m: number, k: number, n: number, x: Dense, y: Dense): Dense {
-  const re = new Float64Array(m * n);
-  addProduct(m, k, n, x.re, y.re, re);
-  if (x.im === undefined && y.im === undefined) return { re, im: undefined };
-  const im = new Float64Array(m * n);
-  if (y.im !== undefined) addProduct(m, k, n, x.re, y.im, im);
-  if (x.im !== undefined) addProduct(m, k, n, x.im, y.re, im);
-  if (x.im !== undefined && y.im !== undefined)
-    addProduct(
-      m,
-      k,
-      n,
-      x.im.map((v) => -v),
-      y.im,
-      re,
-    );
-  return { re, im };
-}
-
-function addProduct(m: number, k: number, n: number, x: Float64Array, y: Float64Array, out: Float64Array): void {
-  for (let i = 0; i < m; i++) {
-    for (let a = 0; a < k; a++) {
-      const s = x[i * k + a] as number;
-      if (s === 0) continue;
-      for (let j = 0, p = i * n, q = a * n; j < n; j++, p++, q++) out[p] = (out[p] as number) + s * (y[q] as number);
-    }
-  }
 }
 
 /** X Yᵀ for X m × k and Y n × k. */

@@ -76,7 +76,7 @@ function weight({ energies, energy }: Outside, k: number): number {
   return 1 / (energy - (energies[k] as number));
 }
 
-/** W = (V R) V†, over the columns that occur. */
+/** W = (V R) V†. */
 function effective(out: Outside): Csr {
   const { v, indices, levelOf, level } = out;
   const rows = indices.length;
@@ -89,16 +89,13 @@ function effective(out: Outside): Csr {
     }
     ptr[r + 1] = source.length;
   }
-  const col = Int32Array.from(source, (p) => v.col[p] as number);
-  const columns = Int32Array.from(new Set(col)).sort();
-  const place = new Map(Array.from(columns, (k, c) => [k, c]));
-  const of = (values: Float64Array | undefined, weighted: boolean): Float64Array | undefined =>
-    values &&
-    Float64Array.from(source, (p) => (values[p] as number) * (weighted ? weight(out, v.col[p] as number) : 1));
-  const shape = { rows, cols: columns.length, ptr, col: col.map((k) => place.get(k) as number) };
-  const bare = { ...shape, re: of(v.re, false) as Float64Array, im: of(v.im, false) };
-  const scaled = { ...shape, re: of(v.re, true) as Float64Array, im: of(v.im, true) };
-  return multiply(scaled, adjoint(bare));
+  const shape = { rows, cols: v.cols, ptr, col: Int32Array.from(source, (p) => v.col[p] as number) };
+  const part = (values: Float64Array): Float64Array => Float64Array.from(source, (p) => values[p] as number);
+  const weighted = (values: Float64Array): Float64Array =>
+    values.map((x, q) => x * weight(out, shape.col[q] as number));
+  const re = part(v.re);
+  const im = v.im && part(v.im);
+  return multiply({ ...shape, re: weighted(re), im: im && weighted(im) }, adjoint({ ...shape, re, im }));
 }
 
 /** Largest √(Σ|V_ik|²) √(Σ|V_ik/(E0 − E_k)|²) over the vectors i. */
