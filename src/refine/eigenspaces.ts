@@ -339,16 +339,19 @@ interface Chain {
 
 /** Clusters members by the gaps between their values, ascending. */
 function chain(members: readonly number[], values: Float64Array, tolerance: number): Chain[] {
-  const sorted = Float64Array.from(members, (k) => values[k] as number).sort();
+  const sorted = new Float64Array(members.length);
+  for (let k = 0; k < sorted.length; k++) sorted[k] = values[members[k] as number] as number;
+  sorted.sort();
   const starts = clusterSorted(sorted, tolerance);
+  const lows = new Float64Array(starts.length - 1);
   const chains: Chain[] = [];
-  for (let c = 0; c + 1 < starts.length; c++) {
+  for (let c = 0; c < lows.length; c++) {
     const low = sorted[starts[c] as number] as number;
     const high = sorted[(starts[c + 1] as number) - 1] as number;
     const middle = low === high ? low : low + (high - low) / 2;
+    lows[c] = low;
     chains.push({ middle, spread: Math.max(middle - low, high - middle), members: [] });
   }
-  const lows = Float64Array.from(chains, (_, c) => sorted[starts[c] as number] as number);
   for (const k of members) chains[lastAtMost(lows, values[k] as number)]?.members.push(k);
   return chains;
 }
