@@ -48,6 +48,8 @@ interface Block {
   readonly second: number | undefined;
 }
 
+const ONE_VECTOR = diagonalCsr([1]);
+
 /**
  * Refines one level: in every sector by the remaining conserved candidates that map the block into itself, then by each
  * perturbation in turn, then (for a single perturbation) by the second-order operator inside what is still together.
@@ -83,7 +85,7 @@ function refinePart(
   tree: TreeBuilder,
 ): Leaf[] {
   const size = part.indices.length;
-  const identity = diagonalCsr(new Float64Array(size).fill(1));
+  const identity = size === 1 ? ONE_VECTOR : diagonalCsr(new Float64Array(size).fill(1));
   const first = part.indices[0] as number;
   let blocks: Block[] = [
     {

@@ -46,17 +46,29 @@ export function secondOrder(
 ): SecondOrder {
   const out: Outside = { v, indices: part.indices, energies: sector.energies, energy, levelOf, level };
   const squares = new LevelSums(levelEnergies.length);
-  let w: Csr | undefined;
-  return {
-    // only what is still together after V asks for it
-    get w() {
-      w ??= effective(out);
-      return w;
-    },
-    scale: scaleOf(out),
-    first: firstGuard(out, levelEnergies, squares),
-    second: secondGuard(out, levelEnergies, squares),
-  };
+  const first = firstGuard(out, levelEnergies, squares);
+  return new Outward(out, scaleOf(out), first, secondGuard(out, levelEnergies, squares));
+}
+
+/** W is made when it is first asked for: by what is still together after V, and where V tells states apart. */
+class Outward implements SecondOrder {
+  readonly scale: number;
+  readonly first: GuardRatio;
+  readonly second: GuardRatio;
+  readonly #out: Outside;
+  #w: Csr | undefined;
+
+  constructor(out: Outside, scale: number, first: GuardRatio, second: GuardRatio) {
+    this.#out = out;
+    this.scale = scale;
+    this.first = first;
+    this.second = second;
+  }
+
+  get w(): Csr {
+    this.#w ??= effective(this.#out);
+    return this.#w;
+  }
 }
 
 /** V between the vectors of a part and those outside its level. */

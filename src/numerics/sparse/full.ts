@@ -40,12 +40,29 @@ export function productOfRows(m: number, k: number, n: number, x: Dense, y: Dens
   return { re, im };
 }
 
+/** out += XY, four terms at a time and one after the other. */
 function addReal(m: number, k: number, n: number, x: Float64Array, y: Float64Array, out: Float64Array): void {
   for (let i = 0; i < m; i++) {
-    for (let a = 0; a < k; a++) {
-      const s = x[i * k + a] as number;
-      if (s === 0) continue;
-      for (let j = 0, p = i * n, q = a * n; j < n; j++, p++, q++) out[p] = (out[p] as number) + s * (y[q] as number);
+    const row = i * k;
+    const to = i * n;
+    let a = 0;
+    for (; a + 3 < k; a += 4) {
+      const s0 = x[row + a] as number;
+      const s1 = x[row + a + 1] as number;
+      const s2 = x[row + a + 2] as number;
+      const s3 = x[row + a + 3] as number;
+      const q0 = a * n;
+      const q1 = q0 + n;
+      const q2 = q1 + n;
+      const q3 = q2 + n;
+      for (let j = 0; j < n; j++) {
+        const sum = (out[to + j] as number) + s0 * (y[q0 + j] as number) + s1 * (y[q1 + j] as number);
+        out[to + j] = sum + s2 * (y[q2 + j] as number) + s3 * (y[q3 + j] as number);
+      }
+    }
+    for (; a < k; a++) {
+      const s = x[row + a] as number;
+      for (let j = 0, q = a * n; j < n; j++, q++) out[to + j] = (out[to + j] as number) + s * (y[q] as number);
     }
   }
 }
