@@ -1,4 +1,3 @@
-import { clusterSorted } from "../numerics/cluster.js";
 import { type Complex, modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
@@ -258,7 +257,7 @@ function solveDense(matrix: Csr, components: Components, part: number, options: 
   const members = components.members.subarray(start, start + count);
   const dense = denseSubmatrix(matrix, members);
   if (options.hermitian) {
-    const eigen = hermitianEigen(count, dense.re, dense.im);
+    const eigen = hermitianEigen(count, dense.re, dense.im, { upper: "ignore" });
     const defect = orthonormalityDefect(count, count, eigen.re, eigen.im);
     return { re: eigen.re, im: eigen.im, valuesRe: eigen.values, valuesIm: undefined, defect };
   }
@@ -342,14 +341,14 @@ function chain(members: readonly number[], values: Float64Array, tolerance: numb
   const sorted = new Float64Array(members.length);
   for (let k = 0; k < sorted.length; k++) sorted[k] = values[members[k] as number] as number;
   sorted.sort();
-  const starts = clusterSorted(sorted, tolerance);
-  const lows = new Float64Array(starts.length - 1);
   const chains: Chain[] = [];
-  for (let c = 0; c < lows.length; c++) {
-    const low = sorted[starts[c] as number] as number;
-    const high = sorted[(starts[c + 1] as number) - 1] as number;
+  const lows: number[] = [];
+  for (let from = 0, to = 1; from < sorted.length; from = to, to++) {
+    while (to < sorted.length && (sorted[to] as number) - (sorted[to - 1] as number) <= tolerance) to++;
+    const low = sorted[from] as number;
+    const high = sorted[to - 1] as number;
     const middle = low === high ? low : low + (high - low) / 2;
-    lows[c] = low;
+    lows.push(low);
     chains.push({ middle, spread: Math.max(middle - low, high - middle), members: [] });
   }
   for (const k of members) chains[lastAtMost(lows, values[k] as number)]?.members.push(k);
@@ -357,7 +356,7 @@ function chain(members: readonly number[], values: Float64Array, tolerance: numb
 }
 
 /** The last place of an ascending list with a number not above x. */
-function lastAtMost(list: Float64Array, x: number): number {
+function lastAtMost(list: readonly number[], x: number): number {
   let low = 0;
   let high = list.length;
   while (high - low > 1) {

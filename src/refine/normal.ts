@@ -59,7 +59,7 @@ export function normalEigen(n: number, matrix: Dense, noise: number): NormalEige
       }
       continue;
     }
-    const { values, re, im } = hermitianEigen(size, wide.re, wide.im);
+    const { values, re, im } = hermitianEigen(size, wide.re, wide.im, { upper: "ignore" });
     turn(n, rows, from, size, re, im);
     const spread = (values[size - 1] as number) - (values[0] as number);
     // two values of a matrix differ by at most √2 times its Frobenius norm
