@@ -3,6 +3,7 @@ import type { Csr } from "../numerics/csr.js";
 import { hermitianEigen } from "../numerics/eigen.js";
 import { type Components, connectedComponents } from "./components.js";
 import { orthonormalityDefect } from "./gram.js";
+import { type Group, type GroupOptions, sortedGroups } from "./groups.js";
 import { normalEigen } from "./normal.js";
 import { type Cycle, cycleThrough, solveCycle } from "./orbits.js";
 import { rowRange } from "./rotate.js";
@@ -33,16 +34,10 @@ export interface Split {
   readonly defect: number;
 }
 
-/** What a caller asks of {@link splitIntoEigenspaces}; both numbers decide only what is attempted. */
-export interface SplitOptions {
-  /** True for a Hermitian operator: real eigenvalues. */
-  readonly hermitian: boolean;
+/** What a caller asks of {@link splitIntoEigenspaces}; the numbers decide only what is attempted. */
+export interface SplitOptions extends GroupOptions {
   /** Entries up to this modulus are taken as zero when looking for connected parts. */
   readonly noise: number;
-  /** Neighbouring eigenvalues up to this far apart belong to one eigenspace. */
-  readonly cluster: number;
-  /** True for eigenvalues of a Hermitian operator in ascending order. */
-  readonly ascending?: boolean;
 }
 
 /** Eigenpairs found in the connected parts, before they are gathered into eigenspaces. */
@@ -76,7 +71,7 @@ export function splitIntoEigenspaces(matrix: Csr, options: SplitOptions): Split 
   if (matrix.rows === 1) return single(diagonalEntry(matrix, 0), options);
   const components = connectedComponents(matrix, options.noise);
   const pairs = solveParts(matrix, components, options);
-  const groups = sortedGroups(pairs, options);
+  const groups = sortedGroups(pairs.re, pairs.im, options);
   const rows = gather(groups, pairs, components);
   let from = 0;
   const spaces = groups.map(({ value, spread, pairs: { length } }) => {
@@ -288,83 +283,6 @@ function denseSubmatrix(matrix: Csr, members: Int32Array): { re: Float64Array; i
     }
   }
   return { re, im: complex ? im : undefined };
-}
-
-/** A group of pairs that share an eigenvalue. */
-interface Group {
-  readonly value: Complex;
-  readonly spread: number;
-  readonly pairs: number[];
-}
-
-function sortedGroups(pairs: Pairs, options: SplitOptions): Group[] {
-  const all = Array.from(pairs.row.keys());
-  const byRe = chain(all, pairs.re, options.cluster);
-  if (options.hermitian) {
-    const groups = byRe.map((c) => ({ value: { re: c.middle, im: 0 }, spread: c.spread, pairs: c.members }));
-    return options.ascending === true ? groups : groups.reverse();
-  }
-  const angle = (z: Complex): number => {
-    if (Math.abs(z.im) <= options.cluster) return z.re < 0 ? Math.PI : 0;
-    const a = Math.atan2(z.im, z.re);
-    return a < 0 ? a + 2 * Math.PI : a;
-  };
-  return byRe
-    .flatMap((c) => resolved(c, pairs.re, pairs.im, options.cluster, false))
-    .sort((a, b) => angle(a.value) - angle(b.value) || b.value.re - a.value.re);
-}
-
-/**
- * Takes a chain of real parts apart by imaginary parts, what is left by real ones again, and so on until neither divides it:
- * values that only others in between had linked are told apart, and each group has its own middle.
- */
-function resolved(by: Chain, own: Float64Array, other: Float64Array, tolerance: number, swapped: boolean): Group[] {
-  const parts = chain(by.members, other, tolerance);
-  const [only] = parts;
-  if (parts.length > 1 || only === undefined) {
-    return parts.flatMap((part) => resolved(part, other, own, tolerance, !swapped));
-  }
-  const value = swapped ? { re: only.middle, im: by.middle } : { re: by.middle, im: only.middle };
-  return [{ value, spread: by.spread + only.spread, pairs: by.members }];
-}
-
-/** Values linked by gaps. */
-interface Chain {
-  readonly middle: number;
-  readonly spread: number;
-  /** Ascending. */
-  readonly members: number[];
-}
-
-/** Clusters members by the gaps between their values, ascending. */
-function chain(members: readonly number[], values: Float64Array, tolerance: number): Chain[] {
-  const sorted = new Float64Array(members.length);
-  for (let k = 0; k < sorted.length; k++) sorted[k] = values[members[k] as number] as number;
-  sorted.sort();
-  const chains: Chain[] = [];
-  const lows: number[] = [];
-  for (let from = 0, to = 1; from < sorted.length; from = to, to++) {
-    while (to < sorted.length && (sorted[to] as number) - (sorted[to - 1] as number) <= tolerance) to++;
-    const low = sorted[from] as number;
-    const high = sorted[to - 1] as number;
-    const middle = low === high ? low : low + (high - low) / 2;
-    lows.push(low);
-    chains.push({ middle, spread: Math.max(middle - low, high - middle), members: [] });
-  }
-  for (const k of members) chains[lastAtMost(lows, values[k] as number)]?.members.push(k);
-  return chains;
-}
-
-/** The last place of an ascending list with a number not above x. */
-function lastAtMost(list: readonly number[], x: number): number {
-  let low = 0;
-  let high = list.length;
-  while (high - low > 1) {
-    const middle = (low + high) >> 1;
-    if ((list[middle] as number) <= x) low = middle;
-    else high = middle;
-  }
-  return low;
 }
 
 /** The vectors of all groups over the block's basis, group after group. */
