@@ -126,6 +126,11 @@ function nearestMember(
 }
 
 function fraction(numerator: number, denominator: number): FamilyMember {
+  if (Number.isSafeInteger(numerator) && (denominator <= 2 || numerator % denominator === 0)) {
+    const whole = numerator % denominator === 0;
+    const re = numerator / denominator + 0;
+    return { re, im: 0, text: (whole ? `${re}` : `${numerator}/${denominator}`).replace("-", "−") };
+  }
   const reduced = new Fraction(numerator, denominator);
   return { re: reduced.valueOf(), im: 0, text: reduced.toFraction().replace("-", "−") };
 }

@@ -39,3 +39,14 @@ export function roundUp(bound: number, operations = 8): number {
 export function roundDown(bound: number, operations = 8): number {
   return Math.max(0, bound * (1 - 2 * operations * UNIT_ROUNDOFF) - UNDERFLOW);
 }
+
+/**
+ * The root of a sum of squares of `terms` complex numbers that differ from zero, not rounded up: each square may have lost
+ * half the smallest positive number, twice, which no relative bound covers once the numbers are below 1e-154.
+ *
+ * @param sum - the computed sum of squares
+ * @param terms - how many complex numbers other than zero it is of; none gives exactly zero
+ */
+export function rootOfSquares(sum: number, terms: number): number {
+  return terms === 0 ? 0 : Math.sqrt(sum + terms * UNDERFLOW);
+}

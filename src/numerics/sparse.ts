@@ -3,6 +3,7 @@
  */
 export * from "./sparse/build.js";
 export * from "./sparse/combine.js";
+export * from "./sparse/full.js";
 export * from "./sparse/norms.js";
 export * from "./sparse/product.js";
 export * from "./sparse/rearrange.js";

@@ -52,7 +52,7 @@ export interface OperatorOptions {
  */
 export class Operator {
   readonly #core: Uncertain;
-  readonly #traits: Traits;
+  #structure: Traits | undefined;
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
   #norm: number | undefined;
@@ -66,7 +66,11 @@ export class Operator {
   private constructor(core: Uncertain) {
     requireRows(core);
     this.#core = core;
-    this.#traits = new Traits(core);
+  }
+
+  get #traits(): Traits {
+    this.#structure ??= new Traits(this.#core);
+    return this.#structure;
   }
 
   /**

@@ -35,8 +35,11 @@ export function boundModulus(x: number, y: number): number {
 
 /** Upper bounds on the moduli of all entries. */
 export function moduliAbove(csr: Csr): Float64Array {
-  const out = new Float64Array(csr.re.length);
-  for (let e = 0; e < out.length; e++) out[e] = modulusAbove(csr, e);
+  const { re, im } = csr;
+  const out = new Float64Array(re.length);
+  for (let e = 0; e < out.length; e++) {
+    out[e] = im === undefined ? Math.abs(re[e] as number) : boundModulus(re[e] as number, im[e] as number);
+  }
   return out;
 }
 

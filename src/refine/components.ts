@@ -19,6 +19,11 @@ export interface Components {
  */
 export function connectedComponents(matrix: Csr, noise: number): Components {
   const size = matrix.rows;
+  if (isStar(matrix, noise)) {
+    const all = { count: 1, part: new Int32Array(size), members: new Int32Array(size), starts: Int32Array.of(0, size) };
+    for (let i = 0; i < size; i++) all.members[i] = i;
+    return all;
+  }
   const parent = new Int32Array(size);
   for (let i = 0; i < size; i++) parent[i] = i;
   const find = (index: number): number => {
@@ -59,4 +64,11 @@ export function connectedComponents(matrix: Csr, noise: number): Components {
     next[c] = (next[c] as number) + 1;
   }
   return { count, part, members, starts };
+}
+
+/** Whether the first row alone connects everything. */
+function isStar({ rows, ptr, re, im }: Csr, noise: number): boolean {
+  if (rows === 0 || ptr[1] !== rows) return false;
+  for (let p = 1; p < rows; p++) if (modulus(re[p] as number, im?.[p] ?? 0) <= noise) return false;
+  return true;
 }

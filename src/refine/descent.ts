@@ -1,19 +1,10 @@
-import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp } from "../numerics/rounding.js";
-import {
-  conjugate,
-  frobenius,
-  maxRowEntries,
-  multiply,
-  norm1,
-  normInf,
-  submatrix,
-  transpose,
-} from "../numerics/sparse.js";
-import { stackRows } from "../numerics/stack.js";
+import { gamma, rootOfSquares, roundUp, UNDERFLOW } from "../numerics/rounding.js";
+import { frobenius, maxRowEntries, norm1, normInf, submatrix } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
-import type { Eigenspace } from "./eigenspaces.js";
+import { boundModulus } from "../operator/radius.js";
+import type { Eigenspace, Split } from "./eigenspaces.js";
+import { rotated } from "./rotate.js";
 
 /** One step down the tree: a block's vectors F replaced by U F, U the rows of all children. */
 export interface DescentStep {
@@ -29,23 +20,24 @@ export interface DescentStep {
 }
 
 /** Prepares a step; nothing is computed twice for the operators that go through it. */
-export function descentStep(spaces: readonly Eigenspace[], block: { readonly frame: Csr }): DescentStep {
-  const rows = stackRows(
-    spaces.map((space) => space.rows),
-    block.frame.rows,
-  );
-  const selection = spaces.every((space) => space.indices !== undefined);
-  if (selection) return { spaces, rows, indices: rows.col, compositionError: 0, rowError: 0 };
+export function descentStep(
+  { spaces, rows, indices }: Pick<Split, "spaces" | "rows" | "indices">,
+  block: { readonly frame: Csr },
+): DescentStep {
+  if (indices !== undefined) return { spaces, rows, indices, compositionError: 0, rowError: 0 };
   const rowError = compositionRowError(maxRowEntries(rows), block.frame);
-  return { spaces, rows, indices: undefined, rowError, compositionError: roundUp(frobenius(rows) * rowError * 1.01) };
+  return { spaces, rows, indices, rowError, compositionError: roundUp(frobenius(rows) * rowError * 1.01) };
 }
 
 /**
  * Bound on the rounding error of one row of U F, for unit rows of U with at most m entries: each component is a sum of at most
- * m products, in error by at most √2 γ_{m+2} (|u||F|)_k (complex products, Higham ch. 3), and ‖|u||F|‖ ≤ √m max‖F_i‖.
+ * m products, in error by at most √2 γ_{m+2} (|u||F|)_k (complex products, Higham ch. 3), and ‖|u||F|‖ ≤ √m max‖F_i‖. Where
+ * products underflow, each of the two parts of a component is off by at most m times the smallest number more.
  */
 export function compositionRowError(longest: number, frame: Csr): number {
-  return roundUp(Math.SQRT2 * gamma(longest + 4) * Math.sqrt(longest) * longestRow(frame), 16);
+  if (longest === 0 || frame.re.length === 0) return 0;
+  const underflow = 2 * longest * frame.cols * UNDERFLOW;
+  return roundUp(Math.SQRT2 * gamma(longest + 4) * Math.sqrt(longest) * longestRow(frame) + underflow, 16);
 }
 
 /**
@@ -69,15 +61,12 @@ export interface Carried {
 /** Carries an operator through a step: conj(U) B Uᵀ, taken apart into the children and what lies between them. */
 export function rotateAll(step: DescentStep, operator: Csr): Carried {
   const { rows, indices, spaces } = step;
-  const all =
-    indices === undefined
-      ? multiply(conjugate(rows), multiply(operator, transpose(rows)))
-      : submatrix(operator, indices);
+  const all = indices === undefined ? rotated(rows, operator) : submatrix(operator, indices);
   const bounds: number[] = [];
   let at = 0;
   for (const space of spaces) {
     bounds.push(at);
-    at += space.rows.rows;
+    at += space.size;
   }
   bounds.push(at);
   return {
@@ -131,7 +120,7 @@ function crossingNorm(matrix: Csr, bounds: readonly number[]): number {
     for (let p = matrix.ptr[r] as number; p < (matrix.ptr[r + 1] as number); p++) {
       const c = matrix.col[p] as number;
       if (c >= from && c < to) continue;
-      const size = modulus(matrix.re[p] as number, matrix.im === undefined ? 0 : (matrix.im[p] as number));
+      const size = boundModulus(matrix.re[p] as number, matrix.im === undefined ? 0 : (matrix.im[p] as number));
       row += size;
       columns[c] = (columns[c] as number) + size;
     }
@@ -146,17 +135,22 @@ function crossingNorm(matrix: Csr, bounds: readonly number[]): number {
  * Bound on the distance of the carried matrix from the exact one over the stored new vectors, given the same for the old.
  *
  * For rows of U with at most m entries both products sum at most m terms, so the error is at most √2 γ_{2m+8} |U||B||U|ᵀ
- * entry by entry, in norm at most that times ‖|U|‖² ‖|B|‖. The new vectors differ from U F by their composition error E, which
- * moves the exact elements by at most 2‖V‖‖E‖ and a little.
+ * entry by entry, in norm at most that times ‖|U|‖² ‖|B|‖. Underflow costs the inner sums m times the smallest number in each
+ * part, the outer ones m times as much and as much again, d² entries together at most 8dm² of it. The new vectors differ from
+ * U F by their composition error E, which moves the exact elements by at most 2‖V‖‖E‖ and a little.
  *
  * @param restricted - the operator's matrix in the block, before the step
  */
 export function rotationError(step: DescentStep, restricted: Csr, operator: Operator, before: number): number {
   if (step.indices !== undefined) return before;
   const { rows } = step;
-  const moduli = norm1(rows) * normInf(rows) * Math.sqrt(norm1(restricted) * normInf(restricted));
-  const product = Math.SQRT2 * gamma(2 * maxRowEntries(rows) + 8) * moduli;
-  return roundUp(before * 1.001 + product + 2.01 * (operator.norm + operator.error) * step.compositionError, 64);
+  const longest = maxRowEntries(rows);
+  const moduli = norm1(rows) * normInf(rows) * Math.sqrt(norm1(restricted)) * Math.sqrt(normInf(restricted));
+  const product = Math.SQRT2 * gamma(2 * longest + 8) * moduli;
+  const displaced = 2.01 * (operator.norm + operator.error) * step.compositionError;
+  // one more for the products of the bound itself
+  const underflow = operator.norm + operator.error === 0 ? 0 : 8 * (rows.rows * longest ** 2 + 1) * UNDERFLOW;
+  return roundUp(before * 1.001 + product + displaced + underflow, rows.rows + 64);
 }
 
 function longestRow(frame: Csr): number {
@@ -170,5 +164,6 @@ function longestRow(frame: Csr): number {
     }
     if (square > most) most = square;
   }
-  return Math.sqrt(most) * (1 + 1e-12);
+  const longest = maxRowEntries(frame);
+  return roundUp(rootOfSquares(most, longest), longest + 4);
 }

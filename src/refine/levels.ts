@@ -54,10 +54,9 @@ export interface Levels {
  * @throws GoodBasisError `option` for a malformed choice, `no-level` for one that matches nothing
  */
 export function formLevels(sectors: readonly Sector[], width: number, choice: LevelChoice): Levels {
-  const distinct = new Set<number>();
-  for (const sector of sectors) for (const energy of sector.energies) distinct.add(energy);
-  const sorted = Float64Array.from(distinct).sort();
   const levelOf = new Map<number, number>();
+  for (const { energies } of sectors) for (let i = 0; i < energies.length; i++) levelOf.set(energies[i] as number, 0);
+  const sorted = Float64Array.from(levelOf.keys()).sort();
   const low: number[] = [];
   const high: number[] = [];
   for (let k = 0; k < sorted.length; k++) {
@@ -67,7 +66,11 @@ export function formLevels(sectors: readonly Sector[], width: number, choice: Le
     levelOf.set(energy, low.length - 1);
   }
   const energies = Float64Array.from(low, (bottom, k) => bottom + ((high[k] as number) - bottom) / 2);
-  const of = sectors.map((sector) => Int32Array.from(sector.energies, (energy) => levelOf.get(energy) ?? 0));
+  const of = sectors.map((sector) => {
+    const levels = new Int32Array(sector.energies.length);
+    for (let i = 0; i < levels.length; i++) levels[i] = levelOf.get(sector.energies[i] as number) ?? 0;
+    return levels;
+  });
   const chosen = new Set(choose(choice, energies, low, high));
   const parts = new Map<number, Map<number, number[]>>();
   of.forEach((levels, sector) => {

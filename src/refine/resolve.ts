@@ -1,10 +1,11 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import { LABEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
-import { diagonalCsr, multiply, selectRows, submatrix } from "../numerics/sparse.js";
+import { diagonalCsr, findEntry, selectRows, submatrix } from "../numerics/sparse.js";
 import { splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
 import type { Level, LevelPart, Levels } from "./levels.js";
+import { composed, isIdentity } from "./rotate.js";
 import { type SecondOrder, secondOrder } from "./second-order.js";
 import { type BlockLabel, energyTolerance, inSpace, type Sector } from "./sectors.js";
 import type { NodeKind, PathStep, TreeBuilder } from "./tree.js";
@@ -46,6 +47,8 @@ interface Block {
   readonly labels: readonly BlockLabel[];
   readonly second: number | undefined;
 }
+
+const ONE_VECTOR = diagonalCsr([1]);
 
 /**
  * Refines one level: in every sector by the remaining conserved candidates that map the block into itself, then by each
@@ -90,7 +93,7 @@ function refinePart(
   tree: TreeBuilder,
 ): Leaf[] {
   const size = part.indices.length;
-  const identity = diagonalCsr(new Float64Array(size).fill(1));
+  const identity = size === 1 ? ONE_VECTOR : diagonalCsr(new Float64Array(size).fill(1));
   const first = part.indices[0] as number;
   let blocks: Block[] = [
     {
@@ -106,7 +109,7 @@ function refinePart(
   if (depth === "labels") return blocks;
   sector.perturbations.forEach((v, k) => {
     const { name, operator } = problem.perturbations[k] as (typeof problem.perturbations)[number];
-    const inside = size === v.rows ? v : submatrix(v, part.indices);
+    const inside = within(v, part.indices);
     const by = {
       kind: "perturbation",
       name,
@@ -131,6 +134,18 @@ function refinePart(
   });
 }
 
+/** The submatrix on the vectors of a part. */
+function within(v: Csr, indices: Int32Array): Csr {
+  if (indices.length === v.rows) return v;
+  const [only] = indices;
+  if (indices.length > 1 || only === undefined) return submatrix(v, indices);
+  const p = findEntry(v, only, only);
+  return diagonalCsr(
+    [p < 0 ? 0 : (v.re[p] as number)],
+    v.im === undefined ? undefined : [p < 0 ? 0 : (v.im[p] as number)],
+  );
+}
+
 function refineByOthers(
   problem: PreparedProblem,
   frame: Csr,
@@ -140,7 +155,7 @@ function refineByOthers(
 ): Block[] {
   return blocks.flatMap((block) => {
     if (block.rows.rows === 1) return [block];
-    const vectors = multiply(block.rows, frame);
+    const vectors = composed(block.rows, frame);
     for (const place of others) {
       if (block.labels.some((label) => label.candidate === place)) continue;
       const candidate = problem.candidates[place] as (typeof problem.candidates)[number];
@@ -172,7 +187,7 @@ interface RefineBy {
 
 /** Splits a block by an operator given over the part's vectors (or, if `restricted`, over the block's own). */
 function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilder, restricted = false): Block[] {
-  const matrix = restricted ? operator : inSpace(block, operator);
+  const matrix = restricted || isIdentity(block.rows) ? operator : inSpace(block, operator);
   const split = splitIntoEigenspaces(matrix, {
     hermitian: by.hermitian ?? true,
     noise: by.noise,
@@ -185,18 +200,19 @@ function refineBlock(block: Block, operator: Csr, by: RefineBy, tree: TreeBuilde
     size: block.rows.rows,
     values: split.spaces.map((space) => space.value),
     spreads: split.spaces.map((space) => space.spread),
-    sizes: split.spaces.map((space) => space.rows.rows),
+    sizes: split.spaces.map((space) => space.size),
   });
   const whole = split.spaces.length === 1;
+  const same = isIdentity(split.rows);
   return split.spaces.map((space, child): Block => {
     const chosen = space.indices;
     // Vectors of a block that stays whole are kept: where V is scalar there, any basis serves.
-    const keep = whole && by.kind !== "perturbation";
+    const keep = whole && (same || by.kind !== "perturbation");
     return {
       rows: keep
         ? block.rows
         : chosen === undefined
-          ? multiply(space.rows, block.rows)
+          ? composed(space.rows, block.rows)
           : selectRows(block.rows, chosen),
       indices: keep
         ? block.indices

@@ -44,158 +44,120 @@ export function secondOrder(
   energy: number,
   levelEnergies: Float64Array,
 ): SecondOrder {
-  const out = outgoing(energies, v, indices, levelOf, level, energy);
+  const out: Outside = { v, indices, energies, energy, levelOf, level };
   const squares = new LevelSums(levelEnergies.length);
-  return {
-    w: out.bare.rows === 1 ? scalarProduct(out) : multiply(out.scaled, adjoint(out.bare)),
-    scale: out.scale,
-    first: firstGuard(out, levelOf, energy, levelEnergies, squares),
-    second: secondGuard(out, v, meanShift(v, indices), levelOf, level, energy, levelEnergies, squares),
-  };
+  const first = firstGuard(out, levelEnergies, squares);
+  return new Outward(out, scaleOf(out), first, secondGuard(out, levelEnergies, squares));
 }
 
-/** The product of scaled and bare† for a single vector. */
-function scalarProduct({ bare, scaled }: Outgoing): Csr {
-  const count = bare.re.length;
-  let re = 0;
-  let im = 0;
-  for (let q = 0; q < count; q++) {
-    const x = scaled.re[q] as number;
-    const u = bare.re[q] as number;
-    if (bare.im === undefined || scaled.im === undefined) {
-      re += x * u;
-    } else {
-      const y = scaled.im[q] as number;
-      const v = 0 - (bare.im[q] as number);
-      re += x * u - y * v;
-      im += x * v + y * u;
-    }
-  }
-  const filled = Math.min(1, count);
-  return {
-    rows: 1,
-    cols: 1,
-    ptr: Int32Array.of(0, filled),
-    col: new Int32Array(filled),
-    re: filled === 1 ? Float64Array.of(re) : new Float64Array(0),
-    im: im === 0 ? undefined : Float64Array.of(im),
-  };
-}
-
-interface Outgoing {
-  /** V_ik, k outside the level, columns renumbered to those that occur. */
-  readonly bare: Csr;
-  /** V_ik / (E0 − E_k). */
-  readonly scaled: Csr;
-  /** The sector's vector behind each column. */
-  readonly columns: Int32Array;
+/** W is made when it is first asked for: by what is still together after V, and where V tells states apart. */
+class Outward implements SecondOrder {
   readonly scale: number;
+  readonly first: GuardRatio;
+  readonly second: GuardRatio;
+  readonly #out: Outside;
+  #w: Csr | undefined;
+
+  constructor(out: Outside, scale: number, first: GuardRatio, second: GuardRatio) {
+    this.#out = out;
+    this.scale = scale;
+    this.first = first;
+    this.second = second;
+  }
+
+  get w(): Csr {
+    this.#w ??= effective(this.#out);
+    return this.#w;
+  }
 }
 
-function outgoing(
-  energies: Float64Array,
-  v: Csr,
-  indices: Int32Array,
-  levelOf: Int32Array,
-  level: number,
-  energy: number,
-): Outgoing {
+/** V between the vectors of a part and those outside its level. */
+interface Outside {
+  readonly v: Csr;
+  /** The part's vectors, as rows of V. */
+  readonly indices: Int32Array;
+  /** Energy of every vector of the sector. */
+  readonly energies: Float64Array;
+  readonly energy: number;
+  readonly levelOf: Int32Array;
+  readonly level: number;
+}
+
+/** 1 / (E0 − E_k) for column k of V. */
+function weight({ energies, energy }: Outside, k: number): number {
+  return 1 / (energy - (energies[k] as number));
+}
+
+/** W = (V R) V†. */
+function effective(out: Outside): Csr {
+  const { v, indices, levelOf, level } = out;
   const rows = indices.length;
   const ptr = new Int32Array(rows + 1);
-  let total = 0;
+  const source: number[] = [];
   for (let r = 0; r < rows; r++) {
     const i = indices[r] as number;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
-      if (levelOf[v.col[p] as number] !== level) total++;
+      if (levelOf[v.col[p] as number] !== level) source.push(p);
     }
-    ptr[r + 1] = total;
+    ptr[r + 1] = source.length;
   }
-  const space = borrow(v.rows, 1);
-  const { mark: place, list } = space;
-  const tag = space.firstTag;
-  const source = new Int32Array(total);
-  let at = 0;
-  let distinct = 0;
-  for (let r = 0; r < rows; r++) {
+  const shape = { rows, cols: v.cols, ptr, col: Int32Array.from(source, (p) => v.col[p] as number) };
+  const part = (values: Float64Array): Float64Array => Float64Array.from(source, (p) => values[p] as number);
+  const weighted = (values: Float64Array): Float64Array =>
+    values.map((x, q) => x * weight(out, shape.col[q] as number));
+  const re = part(v.re);
+  const im = v.im && part(v.im);
+  return multiply({ ...shape, re: weighted(re), im: im && weighted(im) }, adjoint({ ...shape, re, im }));
+}
+
+/** Largest √(Σ|V_ik|²) √(Σ|V_ik/(E0 − E_k)|²) over the vectors i. */
+function scaleOf(out: Outside): number {
+  const { v, indices, levelOf, level } = out;
+  let scale = 0;
+  for (let r = 0; r < indices.length; r++) {
     const i = indices[r] as number;
+    let bare = 0;
+    let weighted = 0;
     for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
       const k = v.col[p] as number;
       if (levelOf[k] === level) continue;
-      source[at++] = p;
-      if (place[k] === tag) continue;
-      place[k] = tag;
-      list[distinct++] = k;
-    }
-  }
-  // A single row of V is in order already.
-  const columns = list.slice(0, distinct);
-  if (rows > 1) columns.sort();
-  for (let c = 0; c < distinct; c++) list[columns[c] as number] = c;
-  const col = new Int32Array(total);
-  const re = new Float64Array(total);
-  const im = v.im === undefined ? undefined : new Float64Array(total);
-  const scaledRe = new Float64Array(total);
-  const scaledIm = v.im === undefined ? undefined : new Float64Array(total);
-  let scale = 0;
-  for (let r = 0; r < rows; r++) {
-    let bare = 0;
-    let weighted = 0;
-    for (let q = ptr[r] as number; q < (ptr[r + 1] as number); q++) {
-      const p = source[q] as number;
-      const k = v.col[p] as number;
-      const weight = 1 / (energy - (energies[k] as number));
+      const w = weight(out, k);
       const x = v.re[p] as number;
       const y = v.im === undefined ? 0 : (v.im[p] as number);
-      col[q] = list[k] as number;
-      re[q] = x;
-      scaledRe[q] = x * weight;
-      if (im !== undefined && scaledIm !== undefined) {
-        im[q] = y;
-        scaledIm[q] = y * weight;
-      }
       const square = x * x + y * y;
       bare += square;
-      weighted += square * weight * weight;
+      weighted += square * w * w;
     }
     scale = Math.max(scale, Math.sqrt(bare) * Math.sqrt(weighted));
   }
-  const shape = { rows, cols: columns.length, ptr, col };
-  return { bare: { ...shape, re, im }, scaled: { ...shape, re: scaledRe, im: scaledIm }, columns, scale };
+  return scale;
 }
 
-function firstGuard(
-  out: Outgoing,
-  levelOf: Int32Array,
-  energy: number,
-  levelEnergies: Float64Array,
-  squares: LevelSums,
-): GuardRatio {
-  const { bare, columns } = out;
-  for (let q = 0; q < bare.re.length; q++) {
-    const x = bare.re[q] as number;
-    const y = bare.im === undefined ? 0 : (bare.im[q] as number);
-    squares.add(levelOf[columns[bare.col[q] as number] as number] as number, x * x, y * y);
+function firstGuard(out: Outside, levelEnergies: Float64Array, squares: LevelSums): GuardRatio {
+  const { v, indices, levelOf, level, energy } = out;
+  for (let r = 0; r < indices.length; r++) {
+    const i = indices[r] as number;
+    for (let p = v.ptr[i] as number; p < (v.ptr[i + 1] as number); p++) {
+      const k = levelOf[v.col[p] as number] as number;
+      if (k === level) continue;
+      const x = v.re[p] as number;
+      const y = v.im === undefined ? 0 : (v.im[p] as number);
+      squares.add(k, x * x, y * y);
+    }
   }
   return squares.largestRatio(energy, levelEnergies);
 }
 
-function secondGuard(
-  out: Outgoing,
-  v: Csr,
-  shift: number,
-  levelOf: Int32Array,
-  level: number,
-  energy: number,
-  levelEnergies: Float64Array,
-  squares: LevelSums,
-): GuardRatio {
-  const rows = out.scaled.rows;
-  const space = borrow(v.rows, rows);
+function secondGuard(out: Outside, levelEnergies: Float64Array, squares: LevelSums): GuardRatio {
+  const { v, indices, levelOf, level, energy } = out;
+  const space = borrow(v.rows, indices.length);
   const { re, im, list } = space;
-  for (let r = 0; r < rows; r++) {
+  const shift = meanShift(v, indices);
+  for (let r = 0; r < indices.length; r++) {
     const tag = space.firstTag + r;
-    const reached = v.im === undefined ? imageReal(out, r, v, space, tag) : imageComplex(out, r, v, v.im, space, tag);
-    const count = shift === 0 ? reached : subtractShift(out, r, shift, space, tag, reached);
+    const i = indices[r] as number;
+    const count =
+      v.im === undefined ? imageReal(out, i, shift, space, tag) : imageComplex(out, i, v.im, shift, space, tag);
     for (let t = 0; t < count; t++) {
       const to = list[t] as number;
       const k = levelOf[to] as number;
@@ -208,7 +170,7 @@ function secondGuard(
   return squares.largestRatio(energy, levelEnergies);
 }
 
-/** Mean of V's diagonal elements over the level's vectors of the sector. */
+/** Mean of V's diagonal elements over the level's vectors. */
 function meanShift(v: Csr, indices: Int32Array): number {
   let sum = 0;
   for (const i of indices) {
@@ -218,38 +180,22 @@ function meanShift(v: Csr, indices: Int32Array): number {
   return sum / indices.length;
 }
 
-/** Takes v R V off the row in the scratch; returns the number of vectors that it reaches then. */
-function subtractShift(
-  { scaled, columns }: Outgoing,
-  r: number,
-  shift: number,
-  { re, im, mark, list }: Scratch,
-  tag: number,
-  reached: number,
-): number {
-  let count = reached;
-  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-    const k = columns[scaled.col[q] as number] as number;
+/** Row i of V R (V − v) with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */
+function imageReal(out: Outside, i: number, shift: number, space: Scratch, tag: number): number {
+  const { levelOf, level } = out;
+  const { re, mark, list } = space;
+  const { ptr, col, re: values } = out.v;
+  let count = 0;
+  for (let q = ptr[i] as number; q < (ptr[i + 1] as number); q++) {
+    const k = col[q] as number;
+    if (levelOf[k] === level) continue;
+    const a = (values[q] as number) * weight(out, k);
     if (mark[k] !== tag) {
       mark[k] = tag;
       list[count++] = k;
       re[k] = 0;
-      im[k] = 0;
     }
-    re[k] = (re[k] as number) - shift * (scaled.re[q] as number);
-    if (scaled.im !== undefined) im[k] = (im[k] as number) - shift * (scaled.im[q] as number);
-  }
-  return count;
-}
-
-/** Row r of V R V with all columns, V real, left in the scratch; returns the number of vectors that it reaches. */
-function imageReal({ scaled, columns }: Outgoing, r: number, v: Csr, space: Scratch, tag: number): number {
-  const { re, mark, list } = space;
-  const { ptr, col, re: values } = v;
-  let count = 0;
-  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-    const k = columns[scaled.col[q] as number] as number;
-    const a = scaled.re[q] as number;
+    re[k] = (re[k] as number) - shift * a;
     const end = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < end; p++) {
       const to = col[p] as number;
@@ -266,20 +212,31 @@ function imageReal({ scaled, columns }: Outgoing, r: number, v: Csr, space: Scra
 
 /** The same for complex V. */
 function imageComplex(
-  { scaled, columns }: Outgoing,
-  r: number,
-  v: Csr,
+  out: Outside,
+  i: number,
   imaginary: Float64Array,
+  shift: number,
   space: Scratch,
   tag: number,
 ): number {
+  const { levelOf, level } = out;
   const { re, im, mark, list } = space;
-  const { ptr, col, re: values } = v;
+  const { ptr, col, re: values } = out.v;
   let count = 0;
-  for (let q = scaled.ptr[r] as number; q < (scaled.ptr[r + 1] as number); q++) {
-    const k = columns[scaled.col[q] as number] as number;
-    const a = scaled.re[q] as number;
-    const b = scaled.im === undefined ? 0 : (scaled.im[q] as number);
+  for (let q = ptr[i] as number; q < (ptr[i + 1] as number); q++) {
+    const k = col[q] as number;
+    if (levelOf[k] === level) continue;
+    const w = weight(out, k);
+    const a = (values[q] as number) * w;
+    const b = (imaginary[q] as number) * w;
+    if (mark[k] !== tag) {
+      mark[k] = tag;
+      list[count++] = k;
+      re[k] = 0;
+      im[k] = 0;
+    }
+    re[k] = (re[k] as number) - shift * a;
+    im[k] = (im[k] as number) - shift * b;
     const end = ptr[k + 1] as number;
     for (let p = ptr[k] as number; p < end; p++) {
       const to = col[p] as number;

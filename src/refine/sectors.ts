@@ -3,12 +3,12 @@ import { LABEL_WIDTH, LEVEL_WIDTH, NOISE } from "../audit/resolution.js";
 import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import { conjugate, diagonalCsr, multiply, selectRows, submatrix, transpose } from "../numerics/sparse.js";
-import { stackRows } from "../numerics/stack.js";
+import { diagonalCsr, selectRows, submatrix } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
 import { carriedRowError, type DescentStep, descentStep, rotateAll, rotationError } from "./descent.js";
-import { type Eigenspace, splitIntoEigenspaces } from "./eigenspaces.js";
+import { type Eigenspace, type Split, splitIntoEigenspaces } from "./eigenspaces.js";
 import { invariance } from "./invariance.js";
+import { composed, isIdentity, rotated, rowRange } from "./rotate.js";
 import type { PathStep, TreeBuilder } from "./tree.js";
 
 /** A label that a block carries: the candidate's place among the problem's candidates and its eigenvalue there. */
@@ -124,8 +124,8 @@ export function buildSectors(
     const norm = by.operator.norm;
     const split = splitIntoEigenspaces(matrix, { hermitian, noise: NOISE * norm, cluster: LABEL_WIDTH * norm });
     const whole = split.spaces.length === 1;
-    const step = whole ? undefined : descentStep(split.spaces, block);
-    const rotated = withH0 && step !== undefined ? block.perturbations.map((v) => rotateAll(step, v)) : undefined;
+    const step = whole ? undefined : descentStep(split, block);
+    const carried = withH0 && step !== undefined ? block.perturbations.map((v) => rotateAll(step, v)) : undefined;
     const vErrors =
       step === undefined
         ? block.vErrors
@@ -139,18 +139,21 @@ export function buildSectors(
       size: block.frame.rows,
       values: split.spaces.map((space) => space.value),
       spreads: split.spaces.map((space) => space.spread),
-      sizes: split.spaces.map((space) => space.rows.rows),
-      ...(rotated === undefined
+      sizes: split.spaces.map((space) => space.size),
+      ...(carried === undefined
         ? {}
-        : { crossings: rotated.map(({ crossing }, p) => roundUp(crossing + (vErrors[p] ?? 0))) }),
+        : { crossings: carried.map(({ crossing }, p) => roundUp(crossing + (vErrors[p] ?? 0))) }),
     });
-    if (step !== undefined) note(block, split.spaces, split.defect, step);
+    if (step !== undefined) note(block, split.defect, step);
+    const frame = step === undefined ? block.frame : frameOf(step, block.frame);
+    let from = 0;
     return split.spaces.map((space, child): Block => {
       const rotate = (operator: Csr): Csr => (whole ? operator : inSpace(space, operator));
+      from += space.size;
       return {
-        frame: whole ? block.frame : frameOf(space, block.frame),
+        frame: rowRange(frame, from - space.size, space.size),
         h0: withH0 ? rotate(block.h0) : block.h0,
-        perturbations: rotated?.map(({ children }) => children[child] as Csr) ?? block.perturbations,
+        perturbations: carried?.map(({ children }) => children[child] as Csr) ?? block.perturbations,
         remaining: rest.map(rotate),
         labels: [...block.labels, { candidate: place, value: space.value }],
         from: { node, child },
@@ -162,8 +165,8 @@ export function buildSectors(
   };
 
   /** Records how far the new vectors of one step of the descent may be from orthonormal. */
-  const note = (block: Block, spaces: readonly Eigenspace[], splitDefect: number, step: DescentStep): void => {
-    if (spaces.every((space) => space.indices !== undefined)) return;
+  const note = (block: Block, splitDefect: number, step: DescentStep): void => {
+    if (step.indices !== undefined) return;
     const { depth } = block;
     splitDefects[depth] = Math.max(splitDefects[depth] ?? 0, splitDefect);
     compositionSquares[depth] = (compositionSquares[depth] ?? 0) + step.compositionError ** 2;
@@ -171,13 +174,15 @@ export function buildSectors(
 
   const finish = (block: Block): void => {
     const size = block.frame.rows;
-    const energyOptions = {
-      hermitian: true,
-      noise: NOISE * problem.h0.norm,
-      cluster: energyTolerance(problem, size),
-    };
-    const split = withH0 ? splitIntoEigenspaces(block.h0, energyOptions) : { spaces: [wholeSpace(size)], defect: 0 };
-    const spaces = [...split.spaces].sort((a, b) => a.value.re - b.value.re);
+    const split = withH0
+      ? splitIntoEigenspaces(block.h0, {
+          hermitian: true,
+          noise: NOISE * problem.h0.norm,
+          cluster: energyTolerance(problem, size),
+          ascending: true,
+        })
+      : unsplit(size);
+    const { spaces } = split;
     const energyNode = tree.add({
       from: block.from,
       kind: "energy",
@@ -185,24 +190,22 @@ export function buildSectors(
       size,
       values: spaces.map((space) => space.value),
       spreads: spaces.map((space) => space.spread),
-      sizes: spaces.map((space) => space.rows.rows),
+      sizes: spaces.map((space) => space.size),
     });
     const energies = new Float64Array(size);
     const energyChild = new Int32Array(size);
     let at = 0;
     spaces.forEach((space, child) => {
-      energies.fill(space.value.re, at, at + space.rows.rows);
-      energyChild.fill(child, at, at + space.rows.rows);
-      at += space.rows.rows;
+      energies.fill(space.value.re, at, at + space.size);
+      energyChild.fill(child, at, at + space.size);
+      at += space.size;
     });
-    const all = stack(spaces, size);
-    const identity = all.indices?.every((index, row) => index === row) === true;
-    const step = identity ? undefined : descentStep([all], block);
-    if (step !== undefined) note(block, [all], split.defect, step);
+    const step = isIdentity(split.rows) ? undefined : descentStep(split, block);
+    if (step !== undefined) note(block, split.defect, step);
     sectors.push({
-      frame: identity ? block.frame : frameOf(all, block.frame),
+      frame: step === undefined ? block.frame : frameOf(step, block.frame),
       energies,
-      perturbations: identity ? block.perturbations : block.perturbations.map((v) => inSpace(all, v)),
+      perturbations: step === undefined ? block.perturbations : block.perturbations.map((v) => inSpace(step, v)),
       labels: block.labels,
       from: block.from,
       energyNode,
@@ -243,28 +246,19 @@ export function energyTolerance(problem: PreparedProblem, size: number): number 
   return LEVEL_WIDTH * norm + 32 * error + solver;
 }
 
-/** Vectors of an eigenspace over the kets. */
-function frameOf(space: Eigenspace, frame: Csr): Csr {
-  return space.indices === undefined ? multiply(space.rows, frame) : selectRows(frame, space.indices);
+/** New vectors of a block over the kets. */
+function frameOf({ rows, indices }: Pick<Eigenspace, "rows" | "indices">, frame: Csr): Csr {
+  return indices === undefined ? composed(rows, frame) : selectRows(frame, indices);
 }
 
 /** An operator restricted to an eigenspace: conj(U) B Uᵀ, whose elements are u_i† B u_j. */
-export function inSpace(space: Pick<Eigenspace, "rows" | "indices">, operator: Csr): Csr {
-  if (space.indices !== undefined) return submatrix(operator, space.indices);
-  return multiply(conjugate(space.rows), multiply(operator, transpose(space.rows)));
+export function inSpace({ rows, indices }: Pick<Eigenspace, "rows" | "indices">, operator: Csr): Csr {
+  return indices === undefined ? rotated(rows, operator) : submatrix(operator, indices);
 }
 
-function wholeSpace(size: number): Eigenspace {
+/** A block of one child, itself. */
+function unsplit(size: number): Split {
   const rows = diagonalCsr(new Float64Array(size).fill(1));
-  return { value: { re: 0, im: 0 }, spread: 0, rows, indices: rows.col };
-}
-
-/** All eigenspaces of a split as one set of rows. */
-function stack(spaces: readonly Eigenspace[], size: number): Eigenspace {
-  const rows = stackRows(
-    spaces.map((space) => space.rows),
-    size,
-  );
-  const selection = spaces.every((space) => space.indices !== undefined);
-  return { value: { re: 0, im: 0 }, spread: 0, rows, indices: selection ? rows.col : undefined };
+  const whole = { value: { re: 0, im: 0 }, spread: 0, size, rows, indices: rows.col };
+  return { spaces: [whole], rows, indices: rows.col, defect: 0 };
 }

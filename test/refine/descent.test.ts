@@ -1,7 +1,9 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
+import type { Complex } from "../../src/numerics/complex.js";
 import type { Csr } from "../../src/numerics/csr.js";
-import { diagonalCsr, multiply } from "../../src/numerics/sparse.js";
+import { diagonalCsr, multiply, toDense } from "../../src/numerics/sparse.js";
+import { stackRows } from "../../src/numerics/stack.js";
 import { Operator } from "../../src/operator/operator.js";
 import {
   carriedRowError,
@@ -12,12 +14,14 @@ import {
   rotationError,
 } from "../../src/refine/descent.js";
 import type { Eigenspace } from "../../src/refine/eigenspaces.js";
+import { distance } from "../numerics/bounded/exact.js";
 import type { Naive } from "../operator/naive.js";
 import {
   adjoint,
   columns,
   double,
   type FixedMatrix,
+  fixed,
   frobenius,
   matrix,
   minus,
@@ -27,7 +31,22 @@ import {
 import { fixedColumns, fixedOperator } from "../support/oracle.js";
 import { csr, hermitian, naiveOfCsr, operatorOf, orthonormal, random } from "./support.js";
 
-const space = (rows: Csr, indices?: Int32Array): Eigenspace => ({ value: { re: 0, im: 0 }, spread: 0, rows, indices });
+const space = (rows: Csr, indices?: Int32Array): Eigenspace => ({
+  value: { re: 0, im: 0 },
+  spread: 0,
+  size: rows.rows,
+  rows,
+  indices,
+});
+
+/** The step to some children. */
+function stepTo(spaces: readonly Eigenspace[], block: { readonly frame: Csr }): DescentStep {
+  const rows = stackRows(
+    spaces.map((child) => child.rows),
+    block.frame.rows,
+  );
+  return descentStep({ spaces, rows, indices: spaces.every((child) => child.indices) ? rows.col : undefined }, block);
+}
 
 /** Rows dealt out to children of the given sizes. */
 function children(rows: Naive, sizes: readonly number[]): Eigenspace[] {
@@ -56,7 +75,7 @@ function scene(n: number, d: number, seed: number, complex: boolean, sizes: read
   const frame = csr(orthonormal(d, n, next, complex));
   const v = operatorOf(hermitian(n, next, complex), "exact");
   const u = orthonormal(d, d, next, complex);
-  const step = descentStep(children(u, sizes), { frame });
+  const step = stepTo(children(u, sizes), { frame });
   return { frame, v, step };
 }
 
@@ -123,7 +142,7 @@ describe("a step down by combinations", () => {
         const d = sizes.reduce((a, b) => a + b, 0);
         const next = random(seed);
         const v = operatorOf(hermitian(d, next, complex), "exact");
-        const step = descentStep(children(orthonormal(d, d, next, complex), sizes), {
+        const step = stepTo(children(orthonormal(d, d, next, complex), sizes), {
           frame: diagonalCsr(new Float64Array(d).fill(1)),
         });
         const carried = rotateAll({ ...step, spaces: [space(step.rows)] }, v.csr).children[0] as Csr;
@@ -169,7 +188,7 @@ describe("a step down by combinations", () => {
   });
 
   it("an exact crossing is the square root of its largest row and column sums", () => {
-    const step: DescentStep = descentStep(
+    const step: DescentStep = stepTo(
       [
         space(csr([[1, 0, 0]]), Int32Array.of(0)),
         space(
@@ -213,7 +232,7 @@ describe("a step down by combinations", () => {
 
 describe("a step down by selection", () => {
   const frame = diagonalCsr([1, 1, 1]);
-  const step = descentStep(
+  const step = stepTo(
     [
       space(
         csr([
@@ -252,7 +271,7 @@ describe("a step down by selection", () => {
   });
 
   it("one child of combinations makes the whole step one of combinations", () => {
-    const mixed = descentStep(
+    const mixed = stepTo(
       [
         space(
           csr([
@@ -306,10 +325,9 @@ describe("carriedRowError", () => {
       [0, 0, 0, 1, delta],
     ]);
     const h = [0.5, 0.5, 0.5, 0.5];
-    const step = descentStep(
-      [space(csr([h, [0.5, 0.5, -0.5, -0.5], [0.5, -0.5, 0.5, -0.5], [0.5, -0.5, -0.5, 0.5]]))],
-      { frame },
-    );
+    const step = stepTo([space(csr([h, [0.5, 0.5, -0.5, -0.5], [0.5, -0.5, 0.5, -0.5], [0.5, -0.5, -0.5, 0.5]]))], {
+      frame,
+    });
     const moved = naiveOfCsr(multiply(step.rows, frame))[0]?.[4]?.re ?? 0;
     expect(moved).toBeGreaterThan(1.9 * delta);
     expect(carriedRowError(step, delta)).toBeGreaterThanOrEqual(moved);
@@ -320,11 +338,78 @@ describe("carriedRowError", () => {
 
   it("a selection carries errors as they are", () => {
     const frame = diagonalCsr([1, 1]);
-    const step = descentStep([space(csr([[0, 1]]), Int32Array.of(1)), space(csr([[1, 0]]), Int32Array.of(0))], {
+    const step = stepTo([space(csr([[0, 1]]), Int32Array.of(1)), space(csr([[1, 0]]), Int32Array.of(0))], {
       frame,
     });
     expect(carriedRowError(step, 1e-16)).toBeGreaterThanOrEqual(1e-16);
     expect(carriedRowError(step, 1e-16)).toBeLessThan(1.01e-16);
     expect(carriedRowError(step, 0)).toBe(0);
+  });
+});
+
+describe("at the lower end of the range", () => {
+  const powers = [-565, -900, -1000, -1040, -1060];
+
+  it("bounds new vectors whose squares and products vanish", () => {
+    for (const power of powers) {
+      for (const complex of [false, true]) {
+        const n = 5;
+        const next = random(61 - power);
+        const small = (a: Naive): Naive =>
+          a.map((row) => row.map((x) => ({ re: x.re * 2 ** power, im: x.im * 2 ** power })));
+        const frame = csr(small(orthonormal(n, n, next, complex)));
+        const step = stepTo(children(orthonormal(n, n, next, complex), [2, 3]), { frame });
+        const truth = distance(n, [[1, toDense(step.rows), toDense(frame)]], toDense(multiply(step.rows, frame)));
+        expect(truth).toBeGreaterThan(0);
+        expect(truth).toBeLessThanOrEqual(Math.sqrt(n) * step.rowError);
+        expect(compositionRowError(n, diagonalCsr([0, 0]))).toBe(0);
+      }
+    }
+  });
+
+  it("bounds carried matrices whose norms multiply to nothing", () => {
+    for (const power of powers) {
+      for (const complex of [false, true]) {
+        const d = 5;
+        const next = random(62 - power);
+        const given = hermitian(d, next, complex);
+        const v = operatorOf(
+          given.map((row) => row.map((x) => ({ re: x.re * 2 ** power, im: x.im * 2 ** power }))),
+          "exact",
+        );
+        const step = stepTo(children(orthonormal(d, d, next, complex), [d]), {
+          frame: diagonalCsr(new Float64Array(d).fill(1)),
+        });
+        const carried = rotateAll(step, v.csr).children[0] as Csr;
+        const q = fixedColumns(step.rows);
+        const exact = product(adjoint(q), product(fixedOperator(v, -power), q));
+        const truth = norm2(minus(fixedOperator(Operator.fromCsr(carried), -power), exact));
+        const bound = rotationError({ ...step, compositionError: 0 }, v.csr, v, 0);
+        expect(double(truth)).toBeGreaterThan(0);
+        expect(truth).toBeLessThanOrEqual(fixed(bound, -power));
+        // no worse than at ordinary size, but for the smallest numbers themselves
+        expect(bound).toBeLessThanOrEqual(2 ** power * 16 * (2 * d + 8) * d * d * 2 ** -53 + 16 * d ** 3 * 2 ** -1074);
+      }
+    }
+  });
+
+  it("keeps zeros: no operator, no error; real elements cross as they are", () => {
+    const step = stepTo(children(orthonormal(3, 3, random(63), true), [1, 2]), { frame: diagonalCsr([1, 1, 1]) });
+    const zero = Operator.zero(3);
+    expect(rotationError(step, zero.csr, zero, 0)).toBe(0);
+    expect(rotateAll(step, zero.csr).crossing).toBe(0);
+    for (const tiny of [2 ** -1074, 2 ** -1070, 2 ** -1023]) {
+      const pair = (x: Complex): Csr =>
+        csr([
+          [0, x],
+          [{ re: x.re, im: -x.im }, 0],
+        ]);
+      const apart = stepTo([space(csr([[1, 0]]), Int32Array.of(0)), space(csr([[0, 1]]), Int32Array.of(1))], {
+        frame: diagonalCsr([1, 1]),
+      });
+      expect(rotateAll(apart, pair({ re: 3 * tiny, im: 0 })).crossing).toBeGreaterThanOrEqual(3 * tiny);
+      expect(rotateAll(apart, pair({ re: 3 * tiny, im: 4 * tiny })).crossing).toBeGreaterThanOrEqual(5 * tiny);
+      expect(rotateAll(apart, pair({ re: 3 * tiny, im: 3 * tiny })).crossing).toBeGreaterThanOrEqual(4.2426 * tiny);
+    }
   });
 });

@@ -294,7 +294,7 @@ describe("buildSectors", () => {
       noise: 2 ** -43 * operator.norm,
       cluster: 2 ** -36 * operator.norm,
     });
-    const { compositionError } = descentStep(split.spaces, { frame: Operator.identity(6).csr });
+    const { compositionError } = descentStep(split, { frame: Operator.identity(6).csr });
     const { defect } = build(problem, [0]);
     expect(defect).toBeGreaterThanOrEqual(split.defect + 2 * compositionError);
     expect(defect).toBeLessThan((split.defect + 2 * compositionError) * 1.001);

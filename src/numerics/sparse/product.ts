@@ -1,5 +1,6 @@
 import type { Csr } from "../csr.js";
 import { diagonalOf, dropZeros } from "./build.js";
+import { fullCsr, isFull, productOfRows } from "./full.js";
 import { RowAccumulator } from "./rows.js";
 
 /**
@@ -8,6 +9,7 @@ import { RowAccumulator } from "./rows.js";
  * Entries that cancel stay stored. A real entry of k terms takes k roundings on its longest path, a complex one k + 1.
  */
 export function multiply(a: Csr, b: Csr): Csr {
+  if (isFull(a) && isFull(b)) return fullCsr(a.rows, b.cols, productOfRows(a.rows, a.cols, b.cols, a, b));
   const complex = a.im !== undefined || b.im !== undefined;
   const out = new RowAccumulator(a.rows, b.cols, complex);
   for (let row = 0; row < a.rows; row++) out.finishRow(row, scatterRow(out, row, a, b, 1, 0));
