@@ -139,3 +139,17 @@ function isExactKron(a: Csr, b: Csr): boolean {
   const right = left === undefined ? undefined : gridOf(b);
   return left !== undefined && right !== undefined && fitsGrid(left.bits + right.bits, 2 * left.max * right.max);
 }
+
+/** The sum of a list, added pair by pair; undefined for none. */
+export function pairwise<T>(terms: readonly T[], add: (left: T, right: T) => T): T | undefined {
+  let level = terms;
+  while (level.length > 1) {
+    const next: T[] = [];
+    for (let k = 0; k < level.length; k += 2) {
+      const [left, right] = level.slice(k, k + 2);
+      if (left !== undefined) next.push(right === undefined ? left : add(left, right));
+    }
+    level = next;
+  }
+  return level[0];
+}

@@ -4,12 +4,10 @@ import { shown } from "../misuse.js";
 import type { Complex, Scalar } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import type { Dense } from "../numerics/dense.js";
-import { roundDown } from "../numerics/rounding.js";
-import { findEntry, frobenius, maxRowEntries, toDense } from "../numerics/sparse.js";
-import { uncertainAdjoint, uncertainKron, uncertainScale, uncertainSum } from "./arithmetic.js";
+import { toDense, valueAt } from "../numerics/sparse.js";
+import { pairwise, uncertainAdjoint, uncertainKron, uncertainScale, uncertainSum } from "./arithmetic.js";
 import { requireIndex, requireOperatorOptions, requireRows, requireScalar, wrongOperand } from "./checks.js";
 import { hashOf } from "./hash.js";
-import { diagonalMean, errorBound, normBound, normFloor } from "./norms.js";
 import { isDenselyFilled, uncertainCommutator, uncertainProduct } from "./products.js";
 import { type Radius, radiiOf, type Uncertain } from "./radius.js";
 import {
@@ -24,6 +22,7 @@ import {
   withUncertainty,
 } from "./read.js";
 import { restrictTo } from "./restrict.js";
+import { Sizes } from "./sizes.js";
 import { type HermitianDefect, hermitianPart } from "./structure.js";
 import { Traits } from "./traits.js";
 
@@ -52,20 +51,16 @@ export interface OperatorOptions {
  */
 export class Operator {
   readonly #core: Uncertain;
+  readonly #sizes: Sizes;
   #structure: Traits | undefined;
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
-  #norm: number | undefined;
-  #normAtLeast: number | undefined;
-  #variation: number | undefined;
-  #error: number | undefined;
-  #frobenius: number | undefined;
-  #rowEntries: number | undefined;
   #hash: string | undefined;
 
   private constructor(core: Uncertain) {
     requireRows(core);
     this.#core = core;
+    this.#sizes = new Sizes(core);
   }
 
   get #traits(): Traits {
@@ -160,16 +155,7 @@ export class Operator {
    */
   static sum(...terms: readonly Operator[]): Operator {
     for (const term of terms) if (!(term instanceof Operator)) throw wrongOperand("Operator.sum", term);
-    let level: readonly Operator[] = terms;
-    while (level.length > 1) {
-      const next: Operator[] = [];
-      for (let k = 0; k < level.length; k += 2) {
-        const [left, right] = level.slice(k, k + 2);
-        if (left !== undefined) next.push(right === undefined ? left : left.plus(right));
-      }
-      level = next;
-    }
-    const [total] = level;
+    const total = pairwise(terms, (left, right) => left.plus(right));
     if (total === undefined)
       throw new GoodBasisError("shape", "Operator.sum: expected at least one operator, got none");
     return total;
@@ -213,14 +199,12 @@ export class Operator {
 
   /** A rigorous upper bound on the 2-norm of the matrix of moduli, hence on the 2-norm; the radii are not included. */
   get norm(): number {
-    this.#norm ??= normBound(this.#core.csr);
-    return this.#norm;
+    return this.#sizes.norm;
   }
 
   /** A rigorous lower bound on the 2-norm of every matrix within the radii. */
   get normAtLeast(): number {
-    this.#normAtLeast ??= this.#known(normFloor(this.csr, this.norm));
-    return this.#normAtLeast;
+    return this.#sizes.normAtLeast;
   }
 
   /**
@@ -228,30 +212,22 @@ export class Operator {
    * a multiple of 1 couples nothing and commutes with everything.
    */
   get variation(): number {
-    if (this.#variation === undefined) {
-      const mean = diagonalMean(this.csr);
-      const centred = mean.re === 0 && mean.im === 0;
-      this.#variation = centred ? this.normAtLeast : this.#known(normFloor(this.csr, this.norm, mean));
-    }
-    return this.#variation;
+    return this.#sizes.variation;
   }
 
   /** A rigorous upper bound on the 2-norm of the matrix of radii. */
   get error(): number {
-    this.#error ??= errorBound(this.#core, this.norm);
-    return this.#error;
+    return this.#sizes.error;
   }
 
   /** The Frobenius norm, not rounded up. */
   get frobenius(): number {
-    this.#frobenius ??= frobenius(this.#core.csr);
-    return this.#frobenius;
+    return this.#sizes.frobenius;
   }
 
   /** The largest number of stored entries in a row. */
   get rowEntries(): number {
-    this.#rowEntries ??= maxRowEntries(this.#core.csr);
-    return this.#rowEntries;
+    return this.#sizes.rowEntries;
   }
 
   /** SHA-256, in hexadecimal, over dimension, pattern, values and radii. */
@@ -380,11 +356,8 @@ export class Operator {
    * @throws GoodBasisError `shape` - an index out of range
    */
   entry(row: number, col: number): Complex {
-    const { csr } = this.#core;
     requireIndex("entry", row, col, this.n);
-    const e = findEntry(csr, row, col);
-    if (e < 0) return { re: 0, im: 0 };
-    return { re: (csr.re[e] as number) + 0, im: csr.im === undefined ? 0 : (csr.im[e] as number) + 0 };
+    return valueAt(this.#core.csr, row, col);
   }
 
   /**
@@ -461,11 +434,6 @@ export class Operator {
   /** The number of connected parts. */
   get componentCount(): number {
     return this.#traits.parts.count;
-  }
-
-  /** What is left of a lower bound when the entries are anywhere within their radii. */
-  #known(floor: number): number {
-    return roundDown(Math.max(0, floor - this.error));
   }
 
   #requireSame(verb: string, other: Operator): void {

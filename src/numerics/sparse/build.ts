@@ -1,3 +1,4 @@
+import type { Complex } from "../complex.js";
 import type { Csr } from "../csr.js";
 
 /** The imaginary parts, or `undefined` where every one of them is zero. */
@@ -184,4 +185,11 @@ export function findEntry(a: Csr, row: number, col: number): number {
     else high = middle;
   }
   return low < end && a.col[low] === col ? low : -1;
+}
+
+/** The value in (row, col), 0 where none is stored; never −0. */
+export function valueAt(a: Csr, row: number, col: number): Complex {
+  const e = findEntry(a, row, col);
+  if (e < 0) return { re: 0, im: 0 };
+  return { re: (a.re[e] as number) + 0, im: a.im === undefined ? 0 : (a.im[e] as number) + 0 };
 }
