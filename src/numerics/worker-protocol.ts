@@ -1,13 +1,14 @@
 import { type ErrorCode, GoodBasisError } from "../errors.js";
 import { batchedHermitianEigen, batchedHermitianEigenBy, type HermitianEigenBatch } from "./eigen/batch.js";
 import { defaultEngine } from "./eigen/engine.js";
+import type { UpperTriangle } from "./eigen/types.js";
 
 /** What a pool asks of a worker: the eigenpairs of some matrices, laid out as for `batchedHermitianEigen`. */
 export interface PoolRequest {
   readonly orders: Int32Array;
   readonly re: Float64Array;
   readonly im: Float64Array | undefined;
-  readonly upper: "ignore" | "check";
+  readonly upper: UpperTriangle;
   /** Where the results go, in memory that both threads share; absent where they are to be sent back. */
   readonly into: HermitianEigenBatch | undefined;
 }

@@ -100,7 +100,7 @@ export class KernelPool {
    * @param orders - the order n of each matrix
    * @param re - the matrices one after the other; copied before they are sent
    * @param im - imaginary parts, or absent where all are real
-   * @param options - check of the upper triangles
+   * @param options - whether the upper triangles are checked; they are unless told
    * @throws GoodBasisError (as a rejection) as `batchedHermitianEigen`; `worker` when a worker dies, with the first and
    * last matrix it was working on
    */
@@ -156,7 +156,7 @@ export class KernelPool {
       run.tasks.shift();
       seat.held.push({ run, task });
       const { orders, rowStart, rows, start, end } = task;
-      const upper = run.options.upper ?? "ignore";
+      const upper = run.options.upper ?? "check";
       if (isShared(run.out.values)) {
         const part = (m: Float64Array): Float64Array => m.subarray(start, end);
         const values = run.out.values.subarray(rowStart, rowStart + rows);

@@ -188,7 +188,7 @@ function solveDense(matrix: Csr, components: Components, part: number, options: 
   const members = components.members.subarray(start, start + count);
   const dense = denseSubmatrix(matrix, members);
   if (options.hermitian) {
-    const eigen = hermitianEigen(count, dense.re, dense.im);
+    const eigen = hermitianEigen(count, dense.re, dense.im, { upper: "ignore" });
     const defect = orthonormalityDefect(count, count, eigen.re, eigen.im);
     return { re: eigen.re, im: eigen.im, valuesRe: eigen.values, valuesIm: undefined, defect };
   }
@@ -213,7 +213,7 @@ function solveNormal(n: number, re: Float64Array, im: Float64Array, options: Spl
       yi[i * n + j] = (c - a) / 2;
     }
   }
-  const first = hermitianEigen(n, xr, xi);
+  const first = hermitianEigen(n, xr, xi, { upper: "ignore" });
   const outRe = new Float64Array(n * n);
   const outIm = new Float64Array(n * n);
   const valuesRe = new Float64Array(n);
@@ -224,7 +224,7 @@ function solveNormal(n: number, re: Float64Array, im: Float64Array, options: Spl
     while (to < n && (first.values[to] as number) - (first.values[to - 1] as number) <= options.cluster) to++;
     const d = to - from;
     const inner = sandwich(n, yr, yi, first.re, first.im ?? new Float64Array(n * n), from, d);
-    const second = hermitianEigen(d, inner.re, inner.im);
+    const second = hermitianEigen(d, inner.re, inner.im, { upper: "ignore" });
     for (let k = 0; k < d; k++) {
       valuesIm[from + k] = second.values[k] as number;
       let mean = 0;

@@ -23,6 +23,12 @@ export interface EigenWindow {
   readonly high?: number;
 }
 
+/**
+ * What becomes of the upper triangle: `"check"` refuses a matrix in which it is not the conjugate of the lower one to within
+ * n units roundoff of the largest entry, `"ignore"` lets the lower triangle stand for the matrix.
+ */
+export type UpperTriangle = "check" | "ignore";
+
 /** Sizes at which the algorithm changes; they alter speed, not what is promised. */
 export interface EigenTuning {
   /** Tridiagonal blocks up to this order go to implicit QL, larger ones are divided. At least 1. */
