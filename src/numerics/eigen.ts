@@ -33,6 +33,14 @@ export interface EigenOptions {
  * larger orders, divide and conquer (Cuppen, Numer. Math. 36, 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl.
  * 16, 172 (1995)).
  *
+ * ```ts
+ * import { hermitianEigen } from "goodbasis/kernels";
+ *
+ * // σy: imaginary parts −i, i; eigenvalues −1 and 1.
+ * const { values, re, im } = hermitianEigen(2, new Float64Array(4), Float64Array.of(0, -1, 1, 0));
+ * console.log(values, re.subarray(0, 2), im?.subarray(0, 2)); // the second and third: the vector of −1
+ * ```
+ *
  * @param n - dimension, zero allowed
  * @param re - row-major n × n, real parts; nothing is changed
  * @param im - imaginary parts, those of the diagonal taken as zero; absent for a real symmetric matrix

@@ -66,6 +66,17 @@ const HELD = 2;
  *
  * The result is the same, bit for bit, with any number of workers and with none: every matrix is solved by the same code,
  * whoever runs it. A worker that dies rejects the batch it worked for, naming the matrices; the next batch gets a new one.
+ *
+ * ```ts no-run
+ * import { KernelPool } from "goodbasis/kernels";
+ * import { nodeWorker } from "goodbasis/node";
+ *
+ * const pool = new KernelPool({ factory: () => nodeWorker(), size: 3 });
+ * const orders = new Int32Array(1000).fill(20);
+ * const batch = await pool.batchedHermitianEigen(orders, new Float64Array(1000 * 400), undefined);
+ * pool.close();
+ * console.log(batch.values);
+ * ```
  */
 export class KernelPool {
   readonly #factory: WorkerFactory;

@@ -24,6 +24,14 @@ const CHUNK = 2 ** 14;
  * All eigenpairs of many Hermitian matrices in one call: what {@link hermitianEigen} finds for each, bit for bit, without
  * the cost of a call and of arrays for each.
  *
+ * ```ts
+ * import { batchedHermitianEigen, batchMember } from "goodbasis/kernels";
+ *
+ * // One matrix of order 2 and one of order 1.
+ * const batch = batchedHermitianEigen([2, 1], Float64Array.of(0, 1, 1, 0, 7), undefined);
+ * console.log(batchMember(batch, 0).values, batchMember(batch, 1).values); // −1 and 1; 7
+ * ```
+ *
  * @param orders - the order n of each matrix
  * @param re - the matrices one after the other, each row-major with n² numbers
  * @param im - imaginary parts, or absent where all are real

@@ -17,9 +17,13 @@ export interface HermitianEigen {
  * `high`, both included. What is absent does not restrict.
  */
 export interface EigenWindow {
+  /** First index wanted, 0 unless given. */
   readonly from?: number;
+  /** Index after the last one wanted, n unless given. */
   readonly to?: number;
+  /** Smallest eigenvalue wanted. */
   readonly low?: number;
+  /** Largest eigenvalue wanted. */
   readonly high?: number;
 }
 

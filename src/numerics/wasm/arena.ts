@@ -9,10 +9,13 @@ import { type Kernels, newKernels } from "./runtime.js";
 
 /** A sparse matrix that stays in the memory of a {@link SparseArena}. */
 export interface Resident {
+  /** Number of rows. */
   readonly rows: number;
+  /** Number of columns. */
   readonly cols: number;
   /** Number of stored entries. */
   readonly entries: number;
+  /** Whether it has imaginary parts. */
   readonly complex: boolean;
   /** Whether it equals its adjoint, exactly. */
   readonly hermitian: boolean;
@@ -31,7 +34,10 @@ interface Place {
 }
 
 /** A memory mark of {@link SparseArena.mark}. */
-export type ArenaMark = number & { readonly brand?: "ArenaMark" };
+export type ArenaMark = number & {
+  /** Tells a mark from other numbers; never there. */
+  readonly brand?: "ArenaMark";
+};
 
 /**
  * Sparse matrices that stay in WebAssembly memory, so that products and commutators of large operators cost no copies:
@@ -40,13 +46,32 @@ export type ArenaMark = number & { readonly brand?: "ArenaMark" };
  * Each arena has a memory of its own, which is freed with it. Inside, matrices are stacked: {@link SparseArena.release}
  * frees everything that came after a mark. Memory never shrinks but is used again. Without WebAssembly the arena keeps
  * plain arrays and works all the same.
+ *
+ * ```ts
+ * import { Operator } from "goodbasis";
+ * import { SparseArena } from "goodbasis/kernels";
+ *
+ * const arena = new SparseArena();
+ * const hop = Operator.fromTriplets(1000, Array.from({ length: 999 }, (_, k) => [k, k + 1, 1]));
+ * const field = Operator.from({ diagonal: Array.from({ length: 1000 }, (_, k) => k) });
+ * const [h, x] = [hop.plus(hop.adjoint()), field].map(({ csr }) => arena.load(csr, { hermitian: true }));
+ * if (h !== undefined && x !== undefined) {
+ *   const mark = arena.mark();
+ *   const { value, error } = arena.commutator(h, x);
+ *   console.log(arena.frobenius(value), error); // √1998, and a bound on what rounding did
+ *   arena.release(mark); // h and x stay
+ * }
+ * ```
  */
 export class SparseArena {
   readonly #kernels: Kernels | undefined;
   readonly #places = new Map<Resident, Place>();
   #end: number;
 
-  /** @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent */
+  /**
+   * @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent
+   * @internal
+   */
   constructor(kernels: { readonly own: Kernels | undefined } = { own: newKernels() }) {
     this.#kernels = kernels.own;
     this.#end = kernels.own === undefined ? 0 : kernels.own.exports.heapStart.value;
