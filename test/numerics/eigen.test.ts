@@ -49,6 +49,16 @@ function solvedBy(engine: EigenEngine, of: Sample, tuning?: EigenTuning): Hermit
   return found;
 }
 
+/** Requires 20 n u of a few eigenpairs of a large matrix, spread over the whole spectrum, against all others. */
+function expectSolved(of: Sample, solve: (n: number, re: Float64Array, im?: Float64Array) => HermitianEigen): void {
+  const { n } = of;
+  const found = solve(n, of.re, of.im);
+  const which = list(24, (k) => Math.floor((k * (n - 1)) / 23));
+  const { residual, orthogonality } = quality(of, found, which);
+  expect(residual, `residual, n = ${n}`).toBeLessThanOrEqual(20);
+  expect(orthogonality, `orthogonality, n = ${n}`).toBeLessThanOrEqual(20);
+}
+
 /** Requires known eigenvalues (any order) within 20 n u of the largest. */
 function expectValues(found: HermitianEigen, known: readonly number[]): void {
   const sorted = [...known].sort((a, b) => a - b);
@@ -78,23 +88,53 @@ describe.each(ENGINES)("hermitianEigen by %s", (_engine, engine) => {
   it.each([false, true])(
     "solves random matrices of orders up to 70 and next to every bound (complex: %s)",
     (complex) => {
-      for (const n of [...list(70, (k) => k + 1), 95, 96, 97, 98, 127, 128, 129, 130, 191, 192, 193, 194]) {
+      for (const n of [
+        ...list(70, (k) => k + 1),
+        79,
+        80,
+        81,
+        82,
+        95,
+        96,
+        97,
+        98,
+        127,
+        128,
+        129,
+        130,
+        191,
+        192,
+        193,
+        194,
+      ]) {
         solved(randomSample(n, complex, n));
       }
     },
   );
 
   it.each([false, true])("solves random matrices of large orders (complex: %s)", (complex) => {
-    for (const n of engine === wasmEigen ? [255, 256, 257, 258, 511, 512, 513, 600] : [257]) {
-      const of = randomSample(n, complex, n);
-      const found = hermitianEigen(n, of.re, of.im);
-      const { residual, orthogonality } = quality(
-        of,
-        found,
-        list(24, (k) => Math.floor((k * (n - 1)) / 23)),
-      );
-      expect(residual).toBeLessThanOrEqual(20);
-      expect(orthogonality).toBeLessThanOrEqual(20);
+    // Widths and thresholds of both engines, and the strips of their products.
+    const bounds = [199, 200, 201, 255, 256, 257, 258, 287, 288, 289, 290, 299, 300, 301, 302];
+    const larger = [319, 320, 321, 383, 384, 385, 386, 511, 512, 513, 514, 576, 577, 600];
+    for (const n of [...bounds, ...larger]) {
+      expectSolved(randomSample(n, complex, n), hermitianEigen);
+    }
+  });
+
+  it.each([false, true])("solves hard spectra of large orders (complex: %s)", (complex) => {
+    const n = 330;
+    const spectra: ((k: number) => number)[] = [
+      (k) => k % 10,
+      (k) => (k % 4) + (1e-14 * k) / n,
+      (k) => (k % 4) + (1e-10 * k) / n,
+      (k) => (k % 4) + (1e-6 * k) / n,
+      (k) => 10 ** ((-300 * k) / n),
+      (k) => (k < n / 3 ? 1 : 0),
+      (k) => (k % 2 === 0 ? 1 : -1),
+    ];
+    for (const [seed, value] of spectra.entries()) {
+      const diagonal = sample(n, complex, (i, j) => [i === j ? value(i) : 0, 0]);
+      expectSolved(conjugated(diagonal, 12, seed + 1), hermitianEigen);
     }
   });
 

@@ -249,6 +249,7 @@ describe.each([
           d,
         ),
       ).toBeLessThanOrEqual(half.error);
+      expect(half.error).toBeLessThanOrEqual(2 * whole.error);
       expect(Math.abs(arena.frobenius(half.value) / arena.frobenius(whole.value) - 1)).toBeLessThan(1e-14);
     }
     const arena = make();
