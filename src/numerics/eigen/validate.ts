@@ -46,7 +46,7 @@ export function requireHermitian(
   at = 0,
 ): void {
   const check = upper === "check";
-  if (hasOnlyFinite(n, re, im, at) && (!check || isConjugate(n, re, im, at))) return;
+  if (check ? isExactlyHermitian(n, re, im, at) : hasOnlyFinite(n, re, im, at)) return;
   refuseInfinite(where, n, re, im, check, at);
   if (check) refuseUpper(where, n, re, im, at);
 }
@@ -69,25 +69,32 @@ function hasOnlyFinite(n: number, re: Float64Array, im: Float64Array | undefined
   return probe + probeIm === 0;
 }
 
-/** Whether the upper triangle is the conjugate of the lower one, exactly. */
-function isConjugate(n: number, re: Float64Array, im: Float64Array | undefined, at: number): boolean {
+/** Whether the matrix is finite and its upper triangle exactly the conjugate of the lower one. */
+function isExactlyHermitian(n: number, re: Float64Array, im: Float64Array | undefined, at: number): boolean {
   return isMirrored(n, re, 1, at) && (im === undefined || isMirrored(n, im, -1, at));
 }
 
-/** Whether m_ji = sign · m_ij throughout; tile by tile, since the one runs along rows and the other along columns. */
+/**
+ * Whether m_ji = sign · m_ij throughout, and finite; tile by tile, since the one runs along rows and the other along columns.
+ */
 function isMirrored(n: number, m: Float64Array, sign: number, at: number): boolean {
+  // NaN is unequal to itself; 0 · x is NaN where x is infinite.
+  let probe = 0;
   for (let i0 = 0; i0 < n; i0 += TILE) {
     const i1 = Math.min(n, i0 + TILE);
     for (let j0 = 0; j0 <= i0; j0 += TILE) {
       for (let i = i0; i < i1; i++) {
         const row = at + i * n;
         const j1 = Math.min(i + 1, j0 + TILE);
-        for (let j = j0, l = at + j0 * n + i; j < j1; j++, l += n)
-          if (m[row + j] !== sign * (m[l] as number)) return false;
+        for (let j = j0, l = at + j0 * n + i; j < j1; j++, l += n) {
+          const x = m[row + j] as number;
+          if (x !== sign * (m[l] as number)) return false;
+          probe += 0 * x;
+        }
       }
     }
   }
-  return true;
+  return probe === 0;
 }
 
 /** Names the first entry that is NaN or infinite, in the lower triangle or in the whole matrix. */
