@@ -388,6 +388,9 @@ describe.each(ENGINES)("hermitianEigen by %s", (_engine, engine) => {
     expect(() => hermitianEigen(2, Float64Array.of(1, 0, 0, Number.NaN), undefined)).toThrow("entry (1, 1) is NaN");
     expect(codeOf(() => hermitianEigen(2, new Float64Array(3), undefined))).toBe("shape");
     expect(codeOf(() => hermitianEigen(2, new Float64Array(4), new Float64Array(3)))).toBe("shape");
+    const rows = JSON.parse("[[0, 1], [1, 0]]");
+    expect(codeOf(() => hermitianEigen(2, rows, undefined))).toBe("shape");
+    expect(codeOf(() => hermitianEigen(2, new Float64Array(4), rows))).toBe("shape");
     expect(codeOf(() => hermitianEigen(1.5, new Float64Array(2), undefined))).toBe("shape");
   });
 

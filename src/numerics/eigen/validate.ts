@@ -15,6 +15,13 @@ export function requireShape(
   im: Float64Array | undefined,
 ): void {
   const length = count * n * n;
+  if (!(re instanceof Float64Array) || !(im === undefined || im instanceof Float64Array)) {
+    throw new GoodBasisError(
+      "shape",
+      `${where}: expected the entries as Float64Array, real and imaginary parts apart, got another kind of value; ` +
+        "pass Float64Array.from(rows.flat()), or operator.dense().re and .im",
+    );
+  }
   if (Number.isInteger(n) && n >= 0 && re.length === length && (im === undefined || im.length === length)) return;
   throw new GoodBasisError(
     "shape",
