@@ -7,7 +7,12 @@ const root = fileURLToPath(new URL("..", import.meta.url));
 const config: ViteUserConfig = defineConfig({
   root,
   plugins: [snippetModules(root)],
-  resolve: { alias: [{ find: /^goodbasis$/, replacement: `${root}src/index.ts` }] },
+  resolve: {
+    alias: [
+      { find: /^goodbasis$/, replacement: `${root}src/index.ts` },
+      { find: /^goodbasis\/kernels$/, replacement: `${root}src/numerics/kernels.ts` },
+    ],
+  },
   test: {
     include: ["test/**/*.test.ts"],
     globalSetup: ["test/build.ts"],

@@ -10,7 +10,7 @@ export interface Dense {
 const DEPTH = 64;
 
 /**
- * The product of two dense n × n row-major matrices, blocked over the inner index.
+ * The product of two dense n × n row-major matrices, blocked over the inner index (common practice).
  *
  * Any real entry takes at most n roundings on its longest path, any complex one n + 1 (four-multiplication products).
  *

@@ -1,20 +1,24 @@
 import { GoodBasisError } from "../errors.js";
 import { components } from "./eigen/components.js";
 import { defaultEngine } from "./eigen/engine.js";
-import type { EigenEngine, EigenSolved, EigenTuning, EigenWindow, HermitianEigen } from "./eigen/types.js";
-import { refuseUpper, requireFinite, requireShape, requireWindow } from "./eigen/validate.js";
+import type {
+  EigenEngine,
+  EigenSolved,
+  EigenTuning,
+  EigenWindow,
+  HermitianEigen,
+  UpperTriangle,
+} from "./eigen/types.js";
+import { requireHermitian, requireShape, requireWindow } from "./eigen/validate.js";
 
-export type { EigenWindow, HermitianEigen } from "./eigen/types.js";
+export type { EigenWindow, HermitianEigen, UpperTriangle } from "./eigen/types.js";
 
 /** What {@link hermitianEigen} may be told besides the matrix. */
 export interface EigenOptions {
   /** Which eigenpairs are wanted; all of them where absent. Vectors outside are not transformed back. */
   readonly window?: EigenWindow;
-  /**
-   * `"ignore"` (the default) takes the lower triangle as the matrix; `"check"` refuses a matrix whose upper triangle is
-   * not the conjugate of the lower one to within n units roundoff of the largest entry.
-   */
-  readonly upper?: "ignore" | "check";
+  /** `"check"` unless told: a matrix that is not Hermitian is refused. The solver itself reads the lower triangle alone. */
+  readonly upper?: UpperTriangle;
 }
 
 /**
@@ -29,15 +33,23 @@ export interface EigenOptions {
  * larger orders, divide and conquer (Cuppen, Numer. Math. 36, 177 (1981); Gu and Eisenstat, SIAM J. Matrix Anal. Appl.
  * 16, 172 (1995)).
  *
+ * ```ts
+ * import { hermitianEigen } from "goodbasis/kernels";
+ *
+ * // σy: imaginary parts −i, i; eigenvalues −1 and 1.
+ * const { values, re, im } = hermitianEigen(2, new Float64Array(4), Float64Array.of(0, -1, 1, 0));
+ * console.log(values, re.subarray(0, 2), im?.subarray(0, 2)); // the second and third: the vector of −1
+ * ```
+ *
  * @param n - dimension, zero allowed
- * @param re - row-major n × n, real parts; only the lower triangle is read unless `upper` says otherwise; nothing is
- * changed
+ * @param re - row-major n × n, real parts; nothing is changed
  * @param im - imaginary parts, those of the diagonal taken as zero; absent for a real symmetric matrix
- * @param options - window of eigenpairs, check of the upper triangle
+ * @param options - window of eigenpairs; whether the upper triangle is checked
  * @returns eigenvalues ascending, eigenvectors as rows; `im` is absent exactly where it was absent in the input
- * @throws GoodBasisError `shape` when an array has not n² numbers; `not-finite` when an entry of the lower triangle is
- * NaN or infinite, or an eigenvalue lies beyond the largest double; `not-hermitian` when `upper` is `"check"` and the
- * triangles differ; `option` for a window that is not one; `no-convergence` when an iteration exceeds its bound
+ * @throws GoodBasisError `shape` when an array has not n² numbers; `not-finite` when an entry is NaN or infinite, or an
+ * eigenvalue lies beyond the largest double; `not-hermitian` when the triangles are not conjugate (unless `upper` is
+ * `"ignore"`, which looks at the lower one alone); `option` for a window that is not one; `no-convergence` when an
+ * iteration exceeds its bound
  */
 export function hermitianEigen(
   n: number,
@@ -69,10 +81,9 @@ export function hermitianEigenBy(
   tuning?: EigenTuning,
 ): HermitianEigen {
   requireShape("hermitianEigen", n, 1, re, im);
-  const { window = {}, upper = "ignore" } = options;
+  const { window = {}, upper = "check" } = options;
   requireWindow("hermitianEigen", n, window);
-  requireFinite("hermitianEigen", n, re, im);
-  if (upper === "check") refuseUpper("hermitianEigen", n, re, im);
+  requireHermitian("hermitianEigen", n, re, im, upper);
   const parts = components(n, re, im);
   const found =
     parts !== undefined

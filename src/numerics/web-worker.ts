@@ -3,15 +3,21 @@ import type { PoolWorker } from "./workers.js";
 
 /** The part of a browser's `Worker` that a pool uses. */
 export interface BrowserWorker {
+  /** Sends something; the arrays in `transfer` move to the worker. */
   postMessage(message: unknown, transfer: ArrayBuffer[]): void;
+  /** Who hears what the worker sends. */
   addEventListener(kind: "message", listener: (event: { readonly data: unknown }) => void): void;
+  /** Who hears that something went wrong in the worker. */
   addEventListener(kind: "error" | "messageerror", listener: (event: { readonly message?: string }) => void): void;
+  /** Ends the worker. */
   terminate(): void;
 }
 
 /** The part of a worker's global scope that it needs to answer. */
 export interface BrowserWorkerScope {
+  /** Sends something to the page; the arrays in `transfer` move there. */
   postMessage(message: unknown, transfer: ArrayBufferLike[]): void;
+  /** Who hears what the page sends. */
   addEventListener(kind: "message", listener: (event: { readonly data: unknown }) => void): void;
 }
 

@@ -1,25 +1,44 @@
 import { type ErrorCode, GoodBasisError } from "../errors.js";
 import { batchedHermitianEigen, batchedHermitianEigenBy, type HermitianEigenBatch } from "./eigen/batch.js";
 import { defaultEngine } from "./eigen/engine.js";
+import type { UpperTriangle } from "./eigen/types.js";
 
 /** What a pool asks of a worker: the eigenpairs of some matrices, laid out as for `batchedHermitianEigen`. */
 export interface PoolRequest {
+  /** The order of each matrix. */
   readonly orders: Int32Array;
+  /** The matrices, one after the other; real parts. */
   readonly re: Float64Array;
+  /** Imaginary parts, or absent where all are real. */
   readonly im: Float64Array | undefined;
-  readonly upper: "ignore" | "check";
+  /** Whether the upper triangles are checked. */
+  readonly upper: UpperTriangle;
   /** Where the results go, in memory that both threads share; absent where they are to be sent back. */
   readonly into: HermitianEigenBatch | undefined;
 }
 
 /** What a worker answers: that the results are written, the results themselves, or the error that it met. */
 export type PoolAnswer =
-  | { readonly written: true }
-  | { readonly values: Float64Array; readonly re: Float64Array; readonly im: Float64Array | undefined }
   | {
+      /** The results are in the shared memory. */
+      readonly written: true;
+    }
+  | {
+      /** Ascending eigenvalues of every matrix. */
+      readonly values: Float64Array;
+      /** Eigenvectors as rows; real parts. */
+      readonly re: Float64Array;
+      /** Imaginary parts in the same order. */
+      readonly im: Float64Array | undefined;
+    }
+  | {
+      /** A GoodBasisError, taken apart to be sent. */
       readonly error: {
+        /** Its code. */
         readonly code: ErrorCode;
+        /** Its message. */
         readonly message: string;
+        /** Its details. */
         readonly details: Readonly<Record<string, unknown>>;
       };
     };

@@ -66,6 +66,17 @@ const HELD = 2;
  *
  * The result is the same, bit for bit, with any number of workers and with none: every matrix is solved by the same code,
  * whoever runs it. A worker that dies rejects the batch it worked for, naming the matrices; the next batch gets a new one.
+ *
+ * ```ts no-run
+ * import { KernelPool } from "goodbasis/kernels";
+ * import { nodeWorker } from "goodbasis/node";
+ *
+ * const pool = new KernelPool({ factory: () => nodeWorker(), size: 3 });
+ * const orders = new Int32Array(1000).fill(20);
+ * const batch = await pool.batchedHermitianEigen(orders, new Float64Array(1000 * 400), undefined);
+ * pool.close();
+ * console.log(batch.values);
+ * ```
  */
 export class KernelPool {
   readonly #factory: WorkerFactory;
@@ -100,7 +111,7 @@ export class KernelPool {
    * @param orders - the order n of each matrix
    * @param re - the matrices one after the other; copied before they are sent
    * @param im - imaginary parts, or absent where all are real
-   * @param options - check of the upper triangles
+   * @param options - whether the upper triangles are checked; they are unless told
    * @throws GoodBasisError (as a rejection) as `batchedHermitianEigen`; `worker` when a worker dies, with the first and
    * last matrix it was working on
    */
@@ -156,7 +167,7 @@ export class KernelPool {
       run.tasks.shift();
       seat.held.push({ run, task });
       const { orders, rowStart, rows, start, end } = task;
-      const upper = run.options.upper ?? "ignore";
+      const upper = run.options.upper ?? "check";
       if (isShared(run.out.values)) {
         const part = (m: Float64Array): Float64Array => m.subarray(start, end);
         const values = run.out.values.subarray(rowStart, rowStart + rows);

@@ -73,7 +73,7 @@ export function uncertainScale(a: Uncertain, z: Complex): Uncertain {
   const out = new Float64Array(csr.col.length);
   for (let e = 0; e < out.length; e++) {
     const own = factor * radiusAt(a, e);
-    out[e] = roundUp(own + rounding * factor * modulusAbove(a.csr, e) + (exact ? 0 : 2 * UNDERFLOW));
+    out[e] = roundUp(own + rounding * (factor * modulusAbove(a.csr, e)) + (exact ? 0 : 2 * UNDERFLOW));
   }
   return settle("scale", csr, out);
 }

@@ -1,16 +1,10 @@
 import type { Csr } from "../numerics/csr.js";
-import { type Dense, multiplyDense } from "../numerics/dense.js";
+import { partsRounding } from "../numerics/dense-parts.js";
 import { gamma, roundUp, UNDERFLOW, UNIT_ROUNDOFF } from "../numerics/rounding.js";
-import {
-  addModuliProduct,
-  commutator,
-  diagonalOf,
-  fromDense,
-  maxRowEntries,
-  multiply,
-  toDense,
-} from "../numerics/sparse.js";
-import { DENSE_COMMUTATOR_TO, denseCommutator } from "./dense-commutator.js";
+import { addModuliProduct, commutator, diagonalOf, maxRowEntries, multiply } from "../numerics/sparse.js";
+import { denseCommutator } from "./dense-commutator.js";
+import { keepNonzero } from "./dense-form.js";
+import { denseProduct } from "./dense-product.js";
 import {
   boundModulus,
   fitsGrid,
@@ -22,13 +16,16 @@ import {
   type Radius,
   radiiOf,
   radiusAt,
+  raisedRadii,
   type Uncertain,
   uniformError,
 } from "./radius.js";
 import { settle } from "./settle.js";
 
-/** Smallest dimension for which the dense kernel is worth its set-up. */
-const DENSE_FROM = 24;
+/** Smallest dimension for which dense rows are worth their set-up. */
+const DENSE_FROM = 8;
+/** The same for commutators, whose sparse rows cost more. */
+const DENSE_COMMUTATOR_FROM = 2;
 
 /** Whether more than a quarter of all places hold an entry. */
 export function isDenselyFilled(csr: Csr): boolean {
@@ -40,29 +37,32 @@ export function isDenselyFilled(csr: Csr): boolean {
  *
  *     Σ_k ( |a_ik| r_kj + r_ik |b_kj| + r_ik r_kj )  +  c Σ_k |a_ik| |b_kj|  +  underflow,
  *
- * c = γ_K for real and √2 γ_{K+1} for complex factors with at most K terms a sum (Higham, Accuracy and Stability of Numerical
- * Algorithms, §3.1 and §3.6; each part of a complex sum has errors γ Σ|a||b| by Cauchy–Schwarz). Nothing is added for
- * rounding where the arithmetic is exact: dyadic numbers that fit into 53 bits, and factors that only permute and scale by
- * powers of two.
+ * c the constant of `partsRounding` for at most K terms a sum. Nothing is added for rounding where the arithmetic is exact:
+ * dyadic numbers that fit into 53 bits, and factors that only permute and scale by powers of two.
  */
 export function uncertainProduct(a: Uncertain, b: Uncertain): Uncertain {
   const complex = a.csr.im !== undefined || b.csr.im !== undefined;
   const terms = hasSingleColumns(b.csr) ? 1 : Math.max(1, maxRowEntries(a.csr));
-  const rounding = isExactProduct(a.csr, b.csr, terms) ? 0 : productRounding(terms, complex);
-  const underflow = rounding === 0 ? 0 : 2 * terms * UNDERFLOW;
-  if (isDenseCase(a.csr, b.csr)) return denseProduct(a, b, rounding, underflow, terms);
+  const rounding = isExactProduct(a.csr, b.csr, terms) ? 0 : partsRounding(terms, complex);
+  if (isDenseCase(a.csr, b.csr, DENSE_FROM)) {
+    const { value, radius } = denseProduct(a, b, rounding, terms);
+    return settle("times", ...keepNonzero(a.csr.rows, value, radius));
+  }
   const csr = multiply(a.csr, b.csr);
-  return settle("times", csr, productRadius(csr, [[a, b]], rounding, underflow, terms));
-}
-
-function productRounding(terms: number, complex: boolean): number {
-  return complex ? Math.SQRT2 * (1 + 2 * UNIT_ROUNDOFF) * gamma(terms + 1) : gamma(terms);
+  return settle("times", csr, productRadius(csr, [[a, b]], rounding, terms));
 }
 
 function isExactProduct(a: Csr, b: Csr, terms: number): boolean {
   if (terms === 1 && isPowers(a)) return isAwayFromUnderflow(b);
   if (terms === 1 && isPowers(b)) return isAwayFromUnderflow(a);
   return isOnGrid(a, b, terms);
+}
+
+/** Whether two square matrices of one order, at least `from`, are filled enough for dense rows, and no product of theirs underflows. */
+function isDenseCase(a: Csr, b: Csr, from: number): boolean {
+  const n = a.rows;
+  if (n < from || a.cols !== n || b.rows !== n || b.cols !== n) return false;
+  return isDenselyFilled(a) && isDenselyFilled(b) && isAwayFromUnderflow(a) && isAwayFromUnderflow(b);
 }
 
 /** Whether no column holds two entries: every entry of a product with it on the right is then one term. */
@@ -76,36 +76,46 @@ function hasSingleColumns(csr: Csr): boolean {
   return true;
 }
 
-/** The radii of Σ ±XY over the given factor pairs at the entries of `csr`. */
+/**
+ * The radii of Σ ±XY over the given factor pairs at the entries of `csr`.
+ *
+ * Underflow. Where every part is zero or 2^−450 at least there is none, radii being raised to 2^−520. Otherwise, η the
+ * smallest positive number: each of at most 2K products in a part of the value is off by η/2, which its sums hardly change
+ * (1.42 K η for both parts); so is each of the two products that a term contributes to the radius (K η): 3 K η in all, K the
+ * terms of an entry. And c |b| is raised by η before it meets |a|, which may be large.
+ */
 function productRadius(
   csr: Csr,
   pairs: readonly (readonly [Uncertain, Uncertain])[],
   rounding: number,
-  underflow: number,
   terms: number,
 ): Radius {
+  const safe = pairs.every(([a, b]) => isAwayFromUnderflow(a.csr) && isAwayFromUnderflow(b.csr));
   const uniform = pairs.every(([a, b]) => uniformError(a.radius) !== undefined && uniformError(b.radius) !== undefined);
   const out = new Float64Array(csr.col.length);
   let relative = 0;
   for (const [a, b] of pairs) {
     const ua = uniformError(a.radius) ?? 0;
     const ub = uniformError(b.radius) ?? 0;
-    if (uniform) {
+    if (uniform && (safe || ua + ub === 0)) {
       relative = ua + ub + ua * ub + rounding;
-      if (relative === 0) continue;
+      if (relative === 0) return "exact";
       // One term without rounding, one factor exact: the result has the half unit of its own entries.
       if (relative === UNIT_ROUNDOFF && terms === 1 && pairs.length === 1) return "default";
       const right = moduliAbove(b.csr);
-      for (let f = 0; f < right.length; f++) right[f] = relative * (right[f] as number);
+      for (let f = 0; f < right.length; f++) {
+        const modulus = right[f] as number;
+        right[f] = modulus === 0 ? 0 : relative * modulus + UNDERFLOW;
+      }
       addModuliProduct(csr, a.csr, moduliAbove(a.csr), b.csr, right, out);
     } else {
-      const { left, first, second, third } = radiusFactors(a, b, rounding);
+      const { left, first, second, third } = radiusFactors(a, b, rounding, safe);
       addModuliProduct(csr, a.csr, left, b.csr, first, out);
       if (second !== undefined) addModuliProduct(csr, a.csr, second, b.csr, third, out);
     }
   }
-  if (uniform && relative === 0 && underflow === 0) return "exact";
-  for (let g = 0; g < out.length; g++) out[g] = roundUp((out[g] as number) + underflow, 2 * terms + 8);
+  const underflow = safe ? 0 : 3 * terms * UNDERFLOW;
+  for (let g = 0; g < out.length; g++) out[g] = roundUp((out[g] as number) + underflow, 2 * terms + 12);
   return out;
 }
 
@@ -114,66 +124,18 @@ function radiusFactors(
   a: Uncertain,
   b: Uncertain,
   rounding: number,
+  safe: boolean,
 ): { left: Float64Array; first: Float64Array; second: Float64Array | undefined; third: Float64Array } {
-  const first = radiiOf(b).slice();
+  const radii = safe ? raisedRadii : radiiOf;
+  const first = radii(b).slice();
   const third = moduliAbove(b.csr);
   for (let f = 0; f < first.length; f++) {
     const modulus = third[f] as number;
     const radius = first[f] as number;
-    first[f] = radius + rounding * modulus;
+    first[f] = radius + (rounding === 0 || modulus === 0 ? 0 : rounding * modulus + UNDERFLOW);
     third[f] = modulus + radius;
   }
-  return { left: moduliAbove(a.csr), first, second: a.radius === "exact" ? undefined : radiiOf(a), third };
-}
-
-function isDenseCase(a: Csr, b: Csr): boolean {
-  const n = a.rows;
-  if (n < DENSE_FROM || a.cols !== n || b.cols !== n) return false;
-  return isDenselyFilled(a) && isDenselyFilled(b) && isAwayFromUnderflow(a) && isAwayFromUnderflow(b);
-}
-
-function denseProduct(a: Uncertain, b: Uncertain, rounding: number, underflow: number, terms: number): Uncertain {
-  const n = a.csr.rows;
-  const value = multiplyDense(n, toDense(a.csr), toDense(b.csr));
-  if (rounding === 0 && a.radius === "exact" && b.radius === "exact") {
-    return settle("times", fromDense(n, n, value.re, value.im), "exact");
-  }
-  const { left, first, second, third } = radiusFactors(a, b, rounding);
-  const bounds = multiplyDense(n, spread(a.csr, left), spread(b.csr, first)).re;
-  const more = second === undefined ? undefined : multiplyDense(n, spread(a.csr, second), spread(b.csr, third)).re;
-  for (let k = 0; k < bounds.length; k++) {
-    const sum = (bounds[k] as number) + (more === undefined ? 0 : (more[k] as number));
-    bounds[k] = sum === 0 ? 0 : roundUp(sum + underflow, 2 * terms + 8);
-  }
-  return settle("times", ...keepNonzero(n, value, bounds));
-}
-
-/** Numbers attached to the entries, spread over a dense matrix. */
-function spread(csr: Csr, values: Float64Array): Dense {
-  return toDense({ ...csr, re: values, im: undefined });
-}
-
-/** Sparse rows of all places where the value or its radius is not zero. */
-function keepNonzero(n: number, value: Dense, bounds: Float64Array): [Csr, Float64Array] {
-  const pattern = fromDense(
-    n,
-    n,
-    bounds.map((radius, k) => (radius !== 0 || value.re[k] !== 0 || (value.im?.[k] ?? 0) !== 0 ? 1 : 0)),
-  );
-  const count = pattern.col.length;
-  const re = new Float64Array(count);
-  const im = value.im === undefined ? undefined : new Float64Array(count);
-  const radius = new Float64Array(count);
-  for (let row = 0; row < n; row++) {
-    const end = pattern.ptr[row + 1] as number;
-    for (let e = pattern.ptr[row] as number; e < end; e++) {
-      const k = row * n + (pattern.col[e] as number);
-      re[e] = value.re[k] as number;
-      radius[e] = bounds[k] as number;
-      if (im !== undefined && value.im !== undefined) im[e] = value.im[k] as number;
-    }
-  }
-  return [{ ...pattern, re, im }, radius];
+  return { left: moduliAbove(a.csr), first, second: a.radius === "exact" ? undefined : radii(a), third };
 }
 
 /**
@@ -190,20 +152,22 @@ export function uncertainCommutator(a: Uncertain, b: Uncertain): Uncertain {
     return settle("commutator", csr, diagonalRadius(csr, b, a));
   }
   const complex = a.csr.im !== undefined || b.csr.im !== undefined;
-  const terms = maxRowEntries(a.csr) + maxRowEntries(b.csr);
-  const rounding = isOnGrid(a.csr, b.csr, terms) ? 0 : productRounding(terms, complex);
-  const underflow = rounding === 0 ? 0 : 2 * terms * UNDERFLOW;
-  const n = a.csr.rows;
-  if (n <= DENSE_COMMUTATOR_TO && isDenselyFilled(a.csr) && isDenselyFilled(b.csr)) {
-    const { value, radius } = denseCommutator(a, b, rounding, underflow, terms);
-    return settle("commutator", ...keepNonzero(n, value, radius));
+  const [left, right] = [maxRowEntries(a.csr), maxRowEntries(b.csr)];
+  const terms = left + right;
+  const exact = isOnGrid(a.csr, b.csr, terms);
+  if (isDenseCase(a.csr, b.csr, DENSE_COMMUTATOR_FROM)) {
+    const longest = Math.max(left, right);
+    const rounding = exact ? 0 : partsRounding(longest, complex, 1);
+    const { value, radius } = denseCommutator(a, b, rounding, longest);
+    return settle("commutator", ...keepNonzero(a.csr.rows, value, radius));
   }
+  const rounding = exact ? 0 : partsRounding(terms, complex);
   const csr = commutator(a.csr, b.csr);
   const pairs = [
     [a, b],
     [b, a],
   ] as const;
-  return settle("commutator", csr, productRadius(csr, pairs, rounding, underflow, terms));
+  return settle("commutator", csr, productRadius(csr, pairs, rounding, terms));
 }
 
 /** Whether every partial sum of up to `terms` products is a double-precision number. */
@@ -241,9 +205,11 @@ function diagonalRadius(csr: Csr, d: Uncertain, b: Uncertain): Radius {
       const modulus = modulusAbove(b.csr, f);
       const radius = radiusAt(b, f);
       const spreadOf = (own[row] as number) + (own[c] as number);
-      const sum = spreadOf * (modulus + radius) + gap * (radius + rounding * modulus);
-      const tiny = gap === 0 || exact ? 0 : 2 * UNDERFLOW;
-      out[g++] = roundUp(sum + tiny, 16);
+      const factor = exact || modulus === 0 ? radius : radius + rounding * modulus + UNDERFLOW;
+      const sum = spreadOf * (modulus + radius) + gap * factor;
+      // Up to four products in the value and two in the radius, each off by half the smallest positive number.
+      const certain = (spreadOf === 0 || modulus + radius === 0) && (gap === 0 || factor === 0);
+      out[g++] = certain ? 0 : roundUp(sum + 4 * UNDERFLOW, 16);
     }
   }
   return out;

@@ -47,7 +47,15 @@ export function moduliAbove(csr: Csr): Float64Array {
 export function radiusAt(matrix: Uncertain, e: number): number {
   const { radius } = matrix;
   if (radius === "exact") return 0;
-  return radius === "default" ? UNIT_ROUNDOFF * modulusAbove(matrix.csr, e) : (radius[e] as number);
+  return radius === "default" ? halfUnit(modulusAbove(matrix.csr, e)) : (radius[e] as number);
+}
+
+/**
+ * An upper bound on half a unit in the last place of a number of the given modulus: u times it, and below the normal range,
+ * where units do not shrink any more and u times it would vanish, the smallest positive number. Zero is exact.
+ */
+function halfUnit(modulus: number): number {
+  return modulus === 0 ? 0 : UNIT_ROUNDOFF * modulus + UNDERFLOW;
 }
 
 /** The radii of all entries, written out. */
@@ -56,9 +64,19 @@ export function radiiOf(matrix: Uncertain): Float64Array {
   if (radius instanceof Float64Array) return radius;
   if (radius === "exact") return new Float64Array(matrix.csr.re.length);
   const out = moduliAbove(matrix.csr);
-  for (let e = 0; e < out.length; e++) out[e] = UNIT_ROUNDOFF * (out[e] as number);
+  for (let e = 0; e < out.length; e++) out[e] = halfUnit(out[e] as number);
   return out;
 }
+
+/**
+ * The radii of all entries, those that are not zero raised to 2^−520 at least: for entries away from underflow (2^−450) that
+ * is less than their own last digit, and no product with such an entry underflows.
+ */
+export function raisedRadii(matrix: Uncertain): Float64Array {
+  return radiiOf(matrix).map((r) => (r === 0 ? 0 : Math.max(r, LEAST_RADIUS)));
+}
+
+const LEAST_RADIUS = 2 ** -520;
 
 /** Entries that are whole multiples of 2^−bits with parts of modulus at most `max`. */
 export interface Grid {
@@ -107,14 +125,18 @@ export function isPowerOfTwo(x: number): boolean {
   return x === 2 ** Math.round(Math.log2(x));
 }
 
-/** Whether every part is zero or of modulus above 2^−600, so that moderate factors cannot make it underflow. */
+/**
+ * Whether every part is zero or of modulus 2^−450 at least: then neither products of two such numbers underflow nor their
+ * product with the square of the unit roundoff.
+ */
 export function isAwayFromUnderflow(csr: Csr): boolean {
-  const floor = 2 ** -600;
   for (const part of csr.im === undefined ? [csr.re] : [csr.re, csr.im]) {
     for (let e = 0; e < part.length; e++) {
       const x = Math.abs(part[e] as number);
-      if (x !== 0 && x < floor) return false;
+      if (x !== 0 && x < LEAST_PART) return false;
     }
   }
   return true;
 }
+
+const LEAST_PART = 2 ** -450;

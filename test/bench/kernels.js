@@ -57,7 +57,7 @@ def case(kind, n, count):
     return lambda: np.linalg.eigh(a)
 
 run = None
-print(json.dumps(np.__version__), flush=True)
+print(json.dumps([np.__version__, sparse is not None]), flush=True)
 for line in sys.stdin:
     request = json.loads(line)
     if request is None:
@@ -83,8 +83,9 @@ async function startReference() {
     const { value, done } = await lines.next();
     return done ? undefined : JSON.parse(value);
   };
-  const version = await next();
-  if (version === undefined) return undefined;
+  const found = await next();
+  if (found === undefined) return undefined;
+  const [version, hasSciPy] = found;
   /** @param {unknown} request */
   const ask = (request) => {
     python.stdin.write(`${JSON.stringify(request)}\n`);
@@ -92,6 +93,7 @@ async function startReference() {
   };
   return {
     version,
+    hasSciPy,
     /** @param {readonly [kind: string, n: number, count: number]} request */
     prepare: (request) => ask(request),
     run: () => ask(null),
@@ -384,7 +386,9 @@ export async function benchKernels({ only = "", seconds = 4, print = console.log
   const load = loadavg()[0]?.toFixed(1);
   print(
     `kernels: Node ${process.version}, ${availableParallelism()} processors, load ${load}; ` +
-      (reference ? `NumPy ${reference.version}, one thread` : "no NumPy here: ratios to ml-matrix only"),
+      (reference
+        ? `NumPy ${reference.version}, one thread${reference.hasSciPy ? "" : "; SciPy is absent, so nothing stands beside the sparse rows"}`
+        : "the reference is absent: no Python with NumPy here, so there are ratios to ml-matrix only"),
   );
   const measured = [];
   for (const { name, ours, python, reach, ml, factor, beside, besideName, reachBeside, note } of makeRows()) {

@@ -1,5 +1,6 @@
 import { cpus } from "node:os";
 import { parseArgs } from "node:util";
+import { benchKernels } from "./kernels.js";
 import { rings } from "./ring.js";
 import { smallProblems } from "./small.js";
 import { sparseProblems } from "./sparse.js";
@@ -10,17 +11,28 @@ import { sparseProblems } from "./sparse.js";
  * @property {boolean} full - also what takes minutes
  */
 
-const HELP = `npm run bench -- [--only small|ring|sparse] [--quick] [--full]
+const HELP = `npm run bench -- [--only small|ring|sparse|kernels] [--quick] [--full]
 
-Times of the main job, the verdicts beside them. Nothing is asserted.
+Times of the main job, the verdicts beside them, and of the numerical kernels beside NumPy, SciPy (where Python has them) and
+ml-matrix. Nothing is asserted.
 
   --only NAME  one section; may be given several times
   --quick      fewer repetitions and smaller sizes
   --full       also the full matrix of the 12-site ring, measured, and 10^6 kets; takes minutes
   --help       this text`;
 
-/** @type {Readonly<Record<string, (options: BenchOptions) => string>>} */
-const SECTIONS = { small: smallProblems, ring: rings, sparse: sparseProblems };
+/**
+ * The kernels print each row as soon as it is measured.
+ *
+ * @param {BenchOptions} options
+ */
+async function kernels({ quick }) {
+  await benchKernels({ seconds: quick ? 0.5 : 2 });
+  return "";
+}
+
+/** @type {Readonly<Record<string, (options: BenchOptions) => string | Promise<string>>>} */
+const SECTIONS = { small: smallProblems, ring: rings, sparse: sparseProblems, kernels };
 
 const { values } = parseArgs({
   options: {
@@ -43,6 +55,6 @@ if (values.help) {
   console.log(`Node ${process.version}, ${processor?.model ?? "unknown processor"}, ${cpus().length} cores\n`);
   for (const name of chosen) {
     const section = SECTIONS[name];
-    if (section !== undefined) console.log(section({ quick: values.quick, full: values.full }));
+    if (section !== undefined) console.log(await section({ quick: values.quick, full: values.full }));
   }
 }

@@ -7,7 +7,7 @@ import { type BrowserWorker, serveWebWorker, webWorker } from "../../src/numeric
 import { answerRequest, type PoolRequest } from "../../src/numerics/worker-protocol.js";
 import { KernelPool, type PoolWorker, type WorkerFactory } from "../../src/numerics/workers.js";
 import { builtPackage } from "../build.js";
-import { generator } from "./eigen/matrices.js";
+import { randomSample } from "./eigen/matrices.js";
 
 /** Workers run compiled code: those of the package as it was built for the tests. */
 const { nodeWorker } = (await import(pathToFileURL(join(builtPackage, "cli/node-worker.js")).href)) as {
@@ -15,11 +15,13 @@ const { nodeWorker } = (await import(pathToFileURL(join(builtPackage, "cli/node-
 };
 
 function batch(count: number): { orders: Int32Array; re: Float64Array; im: Float64Array } {
-  const next = generator(count);
   const orders = Int32Array.from({ length: count }, (_, k) => (k * 7) % 23);
-  const length = orders.reduce((sum, n) => sum + n * n, 0);
-  const numbers = (): Float64Array => Float64Array.from({ length }, next);
-  return { orders, re: numbers(), im: numbers() };
+  const matrices = Array.from(orders, (n, k) => randomSample(n, true, count + k));
+  return {
+    orders,
+    re: Float64Array.from(matrices.flatMap(({ re }) => [...re])),
+    im: Float64Array.from(matrices.flatMap(({ im = [] }) => [...im])),
+  };
 }
 
 /** A worker inside this thread that answers a little later. */

@@ -151,6 +151,98 @@ describe("radii bound the true error", () => {
     ).toEqual([]);
   });
 
+  describe("where numbers are huge, tiny or subnormal", () => {
+    const pairs = [
+      [1e200, 1e-310],
+      [1e200, 5e-324],
+      [1, 1e-308],
+      [1, 1e-310],
+      [1e-130, 1e-130],
+      [1, 1e-120],
+      [1e-140, 1e-140],
+      [1e-178, 1e-178],
+      [1e-200, 1e-120],
+      [1e-310, 1e-310],
+    ] as const;
+    const made = (n: number, scale: number, seed: number, uncertainty: Uncertainty | undefined): Operator => {
+      const numbers = (shift: number): number[][] =>
+        Array.from({ length: n }, (_, i) =>
+          Array.from({ length: n }, (_, j) => {
+            const x = ((i * 31 + j * 17 + seed * 7 + shift) % 23) / 7 - 1.5;
+            return (i * j + seed) % 5 === 0 ? 0 : Math.abs(scale * x) < 1e300 ? scale * x : x;
+          }),
+        );
+      return Operator.from({ re: numbers(0), im: numbers(5) }, { uncertainty });
+    };
+    for (const n of [3, 8]) {
+      for (const kind of ["exact", undefined, { absolute: 1e-323 }] as const) {
+        test(`products, commutators, multiples (n = ${n}, ${JSON.stringify(kind)})`, () => {
+          for (const [k, [big, small]] of (n === 3
+            ? pairs
+            : pairs.slice(4, typeof kind === "object" ? 5 : 7)
+          ).entries()) {
+            const l = (3 * k) % 5;
+            const [a, b] = [made(n, big, k, kind), made(n, small, l + 9, kind)];
+            const [x, y] = [nearby(a, k + l), nearby(b, k + 2 * l)];
+            const [xy, yx] = [exactProduct(x, y), exactProduct(y, x)];
+            const where = `${big} by ${small}`;
+            expect(violations(a.times(b), xy), where).toEqual([]);
+            expect(violations(a.commutator(b), exactSum(xy, yx, minus)), where).toEqual([]);
+            if (n === 8) continue;
+            expect(violations(b.times(a), yx), where).toEqual([]);
+            const d = Operator.from({ diagonal: [big, -big, big / 3, ...Array(n - 3).fill(0)] }, { uncertainty: kind });
+            const z = nearby(d, k);
+            const expected = exactSum(exactProduct(z, y), exactProduct(y, z), minus);
+            expect(violations(d.commutator(b), expected), where).toEqual([]);
+            const factor = complex(fractionOf(big), fractionOf(-big));
+            const scaled = y.map((row) => row.map((u) => times(factor, u)));
+            expect(violations(b.scale({ re: big, im: -big }), scaled), where).toEqual([]);
+          }
+        });
+      }
+    }
+
+    test("a subnormal entry is known to half a unit only", () => {
+      const a = Operator.from([[3e-323]]);
+      expect(
+        violations(a.scale(1e200), [
+          [
+            complex(
+              fractionOf(3e-323 * 1e200)
+                .mul(4)
+                .div(5),
+              fractionOf(0),
+            ),
+          ],
+        ]),
+      ).not.toEqual([]);
+      // Anything from 2.7e-323 to 3.2e-323 reads as this number.
+      expect(
+        violations(a.scale(1e200), [
+          [complex(fractionOf(3e-323).mul(13).div(12).mul(fractionOf(1e200)), fractionOf(0))],
+        ]),
+      ).toEqual([]);
+    });
+  });
+
+  test("in the commutator of matrices whose rows are filled unequally", () => {
+    for (let seed = 1; seed <= 8; seed++) {
+      const rows = (fill: number, k: number): number[][] =>
+        Array.from({ length: 12 }, (_, i) =>
+          Array.from({ length: 12 }, (_, j) =>
+            (j - i + 12) % 12 < fill ? Math.sin(1 + i * 12 + j + 1000 * k + 7919 * seed) : 0,
+          ),
+        );
+      const exact = { uncertainty: "exact" } as const;
+      const full = Operator.from({ re: rows(12, 1), im: rows(12, 2) }, exact);
+      const narrow = Operator.from({ re: rows(4, 3), im: rows(4, 4) }, exact);
+      const [x, y] = [exactOf(full), exactOf(narrow)];
+      const truth = exactSum(exactProduct(x, y), exactProduct(y, x), minus);
+      expect(violations(full.commutator(narrow), truth)).toEqual([]);
+      expect(violations(narrow.commutator(full), exactSum(exactProduct(y, x), exactProduct(x, y), minus))).toEqual([]);
+    }
+  });
+
   test("where whole numbers outgrow 53 bits", () => {
     const large = 2 ** 30 + 1;
     const rows = [

@@ -1,7 +1,9 @@
 import { GoodBasisError } from "../../errors.js";
 import type { Csr } from "../csr.js";
 import { gamma, roundUp, UNDERFLOW } from "../rounding.js";
-import { commutator, multiply } from "../sparse/product.js";
+import { diagonalOf } from "../sparse/build.js";
+import { completeAntiHermitian, isHermitian } from "../sparse/hermitian.js";
+import { commutator, commutatorUpper, multiply } from "../sparse/product.js";
 import type { Bounded } from "./types.js";
 
 /**
@@ -32,11 +34,14 @@ export function productSparse(a: Csr, b: Csr): Bounded<Csr> {
 }
 
 /**
- * The commutator AB − BA of two sparse square matrices with a bound on its rounding, in plain TypeScript.
+ * The commutator AB − BA of two sparse square matrices with a bound on its rounding, in plain TypeScript. Where both are
+ * exactly Hermitian only the upper triangle is formed, and the result is exactly anti-Hermitian.
  *
  * The bound is that of {@link productSparse} for the joint sum: m_i counts the entries of row i of A and of B, the moduli
  * are Σ |a_ik| |b_kj| + |b_ik| |a_kj|. Where one matrix is diagonal an entry is (a_i − a_j) b_ij: two roundings (three if
- * complex) times at most (|a_i| + |a_j|) |b_ij|, which the same expression covers, since m_i is then at least two.
+ * complex) times at most (|a_i| + |a_j|) |b_ij|, which the same expression covers, since m_i is then at least two (or a_i is
+ * zero and nothing is rounded in the difference). Where the lower triangle is the adjoint of the upper one, so is its error:
+ * the squares of both together are at most twice those of the bounds of the rows.
  *
  * @param a - first matrix
  * @param b - second matrix, of the same order
@@ -44,7 +49,8 @@ export function productSparse(a: Csr, b: Csr): Bounded<Csr> {
  */
 export function commutatorSparse(a: Csr, b: Csr): Bounded<Csr> {
   if (a.rows !== a.cols || b.rows !== b.cols || a.rows !== b.rows) throw shapeError("commutator", a, b);
-  const value = commutator(a, b);
+  const half = diagonalOf(a) === undefined && diagonalOf(b) === undefined && isHermitian(a) && isHermitian(b);
+  const value = half ? completeAntiHermitian(commutatorUpper(a, b)) : commutator(a, b);
   const normsA = rowNorms(a);
   const normsB = rowNorms(b);
   const bound = frobeniusBound(
@@ -53,7 +59,8 @@ export function commutatorSparse(a: Csr, b: Csr): Bounded<Csr> {
     (row) => weightedRow(a, row, normsB) + weightedRow(b, row, normsA),
     (row) => rowLength(a, row) + rowLength(b, row),
   );
-  return { value, error: finishBound(bound, a, b, value) };
+  const whole = half ? { ...bound, squares: 2 * bound.squares } : bound;
+  return { value, error: finishBound(whole, a, b, value) };
 }
 
 const complexPair = (a: Csr, b: Csr): boolean => a.im !== undefined || b.im !== undefined;

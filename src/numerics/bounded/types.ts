@@ -8,6 +8,7 @@ export interface Square extends Dense {
 
 /** A computed matrix, and how far from the exact one it may lie. */
 export interface Bounded<T> {
+  /** The computed matrix. */
   readonly value: T;
   /** Upper bound on the Frobenius norm of the difference; infinite where the bound itself overflows. */
   readonly error: number;

@@ -2,7 +2,8 @@ import type { Dense } from "../dense.js";
 import { addProduct, type Panel } from "./packed-product.js";
 
 /**
- * Applies the reflectors one by one to every row: row ← H_{n−1} ⋯ H_1 row, for small matrices.
+ * Applies the reflectors one by one to every row: row ← H_{n−1} ⋯ H_1 row, for small matrices (Householder, J. ACM 5, 339
+ * (1958)).
  *
  * @param n - order
  * @param y - row i holds y_i in its columns 0 … i − 1

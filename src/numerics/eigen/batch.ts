@@ -3,7 +3,7 @@ import { type EigenOptions, hermitianEigenBy } from "../eigen.js";
 import { components } from "./components.js";
 import { defaultEngine } from "./engine.js";
 import type { EigenEngine, HermitianEigen } from "./types.js";
-import { refuseUpper, requireFinite } from "./validate.js";
+import { requireHermitian } from "./validate.js";
 
 /** Eigenpairs of many matrices, one after the other in common arrays; {@link batchMember} reads one of them. */
 export interface HermitianEigenBatch {
@@ -24,10 +24,18 @@ const CHUNK = 2 ** 14;
  * All eigenpairs of many Hermitian matrices in one call: what {@link hermitianEigen} finds for each, bit for bit, without
  * the cost of a call and of arrays for each.
  *
+ * ```ts
+ * import { batchedHermitianEigen, batchMember } from "goodbasis/kernels";
+ *
+ * // One matrix of order 2 and one of order 1.
+ * const batch = batchedHermitianEigen([2, 1], Float64Array.of(0, 1, 1, 0, 7), undefined);
+ * console.log(batchMember(batch, 0).values, batchMember(batch, 1).values); // −1 and 1; 7
+ * ```
+ *
  * @param orders - the order n of each matrix
- * @param re - the matrices one after the other, each row-major with n² numbers; only lower triangles are read
+ * @param re - the matrices one after the other, each row-major with n² numbers
  * @param im - imaginary parts, or absent where all are real
- * @param options - check of the upper triangles
+ * @param options - whether the upper triangles are checked; they are unless told
  * @throws GoodBasisError as `hermitianEigen`; the details name the matrix as `matrix`
  */
 export function batchedHermitianEigen(
@@ -88,7 +96,7 @@ export function batchedHermitianEigenBy(
     const partIm = im?.subarray(at, end);
     const found = inMatrix(k, length, () =>
       length === 0
-        ? hermitianEigenBy(engine, n, partRe, partIm)
+        ? hermitianEigenBy(engine, n, partRe, partIm, { upper: "ignore" })
         : engine({ count: length, n, re: partRe, im: partIm, window: {} }),
     );
     if (found === undefined)
@@ -134,7 +142,7 @@ function connectedRun(
   orders: ArrayLike<number>,
   re: Float64Array,
   im: Float64Array | undefined,
-  { upper }: Pick<EigenOptions, "upper">,
+  { upper = "check" }: Pick<EigenOptions, "upper">,
 ): number {
   const n = orders[k] as number;
   const size = n * n;
@@ -142,10 +150,7 @@ function connectedRun(
   for (let m = k; m < orders.length && orders[m] === n; m++) {
     if (length > 0 && (length + 1) * size > CHUNK) break;
     const start = at + length * size;
-    inMatrix(m, 1, () => {
-      requireFinite("batchedHermitianEigen", n, re, im, start);
-      if (upper === "check") refuseUpper("batchedHermitianEigen", n, re, im, start);
-    });
+    inMatrix(m, 1, () => requireHermitian("batchedHermitianEigen", n, re, im, upper, start));
     if (n < 2 || components(n, re, im, start) !== undefined) break;
     length++;
   }

@@ -2,7 +2,7 @@
  * The connected components of a Hermitian matrix: indices that no chain of entries joins never mix, so each component
  * is an eigenproblem of its own. An entry counts where it is not exactly zero, so that nothing is dropped.
  *
- * A full matrix is recognised after n entries; otherwise O(n²) at most.
+ * A full matrix is recognised after n entries; otherwise O(n²) at most. Breadth-first search, common practice.
  *
  * @param n - dimension
  * @param re - row-major, from index `at` on; only the lower triangle is read

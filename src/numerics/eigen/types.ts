@@ -17,11 +17,21 @@ export interface HermitianEigen {
  * `high`, both included. What is absent does not restrict.
  */
 export interface EigenWindow {
+  /** First index wanted, 0 unless given. */
   readonly from?: number;
+  /** Index after the last one wanted, n unless given. */
   readonly to?: number;
+  /** Smallest eigenvalue wanted. */
   readonly low?: number;
+  /** Largest eigenvalue wanted. */
   readonly high?: number;
 }
+
+/**
+ * What becomes of the upper triangle: `"check"` refuses a matrix in which it is not the conjugate of the lower one to within
+ * n units roundoff of the largest entry, `"ignore"` lets the lower triangle stand for the matrix.
+ */
+export type UpperTriangle = "check" | "ignore";
 
 /** Sizes at which the algorithm changes; they alter speed, not what is promised. */
 export interface EigenTuning {

@@ -1,6 +1,6 @@
 import { GoodBasisError } from "../../errors.js";
 import { UNIT_ROUNDOFF } from "../rounding.js";
-import type { EigenWindow } from "./types.js";
+import type { EigenWindow, UpperTriangle } from "./types.js";
 
 /**
  * Refuses arrays that are not `count` square matrices of order n.
@@ -15,6 +15,13 @@ export function requireShape(
   im: Float64Array | undefined,
 ): void {
   const length = count * n * n;
+  if (!(re instanceof Float64Array) || !(im === undefined || im instanceof Float64Array)) {
+    throw new GoodBasisError(
+      "shape",
+      `${where}: expected the entries as Float64Array, real and imaginary parts apart, got another kind of value; ` +
+        "pass Float64Array.from(rows.flat()), or operator.dense().re and .im",
+    );
+  }
   if (Number.isInteger(n) && n >= 0 && re.length === length && (im === undefined || im.length === length)) return;
   throw new GoodBasisError(
     "shape",
@@ -24,13 +31,35 @@ export function requireShape(
   );
 }
 
+/** Rows and columns of a square tile of the check: two tiles, one from each triangle, stay in the first-level cache. */
+const TILE = 16;
+
 /**
- * Refuses NaN and infinite entries in the lower triangle.
+ * Refuses a matrix with NaN or infinite entries; with `"check"` also one whose upper triangle, or diagonal, is not the
+ * conjugate of the lower one to within n units roundoff of the largest entry.
  *
+ * One pass in the ordinary case: a matrix whose triangles agree to the last bit is recognised without its largest entry.
+ *
+ * @param upper - `"check"`, or `"ignore"` to look at the lower triangle alone
  * @param at - index of the first entry of the matrix
- * @throws GoodBasisError `not-finite`, with row and column
+ * @throws GoodBasisError `not-finite` or `not-hermitian`, with row and column
  */
-export function requireFinite(where: string, n: number, re: Float64Array, im: Float64Array | undefined, at = 0): void {
+export function requireHermitian(
+  where: string,
+  n: number,
+  re: Float64Array,
+  im: Float64Array | undefined,
+  upper: UpperTriangle,
+  at = 0,
+): void {
+  const check = upper === "check";
+  if (check ? isExactlyHermitian(n, re, im, at) : hasOnlyFinite(n, re, im, at)) return;
+  refuseInfinite(where, n, re, im, check, at);
+  if (check) refuseUpper(where, n, re, im, at);
+}
+
+/** Whether the lower triangle is finite. */
+function hasOnlyFinite(n: number, re: Float64Array, im: Float64Array | undefined, at: number): boolean {
   // 0 · x is NaN where x is not finite. Two sums, so that neither addition waits for the other.
   let probe = 0;
   let probeIm = 0;
@@ -44,9 +73,48 @@ export function requireFinite(where: string, n: number, re: Float64Array, im: Fl
       }
     }
   }
-  if (probe + probeIm === 0) return;
+  return probe + probeIm === 0;
+}
+
+/** Whether the matrix is finite and its upper triangle exactly the conjugate of the lower one. */
+function isExactlyHermitian(n: number, re: Float64Array, im: Float64Array | undefined, at: number): boolean {
+  return isMirrored(n, re, 1, at) && (im === undefined || isMirrored(n, im, -1, at));
+}
+
+/**
+ * Whether m_ji = sign · m_ij throughout, and finite; tile by tile, since the one runs along rows and the other along columns.
+ */
+function isMirrored(n: number, m: Float64Array, sign: number, at: number): boolean {
+  // NaN is unequal to itself; 0 · x is NaN where x is infinite.
+  let probe = 0;
+  for (let i0 = 0; i0 < n; i0 += TILE) {
+    const i1 = Math.min(n, i0 + TILE);
+    for (let j0 = 0; j0 <= i0; j0 += TILE) {
+      for (let i = i0; i < i1; i++) {
+        const row = at + i * n;
+        const j1 = Math.min(i + 1, j0 + TILE);
+        for (let j = j0, l = at + j0 * n + i; j < j1; j++, l += n) {
+          const x = m[row + j] as number;
+          if (x !== sign * (m[l] as number)) return false;
+          probe += 0 * x;
+        }
+      }
+    }
+  }
+  return probe === 0;
+}
+
+/** Names the first entry that is NaN or infinite, in the lower triangle or in the whole matrix. */
+function refuseInfinite(
+  where: string,
+  n: number,
+  re: Float64Array,
+  im: Float64Array | undefined,
+  whole: boolean,
+  at: number,
+): void {
   for (let i = 0; i < n; i++) {
-    for (let j = 0; j <= i; j++) {
+    for (let j = 0; j < (whole ? n : i + 1); j++) {
       const k = at + i * n + j;
       if (Number.isFinite(re[k]) && (im === undefined || Number.isFinite(im[k]))) continue;
       throw new GoodBasisError(
@@ -59,14 +127,8 @@ export function requireFinite(where: string, n: number, re: Float64Array, im: Fl
   }
 }
 
-/**
- * Refuses a matrix whose upper triangle, or diagonal, is not the conjugate of the lower one to within n units roundoff of
- * the largest entry.
- *
- * @param at - index of the first entry of the matrix
- * @throws GoodBasisError `not-hermitian`, with row and column; also where an entry of the upper triangle is NaN
- */
-export function refuseUpper(where: string, n: number, re: Float64Array, im: Float64Array | undefined, at = 0): void {
+/** Names the first pair of entries, or the diagonal one, that is further from conjugate than rounding explains. */
+function refuseUpper(where: string, n: number, re: Float64Array, im: Float64Array | undefined, at: number): void {
   let largest = 0;
   for (let k = at; k < at + n * n; k++) {
     largest = Math.max(largest, Math.abs(re[k] as number), im === undefined ? 0 : Math.abs(im[k] as number));
@@ -82,7 +144,8 @@ export function refuseUpper(where: string, n: number, re: Float64Array, im: Floa
       throw new GoodBasisError(
         "not-hermitian",
         `${where}: entries (${i}, ${j}) and (${j}, ${i}) are not conjugate: they differ by ${Math.max(x, y)}, ` +
-          `${tolerance} is allowed; pass (A + A†) / 2 if A is meant to be Hermitian`,
+          `${tolerance} is allowed; pass (A + A†) / 2 if A is meant to be Hermitian, or { upper: "ignore" } to let the ` +
+          "lower triangle stand for the matrix",
         { row: i, col: j },
       );
     }

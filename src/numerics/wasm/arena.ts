@@ -3,16 +3,19 @@ import { commutatorSparse, finishBound, productSparse } from "../bounded/sparse.
 import type { Bounded } from "../bounded/types.js";
 import type { Csr } from "../csr.js";
 import { dropZeros } from "../sparse/build.js";
+import { completeAntiHermitian, isHermitian } from "../sparse/hermitian.js";
 import { frobenius } from "../sparse/norms.js";
-import { adjoint } from "../sparse/rearrange.js";
 import { type Kernels, newKernels } from "./runtime.js";
 
 /** A sparse matrix that stays in the memory of a {@link SparseArena}. */
 export interface Resident {
+  /** Number of rows. */
   readonly rows: number;
+  /** Number of columns. */
   readonly cols: number;
   /** Number of stored entries. */
   readonly entries: number;
+  /** Whether it has imaginary parts. */
   readonly complex: boolean;
   /** Whether it equals its adjoint, exactly. */
   readonly hermitian: boolean;
@@ -31,7 +34,10 @@ interface Place {
 }
 
 /** A memory mark of {@link SparseArena.mark}. */
-export type ArenaMark = number & { readonly brand?: "ArenaMark" };
+export type ArenaMark = number & {
+  /** Tells a mark from other numbers; never there. */
+  readonly brand?: "ArenaMark";
+};
 
 /**
  * Sparse matrices that stay in WebAssembly memory, so that products and commutators of large operators cost no copies:
@@ -40,13 +46,32 @@ export type ArenaMark = number & { readonly brand?: "ArenaMark" };
  * Each arena has a memory of its own, which is freed with it. Inside, matrices are stacked: {@link SparseArena.release}
  * frees everything that came after a mark. Memory never shrinks but is used again. Without WebAssembly the arena keeps
  * plain arrays and works all the same.
+ *
+ * ```ts
+ * import { Operator } from "goodbasis";
+ * import { SparseArena } from "goodbasis/kernels";
+ *
+ * const arena = new SparseArena();
+ * const hop = Operator.fromTriplets(1000, Array.from({ length: 999 }, (_, k) => [k, k + 1, 1]));
+ * const field = Operator.from({ diagonal: Array.from({ length: 1000 }, (_, k) => k) });
+ * const [h, x] = [hop.plus(hop.adjoint()), field].map(({ csr }) => arena.load(csr, { hermitian: true }));
+ * if (h !== undefined && x !== undefined) {
+ *   const mark = arena.mark();
+ *   const { value, error } = arena.commutator(h, x);
+ *   console.log(arena.frobenius(value), error); // √1998, and a bound on what rounding did
+ *   arena.release(mark); // h and x stay
+ * }
+ * ```
  */
 export class SparseArena {
   readonly #kernels: Kernels | undefined;
   readonly #places = new Map<Resident, Place>();
   #end: number;
 
-  /** @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent */
+  /**
+   * @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent
+   * @internal
+   */
   constructor(kernels: { readonly own: Kernels | undefined } = { own: newKernels() }) {
     this.#kernels = kernels.own;
     this.#end = kernels.own === undefined ? 0 : kernels.own.exports.heapStart.value;
@@ -66,7 +91,7 @@ export class SparseArena {
    */
   load(a: Csr, options: { readonly hermitian?: boolean } = {}): Resident {
     const hermitian = options.hermitian === true;
-    if (hermitian && !sameMatrix(a, adjoint(a))) {
+    if (hermitian && !isHermitian(a)) {
       throw new GoodBasisError(
         "not-hermitian",
         "SparseArena.load: expected a Hermitian matrix, got one that differs from its adjoint; load it without the flag",
@@ -139,7 +164,7 @@ export class SparseArena {
       re: doubles(place.re),
       im: a.complex ? dropZeros(doubles(place.im)) : undefined,
     };
-    return a.upper ? completed(csr) : csr;
+    return a.upper ? completeAntiHermitian(csr) : csr;
   }
 
   /** Where the stack of matrices ends now. */
@@ -263,42 +288,3 @@ const emptyCsr = (a: Resident): Csr => ({
   re: new Float64Array(0),
   im: undefined,
 });
-
-/** Whether two matrices have the same entries, stored in the same order. */
-function sameMatrix(a: Csr, b: Csr): boolean {
-  const same = (x: ArrayLike<number>, y: ArrayLike<number>): boolean => {
-    if (x.length !== y.length) return false;
-    for (let k = 0; k < x.length; k++) if (x[k] !== y[k]) return false;
-    return true;
-  };
-  if (a.rows !== b.rows || !same(a.ptr, b.ptr) || !same(a.col, b.col) || !same(a.re, b.re)) return false;
-  return a.im === undefined || (b.im !== undefined && same(a.im, b.im));
-}
-
-/** Both triangles of an anti-Hermitian matrix whose upper one is given: U − (U without its diagonal)†. */
-function completed(upper: Csr): Csr {
-  const { rows, cols, im } = upper;
-  const lower = adjoint(upper);
-  const ptr = new Int32Array(rows + 1);
-  const length = 2 * upper.col.length;
-  const col = new Int32Array(length);
-  const re = new Float64Array(length);
-  const outIm = im && new Float64Array(length);
-  let f = 0;
-  for (let row = 0; row < rows; row++) {
-    for (let e = lower.ptr[row] as number; e < (lower.ptr[row + 1] as number) && (lower.col[e] as number) < row; e++) {
-      col[f] = lower.col[e] as number;
-      re[f] = 0 - (lower.re[e] as number);
-      if (outIm !== undefined) outIm[f] = 0 - (lower.im?.[e] ?? 0);
-      f++;
-    }
-    for (let e = upper.ptr[row] as number; e < (upper.ptr[row + 1] as number); e++) {
-      col[f] = upper.col[e] as number;
-      re[f] = upper.re[e] as number;
-      if (outIm !== undefined) outIm[f] = im?.[e] ?? 0;
-      f++;
-    }
-    ptr[row + 1] = f;
-  }
-  return { rows, cols, ptr, col: col.slice(0, f), re: re.slice(0, f), im: outIm?.slice(0, f) };
-}

@@ -2,15 +2,20 @@ import type { Dense } from "../dense.js";
 import { type Kernels, withKernels } from "./runtime.js";
 
 /**
- * The product of two dense n × n matrices by the WebAssembly kernels.
+ * The product of two dense n × n matrices by the WebAssembly kernels, three real products for two complex factors.
  *
  * @returns `undefined` where the platform cannot run the kernels
  */
 export function wasmMultiplyDense(n: number, a: Dense, b: Dense): Dense | undefined {
-  return withKernels((kernels) => multiply(kernels, n, a, b));
+  return withKernels((kernels) => multiply(kernels, n, a, b, true));
 }
 
-function multiply(kernels: Kernels, n: number, a: Dense, b: Dense): Dense {
+/** {@link wasmMultiplyDense} with four real products for two complex factors. */
+export function wasmMultiplyParts(n: number, a: Dense, b: Dense): Dense | undefined {
+  return withKernels((kernels) => multiply(kernels, n, a, b, false));
+}
+
+function multiply(kernels: Kernels, n: number, a: Dense, b: Dense, three: boolean): Dense {
   const { exports } = kernels;
   const size = 8 * n * n;
   const room = (m: Float64Array | undefined): number => (m === undefined ? 0 : size);
@@ -23,7 +28,7 @@ function multiply(kernels: Kernels, n: number, a: Dense, b: Dense): Dense {
   if (a.im !== undefined) memory.set(a.im, aIm / 8);
   memory.set(b.re, bRe / 8);
   if (b.im !== undefined) memory.set(b.im, bIm / 8);
-  exports.multiplyDense(n, aRe, a.im ? aIm : 0, bRe, b.im ? bIm : 0, cRe, complex ? cIm : 0, rest);
+  exports.multiplyDense(n, aRe, a.im ? aIm : 0, bRe, b.im ? bIm : 0, cRe, complex ? cIm : 0, three, rest);
   const part = (start: number): Float64Array => memory.slice(start / 8, start / 8 + n * n);
   return { re: part(cRe), im: complex ? part(cIm) : undefined };
 }

@@ -32,6 +32,7 @@ export interface KernelExports {
     bIm: number,
     cRe: number,
     cIm: number,
+    three: boolean,
     scratch: number,
   ): void;
   readonly errorSquares: { readonly value: number };

@@ -69,6 +69,43 @@ describe.each(KERNELS)("sparse products and commutators by %s", (_, { product, c
     }
   });
 
+  it("take half the work for Hermitian matrices, stay inside the bound, and give an exactly anti-Hermitian commutator", () => {
+    for (const [left, right] of kinds) {
+      for (const n of [2, 7, 14]) {
+        const [x, y] = [square(n, left, n), square(n, right, n + 1)];
+        const [a, b] = [add(1, x, 1, adjoint(x)), add(1, y, 1, adjoint(y))];
+        const { value, error } = commutator(a, b);
+        const [p, q, c] = [toDense(a), toDense(b), toDense(value)];
+        const off = distance(
+          n,
+          [
+            [1, p, q],
+            [-1, q, p],
+          ],
+          c,
+        );
+        expect(off).toBeLessThanOrEqual(error);
+        if (n === 14) expect(error).toBeLessThanOrEqual(400 * off);
+        for (let row = 0; row < n; row++) {
+          const columns = value.col.subarray(value.ptr[row] as number, value.ptr[row + 1] as number);
+          expect([...columns]).toEqual([...new Set(columns)].sort((u, v) => u - v));
+        }
+        // Compared with the general form, which a change in the last digit of one entry brings about.
+        const bent = { ...a, re: a.re.map((u, e) => (e === 0 ? u * (1 + 2 ** -52) : u)) };
+        const general = toDense(commutator(bent, b).value);
+        c.re.forEach((u, k) => {
+          expect(Math.abs(u - (general.re[k] as number))).toBeLessThanOrEqual(1e-14);
+          expect(Math.abs((c.im?.[k] ?? 0) - (general.im?.[k] ?? 0))).toBeLessThanOrEqual(1e-14);
+        });
+      }
+    }
+    const [x, y] = [square(9, true, 3), square(9, true, 4)];
+    const { value } = commutatorSparse(add(1, x, 1, adjoint(x)), add(1, y, 1, adjoint(y)));
+    const mirrored = adjoint(value);
+    expect(value.re).toEqual(mirrored.re.map((u) => 0 - u));
+    expect(value.im).toEqual(mirrored.im?.map((u) => 0 - u));
+  });
+
   it("come close to their bounds in the worst of many small cases, so that a smaller constant would be caught", () => {
     const closest = (n: number, complex: boolean, run: (a: Csr, b: Csr) => Bounded<Csr>, both: boolean): number => {
       let most = 0;
@@ -212,6 +249,7 @@ describe.each([
           d,
         ),
       ).toBeLessThanOrEqual(half.error);
+      expect(half.error).toBeLessThanOrEqual(2 * whole.error);
       expect(Math.abs(arena.frobenius(half.value) / arena.frobenius(whole.value) - 1)).toBeLessThan(1e-14);
     }
     const arena = make();

@@ -84,8 +84,8 @@ describe.each(ENGINES)("batchedHermitianEigen by %s", (_, engine) => {
       expect.objectContaining({ code: "not-finite", details: { matrix: 1 } }),
     );
     const crooked = re.map((x, k) => (k === 23 + 1 ? x + 1 : x));
-    expect(batchedHermitianEigenBy(engine, orders, crooked, im).values.length).toBe(13);
-    expect(() => batchedHermitianEigenBy(engine, orders, crooked, im, { upper: "check" })).toThrow(
+    expect(batchedHermitianEigenBy(engine, orders, crooked, im, { upper: "ignore" }).values.length).toBe(13);
+    expect(() => batchedHermitianEigenBy(engine, orders, crooked, im)).toThrow(
       expect.objectContaining({ code: "not-hermitian", details: { row: 1, col: 0, matrix: 4 } }),
     );
   });

@@ -16,7 +16,11 @@ export function denseScratch(n: i32, bothComplex: bool): usize {
  * C = A B, row-major n × n. Imaginary parts have address 0 in a real matrix; the result has them where A or B has.
  *
  * Two complex factors take three real multiplications, (a + ib)(c + id) = (ac − bd) + i((a + b)(c + d) − ac − bd)
- * (Higham, SIAM J. Matrix Anal. Appl. 13, 681 (1992)); the bound on its rounding is stated at `product`.
+ * (Higham, SIAM J. Matrix Anal. Appl. 13, 681 (1992)), or four, ac − bd and ad + bc; the bounds on their rounding are
+ * stated at `productDense` and at `partsRounding`.
+ *
+ * @param three - whether two complex factors take three multiplications
+ * @param scratch - {@link denseScratch} bytes
  */
 export function multiplyDense(
   n: i32,
@@ -26,6 +30,7 @@ export function multiplyDense(
   bIm: usize,
   cRe: usize,
   cIm: usize,
+  three: bool,
   scratch: usize,
 ): void {
   clear(cRe, n * n);
@@ -34,6 +39,19 @@ export function multiplyDense(
     addProduct(n, n, n, 1, aRe, n, 1, bRe, n, 1, cRe, n, scratch);
     if (aIm !== 0) addProduct(n, n, n, 1, aIm, n, 1, bRe, n, 1, cIm, n, scratch);
     if (bIm !== 0) addProduct(n, n, n, 1, aRe, n, 1, bIm, n, 1, cIm, n, scratch);
+    return;
+  }
+  if (!three) {
+    const half = scratch;
+    const products = half + room(n * n);
+    addProduct(n, n, n, 1, aRe, n, 1, bRe, n, 1, cRe, n, products);
+    clear(half, n * n);
+    addProduct(n, n, n, -1, aIm, n, 1, bIm, n, 1, half, n, products);
+    add(n * n, cRe, half, cRe);
+    addProduct(n, n, n, 1, aRe, n, 1, bIm, n, 1, cIm, n, products);
+    clear(half, n * n);
+    addProduct(n, n, n, 1, aIm, n, 1, bRe, n, 1, half, n, products);
+    add(n * n, cIm, half, cIm);
     return;
   }
   const bSum = scratch;

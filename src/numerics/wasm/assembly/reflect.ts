@@ -2,7 +2,10 @@
 
 import { at, dot, get, lanes, put } from "./memory.ts";
 
-/** Applies real reflectors one by one to `count` rows of n doubles; row i of `y` holds y_i in its columns 0 … i − 1. */
+/**
+ * Applies real reflectors one by one to `count` rows of n doubles; row i of `y` holds y_i in its columns 0 … i − 1.
+ * Source: Householder, J. ACM 5, 339 (1958).
+ */
 export function reflectReal(n: i32, y: usize, tau: usize, count: i32, rows: usize): void {
   // Four rows stay in the first-level cache while all reflectors pass over them.
   const step = (n as usize) << 3;
