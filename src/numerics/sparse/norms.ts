@@ -19,33 +19,23 @@ export function maxRowEntries(a: Csr): number {
 
 /** The largest column sum of moduli, ‖A‖₁; not rounded up. */
 export function norm1(a: Csr): number {
-  return largestColumnSum(a, (e) => entryModulus(a, e));
-}
-
-/** The largest row sum of moduli, ‖A‖∞; not rounded up. */
-export function normInf(a: Csr): number {
-  return largestRowSum(a, (e) => entryModulus(a, e));
-}
-
-/** The largest column sum of numbers attached to the entries. */
-export function largestColumnSum(a: Csr, value: (e: number) => number): number {
   const sums = new Float64Array(a.cols);
   for (let e = 0; e < a.col.length; e++) {
     const c = a.col[e] as number;
-    sums[c] = (sums[c] as number) + value(e);
+    sums[c] = (sums[c] as number) + entryModulus(a, e);
   }
   let largest = 0;
   for (let c = 0; c < a.cols; c++) if ((sums[c] as number) > largest) largest = sums[c] as number;
   return largest;
 }
 
-/** The largest row sum of numbers attached to the entries. */
-export function largestRowSum(a: Csr, value: (e: number) => number): number {
+/** The largest row sum of moduli, ‖A‖∞; not rounded up. */
+export function normInf(a: Csr): number {
   let largest = 0;
   for (let r = 0; r < a.rows; r++) {
     let sum = 0;
     const end = a.ptr[r + 1] as number;
-    for (let e = a.ptr[r] as number; e < end; e++) sum += value(e);
+    for (let e = a.ptr[r] as number; e < end; e++) sum += entryModulus(a, e);
     if (sum > largest) largest = sum;
   }
   return largest;
