@@ -49,7 +49,7 @@ export interface OperatorOptions {
  */
 export class Operator {
   readonly #core: Uncertain;
-  #structure: Traits | undefined;
+  readonly #traits: Traits;
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
   #norm: number | undefined;
@@ -60,11 +60,7 @@ export class Operator {
 
   private constructor(core: Uncertain) {
     this.#core = core;
-  }
-
-  get #traits(): Traits {
-    this.#structure ??= new Traits(this.#core);
-    return this.#structure;
+    this.#traits = new Traits(core);
   }
 
   /**

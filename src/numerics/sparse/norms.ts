@@ -28,7 +28,7 @@ export function normInf(a: Csr): number {
 }
 
 /** The largest column sum of numbers attached to the entries. */
-export function largestColumnSum(a: Csr, value: (e: number) => number): number {
+function largestColumnSum(a: Csr, value: (e: number) => number): number {
   const sums = new Float64Array(a.cols);
   for (let e = 0; e < a.col.length; e++) {
     const c = a.col[e] as number;
@@ -40,7 +40,7 @@ export function largestColumnSum(a: Csr, value: (e: number) => number): number {
 }
 
 /** The largest row sum of numbers attached to the entries. */
-export function largestRowSum(a: Csr, value: (e: number) => number): number {
+function largestRowSum(a: Csr, value: (e: number) => number): number {
   let largest = 0;
   for (let r = 0; r < a.rows; r++) {
     let sum = 0;
