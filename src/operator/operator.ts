@@ -51,8 +51,8 @@ export interface OperatorOptions {
  */
 export class Operator {
   readonly #core: Uncertain;
+  readonly #traits: Traits;
   readonly #sizes: Sizes;
-  #structure: Traits | undefined;
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
   #hash: string | undefined;
@@ -60,12 +60,8 @@ export class Operator {
   private constructor(core: Uncertain) {
     requireRows(core);
     this.#core = core;
+    this.#traits = new Traits(core);
     this.#sizes = new Sizes(core);
-  }
-
-  get #traits(): Traits {
-    this.#structure ??= new Traits(this.#core);
-    return this.#structure;
   }
 
   /**

@@ -159,10 +159,10 @@ export function hermitianPart(matrix: Uncertain): Uncertain {
   });
   // A row without any entry was not visited.
   for (let r = 0; r < csr.rows; r++) if (ptr[r + 1] === 0) ptr[r + 1] = ptr[r] as number;
-  const values = csr.im === undefined ? undefined : Float64Array.from(im);
+  const values = csr.im === undefined ? undefined : new Float64Array(im);
   return {
-    csr: { rows: csr.rows, cols: csr.cols, ptr, col: Int32Array.from(col), re: Float64Array.from(re), im: values },
-    radius: Float64Array.from(radius),
+    csr: { rows: csr.rows, cols: csr.cols, ptr, col: new Int32Array(col), re: new Float64Array(re), im: values },
+    radius: new Float64Array(radius),
   };
 }
 

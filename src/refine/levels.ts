@@ -56,7 +56,7 @@ export interface Levels {
 export function formLevels(sectors: readonly Sector[], width: number, choice: LevelChoice): Levels {
   const levelOf = new Map<number, number>();
   for (const { energies } of sectors) for (let i = 0; i < energies.length; i++) levelOf.set(energies[i] as number, 0);
-  const sorted = Float64Array.from(levelOf.keys()).sort();
+  const sorted = new Float64Array([...levelOf.keys()]).sort();
   const low: number[] = [];
   const high: number[] = [];
   for (let k = 0; k < sorted.length; k++) {
@@ -65,7 +65,7 @@ export function formLevels(sectors: readonly Sector[], width: number, choice: Le
     high[low.length - 1] = energy;
     levelOf.set(energy, low.length - 1);
   }
-  const energies = Float64Array.from(low, (bottom, k) => bottom + ((high[k] as number) - bottom) / 2);
+  const energies = new Float64Array(low.map((bottom, k) => bottom + ((high[k] as number) - bottom) / 2));
   const of = sectors.map((sector) => {
     const levels = new Int32Array(sector.energies.length);
     for (let i = 0; i < levels.length; i++) levels[i] = levelOf.get(sector.energies[i] as number) ?? 0;
@@ -91,7 +91,7 @@ export function formLevels(sectors: readonly Sector[], width: number, choice: Le
     .sort((a, b) => a - b)
     .map((place): Level => {
       const own = [...(parts.get(place) ?? new Map<number, number[]>())].map(
-        ([sector, indices]): LevelPart => ({ sector, indices: Int32Array.from(indices) }),
+        ([sector, indices]): LevelPart => ({ sector, indices: new Int32Array(indices) }),
       );
       return {
         place,
