@@ -1,0 +1,480 @@
+import { Fraction } from "fraction.js";
+import { GoodBasisError } from "../errors.js";
+import type { Complex } from "../numerics/complex.js";
+import { signOfReal } from "./bounds.js";
+import { dyadic } from "./dyadic.js";
+import { type Arithmetic, readExpression } from "./expression.js";
+import { bitLength, gcdSafe, isSafe } from "./integer.js";
+import { invertTerms } from "./inverse.js";
+import { type SurdTextOptions, textOf } from "./print.js";
+import { roundReal, roundRoot } from "./round.js";
+import {
+  addTerms,
+  imaginaryTerms,
+  mapTerms,
+  multiplyTerms,
+  NO_TERMS,
+  oneTerm,
+  realTerms,
+  type Terms,
+} from "./terms.js";
+
+/** Everything that an exact number can be read from; a JavaScript number counts as the very double that it is. */
+export type SurdInput = Surd | Fraction | bigint | number | string | Complex;
+
+/** One term (re + i im) √root of a {@link Surd}. */
+export interface SurdTerm {
+  /** ≥ 1, not a square unless 1. */
+  readonly root: bigint;
+  readonly re: Fraction;
+  readonly im: Fraction;
+}
+
+/** A complex rational number in safe integers: (re + i im) / den. */
+export interface SafeParts {
+  readonly re: number;
+  readonly im: number;
+  readonly den: number;
+}
+
+const MOST = Number.MAX_SAFE_INTEGER;
+
+/** Binary digits that a power may have. */
+const MOST_POWER_BITS = 4_000_000;
+
+/**
+ * An exact number Σ q_d √d with complex rational q_d and whole d ≥ 1; immutable.
+ *
+ * These numbers form a field. A number is zero only if it has no term: the √d of distinct square classes are linearly
+ * independent over Q(i), and roots that might belong to one class are split over a coprime base when they meet. Signs are
+ * decided by intervals of growing precision once zero is excluded.
+ *
+ * A number with a single term in safe integers, (n + i m) √r / d, stays in machine numbers; anything else holds big integers.
+ *
+ * @example
+ * ```ts no-check
+ * import { Surd } from "goodbasis";
+ *
+ * const c = Surd.from("sqrt(2/3)");
+ * console.log(c.times(c).equals("2/3"), c.toNumber()); // true 0.816496580927726
+ * console.log(Surd.from("1/(sqrt(2)+sqrt(3))").text({ form: "unicode" })); // −√2 + √3
+ * ```
+ */
+export class Surd {
+  /** The number if `#terms` is absent: (n + i m) √r / d in lowest terms, r square-free, d ≥ 1; zero is 0 √1 / 1. */
+  readonly #n: number;
+  readonly #m: number;
+  readonly #r: number;
+  readonly #d: number;
+  readonly #terms: Terms | undefined;
+
+  private constructor(n: number, m: number, r: number, d: number, terms: Terms | undefined) {
+    this.#n = n;
+    this.#m = m;
+    this.#r = r;
+    this.#d = d;
+    this.#terms = terms;
+  }
+
+  /** 0. */
+  static readonly zero: Surd = new Surd(0, 0, 1, 1, undefined);
+  /** 1. */
+  static readonly one: Surd = new Surd(1, 0, 1, 1, undefined);
+  /** The imaginary unit. */
+  static readonly i: Surd = new Surd(0, 1, 1, 1, undefined);
+
+  /**
+   * Reads an exact number: text such as "-1/2*sqrt(3)", a big integer, a `Fraction`, or a double (or pair re, im of them),
+   * which counts as its exact dyadic value, so that 0.1 is not 1/10 but "0.1" is.
+   *
+   * @throws GoodBasisError `text`, `zero-division` - of a text, with `details.position`; `not-finite` - NaN or infinite;
+   *   `option` - nothing of these
+   */
+  static from(input: SurdInput): Surd {
+    if (input instanceof Surd) return input;
+    if (typeof input === "number") return fromDouble(input);
+    if (typeof input === "bigint") return Surd.ratio(input, 1n);
+    if (typeof input === "string") return readExpression(input, ARITHMETIC);
+    if (input instanceof Fraction) return Surd.ratio(input.s * input.n, input.d);
+    if (typeof input === "object" && input !== null && typeof input.re === "number" && typeof input.im === "number") {
+      return fromDouble(input.re).plus(fromDouble(input.im).times(Surd.i));
+    }
+    throw new GoodBasisError("option", `Surd.from: expected a number, text or fraction, got ${String(input)}`, {
+      input,
+    });
+  }
+
+  /**
+   * numerator / denominator.
+   *
+   * @throws GoodBasisError `zero-division`
+   */
+  static ratio(numerator: bigint, denominator: bigint): Surd {
+    if (denominator === 0n) throw zeroDivision("Surd.ratio", `${numerator}`);
+    return Surd.fromTerms(oneTerm(numerator, 0n, 1n, denominator));
+  }
+
+  /**
+   * (re + i im) / den in safe integers, not necessarily in lowest terms; den ≥ 1.
+   *
+   * @throws GoodBasisError `option` - not safe integers, or den < 1
+   */
+  static fromSafe(re: number, im: number, den: number): Surd {
+    if (Number.isSafeInteger(re) && Number.isSafeInteger(im) && Number.isSafeInteger(den) && den >= 1) {
+      return Surd.#lowest(re, im, 1, den);
+    }
+    const message = `Surd.fromSafe: expected whole numbers up to 2^53 over one from 1 on, got (${re} + ${im}i) / ${den}`;
+    throw new GoodBasisError("option", message, { re, im, den });
+  }
+
+  /**
+   * √x of a rational number x ≥ 0; undefined for any other, whose root need not lie in the field.
+   *
+   * @throws GoodBasisError what {@link Surd.from} throws
+   */
+  static sqrt(x: SurdInput): Surd | undefined {
+    const square = Surd.from(x);
+    const { roots, re, im, den } = square.terms;
+    if (roots.length === 0) return Surd.zero;
+    if (roots.length > 1 || roots[0] !== 1n || im[0] !== 0n || (re[0] as bigint) < 0n) return undefined;
+    // √(p / q) = √(p q) / q
+    return Surd.fromTerms(oneTerm(1n, 0n, (re[0] as bigint) * den, den));
+  }
+
+  /** Wraps a general form, which must keep the invariants of {@link Terms}. */
+  static fromTerms(terms: Terms): Surd {
+    if (terms.roots.length === 0) return Surd.zero;
+    const [n, m, r] = [terms.re[0] as bigint, terms.im[0] as bigint, terms.roots[0] as bigint];
+    if (terms.roots.length === 1 && terms.plain && isSafe(n) && isSafe(m) && isSafe(r) && isSafe(terms.den)) {
+      return new Surd(Number(n), Number(m), Number(r), Number(terms.den), undefined);
+    }
+    return new Surd(0, 0, 1, 1, terms);
+  }
+
+  /** The general form. */
+  get terms(): Terms {
+    if (this.#terms !== undefined) return this.#terms;
+    if (this.isZero) return NO_TERMS;
+    const [n, m, r, d] = [this.#n, this.#m, this.#r, this.#d];
+    return { roots: [BigInt(r)], re: [BigInt(n)], im: [BigInt(m)], den: BigInt(d), plain: true };
+  }
+
+  /** The general form of a number that needs it; undefined for one term in safe integers. */
+  get largeTerms(): Terms | undefined {
+    return this.#terms;
+  }
+
+  /** The number in safe integers where it is complex rational and fits; undefined otherwise. */
+  get safeParts(): SafeParts | undefined {
+    if (this.#terms !== undefined || this.#r !== 1) return undefined;
+    return { re: this.#n, im: this.#m, den: this.#d };
+  }
+
+  /** The terms by ascending root, coefficients as fractions. */
+  parts(): SurdTerm[] {
+    const { roots, re, im, den } = this.terms;
+    return roots.map((root, k) => ({
+      root,
+      re: new Fraction(re[k] as bigint, den),
+      im: new Fraction(im[k] as bigint, den),
+    }));
+  }
+
+  get isZero(): boolean {
+    return this.#terms === undefined && this.#n === 0 && this.#m === 0;
+  }
+
+  get isReal(): boolean {
+    return this.#terms === undefined ? this.#m === 0 : this.#terms.im.every((y) => y === 0n);
+  }
+
+  /** Whether it is a real fraction. */
+  get isRational(): boolean {
+    if (this.#terms === undefined) return this.#m === 0 && this.#r === 1;
+    return this.#terms.roots.length === 1 && this.#terms.roots[0] === 1n && this.#terms.im[0] === 0n;
+  }
+
+  get isInteger(): boolean {
+    return this.isRational && (this.#terms === undefined ? this.#d === 1 : this.#terms.den === 1n);
+  }
+
+  /** x + y. @throws GoodBasisError what {@link Surd.from} throws */
+  plus(other: SurdInput): Surd {
+    const b = Surd.from(other);
+    if (this.#terms === undefined && b.#terms === undefined) {
+      if (this.isZero) return b;
+      if (b.isZero) return this;
+      if (this.#r === b.#r) {
+        const sum = Surd.#safeSum(this, b);
+        if (sum !== undefined) return sum;
+      }
+    }
+    return Surd.fromTerms(addTerms(this.terms, b.terms));
+  }
+
+  /** x − y. @throws GoodBasisError what {@link Surd.from} throws */
+  minus(other: SurdInput): Surd {
+    return this.plus(Surd.from(other).negate());
+  }
+
+  /** −x. */
+  negate(): Surd {
+    if (this.#terms === undefined) return new Surd(0 - this.#n, 0 - this.#m, this.#r, this.#d, undefined);
+    return Surd.fromTerms(mapTerms(this.#terms, (re, im) => [-re, -im]));
+  }
+
+  /** The complex conjugate. */
+  conjugate(): Surd {
+    if (this.isReal) return this;
+    if (this.#terms === undefined) return new Surd(this.#n, 0 - this.#m, this.#r, this.#d, undefined);
+    return Surd.fromTerms(mapTerms(this.#terms, (re, im) => [re, -im]));
+  }
+
+  /**
+   * x y.
+   *
+   * @throws GoodBasisError what {@link Surd.from} throws; `budget` - far too many square roots
+   */
+  times(other: SurdInput): Surd {
+    const b = Surd.from(other);
+    if (this.#terms === undefined && b.#terms === undefined) {
+      const product = Surd.#safeProduct(this, b);
+      if (product !== undefined) return product;
+    }
+    return Surd.fromTerms(multiplyTerms(this.terms, b.terms));
+  }
+
+  /**
+   * 1 / x, by conjugations over the roots.
+   *
+   * @throws GoodBasisError `zero-division`; `budget` - far too many square roots
+   */
+  inverse(): Surd {
+    if (this.isZero) throw zeroDivision("Surd.inverse", "1");
+    if (this.#terms === undefined && this.#m === 0) {
+      // d / (n √r) = d √r / (n r)
+      const [sign, den] = [Math.sign(this.#n), Math.abs(this.#n) * this.#r];
+      if (den <= MOST) return Surd.#lowest(sign * this.#d, 0, this.#r, den);
+    }
+    return Surd.fromTerms(invertTerms(this.terms));
+  }
+
+  /**
+   * x / y.
+   *
+   * @throws GoodBasisError `zero-division`; what {@link Surd.from} throws; `budget` - far too many square roots
+   */
+  over(other: SurdInput): Surd {
+    const b = Surd.from(other);
+    if (b.isZero) throw zeroDivision("Surd.over", this.text());
+    return this.times(b.inverse());
+  }
+
+  /**
+   * x to a whole power.
+   *
+   * @throws GoodBasisError `option` - not a whole number; `zero-division` - a negative power of zero; `budget`
+   */
+  power(exponent: number): Surd {
+    if (!Number.isSafeInteger(exponent)) {
+      throw new GoodBasisError("option", `Surd.power: the exponent must be whole, got ${exponent}`, { exponent });
+    }
+    if (exponent < 0) return this.inverse().power(-exponent);
+    const { re, im, roots, den } = this.terms;
+    const bits = bitLength(den) + Math.max(0, ...[...re, ...im, ...roots].map(bitLength));
+    if (bits > 1 && bits * exponent > MOST_POWER_BITS) {
+      const message = `Surd.power: exponent ${exponent} makes a number of more than a million digits`;
+      throw new GoodBasisError("budget", message, { exponent });
+    }
+    let result = Surd.one;
+    for (let [square, rest]: [Surd, number] = [this, exponent]; rest > 0; rest = Math.floor(rest / 2)) {
+      if (rest % 2 === 1) result = result.times(square);
+      if (rest > 1) square = square.times(square);
+    }
+    return result;
+  }
+
+  /** Whether both are the same number. @throws GoodBasisError what {@link Surd.from} throws */
+  equals(other: SurdInput): boolean {
+    const b = Surd.from(other);
+    if (this.#terms === undefined && b.#terms === undefined) {
+      return this.#n === b.#n && this.#m === b.#m && this.#d === b.#d && this.#r === b.#r;
+    }
+    return this.minus(b).isZero;
+  }
+
+  /** The real part. */
+  get re(): Surd {
+    if (this.isReal) return this;
+    if (this.#terms === undefined) return Surd.#lowest(this.#n, 0, this.#r, this.#d);
+    return Surd.fromTerms(realTerms(this.#terms));
+  }
+
+  /** The imaginary part, a real number. */
+  get im(): Surd {
+    if (this.#terms === undefined) return Surd.#lowest(this.#m, 0, this.#r, this.#d);
+    return Surd.fromTerms(imaginaryTerms(this.#terms));
+  }
+
+  /** |x|² = x x*. */
+  squaredModulus(): Surd {
+    return this.times(this.conjugate());
+  }
+
+  /**
+   * The sign of a real number.
+   *
+   * @throws GoodBasisError `not-real`
+   */
+  sign(): -1 | 0 | 1 {
+    requireReal("Surd.sign", this);
+    if (this.#terms === undefined) return this.#n > 0 ? 1 : this.#n < 0 ? -1 : 0;
+    return signOfReal(this.#terms);
+  }
+
+  /**
+   * The sign of x − y for real numbers, so that a list is sorted with `(x, y) => x.compare(y)`.
+   *
+   * @throws GoodBasisError `not-real`; what {@link Surd.from} throws
+   */
+  compare(other: SurdInput): -1 | 0 | 1 {
+    const b = Surd.from(other);
+    requireReal("Surd.compare", this);
+    requireReal("Surd.compare", b);
+    return this.minus(b).sign();
+  }
+
+  /**
+   * The double nearest to a real number, correctly rounded, ties to even; infinite beyond the range of doubles.
+   *
+   * @throws GoodBasisError `not-real`
+   */
+  toNumber(): number {
+    requireReal("Surd.toNumber", this);
+    return this.toComplex().re;
+  }
+
+  /** The doubles nearest to the real and imaginary part, each correctly rounded, ties to even. */
+  toComplex(): Complex {
+    // the quotient of two safe integers is rounded correctly by the machine
+    if (this.#terms === undefined && this.#r === 1) return { re: this.#n / this.#d, im: this.#m / this.#d };
+    const { re, im } = this;
+    return { re: roundReal(re.terms, "nearest"), im: roundReal(im.terms, "nearest") };
+  }
+
+  /**
+   * The narrowest interval of doubles around a real number: [x, x] where it is one.
+   *
+   * @throws GoodBasisError `not-real`
+   */
+  enclosure(): readonly [number, number] {
+    requireReal("Surd.enclosure", this);
+    return [roundReal(this.terms, "down"), roundReal(this.terms, "up")];
+  }
+
+  /**
+   * The double nearest to √x for a real x ≥ 0, correctly rounded; √x itself need not be in the field.
+   *
+   * @throws GoodBasisError `not-real`; `option` - negative
+   */
+  rootToNumber(): number {
+    if (this.sign() < 0) throw new GoodBasisError("option", `Surd.rootToNumber: ${this.text()} is negative`);
+    return roundRoot(this.terms);
+  }
+
+  /** The number as text, which {@link Surd.from} reads back; zero is "0". */
+  text(options?: SurdTextOptions): string {
+    return textOf(this.terms, options);
+  }
+
+  /** The plain text. */
+  toString(): string {
+    return this.text();
+  }
+
+  /** The plain text, for JSON. */
+  toJSON(): string {
+    return this.text();
+  }
+
+  /** (n + i m) √r / d of safe integers, r square-free, d ≥ 1. */
+  static #lowest(n: number, m: number, r: number, d: number): Surd {
+    if (n === 0 && m === 0) return Surd.zero;
+    const common = d === 1 ? 1 : gcdSafe(gcdSafe(d, n), m);
+    // + 0 turns −0 into 0
+    if (common === 1) return new Surd(n + 0, m + 0, r, d, undefined);
+    return new Surd(n / common + 0, m / common + 0, r, d / common, undefined);
+  }
+
+  /** x + y over one root in machine numbers; undefined where a whole number outgrows them. */
+  static #safeSum(x: Surd, y: Surd): Surd | undefined {
+    let [n, m, d]: [number, number, number] = [0, 0, x.#d];
+    if (x.#d === y.#d) {
+      n = x.#n + y.#n;
+      m = x.#m + y.#m;
+    } else {
+      const common = x.#d === 1 || y.#d === 1 ? 1 : gcdSafe(x.#d, y.#d);
+      const [forX, forY] = [y.#d / common, x.#d / common];
+      d = x.#d * forX;
+      const [a, b, c, e] = [x.#n * forX, y.#n * forY, x.#m * forX, y.#m * forY];
+      if (!(fits(d) && fits(a) && fits(b) && fits(c) && fits(e))) return undefined;
+      n = a + b;
+      m = c + e;
+    }
+    return fits(n) && fits(m) ? Surd.#lowest(n, m, x.#r, d) : undefined;
+  }
+
+  /** x y in machine numbers; undefined where a whole number outgrows them. A product that is not exact is beyond 2^53. */
+  static #safeProduct(x: Surd, y: Surd): Surd | undefined {
+    let n = x.#n * y.#n;
+    let m = 0;
+    if (x.#m !== 0 || y.#m !== 0) {
+      const [b, c, e] = [x.#m * y.#m, x.#n * y.#m, x.#m * y.#n];
+      if (!(fits(n) && fits(b) && fits(c) && fits(e))) return undefined;
+      n -= b;
+      m = c + e;
+    }
+    let r = x.#r;
+    if (r === 1) r = y.#r;
+    else if (y.#r !== 1) {
+      // √r √s = g √((r/g)(s/g)) with g = gcd(r, s)
+      const common = r === y.#r ? r : gcdSafe(r, y.#r);
+      r = (r / common) * (y.#r / common);
+      n *= common;
+      m *= common;
+    }
+    const d = x.#d * y.#d;
+    return fits(n) && fits(m) && fits(r) && fits(d) ? Surd.#lowest(n, m, r, d) : undefined;
+  }
+}
+
+function fits(n: number): boolean {
+  return n <= MOST && n >= -MOST;
+}
+
+function fromDouble(x: number): Surd {
+  if (Number.isSafeInteger(x)) return Surd.fromSafe(x, 0, 1);
+  const { numerator, exponent } = dyadic("Surd.from", x);
+  const power = 1n << BigInt(Math.abs(exponent));
+  return exponent >= 0 ? Surd.ratio(numerator * power, 1n) : Surd.ratio(numerator, power);
+}
+
+function requireReal(where: string, x: Surd): void {
+  if (x.isReal) return;
+  throw new GoodBasisError("not-real", `${where}: expected a real number, got ${x.text()}; take .re, .im or a modulus`);
+}
+
+function zeroDivision(where: string, dividend: string): GoodBasisError {
+  return new GoodBasisError("zero-division", `${where}: ${dividend} is divided by zero; test with isZero first`);
+}
+
+const ARITHMETIC: Arithmetic<Surd> = {
+  i: Surd.i,
+  ratio: Surd.ratio,
+  plus: (a, b) => a.plus(b),
+  minus: (a, b) => a.minus(b),
+  times: (a, b) => a.times(b),
+  over: (a, b) => (b.isZero ? undefined : a.over(b)),
+  sqrt: (a) => Surd.sqrt(a),
+  power: (a, exponent) => (exponent < 0 && a.isZero ? undefined : a.power(exponent)),
+};
