@@ -281,8 +281,10 @@ export class Surd {
     }
     if (exponent < 0) return this.inverse().power(-exponent);
     const { re, im, roots, den } = this.terms;
-    const bits = bitLength(den) + Math.max(0, ...[...re, ...im, ...roots].map(bitLength));
-    if (bits > 1 && bits * exponent > MOST_POWER_BITS) {
+    const bits = Math.max(0, ...[den, ...re, ...im, ...roots].map(bitLength));
+    // ±1 and ±i do not grow
+    const grows = bits > 1 || roots.length > 1 || (re[0] !== 0n && im[0] !== 0n);
+    if (grows && bits * exponent > MOST_POWER_BITS) {
       const message = `Surd.power: exponent ${exponent} makes a number of more than a million digits`;
       throw new GoodBasisError("budget", message, { exponent });
     }

@@ -10,9 +10,9 @@ export interface Token {
   readonly position: number;
 }
 
-const SPACE = /^(?:\s|\\[,;:! ]|\\left(?![a-z])|\\right(?![a-z])|\\q?quad(?![a-z]))+/;
-const NUMBER = /^(?:\d+(?:\.\d+)?|\.\d+)(?:[eE][+-]?\d+(?![\d.]))?/;
-const WORD = /^(?:\\[a-zA-Z]+|[a-zA-Z]+)/;
+const SPACE = /(?:\s|\\[,;:! ]|\\left(?![a-z])|\\right(?![a-z])|\\q?quad(?![a-z]))+/y;
+const NUMBER = /(?:\d+(?:\.\d+)?|\.\d+)(?:[eE][+-]?\d+(?![\d.]))?/y;
+const WORD = /(?:\\[a-zA-Z]+|[a-zA-Z]+)/y;
 const SIGNS: Readonly<Record<string, string>> = {
   "+": "+",
   "-": "-",
@@ -46,7 +46,10 @@ const PRODUCTS: readonly string[] = ["\\cdot", "\\times"];
 export function tokensOf(text: string): Token[] {
   const tokens: Token[] = [];
   let position = 0;
-  const take = (pattern: RegExp): string | undefined => pattern.exec(text.slice(position, position + 10_000))?.[0];
+  const take = (pattern: RegExp): string | undefined => {
+    pattern.lastIndex = position;
+    return pattern.exec(text)?.[0];
+  };
   while (position < text.length) {
     const space = take(SPACE);
     if (space !== undefined) {
