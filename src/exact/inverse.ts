@@ -16,12 +16,21 @@ export function invertTerms(a: Terms): Terms {
   const [root, re] = [a.roots[0] as bigint, a.re[0] as bigint];
   // den / (x √r) = den √r / (x r)
   if (a.roots.length === 1) return oneTerm(a.den, 0n, root, re * root);
-  const element = coprimeBase(a.roots)[0] as bigint;
-  const without = selectTerms(a, (r) => r % element !== 0n);
-  const withIt = selectTerms(a, (r) => r % element === 0n);
-  const conjugate = addTerms(
-    without,
-    mapTerms(withIt, (x, y) => [-x, -y]),
-  );
+  const conjugate = conjugateOver(a, coprimeBase(a.roots)[0] as bigint);
   return multiplyTerms(conjugate, invertTerms(multiplyTerms(a, conjugate)));
+}
+
+/**
+ * The conjugate over one element b of a coprime base of the roots: √b becomes −√b.
+ *
+ * @param element - divides each root of `a` once or not at all
+ */
+export function conjugateOver(a: Terms, element: bigint): Terms {
+  return addTerms(
+    selectTerms(a, (r) => r % element !== 0n),
+    mapTerms(
+      selectTerms(a, (r) => r % element === 0n),
+      (x, y) => [-x, -y],
+    ),
+  );
 }

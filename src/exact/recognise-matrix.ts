@@ -1,0 +1,56 @@
+import type { Csr } from "../numerics/csr.js";
+import { ExactOperator } from "./operator.js";
+import { type RecogniseOptions, recognise } from "./recognise.js";
+import type { ExactTriplet } from "./rows.js";
+import { Surd } from "./surd.js";
+
+/** An exact operator that a floating one may stand for: a guess, entry by entry. */
+export interface OperatorProposal {
+  readonly kind: "proposal";
+  readonly operator: ExactOperator;
+  /** The largest distance of a real or imaginary part from its proposal, rounded up. */
+  readonly distance: number;
+}
+
+/** Entries for which no number, or more than one, was found. */
+export interface NoOperatorProposal {
+  readonly kind: "none";
+  readonly entries: readonly { readonly row: number; readonly col: number; readonly re: number; readonly im: number }[];
+}
+
+/**
+ * {@link recognise} for every real and imaginary part of a square matrix; entries of rounding size come out as zero, since the
+ * scale is that of the largest part unless stated.
+ *
+ * @throws GoodBasisError `not-finite`, `option`, `shape` - no rows
+ */
+export function recogniseMatrix(csr: Csr, options: RecogniseOptions = {}): OperatorProposal | NoOperatorProposal {
+  const scale = options.scale ?? Math.max(largest(csr.re), largest(csr.im ?? new Float64Array(0)));
+  const triplets: ExactTriplet[] = [];
+  const missed: NoOperatorProposal["entries"][number][] = [];
+  let distance = 0;
+  // matrices of the trade repeat few numbers
+  const seen = new Map<number, ReturnType<typeof recognise>>();
+  const part = (x: number): ReturnType<typeof recognise> => {
+    if (!seen.has(x)) seen.set(x, recognise(x, { ...options, scale }));
+    return seen.get(x);
+  };
+  for (let row = 0; row < csr.rows; row++) {
+    for (let e = csr.ptr[row] as number; e < (csr.ptr[row + 1] as number); e++) {
+      const [re, im] = [csr.re[e] as number, csr.im === undefined ? 0 : (csr.im[e] as number)];
+      const [x, y] = [part(re), part(im)];
+      const col = csr.col[e] as number;
+      if (x === undefined || y === undefined) missed.push({ row, col, re, im });
+      else {
+        triplets.push([row, col, x.value.plus(y.value.times(Surd.i))]);
+        distance = Math.max(distance, x.distance, y.distance);
+      }
+    }
+  }
+  if (missed.length > 0) return { kind: "none", entries: missed };
+  return { kind: "proposal", operator: ExactOperator.fromTriplets(csr.rows, triplets), distance };
+}
+
+function largest(list: Float64Array): number {
+  return list.reduce((most, x) => Math.max(most, Math.abs(x)), 0);
+}
