@@ -1,7 +1,7 @@
-import { bitLength, gcd } from "./integer.js";
+import { absolute, bitLength, gcd } from "./integer.js";
 import { normPolynomial } from "./norm-polynomial.js";
 import { divide, evaluate, monic, type Polynomial, squareFreePart } from "./polynomial.js";
-import { isolateRealRoots, type RootInterval } from "./real-roots.js";
+import { type DyadicPoint, isolateRealRoots } from "./real-roots.js";
 import { Surd } from "./surd.js";
 
 /** The real roots of a polynomial that lie in the field in a simple form, and what is left. */
@@ -51,29 +51,51 @@ function rationalFieldRoots(p: Polynomial): Surd[] {
 }
 
 function wholeRoots(p: Polynomial): Surd[] {
-  const size = p.reduce((most, c) => Math.max(most, bitLength(c.terms.re[0] ?? 0n)), 1);
-  // products of four roots of at most 2^(size + 1) are known to less than 1/8
-  const intervals = isolateRealRoots(p, 4 * (size + 2) + 8);
-  const search: Search = { left: p, unknown: intervals, found: [] };
+  const coefficients = p.map((c) => c.terms.re[0] ?? 0n);
+  // every root is below 2^(size + 1) in modulus (Cauchy), so a product of four is known to much less than 2^−8
+  const size = coefficients.reduce((most, c) => Math.max(most, bitLength(c)), 1);
+  const bits = 4 * (size + 2) + 8;
+  const unknown = isolateRealRoots(coefficients, bits).map(({ low, high }): Unknown => {
+    const excess = BigInt(bits - low.bits);
+    const at = excess >= 0n ? low.place << excess : low.place >> -excess;
+    return { low: valueOfPoint(low), high: valueOfPoint(high), at };
+  });
+  const search: Search = { bits: BigInt(bits), left: p, unknown, found: [] };
   takeOnes(search);
   takePairs(search);
   if (search.unknown.length <= MOST_FOR_FOURS) takeFours(search);
   return search.found;
 }
 
+function valueOfPoint({ place, bits }: DyadicPoint): Surd {
+  return bits < 0 ? Surd.from(place << BigInt(-bits)) : Surd.ratio(place, 1n << BigInt(bits));
+}
+
+/** A root that is not known in closed form yet. */
+interface Unknown {
+  /** A closed interval around it that holds no other root. */
+  readonly low: Surd;
+  readonly high: Surd;
+  /** The root times 2^bits, to within 2. */
+  readonly at: bigint;
+}
+
 interface Search {
+  /** Binary places of the approximations. */
+  readonly bits: bigint;
   left: Polynomial;
-  unknown: readonly RootInterval[];
+  unknown: readonly Unknown[];
   readonly found: Surd[];
 }
 
+/** The whole number within 2^−8 of value / 2^places; undefined for none. */
+function nearWhole(value: bigint, places: bigint): bigint | undefined {
+  const nearest = (value + (1n << (places - 1n))) >> places;
+  return absolute(value - (nearest << places)) <= 1n << (places - 8n) ? nearest : undefined;
+}
+
 /** Divides a factor out if it divides and its roots are the very ones of the group, and notes them. */
-function take(
-  search: Search,
-  factor: Polynomial,
-  roots: () => readonly Surd[],
-  group: readonly RootInterval[],
-): boolean {
+function take(search: Search, factor: Polynomial, roots: () => readonly Surd[], group: readonly Unknown[]): boolean {
   const { quotient, rest } = divide(search.left, factor);
   if (rest.length > 0) return false;
   const values = roots().filter((x) => evaluate(factor, x).isZero);
@@ -84,52 +106,53 @@ function take(
   return true;
 }
 
-function lies(x: Surd, { low, high }: RootInterval): boolean {
-  return x.compare(low) >= 0 && x.compare(high) <= 0;
+function lies(x: Surd, { low, high }: Unknown): boolean {
+  // the lower end may be a neighbouring root
+  return x.compare(high) <= 0 && (x.compare(low) > 0 || x.equals(high));
 }
 
 function takeOnes(search: Search): void {
-  for (const interval of search.unknown) {
-    const n = nearWhole(interval.low);
+  for (const root of search.unknown) {
+    const n = nearWhole(root.at, search.bits);
     if (n === undefined) continue;
-    const root = Surd.from(n);
-    take(search, [root.negate(), Surd.one], () => [root], [interval]);
+    const value = Surd.from(n);
+    take(search, [value.negate(), Surd.one], () => [value], [root]);
   }
 }
 
 function takePairs(search: Search): void {
   for (let j = 0; j < search.unknown.length; j++) {
     for (let k = j + 1; k < search.unknown.length; k++) {
-      const [a, b] = [search.unknown[j] as RootInterval, search.unknown[k] as RootInterval];
-      const [sum, product] = [nearWhole(a.low.plus(b.low)), nearWhole(a.low.times(b.low))];
-      if (sum === undefined || product === undefined) continue;
-      const factor = [Surd.from(product), Surd.from(-sum), Surd.one];
-      const root = (): Surd[] => {
-        const difference = Surd.sqrt(sum * sum - 4n * product);
-        if (difference === undefined) return [];
-        return [Surd.from(sum).minus(difference).over(2), Surd.from(sum).plus(difference).over(2)];
-      };
-      if (take(search, factor, root, [a, b])) {
-        // the group is gone from the list: go on with what took its first place
-        j--;
-        break;
-      }
+      const [a, b] = [search.unknown[j] as Unknown, search.unknown[k] as Unknown];
+      if (!takePair(search, a, b)) continue;
+      // both are gone from the list: go on with what took the first place
+      j--;
+      break;
     }
   }
 }
 
+function takePair(search: Search, a: Unknown, b: Unknown): boolean {
+  const sum = nearWhole(a.at + b.at, search.bits);
+  const product = sum === undefined ? undefined : nearWhole(a.at * b.at, 2n * search.bits);
+  if (sum === undefined || product === undefined) return false;
+  const roots = (): Surd[] => {
+    const difference = Surd.sqrt(sum * sum - 4n * product);
+    if (difference === undefined) return [];
+    return [Surd.from(sum).minus(difference).over(2), Surd.from(sum).plus(difference).over(2)];
+  };
+  return take(search, [Surd.from(product), Surd.from(-sum), Surd.one], roots, [a, b]);
+}
+
 function takeFours(search: Search): void {
-  const { unknown } = search;
-  const gone = (interval: RootInterval): boolean => !search.unknown.includes(interval);
-  for (const [h, a] of unknown.entries()) {
-    for (const [j, b] of unknown.entries()) {
-      if (j <= h || gone(a) || gone(b)) continue;
-      for (const [k, c] of unknown.entries()) {
-        if (k <= j || gone(a) || gone(b) || gone(c)) continue;
-        for (const [l, d] of unknown.entries()) {
-          if (l <= k || [a, b, c, d].some(gone)) continue;
-          takeFour(search, [a, b, c, d]);
-        }
+  const all = search.unknown;
+  const open = (...roots: readonly Unknown[]): boolean => roots.every((root) => search.unknown.includes(root));
+  for (const [h, a] of all.entries()) {
+    for (const [j, b] of all.entries()) {
+      if (j <= h || !open(a, b)) continue;
+      for (const [k, c] of all.entries()) {
+        if (k <= j || !open(a, b, c)) continue;
+        for (const d of all.slice(k + 1)) if (open(a, b, c, d)) takeFour(search, a, b, c, d);
       }
     }
   }
@@ -137,46 +160,30 @@ function takeFours(search: Search): void {
 
 /**
  * Four roots r of one quartic with whole coefficients lie in Q(√d, √e) where the three sums r1 r2 + r3 r4, … are whole: then
- * 4 r = s ± √A1 ± √A2 ± √A3 with s the sum of all and the A the squares of r1 + r2 − r3 − r4 and its like.
+ * 4 r = s ± √A1 ± √A2 ± √A3 with s the sum of all and the A the squares of r1 + r2 − r3 − r4 and its like (the resolvent
+ * cubic of the quartic splits; common practice).
  */
-function takeFour(search: Search, group: readonly [RootInterval, RootInterval, RootInterval, RootInterval]): void {
-  const [a, b, c, d] = group.map(({ low }) => low) as [Surd, Surd, Surd, Surd];
-  const sum = nearWhole(a.plus(b).plus(c).plus(d));
+function takeFour(search: Search, a: Unknown, b: Unknown, c: Unknown, d: Unknown): void {
+  const { bits } = search;
+  const sum = nearWhole(a.at + b.at + c.at + d.at, bits);
   if (sum === undefined) return;
-  const thetas = [
-    nearWhole(a.times(b).plus(c.times(d))),
-    nearWhole(a.times(c).plus(b.times(d))),
-    nearWhole(a.times(d).plus(b.times(c))),
-  ];
-  const [t1, t2, t3] = thetas;
-  const triple = nearWhole(
-    a
-      .times(b)
-      .times(c.plus(d))
-      .plus(c.times(d).times(a.plus(b))),
-  );
-  const product = nearWhole(a.times(b).times(c).times(d));
-  if (t1 === undefined || t2 === undefined || t3 === undefined || triple === undefined || product === undefined) return;
-  const pairs = t1 + t2 + t3;
-  const factor = [product, -triple, pairs, -sum, 1n].map((n) => Surd.from(n));
+  const first = nearWhole(a.at * b.at + c.at * d.at, 2n * bits);
+  const second = nearWhole(a.at * c.at + b.at * d.at, 2n * bits);
+  const third = nearWhole(a.at * d.at + b.at * c.at, 2n * bits);
+  if (first === undefined || second === undefined || third === undefined) return;
+  const triples = nearWhole(a.at * b.at * (c.at + d.at) + c.at * d.at * (a.at + b.at), 3n * bits);
+  const product = nearWhole(a.at * b.at * c.at * d.at, 4n * bits);
+  if (triples === undefined || product === undefined) return;
+  const pairs = first + second + third;
+  const factor = [product, -triples, pairs, -sum, 1n].map((n) => Surd.from(n));
   const roots = (): Surd[] => {
-    const squares = [t1, t2, t3].map((theta) => sum * sum - 4n * (pairs - theta));
-    const [x, y, z] = squares.map((square) => Surd.sqrt(square));
+    const [x, y, z] = [first, second, third].map((theta) => Surd.sqrt(sum * sum - 4n * (pairs - theta)));
     if (x === undefined || y === undefined || z === undefined) return [];
     const signs = [1, -1];
     const all = signs.flatMap((s) =>
       signs.flatMap((t) => signs.map((u) => x.times(s).plus(y.times(t)).plus(z.times(u)).plus(sum).over(4))),
     );
-    return all.filter((root, k) => evaluate(factor, root).isZero && all.findIndex((x) => x.equals(root)) === k);
+    return all.filter((root, k) => all.findIndex((other) => other.equals(root)) === k);
   };
-  take(search, factor, roots, group);
-}
-
-/** The whole number within 1/4 of a fraction; undefined for none. */
-function nearWhole(x: Surd): bigint | undefined {
-  const [n, d] = [x.terms.re[0] ?? 0n, x.terms.den];
-  const twice = 2n * n + d;
-  const nearest = twice >= 0n ? twice / (2n * d) : -((-twice + 2n * d - 1n) / (2n * d));
-  const distance = n - nearest * d;
-  return 4n * (distance < 0n ? -distance : distance) <= d ? nearest : undefined;
+  take(search, factor, roots, [a, b, c, d]);
 }

@@ -1,65 +1,109 @@
-import { contentOf } from "./content.js";
-import { bitLength } from "./integer.js";
-import { derivative, divide, evaluate, type Polynomial } from "./polynomial.js";
-import { Surd } from "./surd.js";
+import { absolute, bitLength, gcd } from "./integer.js";
 
-/** A closed interval with rational ends that holds exactly one root; both ends are equal where the root was met exactly. */
+/** Whole coefficients by ascending power, the last one not zero. */
+export type WholePolynomial = readonly bigint[];
+
+/** A dyadic number place / 2^bits. */
+export interface DyadicPoint {
+  readonly place: bigint;
+  readonly bits: number;
+}
+
+/** A closed interval that holds exactly one root; both ends are equal where the root was met exactly. */
 export interface RootInterval {
-  readonly low: Surd;
-  readonly high: Surd;
+  readonly low: DyadicPoint;
+  readonly high: DyadicPoint;
 }
 
 /**
- * All real roots of a polynomial, each in an interval of its own, ascending: Sturm's theorem and bisection.
+ * All real roots of a polynomial, each in an interval of its own, ascending: Sturm's theorem and bisection at dyadic points,
+ * in whole numbers throughout.
  *
- * @param p - real coefficients, no double root, not zero
+ * @param p - no double root
  * @param bits - intervals are made no wider than 2^−bits
  */
-export function isolateRealRoots(p: Polynomial, bits: number): RootInterval[] {
+export function isolateRealRoots(p: WholePolynomial, bits: number): RootInterval[] {
   if (p.length <= 1) return [];
   const chain = sturmChain(p);
-  const bound = rootBound(p);
-  const width = Surd.from(2).power(-bits);
   const found: RootInterval[] = [];
-  const split = (low: Surd, below: number, high: Surd, above: number): void => {
+  // the interval (low, low + 1] / 2^depth; a negative depth makes it longer than 1
+  const split = (low: bigint, below: number, above: number, depth: number): void => {
     // Sturm: the sign changes lost count the roots with low < root ≤ high
     if (below === above) return;
     if (below - above === 1) {
-      found.push(narrow(p, low, high, width));
+      found.push(narrow(p, low, depth, bits));
       return;
     }
-    const middle = low.plus(high).over(2);
-    const between = signChanges(chain, middle);
-    split(low, below, middle, between);
-    split(middle, between, high, above);
+    const middle = 2n * low + 1n;
+    const between = signChanges(chain, middle, depth + 1);
+    split(2n * low, below, between, depth + 1);
+    split(middle, between, above, depth + 1);
   };
-  const low = bound.negate();
-  split(low, signChanges(chain, low), bound, signChanges(chain, bound));
+  const depth = -rootBoundBits(p);
+  const [left, zero, right] = [-1n, 0n, 1n].map((place) => signChanges(chain, place, depth)) as [
+    number,
+    number,
+    number,
+  ];
+  split(-1n, left, zero, depth);
+  split(0n, zero, right, depth);
   return found;
 }
 
-/** p, p′, and the negative rests of Euclid's algorithm, each divided by a positive number to stay small. */
-function sturmChain(p: Polynomial): Polynomial[] {
-  const chain: Polynomial[] = [p];
-  let [a, b] = [p, scaled(derivative(p))];
+/** p, p′, and the negative rests of Euclid's algorithm, each times a positive number that keeps it whole and small. */
+function sturmChain(p: WholePolynomial): WholePolynomial[] {
+  const chain: WholePolynomial[] = [];
+  let [a, b] = [primitive(p), primitive(p.slice(1).map((c, k) => c * BigInt(k + 1)))];
+  chain.push(a);
   while (b.length > 0) {
     chain.push(b);
-    const { rest } = divide(a, b);
-    [a, b] = [b, scaled(rest.map((c) => c.negate()))];
+    [a, b] = [b, primitive(negativeRest(a, b))];
   }
   return chain;
 }
 
-function scaled(p: Polynomial): Polynomial {
-  const inverse = contentOf(p).inverse();
-  return p.map((c) => c.times(inverse));
+/** A positive multiple of −(a mod b). */
+function negativeRest(a: WholePolynomial, b: WholePolynomial): WholePolynomial {
+  const rest = [...a];
+  const head = b[b.length - 1] as bigint;
+  const size = absolute(head);
+  for (let top = rest.length - 1; top >= b.length - 1; top--) {
+    const factor = head > 0n ? (rest[top] as bigint) : -(rest[top] as bigint);
+    if (factor === 0n) continue;
+    for (let k = 0; k < top; k++) rest[k] = (rest[k] as bigint) * size;
+    const shift = top - b.length + 1;
+    for (let k = 0; k < b.length - 1; k++) rest[shift + k] = (rest[shift + k] as bigint) - factor * (b[k] as bigint);
+  }
+  return rest.slice(0, b.length - 1).map((c) => -c);
 }
 
-function signChanges(chain: readonly Polynomial[], x: Surd): number {
+/** Without leading zeros and common divisor; signs stay. */
+function primitive(p: WholePolynomial): WholePolynomial {
+  let length = p.length;
+  while (length > 0 && p[length - 1] === 0n) length--;
+  let common = 0n;
+  for (let k = 0; k < length && common !== 1n; k++) common = gcd(common, p[k] as bigint);
+  return p.slice(0, length).map((c) => (common === 1n ? c : c / common));
+}
+
+/** The sign of p(place / 2^depth): Horner's rule for 2^(depth · degree) p, or in whole numbers where depth ≤ 0. */
+function signAt(p: WholePolynomial, place: bigint, depth: number): number {
+  const x = depth < 0 ? place << BigInt(-depth) : place;
+  const step = BigInt(Math.max(0, depth));
+  let sum = 0n;
+  let shift = 0n;
+  for (let k = p.length - 1; k >= 0; k--) {
+    sum = sum * x + ((p[k] as bigint) << shift);
+    shift += step;
+  }
+  return sum > 0n ? 1 : sum < 0n ? -1 : 0;
+}
+
+function signChanges(chain: readonly WholePolynomial[], place: bigint, depth: number): number {
   let changes = 0;
   let before = 0;
   for (const p of chain) {
-    const sign = evaluate(p, x).sign();
+    const sign = signAt(p, place, depth);
     if (sign === 0) continue;
     if (before !== 0 && sign !== before) changes++;
     before = sign;
@@ -67,32 +111,27 @@ function signChanges(chain: readonly Polynomial[], x: Surd): number {
   return changes;
 }
 
-/** A power of two above the modulus of every root (Cauchy: 1 + the largest quotient by the leading coefficient). */
-function rootBound(p: Polynomial): Surd {
-  const inverse = (p[p.length - 1] as Surd).inverse();
-  let most = Surd.zero;
-  for (const c of p) {
-    const size = c.times(inverse);
-    const modulus = size.sign() < 0 ? size.negate() : size;
-    if (modulus.compare(most) > 0) most = modulus;
-  }
-  // the sum of moduli of all terms of a real number over its denominator bounds it
-  const { roots, re, den } = most.terms;
-  const bits = roots.reduce((sum, root, k) => Math.max(sum, bitLength(re[k] as bigint) + bitLength(root)), 0);
-  return Surd.from(2).power(Math.max(0, bits - bitLength(den) + 1) + bitLength(BigInt(roots.length)) + 1);
+/** b with every root of modulus below 2^b (Cauchy: 1 + the largest coefficient over the leading one). */
+function rootBoundBits(p: WholePolynomial): number {
+  const head = absolute(p[p.length - 1] as bigint);
+  return p.reduce((most, c) => Math.max(most, bitLength(1n + absolute(c) / head)), 0) + 1;
 }
 
-/** Halves an interval (low, high] with one root until it is narrow. */
-function narrow(p: Polynomial, from: Surd, to: Surd, width: Surd): RootInterval {
-  let [low, high] = [from, to];
-  const signAtHigh = evaluate(p, high).sign();
-  if (signAtHigh === 0) return { low: high, high };
-  while (high.minus(low).compare(width) > 0) {
-    const middle = low.plus(high).over(2);
-    const sign = evaluate(p, middle).sign();
-    if (sign === 0) return { low: middle, high: middle };
-    if (sign === signAtHigh) high = middle;
-    else low = middle;
+/** Halves the interval (place, place + 1] / 2^depth with one root until it is narrow. */
+function narrow(p: WholePolynomial, from: bigint, at: number, bits: number): RootInterval {
+  let [place, depth] = [from, at];
+  const exactly = (point: bigint): RootInterval => {
+    const end = { place: point, bits: depth };
+    return { low: end, high: end };
+  };
+  const signAtHigh = signAt(p, place + 1n, depth);
+  if (signAtHigh === 0) return exactly(place + 1n);
+  while (depth < bits) {
+    depth++;
+    const middle = 2n * place + 1n;
+    const sign = signAt(p, middle, depth);
+    if (sign === 0) return exactly(middle);
+    place = sign === signAtHigh ? 2n * place : middle;
   }
-  return { low, high };
+  return { low: { place, bits: depth }, high: { place: place + 1n, bits: depth } };
 }
