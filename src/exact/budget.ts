@@ -13,7 +13,7 @@ export interface ExactBudget {
 }
 
 /** The budget of a caller who states none. */
-export const DEFAULT_BUDGET: Readonly<Required<{ [K in keyof ExactBudget]: number }>> = {
+const DEFAULT_BUDGET: Readonly<Required<{ [K in keyof ExactBudget]: number }>> = {
   digits: 20_000,
   roots: 256,
   steps: 50_000_000,

@@ -7,7 +7,7 @@ import { ExactVector } from "./vector.js";
 export type EquationRow = ReadonlyMap<number, Surd>;
 
 /** A row with coefficient 1 at its pivot column, where no other row has any. */
-export interface PivotRow {
+interface PivotRow {
   readonly pivot: number;
   readonly row: EquationRow;
 }
@@ -28,7 +28,7 @@ function weight(x: Surd): number {
  * @param meter - counts multiplications and weighs coefficients
  * @returns pivot rows by ascending pivot column
  */
-export function reducedEchelon(rows: readonly EquationRow[], meter: Meter): PivotRow[] {
+function reducedEchelon(rows: readonly EquationRow[], meter: Meter): PivotRow[] {
   const pivots = new Map<number, Map<number, Surd>>();
   const order = rows.map((_, k) => k).sort((j, k) => (rows[j]?.size ?? 0) - (rows[k]?.size ?? 0) || j - k);
   for (const k of order) {

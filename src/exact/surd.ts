@@ -4,10 +4,11 @@ import type { Complex } from "../numerics/complex.js";
 import { signOfReal } from "./bounds.js";
 import { dyadic } from "./dyadic.js";
 import { type Arithmetic, readExpression } from "./expression.js";
-import { bitLength, gcdSafe, isSafe } from "./integer.js";
+import { bitLength, isSafe } from "./integer.js";
 import { invertTerms } from "./inverse.js";
 import { type SurdTextOptions, textOf } from "./print.js";
 import { roundReal, roundRoot } from "./round.js";
+import { addSafe, invertSafe, lowestTerm, multiplySafe, type SafeTerm, ZERO_TERM } from "./safe-term.js";
 import {
   addTerms,
   imaginaryTerms,
@@ -37,8 +38,6 @@ export interface SafeParts {
   readonly den: number;
 }
 
-const MOST = Number.MAX_SAFE_INTEGER;
-
 /** Binary digits that a power may have. */
 const MOST_POWER_BITS = 4_000_000;
 
@@ -61,27 +60,22 @@ const MOST_POWER_BITS = 4_000_000;
  * ```
  */
 export class Surd {
-  /** The number if `#terms` is absent: (n + i m) √r / d in lowest terms, r square-free, d ≥ 1; zero is 0 √1 / 1. */
-  readonly #n: number;
-  readonly #m: number;
-  readonly #r: number;
-  readonly #d: number;
-  readonly #terms: Terms | undefined;
+  /** The number where one term in safe integers holds it; undefined elsewhere. */
+  readonly #safe: SafeTerm | undefined;
+  /** The general form where it is needed. */
+  readonly #large: Terms | undefined;
 
-  private constructor(n: number, m: number, r: number, d: number, terms: Terms | undefined) {
-    this.#n = n;
-    this.#m = m;
-    this.#r = r;
-    this.#d = d;
-    this.#terms = terms;
+  private constructor(safe: SafeTerm | undefined, large: Terms | undefined) {
+    this.#safe = safe;
+    this.#large = large;
   }
 
   /** 0. */
-  static readonly zero: Surd = new Surd(0, 0, 1, 1, undefined);
+  static readonly zero: Surd = new Surd(ZERO_TERM, undefined);
   /** 1. */
-  static readonly one: Surd = new Surd(1, 0, 1, 1, undefined);
+  static readonly one: Surd = new Surd({ n: 1, m: 0, r: 1, d: 1 }, undefined);
   /** The imaginary unit. */
-  static readonly i: Surd = new Surd(0, 1, 1, 1, undefined);
+  static readonly i: Surd = new Surd({ n: 0, m: 1, r: 1, d: 1 }, undefined);
 
   /**
    * Reads an exact number: text such as "-1/2*sqrt(3)", a big integer, a `Fraction`, or a double (or pair re, im of them),
@@ -121,7 +115,7 @@ export class Surd {
    */
   static fromSafe(re: number, im: number, den: number): Surd {
     if (Number.isSafeInteger(re) && Number.isSafeInteger(im) && Number.isSafeInteger(den) && den >= 1) {
-      return Surd.#lowest(re, im, 1, den);
+      return Surd.#ofSafe(lowestTerm(re, im, 1, den));
     }
     const message = `Surd.fromSafe: expected whole numbers up to 2^53 over one from 1 on, got (${re} + ${im}i) / ${den}`;
     throw new GoodBasisError("option", message, { re, im, den });
@@ -146,28 +140,32 @@ export class Surd {
     if (terms.roots.length === 0) return Surd.zero;
     const [n, m, r] = [terms.re[0] as bigint, terms.im[0] as bigint, terms.roots[0] as bigint];
     if (terms.roots.length === 1 && terms.plain && isSafe(n) && isSafe(m) && isSafe(r) && isSafe(terms.den)) {
-      return new Surd(Number(n), Number(m), Number(r), Number(terms.den), undefined);
+      return new Surd({ n: Number(n), m: Number(m), r: Number(r), d: Number(terms.den) }, undefined);
     }
-    return new Surd(0, 0, 1, 1, terms);
+    return new Surd(undefined, terms);
+  }
+
+  static #ofSafe(term: SafeTerm): Surd {
+    return term === ZERO_TERM ? Surd.zero : new Surd(term, undefined);
   }
 
   /** The general form. */
   get terms(): Terms {
-    if (this.#terms !== undefined) return this.#terms;
-    if (this.isZero) return NO_TERMS;
-    const [n, m, r, d] = [this.#n, this.#m, this.#r, this.#d];
+    if (this.#large !== undefined) return this.#large;
+    if (this.#safe === undefined || this.#safe === ZERO_TERM) return NO_TERMS;
+    const { n, m, r, d } = this.#safe;
     return { roots: [BigInt(r)], re: [BigInt(n)], im: [BigInt(m)], den: BigInt(d), plain: true };
   }
 
   /** The general form of a number that needs it; undefined for one term in safe integers. */
   get largeTerms(): Terms | undefined {
-    return this.#terms;
+    return this.#large;
   }
 
   /** The number in safe integers where it is complex rational and fits; undefined otherwise. */
   get safeParts(): SafeParts | undefined {
-    if (this.#terms !== undefined || this.#r !== 1) return undefined;
-    return { re: this.#n, im: this.#m, den: this.#d };
+    if (this.#safe === undefined || this.#safe.r !== 1) return undefined;
+    return { re: this.#safe.n, im: this.#safe.m, den: this.#safe.d };
   }
 
   /** The terms by ascending root, coefficients as fractions. */
@@ -181,33 +179,32 @@ export class Surd {
   }
 
   get isZero(): boolean {
-    return this.#terms === undefined && this.#n === 0 && this.#m === 0;
+    return this.#safe === ZERO_TERM;
   }
 
   get isReal(): boolean {
-    return this.#terms === undefined ? this.#m === 0 : this.#terms.im.every((y) => y === 0n);
+    return this.#safe?.m === 0 || (this.#large?.im.every((y) => y === 0n) ?? false);
   }
 
   /** Whether it is a real fraction. */
   get isRational(): boolean {
-    if (this.#terms === undefined) return this.#m === 0 && this.#r === 1;
-    return this.#terms.roots.length === 1 && this.#terms.roots[0] === 1n && this.#terms.im[0] === 0n;
+    if (this.#safe !== undefined) return this.#safe.m === 0 && this.#safe.r === 1;
+    return this.terms.roots.length === 1 && this.terms.roots[0] === 1n && this.terms.im[0] === 0n;
   }
 
+  /** Whether it is a whole number. */
   get isInteger(): boolean {
-    return this.isRational && (this.#terms === undefined ? this.#d === 1 : this.#terms.den === 1n);
+    return this.isRational && (this.#safe === undefined ? this.terms.den === 1n : this.#safe.d === 1);
   }
 
   /** x + y. @throws GoodBasisError what {@link Surd.from} throws */
   plus(other: SurdInput): Surd {
     const b = Surd.from(other);
-    if (this.#terms === undefined && b.#terms === undefined) {
-      if (this.isZero) return b;
-      if (b.isZero) return this;
-      if (this.#r === b.#r) {
-        const sum = Surd.#safeSum(this, b);
-        if (sum !== undefined) return sum;
-      }
+    if (this.isZero) return b;
+    if (b.isZero) return this;
+    if (this.#safe !== undefined && b.#safe !== undefined && this.#safe.r === b.#safe.r) {
+      const sum = addSafe(this.#safe, b.#safe);
+      if (sum !== undefined) return Surd.#ofSafe(sum);
     }
     return Surd.fromTerms(addTerms(this.terms, b.terms));
   }
@@ -219,15 +216,19 @@ export class Surd {
 
   /** −x. */
   negate(): Surd {
-    if (this.#terms === undefined) return new Surd(0 - this.#n, 0 - this.#m, this.#r, this.#d, undefined);
-    return Surd.fromTerms(mapTerms(this.#terms, (re, im) => [-re, -im]));
+    if (this.isZero) return this;
+    if (this.#safe !== undefined) {
+      const { n, m, r, d } = this.#safe;
+      return new Surd({ n: 0 - n, m: 0 - m, r, d }, undefined);
+    }
+    return Surd.fromTerms(mapTerms(this.terms, (re, im) => [-re, -im]));
   }
 
   /** The complex conjugate. */
   conjugate(): Surd {
     if (this.isReal) return this;
-    if (this.#terms === undefined) return new Surd(this.#n, 0 - this.#m, this.#r, this.#d, undefined);
-    return Surd.fromTerms(mapTerms(this.#terms, (re, im) => [re, -im]));
+    if (this.#safe !== undefined) return new Surd({ ...this.#safe, m: 0 - this.#safe.m }, undefined);
+    return Surd.fromTerms(mapTerms(this.terms, (re, im) => [re, -im]));
   }
 
   /**
@@ -237,9 +238,9 @@ export class Surd {
    */
   times(other: SurdInput): Surd {
     const b = Surd.from(other);
-    if (this.#terms === undefined && b.#terms === undefined) {
-      const product = Surd.#safeProduct(this, b);
-      if (product !== undefined) return product;
+    if (this.#safe !== undefined && b.#safe !== undefined) {
+      const product = multiplySafe(this.#safe, b.#safe);
+      if (product !== undefined) return Surd.#ofSafe(product);
     }
     return Surd.fromTerms(multiplyTerms(this.terms, b.terms));
   }
@@ -251,11 +252,8 @@ export class Surd {
    */
   inverse(): Surd {
     if (this.isZero) throw zeroDivision("Surd.inverse", "1");
-    if (this.#terms === undefined && this.#m === 0) {
-      // d / (n √r) = d √r / (n r)
-      const [sign, den] = [Math.sign(this.#n), Math.abs(this.#n) * this.#r];
-      if (den <= MOST) return Surd.#lowest(sign * this.#d, 0, this.#r, den);
-    }
+    const inverse = this.#safe && invertSafe(this.#safe);
+    if (inverse !== undefined) return Surd.#ofSafe(inverse);
     return Surd.fromTerms(invertTerms(this.terms));
   }
 
@@ -299,8 +297,9 @@ export class Surd {
   /** Whether both are the same number. @throws GoodBasisError what {@link Surd.from} throws */
   equals(other: SurdInput): boolean {
     const b = Surd.from(other);
-    if (this.#terms === undefined && b.#terms === undefined) {
-      return this.#n === b.#n && this.#m === b.#m && this.#d === b.#d && this.#r === b.#r;
+    if (this.#safe !== undefined && b.#safe !== undefined) {
+      const [x, y] = [this.#safe, b.#safe];
+      return x.n === y.n && x.m === y.m && x.d === y.d && x.r === y.r;
     }
     return this.minus(b).isZero;
   }
@@ -308,14 +307,14 @@ export class Surd {
   /** The real part. */
   get re(): Surd {
     if (this.isReal) return this;
-    if (this.#terms === undefined) return Surd.#lowest(this.#n, 0, this.#r, this.#d);
-    return Surd.fromTerms(realTerms(this.#terms));
+    if (this.#safe !== undefined) return Surd.#ofSafe(lowestTerm(this.#safe.n, 0, this.#safe.r, this.#safe.d));
+    return Surd.fromTerms(realTerms(this.terms));
   }
 
   /** The imaginary part, a real number. */
   get im(): Surd {
-    if (this.#terms === undefined) return Surd.#lowest(this.#m, 0, this.#r, this.#d);
-    return Surd.fromTerms(imaginaryTerms(this.#terms));
+    if (this.#safe !== undefined) return Surd.#ofSafe(lowestTerm(this.#safe.m, 0, this.#safe.r, this.#safe.d));
+    return Surd.fromTerms(imaginaryTerms(this.terms));
   }
 
   /** |x|² = x x*. */
@@ -330,8 +329,8 @@ export class Surd {
    */
   sign(): -1 | 0 | 1 {
     requireReal("Surd.sign", this);
-    if (this.#terms === undefined) return this.#n > 0 ? 1 : this.#n < 0 ? -1 : 0;
-    return signOfReal(this.#terms);
+    if (this.#safe === undefined) return signOfReal(this.terms);
+    return this.#safe.n > 0 ? 1 : this.#safe.n < 0 ? -1 : 0;
   }
 
   /**
@@ -359,7 +358,7 @@ export class Surd {
   /** The doubles nearest to the real and imaginary part, each correctly rounded, ties to even. */
   toComplex(): Complex {
     // the quotient of two safe integers is rounded correctly by the machine
-    if (this.#terms === undefined && this.#r === 1) return { re: this.#n / this.#d, im: this.#m / this.#d };
+    if (this.#safe?.r === 1) return { re: this.#safe.n / this.#safe.d, im: this.#safe.m / this.#safe.d };
     const { re, im } = this;
     return { re: roundReal(re.terms, "nearest"), im: roundReal(im.terms, "nearest") };
   }
@@ -398,60 +397,6 @@ export class Surd {
   toJSON(): string {
     return this.text();
   }
-
-  /** (n + i m) √r / d of safe integers, r square-free, d ≥ 1. */
-  static #lowest(n: number, m: number, r: number, d: number): Surd {
-    if (n === 0 && m === 0) return Surd.zero;
-    const common = d === 1 ? 1 : gcdSafe(gcdSafe(d, n), m);
-    // + 0 turns −0 into 0
-    if (common === 1) return new Surd(n + 0, m + 0, r, d, undefined);
-    return new Surd(n / common + 0, m / common + 0, r, d / common, undefined);
-  }
-
-  /** x + y over one root in machine numbers; undefined where a whole number outgrows them. */
-  static #safeSum(x: Surd, y: Surd): Surd | undefined {
-    let [n, m, d]: [number, number, number] = [0, 0, x.#d];
-    if (x.#d === y.#d) {
-      n = x.#n + y.#n;
-      m = x.#m + y.#m;
-    } else {
-      const common = x.#d === 1 || y.#d === 1 ? 1 : gcdSafe(x.#d, y.#d);
-      const [forX, forY] = [y.#d / common, x.#d / common];
-      d = x.#d * forX;
-      const [a, b, c, e] = [x.#n * forX, y.#n * forY, x.#m * forX, y.#m * forY];
-      if (!(fits(d) && fits(a) && fits(b) && fits(c) && fits(e))) return undefined;
-      n = a + b;
-      m = c + e;
-    }
-    return fits(n) && fits(m) ? Surd.#lowest(n, m, x.#r, d) : undefined;
-  }
-
-  /** x y in machine numbers; undefined where a whole number outgrows them. A product that is not exact is beyond 2^53. */
-  static #safeProduct(x: Surd, y: Surd): Surd | undefined {
-    let n = x.#n * y.#n;
-    let m = 0;
-    if (x.#m !== 0 || y.#m !== 0) {
-      const [b, c, e] = [x.#m * y.#m, x.#n * y.#m, x.#m * y.#n];
-      if (!(fits(n) && fits(b) && fits(c) && fits(e))) return undefined;
-      n -= b;
-      m = c + e;
-    }
-    let r = x.#r;
-    if (r === 1) r = y.#r;
-    else if (y.#r !== 1) {
-      // √r √s = g √((r/g)(s/g)) with g = gcd(r, s)
-      const common = r === y.#r ? r : gcdSafe(r, y.#r);
-      r = (r / common) * (y.#r / common);
-      n *= common;
-      m *= common;
-    }
-    const d = x.#d * y.#d;
-    return fits(n) && fits(m) && fits(r) && fits(d) ? Surd.#lowest(n, m, r, d) : undefined;
-  }
-}
-
-function fits(n: number): boolean {
-  return n <= MOST && n >= -MOST;
 }
 
 function fromDouble(x: number): Surd {

@@ -9,9 +9,9 @@ export interface Fixed {
   readonly im: bigint;
 }
 
-export const fixed = (n: bigint, d = 1n): Fixed => ({ re: (n << PLACES) / d, im: 0n });
+const fixed = (n: bigint, d = 1n): Fixed => ({ re: (n << PLACES) / d, im: 0n });
 export const plus = (a: Fixed, b: Fixed): Fixed => ({ re: a.re + b.re, im: a.im + b.im });
-export const minus = (a: Fixed, b: Fixed): Fixed => ({ re: a.re - b.re, im: a.im - b.im });
+const minus = (a: Fixed, b: Fixed): Fixed => ({ re: a.re - b.re, im: a.im - b.im });
 export const times = (a: Fixed, b: Fixed): Fixed => ({
   re: (a.re * b.re - a.im * b.im) >> PLACES,
   im: (a.re * b.im + a.im * b.re) >> PLACES,
