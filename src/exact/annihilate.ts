@@ -22,6 +22,15 @@ export type Annihilation =
  * @param values - the guessed eigenvalues
  * @param vectors - vectors that span the space
  * @throws GoodBasisError `shape`, `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { annihilates, ExactOperator, ExactVector, Surd } from "goodbasis";
+ *
+ * const flip = ExactOperator.from([[0, 1], [1, 0]]);
+ * const kets = [ExactVector.unit(2, 0), ExactVector.unit(2, 1)];
+ * console.log(annihilates(flip, [Surd.from(1), Surd.from(-1)], kets).kind); // annihilated
+ * ```
  */
 export function annihilates(
   operator: ExactOperator,
@@ -53,19 +62,30 @@ function shifted(operator: ExactOperator, value: Surd, vector: ExactVector, mete
  * @param values - the distinct eigenvalues
  * @param chosen - the place k of the one that is kept
  * @throws GoodBasisError `option` - two values are equal; `shape`, `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, ExactVector, spectralPart, Surd } from "goodbasis";
+ *
+ * const flip = ExactOperator.from([[0, 1], [1, 0]]);
+ * const even = spectralPart(flip, [Surd.from(1), Surd.from(-1)], 0, ExactVector.unit(2, 0));
+ * console.log(even.component(1).text()); // 1/2
+ * ```
  */
-export function project(
+export function spectralPart(
   operator: ExactOperator,
   values: readonly Surd[],
   chosen: number,
   vector: ExactVector,
   budget?: ExactBudget,
 ): ExactVector {
-  requireDistinct("project", values);
-  const meter = new Meter("project", budget);
+  requireDistinct("spectralPart", values);
+  const meter = new Meter("spectralPart", budget);
   const own = values[chosen];
   if (own === undefined) {
-    throw new GoodBasisError("option", `project: there is no eigenvalue ${chosen} among ${values.length}`, { chosen });
+    throw new GoodBasisError("option", `spectralPart: there is no eigenvalue ${chosen} among ${values.length}`, {
+      chosen,
+    });
   }
   let rest = vector;
   let scale = Surd.one;
@@ -89,6 +109,14 @@ export function project(
  * @param operator - the matrix of A in the whole space, in any basis; no Hermitian form is needed
  * @param values - distinct
  * @throws GoodBasisError `option` - two values are equal; `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, projectorTraces, Surd } from "goodbasis";
+ *
+ * const a = ExactOperator.diagonal([2, 2, -1]);
+ * console.log(projectorTraces(a, [Surd.from(2), Surd.from(-1)]).join(" ")); // 2 1
+ * ```
  */
 export function projectorTraces(operator: ExactOperator, values: readonly Surd[], budget?: ExactBudget): Surd[] {
   requireDistinct("projectorTraces", values);

@@ -12,6 +12,14 @@ import { Surd } from "./surd.js";
  *
  * @returns n + 1 coefficients by ascending power, the last one 1
  * @throws GoodBasisError `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { characteristicPolynomial, ExactOperator, fieldRoots } from "goodbasis";
+ *
+ * const chain = ExactOperator.from([[0, 1, 0], [1, 0, 1], [0, 1, 0]]);
+ * console.log(fieldRoots(characteristicPolynomial(chain)).roots.join(" ")); // -sqrt(2) 0 sqrt(2)
+ * ```
  */
 export function characteristicPolynomial(operator: ExactOperator, budget?: ExactBudget): Polynomial {
   const { n } = operator;
@@ -37,6 +45,13 @@ export function characteristicPolynomial(operator: ExactOperator, budget?: Exact
  *
  * @returns coefficients by ascending power, the last one 1
  * @throws GoodBasisError `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, minimalPolynomial } from "goodbasis";
+ *
+ * console.log(minimalPolynomial(ExactOperator.diagonal([1, 1, 2])).join(" ")); // 2 -3 1
+ * ```
  */
 export function minimalPolynomial(operator: ExactOperator, budget?: ExactBudget): Polynomial {
   const { n } = operator;

@@ -82,9 +82,16 @@ function rowsOf(operator: ExactOperator): Map<number, Surd>[] {
  * The rank of an exact matrix.
  *
  * @throws GoodBasisError `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, exactRank } from "goodbasis";
+ *
+ * console.log(exactRank(ExactOperator.from([["sqrt(2)", "sqrt(6)"], [1, "sqrt(3)"]]))); // 1
+ * ```
  */
-export function rank(operator: ExactOperator, budget?: ExactBudget): number {
-  return reducedEchelon(rowsOf(operator), new Meter("rank", budget)).length;
+export function exactRank(operator: ExactOperator, budget?: ExactBudget): number {
+  return reducedEchelon(rowsOf(operator), new Meter("exactRank", budget)).length;
 }
 
 /**
@@ -93,9 +100,17 @@ export function rank(operator: ExactOperator, budget?: ExactBudget): number {
  * @returns primitive vectors, one for each free column, by ascending free column; not orthogonal in general, see
  *   {@link orthogonalise}
  * @throws GoodBasisError `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, exactKernel } from "goodbasis";
+ *
+ * const [v] = exactKernel(ExactOperator.from([["sqrt(2)", "sqrt(6)"], [1, "sqrt(3)"]]));
+ * console.log(v?.component(0).text(), v?.component(1).text()); // 1 -1/sqrt(3)
+ * ```
  */
-export function kernel(operator: ExactOperator, budget?: ExactBudget): ExactVector[] {
-  return nullSpace(operator.n, rowsOf(operator), new Meter("kernel", budget));
+export function exactKernel(operator: ExactOperator, budget?: ExactBudget): ExactVector[] {
+  return nullSpace(operator.n, rowsOf(operator), new Meter("exactKernel", budget));
 }
 
 /** The null space of equations in n unknowns. */

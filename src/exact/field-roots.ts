@@ -25,6 +25,14 @@ const MOST_FOR_FOURS = 20;
  * to sufficient precision, a few roots have only one candidate for each, and exact division decides.
  *
  * @param p - not zero
+ *
+ * @example
+ * ```ts no-check
+ * import { fieldRoots, Surd } from "goodbasis";
+ *
+ * const { roots, rest } = fieldRoots([-1, -1, 1].map((c) => Surd.from(c)));
+ * console.log(roots[1]?.text({ form: "unicode" }), rest.length); // 1/2 + √5/2 1
+ * ```
  */
 export function fieldRoots(p: Polynomial): FieldRoots {
   const own = squareFreePart(p);

@@ -14,6 +14,14 @@ export interface Orthogonalised {
  * not matter.
  *
  * @throws GoodBasisError `shape` - vectors over different numbers of kets; `budget`
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactVector, orthogonalise } from "goodbasis";
+ *
+ * const { vectors } = orthogonalise([ExactVector.from([1, 1, 0]), ExactVector.from([1, 0, 1])]);
+ * console.log(vectors[1]?.component(0).text(), vectors[1]?.squaredNorm.text()); // 1 6
+ * ```
  */
 export function orthogonalise(vectors: readonly ExactVector[], budget?: ExactBudget): Orthogonalised {
   const meter = new Meter("orthogonalise", budget);

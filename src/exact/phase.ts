@@ -13,6 +13,13 @@ const LARGE_SQUARED: Surd = Surd.ratio(987n * 987n, 1_000_000n);
  *
  * The vector is multiplied by a number of the field, ±1 or the conjugate of that component; since vectors are not normalised,
  * its modulus need not be in the field.
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactVector, fixExactPhase } from "goodbasis";
+ *
+ * console.log(fixExactPhase(ExactVector.from(["-i", "1"])).values.join(" ")); // 1 i
+ * ```
  */
 export function fixExactPhase(vector: ExactVector): ExactVector {
   const squares = vector.values.map((x) => x.squaredModulus());

@@ -23,6 +23,15 @@ export interface NoOperatorProposal {
  * scale is that of the largest part unless stated.
  *
  * @throws GoodBasisError `not-finite`, `option`, `shape` - no rows
+ *
+ * @example
+ * ```ts no-check
+ * import { Operator, recogniseMatrix } from "goodbasis";
+ *
+ * const floating = Operator.from([[1, Math.SQRT1_2], [Math.SQRT1_2, 1 / 3]]);
+ * const proposal = recogniseMatrix(floating.csr);
+ * if (proposal.kind === "proposal") console.log(proposal.operator.entry(0, 1).text()); // 1/sqrt(2)
+ * ```
  */
 export function recogniseMatrix(csr: Csr, options: RecogniseOptions = {}): OperatorProposal | NoOperatorProposal {
   const scale = options.scale ?? Math.max(largest(csr.re), largest(csr.im ?? new Float64Array(0)));

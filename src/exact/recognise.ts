@@ -40,6 +40,13 @@ interface Interval {
  *
  * @returns undefined where nothing fits, or more than one number might
  * @throws GoodBasisError `not-finite`; `option` - an option outside its range
+ *
+ * @example
+ * ```ts no-check
+ * import { recognise } from "goodbasis";
+ *
+ * console.log(recognise(0.8164965809277260)?.value.text(), recognise(Math.PI)); // sqrt(2/3) undefined
+ * ```
  */
 export function recognise(value: number, options: RecogniseOptions = {}): Proposal | undefined {
   const { tolerance, scale, maxDenominator, maxSquare } = checked(options);

@@ -22,6 +22,14 @@ export type Representation =
  * @param vectors - mutually orthogonal, not zero
  * @throws GoodBasisError `shape` - no vector, or one over another number of kets; `option` - a zero vector, or two that are
  *   not orthogonal
+ *
+ * @example
+ * ```ts no-check
+ * import { ExactOperator, ExactVector, represent } from "goodbasis";
+ *
+ * const even = represent(ExactOperator.from([[3, 1], [1, 3]]), [ExactVector.from([1, 1])]);
+ * if (even.kind === "invariant") console.log(even.matrix.entry(0, 0).text()); // 4
+ * ```
  */
 export function represent(operator: ExactOperator, vectors: readonly ExactVector[]): Representation {
   requireOrthogonal(vectors);

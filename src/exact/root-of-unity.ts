@@ -11,6 +11,13 @@ const ORDER = 24;
  * @param k - a whole number, of either sign
  * @param order - 1, 2, 3, …
  * @throws GoodBasisError `option`
+ *
+ * @example
+ * ```ts no-check
+ * import { exactRootOfUnity } from "goodbasis";
+ *
+ * console.log(exactRootOfUnity(1, 8)?.text(), exactRootOfUnity(1, 10)); // (1+i)/sqrt(2) undefined
+ * ```
  */
 export function exactRootOfUnity(k: number, order: number): Surd | undefined {
   if (!Number.isSafeInteger(k) || !Number.isSafeInteger(order) || order < 1) {

@@ -1,7 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { annihilates, project, projectorTraces } from "../../src/exact/annihilate.js";
-import { kernel } from "../../src/exact/elimination.js";
+import { annihilates, projectorTraces, spectralPart } from "../../src/exact/annihilate.js";
+import { exactKernel } from "../../src/exact/elimination.js";
 import { orthogonalise } from "../../src/exact/gram-schmidt.js";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { represent } from "../../src/exact/represent.js";
@@ -55,7 +55,7 @@ describe("annihilating products", () => {
     const values = levels(1, 3, 5);
     fc.assert(
       fc.property(vector(square.n, smallSurd), (v) => {
-        const parts = values.map((_, k) => project(square, values, k, v));
+        const parts = values.map((_, k) => spectralPart(square, values, k, v));
         expect(parts.reduce((sum, part) => sum.plus(part)).equals(v)).toBe(true);
         parts.forEach((part, k) => {
           expect(square.apply(part).equals(part.scale(values[k] ?? 0))).toBe(true);
@@ -63,10 +63,10 @@ describe("annihilating products", () => {
       }),
       { seed: 151, numRuns: 20 },
     );
-    expect(() => project(square, values, 3, ExactVector.unit(12, 0))).toThrow(
+    expect(() => spectralPart(square, values, 3, ExactVector.unit(12, 0))).toThrow(
       expect.objectContaining({ code: "option" }),
     );
-    expect(() => project(square, levels(1, 1), 0, ExactVector.unit(12, 0))).toThrow(
+    expect(() => spectralPart(square, levels(1, 1), 0, ExactVector.unit(12, 0))).toThrow(
       expect.objectContaining({ code: "option" }),
     );
   });
@@ -80,7 +80,7 @@ describe("annihilating products", () => {
 
 describe("the matrix in an invariant space", () => {
   const { square, z, plus } = coupled(3, 2);
-  const level = kernel(square.minus(ExactOperator.identity(12).scale("15/4")));
+  const level = exactKernel(square.minus(ExactOperator.identity(12).scale("15/4")));
   const { vectors } = orthogonalise(level);
 
   it("has the traces and products of the operator there", () => {
