@@ -9,6 +9,7 @@ export interface ExactRows {
   readonly ptr: Int32Array;
   /** Column of each entry. */
   readonly col: Int32Array;
+  /** The entries, row by row. */
   readonly entries: Entries;
 }
 

@@ -6,8 +6,12 @@ import type { ExactVector } from "./vector.js";
 
 /** Whether a product annihilates a space: yes, or the first vector that it leaves. */
 export type Annihilation =
-  | { readonly kind: "annihilated" }
   | {
+      /** Every vector became zero. */
+      readonly kind: "annihilated";
+    }
+  | {
+      /** Some vector did not. */
       readonly kind: "left over";
       /** The place of the vector. */
       readonly column: number;

@@ -106,7 +106,7 @@ export function exactRank(operator: ExactOperator, budget?: ExactBudget): number
  * import { ExactOperator, exactKernel } from "goodbasis";
  *
  * const [v] = exactKernel(ExactOperator.from([["sqrt(2)", "sqrt(6)"], [1, "sqrt(3)"]]));
- * console.log(v?.component(0).text(), v?.component(1).text()); // 1 -1/sqrt(3)
+ * console.log(v?.component(0).text(), v?.component(1).text()); // -sqrt(3) 1
  * ```
  */
 export function exactKernel(operator: ExactOperator, budget?: ExactBudget): ExactVector[] {

@@ -3,9 +3,11 @@ import { Surd } from "./surd.js";
 
 /** Complex rational numbers over one denominator, all in safe integers: (re_k + i im_k) / den. */
 export interface WholeEntries {
+  /** Numerators of the real parts. */
   readonly re: Float64Array;
-  /** Absent where every imaginary part is zero. */
+  /** Numerators of the imaginary parts; absent where all are zero. */
   readonly im: Float64Array | undefined;
+  /** ≥ 1. */
   readonly den: number;
 }
 
@@ -17,6 +19,7 @@ const LARGEST_DENOMINATOR = 2 ** 26;
  * each form is made from the other when first asked for. Integer matrices multiply on the first form and never see a root.
  */
 export class Entries {
+  /** How many. */
   readonly length: number;
   #surds: readonly Surd[] | undefined;
   /** Null where the numbers do not have that form. */
@@ -28,15 +31,21 @@ export class Entries {
     this.#whole = whole;
   }
 
+  /** Wraps a list of numbers. */
   static ofSurds(surds: readonly Surd[]): Entries {
     return new Entries(surds.length, surds, undefined);
   }
 
-  /** @param whole - safe integers, den ≥ 1; shared, not copied */
+  /**
+   * Wraps machine integers.
+   *
+   * @param whole - safe integers, den ≥ 1; shared, not copied
+   */
   static ofWhole(whole: WholeEntries): Entries {
     return new Entries(whole.re.length, undefined, whole);
   }
 
+  /** The numbers themselves. */
   get surds(): readonly Surd[] {
     this.#surds ??= surdsOf(this.#whole as WholeEntries);
     return this.#surds;
@@ -66,6 +75,7 @@ export class Entries {
     );
   }
 
+  /** Number k of the list. */
   at(k: number): Surd {
     return this.surds[k] as Surd;
   }

@@ -7,6 +7,7 @@ import { Surd } from "./surd.js";
 
 /** Sparse rows of doubles, and how far each stored entry may be from the exact one. */
 export interface FloatingRows {
+  /** The rounded entries. */
   readonly csr: Csr;
   /** One bound on the modulus of the error for each stored entry; `"exact"` where every entry is a double. */
   readonly radius: Float64Array | "exact";

@@ -11,9 +11,11 @@ import { ExactVector } from "./vector.js";
 
 /** An element of an exact operator. */
 export interface ExactElement {
-  /** 0-based. */
+  /** Row, 0-based. */
   readonly row: number;
+  /** Column, 0-based. */
   readonly col: number;
+  /** Not zero. */
   readonly value: Surd;
 }
 

@@ -6,7 +6,9 @@ import { Surd } from "./surd.js";
 
 /** An exact operator that a floating one may stand for: a guess, entry by entry. */
 export interface OperatorProposal {
+  /** Says what it is. */
   readonly kind: "proposal";
+  /** The exact operator. */
   readonly operator: ExactOperator;
   /** The largest distance of a real or imaginary part from its proposal, rounded up. */
   readonly distance: number;
@@ -14,8 +16,22 @@ export interface OperatorProposal {
 
 /** Entries for which no number, or more than one, was found. */
 export interface NoOperatorProposal {
+  /** No proposal is made. */
   readonly kind: "none";
-  readonly entries: readonly { readonly row: number; readonly col: number; readonly re: number; readonly im: number }[];
+  /** The entries in question, row by row. */
+  readonly entries: readonly UnknownEntry[];
+}
+
+/** An entry that stands for no known number, or for several. */
+export interface UnknownEntry {
+  /** Row, 0-based. */
+  readonly row: number;
+  /** Column, 0-based. */
+  readonly col: number;
+  /** Its real part. */
+  readonly re: number;
+  /** Its imaginary part. */
+  readonly im: number;
 }
 
 /**
@@ -36,7 +52,7 @@ export interface NoOperatorProposal {
 export function recogniseMatrix(csr: Csr, options: RecogniseOptions = {}): OperatorProposal | NoOperatorProposal {
   const scale = options.scale ?? Math.max(largest(csr.re), largest(csr.im ?? new Float64Array(0)));
   const triplets: ExactTriplet[] = [];
-  const missed: NoOperatorProposal["entries"][number][] = [];
+  const missed: UnknownEntry[] = [];
   let distance = 0;
   // matrices of the trade repeat few numbers
   const seen = new Map<number, ReturnType<typeof recognise>>();

@@ -17,7 +17,9 @@ export interface RecogniseOptions {
 
 /** An exact number that a double may stand for: a guess to be confirmed by whoever knows the matrix, never a proof. */
 export interface Proposal {
+  /** Says what it is. */
   readonly kind: "proposal";
+  /** The exact number. */
   readonly value: Surd;
   /** |double − value|, rounded up. */
   readonly distance: number;

@@ -5,8 +5,14 @@ import type { ExactVector } from "./vector.js";
 
 /** The matrix of an operator in an invariant space, or where it leaves the space. */
 export type Representation =
-  | { readonly kind: "invariant"; readonly matrix: ExactOperator }
   | {
+      /** The space is invariant. */
+      readonly kind: "invariant";
+      /** A as it acts on the given vectors. */
+      readonly matrix: ExactOperator;
+    }
+  | {
+      /** The operator leads out of the space. */
       readonly kind: "leaves";
       /** The place of the first vector whose image is not in the space. */
       readonly column: number;

@@ -27,14 +27,19 @@ export type SurdInput = Surd | Fraction | bigint | number | string | Complex;
 export interface SurdTerm {
   /** ≥ 1, not a square unless 1. */
   readonly root: bigint;
+  /** Real part of the coefficient. */
   readonly re: Fraction;
+  /** Imaginary part of the coefficient. */
   readonly im: Fraction;
 }
 
 /** A complex rational number in safe integers: (re + i im) / den. */
 export interface SafeParts {
+  /** Numerator of the real part. */
   readonly re: number;
+  /** Numerator of the imaginary part. */
   readonly im: number;
+  /** ≥ 1. */
   readonly den: number;
 }
 
@@ -178,10 +183,12 @@ export class Surd {
     }));
   }
 
+  /** Whether it is zero, exactly. */
   get isZero(): boolean {
     return this.#safe === ZERO_TERM;
   }
 
+  /** Whether the imaginary part is zero, exactly. */
   get isReal(): boolean {
     return this.#safe?.m === 0 || (this.#large?.im.every((y) => y === 0n) ?? false);
   }

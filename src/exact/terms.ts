@@ -11,10 +11,15 @@ import { splitSquare } from "./squarefree.js";
  * all coefficients. Where `plain`, every root is known to be square-free and the form is unique.
  */
 export interface Terms {
+  /** Whole numbers ≥ 1 under the root, ascending. */
   readonly roots: readonly bigint[];
+  /** Numerators of the real parts. */
   readonly re: readonly bigint[];
+  /** Numerators of the imaginary parts. */
   readonly im: readonly bigint[];
+  /** ≥ 1. */
   readonly den: bigint;
+  /** Whether every root is known to be square-free. */
   readonly plain: boolean;
 }
 

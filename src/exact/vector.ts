@@ -86,6 +86,7 @@ export class ExactVector {
     return this.index[low] === k ? (this.values[low] as Surd) : Surd.zero;
   }
 
+  /** Whether every component is zero. */
   get isZero(): boolean {
     return this.values.length === 0;
   }
