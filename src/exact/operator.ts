@@ -38,7 +38,11 @@ export interface ExactElement {
 export class ExactOperator {
   /** The number of kets. */
   readonly n: number;
-  /** The entries in sparse rows; read-only. */
+  /**
+   * The entries in sparse rows; read-only.
+   *
+   * @internal
+   */
   readonly rows: ExactRows;
   #columns: ExactRows | undefined;
   #isHermitian: boolean | undefined;
@@ -90,6 +94,8 @@ export class ExactOperator {
 
   /**
    * Wraps sparse rows without copying or checking them: columns ascend within each row, no entry is zero.
+   *
+   * @internal
    */
   static fromRows(n: number, rows: ExactRows): ExactOperator {
     return new ExactOperator(n, rows);
@@ -323,7 +329,11 @@ export class ExactOperator {
     return this.n === other.n && this.minus(other).isZero;
   }
 
-  /** The transpose in sparse rows, made once: row k holds column k. */
+  /**
+   * The transpose in sparse rows, made once: row k holds column k.
+   *
+   * @internal
+   */
   get columns(): ExactRows {
     this.#columns ??= flipRows(this.rows, false);
     return this.#columns;

@@ -140,7 +140,11 @@ export class Surd {
     return Surd.fromTerms(oneTerm(1n, 0n, (re[0] as bigint) * den, den));
   }
 
-  /** Wraps a general form, which must keep the invariants of {@link Terms}. */
+  /**
+   * Wraps a general form, which must keep the invariants of {@link Terms}.
+   *
+   * @internal
+   */
   static fromTerms(terms: Terms): Surd {
     if (terms.roots.length === 0) return Surd.zero;
     const [n, m, r] = [terms.re[0] as bigint, terms.im[0] as bigint, terms.roots[0] as bigint];
@@ -154,7 +158,11 @@ export class Surd {
     return term === ZERO_TERM ? Surd.zero : new Surd(term, undefined);
   }
 
-  /** The general form. */
+  /**
+   * The general form.
+   *
+   * @internal
+   */
   get terms(): Terms {
     if (this.#large !== undefined) return this.#large;
     if (this.#safe === undefined || this.#safe === ZERO_TERM) return NO_TERMS;
@@ -162,12 +170,20 @@ export class Surd {
     return { roots: [BigInt(r)], re: [BigInt(n)], im: [BigInt(m)], den: BigInt(d), plain: true };
   }
 
-  /** The general form of a number that needs it; undefined for one term in safe integers. */
+  /**
+   * The general form of a number that needs it; undefined for one term in safe integers.
+   *
+   * @internal
+   */
   get largeTerms(): Terms | undefined {
     return this.#large;
   }
 
-  /** The number in safe integers where it is complex rational and fits; undefined otherwise. */
+  /**
+   * The number in safe integers where it is complex rational and fits; undefined otherwise.
+   *
+   * @internal
+   */
   get safeParts(): SafeParts | undefined {
     if (this.#safe === undefined || this.#safe.r !== 1) return undefined;
     return { re: this.#safe.n, im: this.#safe.m, den: this.#safe.d };
