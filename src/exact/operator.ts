@@ -92,15 +92,6 @@ export class ExactOperator {
     return new ExactOperator(csr.rows, exactRowsOf(csr));
   }
 
-  /**
-   * Wraps sparse rows without copying or checking them: columns ascend within each row, no entry is zero.
-   *
-   * @internal
-   */
-  static fromRows(n: number, rows: ExactRows): ExactOperator {
-    return new ExactOperator(n, rows);
-  }
-
   /** The identity. @throws GoodBasisError `shape` */
   static identity(n: number): ExactOperator {
     requireDimension("ExactOperator.identity", n);

@@ -5,6 +5,9 @@ import { Surd } from "./surd.js";
 /** The orders of all roots of unity in the field: cos and sin of 15° are (√6 ± √2)/4, those of 72° need nested roots. */
 const ORDER = 24;
 
+/** e^{2πi/24}. */
+const PRIMITIVE: Surd = Surd.from("(sqrt(6)+sqrt(2))/4 + i*(sqrt(6)-sqrt(2))/4");
+
 /**
  * e^{2πi k / order} where it lies in the field, that is, where the order in lowest terms divides 24; undefined elsewhere.
  *
@@ -27,5 +30,5 @@ export function exactRootOfUnity(k: number, order: number): Surd | undefined {
   const common = gcdSafe(k, order);
   if (ORDER % (order / common) !== 0) return undefined;
   const turns = (((k / common) * (ORDER / (order / common))) % ORDER) + ORDER;
-  return Surd.from("(sqrt(6)+sqrt(2))/4 + i*(sqrt(6)-sqrt(2))/4").power(turns % ORDER);
+  return PRIMITIVE.power(turns % ORDER);
 }

@@ -7,7 +7,7 @@ import { type Arithmetic, readExpression } from "./expression.js";
 import { bitLength, isSafe } from "./integer.js";
 import { invertTerms } from "./inverse.js";
 import { type SurdTextOptions, textOf } from "./print.js";
-import { roundReal, roundRoot } from "./round.js";
+import { roundReal } from "./round.js";
 import { addSafe, invertSafe, lowestTerm, multiplySafe, type SafeTerm, ZERO_TERM } from "./safe-term.js";
 import {
   addTerms,
@@ -110,6 +110,9 @@ export class Surd {
    */
   static ratio(numerator: bigint, denominator: bigint): Surd {
     if (denominator === 0n) throw zeroDivision("Surd.ratio", `${numerator}`);
+    if (denominator > 0n && isSafe(numerator) && isSafe(denominator)) {
+      return Surd.#ofSafe(lowestTerm(Number(numerator), 0, 1, Number(denominator)));
+    }
     return Surd.fromTerms(oneTerm(numerator, 0n, 1n, denominator));
   }
 
@@ -394,16 +397,6 @@ export class Surd {
   enclosure(): readonly [number, number] {
     requireReal("Surd.enclosure", this);
     return [roundReal(this.terms, "down"), roundReal(this.terms, "up")];
-  }
-
-  /**
-   * The double nearest to √x for a real x ≥ 0, correctly rounded; √x itself need not be in the field.
-   *
-   * @throws GoodBasisError `not-real`; `option` - negative
-   */
-  rootToNumber(): number {
-    if (this.sign() < 0) throw new GoodBasisError("option", `Surd.rootToNumber: ${this.text()} is negative`);
-    return roundRoot(this.terms);
   }
 
   /** The number as text, which {@link Surd.from} reads back; zero is "0". */

@@ -1,6 +1,7 @@
 import { GoodBasisError } from "../errors.js";
 import type { Complex } from "../numerics/complex.js";
 import { contentOf } from "./content.js";
+import { roundRoot } from "./round.js";
 import { Surd, type SurdInput } from "./surd.js";
 
 /**
@@ -181,7 +182,7 @@ export class ExactVector {
     const out: Complex[] = Array.from({ length: this.n }, () => ({ re: 0, im: 0 }));
     const inverse = this.squaredNorm.inverse();
     for (const [k, x] of this.values.entries()) {
-      const part = (y: Surd): number => y.sign() * y.times(y).times(inverse).rootToNumber() + 0;
+      const part = (y: Surd): number => y.sign() * roundRoot(y.times(y).times(inverse).terms) + 0;
       out[this.index[k] as number] = { re: part(x.re), im: part(x.im) };
     }
     return out;

@@ -1,6 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { roundQuotient } from "../../src/exact/round.js";
+import { roundQuotient, roundRoot } from "../../src/exact/round.js";
 import { Surd } from "../../src/exact/surd.js";
 import { realSurd, rootOf } from "./arbitrary.js";
 import { inFixed, ofDouble, PLACES, root } from "./oracle.js";
@@ -79,7 +79,7 @@ describe("rounding to a double", () => {
   it("is that of the machine for square roots of doubles", () => {
     fc.assert(
       fc.property(fc.double({ min: 0, noNaN: true, noDefaultInfinity: true }), (x) => {
-        return Surd.from(x).rootToNumber() === Math.sqrt(x);
+        return roundRoot(Surd.from(x).terms) === Math.sqrt(x);
       }),
       { seed: 53, numRuns: 300 },
     );
@@ -128,13 +128,12 @@ describe("nested roots", () => {
       fc.property(realSurd, (x) => {
         const y = x.times(x).plus("1/7+sqrt(2)");
         const value = root(inFixed(y).re, 1n << PLACES).re;
-        const found = y.rootToNumber();
+        const found = roundRoot(y.terms);
         const slack = 1n << 100n;
         const [low, at, high] = [previous(found), found, next(found)].map(ofDouble) as [bigint, bigint, bigint];
         return low + at <= 2n * value + slack && 2n * value - slack <= at + high;
       }),
       { seed: 55, numRuns: 200 },
     );
-    expect(() => Surd.from("1-sqrt(2)").rootToNumber()).toThrow(expect.objectContaining({ code: "option" }));
   });
 });
