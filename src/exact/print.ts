@@ -32,7 +32,9 @@ interface Summand {
 
 /** The text of a number. */
 export function textOf(a: Terms, { form = "plain", underRoot = false }: SurdTextOptions = {}): string {
-  const summands = a.roots.flatMap((_, k) => summandsOf(a, k));
+  const all = a.roots.flatMap((_, k) => summandsOf(a, k));
+  // real ones first, as 1 + 2i is written
+  const summands = [...all.filter(({ im }) => im === 0n), ...all.filter(({ im }) => im !== 0n)];
   if (summands.length === 0) return "0";
   const [only] = summands;
   if (underRoot && only !== undefined && summands.length === 1) summands[0] = gathered(only);

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { type ExactBudget, Meter } from "./budget.js";
 import { ExactOperator } from "./operator.js";
 import type { ExactTriplet } from "./rows.js";
 import type { ExactVector } from "./vector.js";
@@ -27,7 +28,7 @@ export type Representation =
  *
  * @param vectors - mutually orthogonal, not zero
  * @throws GoodBasisError `shape` - no vector, or one over another number of kets; `option` - a zero vector, or two that are
- *   not orthogonal
+ *   not orthogonal; `budget`
  *
  * @example
  * ```ts no-check
@@ -37,7 +38,12 @@ export type Representation =
  * if (even.kind === "invariant") console.log(even.matrix.entry(0, 0).text()); // 4
  * ```
  */
-export function represent(operator: ExactOperator, vectors: readonly ExactVector[]): Representation {
+export function represent(
+  operator: ExactOperator,
+  vectors: readonly ExactVector[],
+  budget?: ExactBudget,
+): Representation {
+  const meter = new Meter("represent", budget);
   requireOrthogonal(vectors);
   const inverses = vectors.map((vector) => vector.squaredNorm.inverse());
   const triplets: ExactTriplet[] = [];
@@ -45,9 +51,11 @@ export function represent(operator: ExactOperator, vectors: readonly ExactVector
     const image = operator.apply(vector);
     let outside = image;
     for (const [i, left] of vectors.entries()) {
+      meter.spend(left.values.length);
       const overlap = left.inner(image);
       if (overlap.isZero) continue;
       const value = overlap.times(inverses[i] ?? 0);
+      meter.weigh(value.largeTerms);
       triplets.push([i, j, value]);
       outside = outside.plus(left, value.negate());
     }

@@ -75,6 +75,22 @@ export class ExactVector {
     return ExactVector.fromEntries(n, [[k, Surd.one]]);
   }
 
+  /**
+   * Σ_k c_k v_k.
+   *
+   * @param vectors - at least one
+   * @param coefficients - one component for each vector
+   * @throws GoodBasisError `shape`
+   */
+  static combination(vectors: readonly ExactVector[], coefficients: ExactVector): ExactVector {
+    const [first] = vectors;
+    if (first === undefined || coefficients.n !== vectors.length) {
+      const message = `ExactVector.combination: ${vectors.length} vectors and ${coefficients.n} coefficients; give one for each`;
+      throw new GoodBasisError("shape", message, { vectors: vectors.length, coefficients: coefficients.n });
+    }
+    return vectors.reduce((sum, vector, k) => sum.plus(vector, coefficients.component(k)), first.scale(0));
+  }
+
   /** Component k; zero where none is stored. */
   component(k: number): Surd {
     let low = 0;

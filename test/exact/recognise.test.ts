@@ -55,6 +55,15 @@ describe("recognising a number", () => {
     expect(text(0.01, { tolerance: 1e-7, maxSquare: 0, maxDenominator: 100 })).toBe("1/100");
   });
 
+  it("leaves a number alone whose neighbour on one side is near", () => {
+    const sevenths = { maxDenominator: 7, maxSquare: 0 };
+    // 4/7 below 3/5 and 3/7 above 2/5 are nearer than the neighbours on the other side
+    expect(text(0.6, { ...sevenths, tolerance: 4e-5 })).toBe("3/5");
+    expect(text(0.6, { ...sevenths, tolerance: 6e-5 })).toBeUndefined();
+    expect(text(0.4, { ...sevenths, tolerance: 6e-5 })).toBe("2/5");
+    expect(text(0.4, { ...sevenths, tolerance: 8e-5 })).toBeUndefined();
+  });
+
   it("takes rounding noise for zero only on a stated scale", () => {
     expect(text(1e-17)).toBeUndefined();
     expect(text(1e-17, { scale: 1 })).toBe("0");
