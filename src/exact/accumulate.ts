@@ -96,36 +96,14 @@ function wholeSum(n: number, products: readonly SignedProduct[], meter: Meter): 
   const x = new Float64Array(n);
   const y = new Float64Array(n);
   const touched = new Touched(n);
-  // the largest modulus that any product or partial sum had: all were exact if it is safe
+  // bounds every product and every partial sum: all were exact if it is safe
   let largest = 0;
   for (let row = 0; row < n; row++) {
-    for (const { left, right, sign, a, b } of factors) {
-      const [aRe, aIm, bRe, bIm] = [a.re, a.im, b.re, b.im];
-      let steps = 0;
-      if (!complex) {
-        walkRow(row, left, right, (j, e, f) => {
-          steps++;
-          const p = sign * (aRe[e] as number) * (bRe[f] as number);
-          const sum = touched.isNew(row, j) ? p : (x[j] as number) + p;
-          x[j] = sum;
-          largest = Math.max(largest, p, -p, sum, -sum);
-        });
-      } else {
-        walkRow(row, left, right, (j, e, f) => {
-          steps += 4;
-          const [u, v] = [aRe[e] as number, aIm === undefined ? 0 : sign * (aIm[e] as number)];
-          const [s, t] = [bRe[f] as number, bIm === undefined ? 0 : (bIm[f] as number)];
-          const [us, vt, ut, vs] = [sign * u * s, v * t, sign * u * t, v * s];
-          const fresh = touched.isNew(row, j);
-          const real = (fresh ? 0 : (x[j] as number)) + (us - vt);
-          const imaginary = (fresh ? 0 : (y[j] as number)) + (ut + vs);
-          x[j] = real;
-          y[j] = imaginary;
-          const products = Math.max(us, -us, vt, -vt, ut, -ut, vs, -vs, us - vt, vt - us, ut + vs, -ut - vs);
-          largest = Math.max(largest, products, real, -real, imaginary, -imaginary);
-        });
-      }
-      meter.spend(steps);
+    for (const factor of factors) {
+      const size = complex
+        ? addComplexRow(row, factor, touched, x, y, meter)
+        : addRealRow(row, factor, touched, x, meter);
+      if (size > largest) largest = size;
     }
     if (largest > MOST) return undefined;
     touched.drain((j) => {
@@ -141,6 +119,68 @@ function wholeSum(n: number, products: readonly SignedProduct[], meter: Meter): 
   const isComplex = im.some((v) => v !== 0);
   const whole = { re: Float64Array.from(re), im: isComplex ? Float64Array.from(im) : undefined, den };
   return { ptr, col: Int32Array.from(col), entries: Entries.ofWhole(lowest(whole)) };
+}
+
+/**
+ * Adds ± A B to row sums in machine integers.
+ *
+ * @param x - the sums by column, where `touched`
+ * @returns the largest |product| + |sum before|, in doubles: where a true one is beyond 2^53, so is this
+ */
+function addRealRow(
+  row: number,
+  { left, right, sign, a, b }: WholeProduct,
+  touched: Touched,
+  x: Float64Array,
+  meter: Meter,
+): number {
+  const [aRe, bRe, aCol, bCol, bPtr] = [a.re, b.re, left.col, right.col, right.ptr];
+  let largest = 0;
+  const end = left.ptr[row + 1] as number;
+  for (let e = left.ptr[row] as number; e < end; e++) {
+    const u = sign * (aRe[e] as number);
+    const k = aCol[e] as number;
+    const last = bPtr[k + 1] as number;
+    const first = bPtr[k] as number;
+    meter.spend(last - first);
+    for (let f = first; f < last; f++) {
+      const j = bCol[f] as number;
+      const product = u * (bRe[f] as number);
+      const before = touched.isNew(row, j) ? 0 : (x[j] as number);
+      const size = Math.abs(product) + Math.abs(before);
+      if (size > largest) largest = size;
+      x[j] = before + product;
+    }
+  }
+  return largest;
+}
+
+/** The same for complex numbers, real and imaginary sums apart. */
+function addComplexRow(
+  row: number,
+  { left, right, sign, a, b }: WholeProduct,
+  touched: Touched,
+  x: Float64Array,
+  y: Float64Array,
+  meter: Meter,
+): number {
+  let largest = 0;
+  let steps = 0;
+  walkRow(row, left, right, (j, e, f) => {
+    steps += 4;
+    const [u, v] = [sign * (a.re[e] as number), a.im === undefined ? 0 : sign * (a.im[e] as number)];
+    const [s, t] = [b.re[f] as number, b.im === undefined ? 0 : (b.im[f] as number)];
+    const [us, vt, ut, vs] = [u * s, v * t, u * t, v * s];
+    const fresh = touched.isNew(row, j);
+    const [re, im] = fresh ? [0, 0] : [x[j] as number, y[j] as number];
+    const onRe = Math.abs(us) + Math.abs(vt) + Math.abs(re);
+    const onIm = Math.abs(ut) + Math.abs(vs) + Math.abs(im);
+    largest = Math.max(largest, onRe, onIm);
+    x[j] = re + (us - vt);
+    y[j] = im + (ut + vs);
+  });
+  meter.spend(steps);
+  return largest;
 }
 
 /** Takes a common divisor of all numbers out, so that denominators do not grow without need. */
