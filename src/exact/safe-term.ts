@@ -64,8 +64,15 @@ export function multiplySafe(x: SafeTerm, y: SafeTerm): SafeTerm | undefined {
   return fits(n) && fits(m) && fits(r) && fits(d) ? lowestTerm(n, m, r, d) : undefined;
 }
 
-/** 1 / x of a real x ≠ 0: d / (n √r) = d √r / (n r); undefined where n r outgrows the safe integers, and for complex x. */
+/**
+ * 1 / x of x ≠ 0: d / ((n + i m) √r) = d (n − i m) √r / ((n² + m²) r); undefined where a whole number outgrows the safe
+ * integers.
+ */
 export function invertSafe({ n, m, r, d }: SafeTerm): SafeTerm | undefined {
-  const den = Math.abs(n) * r;
-  return m === 0 && fits(den) ? lowestTerm(Math.sign(n) * d, 0, r, den) : undefined;
+  if (m === 0) {
+    const den = Math.abs(n) * r;
+    return fits(den) ? lowestTerm(Math.sign(n) * d, 0, r, den) : undefined;
+  }
+  const [re, im, den] = [n * d, -m * d, (n * n + m * m) * r];
+  return fits(re) && fits(im) && fits(den) ? lowestTerm(re, im, r, den) : undefined;
 }

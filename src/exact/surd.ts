@@ -17,6 +17,7 @@ import {
   NO_TERMS,
   oneTerm,
   realTerms,
+  rootTerm,
   type Terms,
 } from "./terms.js";
 
@@ -98,9 +99,8 @@ export class Surd {
     if (typeof input === "object" && input !== null && typeof input.re === "number" && typeof input.im === "number") {
       return fromDouble(input.re).plus(fromDouble(input.im).times(Surd.i));
     }
-    throw new GoodBasisError("option", `Surd.from: expected a number, text or fraction, got ${String(input)}`, {
-      input,
-    });
+    const message = `Surd.from: expected a number, a text or a fraction, got ${input === null ? "null" : typeof input}`;
+    throw new GoodBasisError("option", message);
   }
 
   /**
@@ -139,8 +139,7 @@ export class Surd {
     const { roots, re, im, den } = square.terms;
     if (roots.length === 0) return Surd.zero;
     if (roots.length > 1 || roots[0] !== 1n || im[0] !== 0n || (re[0] as bigint) < 0n) return undefined;
-    // √(p / q) = √(p q) / q
-    return Surd.fromTerms(oneTerm(1n, 0n, (re[0] as bigint) * den, den));
+    return Surd.fromTerms(rootTerm(re[0] as bigint, den));
   }
 
   /**
@@ -307,7 +306,7 @@ export class Surd {
     const { re, im, roots, den } = this.terms;
     const bits = Math.max(0, ...[den, ...re, ...im, ...roots].map(bitLength));
     // ±1 and ±i do not grow
-    const grows = bits > 1 || roots.length > 1 || (re[0] !== 0n && im[0] !== 0n);
+    const grows = bits > 1 || roots.length > 1 || (!this.isReal && re[0] !== 0n);
     if (grows && bits * exponent > MOST_POWER_BITS) {
       const message = `Surd.power: exponent ${exponent} makes a number of more than a million digits`;
       throw new GoodBasisError("budget", message, { exponent });

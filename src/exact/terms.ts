@@ -42,6 +42,13 @@ export function oneTerm(re: bigint, im: bigint, root: bigint, den: bigint): Term
   return reduce([free], [re * square], [im * square], den, certified);
 }
 
+/** √(p / q) for p > 0 and q > 0 without common divisor: squares are looked for in each of them. */
+export function rootTerm(p: bigint, q: bigint): Terms {
+  const [up, down] = [splitSquare(p), splitSquare(q)];
+  // √(p / q) = s √f / (t √g) = s √(f g) / (t g), and f g is square-free where f and g are
+  return reduce([up.free * down.free], [up.square], [0n], down.square * down.free, up.certified && down.certified);
+}
+
 /** a + b. */
 export function addTerms(a: Terms, b: Terms): Terms {
   const shared = a.den === b.den ? a.den : gcd(a.den, b.den);

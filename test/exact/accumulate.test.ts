@@ -56,6 +56,9 @@ describe("products in machine integers", () => {
     expect(square.entry(0, 1).text()).toBe(`${near}`);
     const complex = ExactOperator.diagonal([`${near}+${near}*i`]);
     expect(complex.times(complex).entry(0, 0).text()).toBe(`${2n * BigInt(near) ** 2n}i`);
+    // 94906267² is beyond 2^53, its difference to 20000² is not
+    const edge = ExactOperator.diagonal([`${near}+20000i`]);
+    expect(edge.times(edge).entry(0, 0).re.text()).toBe(`${BigInt(near) ** 2n - 20000n ** 2n}`);
     const mixed = ExactOperator.diagonal([`${near}+i`]);
     expect(mixed.times(mixed).entry(0, 0).text()).toBe(`${BigInt(near) ** 2n - 1n}+${2 * near}i`);
   });

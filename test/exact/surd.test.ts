@@ -183,6 +183,15 @@ describe("hostile numbers", () => {
     expect(rootOf(p).equals(rootOf(q))).toBe(false);
   });
 
+  it("a fraction of two unsplit numbers has its squares looked for above and below", () => {
+    // both below 2^53, their product far beyond: 94906249² · 2 is not a square, 94906249² is
+    const [p, q] = [94906249n ** 2n, 10n ** 15n + 37n];
+    const root = Surd.sqrt(Surd.ratio(p, q)) as Surd;
+    expect(root.text()).toBe("94906249/sqrt(1000000000000037)");
+    expect(root.times(root).equals(Surd.ratio(p, q))).toBe(true);
+    expect(root.largeTerms).toBeUndefined();
+  });
+
   it("nearly equal numbers have a sign at any precision", () => {
     // convergents of √2 come as close as 10^−2k
     let [n, d] = [1n, 1n];
@@ -245,6 +254,9 @@ describe("hostile numbers", () => {
     expect(() => of(3).power(10_000_000)).toThrow(expect.objectContaining({ code: "budget" }));
     expect(() => of(3).power(0.5)).toThrow(expect.objectContaining({ code: "option" }));
     expect(of(1).power(10_000_000).equals(1)).toBe(true);
+    expect(Surd.zero.power(10_000_000).isZero).toBe(true);
+    expect(Surd.i.power(10_000_001).equals(Surd.i)).toBe(true);
+    expect(() => of("1+i").power(10_000_000)).toThrow(expect.objectContaining({ code: "budget" }));
   });
 });
 
