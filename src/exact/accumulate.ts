@@ -1,17 +1,8 @@
 import type { Meter } from "./budget.js";
 import { Entries, type WholeEntries } from "./entries.js";
 import { gcdSafe } from "./integer.js";
+import type { ExactRows } from "./rows.js";
 import { Surd } from "./surd.js";
-
-/** Sparse rows of exact numbers; columns ascend strictly within a row and no stored entry is zero. */
-export interface ExactRows {
-  /** Row starts. */
-  readonly ptr: Int32Array;
-  /** Column of each entry. */
-  readonly col: Int32Array;
-  /** The entries, row by row. */
-  readonly entries: Entries;
-}
 
 /** One product in a signed sum of products. */
 export interface SignedProduct {
@@ -215,7 +206,7 @@ function surdSum(n: number, products: readonly SignedProduct[], meter: Meter): E
         const signed = sign === 1 ? product : product.negate();
         sums[j] = touched.isNew(row, j) ? signed : (sums[j] as Surd).plus(signed);
       });
-      meter.spend(steps);
+      meter.spendProducts(steps);
     }
     touched.drain((j) => {
       const sum = sums[j] as Surd;

@@ -54,7 +54,7 @@ export function annihilates(
 function shifted(operator: ExactOperator, value: Surd, vector: ExactVector, meter: Meter): ExactVector {
   if (vector.isZero) return vector;
   const image = operator.apply(vector).plus(vector, value.negate()).primitive();
-  meter.spend((vector.values.length * operator.count) / operator.n);
+  meter.spendProducts((vector.values.length * operator.count) / operator.n);
   for (const x of image.values) meter.weigh(x.largeTerms);
   return image;
 }
@@ -95,7 +95,7 @@ export function spectralPart(
   let scale = Surd.one;
   for (const [k, value] of values.entries()) {
     if (k === chosen) continue;
-    meter.spend((rest.values.length * operator.count) / operator.n);
+    meter.spendProducts((rest.values.length * operator.count) / operator.n);
     rest = operator.apply(rest).plus(rest, value.negate());
     scale = scale.times(own.minus(value));
     for (const x of rest.values) meter.weigh(x.largeTerms);

@@ -8,7 +8,10 @@ export interface ExactBudget {
   readonly digits?: number | undefined;
   /** Different square roots inside one number, 1 among them; 256 unless stated. */
   readonly roots?: number | undefined;
-  /** Multiplications of two numbers in one call; 50 million unless stated. */
+  /**
+   * Steps in one call: one for a product of machine integers, twenty for one of other exact numbers; 500 million unless
+   * stated.
+   */
   readonly steps?: number | undefined;
 }
 
@@ -16,8 +19,11 @@ export interface ExactBudget {
 const DEFAULT_BUDGET: Readonly<Required<{ [K in keyof ExactBudget]: number }>> = {
   digits: 20_000,
   roots: 256,
-  steps: 50_000_000,
+  steps: 500_000_000,
 };
+
+/** What a product of two exact numbers counts for; one with many roots or digits costs more, and is weighed apart. */
+const STEPS_PER_PRODUCT = 20;
 
 const DIGITS_PER_BIT = Math.log10(2);
 
@@ -41,13 +47,22 @@ export class Meter {
   }
 
   /**
-   * Counts multiplications.
+   * Counts products of machine integers.
    *
    * @throws GoodBasisError `budget`
    */
   spend(steps: number): void {
     this.#spent += steps;
-    if (this.#spent > this.#steps) this.#stop("steps", `more than ${this.#steps} multiplications`, this.#steps);
+    if (this.#spent > this.#steps) this.#stop("steps", `more than ${this.#steps} steps`, this.#steps);
+  }
+
+  /**
+   * Counts products of exact numbers.
+   *
+   * @throws GoodBasisError `budget`
+   */
+  spendProducts(count: number): void {
+    this.spend(STEPS_PER_PRODUCT * count);
   }
 
   /**

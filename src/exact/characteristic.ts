@@ -29,7 +29,7 @@ export function characteristicPolynomial(operator: ExactOperator, budget?: Exact
   const one = ExactOperator.identity(n);
   let power = one;
   for (let k = 1; k <= n; k++) {
-    meter.spend(operator.count * n);
+    meter.spendProducts(operator.count * n);
     const product = operator.times(power, budget);
     const c = product.trace().over(-k);
     meter.weigh(c.largeTerms);

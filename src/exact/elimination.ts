@@ -1,5 +1,6 @@
+import { GoodBasisError } from "../errors.js";
 import { type ExactBudget, Meter } from "./budget.js";
-import type { ExactOperator } from "./operator.js";
+import { ExactOperator } from "./operator.js";
 import { Surd } from "./surd.js";
 import { ExactVector } from "./vector.js";
 
@@ -47,7 +48,7 @@ function reducedEchelon(rows: readonly EquationRow[], meter: Meter): PivotRow[] 
     const head = rest.get(best);
     if (head === undefined) continue;
     const inverse = head.inverse();
-    meter.spend(rest.size);
+    meter.spendProducts(rest.size);
     for (const [column, x] of rest) {
       const scaled = column === best ? Surd.one : x.times(inverse);
       meter.weigh(scaled.largeTerms);
@@ -62,7 +63,7 @@ function reducedEchelon(rows: readonly EquationRow[], meter: Meter): PivotRow[] 
 /** target − factor · row, in place. */
 function subtract(target: Map<number, Surd>, row: EquationRow, factor: Surd | undefined, meter: Meter): void {
   if (factor === undefined) return;
-  meter.spend(row.size);
+  meter.spendProducts(row.size);
   const negative = factor.negate();
   for (const [column, x] of row) {
     const product = x.times(negative);
@@ -95,11 +96,13 @@ export function exactRank(operator: ExactOperator, budget?: ExactBudget): number
 }
 
 /**
- * A basis of the null space of an exact matrix: every v with A v = 0 is a combination of the returned ones.
+ * A basis of the null space of an exact matrix, or of the common one of several: every v with A v = 0 is a combination of the
+ * returned ones.
  *
+ * @param operators - one operator, or several on the same kets
  * @returns primitive vectors, one for each free column, by ascending free column; not orthogonal in general, see
  *   {@link orthogonalise}
- * @throws GoodBasisError `budget`
+ * @throws GoodBasisError `shape` - no operator, or different numbers of kets; `budget`
  *
  * @example
  * ```ts no-check
@@ -109,8 +112,14 @@ export function exactRank(operator: ExactOperator, budget?: ExactBudget): number
  * console.log(v?.component(0).text(), v?.component(1).text()); // -sqrt(3) 1
  * ```
  */
-export function exactKernel(operator: ExactOperator, budget?: ExactBudget): ExactVector[] {
-  return nullSpace(operator.n, rowsOf(operator), new Meter("exactKernel", budget));
+export function exactKernel(operators: ExactOperator | readonly ExactOperator[], budget?: ExactBudget): ExactVector[] {
+  const list = operators instanceof ExactOperator ? [operators] : operators;
+  const n = list[0]?.n;
+  if (n === undefined || list.some((operator) => operator.n !== n)) {
+    const message = "exactKernel: expected at least one operator, and all on the same number of kets";
+    throw new GoodBasisError("shape", message, { sizes: list.map((operator) => operator.n) });
+  }
+  return nullSpace(n, list.flatMap(rowsOf), new Meter("exactKernel", budget));
 }
 
 /** The null space of equations in n unknowns. */

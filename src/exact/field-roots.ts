@@ -1,3 +1,4 @@
+import { type ExactBudget, Meter } from "./budget.js";
 import { absolute, bitLength, gcd } from "./integer.js";
 import { normPolynomial } from "./norm-polynomial.js";
 import { divide, evaluate, monic, type Polynomial, squareFreePart } from "./polynomial.js";
@@ -25,6 +26,7 @@ const MOST_FOR_FOURS = 20;
  * to sufficient precision, a few roots have only one candidate for each, and exact division decides.
  *
  * @param p - not zero
+ * @throws GoodBasisError `budget`
  *
  * @example
  * ```ts no-check
@@ -34,11 +36,12 @@ const MOST_FOR_FOURS = 20;
  * console.log(roots[1]?.text({ form: "unicode" }), rest.length); // 1/2 + √5/2 1
  * ```
  */
-export function fieldRoots(p: Polynomial): FieldRoots {
+export function fieldRoots(p: Polynomial, budget?: ExactBudget): FieldRoots {
+  const meter = new Meter("fieldRoots", budget);
   const own = squareFreePart(p);
   if (own.length === 2) return { roots: linearRoot(own), rest: linearRoot(own).length === 1 ? [Surd.one] : own };
   const rational = own.every((c) => c.isRational);
-  const candidates = rationalFieldRoots(rational ? own : normPolynomial(own));
+  const candidates = rationalFieldRoots(rational ? own : normPolynomial(own), meter);
   const roots = candidates.filter((x) => evaluate(own, x).isZero).sort((a, b) => a.compare(b));
   const rest = roots.reduce((left, x) => divide(left, [x.negate(), Surd.one]).quotient, own);
   return { roots, rest: monic(rest) };
@@ -50,19 +53,21 @@ function linearRoot(p: Polynomial): Surd[] {
 }
 
 /** The same for rational coefficients, monic and without double roots. */
-function rationalFieldRoots(p: Polynomial): Surd[] {
+function rationalFieldRoots(p: Polynomial, meter: Meter): Surd[] {
   const scale = p.reduce((den, c) => (den * c.terms.den) / gcd(den, c.terms.den), 1n);
   const degree = p.length - 1;
   // y = scale · x has whole coefficients scale^(n − k) c_k
   const whole = p.map((c, k) => c.times(Surd.from(scale).power(degree - k)));
-  return wholeRoots(whole).map((y) => y.over(scale));
+  return wholeRoots(whole, meter).map((y) => y.over(scale));
 }
 
-function wholeRoots(p: Polynomial): Surd[] {
+function wholeRoots(p: Polynomial, meter: Meter): Surd[] {
   const coefficients = p.map((c) => c.terms.re[0] ?? 0n);
   // every root is below 2^(size + 1) in modulus (Cauchy), so a product of four is known to much less than 2^−8
   const size = coefficients.reduce((most, c) => Math.max(most, bitLength(c)), 1);
   const bits = 4 * (size + 2) + 8;
+  // each binary place of each root costs one value of the polynomial
+  meter.spend(bits * p.length * p.length);
   const unknown = isolateRealRoots(coefficients, bits).map(({ low, high }): Unknown => {
     const excess = BigInt(bits - low.bits);
     const at = excess >= 0n ? low.place << excess : low.place >> -excess;

@@ -1,8 +1,8 @@
 import { GoodBasisError } from "../errors.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp } from "../numerics/rounding.js";
-import type { ExactRows } from "./accumulate.js";
 import { Entries } from "./entries.js";
+import type { ExactRows } from "./rows.js";
 import { Surd } from "./surd.js";
 
 /** Sparse rows of doubles, and how far each stored entry may be from the exact one. */

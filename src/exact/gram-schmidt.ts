@@ -30,10 +30,10 @@ export function orthogonalise(vectors: readonly ExactVector[], budget?: ExactBud
   for (const [place, vector] of vectors.entries()) {
     let rest = vector;
     for (const unit of done) {
-      meter.spend(unit.values.length);
+      meter.spendProducts(unit.values.length);
       const overlap = unit.inner(vector);
       if (overlap.isZero) continue;
-      meter.spend(unit.values.length);
+      meter.spendProducts(unit.values.length);
       rest = rest.plus(unit, overlap.over(unit.squaredNorm).negate());
     }
     if (rest.isZero) {

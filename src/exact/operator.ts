@@ -1,10 +1,19 @@
 import { GoodBasisError } from "../errors.js";
 import type { Csr } from "../numerics/csr.js";
-import { type ExactRows, type SignedProduct, sumOfProducts } from "./accumulate.js";
+import { type SignedProduct, sumOfProducts } from "./accumulate.js";
 import { type ExactBudget, Meter } from "./budget.js";
 import { Entries } from "./entries.js";
 import { exactRowsOf, type FloatingRows, floatingOf } from "./floating.js";
-import { type ExactTriplet, flipRows, kronRows, principalRows, rowsOfTriplets, scaleRows, sumRows } from "./rows.js";
+import {
+  type ExactRows,
+  type ExactTriplet,
+  flipRows,
+  kronRows,
+  principalRows,
+  rowsOfTriplets,
+  scaleRows,
+  sumRows,
+} from "./rows.js";
 import { isDiagonalRows, isHermitianRows, isMonomialRows } from "./structure.js";
 import { Surd, type SurdInput } from "./surd.js";
 import { ExactVector } from "./vector.js";

@@ -51,7 +51,7 @@ export function represent(
     const image = operator.apply(vector);
     let outside = image;
     for (const [i, left] of vectors.entries()) {
-      meter.spend(left.values.length);
+      meter.spendProducts(left.values.length);
       const overlap = left.inner(image);
       if (overlap.isZero) continue;
       const value = overlap.times(inverses[i] ?? 0);

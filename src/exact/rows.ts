@@ -1,7 +1,16 @@
 import { GoodBasisError } from "../errors.js";
-import type { ExactRows } from "./accumulate.js";
 import { Entries } from "./entries.js";
 import { Surd, type SurdInput } from "./surd.js";
+
+/** Sparse rows of exact numbers; columns ascend strictly within a row and no stored entry is zero. */
+export interface ExactRows {
+  /** Row starts. */
+  readonly ptr: Int32Array;
+  /** Column of each entry. */
+  readonly col: Int32Array;
+  /** The entries, row by row. */
+  readonly entries: Entries;
+}
 
 /** One entry of an exact matrix: row, column, value. */
 export type ExactTriplet = readonly [row: number, col: number, value: SurdInput];

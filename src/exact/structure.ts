@@ -1,4 +1,4 @@
-import type { ExactRows } from "./accumulate.js";
+import type { ExactRows } from "./rows.js";
 import type { Surd } from "./surd.js";
 
 /** Whether nothing stands off the diagonal. */

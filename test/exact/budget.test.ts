@@ -14,6 +14,12 @@ describe("the budget", () => {
     );
   });
 
+  it("counts a product of exact numbers for twenty of machine integers", () => {
+    const meter = new Meter("test", { steps: 40 });
+    meter.spendProducts(2);
+    expect(() => meter.spend(1)).toThrow(expect.objectContaining({ code: "budget" }));
+  });
+
   it("weighs roots and digits, of numerators and denominators alike", () => {
     const meter = new Meter("test", { roots: 3, digits: 30 });
     for (const fine of ["5", "1+sqrt(2)+sqrt(3)", "10^29", "1/10^29+sqrt(2)"]) meter.weigh(terms(fine));

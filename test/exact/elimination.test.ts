@@ -57,6 +57,17 @@ describe("the kernel", () => {
     expect(found).toHaveLength(1);
   });
 
+  it("is common to several operators where asked", () => {
+    const { square, z } = coupled(3, 2);
+    const one = ExactOperator.identity(z.n);
+    const conditions = [square.minus(one.scale("3/4")), z.minus(one.scale("1/2"))];
+    const [state, ...others] = exactKernel(conditions);
+    expect(others).toEqual([]);
+    for (const condition of conditions) expect(condition.apply(state as ExactVector).isZero).toBe(true);
+    expect(() => exactKernel([])).toThrow(expect.objectContaining({ code: "shape" }));
+    expect(() => exactKernel([z, ExactOperator.identity(2)])).toThrow(expect.objectContaining({ code: "shape" }));
+  });
+
   it("does not depend on anything but the matrix", () => {
     fc.assert(
       fc.property(matrix(5), (a) => {

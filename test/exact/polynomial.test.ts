@@ -158,6 +158,7 @@ describe("roots in the field", () => {
     // the cyclic quartic x⁴ − 4x² + 2 has the nested roots ±√(2 ± √2)
     expect(fieldRoots(of(2, 0, -4, 0, 1)).roots).toEqual([]);
     expect(fieldRoots(of(3)).roots).toEqual([]);
+    expect(() => fieldRoots(p, { steps: 100 })).toThrow(expect.objectContaining({ code: "budget" }));
   });
 });
 
