@@ -183,6 +183,14 @@ describe("hostile numbers", () => {
     expect(rootOf(p).equals(rootOf(q))).toBe(false);
   });
 
+  it("a square hidden in a large root comes out once its other factor is known", () => {
+    const p = 10n ** 18n + 9n;
+    const hidden = rootOf(p * 1009n ** 2n * 1013n);
+    const sum = hidden.plus(rootOf(p));
+    expect(sum.minus(rootOf(p)).equals(rootOf(p).times(rootOf(1013n)).times(1009))).toBe(true);
+    expect(sum.parts().map(({ root }) => root)).toEqual([p, p * 1013n]);
+  });
+
   it("a fraction of two unsplit numbers has its squares looked for above and below", () => {
     // both below 2^53, their product far beyond: 94906249² · 2 is not a square, 94906249² is
     const [p, q] = [94906249n ** 2n, 10n ** 15n + 37n];
