@@ -15,6 +15,10 @@
  * | `wrong-problem` | a certificate belongs to another problem |
  * | `file` | a problem, matrix or certificate file cannot be read or is malformed |
  * | `output` | an output path exists already or cannot be written |
+ * | `text` | a text is not an exact number |
+ * | `zero-division` | an exact number is divided by zero |
+ * | `not-real` | an exact number with an imaginary part where a real one is needed |
+ * | `budget` | an exact computation outgrows its budget |
  * | `no-convergence` | an iteration did not finish within its bound |
  * | `worker` | a worker thread died or could not be started |
  */
@@ -31,6 +35,10 @@ export type ErrorCode =
   | "wrong-problem"
   | "file"
   | "output"
+  | "text"
+  | "zero-division"
+  | "not-real"
+  | "budget"
   | "no-convergence"
   | "worker";
 
