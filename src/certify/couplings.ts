@@ -3,14 +3,13 @@ import type { PreparedCandidate, PreparedProblem } from "../audit/problem.js";
 import type { Complex } from "../numerics/complex.js";
 import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
-import { roundDown, roundUp } from "../numerics/rounding.js";
+import { rootOfSquares, roundDown, roundUp } from "../numerics/rounding.js";
 import { selectRows } from "../numerics/sparse.js";
 import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import type { NodeKind, PathStep, TreeNode } from "../refine/tree.js";
 import type { LevelState, LevelStates } from "./level-states.js";
 import { elementErrorBound, forEachProduct, gramDefect } from "./products.js";
-import { rootOfSquares } from "./residuals.js";
 import { smallestGap } from "./whole.js";
 
 /** Evidence of one node that states of different children are not coupled by one perturbation. */
@@ -314,9 +313,8 @@ interface Pass {
 
 function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: number; withinLeaves: number } {
   const { name, members, states, error, diagonal, largest, threshold, worst } = pass;
-  let sum = 0;
-  let terms = 0;
-  let withinLeaves = 0;
+  // fields of one object: numbers captured by a callback would be made anew with every sum
+  const total = { square: 0, terms: 0, withinLeaves: 0 };
   let floor = threshold;
   forEachProduct(vectors, images(vectors, operator), (r, c, re, im, common) => {
     const first = members[r] as number;
@@ -328,10 +326,10 @@ function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: 
     if (common === 0) return;
     const size = modulus(re, im);
     const atMost = roundUp(size) + error;
-    sum += 2 * atMost ** 2;
-    terms += 2;
+    total.square += 2 * atMost ** 2;
+    total.terms += 2;
     const node = partingNode(states[first]?.path ?? [], states[second]?.path ?? []);
-    if (node === undefined) withinLeaves = Math.max(withinLeaves, roundUp(atMost));
+    if (node === undefined) total.withinLeaves = Math.max(total.withinLeaves, roundUp(atMost));
     else if (size > (largest.get(node) ?? -1)) largest.set(node, size);
     const atLeast = roundDown(size) - error;
     if (atLeast <= floor) return;
@@ -342,7 +340,10 @@ function evaluate(operator: Operator, vectors: Csr, pass: Pass): { offDiagonal: 
       floor = Math.max(floor, (worst[WORST_KEPT - 1] as PairElement).atLeast);
     }
   });
-  return { offDiagonal: roundUp(rootOfSquares(sum, terms), members.length * members.length + 8), withinLeaves };
+  return {
+    offDiagonal: roundUp(rootOfSquares(total.square, total.terms), members.length * members.length + 8),
+    withinLeaves: total.withinLeaves,
+  };
 }
 
 /** The node at which two states part company; undefined for two states of one leaf. */

@@ -172,11 +172,9 @@ function insideRatios(
   nodes: readonly TreeNode[],
 ): (number | undefined)[] {
   const { leaves } = part;
-  const split = leaves.some((leaf) =>
-    pathTo(leaf.from, nodes).some((step) => nodes[step.node]?.kind === "perturbation"),
-  );
-  if (!split || leaves.length < 2) return part.outward.map(() => undefined);
-  const paths = leaves.map((leaf) => pathTo(leaf.from, nodes));
+  const paths = leaves.length < 2 ? [] : leaves.map((leaf) => pathTo(leaf.from, nodes));
+  const split = paths.some((path) => path.some((step) => nodes[step.node]?.kind === "perturbation"));
+  if (!split) return part.outward.map(() => undefined);
   const leafOf = leaves.flatMap((leaf, index) => new Array<number>(leaf.rows.rows).fill(index));
   const all = stackRows(
     leaves.map((leaf) => leaf.rows),

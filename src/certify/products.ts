@@ -12,14 +12,14 @@ import { imageError } from "./residuals.js";
  */
 export function gramDefect(vectors: Csr, longest = 1): number {
   const error = gramElementError(vectors) * longest * longest;
-  let sum = 0;
+  const total = { square: 0 };
   forEachProduct(vectors, vectors, (r, c, re, im, common) => {
     if (common === 0 && r !== c) return;
     const x = re - (r === c ? 1 : 0);
     if (x === 0 && im === 0 && single(vectors, r) && single(vectors, c)) return;
-    sum += (r === c ? 1 : 2) * (Math.sqrt(x * x + im * im) + error) ** 2;
+    total.square += (r === c ? 1 : 2) * (Math.sqrt(x * x + im * im) + error) ** 2;
   });
-  return roundUp(Math.sqrt(sum), vectors.rows * vectors.rows + 8);
+  return roundUp(Math.sqrt(total.square), vectors.rows * vectors.rows + 8);
 }
 
 /** Bound on the error of one computed inner product of two of the vectors, for norms up to 1.004. */

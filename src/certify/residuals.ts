@@ -1,16 +1,8 @@
 import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp, UNDERFLOW, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { gamma, rootOfSquares, roundUp, UNDERFLOW, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { longestColumn } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
-
-/**
- * The root of a sum of squares of `terms` complex numbers that differ from zero, not rounded up: each square may have lost
- * half the smallest positive number, twice, which no relative bound covers once the numbers are below 1e-154.
- */
-export function rootOfSquares(sum: number, terms: number): number {
-  return terms === 0 ? 0 : Math.sqrt(sum + terms * UNDERFLOW);
-}
 
 /**
  * Bound on the rounding and entry errors of one computed image A q for ‖q‖ ≤ 1 + 2^−20: the k-th component is a sum of at
@@ -36,15 +28,10 @@ export function residualBounds(rows: Csr, vectors: Csr, value: (row: number) => 
   const out = new Float64Array(vectors.rows);
   for (let r = 0; r < vectors.rows; r++) {
     const a = value(r);
-    let sum = 0;
-    let terms = 0;
-    forEachDifference(rows, vectors, r, a, (_, x, y) => {
-      sum += x * x + y * y;
-      if (x !== 0 || y !== 0) terms++;
-    });
+    const { square, terms } = difference(rows, vectors, r, a, undefined);
     // a q and the subtraction: at most 4 roundings of size |a||q_k| each, and one of the difference itself
     const rounding = 5 * UNIT_ROUNDOFF * (Math.abs(a.re) + Math.abs(a.im));
-    out[r] = roundUp(rootOfSquares(sum, terms) + error + rounding, terms + 8);
+    out[r] = roundUp(rootOfSquares(square, terms) + error + rounding, terms + 8);
   }
   return out;
 }
@@ -56,16 +43,10 @@ export function residualRows(rows: Csr, vectors: Csr, a: Complex): { norm: numbe
   let terms = 0;
   let largestRow = 0;
   for (let r = 0; r < vectors.rows; r++) {
-    let row = 0;
-    forEachDifference(rows, vectors, r, a, (column, x, y) => {
-      if (x === 0 && y === 0) return;
-      const size = rootOfSquares(x * x + y * y, 1);
-      square += size * size;
-      terms++;
-      row += size;
-      columns.set(column, (columns.get(column) ?? 0) + size);
-    });
-    largestRow = Math.max(largestRow, row);
+    const found = difference(rows, vectors, r, a, columns);
+    square += found.square;
+    terms += found.terms;
+    largestRow = Math.max(largestRow, found.sum);
   }
   let largestColumn = 0;
   for (const sum of columns.values()) largestColumn = Math.max(largestColumn, sum);
@@ -76,21 +57,27 @@ export function residualRows(rows: Csr, vectors: Csr, a: Complex): { norm: numbe
   };
 }
 
-/** Calls back with every element of one row of `rows` − a · `vectors`. */
-function forEachDifference(
+/**
+ * One row of `rows` − a · `vectors`: the sum of its squared moduli, how many elements differ from zero, and, where column sums
+ * are kept, the sum of its moduli, each added to the sum of its column.
+ */
+function difference(
   rows: Csr,
   vectors: Csr,
   row: number,
   a: Complex,
-  visit: (column: number, x: number, y: number) => void,
-): void {
+  columns: Map<number, number> | undefined,
+): { square: number; terms: number; sum: number } {
   let p = rows.ptr[row] as number;
   let q = vectors.ptr[row] as number;
   const pEnd = rows.ptr[row + 1] as number;
   const qEnd = vectors.ptr[row + 1] as number;
+  let square = 0;
+  let terms = 0;
+  let sum = 0;
   while (p < pEnd || q < qEnd) {
-    const i = p < pEnd ? (rows.col[p] as number) : Number.POSITIVE_INFINITY;
-    const j = q < qEnd ? (vectors.col[q] as number) : Number.POSITIVE_INFINITY;
+    const i = p < pEnd ? (rows.col[p] as number) : rows.cols;
+    const j = q < qEnd ? (vectors.col[q] as number) : rows.cols;
     let x = 0;
     let y = 0;
     if (i <= j) {
@@ -105,8 +92,16 @@ function forEachDifference(
       y -= a.re * v + a.im * u;
       q++;
     }
-    visit(Math.min(i, j), x, y);
+    if (x === 0 && y === 0) continue;
+    terms++;
+    square += x * x + y * y;
+    if (columns === undefined) continue;
+    const size = rootOfSquares(x * x + y * y, 1);
+    sum += size;
+    const column = Math.min(i, j);
+    columns.set(column, (columns.get(column) ?? 0) + size);
   }
+  return { square, terms, sum };
 }
 
 /** Σ_k conj(a_k) b_k over one row of each. */

@@ -2,7 +2,7 @@ import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
 import { couplingScale, LABEL_WIDTH } from "../audit/resolution.js";
 import type { Csr } from "../numerics/csr.js";
-import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
+import { rootOfSquares, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
 import { type Depth, type Leaf, type ResolvedLevel, type ResolvedPart, resolveLevel } from "../refine/resolve.js";
@@ -16,7 +16,7 @@ import { type GuardOptions, type GuardSetting, guardSetting, levelGuard, natural
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
 import { nearbyModel } from "./nearby.js";
-import { rootOfSquares, rootSumSquares } from "./residuals.js";
+import { rootSumSquares } from "./residuals.js";
 import { type SafeOrders, safeOrders, weaker } from "./safe-orders.js";
 import { type LabelNumber, labelNumbers, nameLabels } from "./state-labels.js";
 import type { Shift } from "./verdict.js";
@@ -158,7 +158,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
     findings: audit.candidates,
     level: found,
     nodes,
-    residuals: numbers.map((list) => Float64Array.from(list, (entry) => entry.radius)),
+    residuals: numbers.map((list) => new Float64Array(list.map((entry) => entry.radius))),
     energyResiduals: residuals,
     thresholds,
     wholeDefect: whole.orthonormality,

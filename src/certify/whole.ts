@@ -80,7 +80,7 @@ export function wholeEvidence(problem: PreparedProblem, sectors: Sectors, nodes:
     return { energyResiduals: residualBounds(images(frame, h0), frame, energy, error), labelResiduals };
   });
   const energyResidual = rootSumSquares(
-    Float64Array.from(evidence, ({ energyResiduals }) => rootSumSquares(energyResiduals)),
+    new Float64Array(evidence.map(({ energyResiduals }) => rootSumSquares(energyResiduals))),
   );
   const separators = problem.candidates.flatMap((candidate, place): SeparatorEvidence[] => {
     const own = frobenius[place] ?? [];
@@ -88,7 +88,7 @@ export function wholeEvidence(problem: PreparedProblem, sectors: Sectors, nodes:
     const gaps = nodes.flatMap((node) =>
       node.kind === "label" && node.operator === candidate.name ? [smallestGap(node.values)] : [],
     );
-    return [{ candidate: place, gap: Math.min(...gaps), residual: rootSumSquares(Float64Array.from(own)) }];
+    return [{ candidate: place, gap: Math.min(...gaps), residual: rootSumSquares(new Float64Array(own)) }];
   });
   return {
     orthonormality: epsilon,
@@ -132,8 +132,9 @@ function labelJudge(
 /** Smallest distance between two of the given eigenvalues; Infinity for fewer than two. */
 export function smallestGap(values: readonly Complex[]): number {
   let gap = Number.POSITIVE_INFINITY;
+  if (values.length < 2) return gap;
   if (values.every((value) => value.im === 0)) {
-    const sorted = Float64Array.from(values, (value) => value.re).sort();
+    const sorted = new Float64Array(values.map((value) => value.re)).sort();
     for (let k = 1; k < sorted.length; k++) gap = Math.min(gap, (sorted[k] as number) - (sorted[k - 1] as number));
     return gap;
   }

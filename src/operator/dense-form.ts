@@ -1,10 +1,12 @@
 import type { Csr } from "../numerics/csr.js";
 import type { Dense } from "../numerics/dense.js";
-import { dropZeros } from "../numerics/sparse.js";
+import { dropZeros, fullCsr } from "../numerics/sparse.js";
 
 /** Numbers attached to the entries of a square matrix, spread over dense rows. */
 export function denseOf(csr: Csr, values: Float64Array): Float64Array {
   const n = csr.cols;
+  // without a gap the entries are the dense rows themselves
+  if (values.length === csr.rows * n) return values;
   const out = new Float64Array(csr.rows * n);
   for (let r = 0; r < csr.rows; r++) {
     const end = csr.ptr[r + 1] as number;
@@ -24,6 +26,7 @@ export function keepNonzero(n: number, value: Dense, bounds: Float64Array): [Csr
     bounds[k] !== 0 || value.re[k] !== 0 || (value.im !== undefined && value.im[k] !== 0);
   let count = 0;
   for (let k = 0; k < n * n; k++) if (kept(k)) count++;
+  if (count === n * n) return [fullCsr(n, n, value), bounds];
   const ptr = new Int32Array(n + 1);
   const col = new Int32Array(count);
   const re = new Float64Array(count);

@@ -1,9 +1,9 @@
 import type { NodeEvidence } from "../certify/couplings.js";
 import type { StudyInternals } from "../certify/internals.js";
 import type { LevelResult, StateVector, Study } from "../certify/outcome.js";
-import { imageError, rootOfSquares, rowProduct } from "../certify/residuals.js";
+import { imageError, rowProduct } from "../certify/residuals.js";
 import type { Csr } from "../numerics/csr.js";
-import { gamma, roundUp } from "../numerics/rounding.js";
+import { gamma, rootOfSquares, roundUp } from "../numerics/rounding.js";
 import { add, adjoint, maxRowEntries, multiply, selectRows } from "../numerics/sparse.js";
 import { images } from "../operator/images.js";
 import type { Sector } from "../refine/sectors.js";
