@@ -38,8 +38,8 @@ export const REFUSE_ABOVE_UNSTATED = 8;
  * What couplings by V are measured against: ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least 1/128 of ‖V‖, lest a
  * bare multiple of 1 be judged by its rounding; both as rigorous lower bounds.
  */
-export function couplingScale({ variation, normAtLeast }: Operator): number {
-  return Math.max(variation, normAtLeast / 128);
+export function couplingScale(operator: Operator): number {
+  return scaleOf(operator, 128);
 }
 
 /**
@@ -47,8 +47,13 @@ export function couplingScale({ variation, normAtLeast }: Operator): number {
  * rounding of a commutator grows with the whole norms.
  */
 export function commutatorScale(a: Operator, b: Operator): number {
-  const scale = ({ variation, normAtLeast }: Operator): number => Math.max(variation, normAtLeast / 16);
-  return scale(a) * scale(b);
+  return scaleOf(a, 16) * scaleOf(b, 16);
+}
+
+function scaleOf(operator: Operator, share: number): number {
+  const { variation } = operator;
+  // the other bound cannot be larger then, and need not be found
+  return variation >= operator.norm / share ? variation : Math.max(variation, operator.normAtLeast / share);
 }
 
 /**
