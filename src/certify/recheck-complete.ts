@@ -4,7 +4,7 @@ import type { OwnLevel } from "./recheck-level.js";
 import { type OwnProblem, productRounding } from "./recheck-operators.js";
 import type { Ledger } from "./recheck-report.js";
 import { spectrumOf } from "./recheck-spectrum.js";
-import type { Bench, Vectors } from "./recheck-vectors.js";
+import { type Bench, modulusOf, type Vectors } from "./recheck-vectors.js";
 
 /** A count that leaves this fraction of a gap open is taken for the whole gap. */
 const OPEN = 1 / 64;
@@ -76,7 +76,7 @@ function crossOverlap(vectors: Vectors, bench: Bench): number {
     bench.project(0, r + 1, true);
     for (let t = 0; t < bench.met; t++) {
       const c = bench.partners[t] as number;
-      const size = Math.hypot((bench.re[c] as number) - (c === r ? 1 : 0), bench.im[c] as number);
+      const size = modulusOf((bench.re[c] as number) - (c === r ? 1 : 0), bench.im[c] as number);
       const error = vectors.unit[r] === 1 && vectors.unit[c] === 1 ? 0 : relative;
       sum += (c === r ? 1 : 2) * (size + error) ** 2;
     }

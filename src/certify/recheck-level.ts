@@ -2,7 +2,7 @@ import { roundUp } from "../numerics/rounding.js";
 import type { CertifiedLevel } from "./certificate-format.js";
 import { type OwnOperator, type OwnProblem, productRounding } from "./recheck-operators.js";
 import { type OwnTree, partingPlace } from "./recheck-tree.js";
-import type { Bench, Vectors } from "./recheck-vectors.js";
+import { type Bench, modulusOf, type Vectors } from "./recheck-vectors.js";
 
 /** A bound from the own evaluation, and the largest that an honest one could give. */
 export interface Pair {
@@ -107,7 +107,7 @@ function levelShape(vectors: Vectors, l: number): Shape {
     longest = Math.max(longest, (ptr[s + 1] as number) - (ptr[s] as number));
     let sum = 0;
     for (let p = ptr[s] as number; p < (ptr[s + 1] as number); p++) {
-      const size = Math.hypot(re[p] as number, im[p] as number);
+      const size = modulusOf(re[p] as number, im[p] as number);
       sum += size;
       byKet.set(ket[p] as number, (byKet.get(ket[p] as number) ?? 0) + size);
     }
@@ -137,7 +137,7 @@ function evaluateGram(
     bench.project(from, r + 1, true);
     for (let t = 0; t < bench.met; t++) {
       const c = bench.partners[t] as number;
-      const size = Math.hypot((bench.re[c] as number) - (c === r ? 1 : 0), bench.im[c] as number);
+      const size = modulusOf((bench.re[c] as number) - (c === r ? 1 : 0), bench.im[c] as number);
       const exact = vectors.unit[r] === 1 && vectors.unit[c] === 1;
       const error = exact ? 0 : relative * 1.01;
       if (size + error === 0) continue;
@@ -200,7 +200,7 @@ function evaluateElements(
         continue;
       }
       touched++;
-      const size = Math.hypot(x, bench.im[c] as number);
+      const size = modulusOf(x, bench.im[c] as number);
       const rounding = (vectors.unit[r] === 1 ? 0 : v.rounding) + (vectors.unit[c] === 1 ? 0 : relative);
       const own = size + rounding * 1.001 + entries;
       bare += 2 * size * size;

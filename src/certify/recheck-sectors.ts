@@ -3,7 +3,7 @@ import type { OwnCandidate } from "./recheck-commutators.js";
 import type { OwnResiduals } from "./recheck-labels.js";
 import { type OwnProblem, productRounding } from "./recheck-operators.js";
 import type { Ledger } from "./recheck-report.js";
-import type { Bench, Vectors } from "./recheck-vectors.js";
+import { type Bench, modulusOf, type Vectors } from "./recheck-vectors.js";
 
 /** Largest number of stored elements, and of multiplications, that the re-check spends on one perturbation. */
 const MOST_ELEMENTS = 12_000_000;
@@ -73,17 +73,18 @@ export function checkSectors(
         bench.project(0, vectors.count, v.columns.im === undefined);
         for (let t = 0; t < bench.met; t++) {
           const c = bench.partners[t] as number;
-          const [a, b] = [bench.re[c] as number, bench.im[c] as number];
+          const a = bench.re[c] as number;
+          const b = bench.im[c] as number;
           if (numbers[c] === number) {
             if (!few) continue;
             x[(place[c] as number) * d + j] = a;
             y[(place[c] as number) * d + j] = b;
-          } else if (Math.hypot(a, b) > error) {
+          } else if (modulusOf(a, b) > error) {
             ledger.claim(
               false,
               paths[s] ?? "levels",
               () =>
-                `sectors ${number} and ${numbers[c]} are claimed apart, but ${v.name} couples two of their states by ${Math.hypot(a, b)}`,
+                `sectors ${number} and ${numbers[c]} are claimed apart, but ${v.name} couples two of their states by ${modulusOf(a, b)}`,
             );
           }
         }
@@ -116,7 +117,7 @@ function checkLabelsOf(
       const [first] = labels;
       if (first === undefined || labels.some((label) => label === undefined || label.status === "not sharp")) continue;
       const off = (label: typeof first | undefined): number =>
-        label === undefined ? 0 : Math.hypot(label.re - first.re, label.im - first.im);
+        label === undefined ? 0 : modulusOf(label.re - first.re, label.im - first.im);
       const apart = labels.findIndex((label) => off(label) > SAME_LABEL * norm);
       ledger.claim(
         apart < 0,
@@ -170,7 +171,7 @@ export function smallestApart(points: readonly (readonly [number, number])[], wi
       const a = distinct[k] as readonly [number, number];
       const b = distinct[j] as readonly [number, number];
       if (b[0] - a[0] > least) break;
-      const distance = Math.hypot(a[0] - b[0], a[1] - b[1]);
+      const distance = modulusOf(a[0] - b[0], a[1] - b[1]);
       if (distance > width) least = Math.min(least, distance);
     }
   }

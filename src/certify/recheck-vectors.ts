@@ -292,3 +292,10 @@ function lowest(list: Int32Array, low: number, high: number, least: number): num
   }
   return a;
 }
+
+/** |x + iy|; squares only where none can be lost. */
+export function modulusOf(x: number, y: number): number {
+  if (y === 0) return Math.abs(x);
+  const square = x * x + y * y;
+  return square > 1e-280 && square < 1e280 ? Math.sqrt(square) : Math.hypot(x, y);
+}
