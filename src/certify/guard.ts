@@ -5,9 +5,8 @@ import { shown } from "../misuse.js";
 import { modulus } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundDown } from "../numerics/rounding.js";
-import { filterEntries, findEntry, submatrix } from "../numerics/sparse.js";
+import { findEntry, submatrix } from "../numerics/sparse.js";
 import { stackRows } from "../numerics/stack.js";
-import { normBound, normFloor } from "../operator/norms.js";
 import type { ResolvedLevel, ResolvedPart } from "../refine/resolve.js";
 import { inSpace, type Sector } from "../refine/sectors.js";
 import type { PathStep, TreeNode } from "../refine/tree.js";
@@ -36,7 +35,7 @@ export interface SectorGuard {
   readonly perturbation: string;
   /** Number of the sector among all of the whole space. */
   readonly sector: number;
-  /** The λ of this sector's ratios: as stated, or the smaller of 1 and range(H0)/‖V‖ here, without V's blocks inside levels. */
+  /** The λ of this sector's ratios: as stated, or, V's reach out of levels being as large as H0's range here, at most 1. */
   readonly lambda: number;
   /** Largest ratio of V's blocks to other levels. */
   readonly first: GuardFinding;
@@ -93,23 +92,31 @@ export function guardSetting(options: GuardOptions): GuardSetting {
 }
 
 /**
- * The λ of one sector where nobody stated one: V, without its blocks inside levels, as strong as H0's range there, and at most V as
- * it stands. What V does inside levels, an offset above all, brings no denominators, and neither do other sectors.
+ * The λ of one sector where nobody stated one: V's strongest reach out of a level, max ‖(1 − P_n) V P_n‖_F, as large as H0's range there,
+ * and at most V as it stands. What V does inside levels, an offset above all, brings no denominators, and neither do other sectors;
+ * the choice of states inside levels changes nothing.
  *
  * @param v - the perturbation in the sector's basis
  * @param energies - energy of each vector
  * @param levelOf - level of each vector
  */
 export function naturalLambda(v: Csr, energies: Float64Array, levelOf: Int32Array): number {
-  const between = filterEntries(v, (r, c) => levelOf[r] !== levelOf[c]);
-  const strength = normFloor(between, normBound(between));
+  const squares = new Map<number, number>();
   let low = Number.POSITIVE_INFINITY;
   let high = Number.NEGATIVE_INFINITY;
-  for (const energy of energies) {
-    low = Math.min(low, energy);
-    high = Math.max(high, energy);
+  for (let r = 0; r < v.rows; r++) {
+    const level = levelOf[r] as number;
+    low = Math.min(low, energies[r] as number);
+    high = Math.max(high, energies[r] as number);
+    let sum = 0;
+    for (let e = v.ptr[r] as number; e < (v.ptr[r + 1] as number); e++) {
+      if (levelOf[v.col[e] as number] === level) continue;
+      sum += (v.re[e] as number) ** 2 + (v.im === undefined ? 0 : (v.im[e] as number) ** 2);
+    }
+    squares.set(level, (squares.get(level) ?? 0) + sum);
   }
-  return strength > 0 ? Math.min(1, (high - low) / strength) : 1;
+  const reach = Math.sqrt(Math.max(...squares.values()));
+  return reach > 0 ? Math.min(1, (high - low) / reach) : 1;
 }
 
 /**

@@ -53,7 +53,8 @@ export function checkCompleteness(
   levels.forEach((level, l) => {
     const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
     ledger.claim(
-      reach < gap / 2,
+      // a level that is said to be ambiguous claims no distance to its neighbours
+      reach < gap / 2 || level.questions.includes("ambiguous-level"),
       `levels[${l}].complete`,
       () => `residuals of ${reach} do not tell the level from its neighbours, ${gap} away`,
     );

@@ -204,7 +204,9 @@ function pickFamily(
   if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);
   const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
   const radius = 4 * widest + LABEL_WIDTH * candidate.operator.norm;
-  const distinct = [...new Map(values.map((label) => [`${label.re} ${label.im}`, label])).values()];
+  // values that agree to ten digits are one
+  const digits = (x: number): string => (Math.abs(x) < 1e-9 ? "0" : x.toPrecision(10));
+  const distinct = [...new Map(values.map((label) => [`${digits(label.re)} ${digits(label.im)}`, label])).values()];
   // how often a value occurs may tip the scales between a square and its root: both readings are honest
   const once = recogniseFamily(distinct, radius, allSharp);
   const often = recogniseFamily(values, radius, allSharp);

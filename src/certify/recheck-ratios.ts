@@ -152,31 +152,26 @@ class Work {
     return this.#certificate.levels[this.#l]?.nodes[node]?.kind === "perturbation";
   }
 
-  /** V outside the blocks of the levels as strong as H0's range in the sector; at most 1. */
+  /** V's strongest reach out of a level, max ‖(1 − P_n) V P_n‖_F, as large as H0's range in the sector; at most 1. */
   naturalLambda({ members, re, im }: Sector, p: number): number {
     const d = members.length;
     const vr = re[p] as Float64Array;
     const vi = im[p] as Float64Array;
-    const rows: number[] = [];
-    const columns: number[] = [];
-    const x: number[] = [];
-    const y: number[] = [];
+    const squares = new Map<number, number>();
     let low = Number.POSITIVE_INFINITY;
     let high = Number.NEGATIVE_INFINITY;
     members.forEach((s, i) => {
+      const level = this.levelOf(s);
       low = Math.min(low, this.#energies[s] as number);
       high = Math.max(high, this.#energies[s] as number);
+      let sum = squares.get(level) ?? 0;
       members.forEach((t, j) => {
-        const k = i * d + j;
-        if (this.#level[s] === this.#level[t] || (vr[k] === 0 && vi[k] === 0)) return;
-        rows.push(i);
-        columns.push(j);
-        x.push(vr[k] as number);
-        y.push(vi[k] as number);
+        if (this.levelOf(t) !== level) sum += (vr[i * d + j] as number) ** 2 + (vi[i * d + j] as number) ** 2;
       });
+      squares.set(level, sum);
     });
-    const between = strengthOf(d, rows, columns, x, y);
-    return between > 0 ? Math.min(1, (high - low) / between) : 1;
+    const reach = Math.sqrt(Math.max(...squares.values()));
+    return reach > 0 ? Math.min(1, (high - low) / reach) : 1;
   }
 
   /** What a sector's states of the level reach. */
@@ -242,37 +237,4 @@ class Work {
     }
     return out;
   }
-}
-
-/** A lower bound on the norm of a Hermitian matrix: of its largest row r, or of one step of the power method from it. */
-function strengthOf(
-  n: number,
-  rows: readonly number[],
-  columns: readonly number[],
-  re: readonly number[],
-  im: readonly number[],
-): number {
-  const squares = new Float64Array(n);
-  rows.forEach((r, e) => {
-    squares[r] = (squares[r] as number) + (re[e] as number) ** 2 + (im[e] as number) ** 2;
-  });
-  const most = squares.reduce((a, b) => Math.max(a, b), 0);
-  if (most === 0) return 0;
-  const heaviest = squares.indexOf(most);
-  const xr = new Float64Array(n);
-  const xi = new Float64Array(n);
-  const yr = new Float64Array(n);
-  const yi = new Float64Array(n);
-  rows.forEach((r, e) => {
-    if (r !== heaviest) return;
-    xr[columns[e] as number] = re[e] as number;
-    xi[columns[e] as number] = -(im[e] as number);
-  });
-  rows.forEach((r, e) => {
-    const c = columns[e] as number;
-    yr[r] = (yr[r] as number) + (re[e] as number) * (xr[c] as number) - (im[e] as number) * (xi[c] as number);
-    yi[r] = (yi[r] as number) + (re[e] as number) * (xi[c] as number) + (im[e] as number) * (xr[c] as number);
-  });
-  const image = yr.reduce((sum, y, r) => sum + y * y + (yi[r] as number) ** 2, 0);
-  return Math.max(Math.sqrt(most), Math.sqrt(image / most));
 }

@@ -141,25 +141,3 @@ function placesOf(n: number, indices: ArrayLike<number>): Int32Array {
   for (let k = 0; k < indices.length; k++) place[indices[k] as number] = k;
   return place;
 }
-
-/** The entries for which `keep(row, column)` holds. */
-export function filterEntries(a: Csr, keep: (row: number, column: number) => boolean): Csr {
-  const ptr = new Int32Array(a.rows + 1);
-  const order: number[] = [];
-  for (let r = 0; r < a.rows; r++) {
-    for (let e = a.ptr[r] as number; e < (a.ptr[r + 1] as number); e++) {
-      if (keep(r, a.col[e] as number)) order.push(e);
-    }
-    ptr[r + 1] = order.length;
-  }
-  const kept = Int32Array.from(order);
-  const { im } = a;
-  return {
-    rows: a.rows,
-    cols: a.cols,
-    ptr,
-    col: kept.map((e) => a.col[e] as number),
-    re: gather(a.re, kept),
-    im: im === undefined ? undefined : gather(im, kept),
-  };
-}
