@@ -156,6 +156,8 @@ function countRuns(ledger: Ledger, certificate: Certificate, problem: OwnProblem
     const low = levels[a];
     const high = levels[b];
     if (low === undefined || high === undefined) continue;
+    // an ambiguous level at an end claims no distance to what lies beyond
+    if ([low, high].some((level) => level.questions.includes("ambiguous-level"))) continue;
     const path = `levels[${a}].complete`;
     const countable = ledger.claim(
       spectrum.countable,

@@ -54,6 +54,7 @@ export function ratiosOf(
   const norm = problem.perturbations.reduce((most, v) => Math.max(most, v.norm), 0);
   const level = certificate.levels[l];
   const gap = level === undefined ? 1 : smallerGap(level);
+  const width = certificate.levels.reduce((most, x) => Math.max(most, x.spread), 0);
   const weight = gap === Number.POSITIVE_INFINITY ? 0 : (norm * norm) / gap;
   const parts: OwnPart[] = [];
   const work = new Work(certificate, l, own);
@@ -80,7 +81,7 @@ export function ratiosOf(
         sector: sector.number,
         natural: work.naturalLambda(sector, p),
         inside,
-        insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : (1e-11 * weight) / smallest,
+        insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : ((1e-11 + (16 * width) / gap) * weight) / smallest,
         first: most(reach.firstTo),
         second: most(reach.secondTo),
         firstTo: reach.firstTo,
@@ -89,7 +90,6 @@ export function ratiosOf(
     });
   }
   const noise = 1e-11 * norm;
-  const width = certificate.levels.reduce((most, x) => Math.max(most, x.spread), 0);
   return {
     parts,
     second,
