@@ -2,7 +2,7 @@ import { modulus } from "../numerics/complex.js";
 import { gamma, roundUp } from "../numerics/rounding.js";
 import { euclidean, frobenius } from "../numerics/sparse.js";
 import type { Operator } from "../operator/operator.js";
-import { COMMUTATOR_SHARE, commutatorScale } from "./resolution.js";
+import { commutatorThreshold } from "./resolution.js";
 
 /** Whether two operators commute to the stated resolution. */
 export type CommutatorVerdict = "commutes" | "broken" | "undecided";
@@ -71,7 +71,7 @@ export function judgeCommutator(
   ket: (i: number) => string,
 ): CommutatorFinding {
   const commutator = left.operator.commutator(right.operator);
-  const threshold = resolution * COMMUTATOR_SHARE * commutatorScale(left.operator, right.operator);
+  const threshold = commutatorThreshold(left.operator, right.operator, resolution);
   const { csr } = commutator;
   const entries = csr.re.length;
   let atLeast = 0;

@@ -1,5 +1,6 @@
 import { GoodBasisError } from "../errors.js";
 import { shown } from "../misuse.js";
+import { UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { Operator } from "../operator/operator.js";
 
 /**
@@ -11,10 +12,13 @@ import type { Operator } from "../operator/operator.js";
 export const DEFAULT_RESOLUTION = 1e-10;
 
 /**
- * A commutator counts as vanished when its bound is below this fraction of resolution · {@link commutatorScale}: a label must be
- * conserved more sharply than the couplings it is to rule out, since these are the commutator divided by a difference of labels.
+ * A commutator counts as vanished when its bound is below this fraction of the resolution, see {@link commutatorThreshold}: a label
+ * must be conserved more sharply than the couplings it is to rule out, since these are the commutator divided by a difference of labels.
  */
 export const COMMUTATOR_SHARE: number = 1 / 64;
+
+/** See {@link couplingScale}. */
+const OFFSET_SHARE = 2 ** -13;
 
 /** "Far below": a level's spread must stay under this fraction of the gap around it and of the splittings inside it. */
 export const FAR_BELOW = 1e-3;
@@ -31,29 +35,29 @@ export const NOISE: number = 2 ** -43;
 /** With λ stated by the caller: largest ratio λ‖P_k V P_n‖ / |E_k − E_n| that is not refused. */
 export const REFUSE_ABOVE = 1;
 
-/** With no λ stated: the same ratio at the λ of each sector, see `naturalLambda`; only a near-degeneracy exceeds it. */
+/** With no λ stated: the same ratio for V as it stands; only a near-degeneracy, or a V stronger than H0's gaps, exceeds it. */
 export const REFUSE_ABOVE_UNSTATED = 8;
 
 /**
- * What couplings by V are measured against: ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least 1/128 of ‖V‖, lest a
- * bare multiple of 1 be judged by its rounding; both as rigorous lower bounds.
+ * What couplings by V are measured against: a rigorous lower bound on ‖V − tr V/n‖, since a multiple of 1 couples nothing, but at least
+ * 1/8192 of one on ‖V‖, below which an offset leaves its rounding; and that one itself where V may be nothing but a multiple of 1, to
+ * within its uncertainty and 8 n u ‖V‖.
  */
 export function couplingScale(operator: Operator): number {
-  return scaleOf(operator, 128);
+  const { variation, n, norm } = operator;
+  if (variation > norm * OFFSET_SHARE) return variation;
+  return variation > 8 * n * UNIT_ROUNDOFF * norm
+    ? Math.max(variation, operator.normAtLeast * OFFSET_SHARE)
+    : operator.normAtLeast;
 }
 
 /**
- * What a commutator [A, B] is measured against: the product of ‖A − tr A/n‖ and ‖B − tr B/n‖, each at least 1/16 of ‖A‖ or ‖B‖: the
- * rounding of a commutator grows with the whole norms.
+ * Up to what bound a commutator [A, B] counts as vanished: a share of the resolution, relative to {@link couplingScale} of both, but at
+ * least what the rounding of products leaves of ‖A‖‖B‖. Couplings are evaluated besides, and held to the resolution itself.
  */
-export function commutatorScale(a: Operator, b: Operator): number {
-  return scaleOf(a, 16) * scaleOf(b, 16);
-}
-
-function scaleOf(operator: Operator, share: number): number {
-  const { variation } = operator;
-  // the other bound cannot be larger then, and need not be found
-  return variation >= operator.norm / share ? variation : Math.max(variation, operator.normAtLeast / share);
+export function commutatorThreshold(a: Operator, b: Operator, resolution: number): number {
+  const rounding = 8 * a.n * UNIT_ROUNDOFF * (a.norm * b.norm);
+  return Math.max(resolution * COMMUTATOR_SHARE * (couplingScale(a) * couplingScale(b)), rounding);
 }
 
 /**
@@ -64,6 +68,14 @@ export const LARGEST_ENERGY = 1e60;
 
 /** Entries of candidates and ladder operators may not be larger: their squares must be doubles, as must their products with H0 and V. */
 export const LARGEST_CANDIDATE = 1e150;
+
+/**
+ * What the rounding of a computed matrix may leave of a symmetry of H0: a few units in the last place of its norm. A symmetry that is
+ * broken by more is broken by what was put in.
+ */
+export function matrixNoise({ h0, n }: { readonly h0: Operator; readonly n: number }): number {
+  return 64 * Math.sqrt(n) * UNIT_ROUNDOFF * h0.norm;
+}
 
 /**
  * Checks a resolution.

@@ -1,10 +1,10 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
-import { fromTriplets } from "../numerics/sparse.js";
+import { frobenius, fromTriplets } from "../numerics/sparse.js";
 import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import { secondOrder } from "../refine/second-order.js";
-import { type GuardSetting, naturalLambda } from "./guard.js";
+import type { GuardSetting } from "./guard.js";
 import { elementErrorBound, forEachProduct } from "./products.js";
 import { short } from "./short.js";
 
@@ -17,14 +17,13 @@ interface ColumnLevel {
 /** The largest ratio found so far: columns of one part, between two levels. */
 interface Worst {
   readonly ratio: number;
-  readonly lambda: number;
   readonly levels: readonly [number, number];
 }
 
 /**
  * The blockwise denominators guard between the levels of a complete basis, ‖P_k V P_n‖_F/|E_k − E_n| and the same at second order,
  * one sentence for each perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts of their own, as
- * symmetry sectors are; each has its own λ where none is stated.
+ * symmetry sectors are.
  */
 export function denominatorRemarks(
   problem: PreparedProblem,
@@ -37,7 +36,7 @@ export function denominatorRemarks(
     for (const column of columns) levelOf[column] = l;
   });
   return problem.perturbations.flatMap(({ name, operator }) => {
-    let worst: Worst = { ratio: 0, lambda: 0, levels: [0, 0] };
+    let worst: Worst = { ratio: 0, levels: [0, 0] };
     for (const part of partsOf(operator, vectors)) {
       const found = largestRatio(part, levels, levelOf, setting);
       if (found.ratio > worst.ratio) worst = found;
@@ -45,9 +44,42 @@ export function denominatorRemarks(
     if (worst.ratio <= setting.refuseAbove) return [];
     const energy = (l: number): string => short(levels[l]?.energy ?? 0);
     return [
-      `at λ = ${short(worst.lambda)}${setting.lambda === undefined ? " (not stated)" : ""}, ${name} couples the levels at ` +
+      `at λ = ${short(setting.lambda)}${setting.stated ? "" : " (not stated)"}, ${name} couples the levels at ` +
         `${energy(worst.levels[0])} and ${energy(worst.levels[1])} ${short(worst.ratio)} times as strongly as they are apart; ` +
         "merge them with levelWidth or state a smaller lambda",
+    ];
+  });
+}
+
+/**
+ * The guard of one level of an incomplete basis, from above: V reaches out of it by ‖(1 − P) V P‖_F at most, to levels that are at least
+ * `gap` away, and from there on by at most 2‖V‖.
+ *
+ * @param own - the level's columns as rows
+ */
+export function reachRemarks(
+  { perturbations }: PreparedProblem,
+  own: Csr,
+  energy: number,
+  gap: number,
+  { lambda, stated, refuseAbove }: GuardSetting,
+): string[] {
+  if (gap === Number.POSITIVE_INFINITY) return [];
+  return perturbations.flatMap(({ name, operator }) => {
+    const reached = images(own, operator);
+    let square = frobenius(reached) ** 2;
+    forEachProduct(own, reached, (r, c, re, im) => {
+      square -= (r === c ? 1 : 2) * (re * re + im * im);
+    });
+    // what rounding may leave of a difference of equal squares is no reach
+    const reach = square > 1e-13 * operator.norm ** 2 ? Math.sqrt(square) : 0;
+    const first = (lambda * reach) / gap;
+    const most = Math.max(first, (first * 2 * lambda * operator.norm) / gap);
+    if (most <= refuseAbove) return [];
+    return [
+      `at λ = ${short(lambda)}${stated ? "" : " (not stated)"}, ${name} reaches out of the level at ${short(energy)} by ` +
+        `${short(reach)}, and the next level is ${short(gap)} away: without its states the denominators may be unsafe; bring the whole ` +
+        "basis, or state a smaller lambda",
     ];
   });
 }
@@ -111,8 +143,8 @@ function largestRatio(
   const own = Int32Array.from(columns, (column) => levelOf[column] as number);
   const levelEnergies = Float64Array.from(levels, ({ energy }) => energy);
   const energies = Float64Array.from(own, (l) => levelEnergies[l] as number);
-  const lambda = setting.lambda ?? naturalLambda(v, energies, own);
-  let worst: Worst = { ratio: 0, lambda, levels: [0, 0] };
+  const { lambda } = setting;
+  let worst: Worst = { ratio: 0, levels: [0, 0] };
   for (const l of new Set(own)) {
     const indices = Int32Array.from([...own.keys()].filter((k) => own[k] === l));
     const energy = levelEnergies[l] as number;
@@ -121,7 +153,7 @@ function largestRatio(
       { ...first, ratio: lambda * first.ratio },
       { ...second, ratio: lambda * lambda * second.ratio },
     ]) {
-      if (ratio > worst.ratio) worst = { ratio, lambda, levels: [l, level] };
+      if (ratio > worst.ratio) worst = { ratio, levels: [l, level] };
     }
   }
   return worst;

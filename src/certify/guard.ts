@@ -13,10 +13,12 @@ import type { PathStep, TreeNode } from "../refine/tree.js";
 import { partingNode } from "./couplings.js";
 import { pathTo } from "./level-states.js";
 
-/** The λ that a caller stated, if any, and the threshold of the denominators guard. */
+/** The λ and the threshold that the denominators guard uses. */
 export interface GuardSetting {
-  /** The λ at which ratios are taken; undefined where nobody stated one. */
-  readonly lambda: number | undefined;
+  /** The λ at which ratios are taken: as stated, or 1, V as it stands. */
+  readonly lambda: number;
+  /** Whether the caller stated λ. */
+  readonly stated: boolean;
   /** A ratio above this is refused. */
   readonly refuseAbove: number;
 }
@@ -35,8 +37,6 @@ export interface SectorGuard {
   readonly perturbation: string;
   /** Number of the sector among all of the whole space. */
   readonly sector: number;
-  /** The λ of this sector's ratios: as stated, or, V's reach out of levels being as large as H0's range here, at most 1. */
-  readonly lambda: number;
   /** Largest ratio of V's blocks to other levels. */
   readonly first: GuardFinding;
   /** Largest ratio of the second-order operator's blocks to other levels. */
@@ -46,13 +46,7 @@ export interface SectorGuard {
 }
 
 /** The denominators guard of one level. */
-export interface LevelGuard {
-  /** The λ for everything that concerns the level as a whole: as stated, or the smallest of its sectors'. */
-  readonly lambda: number;
-  /** Whether the caller stated λ. */
-  readonly stated: boolean;
-  /** A ratio above this is refused. */
-  readonly refuseAbove: number;
+export interface LevelGuard extends GuardSetting {
   /** One entry for each sector and perturbation. */
   readonly sectors: readonly SectorGuard[];
   /** Largest of all ratios over other levels. */
@@ -69,60 +63,35 @@ export interface LevelGuard {
 
 /** Options by which a caller states λ. */
 export interface GuardOptions {
-  /** The largest |λ| at which the basis is to be used; 1 means V as it stands. */
+  /** The largest |λ| at which the basis is to be used; 1, V as it stands, where none is stated. */
   readonly lambda?: number;
-  /** Ratios above this are refused; 1 where λ is stated. */
+  /** Ratios above this are refused; by default 1 where λ is stated, and 8 where it is not. */
   readonly refuseAbove?: number;
 }
 
 /**
- * The λ and threshold as stated; with no λ stated the threshold is one that only a near-degeneracy exceeds.
+ * The λ and threshold as stated; with no λ stated V is taken as it stands, and the threshold is one that only a strong V or a
+ * near-degeneracy exceeds.
  *
  * @throws GoodBasisError `option` for a λ or threshold that is not a positive number
  */
 export function guardSetting(options: GuardOptions): GuardSetting {
   const { lambda, refuseAbove } = options;
   for (const [name, value] of Object.entries({ lambda, refuseAbove })) {
-    if (value !== undefined && !(typeof value === "number" && value > 0 && Number.isFinite(value))) {
+    if (value !== undefined && !(value > 0 && Number.isFinite(value))) {
       throw new GoodBasisError("option", `${name} is ${shown(value)}; give a positive number`, { [name]: value });
     }
   }
-  const threshold = lambda === undefined ? REFUSE_ABOVE_UNSTATED : REFUSE_ABOVE;
-  return { lambda, refuseAbove: refuseAbove ?? threshold };
-}
-
-/**
- * The λ of one sector where nobody stated one: V's strongest reach out of a level, max ‖(1 − P_n) V P_n‖_F, as large as H0's range there,
- * and at most V as it stands. What V does inside levels, an offset above all, brings no denominators, and neither do other sectors;
- * the choice of states inside levels changes nothing.
- *
- * @param v - the perturbation in the sector's basis
- * @param energies - energy of each vector
- * @param levelOf - level of each vector
- */
-export function naturalLambda(v: Csr, energies: Float64Array, levelOf: Int32Array): number {
-  const squares = new Map<number, number>();
-  let low = Number.POSITIVE_INFINITY;
-  let high = Number.NEGATIVE_INFINITY;
-  for (let r = 0; r < v.rows; r++) {
-    const level = levelOf[r] as number;
-    low = Math.min(low, energies[r] as number);
-    high = Math.max(high, energies[r] as number);
-    let sum = 0;
-    for (let e = v.ptr[r] as number; e < (v.ptr[r + 1] as number); e++) {
-      if (levelOf[v.col[e] as number] === level) continue;
-      sum += (v.re[e] as number) ** 2 + (v.im === undefined ? 0 : (v.im[e] as number) ** 2);
-    }
-    squares.set(level, (squares.get(level) ?? 0) + sum);
-  }
-  const reach = Math.sqrt(Math.max(...squares.values()));
-  return reach > 0 ? Math.min(1, (high - low) / reach) : 1;
+  const stated = lambda !== undefined;
+  return {
+    lambda: lambda ?? 1,
+    stated,
+    refuseAbove: refuseAbove ?? (stated ? REFUSE_ABOVE : REFUSE_ABOVE_UNSTATED),
+  };
 }
 
 /**
  * Evaluates the guard of one level: blockwise, per sector, outside and inside the level.
- *
- * @param natural - the λ of a sector and a perturbation where none is stated, see {@link naturalLambda}
  */
 export function levelGuard(
   problem: PreparedProblem,
@@ -132,12 +101,11 @@ export function levelGuard(
   levelEnergies: Float64Array,
   enclosure: number,
   setting: GuardSetting,
-  natural: (sector: number, perturbation: number) => number,
 ): LevelGuard {
+  const { lambda } = setting;
   const entries = resolved.parts.flatMap((part) => {
     const insides = insideRatios(problem, sectors[part.sector] as Sector, part, nodes);
     return part.outward.map((outward, p): SectorGuard => {
-      const lambda = setting.lambda ?? natural(part.sector, p);
       const finding = (x: { readonly ratio: number; readonly level: number }): GuardFinding => ({
         ratio: lambda * x.ratio,
         energy: x.level < 0 ? null : (levelEnergies[x.level] as number),
@@ -146,7 +114,6 @@ export function levelGuard(
       return {
         perturbation: problem.perturbations[p]?.name ?? "",
         sector: part.sector,
-        lambda,
         first: finding(outward.first),
         second: { ...finding(outward.second), ratio: lambda * lambda * outward.second.ratio },
         inside: inside === undefined ? null : { ratio: lambda * inside, energy: null },
@@ -155,9 +122,7 @@ export function levelGuard(
   });
   const isolation = Math.min(resolved.level.gapBelow, resolved.level.gapAbove) - 2 * enclosure;
   return {
-    lambda: entries.reduce((least, entry) => Math.min(least, entry.lambda), setting.lambda ?? 1),
-    stated: setting.lambda !== undefined,
-    refuseAbove: setting.refuseAbove,
+    ...setting,
     sectors: entries,
     outside: Math.max(0, ...entries.map((s) => Math.max(s.first.ratio, s.second.ratio))),
     inside: Math.max(0, ...entries.map((s) => s.inside?.ratio ?? 0)),

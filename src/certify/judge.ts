@@ -1,6 +1,6 @@
 import type { CandidateFinding } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
-import { FAR_BELOW } from "../audit/resolution.js";
+import { FAR_BELOW, matrixNoise } from "../audit/resolution.js";
 import type { Depth, ResolvedLevel } from "../refine/resolve.js";
 import { energyTolerance, type Sector } from "../refine/sectors.js";
 import type { TreeNode } from "../refine/tree.js";
@@ -112,7 +112,7 @@ function levelQuestions(given: LevelCase): Question[] {
     });
   }
   const rounding = energyTolerance(problem, problem.n);
-  questions.push(...brokenLabelQuestions(given, rounding));
+  questions.push(...brokenLabelQuestions(given));
   const mixedParts = resolved.parts.filter((part) => {
     const energies = sectors[part.sector]?.energies;
     if (energies === undefined) return false;
@@ -178,19 +178,23 @@ function shiftBlur({ problem, couplings, tilt }: LevelCase, name: string): numbe
 }
 
 /**
- * Labels that H0 itself breaks: between the states that such a label tells apart H0 has elements of up to h. Where h is more than
- * rounding leaves, or H0 breaks the label provably, V must tell these states apart by far more (λ|ΔE1| ≫ h), or H0 decides the states.
- * What is within rounding counts as broken by nobody where V gives both states the same shift; η0 states it.
+ * Labels that H0 itself breaks: between the states that such a label tells apart H0 has elements of up to h. Where H0 breaks the label
+ * provably and by more than the rounding of a computed matrix, V must tell all these states apart by far more (λ|ΔE1| ≫ h), or H0
+ * decides them. Where it breaks the label provably, but within such rounding, this is asked of the states that V tells apart at all;
+ * for the others η0 states what the label is worth.
  */
-function brokenLabelQuestions(given: LevelCase, rounding: number): Question[] {
+function brokenLabelQuestions(given: LevelCase): Question[] {
   const { problem, index, resolved, couplings, guard, findings } = given;
   for (const node of couplings.nodes) {
     const h = node.energyCoupling;
     const place = problem.candidates.findIndex((candidate) => candidate.name === node.operator);
-    const provable = (findings[place]?.withH0.atLeast ?? 0) > 0;
-    if (node.kind !== "label" || h === 0 || (h <= rounding && !provable)) continue;
-    const apart = leastApart(given, node.node, h > rounding);
-    if (h <= FAR_BELOW * guard.lambda * apart && (guard.stated || h <= rounding)) continue;
+    const operator = problem.candidates[place]?.operator;
+    const atLeast = findings[place]?.withH0.atLeast ?? 0;
+    if (node.kind !== "label" || operator === undefined || h === 0 || atLeast === 0) continue;
+    // ‖[A, H0]‖ ≤ 2‖A‖ times what H0 leaves between the labels
+    const real = atLeast / (2 * operator.norm) > matrixNoise(problem);
+    const apart = leastApart(given, node.node, real);
+    if (h <= FAR_BELOW * guard.lambda * apart) continue;
     return [
       {
         code: "ambiguous-level",
@@ -198,8 +202,7 @@ function brokenLabelQuestions(given: LevelCase, rounding: number): Question[] {
         message:
           `H0 breaks ${node.operator} by up to ${short(h)} between states of the level at ${short(resolved.level.energy)}, which ` +
           `V tells apart by ${apart === 0 ? "nothing" : `${short(guard.lambda * apart)} at λ = ${short(guard.lambda)}`}: H0, and not ` +
-          "the label, may decide the states. Use candidates that H0 conserves more sharply" +
-          (guard.stated ? "" : ", or state lambda"),
+          "the label, may decide the states. Use candidates that H0 conserves more sharply, or leave this one out",
       },
     ];
   }
@@ -244,28 +247,30 @@ export function shiftSpread(couplings: LevelCouplings, nodes: readonly TreeNode[
 
 function guardQuestions({ index, resolved, guard }: LevelCase): Question[] {
   const questions: Question[] = [];
-  const at = (lambda: number): string => `λ = ${short(lambda)}${guard.stated ? "" : " (not stated)"}`;
-  if (guard.outside > guard.refuseAbove) {
+  const { lambda, refuseAbove, outside, inside } = guard;
+  const at = `λ = ${short(lambda)}${guard.stated ? "" : " (not stated)"}`;
+  // a stated λ is held to ratios of 1, so that is what the advice aims at
+  const below = (ratio: number): string => short((lambda * (guard.stated ? refuseAbove : 1)) / ratio);
+  if (outside > refuseAbove) {
     const worst = guard.sectors.reduce((a, b) => (ratioOf(b) > ratioOf(a) ? b : a));
     const energy = worst.first.ratio >= worst.second.ratio ? worst.first.energy : worst.second.energy;
     questions.push({
       code: "near-degenerate",
       level: index,
       message:
-        `at ${at(worst.lambda)}, ${worst.perturbation} couples the level at ${short(resolved.level.energy)} to the one at ` +
-        `${short(energy ?? 0)} ${short(guard.outside)} times as strongly as they are apart (refused above ` +
-        `${short(guard.refuseAbove)}). Merge the two levels (levelWidth), or state a lambda below ` +
-        `${short((worst.lambda * (guard.stated ? guard.refuseAbove : 1)) / guard.outside)}`,
+        `at ${at}, ${worst.perturbation} couples the level at ${short(resolved.level.energy)} to the one at ` +
+        `${short(energy ?? 0)} ${short(outside)} times as strongly as they are apart (refused above ${short(refuseAbove)}). ` +
+        `Merge the two levels (levelWidth), or state a lambda below ${below(outside)}`,
     });
   }
-  if (guard.stated && guard.inside > guard.refuseAbove) {
+  if (inside > refuseAbove) {
     questions.push({
       code: "strong-mixing",
       level: index,
       message:
-        `at ${at(guard.lambda)}, the second-order operator couples states of the level at ${short(resolved.level.energy)} ` +
-        `${short(guard.inside)} times as strongly as V tells them apart (refused above ${short(guard.refuseAbove)}). ` +
-        "Find a label that tells them apart, or state a smaller lambda",
+        `at ${at}, the second-order operator couples states of the level at ${short(resolved.level.energy)} ` +
+        `${short(inside)} times as strongly as V tells them apart (refused above ${short(refuseAbove)}). ` +
+        `Find a label that tells them apart, or state a lambda below ${below(inside)}`,
     });
   }
   return questions;

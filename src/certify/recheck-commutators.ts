@@ -17,11 +17,6 @@ export interface OwnCandidate {
   readonly boundWithH0: number;
 }
 
-/** ‖A − tr A/n‖, but at least 1/16 of ‖A‖, as the audit states it. */
-function commuting({ operator }: OwnOperator): number {
-  return Math.max(operator.variation, operator.normAtLeast / 16);
-}
-
 /** Checks every commutator of a certificate, and that none is missing. */
 export function checkCommutators(ledger: Ledger, certificate: Certificate, problem: OwnProblem): OwnCandidate[] {
   const { commutators, resolution } = certificate;
@@ -40,7 +35,8 @@ export function checkCommutators(ledger: Ledger, certificate: Certificate, probl
       () => `expected the commutator ${name} here, found ${claimed ? `[${claimed.left}, ${claimed.right}]` : "none"}`,
     );
     if (!there || claimed === undefined) return { own, claimed: undefined };
-    const threshold = resolution * SHARE * (commuting(left) * commuting(right));
+    const rounding = 8 * problem.n * 2 ** -53 * (left.operator.norm * right.operator.norm);
+    const threshold = Math.max(resolution * SHARE * (left.scale * right.scale), rounding);
     checkOne(ledger, path, name, claimed, own, threshold);
     return { own, claimed };
   };

@@ -34,11 +34,7 @@ export function checkGuard(
     );
     if (!there || part === undefined) return;
     found.delete(`${claimed.sector} ${p}`);
-    if (!guard.stated) {
-      const slack = 1e-6 * part.natural + (ratios.relative - 1e-6) * part.natural;
-      ledger.near(`${at}.lambda`, "λ, which nobody stated,", claimed.lambda, part.natural, slack);
-    }
-    checkPart(ledger, certificate, claimed, part, ratios, at);
+    checkPart(ledger, certificate, guard.lambda, claimed, part, at);
   });
   ledger.claim(
     found.size === 0,
@@ -51,52 +47,40 @@ export function checkGuard(
 function checkPart(
   ledger: Ledger,
   certificate: Certificate,
+  lambda: number,
   claimed: CertifiedLevel["guard"]["sectors"][number],
   part: OwnPart,
-  ratios: OwnRatios,
   at: string,
 ): void {
-  const { lambda } = claimed;
-  const slack = ratios.slack(lambda);
-  for (const [side, own, to, factor] of [
-    ["first", part.first, part.firstTo, lambda],
-    ["second", part.second, part.secondTo, lambda * lambda],
+  for (const [side, to, factor] of [
+    ["first", part.firstTo, lambda],
+    ["second", part.secondTo, lambda * lambda],
   ] as const) {
-    const { ratio } = claimed[side];
-    const expected = factor * own;
+    const { ratio, energy } = claimed[side];
+    let least = 0;
+    let most = 0;
+    for (const { value, error } of to.values()) {
+      least = Math.max(least, factor * (value - error));
+      most = Math.max(most, factor * (value + error));
+    }
     ledger.claim(
-      Math.abs(ratio - expected) <= slack + ratios.relative * Math.max(ratio, expected),
+      ratio >= least && ratio <= most,
       `${at}.${side}.ratio`,
-      () => `claimed ${ratio}, found ${expected}`,
+      () => `claimed ${ratio}, found between ${least} and ${most}`,
     );
+    const named = to.get(certificate.levels.findIndex((level) => level.energy === energy));
     ledger.claim(
-      isWith(certificate, claimed[side], to, factor, slack, ratios.relative),
+      energy === null || (named !== undefined && factor * (named.value + named.error) >= ratio),
       `${at}.${side}.energy`,
-      () => `the ratio ${ratio} is claimed to be with the level at ${claimed[side].energy}, which does not have it`,
+      () => `the ratio ${ratio} is claimed to be with the level at ${energy}, which does not have it`,
     );
   }
   const inside = claimed.inside?.ratio ?? 0;
   ledger.claim(
-    inside >= lambda * (part.inside * (1 - ratios.relative) - part.insideSlack),
+    inside >= lambda * (part.inside.value - part.inside.error),
     `${at}.inside`,
-    () => `claimed ${inside}, found ${lambda * part.inside}`,
+    () => `claimed ${inside}, found ${lambda * part.inside.value}`,
   );
-}
-
-type GuardClaim = CertifiedLevel["guard"]["sectors"][number]["first"];
-
-/** Whether a claimed ratio is with the level that it names. */
-function isWith(
-  certificate: Certificate,
-  { energy, ratio }: GuardClaim,
-  own: ReadonlyMap<number, number>,
-  factor: number,
-  slack: number,
-  relative: number,
-): boolean {
-  if (energy === null) return true;
-  const place = certificate.levels.findIndex((level) => level.energy === energy);
-  return place >= 0 && (ratio <= slack || factor * (own.get(place) ?? 0) >= ratio * (1 - 1e-3 - relative) - slack);
 }
 
 function checkItself(
@@ -114,27 +98,15 @@ function checkItself(
     () => `the threshold is ${guard.refuseAbove}, not positive`,
   );
   ledger.claim(
-    guard.stated || guard.lambda <= 1,
+    guard.stated || guard.lambda === 1,
     `${path}.lambda`,
-    () => `λ is ${guard.lambda}; where nobody states it, it is at most 1`,
+    () => `λ is ${guard.lambda}; where nobody states it, it is 1`,
   );
   const other = certificate.levels[0]?.guard ?? guard;
   ledger.claim(
-    guard.stated === other.stated &&
-      guard.refuseAbove === other.refuseAbove &&
-      (!guard.stated || guard.lambda === other.lambda),
+    guard.lambda === other.lambda && guard.stated === other.stated && guard.refuseAbove === other.refuseAbove,
     path,
-    () => "a stated λ, whether it was stated, and the threshold are the same for all levels of one certificate",
-  );
-  const smallest = guard.sectors.reduce(
-    (least, sector) => Math.min(least, sector.lambda),
-    guard.stated ? guard.lambda : 1,
-  );
-  ledger.claim(
-    guard.lambda === smallest &&
-      guard.sectors.every((s) => s.lambda > 0 && (!guard.stated || s.lambda === guard.lambda)),
-    `${path}.lambda`,
-    () => `claimed ${guard.lambda}; its sectors make it ${smallest}`,
+    () => "λ, whether it was stated, and the threshold are the same for all levels of one certificate",
   );
   const names = problem.perturbations.map((v) => v.name);
   guard.sectors.forEach((sector, k) => {
@@ -204,9 +176,10 @@ function checkSeconds(ledger: Ledger, level: CertifiedLevel, l: number, ratios: 
         const found = ratios.second[state];
         if (found === undefined) continue;
         ledger.claim(
-          Math.abs(found - value) <= ratios.secondSlack,
+          Math.abs(found.value - value) <= found.error,
           `levels[${l}].nodes[${place}].values[${child}]`,
-          () => `the second-order operator is claimed to have the value ${value} in state ${state}, found ${found}`,
+          () =>
+            `the second-order operator is claimed to have the value ${value} in state ${state}, found ${found.value}`,
         );
       }
     });

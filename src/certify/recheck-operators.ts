@@ -10,7 +10,7 @@ export interface OwnOperator {
   readonly columns: Columns;
   /** Columns of A†; undefined where A is Hermitian. */
   readonly adjoint: Columns | undefined;
-  /** What couplings are measured against: a lower bound on ‖A − tr A/n‖, but at least 1/128 of one on ‖A‖. */
+  /** What couplings are measured against: see {@link couplingScale}. */
   readonly scale: number;
   /** Upper bound on ‖A‖₂, entry uncertainties included. */
   readonly norm: number;
@@ -51,11 +51,17 @@ function ownOperator(name: string, operator: Operator, hermitian: boolean): OwnO
     operator,
     columns,
     adjoint,
-    scale: Math.max(operator.variation, operator.normAtLeast / 128),
+    scale: couplingScale(operator),
     norm: roundUp(operator.norm + operator.error),
     rounding: roundUp(scale * gamma(longest + 4)),
     looseRounding: roundUp(scale * gamma(operator.n + 4)),
   };
+}
+
+/** A lower bound on ‖A − tr A/n‖, at least 2^−13 of one on ‖A‖; that one where A may be nothing but a multiple of 1. */
+function couplingScale({ n, norm, variation, normAtLeast }: Operator): number {
+  if (variation <= 8 * n * 2 ** -53 * norm) return normAtLeast;
+  return Math.max(variation, normAtLeast * 2 ** -13);
 }
 
 /** √2 γ_{m+4}: the relative rounding error of a complex product of m terms. */

@@ -1,46 +1,45 @@
 import type { Certificate } from "./certificate-format.js";
-import { smallerGap } from "./recheck-bounds.js";
+import type { OwnLevel } from "./recheck-level.js";
+import type { OwnOperator, OwnProblem } from "./recheck-operators.js";
 import type { Sector } from "./recheck-sectors.js";
 import { partingPlace } from "./recheck-tree.js";
 
 /** Shifts closer than this fraction of ‖V‖ do not tell two states apart, as the refinement states it. */
 const SHIFT_WIDTH = 2 ** -36;
 
-import type { OwnLevel } from "./recheck-level.js";
-import type { OwnProblem } from "./recheck-operators.js";
+/** Values of the second-order operator are clustered to this fraction of its scale. */
+const CLUSTER = 2 ** -34;
 
-/** Ratios of one perturbation in one sector, at the λ that the certificate states for them. */
+/** Relative difference that two evaluations of one sum may show beside what is counted. */
+const EVALUATION = 1e-9;
+
+/** A number, and how far another honest evaluation may be from it. */
+export interface Estimate {
+  readonly value: number;
+  readonly error: number;
+}
+
+/** Ratios of one perturbation in one sector, seen from one level, without λ. */
 export interface OwnPart {
   readonly perturbation: number;
   /** Number of the sector. */
   readonly sector: number;
-  /** The λ where nobody stated one. */
-  readonly natural: number;
-  /** Largest |W_μν|/|E1_μ − E1_ν| for this perturbation alone, without λ; 0 where there is none. */
-  readonly inside: number;
-  readonly insideSlack: number;
-  readonly first: number;
-  readonly second: number;
-  /** The ratio with each other level, by place. */
-  readonly firstTo: ReadonlyMap<number, number>;
-  readonly secondTo: ReadonlyMap<number, number>;
+  /** Largest |W_μν|/|E1_μ − E1_ν| for this perturbation alone; 0 where there is none. */
+  readonly inside: Estimate;
+  /** ‖P_k V P_n‖_F/|E_k − E_n| with every other level k, by place. */
+  readonly firstTo: ReadonlyMap<number, Estimate>;
+  /** ‖P_k (V − v) R V P_n‖_F/|E_k − E_n|, v the level's mean shift in the sector. */
+  readonly secondTo: ReadonlyMap<number, Estimate>;
 }
 
 /** The own denominators guard of one level, and its second-order values. */
 export interface OwnRatios {
   readonly parts: readonly OwnPart[];
   /** ⟨W⟩ of each state; empty with several perturbations. */
-  readonly second: readonly number[];
-  /** Absolute uncertainty of a ratio at λ. */
-  readonly slack: (lambda: number) => number;
-  readonly secondSlack: number;
-  /** Relative difference that the width of the levels explains. */
-  readonly relative: number;
+  readonly second: readonly Estimate[];
 }
 
-/**
- * ‖P_k V P_n‖_F/|E_k − E_n| and ‖P_k W P_n‖_F/|E_k − E_n| of level n, W = V R V, blockwise over the other levels k.
- */
+/** The guard of level l, evaluated anew from V between the states of every sector. */
 export function ratiosOf(
   certificate: Certificate,
   problem: OwnProblem,
@@ -50,84 +49,69 @@ export function ratiosOf(
 ): OwnRatios {
   const single = problem.perturbations.length === 1;
   const size = certificate.levels[l]?.states.length ?? 0;
-  const second: number[] = single ? new Array<number>(size).fill(0) : [];
-  const norm = problem.perturbations.reduce((most, v) => Math.max(most, v.norm), 0);
-  const level = certificate.levels[l];
-  const gap = level === undefined ? 1 : smallerGap(level);
-  const width = certificate.levels.reduce((most, x) => Math.max(most, x.spread), 0);
-  const weight = gap === Number.POSITIVE_INFINITY ? 0 : (norm * norm) / gap;
+  const second: Estimate[] = single ? new Array<Estimate>(size).fill({ value: 0, error: 0 }) : [];
   const parts: OwnPart[] = [];
-  const work = new Work(certificate, l, own);
+  const work = new Work(certificate, problem, l, own);
   for (const sector of sectors) {
     if (!sector.members.some((s) => work.levelOf(s) === l)) continue;
     problem.perturbations.forEach((v, p) => {
-      const reach = work.reach(sector, p);
-      const equal = SHIFT_WIDTH * v.operator.norm;
-      let inside = 0;
-      let smallest = Number.POSITIVE_INFINITY;
-      for (const [mu, row] of reach.w) {
-        if (single) second[mu] = row.get(mu)?.re ?? 0;
-        for (const [nu, z] of row) {
-          const difference = Math.abs(work.firstOrder(mu, p) - work.firstOrder(nu, p));
-          // differences next to the limit may be taken either way
-          if (difference <= 2 * equal || !work.partedByPerturbation(mu, nu)) continue;
-          smallest = Math.min(smallest, difference);
-          inside = Math.max(inside, Math.hypot(z.re, z.im) / difference);
-        }
+      const { firstTo, secondTo, w } = work.reach(sector, v, p);
+      parts.push({ perturbation: p, sector: sector.number, inside: work.inside(w, v, p), firstTo, secondTo });
+      if (!single) return;
+      for (const [mu, row] of w) {
+        const { re, error, scale } = row.get(mu) ?? { re: 0, error: 0, scale: 0 };
+        second[mu] = { value: re, error: error + CLUSTER * scale + work.blur(v) };
       }
-      const most = (map: ReadonlyMap<number, number>): number => Math.max(0, ...map.values());
-      parts.push({
-        perturbation: p,
-        sector: sector.number,
-        natural: work.naturalLambda(sector, p),
-        inside,
-        insideSlack: smallest === Number.POSITIVE_INFINITY ? 0 : ((1e-11 + (16 * width) / gap) * weight) / smallest,
-        first: most(reach.firstTo),
-        second: most(reach.secondTo),
-        firstTo: reach.firstTo,
-        secondTo: reach.secondTo,
-      });
     });
   }
-  const noise = 1e-11 * norm;
-  return {
-    parts,
-    second,
-    relative: Math.min(1, 1e-6 + (16 * width) / gap),
-    slack: (lambda) => {
-      const x = (lambda * norm) / gap;
-      return gap === Number.POSITIVE_INFINITY ? 0 : lambda * (noise / gap) + 1e-11 * x * x;
-    },
-    secondSlack: (1e-9 + (8 * width) / gap) * weight,
-  };
+  return { parts, second };
 }
 
-interface Complex {
+/** An element of W, how far another evaluation may be from it, and the size of its terms. */
+interface Element {
   readonly re: number;
   readonly im: number;
+  readonly error: number;
+  readonly scale: number;
 }
 
 /** What one perturbation does in one sector, seen from one level; ratios without λ. */
 interface Reach {
-  /** ‖P_k V P_n‖_F/|E_k − E_n| for every other level k. */
-  readonly firstTo: ReadonlyMap<number, number>;
-  /** ‖P_k (V − v) R V P_n‖_F/|E_k − E_n|, v the level's mean shift in the sector. */
-  readonly secondTo: ReadonlyMap<number, number>;
+  readonly firstTo: ReadonlyMap<number, Estimate>;
+  readonly secondTo: ReadonlyMap<number, Estimate>;
   /** W between states of the level, by place within the level. */
-  readonly w: ReadonlyMap<number, ReadonlyMap<number, Complex>>;
+  readonly w: ReadonlyMap<number, ReadonlyMap<number, Element>>;
 }
+
+/** Another level of a sector. */
+interface Block {
+  readonly level: number;
+  /** How unsure its share of W is, in units of what reaches it. */
+  readonly unsure: number;
+  /** √Σ|V_ik|² over its states k, for every vector i of the sector. */
+  readonly reach: Float64Array;
+}
+
+function reachOf(blocks: readonly Block[], level: number): Float64Array | undefined {
+  return blocks.find((block) => block.level === level)?.reach;
+}
+
+/** Sums of squares by level: of values, and of their errors. */
+type Squares = Map<number, { value: number; error: number }>;
 
 /** The arithmetic of one level. */
 class Work {
   readonly #certificate: Certificate;
+  readonly #problem: OwnProblem;
   readonly #l: number;
   readonly #own: OwnLevel;
   readonly #level: number[] = [];
   readonly #energies: number[] = [];
   readonly #first: number;
 
-  constructor(certificate: Certificate, l: number, own: OwnLevel) {
+  constructor(certificate: Certificate, problem: OwnProblem, l: number, own: OwnLevel) {
     this.#certificate = certificate;
+    this.#problem = problem;
     this.#l = l;
     this.#own = own;
     certificate.levels.forEach((level, place) => {
@@ -143,98 +127,145 @@ class Work {
     return this.#level[s] as number;
   }
 
-  firstOrder(state: number, p: number): number {
-    return this.#own.perturbations[p]?.diagonal[state] ?? 0;
+  /** Splittings of W below this are told apart by nobody: what rounding leaves of energies, and of V. */
+  blur({ operator }: OwnOperator): number {
+    const { norm, error } = this.#problem.h0.operator;
+    return 4 * ((2 ** -42 + 8 * Math.sqrt(this.#problem.n) * 2 ** -53) * norm + 32 * error + 2 ** -40 * operator.norm);
   }
 
-  partedByPerturbation(a: number, b: number): boolean {
+  /** The largest |W_μν|/|E1_μ − E1_ν| between states that a perturbation tells apart and to which this one gives different shifts. */
+  inside(w: Reach["w"], { operator }: OwnOperator, p: number): Estimate {
+    const elements = this.#own.perturbations[p];
+    let largest = { value: 0, error: 0 };
+    for (const [mu, row] of w) {
+      for (const [nu, { re, im, error }] of row) {
+        const difference = Math.abs((elements?.diagonal[mu] ?? 0) - (elements?.diagonal[nu] ?? 0));
+        // differences next to the limit may be taken either way
+        if (difference <= 2 * SHIFT_WIDTH * operator.norm || !this.#partedByPerturbation(mu, nu)) continue;
+        const value = Math.hypot(re, im) / difference;
+        const off = (error + 2 * value * (elements?.looseError ?? 0)) / difference + EVALUATION * value;
+        if (value - off > largest.value - largest.error) largest = { value, error: off };
+      }
+    }
+    return largest;
+  }
+
+  #partedByPerturbation(a: number, b: number): boolean {
     const node = partingPlace(this.#own.tree, a, b);
     return this.#certificate.levels[this.#l]?.nodes[node]?.kind === "perturbation";
   }
 
-  /** V's strongest reach out of a level, max ‖(1 − P_n) V P_n‖_F, as large as H0's range in the sector; at most 1. */
-  naturalLambda({ members, re, im }: Sector, p: number): number {
+  /**
+   * What a sector's states of the level reach. Another evaluation may differ by the rounding of each element of V, a few n u ‖V‖, and
+   * where a level is wide by the energy that it gives to each of its states.
+   */
+  reach({ members, re, im }: Sector, v: OwnOperator, p: number): Reach {
     const d = members.length;
     const vr = re[p] as Float64Array;
     const vi = im[p] as Float64Array;
-    const squares = new Map<number, number>();
-    let low = Number.POSITIVE_INFINITY;
-    let high = Number.NEGATIVE_INFINITY;
-    members.forEach((s, i) => {
-      const level = this.levelOf(s);
-      low = Math.min(low, this.#energies[s] as number);
-      high = Math.max(high, this.#energies[s] as number);
-      let sum = squares.get(level) ?? 0;
-      members.forEach((t, j) => {
-        if (this.levelOf(t) !== level) sum += (vr[i * d + j] as number) ** 2 + (vi[i * d + j] as number) ** 2;
-      });
-      squares.set(level, sum);
-    });
-    const reach = Math.sqrt(Math.max(...squares.values()));
-    return reach > 0 ? Math.min(1, (high - low) / reach) : 1;
-  }
-
-  /** What a sector's states of the level reach. */
-  reach(sector: Sector, p: number): Reach {
-    const { members } = sector;
-    const d = members.length;
-    const vr = sector.re[p] as Float64Array;
-    const vi = sector.im[p] as Float64Array;
     const energy = this.#certificate.levels[this.#l]?.energy ?? 0;
-    const inside = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [k] : []));
-    const shift = inside.reduce((sum, k) => sum + (vr[k * d + k] as number), 0) / inside.length;
+    const noise = 64 * this.#problem.n * 2 ** -53 * v.norm;
+    const own = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [k] : []));
     const outside = members.flatMap((s, k) => (this.levelOf(s) === this.#l ? [] : [k]));
-    const w = new Map<number, Map<number, Complex>>();
-    const first = new Map<number, number>();
-    const second = new Map<number, number>();
-    const zr = new Float64Array(d);
-    const zi = new Float64Array(d);
-    members.forEach((s, j) => {
-      if (this.levelOf(s) !== this.#l) return;
-      for (const k of outside) {
-        const x = vr[k * d + j] as number;
-        const y = vi[k * d + j] as number;
-        this.#add(first, members[k] as number, x * x + y * y);
-        const weight = 1 / (energy - (this.#energies[members[k] as number] as number));
-        zr[k] = x * weight;
-        zi[k] = y * weight;
-      }
-      const row = new Map<number, Complex>();
+    const shift = own.reduce((sum, k) => sum + (vr[k * d + k] as number), 0) / own.length;
+    const moduli = vr.map((x, k) => (vi[k] === 0 ? Math.abs(x) : Math.hypot(x, vi[k] as number)));
+    const weight = new Float64Array(d);
+    for (const k of outside) {
+      const distance = energy - (this.#energies[members[k] as number] as number);
+      weight[k] = 1 / distance;
+    }
+    const blocks = this.#blocks(members, outside, moduli, weight);
+    const w = new Map<number, Map<number, Element>>();
+    const first: Squares = new Map();
+    const second: Squares = new Map();
+    for (const j of own) {
+      const row = new Map<number, Element>();
+      for (const k of outside) add(first, this.levelOf(members[k] as number), moduli[k * d + j] as number, noise);
       for (let i = 0; i < d; i++) {
-        let re = 0;
-        let im = 0;
+        let x = 0;
+        let y = 0;
+        let error = 0;
+        let scale = 0;
         for (const k of outside) {
-          const x = vr[i * d + k] as number;
-          const y = vi[i * d + k] as number;
-          re += x * (zr[k] as number) - y * (zi[k] as number);
-          im += x * (zi[k] as number) + y * (zr[k] as number);
+          const a = vr[i * d + k] as number;
+          const b = vi[i * d + k] as number;
+          const c = vr[k * d + j] as number;
+          const e = vi[k * d + j] as number;
+          const u = weight[k] as number;
+          x += u * (a * c - b * e);
+          y += u * (a * e + b * c);
+          const left = moduli[i * d + k] as number;
+          const right = moduli[k * d + j] as number;
+          error += Math.abs(u) * noise * (left + right);
+          scale += Math.abs(u) * left * right;
+        }
+        for (let b = 0; b < blocks.length; b++) {
+          const { unsure, reach } = blocks[b] as Block;
+          error += unsure * (reach[i] as number) * (reach[j] as number);
         }
         const to = members[i] as number;
-        if (this.levelOf(to) === this.#l) row.set(to - this.#first, { re, im });
-        else {
-          // the level's mean shift v taken off: (V − v) R V, which no offset of V changes
-          re -= shift * (zr[i] as number);
-          im -= shift * (zi[i] as number);
-          this.#add(second, to, re * re + im * im);
+        if (this.levelOf(to) === this.#l) {
+          row.set(to - this.#first, { re: x, im: y, error, scale });
+          continue;
         }
+        // the level's mean shift v taken off: (V − v) R V, which no offset of V changes
+        const u = shift * (weight[i] as number);
+        x -= u * (vr[i * d + j] as number);
+        y -= u * (vi[i * d + j] as number);
+        error += Math.abs(u) * (EVALUATION * (moduli[i * d + j] as number) + 2 * noise);
+        error += Math.abs(shift) * this.#widthTo(this.levelOf(to)) * (reachOf(blocks, this.levelOf(to))?.[j] ?? 0);
+        add(second, this.levelOf(to), Math.hypot(x, y), error);
       }
-      w.set(s - this.#first, row);
-    });
+      w.set((members[j] as number) - this.#first, row);
+    }
     return { firstTo: this.#ratios(first), secondTo: this.#ratios(second), w };
   }
 
-  #add(squares: Map<number, number>, s: number, square: number): void {
-    const level = this.levelOf(s);
-    squares.set(level, (squares.get(level) ?? 0) + square);
+  /** How unsure 1/(E0 − E_k) is for the states of level k: its and the own width, over the square of the distance. */
+  #widthTo(level: number): number {
+    const { levels, whole } = this.#certificate;
+    const [own, other] = [levels[this.#l], levels[level]];
+    const width = (own?.spread ?? 0) + (other?.spread ?? 0) + 8 * whole.energyEnclosure;
+    return (2 * width) / ((own?.energy ?? 0) - (other?.energy ?? 0)) ** 2;
   }
 
-  #ratios(squares: ReadonlyMap<number, number>): Map<number, number> {
+  /** The other levels of a sector: which states of one serve as intermediate ones is free, only their norms together are not. */
+  #blocks(members: readonly number[], outside: readonly number[], moduli: Float64Array, weight: Float64Array): Block[] {
+    const d = members.length;
+    const byLevel = new Map<number, number[]>();
+    for (const k of outside) {
+      const level = this.levelOf(members[k] as number);
+      const list = byLevel.get(level);
+      if (list === undefined) byLevel.set(level, [k]);
+      else list.push(k);
+    }
+    return [...byLevel].map(([level, list]): Block => {
+      const reach = new Float64Array(d);
+      for (let i = 0; i < d; i++) {
+        let sum = 0;
+        for (const k of list) sum += (moduli[i * d + k] as number) ** 2;
+        reach[i] = Math.sqrt(sum);
+      }
+      const largest = list.reduce((most, k) => Math.max(most, Math.abs(weight[k] as number)), 0);
+      return { level, unsure: EVALUATION * largest + this.#widthTo(level), reach };
+    });
+  }
+
+  #ratios(squares: Squares): Map<number, Estimate> {
     const energy = this.#certificate.levels[this.#l]?.energy ?? 0;
-    const out = new Map<number, number>();
-    for (const [level, square] of squares) {
-      const other = this.#certificate.levels[level]?.energy ?? 0;
-      out.set(level, Math.sqrt(square) / Math.abs(other - energy));
+    const out = new Map<number, Estimate>();
+    for (const [level, { value, error }] of squares) {
+      const distance = Math.abs((this.#certificate.levels[level]?.energy ?? 0) - energy);
+      const ratio = Math.sqrt(value) / distance;
+      out.set(level, { value: ratio, error: Math.sqrt(error) / distance + EVALUATION * ratio });
     }
     return out;
   }
+}
+
+function add(squares: Squares, level: number, value: number, error: number): void {
+  const own = squares.get(level) ?? { value: 0, error: 0 };
+  own.value += value * value;
+  own.error += error * error;
+  squares.set(level, own);
 }

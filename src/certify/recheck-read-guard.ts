@@ -20,11 +20,10 @@ export function readGuard(item: Reader): Guard {
 }
 
 function readSector(item: Reader): SectorGuard {
-  item.only(["perturbation", "sector", "lambda", "first", "second", "inside"]);
+  item.only(["perturbation", "sector", "first", "second", "inside"]);
   return {
     perturbation: item.field("perturbation").text(),
     sector: item.field("sector").count(0),
-    lambda: item.field("lambda").number(),
     first: readFinding(item.field("first")),
     second: readFinding(item.field("second")),
     inside: item.field("inside").orNull(readFinding),

@@ -64,7 +64,7 @@ function checkQuestions(ledger: Ledger, given: NodeCase, coupled: boolean): void
     "ambiguous-level": isAmbiguous(given),
     "merged-level": isMerged(given),
     "near-degenerate": level.guard.outside > level.guard.refuseAbove,
-    "strong-mixing": level.guard.stated && level.guard.inside > level.guard.refuseAbove,
+    "strong-mixing": level.guard.inside > level.guard.refuseAbove,
   };
   for (const [code, asked] of Object.entries(expected)) {
     const listed = level.questions.some((question) => question === code);

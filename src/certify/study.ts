@@ -1,7 +1,6 @@
 import { type Audit, auditPrepared } from "../audit/audit.js";
 import type { PreparedProblem } from "../audit/problem.js";
 import { couplingScale, LABEL_WIDTH } from "../audit/resolution.js";
-import type { Csr } from "../numerics/csr.js";
 import { rootOfSquares, roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import type { StateLabel } from "../refine/label.js";
 import { formLevels, type Level, type LevelChoice, type Levels } from "../refine/levels.js";
@@ -12,7 +11,7 @@ import { type Backbone, chooseBackbone } from "./backbone.js";
 import { type LevelCouplings, levelCouplings, type NodeEvidence, partingNode } from "./couplings.js";
 import { describeState } from "./describe.js";
 import type { BasisState, Coupling, LevelResult, StateVector } from "./findings.js";
-import { type GuardOptions, type GuardSetting, guardSetting, levelGuard, naturalLambda } from "./guard.js";
+import { type GuardOptions, type GuardSetting, guardSetting, levelGuard } from "./guard.js";
 import { judgeLevel } from "./judge.js";
 import { type LevelStates, levelStates } from "./level-states.js";
 import { nearbyModel } from "./nearby.js";
@@ -70,7 +69,6 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
   const levels = formLevels(sectors.sectors, width, settings.levels);
   const whole = wholeEvidence(problem, sectors, tree.nodes);
   const guard = guardSetting(settings);
-  const natural = naturalLambdas(sectors, levels);
   const resolved: ResolvedLevel[] = [];
   const drafts: LevelDraft[] = [];
   levels.studied.forEach((level, index) => {
@@ -78,11 +76,7 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
     const refined = resolveLevel(problem, sectors.sectors, levels, level, backbone.others, settings.depth, tree);
     resolved.push(refined);
     drafts.push(
-      proveLevel(
-        { problem, settings, audit, sectors, levels, whole, guard, natural, nodes: tree.nodes },
-        refined,
-        index,
-      ),
+      proveLevel({ problem, settings, audit, sectors, levels, whole, guard, nodes: tree.nodes }, refined, index),
     );
   });
   report("levels", levels.studied.length, levels.studied.length);
@@ -110,18 +104,6 @@ export function runStudy(problem: PreparedProblem, settings: StudySettings): Stu
   };
 }
 
-/** The λ of every sector and perturbation where none is stated, found when first asked for. */
-function naturalLambdas({ sectors }: Sectors, levels: Levels): Setting["natural"] {
-  const known = new Map<string, number>();
-  return (sector, p) => {
-    const key = `${sector} ${p}`;
-    const { perturbations, energies } = sectors[sector] as Sector;
-    const found = known.get(key) ?? naturalLambda(perturbations[p] as Csr, energies, levels.of[sector] as Int32Array);
-    known.set(key, found);
-    return found;
-  };
-}
-
 interface Setting {
   readonly problem: PreparedProblem;
   readonly settings: StudySettings;
@@ -130,7 +112,6 @@ interface Setting {
   readonly levels: Levels;
   readonly whole: SpaceEvidence;
   readonly guard: GuardSetting;
-  readonly natural: (sector: number, perturbation: number) => number;
   readonly nodes: readonly TreeNode[];
 }
 
@@ -145,7 +126,7 @@ interface LevelDraft {
 }
 
 function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): LevelDraft {
-  const { problem, settings, audit, sectors, levels, whole, guard, natural, nodes } = given;
+  const { problem, settings, audit, sectors, levels, whole, guard, nodes } = given;
   const { level } = resolved;
   const found = levelStates(problem, resolved, sectors.sectors, nodes);
   const { energies, residuals } = stateEnergies(resolved, found, sectors, whole, problem);
@@ -166,16 +147,7 @@ function proveLevel(given: Setting, resolved: ResolvedLevel, index: number): Lev
   });
   const isolation = Math.min(level.gapBelow, level.gapAbove) - 2 * whole.energyEnclosure - level.spread;
   const tilt = isolationTilt(residuals, isolation, couplings.orthonormality);
-  const ratios = levelGuard(
-    problem,
-    sectors.sectors,
-    resolved,
-    nodes,
-    levels.energies,
-    whole.energyEnclosure,
-    guard,
-    natural,
-  );
+  const ratios = levelGuard(problem, sectors.sectors, resolved, nodes, levels.energies, whole.energyEnclosure, guard);
   const { verdict, questions } = judgeLevel({
     problem,
     index,

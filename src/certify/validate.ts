@@ -11,7 +11,7 @@ import { adjointImages, images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import { energyTolerance } from "../refine/sectors.js";
 import { type BasisColumns, readColumns } from "./columns.js";
-import { denominatorRemarks } from "./denominators.js";
+import { denominatorRemarks, reachRemarks } from "./denominators.js";
 import { overall } from "./find.js";
 import { type GuardOptions, guardSetting } from "./guard.js";
 import { checkLevelWidth, requireOptions } from "./options.js";
@@ -27,7 +27,7 @@ export type ClaimedLabel = number | Complex | string;
 
 /** Options of {@link validateBasis}. */
 export interface ValidateOptions extends GuardOptions {
-  /** What counts as vanished, relative to ‖V‖, ‖H0‖, ‖A‖ or 1. Default 1e-10. */
+  /** What counts as vanished, relative to ‖V‖, ‖H0‖, ‖A‖ (each without its common part) or 1. Default 1e-10. */
   readonly resolution?: number;
   /** Energies up to this far apart are one level; by default what rounding and the columns' residuals leave. */
   readonly levelWidth?: number;
@@ -93,7 +93,7 @@ export interface Validation {
   readonly unit: string;
   /**
    * Whether the columns are as many as the kets. Otherwise every level is counted against H0's spectrum, and one that lacks states is
-   * not called good; denominators are not checked.
+   * not called good; denominators are bounded by V's reach out of each level over the distance to the next.
    */
   readonly complete: boolean;
   /** ‖Q†Q − 1‖, and the pair of columns (or the one column, twice) that deviates most. */
@@ -158,7 +158,9 @@ export function validateBasis<K extends string>(
           levels.map(({ level }) => level),
           setting,
         )
-      : []),
+      : levels.flatMap(({ level, gap }) =>
+          reachRemarks(prepared, selectRows(vectors, level.columns), level.energy, gap, setting),
+        )),
   ];
   const verdicts: Verdict[] = [
     orthonormality.verdict,
@@ -176,6 +178,9 @@ export function validateBasis<K extends string>(
     remarks,
   };
 }
+
+/** A residual within this many times the uncertainty of its evaluation, entries included, cannot be told from zero, and counts as zero. */
+const SURELY_WITHIN = 4;
 
 function judge(atMost: number, atLeast: number, threshold: number): Checked {
   return { atMost, atLeast, verdict: atMost <= threshold ? "good" : atLeast > threshold ? "not good" : "undecided" };
@@ -284,7 +289,7 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
     for (const { candidate, own, valueAt, scale, residual: all } of judged) {
       const bound = all[column] as number;
       const least = residualFloor(bound, own, valueAt(column), problem.n);
-      labels[candidate.name] = judge(bound, least, resolution * Math.max(scale, 1e-300));
+      labels[candidate.name] = judge(bound, least, Math.max(resolution * scale, SURELY_WITHIN * own));
     }
     return {
       column,
@@ -292,7 +297,7 @@ function checkColumns(problem: PreparedProblem, vectors: Csr, claims: Claims, re
       eigenvector: judge(
         residual,
         residualFloor(residual, error, energyAt(column), problem.n),
-        resolution * couplingScale(problem.h0),
+        Math.max(resolution * couplingScale(problem.h0), SURELY_WITHIN * error),
       ),
       labels,
     };
@@ -307,6 +312,8 @@ function residualFloor(bound: number, error: number, value: Complex, n: number):
 
 interface JudgedLevel {
   readonly level: ValidatedLevel;
+  /** Distance to the nearest other level. */
+  readonly gap: number;
   readonly remarks: readonly string[];
 }
 
@@ -373,7 +380,7 @@ function checkLevels(
       remarks.push(`the level at ${short(energy)} holds columns that are no eigenvectors of H0`);
     }
     const verdict: Verdict = worst.length > 0 ? "not good" : undecided || remarks.length > 0 ? "undecided" : "good";
-    return { level: { energy, columns, verdict, largest, worst, repair: repairLevel(problem, own) }, remarks };
+    return { level: { energy, columns, verdict, largest, worst, repair: repairLevel(problem, own) }, gap, remarks };
   });
 }
 

@@ -42,10 +42,7 @@ export function levelLines(study: Study, most: number): string[] {
 export function levelLegend(study: Study): string[] {
   const guard = study.levels[0]?.guard;
   if (guard === undefined) return [];
-  const lambdas = study.levels.flatMap((level) => level.guard.sectors.map((sector) => sector.lambda));
-  const [low, high] = [Math.min(...lambdas), Math.max(...lambdas)];
-  const range = low === high ? numberText(low, 4) : `${numberText(low, 4)} … ${numberText(high, 4)}, sector by sector`;
-  const lambda = `λ\u00a0=\u00a0${range}${guard.stated ? "" : " (not stated)"}`;
+  const lambda = `λ\u00a0=\u00a0${numberText(guard.lambda, 4)}${guard.stated ? "" : " (not stated)"}`;
   const radii = study.levels.flatMap((level) => level.guard.radius.flatMap((radius) => radius ?? []));
   const radius =
     radii.length === 0

@@ -165,8 +165,16 @@ describe("judgeCommutator has three verdicts", () => {
       expect(finding.verdict).toBe("broken");
       for (const size of [finding.atLeast, finding.bound, finding.norm / Math.SQRT2, finding.largest[0]?.size ?? 0])
         expect(size / unit).toBeCloseTo(2, 12);
-      const slight = Operator.diagonal([1, 1 + 2 ** -44], { uncertainty: "exact" });
-      expect(judge(slight, off).verdict).toBe("commutes");
+      const slight = Operator.diagonal([1, 2 ** -44], { uncertainty: "exact" });
+      expect(judge(slight, off).verdict).toBe("broken");
+      const nearly = Operator.from(
+        [
+          [unit, 1e-14 * unit],
+          [1e-14 * unit, -unit],
+        ],
+        { uncertainty: "exact" },
+      );
+      expect(judge(z, nearly).verdict).toBe("commutes");
       const unsure = Operator.from(
         [
           [0, unit],

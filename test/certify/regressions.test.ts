@@ -289,6 +289,96 @@ describe("a near-degeneracy is not hidden, with no λ stated", () => {
   });
 });
 
+describe("a near-degeneracy stays one, whatever labels and columns stand beside it", () => {
+  const identity = (n: number): number[][] =>
+    Array.from({ length: n }, (_, i) => Array.from({ length: n }, (__, j) => (i === j ? 1 : 0)));
+  const near: Problem = { h0: { diagonal: [0, 1e-9, 1] }, v: symmetric(3, [[0, 1, 0.1]]) };
+
+  it("with a true label that leaves the pair alone in its sector, and with nothing else at all", () => {
+    expect(verdictOf(near)).toBe("undecided");
+    expect(verdictOf({ ...near, candidates: { A: { diagonal: [0, 0, 1] } } })).toBe("undecided");
+    expect(verdictOf({ h0: { diagonal: [0, 1e-9] }, v: symmetric(2, [[0, 1, 1]]) })).toBe("undecided");
+    expect(verdictOf({ h0: { diagonal: [0, 1e-9] }, v: symmetric(2, [[0, 1, 1]]) }, { lambda: 1e-10 })).toBe("good");
+  });
+
+  it("for a basis that somebody brings, complete or not", () => {
+    const half = [0, 1, 2].map((ket) => [ket === 0 ? 1 : 0, ket === 1 ? 1 : 0]);
+    for (const options of [{}, { lambda: 1 }]) {
+      expect(validateBasis(near, identity(3), undefined, options).verdict).toBe("undecided");
+      expect(validateBasis(near, half, undefined, options).verdict).toBe("undecided");
+    }
+    expect(validateBasis(near, half, undefined, { lambda: 1e-9 }).verdict).toBe("good");
+  });
+
+  it("inside a level too: states that V tells apart far less than the second order mixes them", () => {
+    const v = symmetric(3, [
+      [0, 0, 1e-6],
+      [1, 1, -1e-6],
+      [0, 2, 0.5],
+      [1, 2, 0.5],
+    ]);
+    const outcome = findGoodBasis({ h0: { diagonal: [0, 0, 1] }, v });
+    expect(outcome.levels[0]?.questions.map((question) => question.code)).toEqual(["strong-mixing"]);
+  });
+});
+
+describe("an offset of H0 or V makes nothing vanish", () => {
+  const broken = (c: number, h: number, v02: number): Problem => ({
+    h0: symmetric(3, [
+      [0, 0, c],
+      [1, 1, c],
+      [2, 2, c + 1],
+      [0, 1, h],
+    ]),
+    v: symmetric(3, [[0, 2, v02]]),
+    candidates: { A: { diagonal: [1, -1, 1] } },
+  });
+
+  it("a label that H0 breaks is no evidence, with an offset of H0 or without", () => {
+    for (const c of [0, 1e3, 1e6]) {
+      const outcome = findGoodBasis(broken(c, 5e-8, 1e-4), { lambda: 1 });
+      expect(outcome.audit.candidates[0]?.conserved, `c = ${c}`).toBe(false);
+    }
+    // broken by less than commutators are held to, and yet by more than the second order tells apart
+    expect(verdictOf(broken(0, 1e-13, 0.1), { lambda: 1e-6 })).toBe("undecided");
+  });
+
+  it("columns that are no eigenvectors are none, however far up H0 lies", () => {
+    for (const c of [0, 1e4, 1e8]) {
+      const [x, y] = [Math.cos(1e-5), Math.sin(1e-5)];
+      const columns = [
+        [x, -y],
+        [y, x],
+      ];
+      const problem = { h0: { diagonal: [c, c + 1] }, v: { diagonal: [0, 0] } };
+      expect(validateBasis(problem, columns).verdict, `c = ${c}`).toBe("not good");
+    }
+  });
+
+  it("eigenvectors within the stated uncertainty of H0 are eigenvectors", () => {
+    const h0 = Operator.from({ diagonal: [0, 1] }, { uncertainty: { relative: 0, absolute: 1e-9 } });
+    const problem = { h0, v: { diagonal: [0.1, 0.2] } };
+    expect(verdictOf(problem)).toBe("good");
+    const columns = [
+      [1, 0],
+      [0, 1],
+    ];
+    expect(validateBasis(problem, columns).verdict).toBe("good");
+  });
+
+  it("a coupling far below an offset of V, and well above its rounding, is found", () => {
+    const v = symmetric(3, [
+      [0, 0, 1e6],
+      [1, 1, 1e6],
+      [2, 2, 1e6],
+      [0, 1, 4e-8],
+      [0, 2, 0.5],
+      [1, 2, 0.5],
+    ]);
+    expect(verdictOf({ h0: { diagonal: [0, 0, 1] }, v }, { depth: "labels" })).toBe("not good");
+  });
+});
+
 describe("a label that H0 breaks is held against what V makes of it", () => {
   const candidates = { swap: { permutation: [1, 0, 2] } };
   const problem = (energies: number[], v01: number, v22: number): Problem => ({

@@ -24,7 +24,7 @@ function code(run: () => unknown): ErrorCode | undefined {
 }
 
 describe("columns", () => {
-  const { basis, ...study } = good(findGoodBasis(stark()));
+  const { basis, ...study } = good(findGoodBasis(stark(), { lambda: 0.01 }));
 
   test("a certified basis gets all of them, a study all but the second order", () => {
     const keys = [
@@ -66,7 +66,9 @@ describe("columns", () => {
   });
 
   test("two perturbations get a column each, and one for every product", () => {
-    const both = good(findGoodBasis({ ...stark(), v: { E: STARK, B: { diagonal: [0, 0, -0.5, 0, 0.5] } } }));
+    const both = good(
+      findGoodBasis({ ...stark(), v: { E: STARK, B: { diagonal: [0, 0, -0.5, 0, 0.5] } } }, { lambda: 0.01 }),
+    );
     const table = basisTable(both.basis, { columns: ["shift", "second"] });
     expect(table.columns.map((column) => column.title)).toEqual(["E1 E", "E1 B", "E2 E·E", "E2 E·B", "E2 B·B"]);
     // the field B alone does not tell 2s ± 2p0 apart, so their second order is refused and the cells stay empty
@@ -109,11 +111,13 @@ describe("cells", () => {
     });
 
   test("say which link is the weakest", () => {
-    const table = basisTable(findGoodBasis(stark()), { columns: ["evidence", "safe"] });
+    const table = basisTable(findGoodBasis(stark(), { lambda: 0.01 }), { columns: ["evidence", "safe"] });
     const cells = table.rows.map((row) => row.cells);
     expect(column(cells, 0)).toEqual(["single", "labels", "V", "V", "labels"]);
     expect(column(cells, 1)).toEqual(["all/all", "all/all", "2/0", "2/0", "all/all"]);
-    const open = basisTable(findGoodBasis(stark(), { depth: "labels" }), { columns: ["evidence", "safe"] });
+    const open = basisTable(findGoodBasis(stark(), { depth: "labels", lambda: 0.01 }), {
+      columns: ["evidence", "safe"],
+    });
     expect(
       column(
         open.rows.map((row) => row.cells),
@@ -124,7 +128,7 @@ describe("cells", () => {
   });
 
   test("second-order shifts are those of perturb, and absent where they are not safe", () => {
-    const { basis } = good(findGoodBasis(stark()));
+    const { basis } = good(findGoodBasis(stark(), { lambda: 0.01 }));
     const shifts = perturb(basis).states.map((state) => state.second?.[0]?.[0]);
     const table = basisTable(basis, { columns: ["second"] });
     expect(table.rows.map((row) => row.cells[0])).toEqual(shifts.map((shift) => ({ kind: "bounded", ...shift })));
@@ -166,7 +170,7 @@ describe("cells", () => {
   });
 
   test("weights of what is shown and left out add up to one", () => {
-    for (const outcome of [findGoodBasis(doublet()), findGoodBasis(ring()), findGoodBasis(stark())]) {
+    for (const outcome of [findGoodBasis(doublet()), findGoodBasis(ring()), findGoodBasis(stark(), { lambda: 0.01 })]) {
       for (const terms of [1, 2, 6]) {
         for (const row of basisTable<string>(outcome, { columns: ["expansion"], terms }).rows) {
           const cell = row.cells[0];

@@ -47,7 +47,7 @@ describe("formatAudit", () => {
 
 describe("formatOutcome", () => {
   test("good: verdict, levels, evidence, and what it is worth", () => {
-    const text = formatOutcome(findGoodBasis(stark()));
+    const text = formatOutcome(findGoodBasis(stark(), { lambda: 0.01 }));
     expect(text.split("\n").slice(0, 2)).toEqual([
       "GOOD: V couples no two states inside any level studied",
       "5 kets, 2 levels of H0, all studied; energies in Eh; couplings below 1e−10 ‖V‖ count as vanished",
@@ -56,7 +56,7 @@ describe("formatOutcome", () => {
     expect(head?.replace(/ {2,}/g, " | ")).toBe(
       " | level | E0 [Eh] | states | verdict | told apart by | |V_μν| ≤ [Eh] | guard | safe E | safe ψ",
     );
-    expect(first?.trim().split(/ {2,}/)).toEqual(["0", "−0.5", "1", "good", "—", "—", "4", "all", "all"]);
+    expect(first?.trim().split(/ {2,}/)).toEqual(["0", "−0.5", "1", "good", "—", "—", "0.02", "all", "all"]);
     expect(second?.trim().split(/ {2,}/)).toEqual([
       "1",
       "−0.125",
@@ -64,7 +64,7 @@ describe("formatOutcome", () => {
       "good",
       "Lz, V",
       expect.stringMatching(/^\d(\.\d)?e−1[4-6]$/),
-      "1",
+      "0.02",
       "2",
       "0",
     ]);
@@ -73,7 +73,7 @@ describe("formatOutcome", () => {
   });
 
   test("not good: the pairs by name, their size and unit, and what would help", () => {
-    const text = formatOutcome(findGoodBasis(stark(), { depth: "labels" }));
+    const text = formatOutcome(findGoodBasis(stark(), { depth: "labels", lambda: 0.01 }));
     expect(text.split("\n")[0]).toBe("NOT GOOD: V couples states inside 1 of 2 levels, by up to 3 Eh");
     const [head, , pair] = between(text, "What spoils it", "What it is worth");
     expect(head?.trim().split(/ {2,}/)).toEqual(["level", "by", "size [Eh]", "between", "and"]);
@@ -149,7 +149,7 @@ describe("formatOutcome", () => {
 
   test("prose keeps the width asked for, and nothing is NaN or undefined", () => {
     const outcomes: Outcome[] = [
-      findGoodBasis(stark()),
+      findGoodBasis(stark(), { lambda: 0.01 }),
       findGoodBasis(stark(), { depth: "labels", lambda: 0.01, levels: { lowest: 1 } }),
       findGoodBasis(ring()),
       findGoodBasis(doublet()),
