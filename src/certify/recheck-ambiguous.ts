@@ -89,34 +89,33 @@ function shiftBlur({ problem, level, own }: NodeCase, node: CertifiedNode): Rang
 }
 
 /**
- * Whether H0 breaks a label by more than rounding leaves, or provably, and V does not tell the states that it parts apart by far more
- * than that.
+ * Whether H0 provably breaks a label, and V does not tell the states that it parts apart by far more than that: all of them, where it is
+ * broken by more than the rounding of a computed matrix; otherwise those that V tells apart at all.
  */
 function isBroken(given: NodeCase, node: CertifiedNode): Answer {
   const { certificate, problem, candidates, level } = given;
   const place = problem.candidates.findIndex((candidate) => candidate.name === node.operator);
   const candidate = candidates[place];
-  if (candidate === undefined) return false;
+  const operator = problem.candidates[place]?.operator;
+  if (candidate === undefined || operator === undefined) return false;
   const rule = selectionRule(candidate.boundWithH0, problem.h0.norm, node.residual, level.orthonormality, node.gap);
   const residual = node.states.flat().reduce((most, k) => Math.max(most, level.states[k]?.energyPlusMinus ?? 0), 0);
   const h = Math.min(rule, residual);
-  if (h === 0) return false;
-  const provable = certificate.commutators.some(
-    ({ left, right, atLeast }) => left === node.operator && right === "H0" && atLeast > 0,
+  const withH0 = certificate.commutators.find(({ left, right }) => left === node.operator && right === "H0");
+  if (h === 0 || withH0 === undefined || withH0.atLeast === 0) return false;
+  const { h0, n } = problem;
+  const real = exceeds(
+    known(withH0.atLeast / (2 * operator.norm)),
+    known(64 * Math.sqrt(n) * 2 ** -53 * h0.operator.norm),
   );
-  const wide = exceeds(known(h), known(rounding(problem)));
-  if (wide === false && !provable) return false;
-  const { lambda, stated } = level.guard;
   const weak = (countZero: boolean): Answer => {
     const apart = leastApart(given, node, countZero);
-    const limit = { low: FAR_BELOW * lambda * apart.low, high: FAR_BELOW * lambda * apart.high };
-    return exceeds(known(h), limit);
+    const scale = FAR_BELOW * level.guard.lambda;
+    return exceeds(known(h), { low: scale * apart.low, high: scale * apart.high });
   };
-  const asWide = stated ? weak(true) : true;
-  const asNarrow = provable ? weak(false) : false;
-  if (wide === true) return asWide;
-  if (wide === false) return asNarrow;
-  return asWide === asNarrow ? asWide : undefined;
+  if (real !== undefined) return weak(real);
+  const [asReal, asNoise] = [weak(true), weak(false)];
+  return asReal === asNoise ? asReal : undefined;
 }
 
 /** What rounding may leave of an energy. */
