@@ -1,11 +1,9 @@
+import { LARGE_COMPONENT_THOUSANDTHS } from "../numerics/phase.js";
 import { Surd } from "./surd.js";
 import type { ExactVector } from "./vector.js";
 
-/**
- * The square of the factor within which a component counts as one of the largest: 0.987, as for floating vectors, away from
- * the ratios of small square roots.
- */
-const LARGE_SQUARED: Surd = Surd.ratio(987n * 987n, 1_000_000n);
+/** The square of the factor within which a component counts as one of the largest, as for floating vectors. */
+const LARGE_SQUARED: Surd = Surd.ratio(BigInt(LARGE_COMPONENT_THOUSANDTHS) ** 2n, 1_000_000n);
 
 /**
  * The same direction in the project's phase: the first component within a stated factor of the largest is real and positive,

@@ -4,6 +4,7 @@ import type { Complex } from "../numerics/complex.js";
 import { signOfReal } from "./bounds.js";
 import { dyadic } from "./dyadic.js";
 import { type Arithmetic, readExpression } from "./expression.js";
+import { isFraction } from "./fraction.js";
 import { bitLength, isSafe } from "./integer.js";
 import { invertTerms } from "./inverse.js";
 import { type SurdTextOptions, textOf } from "./print.js";
@@ -95,7 +96,7 @@ export class Surd {
     if (typeof input === "number") return fromDouble(input);
     if (typeof input === "bigint") return Surd.ratio(input, 1n);
     if (typeof input === "string") return readExpression(input, ARITHMETIC);
-    if (input instanceof Fraction) return Surd.ratio(input.s * input.n, input.d);
+    if (isFraction(input)) return Surd.ratio(input.s * input.n, input.d);
     if (typeof input === "object" && input !== null && typeof input.re === "number" && typeof input.im === "number") {
       return fromDouble(input.re).plus(fromDouble(input.im).times(Surd.i));
     }
