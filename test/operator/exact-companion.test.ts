@@ -3,7 +3,7 @@ import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { Surd } from "../../src/exact/surd.js";
 import { Operator } from "../../src/operator/operator.js";
-import { radiusAt } from "../../src/operator/radius.js";
+import { expectWithinRadii } from "../support/exact-operator.js";
 
 const TEXTS = ["0", "1", "-1", "i", "1/3", "sqrt(2/3)", "-sqrt(3)/2", "(1+2i)/sqrt(5)", "sqrt(2)+sqrt(3)", "1/10"];
 
@@ -11,24 +11,6 @@ const matrices = (n: number): fc.Arbitrary<Operator> =>
   fc
     .array(fc.array(fc.constantFrom(...TEXTS), { minLength: n, maxLength: n }), { minLength: n, maxLength: n })
     .map((rows) => Operator.from(rows));
-
-/** Whether every double is within its radius of the exact number, and what is not stored is exactly zero. */
-function expectWithinRadii(operator: Operator): void {
-  const { exact, csr } = operator;
-  if (exact === undefined) throw new Error("the operator is not known exactly");
-  const radius = operator.isExact ? "exact" : (operator.radius ?? "default");
-  let stored = 0;
-  for (let row = 0; row < csr.rows; row++) {
-    for (let e = csr.ptr[row] as number; e < (csr.ptr[row + 1] as number); e++) {
-      const col = csr.col[e] as number;
-      const value = exact.entry(row, col);
-      if (!value.isZero) stored++;
-      const off = value.minus(Surd.from({ re: csr.re[e] as number, im: csr.im?.[e] ?? 0 })).squaredModulus();
-      expect(off.compare(Surd.from(radiusAt({ csr, radius }, e)).power(2))).toBeLessThanOrEqual(0);
-    }
-  }
-  expect(stored).toBe(exact.count);
-}
 
 describe("an operator of exact entries", () => {
   it("has correctly rounded doubles, and says what they are", () => {
