@@ -1,4 +1,5 @@
 import { LARGE_COMPONENT_THOUSANDTHS } from "../numerics/phase.js";
+import { requireVector } from "./guards.js";
 import { Surd } from "./surd.js";
 import type { ExactVector } from "./vector.js";
 
@@ -13,13 +14,14 @@ const LARGE_SQUARED: Surd = Surd.ratio(BigInt(LARGE_COMPONENT_THOUSANDTHS) ** 2n
  * its modulus need not be in the field.
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactVector, fixExactPhase } from "goodbasis";
  *
  * console.log(fixExactPhase(ExactVector.from(["-i", "1"])).values.join(" ")); // 1 i
  * ```
  */
 export function fixExactPhase(vector: ExactVector): ExactVector {
+  requireVector("fixExactPhase", vector);
   const squares = vector.values.map((x) => x.squaredModulus());
   let most = Surd.zero;
   for (const square of squares) if (square.compare(most) > 0) most = square;

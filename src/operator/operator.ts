@@ -98,6 +98,7 @@ export class Operator extends Structured {
    * @internal
    */
   static withExact(operator: Operator, make: () => ExactOperator): Operator {
+    if (!(operator instanceof Operator)) throw wrongOperand("Operator.withExact", operator);
     return operator.isExact ? operator : new Operator(operator.#core, Companion.of(make));
   }
 
