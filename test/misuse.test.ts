@@ -286,6 +286,33 @@ describe("every field of what is handed over", () => {
     kets: ["a", "b", "c"],
     unit: "eV",
   };
+  const exactForms = {
+    h0: {
+      re: [
+        ["1/3", 0],
+        [0, "1/3"],
+      ],
+      im: [
+        [0, 0],
+        [0, 0],
+      ],
+    },
+    v: {
+      stark: {
+        n: 2,
+        entries: [
+          [0, 1, "1/2", "sqrt(2)"],
+          [1, 0, Surd.from("1/2-i*sqrt(2)")],
+        ],
+      },
+      zeeman: { diagonal: [1, 2n], imaginary: ["0", 0] },
+      mixed: [
+        ["√2", 1],
+        [1, 0.5],
+      ],
+    },
+    candidates: { A: { permutation: [1, 0], phases: ["i", { re: 0, im: -1 }] } },
+  };
   const options = {
     levels: { nearest: 1, count: 1 },
     resolution: 1e-10,
@@ -296,8 +323,21 @@ describe("every field of what is handed over", () => {
   const file: unknown = JSON.parse(
     goodbasis.writeProblem(problem, { title: "t", options: { levels: { from: 0, to: 3 } } }),
   );
+  const exactFile: unknown = {
+    ...JSON.parse(goodbasis.writeProblem({ h0: [["1/3"]], v: [[2n]] })),
+    v: { radii: [1e-9], n: 1, triplets: [[0, 0, 0.5]], exact: ["1/2"] },
+    define: {
+      a: { hopping: [[0, 1]], amplitude: "1/3" },
+      b: { diagonal: ["1/3"] },
+      c: { permutation: [0], phases: ["i"] },
+    },
+    n: 2,
+  };
   const calls: readonly (readonly [string, unknown, (changed: unknown) => unknown])[] = [
     ["a problem", forms, (changed) => Reflect.apply(findGoodBasis, undefined, [changed])],
+    ["exact numbers", exactForms, (changed) => Reflect.apply(findGoodBasis, undefined, [changed])],
+    ["exact numbers to write", exactForms, (changed) => Reflect.apply(goodbasis.writeProblem, undefined, [changed])],
+    ["an exact file", exactFile, (changed) => Reflect.apply(goodbasis.readProblem, undefined, [changed])],
     ["a problem to audit", forms, (changed) => Reflect.apply(goodbasis.auditCommutators, undefined, [changed])],
     ["a problem to write", forms, (changed) => Reflect.apply(goodbasis.writeProblem, undefined, [changed])],
     ["options", options, (changed) => Reflect.apply(findGoodBasis, undefined, [problem, changed])],
