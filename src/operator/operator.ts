@@ -374,7 +374,7 @@ export class Operator extends Structured {
 
   /** A result, and what it is exactly where that is known of both operands and its doubles do not say it already. */
   #made(core: Uncertain, combine: exactly.Combine, other: Operator = this): Operator {
-    if (core.radius === "exact") return new Operator(core);
+    if (core.radius === "exact" || !this.isKnownExactly || !other.isKnownExactly) return new Operator(core);
     const [a, b] = [this.#known, other.#known];
     return new Operator(core, a && b && Companion.combined(a, b, combine));
   }
