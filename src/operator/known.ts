@@ -1,3 +1,4 @@
+import { GoodBasisError } from "../errors.js";
 import { ExactOperator } from "../exact/operator.js";
 import { Surd, type SurdInput } from "../exact/surd.js";
 import { type Complex, isScalar } from "../numerics/complex.js";
@@ -24,15 +25,13 @@ export interface Known {
  * @throws GoodBasisError what {@link readMatrix}, {@link withUncertainty} and `Surd.from` throw
  */
 export function readKnown(verb: string, input: unknown, uncertainty: Uncertainty | undefined): Known {
-  const exact = readExact(verb, input);
-  if (exact === undefined) {
-    const core = withUncertainty(verb, readMatrix(verb, input as MatrixData), uncertainty);
-    return { core, companion: undefined };
+  const read = readPlain(verb, input);
+  if (!(read instanceof ExactOperator)) {
+    return { core: withUncertainty(verb, read, uncertainty), companion: undefined };
   }
-  const core: Uncertain = exact.toFloating();
-  if (uncertainty === undefined) return { core, companion: Companion.of(() => exact) };
-  const stated = withUncertainty(verb, core, uncertainty);
-  if (!(stated.radius instanceof Float64Array)) return { core, companion: Companion.of(() => exact) };
+  const core: Uncertain = read.toFloating();
+  const stated = withUncertainty(verb, core, uncertainty === "exact" ? undefined : uncertainty);
+  if (stated === core || !(stated.radius instanceof Float64Array)) return { core, companion: Companion.of(() => read) };
   return { core: { csr: core.csr, radius: together(stated.radius, core.radius) }, companion: undefined };
 }
 
@@ -41,16 +40,21 @@ function together(a: Float64Array, b: Radius): Radius {
 }
 
 /**
- * The exact operator that a matrix with exact entries stands for; undefined for one of plain numbers alone.
+ * A matrix of plain numbers, or the exact operator that one with exact entries stands for. Those are looked for only where the
+ * reader of plain numbers stumbles, so that plain matrices are read at full speed.
  *
  * @throws GoodBasisError what {@link readMatrix} and `Surd.from` throw
  */
-function readExact(verb: string, input: unknown): ExactOperator | undefined {
+function readPlain(verb: string, input: unknown): Uncertain | ExactOperator {
   if (input instanceof ExactOperator) return input;
-  const shadow = shadowOf(input);
-  if (shadow === undefined) return undefined;
-  readMatrix(verb, shadow.input as MatrixData);
-  return shadow.entries(verb);
+  try {
+    return readMatrix(verb, input as MatrixData);
+  } catch (error) {
+    const shadow = error instanceof GoodBasisError ? shadowOf(input) : undefined;
+    if (shadow === undefined) throw error;
+    readMatrix(verb, shadow.input as MatrixData);
+    return shadow.entries(verb);
+  }
 }
 
 /** A factor: the nearest doubles, how far they are off, and the number itself. */
