@@ -23,7 +23,10 @@ import { Structured } from "./structured.js";
 
 /** Options of {@link Operator.from} and its relatives. */
 export interface OperatorOptions {
-  /** How well the entries are known; half a unit in the last place of each when not given. */
+  /**
+   * How well the entries are known; half a unit in the last place of each when not given. `"exact"` leaves an operator that is known
+   * exactly as it is; any other uncertainty ends that.
+   */
   readonly uncertainty?: Uncertainty | undefined;
 }
 
@@ -71,9 +74,9 @@ export class Operator extends Structured {
     const verb = "Operator.from";
     requireOperatorOptions(verb, options);
     if (!(input instanceof Operator)) return Operator.#read(verb, input, options);
-    const { uncertainty } = options;
-    if (uncertainty === undefined || (uncertainty === "exact" && input.isKnownExactly)) return input;
-    return new Operator(withUncertainty(verb, input.#core, uncertainty));
+    if (options.uncertainty === undefined) return input;
+    const stated = withUncertainty(verb, input.#core, options.uncertainty);
+    return stated.radius === "exact" && input.isKnownExactly ? input : new Operator(stated);
   }
 
   static #read(verb: string, input: unknown, { uncertainty }: OperatorOptions): Operator {

@@ -117,6 +117,12 @@ describe("an operator of exact entries", () => {
     expect(Operator.from(texts, { uncertainty: "exact" }).exact?.entry(0, 0).text()).toBe("sqrt(2)");
     const own = Operator.from(texts);
     expect(Operator.from(own, { uncertainty: "exact" })).toBe(own);
+    expect(Operator.from(own, { uncertainty: { relative: 0 } })).toBe(own);
+    expect(
+      Operator.from([[0.1]], { uncertainty: { absolute: 0 } })
+        .exact?.entry(0, 0)
+        .equals(0.1),
+    ).toBe(true);
     const measured = Operator.from(texts, { uncertainty: { absolute: 1e-3 } });
     expect(measured.exact).toBeUndefined();
     expect(measured.radius?.[0]).toBeGreaterThan(1e-3);
