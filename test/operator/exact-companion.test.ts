@@ -182,6 +182,19 @@ describe("the exact companion", () => {
     );
   });
 
+  it("counts the rounding of a factor that is no double", () => {
+    const numbers = Operator.diagonal(
+      Float64Array.from({ length: 200 }, (_, k) => k + 1),
+      { uncertainty: "exact" },
+    );
+    for (const factor of ["1/3", "1/7", "sqrt(2)", "-sqrt(2/3)", "i/9", "(1+2i)/sqrt(5)"]) {
+      expectWithinRadii(numbers.scale(factor));
+    }
+    const plain = Operator.from([[0.3]]).scale("1/3");
+    expect(plain.exact).toBeUndefined();
+    expect(plain.radius?.[0]).toBeGreaterThan(0.1 * 2 ** -52);
+  });
+
   it("is restricted with the operator to chosen kets, in their order", () => {
     const a = Operator.from([
       ["1/3", "sqrt(2)", 0],
