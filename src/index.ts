@@ -45,6 +45,31 @@ export {
 export type { QuestionCode, Shift, Verdict } from "./certify/verdict.js";
 export type { NearbyModel, SectorEvidence, SeparatorEvidence, WholeEvidence } from "./certify/whole.js";
 export { type ErrorCode, GoodBasisError } from "./errors.js";
+export { type Annihilation, annihilates, projectorTraces, spectralPart } from "./exact/annihilate.js";
+export type { ExactBudget } from "./exact/budget.js";
+export { characteristicPolynomial, minimalPolynomial } from "./exact/characteristic.js";
+export { exactEigenspace } from "./exact/eigenspace.js";
+export { exactKernel, exactRank } from "./exact/elimination.js";
+export { type FieldRoots, fieldRoots } from "./exact/field-roots.js";
+export type { FloatingRows } from "./exact/floating.js";
+export { type Orthogonalised, orthogonalise } from "./exact/gram-schmidt.js";
+export { type ExactElement, ExactOperator } from "./exact/operator.js";
+export { fixExactPhase } from "./exact/phase.js";
+export type { Polynomial } from "./exact/polynomial.js";
+export type { SurdForm, SurdTextOptions } from "./exact/print.js";
+export { type Proposal, type RecogniseOptions, recognise } from "./exact/recognise.js";
+export {
+  type NoOperatorProposal,
+  type OperatorProposal,
+  recogniseMatrix,
+  type UnknownEntry,
+} from "./exact/recognise-matrix.js";
+export { type Representation, represent } from "./exact/represent.js";
+export { exactRootOfUnity } from "./exact/root-of-unity.js";
+export type { ExactTriplet } from "./exact/rows.js";
+export { Surd, type SurdInput } from "./exact/surd.js";
+export type { SurdTerm } from "./exact/terms.js";
+export { ExactVector } from "./exact/vector.js";
 export { type AngularMomentum, angularMomentum } from "./models/angular-momentum.js";
 export { type Bond, hopping } from "./models/lattice.js";
 export { type Oscillator, oscillator } from "./models/oscillator.js";
@@ -54,11 +79,13 @@ export { type SpinChain, spinChain } from "./models/spin-chain.js";
 export type { Complex, Scalar } from "./numerics/complex.js";
 export type { Csr } from "./numerics/csr.js";
 export type { Dense } from "./numerics/dense.js";
+export type { ExactData, ExactEntry } from "./operator/exact-input.js";
 export type { MatrixInput } from "./operator/input.js";
 export { type MatrixMarketOptions, readMatrixMarket, toMatrixMarket } from "./operator/matrix-market.js";
 export { Operator, type OperatorOptions } from "./operator/operator.js";
 export type { Radius } from "./operator/radius.js";
 export type { MatrixData, RealEntries, Triplet, Uncertainty } from "./operator/read.js";
+export { type ProposedEntry, type ProposedOperator, recogniseOperator } from "./operator/recognise.js";
 export type { HermitianDefect } from "./operator/structure.js";
 export type { Bounded } from "./perturb/bounded.js";
 export { type Perturbation, type PerturbedState, type PerturbOptions, perturb } from "./perturb/perturb.js";

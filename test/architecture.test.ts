@@ -26,7 +26,7 @@ const BELOW: Readonly<Record<string, readonly string[]>> = {
   operator: ["numerics", "exact"],
   audit: ["numerics", "exact", "operator"],
   models: ["numerics", "exact", "operator"],
-  problem: ["operator", "models"],
+  problem: ["exact", "operator", "models"],
   refine: ["numerics", "exact", "operator", "audit"],
   certify: ["version.ts", "numerics", "exact", "operator", "audit", "refine"],
   perturb: ["numerics", "exact", "operator", "audit", "refine", "certify"],

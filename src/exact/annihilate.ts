@@ -1,5 +1,7 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { type ExactBudget, Meter } from "./budget.js";
+import { requireNumbers, requireOperator, requireVector, requireVectors } from "./guards.js";
 import type { ExactOperator } from "./operator.js";
 import { Surd } from "./surd.js";
 import type { ExactVector } from "./vector.js";
@@ -28,7 +30,7 @@ export type Annihilation =
  * @throws GoodBasisError `shape`, `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { annihilates, ExactOperator, ExactVector, Surd } from "goodbasis";
  *
  * const flip = ExactOperator.from([[0, 1], [1, 0]]);
@@ -42,6 +44,9 @@ export function annihilates(
   vectors: readonly ExactVector[],
   budget?: ExactBudget,
 ): Annihilation {
+  requireOperator("annihilates", operator);
+  requireNumbers("annihilates", values);
+  requireVectors("annihilates", vectors);
   const meter = new Meter("annihilates", budget);
   for (const [column, vector] of vectors.entries()) {
     const residual = values.reduce((rest, value) => shifted(operator, value, rest, meter), vector);
@@ -68,7 +73,7 @@ function shifted(operator: ExactOperator, value: Surd, vector: ExactVector, mete
  * @throws GoodBasisError `option` - two values are equal; `shape`, `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, ExactVector, spectralPart, Surd } from "goodbasis";
  *
  * const flip = ExactOperator.from([[0, 1], [1, 0]]);
@@ -83,11 +88,13 @@ export function spectralPart(
   vector: ExactVector,
   budget?: ExactBudget,
 ): ExactVector {
+  requireOperator("spectralPart", operator);
+  requireVector("spectralPart", vector);
   requireDistinct("spectralPart", values);
   const meter = new Meter("spectralPart", budget);
-  const own = values[chosen];
+  const own = Number.isInteger(chosen) ? values[chosen] : undefined;
   if (own === undefined) {
-    throw new GoodBasisError("option", `spectralPart: there is no eigenvalue ${chosen} among ${values.length}`, {
+    throw new GoodBasisError("option", `spectralPart: there is no eigenvalue ${shown(chosen)} among ${values.length}`, {
       chosen,
     });
   }
@@ -115,7 +122,7 @@ export function spectralPart(
  * @throws GoodBasisError `option` - two values are equal; `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, projectorTraces, Surd } from "goodbasis";
  *
  * const a = ExactOperator.diagonal([2, 2, -1]);
@@ -123,6 +130,7 @@ export function spectralPart(
  * ```
  */
 export function projectorTraces(operator: ExactOperator, values: readonly Surd[], budget?: ExactBudget): Surd[] {
+  requireOperator("projectorTraces", operator);
   requireDistinct("projectorTraces", values);
   const traces: Surd[] = [Surd.from(operator.n)];
   let power = operator;
@@ -145,6 +153,7 @@ export function projectorTraces(operator: ExactOperator, values: readonly Surd[]
 }
 
 function requireDistinct(where: string, values: readonly Surd[]): void {
+  requireNumbers(where, values);
   for (const [k, value] of values.entries()) {
     const twin = values.findIndex((other, j) => j < k && other.equals(value));
     if (twin < 0) continue;

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { requireOptions, shown } from "../misuse.js";
 import { bitLength } from "./integer.js";
 import type { Terms } from "./terms.js";
 
@@ -40,6 +41,7 @@ export class Meter {
    * @throws GoodBasisError `option` - a limit that is not a positive number
    */
   constructor(where: string, budget: ExactBudget = {}) {
+    requireOptions(where, budget, ["digits", "roots", "steps"]);
     this.#where = where;
     this.#bits = limit(where, "digits", budget) / DIGITS_PER_BIT;
     this.#roots = limit(where, "roots", budget);
@@ -95,8 +97,8 @@ export class Meter {
 
 function limit(where: string, kind: keyof ExactBudget, budget: ExactBudget): number {
   const value = budget[kind] ?? DEFAULT_BUDGET[kind];
-  if (value > 0) return value;
-  throw new GoodBasisError("option", `${where}: budget.${kind} must be a positive number, got ${value}`, {
+  if (typeof value === "number" && value > 0) return value;
+  throw new GoodBasisError("option", `${where}: budget.${kind} must be a positive number, got ${shown(value)}`, {
     kind,
     value,
   });

@@ -1,5 +1,6 @@
 import { type ExactBudget, Meter } from "./budget.js";
 import { type EquationRow, nullSpace } from "./elimination.js";
+import { requireOperator } from "./guards.js";
 import { ExactOperator } from "./operator.js";
 import { monic, type Polynomial, polynomial } from "./polynomial.js";
 import { Surd } from "./surd.js";
@@ -14,7 +15,7 @@ import { Surd } from "./surd.js";
  * @throws GoodBasisError `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { characteristicPolynomial, ExactOperator, fieldRoots } from "goodbasis";
  *
  * const chain = ExactOperator.from([[0, 1, 0], [1, 0, 1], [0, 1, 0]]);
@@ -22,6 +23,7 @@ import { Surd } from "./surd.js";
  * ```
  */
 export function characteristicPolynomial(operator: ExactOperator, budget?: ExactBudget): Polynomial {
+  requireOperator("characteristicPolynomial", operator);
   const { n } = operator;
   const meter = new Meter("characteristicPolynomial", budget);
   const coefficients: Surd[] = new Array<Surd>(n + 1).fill(Surd.zero);
@@ -47,13 +49,14 @@ export function characteristicPolynomial(operator: ExactOperator, budget?: Exact
  * @throws GoodBasisError `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, minimalPolynomial } from "goodbasis";
  *
  * console.log(minimalPolynomial(ExactOperator.diagonal([1, 1, 2])).join(" ")); // 2 -3 1
  * ```
  */
 export function minimalPolynomial(operator: ExactOperator, budget?: ExactBudget): Polynomial {
+  requireOperator("minimalPolynomial", operator);
   const { n } = operator;
   const powers: ExactOperator[] = [ExactOperator.identity(n)];
   for (let k = 1; k <= n; k++) {

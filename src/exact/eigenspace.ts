@@ -16,7 +16,7 @@ import { ExactVector } from "./vector.js";
  * @throws GoodBasisError `option` - the operator leads out of the space, or the vectors are not orthogonal; `shape`, `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { exactEigenspace, ExactOperator, ExactVector } from "goodbasis";
  *
  * const chain = ExactOperator.from([[0, 1, 0], [1, 0, 1], [0, 1, 0]]);

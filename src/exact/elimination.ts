@@ -1,6 +1,7 @@
 import { GoodBasisError } from "../errors.js";
 import { type ExactBudget, Meter } from "./budget.js";
-import { ExactOperator } from "./operator.js";
+import { requireOperator } from "./guards.js";
+import type { ExactOperator } from "./operator.js";
 import { Surd } from "./surd.js";
 import { ExactVector } from "./vector.js";
 
@@ -85,13 +86,14 @@ function rowsOf(operator: ExactOperator): Map<number, Surd>[] {
  * @throws GoodBasisError `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, exactRank } from "goodbasis";
  *
  * console.log(exactRank(ExactOperator.from([["sqrt(2)", "sqrt(6)"], [1, "sqrt(3)"]]))); // 1
  * ```
  */
 export function exactRank(operator: ExactOperator, budget?: ExactBudget): number {
+  requireOperator("exactRank", operator);
   return reducedEchelon(rowsOf(operator), new Meter("exactRank", budget)).length;
 }
 
@@ -105,7 +107,7 @@ export function exactRank(operator: ExactOperator, budget?: ExactBudget): number
  * @throws GoodBasisError `shape` - no operator, or different numbers of kets; `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, exactKernel } from "goodbasis";
  *
  * const [v] = exactKernel(ExactOperator.from([["sqrt(2)", "sqrt(6)"], [1, "sqrt(3)"]]));
@@ -113,7 +115,8 @@ export function exactRank(operator: ExactOperator, budget?: ExactBudget): number
  * ```
  */
 export function exactKernel(operators: ExactOperator | readonly ExactOperator[], budget?: ExactBudget): ExactVector[] {
-  const list = operators instanceof ExactOperator ? [operators] : operators;
+  const list = Array.isArray(operators) ? (operators as readonly ExactOperator[]) : [operators as ExactOperator];
+  for (const operator of list) requireOperator("exactKernel", operator);
   const n = list[0]?.n;
   if (n === undefined || list.some((operator) => operator.n !== n)) {
     const message = "exactKernel: expected at least one operator, and all on the same number of kets";

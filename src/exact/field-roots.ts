@@ -1,7 +1,9 @@
+import { requireArgument } from "../misuse.js";
 import { type ExactBudget, Meter } from "./budget.js";
+import { requireNumbers } from "./guards.js";
 import { absolute, bitLength, gcd } from "./integer.js";
 import { normPolynomial } from "./norm-polynomial.js";
-import { divide, evaluate, monic, type Polynomial, squareFreePart } from "./polynomial.js";
+import { divide, evaluate, monic, type Polynomial, polynomial, squareFreePart } from "./polynomial.js";
 import { type DyadicPoint, isolateRealRoots } from "./real-roots.js";
 import { Surd } from "./surd.js";
 
@@ -26,10 +28,10 @@ const MOST_FOR_FOURS = 20;
  * to sufficient precision, a few roots have only one candidate for each, and exact division decides.
  *
  * @param p - not zero
- * @throws GoodBasisError `budget`
+ * @throws GoodBasisError `option` - the zero polynomial; `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { fieldRoots, Surd } from "goodbasis";
  *
  * const { roots, rest } = fieldRoots([-1, -1, 1].map((c) => Surd.from(c)));
@@ -37,8 +39,17 @@ const MOST_FOR_FOURS = 20;
  * ```
  */
 export function fieldRoots(p: Polynomial, budget?: ExactBudget): FieldRoots {
+  requireNumbers("fieldRoots", p);
   const meter = new Meter("fieldRoots", budget);
-  const own = squareFreePart(p);
+  const given = polynomial(p);
+  requireArgument(
+    given.length > 0,
+    "fieldRoots",
+    "a polynomial that is not zero",
+    p,
+    "give its coefficients by ascending power",
+  );
+  const own = squareFreePart(given);
   if (own.length === 2) return { roots: linearRoot(own), rest: linearRoot(own).length === 1 ? [Surd.one] : own };
   const rational = own.every((c) => c.isRational);
   const candidates = rationalFieldRoots(rational ? own : normPolynomial(own), meter);

@@ -1,7 +1,7 @@
 import { GoodBasisError } from "../errors.js";
 import type { Csr } from "../numerics/csr.js";
 import { roundUp } from "../numerics/rounding.js";
-import { Entries } from "./entries.js";
+import { Entries, type WholeEntries } from "./entries.js";
 import type { ExactRows } from "./rows.js";
 import { Surd } from "./surd.js";
 
@@ -42,12 +42,36 @@ function errorOf(x: Surd, rounded: number): number {
   return Math.max(Math.abs(rounded) * 2 ** -53, Number.MIN_VALUE);
 }
 
+/** Finest common denominator that is looked for, a power of two. */
+const LARGEST_DENOMINATOR = 2 ** 24;
+
+/** Doubles as whole numbers over one small power of two; undefined where they are not that, or one of them is zero. */
+function wholeOf({ re, im }: Csr): WholeEntries | undefined {
+  let den = 1;
+  for (let e = 0; e < re.length; e++) {
+    const [x, y] = [re[e] as number, im === undefined ? 0 : (im[e] as number)];
+    if (x === 0 && y === 0) return undefined;
+    while (!Number.isInteger(x * den) || !Number.isInteger(y * den)) {
+      if (den === LARGEST_DENOMINATOR) return undefined;
+      den *= 2;
+    }
+  }
+  // + 0 turns −0 into 0
+  const scaled = (list: Float64Array): Float64Array => list.map((x) => x * den + 0);
+  const whole = { re: scaled(re), im: im?.some((y) => y !== 0) ? scaled(im) : undefined, den };
+  const safe = (list: Float64Array): boolean => list.every((x) => Number.isSafeInteger(x));
+  return safe(whole.re) && (whole.im === undefined || safe(whole.im)) ? whole : undefined;
+}
+
 /**
- * Sparse rows of doubles as exact dyadic numbers; zeros are dropped.
+ * Sparse rows of doubles as exact dyadic numbers; zeros are dropped. Whole numbers over a small power of two stay machine
+ * integers.
  *
  * @throws GoodBasisError `not-finite`
  */
 export function exactRowsOf(csr: Csr): ExactRows {
+  const whole = wholeOf(csr);
+  if (whole !== undefined) return { ptr: csr.ptr, col: csr.col, entries: Entries.ofWhole(whole) };
   const ptr = new Int32Array(csr.rows + 1);
   const col: number[] = [];
   const values: Surd[] = [];

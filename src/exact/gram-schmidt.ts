@@ -1,4 +1,5 @@
 import { type ExactBudget, Meter } from "./budget.js";
+import { requireVectors } from "./guards.js";
 import type { ExactVector } from "./vector.js";
 
 /** Mutually orthogonal vectors, and which of the given ones added nothing. */
@@ -16,7 +17,7 @@ export interface Orthogonalised {
  * @throws GoodBasisError `shape` - vectors over different numbers of kets; `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactVector, orthogonalise } from "goodbasis";
  *
  * const { vectors } = orthogonalise([ExactVector.from([1, 1, 0]), ExactVector.from([1, 0, 1])]);
@@ -24,6 +25,7 @@ export interface Orthogonalised {
  * ```
  */
 export function orthogonalise(vectors: readonly ExactVector[], budget?: ExactBudget): Orthogonalised {
+  requireVectors("orthogonalise", vectors);
   const meter = new Meter("orthogonalise", budget);
   const done: ExactVector[] = [];
   const dependent: number[] = [];

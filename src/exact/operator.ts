@@ -1,9 +1,11 @@
 import { GoodBasisError } from "../errors.js";
+import { isObject, requireArgument, shown } from "../misuse.js";
 import type { Csr } from "../numerics/csr.js";
 import { type SignedProduct, sumOfProducts } from "./accumulate.js";
 import { type ExactBudget, Meter } from "./budget.js";
 import { Entries } from "./entries.js";
 import { exactRowsOf, type FloatingRows, floatingOf } from "./floating.js";
+import { requireList, requireSquareRows, requireTriplets } from "./forms.js";
 import {
   type ExactRows,
   type ExactTriplet,
@@ -35,7 +37,7 @@ export interface ExactElement {
  * Matrices of integers and of fractions over one denominator are multiplied in machine integers, checked for overflow.
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator } from "goodbasis";
  *
  * const sx = ExactOperator.from([[0, "1/2"], ["1/2", 0]]);
@@ -57,6 +59,8 @@ export class ExactOperator {
   #isHermitian: boolean | undefined;
 
   private constructor(n: number, rows: ExactRows) {
+    const made = isObject(rows) && "entries" in rows;
+    requireArgument(made, "ExactOperator", "what its makers give", n, "make one with ExactOperator.from");
     this.n = n;
     this.rows = rows;
   }
@@ -67,6 +71,8 @@ export class ExactOperator {
    * @throws GoodBasisError `shape` - not square; what {@link Surd.from} throws
    */
   static from(rows: readonly (readonly SurdInput[])[]): ExactOperator {
+    const lists = Array.isArray(rows) && rows.every(Array.isArray);
+    requireArgument(lists, "ExactOperator.from", "rows of numbers", rows, 'such as [[1, "1/2"], ["1/2", 0]]');
     const n = rows.length;
     for (const [k, row] of rows.entries()) {
       if (row.length === n) continue;
@@ -85,6 +91,7 @@ export class ExactOperator {
   static fromTriplets(n: number, triplets: Iterable<ExactTriplet>): ExactOperator {
     const where = "ExactOperator.fromTriplets";
     requireDimension(where, n);
+    requireTriplets(where, triplets);
     return new ExactOperator(n, rowsOfTriplets(where, n, triplets));
   }
 
@@ -94,10 +101,7 @@ export class ExactOperator {
    * @throws GoodBasisError `shape` - not square; `not-finite`
    */
   static fromFloating(csr: Csr): ExactOperator {
-    if (csr.rows !== csr.cols) {
-      const message = `ExactOperator.fromFloating: expected a square matrix, got ${csr.rows} × ${csr.cols}`;
-      throw new GoodBasisError("shape", message, { rows: csr.rows, cols: csr.cols });
-    }
+    requireSquareRows("ExactOperator.fromFloating", csr);
     return new ExactOperator(csr.rows, exactRowsOf(csr));
   }
 
@@ -120,6 +124,7 @@ export class ExactOperator {
    * @throws GoodBasisError `shape` - no number; what {@link Surd.from} throws
    */
   static diagonal(values: readonly SurdInput[]): ExactOperator {
+    requireList("ExactOperator.diagonal", values);
     return ExactOperator.fromTriplets(
       values.length,
       values.map((value, k): ExactTriplet => [k, k, value]),
@@ -133,6 +138,8 @@ export class ExactOperator {
    * @throws GoodBasisError `shape` - `map` is no permutation of 0 … n − 1, or a wrong number of phases
    */
   static permutation(map: readonly number[], phases?: readonly SurdInput[]): ExactOperator {
+    requireList("ExactOperator.permutation", map);
+    if (phases !== undefined) requireList("ExactOperator.permutation", phases);
     if (new Set(map).size !== map.length || (phases !== undefined && phases.length !== map.length)) {
       const message = "ExactOperator.permutation: expected each of 0 … n − 1 once, and one phase for each ket if any";
       throw new GoodBasisError("shape", message, { n: map.length, phases: phases?.length });
@@ -153,6 +160,7 @@ export class ExactOperator {
     if (first === undefined) {
       throw new GoodBasisError("shape", "ExactOperator.sum: expected at least one operator, got none");
     }
+    requireOperand("sum", first);
     return others.reduce((sum, term) => sum.plus(term), first);
   }
 
@@ -214,6 +222,7 @@ export class ExactOperator {
 
   /** A ⊗ B; the kets of A are the slow index. */
   kron(other: ExactOperator): ExactOperator {
+    requireOperand("kron", other);
     return new ExactOperator(this.n * other.n, kronRows(this.rows, other.rows));
   }
 
@@ -224,7 +233,7 @@ export class ExactOperator {
    */
   power(exponent: number, budget?: ExactBudget): ExactOperator {
     if (!Number.isInteger(exponent) || exponent < 0) {
-      const message = `ExactOperator.power: the exponent must be 0, 1, 2, …, got ${exponent}`;
+      const message = `ExactOperator.power: the exponent must be 0, 1, 2, …, got ${shown(exponent)}`;
       throw new GoodBasisError("option", message, { exponent });
     }
     if (exponent === 0) return ExactOperator.identity(this.n);
@@ -258,6 +267,7 @@ export class ExactOperator {
    * @throws GoodBasisError `shape` - a vector over another number of kets, or none
    */
   restrict(vectors: readonly ExactVector[]): ExactOperator {
+    requireList("ExactOperator.restrict", vectors);
     const triplets: ExactTriplet[] = [];
     for (const [j, right] of vectors.entries()) {
       const image = this.apply(right);
@@ -274,11 +284,12 @@ export class ExactOperator {
    * @throws GoodBasisError `shape`
    */
   principal(kets: readonly number[]): ExactOperator {
+    requireList("ExactOperator.principal", kets);
     requireDimension("ExactOperator.principal", kets.length);
     kets.forEach((ket, k) => {
       const before = k === 0 ? -1 : (kets[k - 1] as number);
       if (Number.isInteger(ket) && ket > before && ket < this.n) return;
-      const message = `ExactOperator.principal: kets must ascend within 0 … ${this.n - 1}, got ${ket} after ${before}`;
+      const message = `ExactOperator.principal: kets must ascend within 0 … ${this.n - 1}, got ${shown(ket)} after ${shown(before)}`;
       throw new GoodBasisError("shape", message, { ket, n: this.n });
     });
     return new ExactOperator(kets.length, principalRows(this.rows, kets));
@@ -295,7 +306,7 @@ export class ExactOperator {
   entry(row: number, col: number): Surd {
     for (const index of [row, col]) {
       if (Number.isInteger(index) && index >= 0 && index < this.n) continue;
-      const message = `ExactOperator.entry: (${row}, ${col}) is outside 0 … ${this.n - 1}`;
+      const message = `ExactOperator.entry: (${shown(row)}, ${shown(col)}) is outside 0 … ${this.n - 1}`;
       throw new GoodBasisError("shape", message, { row, col, n: this.n });
     }
     for (let e = this.rows.ptr[row] as number; e < (this.rows.ptr[row + 1] as number); e++) {
@@ -326,7 +337,7 @@ export class ExactOperator {
 
   /** Whether both are the same matrix, exactly. */
   equals(other: ExactOperator): boolean {
-    return this.n === other.n && this.minus(other).isZero;
+    return other instanceof ExactOperator && this.n === other.n && this.minus(other).isZero;
   }
 
   /**
@@ -390,12 +401,20 @@ export class ExactOperator {
   }
 
   #requireSame(where: string, other: ExactOperator): void {
+    requireOperand(where, other);
     if (this.n === other.n) return;
     const message = `ExactOperator.${where}: operators on ${this.n} and ${other.n} kets; both must act on the same space`;
     throw new GoodBasisError("shape", message, { n: this.n, other: other.n });
   }
 
   #requireKets(where: string, vector: ExactVector): void {
+    requireArgument(
+      vector instanceof ExactVector,
+      `ExactOperator.${where}`,
+      "an ExactVector",
+      vector,
+      "see ExactVector.from",
+    );
     if (this.n === vector.n) return;
     const message = `ExactOperator.${where}: the operator acts on ${this.n} kets, the vector has ${vector.n} components`;
     throw new GoodBasisError("shape", message, { n: this.n, components: vector.n });
@@ -404,5 +423,10 @@ export class ExactOperator {
 
 function requireDimension(where: string, n: number): void {
   if (Number.isInteger(n) && n >= 1) return;
-  throw new GoodBasisError("shape", `${where}: the number of kets must be 1, 2, …, got ${n}`, { n });
+  throw new GoodBasisError("shape", `${where}: the number of kets must be 1, 2, …, got ${shown(n)}`, { n });
+}
+
+function requireOperand(where: string, other: unknown): void {
+  const next = "make one with ExactOperator.from";
+  requireArgument(other instanceof ExactOperator, `ExactOperator.${where}`, "an ExactOperator", other, next);
 }

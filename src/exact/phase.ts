@@ -1,11 +1,10 @@
+import { LARGE_COMPONENT_THOUSANDTHS } from "../numerics/phase.js";
+import { requireVector } from "./guards.js";
 import { Surd } from "./surd.js";
 import type { ExactVector } from "./vector.js";
 
-/**
- * The square of the factor within which a component counts as one of the largest: 0.987, as for floating vectors, away from
- * the ratios of small square roots.
- */
-const LARGE_SQUARED: Surd = Surd.ratio(987n * 987n, 1_000_000n);
+/** The square of the factor within which a component counts as one of the largest, as for floating vectors. */
+const LARGE_SQUARED: Surd = Surd.ratio(BigInt(LARGE_COMPONENT_THOUSANDTHS) ** 2n, 1_000_000n);
 
 /**
  * The same direction in the project's phase: the first component within a stated factor of the largest is real and positive,
@@ -15,13 +14,14 @@ const LARGE_SQUARED: Surd = Surd.ratio(987n * 987n, 1_000_000n);
  * its modulus need not be in the field.
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactVector, fixExactPhase } from "goodbasis";
  *
  * console.log(fixExactPhase(ExactVector.from(["-i", "1"])).values.join(" ")); // 1 i
  * ```
  */
 export function fixExactPhase(vector: ExactVector): ExactVector {
+  requireVector("fixExactPhase", vector);
   const squares = vector.values.map((x) => x.squaredModulus());
   let most = Surd.zero;
   for (const square of squares) if (square.compare(most) > 0) most = square;

@@ -1,3 +1,5 @@
+import { GoodBasisError } from "../errors.js";
+import { requireOptions, shown } from "../misuse.js";
 import { gcd } from "./integer.js";
 import type { Terms } from "./terms.js";
 
@@ -31,7 +33,13 @@ interface Summand {
 }
 
 /** The text of a number. */
-export function textOf(a: Terms, { form = "plain", underRoot = false }: SurdTextOptions = {}): string {
+export function textOf(a: Terms, options: SurdTextOptions = {}): string {
+  requireOptions("Surd.text", options, ["form", "underRoot"]);
+  const { form = "plain", underRoot = false } = options;
+  if (!Object.hasOwn(WRITERS, form)) {
+    const message = `Surd.text: there is no form ${shown(form)}; give "plain", "unicode" or "latex"`;
+    throw new GoodBasisError("option", message, { form });
+  }
   const all = a.roots.flatMap((_, k) => summandsOf(a, k));
   // real ones first, as 1 + 2i is written
   const summands = [...all.filter(({ im }) => im === 0n), ...all.filter(({ im }) => im !== 0n)];

@@ -1,4 +1,6 @@
+import { requireOptions } from "../misuse.js";
 import type { Csr } from "../numerics/csr.js";
+import { requireSquareRows } from "./forms.js";
 import { ExactOperator } from "./operator.js";
 import { type RecogniseOptions, recognise } from "./recognise.js";
 import type { ExactTriplet } from "./rows.js";
@@ -41,7 +43,7 @@ export interface UnknownEntry {
  * @throws GoodBasisError `not-finite`, `option`, `shape` - no rows
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { Operator, recogniseMatrix } from "goodbasis";
  *
  * const floating = Operator.from([[1, Math.SQRT1_2], [Math.SQRT1_2, 1 / 3]]);
@@ -50,6 +52,8 @@ export interface UnknownEntry {
  * ```
  */
 export function recogniseMatrix(csr: Csr, options: RecogniseOptions = {}): OperatorProposal | NoOperatorProposal {
+  requireSquareRows("recogniseMatrix", csr);
+  requireOptions("recogniseMatrix", options, ["tolerance", "scale", "maxDenominator", "maxSquare"]);
   const scale = options.scale ?? Math.max(largest(csr.re), largest(csr.im ?? new Float64Array(0)));
   const triplets: ExactTriplet[] = [];
   const missed: UnknownEntry[] = [];

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { requireArgument, requireOptions, shown } from "../misuse.js";
 import { exactSqrt } from "./integer.js";
 import { fareyNeighbours, type Ratio, simplestBetween } from "./simplest-fraction.js";
 import { Surd } from "./surd.js";
@@ -44,7 +45,7 @@ interface Interval {
  * @throws GoodBasisError `not-finite`; `option` - an option outside its range
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { recognise } from "goodbasis";
  *
  * console.log(recognise(0.8164965809277260)?.value.text(), recognise(Math.PI)); // sqrt(2/3) undefined
@@ -52,6 +53,13 @@ interface Interval {
  */
 export function recognise(value: number, options: RecogniseOptions = {}): Proposal | undefined {
   const { tolerance, scale, maxDenominator, maxSquare } = checked(options);
+  requireArgument(
+    typeof value === "number",
+    "recognise",
+    "a number",
+    value,
+    "an exact text needs no guess: Surd.from reads it",
+  );
   const exact = Surd.from(value);
   const modulus = exact.sign() < 0 ? exact.negate() : exact;
   const radius = Surd.from(tolerance).times(Surd.from(Math.max(Math.abs(value), scale)));
@@ -80,10 +88,11 @@ function checked(options: RecogniseOptions): {
   maxDenominator: bigint;
   maxSquare: bigint;
 } {
+  requireOptions("recognise", options, ["tolerance", "scale", "maxDenominator", "maxSquare"]);
   const { tolerance = 2 ** -46, scale = 0, maxDenominator = 1000, maxSquare = 10_000 } = options;
   const demand = (name: string, value: number, holds: boolean, what: string): void => {
     if (!holds)
-      throw new GoodBasisError("option", `recognise: ${name} must be ${what}, got ${value}`, { [name]: value });
+      throw new GoodBasisError("option", `recognise: ${name} must be ${what}, got ${shown(value)}`, { [name]: value });
   };
   demand("tolerance", tolerance, tolerance >= 0 && tolerance < 1e-3, "at least 0 and below 0.001");
   demand("scale", scale, scale >= 0 && Number.isFinite(scale), "a finite number from 0 on");

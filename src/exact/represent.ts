@@ -1,5 +1,6 @@
 import { GoodBasisError } from "../errors.js";
 import { type ExactBudget, Meter } from "./budget.js";
+import { requireOperator, requireVectors } from "./guards.js";
 import { ExactOperator } from "./operator.js";
 import type { ExactTriplet } from "./rows.js";
 import type { ExactVector } from "./vector.js";
@@ -31,7 +32,7 @@ export type Representation =
  *   not orthogonal; `budget`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactOperator, ExactVector, represent } from "goodbasis";
  *
  * const even = represent(ExactOperator.from([[3, 1], [1, 3]]), [ExactVector.from([1, 1])]);
@@ -43,6 +44,8 @@ export function represent(
   vectors: readonly ExactVector[],
   budget?: ExactBudget,
 ): Representation {
+  requireOperator("represent", operator);
+  requireVectors("represent", vectors);
   const meter = new Meter("represent", budget);
   requireOrthogonal(vectors);
   const inverses = vectors.map((vector) => vector.squaredNorm.inverse());

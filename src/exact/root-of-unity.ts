@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { gcdSafe } from "./integer.js";
 import { Surd } from "./surd.js";
 
@@ -16,7 +17,7 @@ const PRIMITIVE: Surd = Surd.from("(sqrt(6)+sqrt(2))/4 + i*(sqrt(6)-sqrt(2))/4")
  * @throws GoodBasisError `option`
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { exactRootOfUnity } from "goodbasis";
  *
  * console.log(exactRootOfUnity(1, 8)?.text(), exactRootOfUnity(1, 10)); // (1+i)/sqrt(2) undefined
@@ -24,7 +25,7 @@ const PRIMITIVE: Surd = Surd.from("(sqrt(6)+sqrt(2))/4 + i*(sqrt(6)-sqrt(2))/4")
  */
 export function exactRootOfUnity(k: number, order: number): Surd | undefined {
   if (!Number.isSafeInteger(k) || !Number.isSafeInteger(order) || order < 1) {
-    const message = `exactRootOfUnity: expected a whole number and an order from 1 on, got ${k} and ${order}`;
+    const message = `exactRootOfUnity: expected a whole number and an order from 1 on, got ${shown(k)} and ${shown(order)}`;
     throw new GoodBasisError("option", message, { k, order });
   }
   const common = gcdSafe(k, order);

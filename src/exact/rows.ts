@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { shown } from "../misuse.js";
 import { Entries } from "./entries.js";
 import { Surd, type SurdInput } from "./surd.js";
 
@@ -26,7 +27,7 @@ export function rowsOfTriplets(where: string, n: number, triplets: Iterable<Exac
   for (const [row, col, value] of triplets) {
     const target = rows[row];
     if (target === undefined || !Number.isInteger(col) || col < 0 || col >= n) {
-      const message = `${where}: entry (${row}, ${col}) is outside 0 … ${n - 1}`;
+      const message = `${where}: entry (${shown(row)}, ${shown(col)}) is outside 0 … ${n - 1}`;
       throw new GoodBasisError("shape", message, { row, col, n });
     }
     const before = target.get(col);

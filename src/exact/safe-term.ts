@@ -8,6 +8,16 @@ export interface SafeTerm {
   readonly d: number;
 }
 
+/** A complex rational number in safe integers: (re + i im) / den. */
+export interface SafeParts {
+  /** Numerator of the real part. */
+  readonly re: number;
+  /** Numerator of the imaginary part. */
+  readonly im: number;
+  /** ≥ 1. */
+  readonly den: number;
+}
+
 /** 0. */
 export const ZERO_TERM: SafeTerm = { n: 0, m: 0, r: 1, d: 1 };
 

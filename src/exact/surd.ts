@@ -1,14 +1,24 @@
 import { Fraction } from "fraction.js";
 import { GoodBasisError } from "../errors.js";
+import { requireArgument, shown } from "../misuse.js";
 import type { Complex } from "../numerics/complex.js";
 import { signOfReal } from "./bounds.js";
 import { dyadic } from "./dyadic.js";
 import { type Arithmetic, readExpression } from "./expression.js";
+import { isFraction } from "./fraction.js";
 import { bitLength, isSafe } from "./integer.js";
 import { invertTerms } from "./inverse.js";
 import { type SurdTextOptions, textOf } from "./print.js";
 import { roundReal } from "./round.js";
-import { addSafe, invertSafe, lowestTerm, multiplySafe, type SafeTerm, ZERO_TERM } from "./safe-term.js";
+import {
+  addSafe,
+  invertSafe,
+  lowestTerm,
+  multiplySafe,
+  type SafeParts,
+  type SafeTerm,
+  ZERO_TERM,
+} from "./safe-term.js";
 import {
   addTerms,
   imaginaryTerms,
@@ -18,31 +28,13 @@ import {
   oneTerm,
   realTerms,
   rootTerm,
+  type SurdTerm,
   type Terms,
 } from "./terms.js";
+import { zeroDivision } from "./zero-division.js";
 
 /** Everything that an exact number can be read from; a JavaScript number counts as the very double that it is. */
 export type SurdInput = Surd | Fraction | bigint | number | string | Complex;
-
-/** One term (re + i im) √root of a {@link Surd}. */
-export interface SurdTerm {
-  /** ≥ 1, not a square unless 1. */
-  readonly root: bigint;
-  /** Real part of the coefficient. */
-  readonly re: Fraction;
-  /** Imaginary part of the coefficient. */
-  readonly im: Fraction;
-}
-
-/** A complex rational number in safe integers: (re + i im) / den. */
-export interface SafeParts {
-  /** Numerator of the real part. */
-  readonly re: number;
-  /** Numerator of the imaginary part. */
-  readonly im: number;
-  /** ≥ 1. */
-  readonly den: number;
-}
 
 /** Binary digits that a power may have. */
 const MOST_POWER_BITS = 4_000_000;
@@ -57,7 +49,7 @@ const MOST_POWER_BITS = 4_000_000;
  * A number with a single term in safe integers, (n + i m) √r / d, stays in machine numbers; anything else holds big integers.
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { Surd } from "goodbasis";
  *
  * const c = Surd.from("sqrt(2/3)");
@@ -72,6 +64,9 @@ export class Surd {
   readonly #large: Terms | undefined;
 
   private constructor(safe: SafeTerm | undefined, large: Terms | undefined) {
+    if (typeof safe?.n !== "number" && typeof large?.den !== "bigint") {
+      throw new GoodBasisError("option", "Surd: make one with Surd.from, which takes text, numbers and fractions");
+    }
     this.#safe = safe;
     this.#large = large;
   }
@@ -95,7 +90,7 @@ export class Surd {
     if (typeof input === "number") return fromDouble(input);
     if (typeof input === "bigint") return Surd.ratio(input, 1n);
     if (typeof input === "string") return readExpression(input, ARITHMETIC);
-    if (input instanceof Fraction) return Surd.ratio(input.s * input.n, input.d);
+    if (isFraction(input)) return Surd.ratio(input.s * input.n, input.d);
     if (typeof input === "object" && input !== null && typeof input.re === "number" && typeof input.im === "number") {
       return fromDouble(input.re).plus(fromDouble(input.im).times(Surd.i));
     }
@@ -109,6 +104,14 @@ export class Surd {
    * @throws GoodBasisError `zero-division`
    */
   static ratio(numerator: bigint, denominator: bigint): Surd {
+    const whole = typeof numerator === "bigint" && typeof denominator === "bigint";
+    requireArgument(
+      whole,
+      "Surd.ratio",
+      "two big integers",
+      numerator,
+      "write them as 2n, or pass a text to Surd.from",
+    );
     if (denominator === 0n) throw zeroDivision("Surd.ratio", `${numerator}`);
     if (denominator > 0n && isSafe(numerator) && isSafe(denominator)) {
       return Surd.#ofSafe(lowestTerm(Number(numerator), 0, 1, Number(denominator)));
@@ -125,7 +128,7 @@ export class Surd {
     if (Number.isSafeInteger(re) && Number.isSafeInteger(im) && Number.isSafeInteger(den) && den >= 1) {
       return Surd.#ofSafe(lowestTerm(re, im, 1, den));
     }
-    const message = `Surd.fromSafe: expected whole numbers up to 2^53 over one from 1 on, got (${re} + ${im}i) / ${den}`;
+    const message = `Surd.fromSafe: expected whole numbers up to 2^53 over one from 1 on, got (${shown(re)} + ${shown(im)}i) / ${shown(den)}`;
     throw new GoodBasisError("option", message, { re, im, den });
   }
 
@@ -300,7 +303,9 @@ export class Surd {
    */
   power(exponent: number): Surd {
     if (!Number.isSafeInteger(exponent)) {
-      throw new GoodBasisError("option", `Surd.power: the exponent must be whole, got ${exponent}`, { exponent });
+      throw new GoodBasisError("option", `Surd.power: the exponent must be whole, got ${shown(exponent)}`, {
+        exponent,
+      });
     }
     if (exponent < 0) return this.inverse().power(-exponent);
     const { re, im, roots, den } = this.terms;
@@ -424,10 +429,6 @@ function fromDouble(x: number): Surd {
 function requireReal(where: string, x: Surd): void {
   if (x.isReal) return;
   throw new GoodBasisError("not-real", `${where}: expected a real number, got ${x.text()}; take .re, .im or a modulus`);
-}
-
-function zeroDivision(where: string, dividend: string): GoodBasisError {
-  return new GoodBasisError("zero-division", `${where}: ${dividend} is divided by zero; test with isZero first`);
 }
 
 const ARITHMETIC: Arithmetic<Surd> = {

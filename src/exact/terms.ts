@@ -1,7 +1,18 @@
+import type { Fraction } from "fraction.js";
 import { GoodBasisError } from "../errors.js";
 import { coprimeBase, overBase } from "./coprime-base.js";
 import { gcd } from "./integer.js";
 import { splitSquare } from "./squarefree.js";
+
+/** One term (re + i im) √root of a `Surd`. */
+export interface SurdTerm {
+  /** ≥ 1, not a square unless 1. */
+  readonly root: bigint;
+  /** Real part of the coefficient. */
+  readonly re: Fraction;
+  /** Imaginary part of the coefficient. */
+  readonly im: Fraction;
+}
 
 /**
  * A number in its general form: Σ_k (re_k + i im_k) √roots_k / den, all whole numbers.

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { isObject, requireArgument, shown } from "../misuse.js";
 import type { Complex } from "../numerics/complex.js";
 import { contentOf } from "./content.js";
 import { roundRoot } from "./round.js";
@@ -9,7 +10,7 @@ import { Surd, type SurdInput } from "./surd.js";
  * Immutable; components that are not stored are zero.
  *
  * @example
- * ```ts no-check
+ * ```ts
  * import { ExactVector } from "goodbasis";
  *
  * const singlet = ExactVector.from([0, 1, -1, 0]);
@@ -26,6 +27,7 @@ export class ExactVector {
   #squaredNorm: Surd | undefined;
 
   private constructor(n: number, index: Int32Array, values: readonly Surd[]) {
+    requireArgument(Array.isArray(values), "ExactVector", "what its makers give", n, "make one with ExactVector.from");
     this.n = n;
     this.index = index;
     this.values = values;
@@ -37,6 +39,7 @@ export class ExactVector {
    * @throws GoodBasisError what {@link Surd.from} throws
    */
   static from(components: readonly SurdInput[]): ExactVector {
+    requireArgument(Array.isArray(components), "ExactVector.from", "a list of numbers", components, "one for each ket");
     return ExactVector.fromEntries(
       components.length,
       components.map((value, k) => [k, value]),
@@ -49,10 +52,14 @@ export class ExactVector {
    * @throws GoodBasisError `shape` - an index outside 0 … n − 1; what {@link Surd.from} throws
    */
   static fromEntries(n: number, entries: Iterable<readonly [index: number, value: SurdInput]>): ExactVector {
+    requirePairs("ExactVector.fromEntries", n, entries);
     const sums = new Map<number, Surd>();
     for (const [k, value] of entries) {
       if (!Number.isInteger(k) || k < 0 || k >= n) {
-        throw new GoodBasisError("shape", `ExactVector: component ${k} is outside 0 … ${n - 1}`, { index: k, n });
+        throw new GoodBasisError("shape", `ExactVector: component ${shown(k)} is outside 0 … ${n - 1}`, {
+          index: k,
+          n,
+        });
       }
       const before = sums.get(k);
       const number = Surd.from(value);
@@ -83,6 +90,8 @@ export class ExactVector {
    * @throws GoodBasisError `shape`
    */
   static combination(vectors: readonly ExactVector[], coefficients: ExactVector): ExactVector {
+    const vectorsOnly = Array.isArray(vectors) && [...vectors, coefficients].every((v) => v instanceof ExactVector);
+    requireArgument(vectorsOnly, "ExactVector.combination", "ExactVectors", vectors, "make them with ExactVector.from");
     const [first] = vectors;
     if (first === undefined || coefficients.n !== vectors.length) {
       const message = `ExactVector.combination: ${vectors.length} vectors and ${coefficients.n} coefficients; give one for each`;
@@ -91,8 +100,9 @@ export class ExactVector {
     return vectors.reduce((sum, vector, k) => sum.plus(vector, coefficients.component(k)), first.scale(0));
   }
 
-  /** Component k; zero where none is stored. */
+  /** Component k; zero where none is stored. @throws GoodBasisError `option` - no number */
   component(k: number): Surd {
+    requireArgument(typeof k === "number", "ExactVector.component", "the number of a ket", k, "counted from 0");
     let low = 0;
     let high = this.index.length;
     while (low < high) {
@@ -206,12 +216,23 @@ export class ExactVector {
 
   /** Whether both are the same vector, scale included. */
   equals(other: ExactVector): boolean {
-    return this.n === other.n && this.minus(other).isZero;
+    return other instanceof ExactVector && this.n === other.n && this.minus(other).isZero;
   }
 
   #requireSame(where: string, other: ExactVector): void {
+    const next = "make one with ExactVector.from";
+    requireArgument(other instanceof ExactVector, `ExactVector.${where}`, "an ExactVector", other, next);
     if (this.n === other.n) return;
     const message = `ExactVector.${where}: vectors over ${this.n} and ${other.n} kets; both must have the same number`;
     throw new GoodBasisError("shape", message, { n: this.n, other: other.n });
   }
+}
+
+/** Refuses what is no number of kets with a list of pairs, before anything in it is looked at. */
+function requirePairs(verb: string, n: unknown, entries: unknown): void {
+  requireArgument(typeof n === "number" && n >= 0, verb, "a number of kets", n, "the length of the vector");
+  const pairs = isObject(entries) && Symbol.iterator in entries;
+  requireArgument(pairs, verb, "pairs [ket, number]", entries, "in any order");
+  if (Array.isArray(entries))
+    requireArgument(entries.every(Array.isArray), verb, "pairs [ket, number]", entries, "in any order");
 }

@@ -1,7 +1,9 @@
 import { GoodBasisError } from "../errors.js";
+import type { ExactTriplet } from "../exact/rows.js";
 import { shown } from "../misuse.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
+import { wholeRoot } from "./roots.js";
 
 /** The operators of one angular momentum, in units of ħ. */
 export interface AngularMomentum {
@@ -27,7 +29,8 @@ export interface AngularMomentum {
  * The operators of an angular momentum j on its 2j + 1 kets |j m⟩, m = +j first, then descending to −j.
  *
  * Condon–Shortley phases: J± |m⟩ = √(j(j + 1) − m(m ± 1)) |m ± 1⟩ with the positive root (Condon and Shortley, The Theory of
- * Atomic Spectra, 1935, ch. III). Roots that are whole or half numbers are exact, others carry half a unit in the last place.
+ * Atomic Spectra, 1935, ch. III). Roots that are whole or half numbers are exact, others carry half a unit in the last place; all
+ * are known exactly, see {@link Operator.exact}.
  *
  * @param j - 0, 1/2, 1, 3/2, …
  * @throws GoodBasisError `option` - j is not a whole or half number from 0 to below 2^20
@@ -44,10 +47,10 @@ export function angularMomentum(j: number): AngularMomentum {
   const n = multiplicity("angularMomentum", j);
   const ladder = new EntryList(n);
   for (let k = 1; k < n; k++) {
-    const { value, radius } = ladderElement(j, k);
+    const { value, radius } = exactRoot(ladderSquare(j, k));
     ladder.add(k - 1, k, value, 0, radius);
   }
-  const plus = ladder.finish("angularMomentum");
+  const plus = ladder.finish("angularMomentum", () => ladderTriplets(j, n));
   const minus = plus.adjoint();
   const m = Float64Array.from({ length: n }, (_, k) => j - k);
   return {
@@ -62,10 +65,13 @@ export function angularMomentum(j: number): AngularMomentum {
   };
 }
 
-/** ⟨j, m + 1| J₊ |j, m⟩ for m = j − k, with its radius. */
-function ladderElement(j: number, k: number): { value: number; radius: number } {
-  // j(j + 1) − m(m + 1) = k (2j + 1 − k) in whole numbers.
-  return exactRoot(k * (2 * j + 1 - k));
+/** ⟨j, m + 1| J₊ |j, m⟩² for m = j − k: j(j + 1) − m(m + 1) = k (2j + 1 − k), a whole number. */
+function ladderSquare(j: number, k: number): number {
+  return k * (2 * j + 1 - k);
+}
+
+function* ladderTriplets(j: number, n: number): Generator<ExactTriplet> {
+  for (let k = 1; k < n; k++) yield [k - 1, k, wholeRoot(ladderSquare(j, k))];
 }
 
 /**

@@ -1,8 +1,11 @@
 import { GoodBasisError } from "../errors.js";
+import type { ExactTriplet } from "../exact/rows.js";
+import { Surd } from "../exact/surd.js";
 import { shown } from "../misuse.js";
 import { gamma } from "../numerics/rounding.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
+import { wholeRoot } from "./roots.js";
 
 /** Operators of a harmonic oscillator on its lowest kets |0⟩, |1⟩, …, in its natural units (ħ = m = ω = 1). */
 export interface Oscillator {
@@ -34,7 +37,7 @@ export interface Oscillator {
  * Operators of a harmonic oscillator on its lowest kets; ⟨k + 1| a† |k⟩ = +√(k + 1) (Messiah, Quantum Mechanics I, ch. XII).
  *
  * The space is truncated: [a, a†] = 1 fails at the last ket, and results for high levels belong to the matrix, not to the
- * oscillator.
+ * oscillator. All elements are known exactly, see {@link Operator.exact}.
  *
  * @param levels - number of kets, at least 1
  * @throws GoodBasisError `option` - not a positive whole number
@@ -65,18 +68,31 @@ export function oscillator(levels: number): Oscillator {
     momentum.add(k - 1, k, 0, -half.value, half.radius);
     momentum.add(k, k - 1, 0, half.value, half.radius);
   }
-  const a = lower.finish("oscillator");
+  const a = lower.finish("oscillator", () => steps(levels, (root) => [root, undefined]));
   const numbers = Array.from({ length: levels }, (_, k) => k);
   return {
     n: levels,
     a,
     adagger: a.adjoint(),
     number: Operator.diagonal(numbers, { uncertainty: "exact" }),
-    x: position.finish("oscillator"),
-    p: momentum.finish("oscillator"),
+    x: position.finish("oscillator", () => steps(levels, (root) => [root.over(SQRT2), root.over(SQRT2)])),
+    p: momentum.finish("oscillator", () =>
+      steps(levels, (root) => [root.over(SQRT2).times("-i"), root.over(SQRT2).times("i")]),
+    ),
     xPower: (power) => xPower(levels, power),
     kets: numbers.map(String),
   };
+}
+
+const SQRT2: Surd = Surd.from("sqrt(2)");
+
+/** The exact elements ⟨k − 1|…|k⟩ and, where there is one, ⟨k|…|k − 1⟩ of an operator, made from √k. */
+function* steps(levels: number, elements: (root: Surd) => readonly [Surd, Surd | undefined]): Generator<ExactTriplet> {
+  for (let k = 1; k < levels; k++) {
+    const [down, up] = elements(wholeRoot(k));
+    yield [k - 1, k, down];
+    if (up !== undefined) yield [k, k - 1, up];
+  }
 }
 
 /**
@@ -88,6 +104,22 @@ function xPower(levels: number, power: number): Operator {
     throw new GoodBasisError("option", `xPower: the power must be 0, 1, …, 64, got ${shown(power)}`, { power });
   }
   const list = new EntryList(levels);
+  for (const { row, col, whole } of wholeElements(levels, power)) {
+    const { value, radius } = element(whole, col, row, power);
+    list.add(row, col, value, 0, radius);
+    if (row !== col) list.add(col, row, value, 0, radius);
+  }
+  return list.finish("xPower", () => exactElements(levels, power));
+}
+
+/** An element N_kl with k ≥ l: row k, column l. */
+interface WholeElement {
+  readonly row: number;
+  readonly col: number;
+  readonly whole: bigint;
+}
+
+function* wholeElements(levels: number, power: number): Generator<WholeElement> {
   for (let l = 0; l < levels; l++) {
     let column = new Map<number, bigint>([[l, 1n]]);
     for (let step = 0; step < power; step++) {
@@ -100,13 +132,20 @@ function xPower(levels: number, power: number): Operator {
     }
     for (let k = l; k < Math.min(levels, l + power + 1); k++) {
       const whole = column.get(k);
-      if (whole === undefined) continue;
-      const { value, radius } = element(whole, l, k, power);
-      list.add(k, l, value, 0, radius);
-      if (k !== l) list.add(l, k, value, 0, radius);
+      if (whole !== undefined) yield { row: k, col: l, whole };
     }
   }
-  return list.finish("xPower");
+}
+
+/** 2^{−power/2} N √(k!/l!), one factor of the root after the other, so that no large number need be searched for squares. */
+function* exactElements(levels: number, power: number): Generator<ExactTriplet> {
+  const unit = Surd.sqrt(Surd.from("1/2").power(power)) ?? Surd.zero;
+  for (const { row, col, whole } of wholeElements(levels, power)) {
+    let value = unit.times(whole);
+    for (let m = col + 1; m <= row; m++) value = value.times(wholeRoot(m));
+    yield [row, col, value];
+    if (row !== col) yield [col, row, value];
+  }
 }
 
 /** 2^{−power/2} N √(k!/l!) for k ≥ l: at most four roundings, none where all factors and the root are short. */

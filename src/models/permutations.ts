@@ -1,6 +1,7 @@
 import { GoodBasisError } from "../errors.js";
+import type { SurdInput } from "../exact/surd.js";
 import { shown } from "../misuse.js";
-import type { Scalar } from "../numerics/complex.js";
+import { readKnown } from "../operator/known.js";
 import { Operator } from "../operator/operator.js";
 import { readPermutation } from "../operator/read.js";
 
@@ -8,8 +9,8 @@ import { readPermutation } from "../operator/read.js";
  * The operator that sends ket j to ket `map[j]`, times `phases[j]` where phases are given.
  *
  * @param map - a permutation of 0 … n − 1
- * @param phases - one factor a ket
- * @throws GoodBasisError `shape`, `not-finite`
+ * @param phases - one factor a ket: numbers, `{ re, im }`, or exact ones such as `"i"`, `"(1+i)/sqrt(2)"`
+ * @throws GoodBasisError `shape`, `not-finite`, `text`, `zero-division`
  *
  * @example
  * ```ts
@@ -19,9 +20,10 @@ import { readPermutation } from "../operator/read.js";
  * console.log(parity.isDiagonal, parity.kind); // true hermitian
  * ```
  */
-export function ketPermutation(map: ArrayLike<number>, phases?: readonly Scalar[]): Operator {
-  const { csr, radius } = readPermutation("ketPermutation", map, phases);
-  return Operator.fromCsr(csr, radius);
+export function ketPermutation(map: ArrayLike<number>, phases?: readonly SurdInput[]): Operator {
+  const { core, companion } = readKnown("ketPermutation", { permutation: map, phases }, undefined);
+  const operator = Operator.fromCsr(core.csr, core.radius);
+  return companion === undefined ? operator : Operator.withExact(operator, () => companion.value);
 }
 
 /**

@@ -1,4 +1,5 @@
 import { GoodBasisError } from "../errors.js";
+import { ExactOperator } from "../exact/operator.js";
 import { shown } from "../misuse.js";
 import type { Csr } from "../numerics/csr.js";
 import { Operator } from "../operator/operator.js";
@@ -86,11 +87,13 @@ function embed(sizes: readonly number[], operator: Operator, position: number): 
   const { csr, order } = repeat(operator.csr, left, right);
   const own = operator.radius;
   if (operator.isExact) return Operator.fromCsr(csr, "exact");
-  if (own === undefined) return Operator.fromCsr(csr);
-  return Operator.fromCsr(
-    csr,
-    Float64Array.from(order, (e) => own[e] as number),
-  );
+  const radius = own === undefined ? "default" : Float64Array.from(order, (e) => own[e] as number);
+  const embedded = Operator.fromCsr(csr, radius);
+  if (!operator.isKnownExactly) return embedded;
+  return Operator.withExact(embedded, () => {
+    const exact = operator.exact ?? ExactOperator.zero(size);
+    return ExactOperator.identity(left).kron(exact).kron(ExactOperator.identity(right));
+  });
 }
 
 /** 1 ⊗ A ⊗ 1 with identities of the given dimensions, and where each entry came from. */

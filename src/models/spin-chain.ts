@@ -1,9 +1,11 @@
 import { GoodBasisError } from "../errors.js";
+import type { ExactTriplet } from "../exact/rows.js";
 import { shown } from "../misuse.js";
 import { EntryList, exactRoot } from "../operator/builder.js";
 import { Operator } from "../operator/operator.js";
 import { type AngularMomentum, angularMomentum, halfText, multiplicity } from "./angular-momentum.js";
 import { type ProductSpace, productSpace } from "./product-space.js";
+import { wholeRoot } from "./roots.js";
 
 /** Operators of a chain or ring of equal spins. Sites are counted from 0; site 0 is the slowest index. */
 export interface SpinChain {
@@ -118,19 +120,24 @@ function szsz(n: number, d: number, j: number, wi: number, wk: number): Operator
 }
 
 function exchange(n: number, d: number, wi: number, wk: number): Operator {
-  // Digit a at one site goes down by one and digit b at the other up by one: the root of a (d − a) (b + 1)(d − 1 − b), halved.
   const list = new EntryList(n);
+  for (const { row, col, square } of flips(n, d, wi, wk)) {
+    const { value, radius } = exactRoot(square);
+    list.add(row, col, value / 2, 0, radius / 2);
+  }
+  return list.finish("exchange", () => exactFlips(n, d, wi, wk));
+}
+
+/** Digit a at one site goes down by one and digit b at the other up by one: the root of a (d − a) (b + 1)(d − 1 − b), halved. */
+function* flips(n: number, d: number, wi: number, wk: number): Generator<{ row: number; col: number; square: number }> {
   for (let ket = 0; ket < n; ket++) {
     const a = Math.floor(ket / wi) % d;
     const b = Math.floor(ket / wk) % d;
-    if (a > 0 && b < d - 1) {
-      const { value, radius } = exactRoot(a * (d - a) * (b + 1) * (d - 1 - b));
-      list.add(ket - wi + wk, ket, value / 2, 0, radius / 2);
-    }
-    if (b > 0 && a < d - 1) {
-      const { value, radius } = exactRoot(b * (d - b) * (a + 1) * (d - 1 - a));
-      list.add(ket + wi - wk, ket, value / 2, 0, radius / 2);
-    }
+    if (a > 0 && b < d - 1) yield { row: ket - wi + wk, col: ket, square: a * (d - a) * (b + 1) * (d - 1 - b) };
+    if (b > 0 && a < d - 1) yield { row: ket + wi - wk, col: ket, square: b * (d - b) * (a + 1) * (d - 1 - a) };
   }
-  return list.finish("exchange");
+}
+
+function* exactFlips(n: number, d: number, wi: number, wk: number): Generator<ExactTriplet> {
+  for (const { row, col, square } of flips(n, d, wi, wk)) yield [row, col, wholeRoot(square).over(2)];
 }

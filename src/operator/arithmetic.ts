@@ -102,7 +102,7 @@ export function uncertainAdjoint(a: Uncertain): Uncertain {
 }
 
 /** A ⊗ B with radii |a| r_b + r_a |b| + r_a r_b and one rounding; none where a factor has entries ±2^k, ±i 2^k only. */
-export function uncertainKron(a: Uncertain, b: Uncertain): Uncertain {
+export function uncertainKron(a: Uncertain, b: Uncertain, verb = "kron"): Uncertain {
   const csr = kron(a.csr, b.csr);
   const exact = isExactKron(a.csr, b.csr);
   const complex = a.csr.im !== undefined && b.csr.im !== undefined;
@@ -111,7 +111,7 @@ export function uncertainKron(a: Uncertain, b: Uncertain): Uncertain {
   const ub = uniformError(b.radius);
   if (exact && ua !== undefined && ub !== undefined && (ua === 0 || ub === 0)) {
     const radius: Radius = ua === 0 && ub === 0 ? "exact" : "default";
-    return settle("kron", csr, radius);
+    return settle(verb, csr, radius);
   }
   const out = new Float64Array(csr.col.length);
   const aCount = a.csr.rows;
@@ -129,7 +129,7 @@ export function uncertainKron(a: Uncertain, b: Uncertain): Uncertain {
       }
     }
   }
-  return settle("kron", csr, out);
+  return settle(verb, csr, out);
 }
 
 function isExactKron(a: Csr, b: Csr): boolean {

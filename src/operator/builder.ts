@@ -1,3 +1,5 @@
+import { ExactOperator } from "../exact/operator.js";
+import type { ExactTriplet } from "../exact/rows.js";
 import { roundUp, UNIT_ROUNDOFF } from "../numerics/rounding.js";
 import { fromTriplets } from "../numerics/sparse.js";
 import { Operator } from "./operator.js";
@@ -44,8 +46,12 @@ export class EntryList {
     this.#radius.push(radius);
   }
 
-  /** The operator; a place that was given twice holds the sum, with both radii and the rounding of the sum. */
-  finish(verb: string): Operator {
+  /**
+   * The operator; a place that was given twice holds the sum, with both radii and the rounding of the sum.
+   *
+   * @param exact - makes the triplets of exact entries, in any order, where they are known
+   */
+  finish(verb: string, exact?: () => Iterable<ExactTriplet>): Operator {
     const n = this.#n;
     const csr = fromTriplets(n, n, this.#rows, this.#cols, this.#re, this.#im);
     const radius = fromTriplets(n, n, this.#rows, this.#cols, this.#radius).re;
@@ -66,6 +72,7 @@ export class EntryList {
       }
     }
     const core = settle(verb, csr, radius);
-    return Operator.fromCsr(core.csr, core.radius);
+    const operator = Operator.fromCsr(core.csr, core.radius);
+    return exact === undefined ? operator : Operator.withExact(operator, () => ExactOperator.fromTriplets(n, exact()));
   }
 }

@@ -1,6 +1,7 @@
 import { GoodBasisError } from "../errors.js";
 import { isObject, requireOptions, shown } from "../misuse.js";
 import { type Complex, imaginaryPart, isScalar, realPart } from "../numerics/complex.js";
+import type { Csr } from "../numerics/csr.js";
 
 /** What plain JavaScript may hand to the methods of an operator, refused with an error that says what belongs there. */
 
@@ -35,6 +36,31 @@ function isRows(csr: unknown): csr is { rows: number; cols: number; col: Int32Ar
 
 function isRadius(radius: unknown, count: number): boolean {
   return radius === "default" || radius === "exact" || (radius instanceof Float64Array && radius.length === count);
+}
+
+/**
+ * Refuses what is no frame of vectors with n components, one a row.
+ *
+ * @throws GoodBasisError `shape`
+ */
+export function requireFrame(verb: string, frame: Csr, n: number): void {
+  requireRows({ csr: frame, radius: "exact" }, verb);
+  if (frame.cols === n && frame.rows !== 0) return;
+  const message = `${verb}: expected a frame of vectors with ${n} components, got ${frame.rows} × ${frame.cols}`;
+  throw new GoodBasisError("shape", message, { rows: frame.rows, cols: frame.cols, n });
+}
+
+/**
+ * Refuses an operand that is no operator, or acts on other kets.
+ *
+ * @param isOperator - whether it is one
+ * @throws GoodBasisError `shape`
+ */
+export function requireSame(verb: string, own: { n: number }, other: { n: number }, isOperator: boolean): void {
+  if (!isOperator) throw wrongOperand(verb, other);
+  if (other.n === own.n) return;
+  const message = `${verb}: the operators act on ${own.n} and ${other.n} kets; both need the same kets`;
+  throw new GoodBasisError("shape", message, { left: own.n, right: other.n });
 }
 
 /** The error for an operand that is no operator. */

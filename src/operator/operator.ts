@@ -1,34 +1,32 @@
 import { Matrix } from "ml-matrix";
 import { GoodBasisError } from "../errors.js";
-import { shown } from "../misuse.js";
-import type { Complex, Scalar } from "../numerics/complex.js";
+import { ExactOperator } from "../exact/operator.js";
+import type { SurdInput } from "../exact/surd.js";
+import type { Complex } from "../numerics/complex.js";
 import type { Csr } from "../numerics/csr.js";
 import type { Dense } from "../numerics/dense.js";
 import { toDense, valueAt } from "../numerics/sparse.js";
-import { pairwise, uncertainAdjoint, uncertainKron, uncertainScale, uncertainSum } from "./arithmetic.js";
-import { requireIndex, requireOperatorOptions, requireRows, requireScalar, wrongOperand } from "./checks.js";
+import { pairwise, uncertainAdjoint, uncertainKron, uncertainSum } from "./arithmetic.js";
+import { requireFrame, requireIndex, requireOperatorOptions, requireSame, wrongOperand } from "./checks.js";
+import * as exactly from "./companion.js";
+import { Companion } from "./companion.js";
+import type { ExactData, ExactEntry } from "./exact-input.js";
 import { hashOf } from "./hash.js";
+import { readKnown, scaleKnown } from "./known.js";
+import { powerOf } from "./power.js";
 import { isDenselyFilled, uncertainCommutator, uncertainProduct } from "./products.js";
 import { type Radius, radiiOf, type Uncertain } from "./radius.js";
-import {
-  type MatrixData,
-  readDiagonal,
-  readMatrix,
-  readPermutation,
-  readTriplets,
-  requireDimension,
-  type Triplet,
-  type Uncertainty,
-  withUncertainty,
-} from "./read.js";
-import { restrictTo } from "./restrict.js";
-import { Sizes } from "./sizes.js";
-import { type HermitianDefect, hermitianPart } from "./structure.js";
-import { Traits } from "./traits.js";
+import { type MatrixData, requireDimension, type Triplet, type Uncertainty, withUncertainty } from "./read.js";
+import { restrictExactly, restrictTo } from "./restrict.js";
+import { hermitianPart } from "./structure.js";
+import { Structured } from "./structured.js";
 
 /** Options of {@link Operator.from} and its relatives. */
 export interface OperatorOptions {
-  /** How well the entries are known; half a unit in the last place of each when not given. */
+  /**
+   * How well the entries are known; half a unit in the last place of each when not given. `"exact"` leaves an operator that is known
+   * exactly as it is; any other uncertainty ends that.
+   */
   readonly uncertainty?: Uncertainty | undefined;
 }
 
@@ -49,33 +47,41 @@ export interface OperatorOptions {
  * console.log(y.entry(0, 1).im, y.isHermitian, y.error); // -1 true 0
  * ```
  */
-export class Operator {
+export class Operator extends Structured {
   readonly #core: Uncertain;
-  readonly #traits: Traits;
-  readonly #sizes: Sizes;
+  #companion: Companion | undefined;
   #radii: Float64Array | undefined;
   #dense: Dense | undefined;
   #hash: string | undefined;
 
-  private constructor(core: Uncertain) {
-    requireRows(core);
+  private constructor(core: Uncertain, companion?: Companion) {
+    super(core);
     this.#core = core;
-    this.#traits = new Traits(core);
-    this.#sizes = new Sizes(core);
+    this.#companion = companion;
   }
 
   /**
    * Reads a matrix of any accepted form; an operator is returned as it is, unless an uncertainty is stated.
    *
+   * A matrix that holds text such as `"sqrt(2/3)"` or `"1/2"`, a `Surd`, `Fraction` or big integer is exact, every entry of it: its
+   * doubles are correctly rounded, and {@link exact} has the numbers themselves. Plain numbers count as the doubles that they are there.
+   *
    * @param input - the matrix; arrays are copied
    * @param options - how well its entries are known
-   * @throws GoodBasisError `shape`, `not-finite`, `option`
+   * @throws GoodBasisError `shape`, `not-finite`, `option`; `text`, `zero-division` - an exact entry, with its place
    */
-  static from(input: Operator | MatrixData, options: OperatorOptions = {}): Operator {
-    requireOperatorOptions("Operator.from", options);
-    if (input instanceof Operator && options.uncertainty === undefined) return input;
-    const core = input instanceof Operator ? input.#core : readMatrix("Operator.from", input);
-    return new Operator(withUncertainty("Operator.from", core, options.uncertainty));
+  static from(input: Operator | ExactOperator | MatrixData | ExactData, options: OperatorOptions = {}): Operator {
+    const verb = "Operator.from";
+    requireOperatorOptions(verb, options);
+    if (!(input instanceof Operator)) return Operator.#read(verb, input, options);
+    if (options.uncertainty === undefined) return input;
+    const stated = withUncertainty(verb, input.#core, options.uncertainty);
+    return stated.radius === "exact" && input.isKnownExactly ? input : new Operator(stated);
+  }
+
+  static #read(verb: string, input: unknown, { uncertainty }: OperatorOptions): Operator {
+    const { core, companion } = readKnown(verb, input, uncertainty);
+    return new Operator(core, companion);
   }
 
   /**
@@ -90,14 +96,27 @@ export class Operator {
   }
 
   /**
+   * The same operator, known to be the rounded form of an exact one; the builders know theirs.
+   *
+   * @internal
+   */
+  static withExact(operator: Operator, make: () => ExactOperator): Operator {
+    if (!(operator instanceof Operator)) throw wrongOperand("Operator.withExact", operator);
+    return operator.isExact ? operator : new Operator(operator.#core, Companion.of(make));
+  }
+
+  /**
    * The operator of the given triplets `[row, col, re, im?]`, 0-based; those of the same place are summed.
    *
-   * @throws GoodBasisError `shape`, `not-finite`, `option`
+   * @throws GoodBasisError what {@link Operator.from} throws
    */
-  static fromTriplets(n: number, entries: readonly Triplet[], options: OperatorOptions = {}): Operator {
-    const verb = "Operator.fromTriplets";
-    requireOperatorOptions(verb, options);
-    return new Operator(withUncertainty(verb, readTriplets(verb, n, entries), options.uncertainty));
+  static fromTriplets(
+    n: number,
+    entries: readonly (Triplet | readonly [row: number, col: number, value: ExactEntry])[],
+    options: OperatorOptions = {},
+  ): Operator {
+    requireOperatorOptions("Operator.fromTriplets", options);
+    return Operator.#read("Operator.fromTriplets", { n, entries }, options);
   }
 
   /**
@@ -121,27 +140,25 @@ export class Operator {
   }
 
   /**
-   * The diagonal operator of the given real numbers.
+   * The diagonal operator of the given numbers: real ones, or exact ones.
    *
-   * @throws GoodBasisError `shape`, `not-finite`, `option`
+   * @throws GoodBasisError what {@link Operator.from} throws
    */
-  static diagonal(values: ArrayLike<number>, options: OperatorOptions = {}): Operator {
-    const verb = "Operator.diagonal";
-    requireOperatorOptions(verb, options);
-    return new Operator(withUncertainty(verb, readDiagonal(verb, values), options.uncertainty));
+  static diagonal(values: ArrayLike<number> | readonly ExactEntry[], options: OperatorOptions = {}): Operator {
+    requireOperatorOptions("Operator.diagonal", options);
+    return Operator.#read("Operator.diagonal", { diagonal: values }, options);
   }
 
   /**
-   * The operator that sends ket j to `phases[j]` times ket `map[j]`; exact where the phases are ±1 and ±i.
+   * The operator that sends ket j to `phases[j]` times ket `map[j]`; exact where the phases are ±1 and ±i, or exact numbers.
    *
    * @param map - a permutation of 0 … n − 1
    * @param phases - one factor for each ket, 1 when not given
-   * @throws GoodBasisError `shape`, `not-finite`, `option`
+   * @throws GoodBasisError what {@link Operator.from} throws
    */
-  static permutation(map: ArrayLike<number>, phases?: readonly Scalar[], options: OperatorOptions = {}): Operator {
-    const verb = "Operator.permutation";
-    requireOperatorOptions(verb, options);
-    return new Operator(withUncertainty(verb, readPermutation(verb, map, phases), options.uncertainty));
+  static permutation(map: ArrayLike<number>, phases?: readonly SurdInput[], options: OperatorOptions = {}): Operator {
+    requireOperatorOptions("Operator.permutation", options);
+    return Operator.#read("Operator.permutation", { permutation: map, phases }, options);
   }
 
   /**
@@ -182,48 +199,38 @@ export class Operator {
     return this.#radii;
   }
 
-  /** Whether every radius is zero. */
+  /** Whether every radius is zero: the doubles are the numbers themselves. */
   get isExact(): boolean {
     return this.#core.radius === "exact";
+  }
+
+  /** Whether the operator is known exactly, so that {@link exact} has it; asking costs nothing. */
+  get isKnownExactly(): boolean {
+    return this.isExact || this.#companion !== undefined;
+  }
+
+  /**
+   * The same operator in exact arithmetic, where it is known exactly: given so, built so, or made of such operators by the algebra of
+   * this class. Computed when first asked for. Undefined as soon as one operand was not exact.
+   *
+   * @throws GoodBasisError `budget` - a product outgrows the default budget of exact arithmetic
+   *
+   * @example
+   * ```ts
+   * import { Operator } from "goodbasis";
+   *
+   * const x = Operator.from([[0, "sqrt(2/3)"], ["sqrt(2/3)", 0]]);
+   * console.log(x.entry(0, 1).re, x.power(2).exact?.entry(0, 0).text()); // 0.816496580927726 2/3
+   * ```
+   */
+  get exact(): ExactOperator | undefined {
+    return this.#known?.value;
   }
 
   /** The entries as dense row-major arrays (`im` undefined for a real operator), made once; read-only. */
   dense(): Dense {
     this.#dense ??= toDense(this.#core.csr);
     return this.#dense;
-  }
-
-  /** A rigorous upper bound on the 2-norm of the matrix of moduli, hence on the 2-norm; the radii are not included. */
-  get norm(): number {
-    return this.#sizes.norm;
-  }
-
-  /** A rigorous lower bound on the 2-norm of every matrix within the radii. */
-  get normAtLeast(): number {
-    return this.#sizes.normAtLeast;
-  }
-
-  /**
-   * A rigorous lower bound on ‖A − tr A/n‖₂ for every matrix within the radii: how much of the operator can tell states apart, since
-   * a multiple of 1 couples nothing and commutes with everything.
-   */
-  get variation(): number {
-    return this.#sizes.variation;
-  }
-
-  /** A rigorous upper bound on the 2-norm of the matrix of radii. */
-  get error(): number {
-    return this.#sizes.error;
-  }
-
-  /** The Frobenius norm, not rounded up. */
-  get frobenius(): number {
-    return this.#sizes.frobenius;
-  }
-
-  /** The largest number of stored entries in a row. */
-  get rowEntries(): number {
-    return this.#sizes.rowEntries;
   }
 
   /** SHA-256, in hexadecimal, over dimension, pattern, values and radii. */
@@ -238,8 +245,8 @@ export class Operator {
    * @throws GoodBasisError `shape` - different dimensions; `not-finite` - overflow
    */
   plus(other: Operator): Operator {
-    this.#requireSame("plus", other);
-    return new Operator(uncertainSum(this.#core, other.#core, 1));
+    requireSame("plus", this, other, other instanceof Operator);
+    return this.#made(uncertainSum(this.#core, other.#core, 1), exactly.plus, other);
   }
 
   /**
@@ -248,17 +255,19 @@ export class Operator {
    * @throws GoodBasisError `shape` - different dimensions; `not-finite` - overflow
    */
   minus(other: Operator): Operator {
-    this.#requireSame("minus", other);
-    return other === this ? Operator.zero(this.n) : new Operator(uncertainSum(this.#core, other.#core, -1));
+    requireSame("minus", this, other, other instanceof Operator);
+    if (other === this) return Operator.zero(this.n);
+    return this.#made(uncertainSum(this.#core, other.#core, -1), exactly.minus, other);
   }
 
   /**
-   * z A for a real or complex number, which counts as the very number that it is.
+   * z A for a real or complex number, which counts as the very number that it is, or for an exact one such as `"1/3"`.
    *
-   * @throws GoodBasisError `not-finite` - the factor is not finite, or overflow
+   * @throws GoodBasisError `option` - no number; `not-finite` - the factor is not finite, or overflow; `text`, `zero-division`
    */
-  scale(factor: Scalar): Operator {
-    return new Operator(uncertainScale(this.#core, requireScalar("scale", factor)));
+  scale(factor: SurdInput): Operator {
+    const { core, companion } = scaleKnown(this.#core, this.#known, factor);
+    return new Operator(core, core.radius === "exact" ? undefined : companion);
   }
 
   /**
@@ -267,13 +276,13 @@ export class Operator {
    * @throws GoodBasisError `shape` - different dimensions; `not-finite` - overflow
    */
   times(other: Operator): Operator {
-    this.#requireSame("times", other);
-    return new Operator(uncertainProduct(this.#core, other.#core));
+    requireSame("times", this, other, other instanceof Operator);
+    return this.#made(uncertainProduct(this.#core, other.#core), exactly.times, other);
   }
 
   /** The adjoint A†. */
   adjoint(): Operator {
-    return new Operator(uncertainAdjoint(this.#core));
+    return this.#made(uncertainAdjoint(this.#core), exactly.adjoint);
   }
 
   /**
@@ -283,7 +292,7 @@ export class Operator {
    */
   kron(other: Operator): Operator {
     if (!(other instanceof Operator)) throw wrongOperand("kron", other);
-    return new Operator(uncertainKron(this.#core, other.#core));
+    return this.#made(uncertainKron(this.#core, other.#core), exactly.kron, other);
   }
 
   /**
@@ -293,16 +302,7 @@ export class Operator {
    * @throws GoodBasisError `option` - not a whole number from 0 on; `not-finite` - overflow
    */
   power(exponent: number): Operator {
-    if (!Number.isInteger(exponent) || exponent < 0) {
-      throw new GoodBasisError("option", `power: the exponent must be 0, 1, 2, …, got ${shown(exponent)}`, {
-        exponent,
-      });
-    }
-    if (exponent === 0) return Operator.identity(this.n);
-    if (exponent === 1) return this;
-    const half = this.power(Math.floor(exponent / 2));
-    const square = half.times(half);
-    return exponent % 2 === 0 ? square : square.times(this);
+    return exponent === 0 ? Operator.identity(this.n) : powerOf<Operator>(this, exponent);
   }
 
   /**
@@ -311,8 +311,9 @@ export class Operator {
    * @throws GoodBasisError `shape` - different dimensions; `not-finite` - overflow
    */
   commutator(other: Operator): Operator {
-    this.#requireSame("commutator", other);
-    return other === this ? Operator.zero(this.n) : new Operator(uncertainCommutator(this.#core, other.#core));
+    requireSame("commutator", this, other, other instanceof Operator);
+    if (other === this) return Operator.zero(this.n);
+    return this.#made(uncertainCommutator(this.#core, other.#core), exactly.commutator, other);
   }
 
   /**
@@ -321,7 +322,7 @@ export class Operator {
    * @throws GoodBasisError `shape` - different dimensions; `not-finite` - overflow
    */
   anticommutator(other: Operator): Operator {
-    this.#requireSame("anticommutator", other);
+    requireSame("anticommutator", this, other, other instanceof Operator);
     return this.times(other).plus(other.times(this));
   }
 
@@ -332,18 +333,16 @@ export class Operator {
    * @throws GoodBasisError `shape` - another number of columns, or no row
    */
   restrict(frame: Csr): Operator {
-    requireRows({ csr: frame, radius: "exact" }, "restrict");
-    if (frame.cols !== this.n || frame.rows === 0) {
-      const message = `restrict: expected a frame of vectors with ${this.n} components, got ${frame.rows} × ${frame.cols}`;
-      throw new GoodBasisError("shape", message, { rows: frame.rows, cols: frame.cols, n: this.n });
-    }
-    return new Operator(restrictTo(this.#core, frame));
+    requireFrame("restrict", frame, this.n);
+    const core = restrictTo(this.#core, frame);
+    const exact = core.radius === "exact" || !this.isKnownExactly ? undefined : restrictExactly(frame);
+    return exact === undefined ? new Operator(core) : this.#made(core, exact);
   }
 
   /** (A + A†)/2; half of every asymmetry is added to the radius of its element. */
   hermitianPart(): Operator {
     if (this.hermitianDefect.value === 0) return this;
-    return new Operator(hermitianPart(this.#core));
+    return this.#made(hermitianPart(this.#core), exactly.hermitianPart);
   }
 
   /**
@@ -370,72 +369,16 @@ export class Operator {
     return Matrix.from1DArray(this.n, this.n, re);
   }
 
-  /** Whether every entry off the diagonal is zero within its radius. */
-  get isDiagonal(): boolean {
-    return this.#traits.isDiagonal;
+  get #known(): Companion | undefined {
+    const { csr, radius } = this.#core;
+    if (radius === "exact") this.#companion ??= Companion.of(() => ExactOperator.fromFloating(csr));
+    return this.#companion;
   }
 
-  /** Whether each row and each column holds at most one entry that is not zero within its radius. */
-  get isMonomial(): boolean {
-    return this.#traits.isMonomial;
-  }
-
-  /** Whether every imaginary part is zero within the radius. */
-  get isReal(): boolean {
-    return this.#traits.isReal;
-  }
-
-  /** The Frobenius norm of A − A†, and its largest element. */
-  get hermitianDefect(): HermitianDefect {
-    return this.#traits.hermitian.defect;
-  }
-
-  /** Whether A = A† within the radii, or to 1e-13 of the Frobenius norm. */
-  get isHermitian(): boolean {
-    return this.#traits.isHermitian;
-  }
-
-  /** The Frobenius norm of A A† − 1. */
-  get unitaryDefect(): number {
-    return this.#traits.unitary.size;
-  }
-
-  /** Whether A A† = 1 within the radii, or to 1e-13 √n in the Frobenius norm. */
-  get isUnitary(): boolean {
-    return this.#traits.isUnitary;
-  }
-
-  /** The Frobenius norm of A A† − A† A. */
-  get normalDefect(): number {
-    return this.#traits.normal.size;
-  }
-
-  /** Whether A A† = A† A within the radii, or to 1e-13 of the squared Frobenius norm. */
-  get isNormal(): boolean {
-    return this.#traits.isNormal;
-  }
-
-  /** The first of these that holds. */
-  get kind(): "hermitian" | "unitary" | "normal" | "general" {
-    if (this.isHermitian) return "hermitian";
-    if (this.isUnitary) return "unitary";
-    return this.isNormal ? "normal" : "general";
-  }
-
-  /** The connected part of each ket, parts numbered from 0 by their first ket; entries zero within their radius do not connect. */
-  get components(): Int32Array {
-    return this.#traits.parts.components;
-  }
-
-  /** The number of connected parts. */
-  get componentCount(): number {
-    return this.#traits.parts.count;
-  }
-
-  #requireSame(verb: string, other: Operator): void {
-    if (!(other instanceof Operator)) throw wrongOperand(verb, other);
-    if (other.n === this.n) return;
-    const message = `${verb}: the operators act on ${this.n} and ${other.n} kets; both need the same kets`;
-    throw new GoodBasisError("shape", message, { left: this.n, right: other.n });
+  /** A result, and what it is exactly where that is known of both operands and its doubles do not say it already. */
+  #made(core: Uncertain, combine: exactly.Combine, other: Operator = this): Operator {
+    if (core.radius === "exact" || !this.isKnownExactly || !other.isKnownExactly) return new Operator(core);
+    const [a, b] = [this.#known, other.#known];
+    return new Operator(core, a && b && Companion.combined(a, b, combine));
   }
 }

@@ -242,7 +242,7 @@ function duplicateRadius(csr: Csr, n: number, rows: number[], cols: number[], re
  *
  * @throws GoodBasisError `shape`, `not-finite`
  */
-export function readDiagonal(verb: string, diagonal: ArrayLike<number>, imaginary?: ArrayLike<number>): Uncertain {
+function readDiagonal(verb: string, diagonal: ArrayLike<number>, imaginary?: ArrayLike<number>): Uncertain {
   for (const list of imaginary === undefined ? [diagonal] : [diagonal, imaginary]) {
     if (!hasLength(list)) throw badForm(verb, list, "a list of numbers, the diagonal");
   }

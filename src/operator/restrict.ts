@@ -1,5 +1,8 @@
+import { ExactOperator } from "../exact/operator.js";
+import type { ExactTriplet } from "../exact/rows.js";
 import type { Csr } from "../numerics/csr.js";
 import { conjugate, gather, submatrixOrder, transpose } from "../numerics/sparse.js";
+import type { Combine } from "./companion.js";
 import { uncertainProduct } from "./products.js";
 import type { Uncertain } from "./radius.js";
 import { settle } from "./settle.js";
@@ -17,6 +20,21 @@ export function restrictTo(matrix: Uncertain, frame: Csr): Uncertain {
   const left = uncertainProduct({ csr: conjugate(frame), radius: "exact" }, matrix);
   const product = uncertainProduct(left, { csr: transpose(frame), radius: "exact" });
   return settle("restrict", product.csr, product.radius);
+}
+
+/** How the exact operator is restricted to a frame: where that selects kets. Undefined for any other, whose rows are rounded. */
+export function restrictExactly(frame: Csr): Combine | undefined {
+  const kets = selectedKets(frame)?.slice();
+  if (kets === undefined) return undefined;
+  return (a) => {
+    const place = new Map(Array.from(kets, (ket, k) => [ket, k]));
+    const triplets: ExactTriplet[] = [];
+    for (const { row, col, value } of a.elements()) {
+      const [i, j] = [place.get(row), place.get(col)];
+      if (i !== undefined && j !== undefined) triplets.push([i, j, value]);
+    }
+    return ExactOperator.fromTriplets(kets.length, triplets);
+  };
 }
 
 /** The kets that a frame selects, where each of its rows is one distinct ket with coefficient 1. */

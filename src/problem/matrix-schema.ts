@@ -9,6 +9,7 @@ import {
   fileNumber,
   index,
   notNegative,
+  numberOrText,
   positiveWhole,
   type Shape,
   someText,
@@ -70,11 +71,18 @@ export function matrixSchemas(checked: boolean): MatrixSchemas {
     triplets: closed({
       triplets: about(
         list(
-          v.union([v.strictTuple([index, index, v.number()]), v.strictTuple([index, index, v.number(), v.number()])]),
+          v.union([
+            v.strictTuple([index, index, numberOrText]),
+            v.strictTuple([index, index, numberOrText, numberOrText]),
+          ]),
         ),
-        "[row, column, re] or [row, column, re, im], counted from 0; every place at most once.",
+        "[row, column, re] or [row, column, re, im], counted from 0; every place at most once. Where one entry is text such as " +
+          '"sqrt(2/3)", all are exact.',
       ),
       n: v.exactOptional(about(positiveWhole, "Number of kets, where nothing else tells it.")),
+      exact: v.exactOptional(
+        about(list(numberOrText), "What each triplet is exactly, within its radius, where the triplets are not text."),
+      ),
       radii: v.exactOptional(about(list(notNegative), "A bound on the error of each triplet.")),
       ...shared,
     }),

@@ -1,14 +1,15 @@
+import type { Surd, SurdInput } from "../exact/surd.js";
 import { hopping } from "../models/lattice.js";
-import { EntryList } from "../operator/builder.js";
 import { readMatrixMarket } from "../operator/matrix-market.js";
 import { Operator } from "../operator/operator.js";
-import type { Triplet, Uncertainty } from "../operator/read.js";
+import type { Uncertainty } from "../operator/read.js";
 import { type MatrixContext, needSpace, sumOfNames } from "./names.js";
-import { type NumberList, readNumber, readNumbers } from "./numbers.js";
+import { isExactText, readExact, readNumber, readNumbers } from "./numbers.js";
 import { atPlace, fileError, inside, type Place, showValue } from "./place.js";
 import type { MatrixForms } from "./problem-file.js";
 import { conform, FORMS, formSchemas } from "./schema.js";
 import { sumOfTerms } from "./terms.js";
+import { readTriplets } from "./triplets.js";
 
 /** Whether a value has the outer form of a matrix rather than of a record of named ones. */
 export function looksLikeMatrix(value: unknown): boolean {
@@ -23,7 +24,7 @@ export function looksLikeMatrix(value: unknown): boolean {
  */
 export function readMatrixAt(place: Place, value: unknown, context: MatrixContext): Operator {
   if (typeof value === "string") return sumOfNames(place, value, context);
-  if (Array.isArray(value)) return atPlace(place, () => readRows(place, value));
+  if (Array.isArray(value)) return atPlace(place, () => readRows(place, value, undefined));
   const forms = typeof value === "object" && value !== null ? FORMS.filter((form) => Object.hasOwn(value, form)) : [];
   const [form] = forms;
   if (form === undefined || forms.length > 1) {
@@ -36,21 +37,26 @@ function readForm(form: keyof MatrixForms, place: Place, value: unknown, context
   switch (form) {
     case "rows": {
       const { rows, ...shared } = conform(formSchemas.rows, place, value);
-      return finish(place, readRows(inside(place, "rows"), rows), shared, context);
+      return finish(place, readRows(inside(place, "rows"), rows, shared.uncertainty), shared, context);
     }
     case "triplets": {
       const file = conform(formSchemas.triplets, place, value);
-      return finish(place, readTriplets(place, file, context), file, context);
+      const n = file.n ?? (file.on === undefined ? context.n : dimensionOf(place, file.on, context));
+      return finish(place, readTriplets(place, file, n), file, context);
     }
     case "diagonal": {
       const { diagonal, ...shared } = conform(formSchemas.diagonal, place, value);
-      const { re, im } = readNumbers(inside(place, "diagonal"), diagonal);
+      const at = inside(place, "diagonal");
+      if (isExactly(diagonal, shared.uncertainty)) {
+        return finish(place, Operator.diagonal(exactNumbers(at, diagonal)), shared, context);
+      }
+      const { re, im } = readNumbers(at, diagonal);
       return finish(place, Operator.from({ diagonal: re, imaginary: im }), shared, context);
     }
     case "permutation": {
       const { permutation, phases, ...shared } = conform(formSchemas.permutation, place, value);
       const map = readNumbers(inside(place, "permutation"), permutation).re;
-      const factors = phases === undefined ? undefined : scalars(readNumbers(inside(place, "phases"), phases));
+      const factors = phases && readScalars(inside(place, "phases"), phases, shared.uncertainty);
       return finish(place, Operator.permutation(map, factors), shared, context);
     }
     case "matrixMarket": {
@@ -86,18 +92,21 @@ function readForm(form: keyof MatrixForms, place: Place, value: unknown, context
   }
 }
 
-function readRows(place: Place, rows: readonly unknown[]): Operator {
+function readRows(place: Place, rows: readonly unknown[], uncertainty: Uncertainty | undefined): Operator {
   const n = rows.length;
   if (n === 0) throw fileError(place, "at least one row", "an empty list");
+  const lists = rows.map((row, i): readonly unknown[] => {
+    if (!Array.isArray(row)) throw fileError(inside(place, i), "a row of numbers [ … ]", showValue(row));
+    if (row.length === n) return row;
+    throw fileError(inside(place, i), `${n} numbers, as there are ${n} rows`, `${row.length}`);
+  });
+  if (lists.some((list) => isExactly(list, uncertainty))) {
+    return Operator.from(lists.map((list, i) => exactNumbers(inside(place, i), list)));
+  }
   const re: Float64Array[] = [];
   const im: (Float64Array | undefined)[] = [];
-  for (let i = 0; i < n; i++) {
-    const row = rows[i];
-    if (!Array.isArray(row)) throw fileError(inside(place, i), "a row of numbers [ … ]", showValue(row));
-    if (row.length !== n) {
-      throw fileError(inside(place, i), `${n} numbers, as there are ${n} rows`, `${row.length}`);
-    }
-    const numbers = readNumbers(inside(place, i), row);
+  for (const [i, list] of lists.entries()) {
+    const numbers = readNumbers(inside(place, i), list);
     re.push(numbers.re);
     im.push(numbers.im);
   }
@@ -105,56 +114,20 @@ function readRows(place: Place, rows: readonly unknown[]): Operator {
   return Operator.from({ re, im: im.map((part) => part ?? new Float64Array(n)) });
 }
 
-function scalars({ re, im }: NumberList): { re: number; im: number }[] {
+/** Whether the entries of a matrix are read exactly: where a text is no decimal, and where they are stated to be exact and are text. */
+function isExactly(values: readonly unknown[], uncertainty: Uncertainty | undefined): boolean {
+  return values.some((value) => isExactText(value) || (uncertainty === "exact" && typeof value === "string"));
+}
+
+function exactNumbers(place: Place, values: readonly unknown[]): Surd[] {
+  return values.map((value, k) => readExact(inside(place, k), value));
+}
+
+/** Numbers as an operator takes them, exact ones as such. */
+function readScalars(place: Place, values: readonly unknown[], uncertainty: Uncertainty | undefined): SurdInput[] {
+  if (isExactly(values, uncertainty)) return exactNumbers(place, values);
+  const { re, im } = readNumbers(place, values);
   return Array.from(re, (x, k) => ({ re: x, im: im?.[k] ?? 0 }));
-}
-
-function readTriplets(place: Place, file: MatrixForms["triplets"], context: MatrixContext): Operator {
-  const n = file.n ?? (file.on === undefined ? context.n : dimensionOf(place, file.on, context));
-  if (n === undefined) {
-    throw fileError(place, 'the number of kets, from "n" here, or "n", "space" or "kets" of the file', "none of these");
-  }
-  const entries: Triplet[] = [];
-  const seen = new Set<number>();
-  for (let k = 0; k < file.triplets.length; k++) {
-    const triplet = file.triplets[k];
-    const at = inside(place, "triplets", k);
-    if (!Array.isArray(triplet) || triplet.length < 3 || triplet.length > 4) {
-      throw fileError(at, "[row, column, re] or [row, column, re, im]", showValue(triplet));
-    }
-    const [row, col, re, im = 0]: unknown[] = triplet;
-    if (!isPlace(row, n) || !isPlace(col, n))
-      throw fileError(at, `row and column from 0 to ${n - 1}`, showValue(triplet));
-    if (!isFiniteNumber(re) || !isFiniteNumber(im)) throw fileError(at, "finite numbers", showValue(triplet));
-    if (seen.has(row * n + col)) {
-      throw fileError(at, "every place once", `(${row}, ${col}) again`, "write the sum of the two as one triplet");
-    }
-    seen.add(row * n + col);
-    entries.push([row, col, re, im]);
-  }
-  return file.radii === undefined ? Operator.fromTriplets(n, entries) : withRadii(place, n, entries, file.radii);
-}
-
-function isPlace(value: unknown, n: number): value is number {
-  return typeof value === "number" && Number.isInteger(value) && value >= 0 && value < n;
-}
-
-function isFiniteNumber(value: unknown): value is number {
-  return typeof value === "number" && Number.isFinite(value);
-}
-
-function withRadii(place: Place, n: number, entries: readonly Triplet[], radii: readonly unknown[]): Operator {
-  const at = inside(place, "radii");
-  if (radii.length !== entries.length) {
-    throw fileError(at, `one radius for each of the ${entries.length} triplets`, `${radii.length}`);
-  }
-  const list = new EntryList(n);
-  for (const [k, [row, col, re, im = 0]] of entries.entries()) {
-    const radius = radii[k];
-    if (!isFiniteNumber(radius) || radius < 0) throw fileError(inside(at, k), "a number from 0 on", showValue(radius));
-    list.add(row, col, re, im, radius);
-  }
-  return list.finish("readProblem");
 }
 
 function dimensionOf(place: Place, name: string, context: MatrixContext): number {
@@ -175,10 +148,13 @@ function readHopping(place: Place, file: MatrixForms["hopping"], context: Matrix
   if (n === undefined) throw fileError(place, 'the number of kets, from "n", "space" or "kets" of the file', "none");
   if (file.amplitudes !== undefined) {
     if (file.amplitude !== undefined) throw fileError(place, 'either "amplitude" or "amplitudes"', "both");
-    const each = scalars(readNumbers(inside(place, "amplitudes"), file.amplitudes));
+    const each = readScalars(inside(place, "amplitudes"), file.amplitudes, file.uncertainty);
     return hopping(n, file.hopping, each);
   }
-  return hopping(n, file.hopping, readNumber(inside(place, "amplitude"), file.amplitude ?? 1));
+  const { amplitude = 1 } = file;
+  const at = inside(place, "amplitude");
+  const exact = isExactly([amplitude], file.uncertainty);
+  return hopping(n, file.hopping, exact ? readExact(at, amplitude) : readNumber(at, amplitude));
 }
 
 /** Embeds a matrix that was given on a factor, and adds the stated uncertainty. */

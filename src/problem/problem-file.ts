@@ -38,6 +38,7 @@ export interface MatrixForms {
     readonly triplets: readonly unknown[];
     readonly n?: number;
     readonly radii?: readonly unknown[];
+    readonly exact?: readonly unknown[];
   };
   readonly diagonal: Shared & { readonly diagonal: readonly unknown[] };
   readonly permutation: Shared & { readonly permutation: readonly unknown[]; readonly phases?: readonly unknown[] };

@@ -28,7 +28,7 @@ export interface ReadBasis {
  * Reads a basis that somebody brings: a Matrix Market file with one state a column, or JSON.
  *
  * JSON is a list of states, or `{ "states": […], "labels": { "Jz": ["3/2", …] } }`. A state is a list of n numbers (complex ones
- * as `[re, im]` or `"1+2i"`), or an object of coefficients by ket name.
+ * as `[re, im]` or `"1+2i"`, exact ones as `"sqrt(2/3)"`, which are rounded), or an object of coefficients by ket name.
  *
  * @param source - the text of the file, or what `JSON.parse` made of it
  * @param options - names and number of the kets

@@ -1,5 +1,5 @@
 import * as v from "valibot";
-import { COMPLEX_TEXT, type FileNumber } from "./numbers.js";
+import { type FileNumber, NUMBER_TEXT } from "./numbers.js";
 
 /** A schema for values of one type, whatever it is made of. */
 export type Shape<T> = v.GenericSchema<unknown, T>;
@@ -64,19 +64,22 @@ export const someText: Shape<string> = v.pipe(
   v.minLength(1, "text that is not empty"),
 );
 
-const NUMBER_FORM = 'a number, [re, im] or text such as "1+2i"';
+const NUMBER_FORM = 'a number, [re, im] or text such as "1+2i" or "sqrt(2/3)"';
+
+/** The text of a number. */
+const numberText: Shape<string> = v.pipe(v.string(), v.regex(NUMBER_TEXT, NUMBER_FORM));
+
+/** A real number, or any number as text. */
+export const numberOrText: Shape<number | string> = v.union([v.number(), numberText], NUMBER_FORM);
 
 /** A real or complex number. */
 export const fileNumber: Shape<FileNumber> = v.pipe(
-  v.union(
-    [
-      v.number(NUMBER_FORM),
-      v.strictTuple([v.number(), v.number()]),
-      v.pipe(v.string(), v.regex(COMPLEX_TEXT, NUMBER_FORM)),
-    ],
-    NUMBER_FORM,
+  v.union([v.number(NUMBER_FORM), v.strictTuple([v.number(), v.number()]), numberText], NUMBER_FORM),
+  v.description(
+    'A real number, [re, im], or text such as "1+2i" or "sqrt(2/3)". Decimals are as well known as their digits say. A text ' +
+      "with a fraction, a root or a product is exact; where one entry of a matrix is, all its texts are exact, and its numbers " +
+      "count as the doubles that they are.",
   ),
-  v.description('A real number, [re, im], or text such as "1+2i".'),
 );
 
 /** Two sites. */

@@ -1,6 +1,6 @@
 import { Operator } from "../operator/operator.js";
 import { type MatrixContext, needSpace, operatorByName } from "./names.js";
-import { type FileNumber, readNumber } from "./numbers.js";
+import { type FileNumber, isExactText, readExact, readNumber } from "./numbers.js";
 import { atPlace, fileError, inside, type Place, showValue } from "./place.js";
 import type { TermFile } from "./problem-file.js";
 
@@ -10,7 +10,7 @@ const SHORT = 2 ** -10;
 /**
  * The sum of terms, each a coefficient times a product of operators or a scalar product.
  *
- * A coefficient counts as known to half a unit in its last place, a multiple of 1/1024 as exact.
+ * A coefficient counts as known to half a unit in its last place, a multiple of 1/1024 and a text such as "1/3" as exact.
  *
  * @throws GoodBasisError `file`, `name`, `shape`, `not-finite`
  */
@@ -71,6 +71,7 @@ function scalarProduct(place: Place, names: readonly [string, string], context: 
 }
 
 function scaled(place: Place, coefficient: FileNumber, operator: Operator): Operator {
+  if (isExactText(coefficient)) return operator.scale(readExact(place, coefficient));
   const z = readNumber(place, coefficient);
   if (isShort(z.re) && isShort(z.im)) return operator.scale(z);
   // As a matrix of one element the number carries the uncertainty of its last place into every product.

@@ -20,12 +20,13 @@ export interface WriteProblemOptions {
 }
 
 /**
- * Writes a problem as a problem file, every matrix as triplets with its radii: reading it back gives the same bits, and the
- * same hashes.
+ * Writes a problem as a problem file, every matrix as triplets with its radii, and as exact numbers in text where it is known
+ * exactly: reading it back gives the same bits, the same hashes and the same exact operators.
  *
  * @param problem - the problem
  * @param extra - title, note and options
  * @returns JSON, one matrix a line
+ * @throws GoodBasisError `budget` - what an operator is exactly outgrows the budget of exact arithmetic
  * @throws GoodBasisError `shape`, `not-finite` - a matrix that cannot be read; `option` - no problem, or an unknown field; `name` - a
  *   perturbation with the name of a form of matrices; `file` - title, note, kets or options that no file may hold
  *
@@ -112,6 +113,11 @@ function matrix(input: MatrixInput): unknown {
     }
   }
   if (operator.isExact) return { n, triplets, uncertainty: "exact" };
-  const { radius } = operator;
-  return radius === undefined ? { n, triplets } : { n, triplets, radii: Array.from(radius) };
+  const { exact, radius } = operator;
+  if (exact !== undefined && Operator.from(exact).hash === operator.hash) {
+    return { n, triplets: Array.from(exact.elements(), ({ row, col, value }) => [row, col, value.text()]) };
+  }
+  const radii = radius === undefined ? {} : { radii: Array.from(radius) };
+  if (exact === undefined) return { n, triplets, ...radii };
+  return { n, triplets, ...radii, exact: triplets.map(([row = 0, col = 0]) => exact.entry(row, col).text()) };
 }

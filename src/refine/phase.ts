@@ -1,10 +1,8 @@
 import type { Csr } from "../numerics/csr.js";
+import { LARGE_COMPONENT_THOUSANDTHS } from "../numerics/phase.js";
 
-/**
- * A component counts as one of the largest when its modulus is at least this fraction of the largest. Away from the ratios
- * of small square roots, so that rounding does not choose.
- */
-const LARGE_COMPONENT = 0.987;
+/** {@link LARGE_COMPONENT_THOUSANDTHS} as a fraction. */
+const LARGE_COMPONENT = LARGE_COMPONENT_THOUSANDTHS / 1000;
 
 /**
  * Fixes the phase of every row: its first component within a stated factor of the largest becomes real and positive.

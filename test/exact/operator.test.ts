@@ -231,6 +231,28 @@ describe("floating numbers", () => {
     );
   });
 
+  it("that are whole, or nearly so, come in as what they are", () => {
+    const part = fc.oneof(
+      fc.integer({ min: -4, max: 4 }),
+      fc.integer({ min: -40, max: 40 }).map((n) => n / 8),
+      fc.constantFrom(0, -0, 2 ** 53 - 1, 2 ** 60, 2 ** -24, 2 ** -25, 1e308, 5e-324),
+    );
+    fc.assert(
+      fc.property(fc.array(fc.tuple(part, part), { minLength: 1, maxLength: 6 }), fc.boolean(), (parts, complex) => {
+        const n = parts.length;
+        const re = Float64Array.from(parts, ([x]) => x);
+        const im = complex ? Float64Array.from(parts, ([, y]) => y) : undefined;
+        const ptr = Int32Array.from({ length: n + 1 }, (_, k) => k);
+        const a = ExactOperator.fromFloating({ rows: n, cols: n, ptr, col: ptr.slice(0, n), re, im });
+        const numbers = parts.map(([x, y]) => Surd.from({ re: x, im: complex ? y : 0 }));
+        expect(same(a, ExactOperator.diagonal(numbers))).toBe(true);
+        const square = ExactOperator.diagonal(numbers.map((x) => x.times(x)));
+        expect(same(a.times(a), square)).toBe(true);
+      }),
+      { seed: 4103, numRuns: 300 },
+    );
+  });
+
   it("come in as their exact dyadic values and go out unchanged", () => {
     const csr = {
       rows: 2,

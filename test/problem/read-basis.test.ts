@@ -12,6 +12,10 @@ describe("readBasis", () => {
       [0, 1],
     ]);
     expect(readBasis('[{ "up": 0.6, "down": 0.8 }]', { kets }).columns).toEqual([[0.6], [0.8]]);
+    expect(readBasis('[{ "up": "sqrt(1/3)", "down": "-√(2/3)" }]', { kets }).columns).toEqual([
+      [Math.sqrt(1 / 3)],
+      [-0.816496580927726],
+    ]);
     expect(readBasis([[1, "i"], { down: [0, -1] }], { kets }).columns).toEqual({
       re: [
         [1, 0],

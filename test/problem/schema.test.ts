@@ -102,6 +102,24 @@ describe("the JSON Schema of problem files", () => {
       },
       options: { levels: { from: 0, to: 1 }, refuseAbove: 2 },
     },
+    "exact numbers": {
+      n: 2,
+      h0: {
+        triplets: [
+          [0, 0, "sqrt(2/3)"],
+          [1, 1, "√3/2", "0"],
+        ],
+      },
+      v: { triplets: [[0, 1, 0.5]], radii: [1e-9], exact: ["1/2"] },
+      candidates: {
+        rows: [
+          ["\\frac{1}{2}", "(1+2i)/sqrt(5)"],
+          ["−i", 1],
+        ],
+        sum: { terms: [{ coefficient: "1/3", product: ["identity"] }] },
+        hop: { hopping: [[0, 1]], amplitudes: ["sqrt(2)"] },
+      },
+    },
   };
   for (const [name, fields] of Object.entries(good)) {
     it(`takes what readProblem takes: ${name}`, () => {
@@ -113,7 +131,7 @@ describe("the JSON Schema of problem files", () => {
   const bad: Readonly<Record<string, Record<string, unknown>>> = {
     "an unknown field": { nn: 1 },
     "an unknown form": { h0: { diag: [1] } },
-    "a wrong number": { h0: [["1+"]] },
+    "a wrong number": { h0: [["1+x"]] },
     "a wrong label": { candidates: { A: { operator: [[1]], label: "M" } } },
     "a negative index": { n: 1, h0: { triplets: [[-1, 0, 1]] } },
     "a factor of no kind": { space: [{ name: "a" }] },

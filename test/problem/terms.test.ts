@@ -113,7 +113,7 @@ describe("terms", () => {
     expect(bad({ product: ["L.x"], dot: ["L", "S"] })).toMatch(/either "product" or "dot"/);
     expect(bad({ product: "L.x" })).toMatch(/h0\.terms\[0\]\.product: expected/);
     expect(bad({ coefficient: "1+", product: [] })).toMatch(
-      /h0\.terms\[0\]\.coefficient: expected a number, \[re, im\]/,
+      /h0\.terms\[0\]\.coefficient: expected a finite number, .*got "1\+"; .*a number is missing, at character 3/,
     );
     expect(bad({ coefficent: 1, product: [] })).toMatch(
       /h0\.terms\[0\]\.coefficent: expected no other fields than coefficient, product, dot, bonds/,
