@@ -78,7 +78,7 @@ export interface GuardOptions {
 export function guardSetting(options: GuardOptions): GuardSetting {
   const { lambda, refuseAbove } = options;
   for (const [name, value] of Object.entries({ lambda, refuseAbove })) {
-    if (value !== undefined && !(value > 0 && Number.isFinite(value))) {
+    if (value !== undefined && !(typeof value === "number" && value > 0 && Number.isFinite(value))) {
       throw new GoodBasisError("option", `${name} is ${shown(value)}; give a positive number`, { [name]: value });
     }
   }
