@@ -28,7 +28,8 @@ const BELOW: Readonly<Record<string, readonly string[]>> = {
   models: ["numerics", "exact", "operator"],
   problem: ["operator", "models"],
   refine: ["numerics", "exact", "operator", "audit"],
-  certify: ["version.ts", "numerics", "exact", "operator", "audit", "refine"],
+  prove: ["numerics", "exact", "operator", "audit", "refine"],
+  certify: ["version.ts", "numerics", "exact", "operator", "audit", "refine", "prove"],
   perturb: ["numerics", "exact", "operator", "audit", "refine", "certify"],
   report: ["numerics", "exact", "operator", "audit", "refine", "certify", "perturb"],
 };

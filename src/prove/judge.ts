@@ -1,0 +1,106 @@
+import { GoodBasisError } from "../errors.js";
+import type { ExactBudget } from "../exact/budget.js";
+import type { Depth } from "../refine/resolve.js";
+import { type LevelVector, levelCouplings } from "./couplings.js";
+import type { ExactSector } from "./descent.js";
+import type { LevelDraft, LevelDrafts } from "./levels.js";
+import type { ExactProblem } from "./problem.js";
+import type { ProvedCoupling, ProvedLeaf, ProvedLevel } from "./proof.js";
+import { Resolvent } from "./resolvent.js";
+
+/** For each sector and energy: whether blocks of unknown energies may hold more states of a level. */
+export function completeness(
+  { h0 }: ExactProblem,
+  { sectors, unknown }: LevelDrafts,
+  budget: ExactBudget | undefined,
+): (level: LevelDraft) => boolean {
+  const open = [...new Set(unknown.map(({ sector }) => sector))];
+  return ({ energy, blocks }) =>
+    open.every((sector) => {
+      // a state in another sector than all of the level's is told apart by its labels
+      if (!blocks.some((member) => member.sector === sector)) return true;
+      if (energy.kind !== "value") return false;
+      try {
+        return new Resolvent(h0, sectors[sector] as ExactSector, energy.value, budget).isComplete;
+      } catch (error) {
+        if (!(error instanceof GoodBasisError) || error.code !== "budget") throw error;
+        return false;
+      }
+    });
+}
+
+/** Judges a level: every element of every perturbation between its states is looked at, exactly. */
+export function judgeLevel(
+  problem: ExactProblem,
+  drafts: LevelDrafts,
+  place: number,
+  leaves: readonly ProvedLeaf[],
+  complete: (level: LevelDraft) => boolean,
+  depth: Depth,
+): ProvedLevel {
+  const draft = drafts.levels[place] as LevelDraft;
+  const degeneracy = draft.blocks.reduce((sum, { size }) => sum + size, 0);
+  const members = leaves.flatMap((leaf, k) => {
+    if (!leaf.levels.includes(place)) return [];
+    const { energy } = leaf;
+    return [{ leaf: k, size: energy.kind === "roots" ? energy.roots.multiplicity : leaf.vectors.length }];
+  });
+  const single = members.length === 1 && degeneracy === 1;
+  const exact = draft.energy.kind === "value";
+  const vectors = members.flatMap(({ leaf }): LevelVector[] =>
+    (leaves[leaf]?.vectors ?? []).map((vector, at) => ({ leaf, place: at, vector })),
+  );
+  const couplings = exact ? levelCouplings(vectors, problem.perturbations) : [];
+  const byLabels = depth === "labels";
+  const open = byLabels ? [] : members.filter(({ leaf, size }) => isOpen(leaves[leaf] as ProvedLeaf, size));
+  // vectors that merely span a leaf are no states to be coupled
+  const inside = ({ states: [[a], [b]] }: ProvedCoupling): boolean =>
+    a === b && (leaves[a]?.kind === "separated" || (!byLabels && hasOpenShift(leaves[a] as ProvedLeaf)));
+  const outside = couplings.filter((coupling) => !inside(coupling));
+  const whole = complete(draft);
+  const verdict = outside.length > 0 ? "not good" : open.length === 0 && whole ? "good" : "undecided";
+  return {
+    place,
+    energy: draft.energy,
+    degeneracy,
+    members,
+    verdict,
+    couplings: outside,
+    sentence: sentenceOf(verdict, { single, exact, open: open.length, whole, couplings: outside.length }),
+  };
+}
+
+/** Whether a perturbation may couple states of one level inside a leaf. */
+function isOpen({ kind, energy, shifts }: ProvedLeaf, size: number): boolean {
+  if (size === 1 || kind === "separated") return false;
+  if (energy.kind !== "value") return true;
+  // with one perturbation, its eigenvectors in the leaf serve, in the field or not
+  const [only, ...more] = shifts;
+  if (more.length === 0 && only?.value.kind === "roots" && only.value.roots.multiplicity === 1) return false;
+  return hasOpenShift({ shifts });
+}
+
+function hasOpenShift({ shifts }: Pick<ProvedLeaf, "shifts">): boolean {
+  return shifts.some(({ value }) => value.kind !== "value");
+}
+
+function sentenceOf(
+  verdict: ProvedLevel["verdict"],
+  found: { single: boolean; exact: boolean; open: number; whole: boolean; couplings: number },
+): string {
+  const energy = found.exact ? "" : " (its energy leaves the field)";
+  switch (verdict) {
+    case "good":
+      return found.single
+        ? `one state${energy}: nothing to couple`
+        : `every element of every perturbation between different states vanishes exactly${energy}`;
+    case "not good":
+      return `${found.couplings} elements between states do not vanish${energy}`;
+    case "undecided":
+      return found.whole
+        ? `${found.open} leaves are left to rigorous bounds${energy}; the others vanish exactly`
+        : "the budget leaves energies of the same sector unknown, so that the level may have more states";
+    default:
+      return verdict satisfies never;
+  }
+}

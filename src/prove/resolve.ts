@@ -1,0 +1,128 @@
+import { GoodBasisError } from "../errors.js";
+import type { ExactBudget } from "../exact/budget.js";
+import { characteristicPolynomial } from "../exact/characteristic.js";
+import { ExactOperator } from "../exact/operator.js";
+import { commonDivisor, degree, derivative } from "../exact/polynomial.js";
+import type { Depth } from "../refine/resolve.js";
+import { type EnergyBlock, type ExactSector, refineByCandidates } from "./descent.js";
+import type { Frame } from "./frame.js";
+import type { ExactProblem } from "./problem.js";
+import type { BlockValue } from "./proof.js";
+import { refineHermitian, within } from "./refine.js";
+import { Resolvent } from "./resolvent.js";
+import type { ProofTree } from "./tree.js";
+
+/** A block with the first-order shifts known of it. */
+export interface ShiftedBlock extends EnergyBlock {
+  /** One for each perturbation used so far. */
+  readonly shifts: readonly BlockValue[];
+}
+
+/** A leaf before it is named. */
+export interface LeafDraft extends ShiftedBlock {
+  /** What its second order is found with; undefined where none is asked for or V is not a number on the leaf. */
+  readonly resolvent: Resolvent | undefined;
+  /** Whether the second-order operator of a single perturbation is a number on the leaf. */
+  readonly scalarSecond: boolean;
+  readonly kind: "state" | "separated" | "together";
+}
+
+/** What resolving needs beside the block. */
+export interface Resolving {
+  readonly problem: ExactProblem;
+  readonly sector: ExactSector;
+  /** Places of the conserved candidates. */
+  readonly conserved: readonly number[];
+  readonly depth: Depth;
+  readonly tree: ProofTree;
+  readonly budget: ExactBudget | undefined;
+}
+
+/**
+ * Resolves the states of one energy in one sector: by candidates that map this block into itself, by each perturbation in turn,
+ * then (for a single perturbation) by its second-order operator where V is a number.
+ */
+export function resolveBlock(given: Resolving, block: EnergyBlock): LeafDraft[] {
+  const { problem, conserved, tree, budget, depth } = given;
+  const { energy } = block;
+  const known = energy.kind === "value";
+  const parts = known ? refineByCandidates(problem, block, conserved, tree, budget) : [block];
+  let blocks = parts.map((own): ShiftedBlock => ({ ...own, shifts: [] }));
+  for (const { name, operator } of known && depth !== "labels" ? problem.perturbations : []) {
+    blocks = blocks.flatMap((own) => {
+      if (own.shifts.some((shift) => shift.kind !== "value")) {
+        return [{ ...own, shifts: [...own.shifts, { kind: "unknown" } as const] }];
+      }
+      const split = tree.refine(own, { kind: "perturbation", operator: name }, () =>
+        refineHermitian(own.frame, within(operator, budget), budget),
+      );
+      return (split ?? []).map(({ child, path }) => ({
+        ...own,
+        frame: child.frame,
+        path,
+        shifts: [...own.shifts, child.value],
+      }));
+    });
+  }
+  if (!known || depth === "labels" || depth === "first order") return blocks.map((own) => leaf(given, own));
+  const resolvent = new Resolvent(problem.h0, given.sector, energy.value, budget);
+  return blocks.flatMap((own) => secondOrder(given, own, resolvent));
+}
+
+/** A leaf; one on which the second-order operator was not found to be a number has no second order of its own. */
+function leaf(given: Resolving, block: ShiftedBlock, resolvent?: Resolvent, isNumber = false): LeafDraft {
+  const kind = kindOf(given, block);
+  return { ...block, kind, scalarSecond: resolvent !== undefined && (isNumber || block.frame.size === 1), resolvent };
+}
+
+/** Refines a block on which V is a number by the second-order operator. */
+function secondOrder(given: Resolving, block: ShiftedBlock, resolvent: Resolvent): LeafDraft[] {
+  const { problem, tree, budget } = given;
+  if (block.shifts.some((shift) => shift.kind !== "value")) return [leaf(given, block)];
+  const [only, ...more] = problem.perturbations;
+  if (block.frame.size === 1 || only === undefined || more.length > 0) return [leaf(given, block, resolvent)];
+  const split = tree.refine(block, { kind: "second order", operator: "W" }, () =>
+    refineHermitian(block.frame, effective(only.operator, resolvent), budget),
+  );
+  if (split === undefined || split.some(({ child }) => child.value.kind !== "value")) {
+    return [leaf(given, block, resolvent)];
+  }
+  return split.map(({ child, path }) => leaf(given, { ...block, frame: child.frame, path }, resolvent, true));
+}
+
+/** W = P V R V P over a frame. */
+function effective(v: ExactOperator, resolvent: Resolvent): (frame: Frame) => ExactOperator {
+  return (frame) =>
+    ExactOperator.fromTriplets(
+      frame.size,
+      frame.vectors.flatMap((q, j) => {
+        const x = resolvent.apply(v.apply(q));
+        if (x === undefined) {
+          throw new GoodBasisError("budget", "W: what is unknown of this sector may belong to the level");
+        }
+        return [...frame.coefficients(v.apply(x))].map(([i, value]) => [i, j, value] as const);
+      }),
+    );
+}
+
+/** Largest leaf for which a label's characteristic polynomial is formed. */
+const MOST_SEPARATED = 32;
+
+/** Whether a label with values outside the field takes the states of a leaf apart: no eigenvalue occurs twice there. */
+function kindOf({ problem, budget }: Resolving, { frame, labels }: ShiftedBlock): LeafDraft["kind"] {
+  if (frame.size === 1) return "state";
+  if (frame.size > MOST_SEPARATED) return "together";
+  try {
+    for (const { candidate, value } of labels) {
+      const operator = problem.candidates[candidate]?.operator;
+      if (value.kind !== "roots" || operator === undefined) continue;
+      const { matrix, invariant } = frame.matrix(operator, budget);
+      if (!invariant) continue;
+      const p = characteristicPolynomial(matrix, budget);
+      if (degree(commonDivisor(p, derivative(p))) === 0) return "separated";
+    }
+  } catch (error) {
+    if (!(error instanceof GoodBasisError) || error.code !== "budget") throw error;
+  }
+  return "together";
+}
