@@ -1,32 +1,13 @@
-import { GoodBasisError } from "../errors.js";
-import type { ExactBudget } from "../exact/budget.js";
 import type { Depth } from "../refine/resolve.js";
 import { type LevelVector, levelCouplings } from "./couplings.js";
-import type { ExactSector } from "./descent.js";
 import type { LevelDraft, LevelDrafts } from "./levels.js";
 import type { ExactProblem } from "./problem.js";
 import type { ProvedCoupling, ProvedLeaf, ProvedLevel } from "./proof.js";
-import { Resolvent } from "./resolvent.js";
 
-/** For each sector and energy: whether blocks of unknown energies may hold more states of a level. */
-export function completeness(
-  { h0 }: ExactProblem,
-  { sectors, unknown }: LevelDrafts,
-  budget: ExactBudget | undefined,
-): (level: LevelDraft) => boolean {
-  const open = [...new Set(unknown.map(({ sector }) => sector))];
-  return ({ energy, blocks }) =>
-    open.every((sector) => {
-      // a state in another sector than all of the level's is told apart by its labels
-      if (!blocks.some((member) => member.sector === sector)) return true;
-      if (energy.kind !== "value") return false;
-      try {
-        return new Resolvent(h0, sectors[sector] as ExactSector, energy.value, budget).isComplete;
-      } catch (error) {
-        if (!(error instanceof GoodBasisError) || error.code !== "budget") throw error;
-        return false;
-      }
-    });
+/** Whether the level is known to have no more states: no block of unknown energies stands in a sector of it. */
+function isComplete({ unknown }: LevelDrafts, { blocks }: LevelDraft): boolean {
+  // a state in any other sector is told apart by its labels
+  return unknown.every(({ sector }) => blocks.every((member) => member.sector !== sector));
 }
 
 /** Judges a level: every element of every perturbation between its states is looked at, exactly. */
@@ -35,7 +16,6 @@ export function judgeLevel(
   drafts: LevelDrafts,
   place: number,
   leaves: readonly ProvedLeaf[],
-  complete: (level: LevelDraft) => boolean,
   depth: Depth,
 ): ProvedLevel {
   const draft = drafts.levels[place] as LevelDraft;
@@ -57,7 +37,7 @@ export function judgeLevel(
   const inside = ({ states: [[a], [b]] }: ProvedCoupling): boolean =>
     a === b && (leaves[a]?.kind === "separated" || (!byLabels && hasOpenShift(leaves[a] as ProvedLeaf)));
   const outside = couplings.filter((coupling) => !inside(coupling));
-  const whole = complete(draft);
+  const whole = isComplete(drafts, draft);
   const verdict = outside.length > 0 ? "not good" : open.length === 0 && whole ? "good" : "undecided";
   return {
     place,

@@ -4,7 +4,7 @@ import type { ExactVector } from "../exact/vector.js";
 import type { Depth } from "../refine/resolve.js";
 import { exactAudit } from "./audit.js";
 import { descend, type EnergyBlock, type ExactSector } from "./descent.js";
-import { completeness, judgeLevel } from "./judge.js";
+import { judgeLevel } from "./judge.js";
 import { type LabelNames, labelText, namesOf } from "./label.js";
 import { alignByLadders } from "./ladder.js";
 import { formLevels, type LevelDraft, type LevelDrafts } from "./levels.js";
@@ -65,8 +65,7 @@ export function proveExactly(problem: ExactProblem, options: ProofOptions = {}):
   align(problem, leaves);
   const names = namesOfAll(problem, audit, drafts, leaves);
   const finished = finish(problem, names, leaves, tree, studied);
-  const complete = completeness(problem, drafts, budget);
-  const levels = studied.map((place) => judgeLevel(problem, drafts, place, finished, complete, depth));
+  const levels = studied.map((place) => judgeLevel(problem, drafts, place, finished, depth));
   return {
     n: problem.h0.n,
     audit,
@@ -207,9 +206,14 @@ function finish(
   studied: readonly number[],
 ): ProvedLeaf[] {
   const operators = problem.perturbations.map(({ operator }) => operator);
-  const subjects = leaves.map(({ draft }) => ({
-    ...draft,
+  const seconds = leaves.map(({ draft: { resolvent, scalarSecond }, vectors }) =>
+    resolvent === undefined || !scalarSecond ? undefined : secondOrder(vectors, operators, resolvent),
+  );
+  const subjects = leaves.map(({ draft }, k) => ({
+    path: draft.path,
+    kind: draft.kind,
     shifts: draft.shifts.map((value) => ({ value })),
+    hasSecond: seconds[k] !== undefined,
   }));
   const inLevel = new Map(studied.map((place) => [place, [] as (typeof subjects)[number][]]));
   leaves.forEach(({ levels }, k) => {
@@ -218,9 +222,7 @@ function finish(
   return leaves.map(({ draft, sector, levels, vectors }, k): ProvedLeaf => {
     const subject = subjects[k] as (typeof subjects)[number];
     const partners = levels.flatMap((place) => inLevel.get(place) ?? []);
-    const { resolvent } = draft;
-    const second =
-      resolvent === undefined || !draft.scalarSecond ? undefined : secondOrder(vectors, operators, resolvent);
+    const second = seconds[k];
     const shifts = problem.perturbations.map(({ name }, p) => ({
       perturbation: name,
       value: draft.shifts[p] ?? ({ kind: "unknown" } as const),

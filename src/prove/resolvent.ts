@@ -43,13 +43,6 @@ export class Resolvent {
     return sum;
   }
 
-  /** Whether no block of unknown energies has this one among them. @throws GoodBasisError `budget` */
-  get isComplete(): boolean {
-    return this.#others.every(
-      (block) => block.energy.kind !== "unknown" || exactKernel(this.#minusH0(block), this.#budget).length === 0,
-    );
-  }
-
   #solve(block: EnergyBlock, b: ExactVector): ExactVector | undefined {
     if (block.energy.kind === "value") return b.scale(this.#energy.minus(block.energy.value).inverse());
     const { size } = block.frame;

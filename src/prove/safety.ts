@@ -6,8 +6,8 @@ export interface SafetySubject {
   readonly path: readonly PathStep[];
   readonly kind: "state" | "separated" | "together";
   readonly shifts: readonly { readonly value: BlockValue }[];
-  /** Whether the second-order operator is a number on the leaf. */
-  readonly scalarSecond: boolean;
+  /** Whether it has a second order: the second-order operator is a number on it. */
+  readonly hasSecond: boolean;
 }
 
 const ALL: ProvedSafety = { energies: "all", states: "all", limitedBy: "" };
@@ -32,7 +32,7 @@ export function safetyOf(
   perturbations: number,
 ): ProvedSafety {
   if (own.kind === "together") {
-    const energies = own.scalarSecond && perturbations === 1 ? 2 : 1;
+    const energies = own.hasSecond && perturbations === 1 ? 2 : 1;
     return { energies, states: "none", limitedBy: "nothing exact tells it from another state of its level" };
   }
   const parting = level.flatMap((other) => {
