@@ -51,13 +51,8 @@ export function judgeLevel(
 }
 
 /** Whether a perturbation may couple states of one level inside a leaf. */
-function isOpen({ kind, energy, shifts }: ProvedLeaf, size: number): boolean {
-  if (size === 1 || kind === "separated") return false;
-  if (energy.kind !== "value") return true;
-  // with one perturbation, its eigenvectors in the leaf serve, in the field or not
-  const [only, ...more] = shifts;
-  if (more.length === 0 && only?.value.kind === "roots" && only.value.roots.multiplicity === 1) return false;
-  return hasOpenShift({ shifts });
+function isOpen(leaf: ProvedLeaf, size: number): boolean {
+  return size > 1 && leaf.kind === "together" && (leaf.energy.kind !== "value" || hasOpenShift(leaf));
 }
 
 function hasOpenShift({ shifts }: Pick<ProvedLeaf, "shifts">): boolean {

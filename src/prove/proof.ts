@@ -108,6 +108,18 @@ export interface ProvedSafety {
   readonly limitedBy: string;
 }
 
+/**
+ * What a leaf holds.
+ *
+ * | kind | states |
+ * |---|---|
+ * | `state` | one, with its exact vector |
+ * | `separated` | several, apart by energies or labels of their own that leave the field, as their vectors do |
+ * | `shifted` | several, apart by first-order shifts of the one perturbation that leave the field |
+ * | `together` | several that nothing exact tells apart |
+ */
+export type LeafKind = "state" | "separated" | "shifted" | "together";
+
 /** States that nothing exact takes further apart; usually one. */
 export interface ProvedLeaf {
   /** Labels of conserved candidates, in the order in which they were used. */
@@ -119,11 +131,7 @@ export interface ProvedLeaf {
   readonly sector: number;
   /** Mutually orthogonal exact vectors that span the leaf, not normalised; phases as {@link fixExactPhase} has them. */
   readonly vectors: readonly ExactVector[];
-  /**
-   * `state`: one exact vector. `separated`: several states, each with labels of its own, whose vectors leave the field.
-   * `together`: nothing exact tells them apart.
-   */
-  readonly kind: "state" | "separated" | "together";
+  readonly kind: LeafKind;
   readonly shifts: readonly ProvedShift[];
   /**
    * Second order: E2 of perturbations p and q in row p, column q, from Re⟨V_p q|x_q⟩; undefined where it is not a number of the

@@ -249,6 +249,6 @@ function finish(
 
 function statusOf({ energy, kind }: LeafDraft, shifts: readonly BlockValue[]): ProofStatus {
   const known = energy.kind === "value" && shifts.every((value) => value.kind === "value");
-  if (kind === "separated") return "separated";
-  return known ? "exact" : "bounded";
+  if (!known) return "bounded";
+  return kind === "separated" ? "separated" : "exact";
 }

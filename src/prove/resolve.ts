@@ -7,7 +7,7 @@ import type { Depth } from "../refine/resolve.js";
 import { type EnergyBlock, type ExactSector, refineByCandidates } from "./descent.js";
 import type { Frame } from "./frame.js";
 import type { ExactProblem } from "./problem.js";
-import type { BlockValue } from "./proof.js";
+import type { BlockValue, LeafKind } from "./proof.js";
 import { refineHermitian, within } from "./refine.js";
 import { Resolvent } from "./resolvent.js";
 import type { ProofTree } from "./tree.js";
@@ -24,7 +24,7 @@ export interface LeafDraft extends ShiftedBlock {
   readonly resolvent: Resolvent | undefined;
   /** Whether the second-order operator of a single perturbation is a number on the leaf. */
   readonly scalarSecond: boolean;
-  readonly kind: "state" | "separated" | "together";
+  readonly kind: LeafKind;
 }
 
 /** What resolving needs beside the block. */
@@ -105,24 +105,49 @@ function effective(v: ExactOperator, resolvent: Resolvent): (frame: Frame) => Ex
     );
 }
 
-/** Largest leaf for which a label's characteristic polynomial is formed. */
+/** Largest leaf for which a characteristic polynomial is formed to tell its states apart. */
 const MOST_SEPARATED = 32;
 
-/** Whether a label with values outside the field takes the states of a leaf apart: no eigenvalue occurs twice there. */
-function kindOf({ problem, budget }: Resolving, { frame, labels }: ShiftedBlock): LeafDraft["kind"] {
+function kindOf(given: Resolving, block: ShiftedBlock): LeafKind {
+  const { frame, energy, shifts } = block;
   if (frame.size === 1) return "state";
-  if (frame.size > MOST_SEPARATED) return "together";
+  if (isSimple(energy) || isSeparated(given, block)) return "separated";
+  const [only, ...more] = shifts;
+  return more.length === 0 && only !== undefined && isSimple(only) ? "shifted" : "together";
+}
+
+function isSimple(value: BlockValue): boolean {
+  return value.kind === "roots" && value.roots.multiplicity === 1;
+}
+
+/**
+ * Whether labels with values outside the field take the states of a leaf apart, together with the energy where it leaves the
+ * field too: a combination of these operators, which commute, has no eigenvalue twice.
+ */
+function isSeparated({ problem, budget }: Resolving, { frame, labels, energy }: ShiftedBlock): boolean {
+  if (frame.size > MOST_SEPARATED) return false;
+  const operators = labels.flatMap(({ candidate, value }) =>
+    value.kind === "roots" ? (problem.candidates[candidate]?.operator ?? []) : [],
+  );
+  if (operators.length === 0) return false;
   try {
-    for (const { candidate, value } of labels) {
-      const operator = problem.candidates[candidate]?.operator;
-      if (value.kind !== "roots" || operator === undefined) continue;
-      const { matrix, invariant } = frame.matrix(operator, budget);
-      if (!invariant) continue;
-      const p = characteristicPolynomial(matrix, budget);
-      if (degree(commonDivisor(p, derivative(p))) === 0) return "separated";
-    }
+    const matrices = [...operators, ...(energy.kind === "roots" ? [problem.h0] : [])]
+      .map((operator) => frame.matrix(operator, budget))
+      .filter(({ invariant }) => invariant)
+      .map(({ matrix }) => matrix);
+    return COMBINATIONS.some((coefficient) => {
+      const sum = matrices.reduce(
+        (total, matrix, k) => total.plus(matrix.scale(coefficient(k))),
+        ExactOperator.zero(frame.size),
+      );
+      const p = characteristicPolynomial(sum, budget);
+      return degree(commonDivisor(p, derivative(p))) === 0;
+    });
   } catch (error) {
     if (!(error instanceof GoodBasisError) || error.code !== "budget") throw error;
+    return false;
   }
-  return "together";
 }
+
+/** Combinations that are tried: the first operator alone, then all with different weights. */
+const COMBINATIONS: readonly ((k: number) => number)[] = [(k) => (k === 0 ? 1 : 0), (k) => k + 1, (k) => (k + 2) ** 2];

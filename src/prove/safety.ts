@@ -1,10 +1,10 @@
 import type { PathStep } from "../refine/tree.js";
-import type { BlockValue, ProofNode, ProvedSafety } from "./proof.js";
+import type { BlockValue, LeafKind, ProofNode, ProvedSafety } from "./proof.js";
 
 /** What safety needs to know of a leaf. */
 export interface SafetySubject {
   readonly path: readonly PathStep[];
-  readonly kind: "state" | "separated" | "together";
+  readonly kind: LeafKind;
   readonly shifts: readonly { readonly value: BlockValue }[];
   /** Whether it has a second order: the second-order operator is a number on it. */
   readonly hasSecond: boolean;
@@ -64,6 +64,9 @@ export function safetyOf(
           states: 0,
           limitedBy: `not every perturbation alone tells it from its partners; a second order exists only ${ray}`,
         };
+  }
+  if (own.kind === "shifted") {
+    return { energies: 2, states: 0, limitedBy: "only the perturbation tells it from a partner with the same labels" };
   }
   if (parting.some(({ node }) => node.kind === "second order")) {
     return {

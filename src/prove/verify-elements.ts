@@ -92,11 +92,8 @@ function merelySpan(proof: ExactProof, a: number, b: number): boolean {
 
 /** Whether a perturbation may couple states inside a leaf. */
 function isOpen({ depth }: ExactProof, { kind, energy, shifts }: ProvedLeaf, size: number): boolean {
-  if (size === 1 || kind === "separated" || depth === "labels") return false;
-  if (energy.kind !== "value") return true;
-  const [only, ...more] = shifts;
-  if (more.length === 0 && only?.value.kind === "roots" && only.value.roots.multiplicity === 1) return false;
-  return shifts.some(({ value }) => value.kind !== "value");
+  if (size === 1 || kind !== "together" || depth === "labels") return false;
+  return energy.kind !== "value" || shifts.some(({ value }) => value.kind !== "value");
 }
 
 /** All vectors of a level, with the number of their leaf. */
