@@ -1,4 +1,4 @@
-import type { ExactBudget } from "../exact/budget.js";
+import type { ProofBudget } from "./budget.js";
 import { Frame } from "./frame.js";
 import type { ExactProblem } from "./problem.js";
 import type { BlockValue } from "./proof.js";
@@ -26,7 +26,7 @@ export function descend(
   problem: ExactProblem,
   conserved: readonly number[],
   tree: ProofTree,
-  budget?: ExactBudget,
+  budget: ProofBudget,
 ): ExactSector[] {
   const whole: ProofBlock = { frame: Frame.kets(problem.h0.n), labels: [], path: [] };
   const byEnergy = (block: ProofBlock): EnergyBlock[] =>
@@ -52,7 +52,7 @@ export function refineByCandidates<B extends ProofBlock>(
   block: B,
   open: readonly number[],
   tree: ProofTree,
-  budget?: ExactBudget,
+  budget: ProofBudget,
 ): B[] {
   for (const place of open) {
     const candidate = problem.candidates[place];

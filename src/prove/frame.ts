@@ -1,8 +1,9 @@
-import { type ExactBudget, Meter } from "../exact/budget.js";
+import type { Meter } from "../exact/budget.js";
 import { ExactOperator } from "../exact/operator.js";
 import type { ExactTriplet } from "../exact/rows.js";
 import { Surd } from "../exact/surd.js";
 import { ExactVector } from "../exact/vector.js";
+import type { ProofBudget } from "./budget.js";
 
 /** An operator over the vectors of a frame: M_ij = ⟨q_i|A|q_j⟩ / ⟨q_i|q_i⟩. */
 export interface FrameMatrix {
@@ -72,8 +73,8 @@ export class Frame {
    *
    * @throws GoodBasisError `budget`
    */
-  matrix(operator: ExactOperator, budget?: ExactBudget): FrameMatrix {
-    const meter = new Meter("prove", budget);
+  matrix(operator: ExactOperator, budget: ProofBudget): FrameMatrix {
+    const meter = budget.ledger;
     const triplets: ExactTriplet[] = [];
     let invariant = true;
     for (const [j, vector] of this.vectors.entries()) {

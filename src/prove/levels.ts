@@ -1,7 +1,7 @@
-import type { ExactBudget } from "../exact/budget.js";
 import type { ExactOperator } from "../exact/operator.js";
 import { fromRoots, type Polynomial } from "../exact/polynomial.js";
 import { Surd } from "../exact/surd.js";
+import type { ProofBudget } from "./budget.js";
 import type { EnergyBlock, ExactSector } from "./descent.js";
 import { Frame } from "./frame.js";
 import type { LevelRoot } from "./proof.js";
@@ -41,7 +41,7 @@ export function formLevels(
   h0: ExactOperator,
   given: readonly ExactSector[],
   tree: ProofTree,
-  budget?: ExactBudget,
+  budget: ProofBudget,
 ): LevelDrafts {
   const sectors = partCommonRoots(h0, given, tree, budget);
   const exact = new ValueGroups<BlockPlace & { size: number }>();
@@ -84,7 +84,7 @@ function partCommonRoots(
   h0: ExactOperator,
   sectors: readonly ExactSector[],
   tree: ProofTree,
-  budget: ExactBudget | undefined,
+  budget: ProofBudget,
 ): readonly ExactSector[] {
   const blocks = sectors.flatMap((sector) => sector.blocks);
   const polynomials = blocks.flatMap(({ energy }) => (energy.kind === "roots" ? [energy.roots.polynomial] : []));

@@ -3,6 +3,7 @@ import { fixExactPhase } from "../exact/phase.js";
 import type { ExactVector } from "../exact/vector.js";
 import type { Depth } from "../refine/resolve.js";
 import { exactAudit } from "./audit.js";
+import { type ProofBudget, proofBudget } from "./budget.js";
 import { descend, type EnergyBlock, type ExactSector } from "./descent.js";
 import { judgeLevel } from "./judge.js";
 import { type LabelNames, labelText, namesOf } from "./label.js";
@@ -32,6 +33,8 @@ export interface ProofOptions {
   readonly depth?: Depth | undefined;
   /** How far each single computation may grow. */
   readonly budget?: ExactBudget | undefined;
+  /** Steps that all of them together may cost, as {@link ExactBudget} counts them; two thousand million unless stated. */
+  readonly work?: number | undefined;
 }
 
 /**
@@ -55,7 +58,8 @@ export interface ProofOptions {
  */
 export function proveExactly(problem: ExactProblem, options: ProofOptions = {}): ExactProof {
   requireProblem("proveExactly", problem);
-  const { budget, depth = "full", isStudied = () => true } = options;
+  const { depth = "full", isStudied = () => true } = options;
+  const budget = proofBudget(options.budget, options.work);
   const audit = exactAudit(problem, budget);
   const conserved = audit.candidates.flatMap((finding, place) => (finding.conserved ? [place] : []));
   const tree = new ProofTree();
@@ -109,7 +113,7 @@ interface Leaving {
   readonly conserved: readonly number[];
   readonly depth: Depth;
   readonly tree: ProofTree;
-  readonly budget: ExactBudget | undefined;
+  readonly budget: ProofBudget;
 }
 
 /** The leaves of all studied levels, level by level, and then those of unknown energy. */

@@ -1,9 +1,9 @@
-import type { ExactBudget } from "../exact/budget.js";
 import { orthogonalise } from "../exact/gram-schmidt.js";
 import type { ExactOperator } from "../exact/operator.js";
 import { fromRoots } from "../exact/polynomial.js";
 import { Surd } from "../exact/surd.js";
 import { ExactVector } from "../exact/vector.js";
+import type { ProofBudget } from "./budget.js";
 import { connectedParts } from "./connected.js";
 import { Frame } from "./frame.js";
 import type { BlockValue } from "./proof.js";
@@ -26,7 +26,7 @@ export interface Child {
  * @param restricted - the matrix of the operator over the vectors of a frame, of this block or a part of it
  * @throws GoodBasisError `budget`
  */
-export function refineHermitian(frame: Frame, restricted: Restricted, budget?: ExactBudget): Child[] {
+export function refineHermitian(frame: Frame, restricted: Restricted, budget: ProofBudget): Child[] {
   const matrix = restricted(frame);
   const exact = new ValueGroups<readonly ExactVector[]>();
   const pieces: RootPiece[] = [];
@@ -61,7 +61,7 @@ function partsOf(
   indices: readonly number[],
   norms: readonly Surd[],
   solved: Map<string, Part[]>,
-  budget: ExactBudget | undefined,
+  budget: ProofBudget,
 ): Part[] {
   const [only] = indices;
   if (indices.length === 1 && only !== undefined) {
@@ -78,7 +78,7 @@ function partsOf(
 }
 
 /** The compression P A P of an operator, over any frame. */
-export function within(operator: ExactOperator, budget?: ExactBudget): Restricted {
+export function within(operator: ExactOperator, budget: ProofBudget): Restricted {
   return (frame) => frame.matrix(operator, budget).matrix;
 }
 
@@ -91,7 +91,7 @@ const I_TWICE = Surd.i.times(2);
  * @returns undefined where the operator leads out of the block
  * @throws GoodBasisError `budget`
  */
-export function refineNormal(frame: Frame, operator: ExactOperator, budget?: ExactBudget): Child[] | undefined {
+export function refineNormal(frame: Frame, operator: ExactOperator, budget: ProofBudget): Child[] | undefined {
   const { matrix, invariant } = frame.matrix(operator, budget);
   if (!invariant) return undefined;
   if (operator.isHermitian) {

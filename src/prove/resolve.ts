@@ -1,9 +1,9 @@
 import { GoodBasisError } from "../errors.js";
-import type { ExactBudget } from "../exact/budget.js";
 import { characteristicPolynomial } from "../exact/characteristic.js";
 import { ExactOperator } from "../exact/operator.js";
 import { commonDivisor, degree, derivative } from "../exact/polynomial.js";
 import type { Depth } from "../refine/resolve.js";
+import type { ProofBudget } from "./budget.js";
 import { type EnergyBlock, type ExactSector, refineByCandidates } from "./descent.js";
 import type { Frame } from "./frame.js";
 import type { ExactProblem } from "./problem.js";
@@ -35,7 +35,7 @@ export interface Resolving {
   readonly conserved: readonly number[];
   readonly depth: Depth;
   readonly tree: ProofTree;
-  readonly budget: ExactBudget | undefined;
+  readonly budget: ProofBudget;
 }
 
 /**

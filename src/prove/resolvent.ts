@@ -1,8 +1,8 @@
-import type { ExactBudget } from "../exact/budget.js";
 import { exactKernel } from "../exact/elimination.js";
 import { ExactOperator } from "../exact/operator.js";
 import type { Surd } from "../exact/surd.js";
 import { ExactVector } from "../exact/vector.js";
+import type { ProofBudget } from "./budget.js";
 import type { EnergyBlock, ExactSector } from "./descent.js";
 
 /**
@@ -14,10 +14,10 @@ export class Resolvent {
   readonly #h0: ExactOperator;
   readonly #energy: Surd;
   readonly #others: readonly EnergyBlock[];
-  readonly #budget: ExactBudget | undefined;
+  readonly #budget: ProofBudget;
   readonly #shifted = new Map<EnergyBlock, ExactOperator>();
 
-  constructor(h0: ExactOperator, sector: ExactSector, energy: Surd, budget?: ExactBudget) {
+  constructor(h0: ExactOperator, sector: ExactSector, energy: Surd, budget: ProofBudget) {
     this.#h0 = h0;
     this.#energy = energy;
     this.#others = sector.blocks.filter((block) => block.energy.kind !== "value" || !block.energy.value.equals(energy));
@@ -49,6 +49,7 @@ export class Resolvent {
     // the null space of (E − H0, −b) is one vector (x, 1) where the matrix is not singular
     const column = b.values.map((value, k) => [b.index[k] as number, size, value.negate()] as const);
     const matrix = [...this.#minusH0(block).elements()].map(({ row, col, value }) => [row, col, value] as const);
+    this.#budget.ledger.spendProducts(matrix.length * size);
     const solutions = exactKernel(ExactOperator.fromTriplets(size + 1, [...matrix, ...column]), this.#budget);
     const [solution, ...more] = solutions;
     const last = solution?.component(size);

@@ -1,10 +1,10 @@
-import type { ExactBudget } from "../exact/budget.js";
 import { exactKernel } from "../exact/elimination.js";
 import { orthogonalise } from "../exact/gram-schmidt.js";
 import type { ExactOperator } from "../exact/operator.js";
 import { degree, divide, type Polynomial } from "../exact/polynomial.js";
 import { Surd } from "../exact/surd.js";
 import type { ExactVector } from "../exact/vector.js";
+import type { ProofBudget } from "./budget.js";
 import { Frame } from "./frame.js";
 import type { BlockValue } from "./proof.js";
 import { coprimePolynomials, type Factor, isolate, samePolynomial } from "./roots.js";
@@ -37,7 +37,7 @@ export function groupPieces(
   restricted: Restricted,
   pieces: readonly RootPiece[],
   others: readonly Polynomial[],
-  budget?: ExactBudget,
+  budget: ProofBudget,
 ): RootGroup[] {
   if (pieces.length === 0) return [];
   const base = coprimePolynomials([...pieces.map((piece) => piece.polynomial), ...others]);
@@ -57,12 +57,7 @@ function valueOfFactor({ polynomial, multiplicity }: Factor): BlockValue {
 }
 
 /** The vectors of a piece that p(A) annihilates. */
-function partOf(
-  restricted: Restricted,
-  piece: RootPiece,
-  p: Polynomial,
-  budget: ExactBudget | undefined,
-): readonly ExactVector[] {
+function partOf(restricted: Restricted, piece: RootPiece, p: Polynomial, budget: ProofBudget): readonly ExactVector[] {
   if (samePolynomial(piece.polynomial, p)) return piece.vectors;
   const frame = new Frame(piece.vectors);
   const matrix = restricted(frame);

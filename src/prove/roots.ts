@@ -34,7 +34,7 @@ export interface Roots {
 const BITS = 80;
 
 /** Largest degree of a rational polynomial whose roots are isolated. */
-const MOST_DEGREE = 128;
+const MOST_DEGREE = 64;
 
 /**
  * Isolates the roots of a polynomial with real coefficients of the field, none of them double.

@@ -1,5 +1,4 @@
 import { GoodBasisError } from "../errors.js";
-import type { ExactBudget } from "../exact/budget.js";
 import { characteristicPolynomial } from "../exact/characteristic.js";
 import { exactKernel } from "../exact/elimination.js";
 import { fieldRoots } from "../exact/field-roots.js";
@@ -7,6 +6,7 @@ import { ExactOperator } from "../exact/operator.js";
 import { degree, type Polynomial } from "../exact/polynomial.js";
 import { Surd } from "../exact/surd.js";
 import { ExactVector } from "../exact/vector.js";
+import type { ProofBudget } from "./budget.js";
 import { guessEigenvalues } from "./guess.js";
 import { type Factor, squareFreeFactors } from "./roots.js";
 
@@ -38,7 +38,7 @@ const SMALLEST_GUESS = 3;
  * @param norms - the diagonal of N, positive: the squared norms of the vectors that M is written over
  * @throws GoodBasisError `budget` - in a kernel
  */
-export function splitMatrix(matrix: ExactOperator, norms: readonly Surd[], budget?: ExactBudget): Part[] {
+export function splitMatrix(matrix: ExactOperator, norms: readonly Surd[], budget: ProofBudget): Part[] {
   const { n } = matrix;
   if (n === 1) return [part(matrix.entry(0, 0), [ExactVector.unit(1, 0)])];
   const parts: Part[] = [];
@@ -62,16 +62,13 @@ function part(value: Surd, coordinates: readonly ExactVector[]): Part {
   return { value: { kind: "value", value }, coordinates };
 }
 
-function kernelOf(matrix: ExactOperator, value: Surd, budget: ExactBudget | undefined): ExactVector[] {
+function kernelOf(matrix: ExactOperator, value: Surd, budget: ProofBudget): ExactVector[] {
+  budget.ledger.spendProducts(matrix.count * matrix.n);
   return exactKernel(matrix.minus(ExactOperator.identity(matrix.n).scale(value)), budget);
 }
 
 /** What is orthogonal to some vectors: Σ_i c_i* N_i x_i = 0. */
-function complement(
-  vectors: readonly ExactVector[],
-  norms: readonly Surd[],
-  budget: ExactBudget | undefined,
-): ExactVector[] {
+function complement(vectors: readonly ExactVector[], norms: readonly Surd[], budget: ProofBudget): ExactVector[] {
   const n = norms.length;
   const conditions = vectors.flatMap((vector, row) =>
     vector.values.map((x, k) => {
@@ -87,7 +84,7 @@ function splitRest(
   matrix: ExactOperator,
   norms: readonly Surd[],
   rest: readonly ExactVector[],
-  budget: ExactBudget | undefined,
+  budget: ProofBudget,
 ): Part[] {
   const whole = rest.length === matrix.n;
   const basis = whole ? rest : orthogonal(rest, norms);
@@ -95,6 +92,7 @@ function splitRest(
   let factors: Factor[];
   let split: { factor: Factor; roots: readonly Surd[]; left: Polynomial }[];
   try {
+    budget.ledger.spendProducts(inner.count * inner.n ** 2);
     factors = squareFreeFactors(characteristicPolynomial(inner, budget));
     split = factors.map((factor) => {
       const { roots, rest: left } = fieldRoots(factor.polynomial, budget);
@@ -116,7 +114,7 @@ function splitRest(
 }
 
 /** p(M), by Horner's rule. */
-export function polynomialOf(p: Polynomial, matrix: ExactOperator, budget?: ExactBudget): ExactOperator {
+export function polynomialOf(p: Polynomial, matrix: ExactOperator, budget: ProofBudget): ExactOperator {
   const one = ExactOperator.identity(matrix.n);
   return p.reduceRight((sum, c) => sum.times(matrix, budget).plus(one.scale(c)), ExactOperator.zero(matrix.n));
 }

@@ -1,7 +1,10 @@
+import { expect } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import type { SurdInput } from "../../src/exact/surd.js";
 import type { ExactCandidate, ExactProblem } from "../../src/prove/problem.js";
 import type { BlockValue, ExactProof, ProvedLeaf } from "../../src/prove/proof.js";
+import { type ProofOptions, proveExactly } from "../../src/prove/prove.js";
+import { verifyProof } from "../../src/prove/verify.js";
 import { angularMomentum } from "../exact/matrices.js";
 
 /** Jx, Jy, Jz, J+ and J² of one angular momentum 2j, by descending m. */
@@ -62,6 +65,21 @@ export function problemOf(
       given instanceof ExactOperator ? { name, operator: given } : { name, ...given },
     ),
   };
+}
+
+/** The proof of a problem, which must pass when it is checked again. */
+export function proved(problem: ExactProblem, options: ProofOptions = {}): ExactProof {
+  const proof = proveExactly(problem, options);
+  expect(verifyProof(proof, problem).faults).toEqual([]);
+  return proof;
+}
+
+/** Components of a leaf's only vector, normalised, as text by ket; kets without one are left out. */
+export function components(leaf: ProvedLeaf): Record<number, string> {
+  const [vector, ...more] = leaf.vectors;
+  const unit = vector?.normalised();
+  if (unit === undefined || more.length > 0) throw new Error("not one vector with a rational norm");
+  return Object.fromEntries(unit.values.map((value, k) => [unit.index[k], value.text({ underRoot: true })]));
 }
 
 /** An exact eigenvalue as text; anything else in words. */
