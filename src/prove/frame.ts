@@ -1,9 +1,8 @@
-import type { Meter } from "../exact/budget.js";
 import { ExactOperator } from "../exact/operator.js";
 import type { ExactTriplet } from "../exact/rows.js";
 import { Surd } from "../exact/surd.js";
 import { ExactVector } from "../exact/vector.js";
-import type { ProofBudget } from "./budget.js";
+import type { Ledger, ProofBudget } from "./budget.js";
 
 /** An operator over the vectors of a frame: M_ij = ⟨q_i|A|q_j⟩ / ⟨q_i|q_i⟩. */
 export interface FrameMatrix {
@@ -56,11 +55,11 @@ export class Frame {
   }
 
   /** ⟨q_i|v⟩ / ⟨q_i|q_i⟩ where it is not zero. */
-  coefficients(vector: ExactVector, meter?: Meter): Map<number, Surd> {
+  coefficients(vector: ExactVector, ledger?: Ledger): Map<number, Surd> {
     const found = new Map<number, Surd>();
     for (const i of this.meeting(vector)) {
       const own = this.vectors[i] as ExactVector;
-      meter?.spendProducts(Math.min(own.values.length, vector.values.length));
+      ledger?.spendProducts(Math.min(own.values.length, vector.values.length));
       const overlap = own.inner(vector);
       if (!overlap.isZero) found.set(i, overlap.over(own.squaredNorm));
     }
@@ -74,15 +73,15 @@ export class Frame {
    * @throws GoodBasisError `budget`
    */
   matrix(operator: ExactOperator, budget: ProofBudget): FrameMatrix {
-    const meter = budget.ledger;
+    const { ledger } = budget;
     const triplets: ExactTriplet[] = [];
     let invariant = true;
     for (const [j, vector] of this.vectors.entries()) {
       const image = operator.apply(vector);
-      meter.spendProducts((vector.values.length * operator.count) / operator.n);
+      ledger.spendProducts((vector.values.length * operator.count) / operator.n);
       let inside = Surd.zero;
-      for (const [i, value] of this.coefficients(image, meter)) {
-        meter.weigh(value.largeTerms);
+      for (const [i, value] of this.coefficients(image, ledger)) {
+        ledger.weigh(value.largeTerms);
         triplets.push([i, j, value]);
         inside = inside.plus(value.squaredModulus().times((this.vectors[i] as ExactVector).squaredNorm));
       }

@@ -27,6 +27,8 @@ export function verifyLevels(proof: ExactProof, problem: ExactProblem, faults: F
     const before = proof.levels[k - 1];
     faults.unless(before === undefined || before.place < level.place, place, "does not follow the one before");
     if (owners === undefined || !faults.unless(isEnergyOf(level, owners), place, "has another energy")) continue;
+    const known = level.members.every(({ leaf }) => proof.leaves[leaf] !== undefined);
+    if (!faults.unless(known, place, "names a leaf that is not there")) continue;
     verifyMembers(proof, level, owners, place, faults);
     verifyElements(proof, problem, level, place, faults);
     const open = unknown.some((block) => level.members.some(({ leaf }) => !labelsApart(proof.leaves[leaf], block)));
