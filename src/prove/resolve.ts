@@ -8,7 +8,7 @@ import { type EnergyBlock, type ExactSector, refineByCandidates } from "./descen
 import type { Frame } from "./frame.js";
 import type { ExactProblem } from "./problem.js";
 import type { BlockValue, LeafKind } from "./proof.js";
-import { refineHermitian, within } from "./refine.js";
+import { type Child, refineHermitian, within } from "./refine.js";
 import { Resolvent } from "./resolvent.js";
 import type { ProofTree } from "./tree.js";
 
@@ -81,13 +81,15 @@ function secondOrder(given: Resolving, block: ShiftedBlock, resolvent: Resolvent
   if (block.shifts.some((shift) => shift.kind !== "value")) return [leaf(given, block)];
   const [only, ...more] = problem.perturbations;
   if (block.frame.size === 1 || only === undefined || more.length > 0) return [leaf(given, block, resolvent)];
-  const split = tree.refine(block, { kind: "second order", operator: "W" }, () =>
-    refineHermitian(block.frame, effective(only.operator, resolvent), budget),
+  const split = tree.refine(block, { kind: "second order", operator: "W" }, (): Child[] => {
+    const children = refineHermitian(block.frame, effective(only.operator, resolvent), budget);
+    // states of a part with eigenvalues outside the field could not be compared with the others of their level
+    const exact = children.every(({ value }) => value.kind === "value");
+    return exact ? children : [{ value: { kind: "unknown" }, frame: block.frame }];
+  });
+  return (split ?? []).map(({ child, path }) =>
+    leaf(given, { ...block, frame: child.frame, path }, resolvent, child.value.kind === "value"),
   );
-  if (split === undefined || split.some(({ child }) => child.value.kind !== "value")) {
-    return [leaf(given, block, resolvent)];
-  }
-  return split.map(({ child, path }) => leaf(given, { ...block, frame: child.frame, path }, resolvent, true));
 }
 
 /** W = P V R V P over a frame. */

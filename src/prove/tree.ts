@@ -84,6 +84,9 @@ function sentenceOf({ kind, operator }: NodeTitle, children: readonly Child[], s
     const what = exact.length === 1 ? `is the number ${list}` : `has the eigenvalues ${list}`;
     return `${operator} ${what} in this block, proved by exact eigenspaces that fill ${all}`;
   }
+  if (kind === "second order") {
+    return `the second-order operator has eigenvalues on ${all} that leave the field; its states are left together`;
+  }
   const rest = children.filter(({ value }) => value.kind !== "value");
   const dimension = rest.reduce((sum, { frame }) => sum + frame.size, 0);
   const known = exact.length === 0 ? "" : `${operator} has the exact eigenvalues ${list} in this block; `;

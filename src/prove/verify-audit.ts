@@ -27,6 +27,10 @@ export function verifyAudit(audit: ExactAudit, problem: ExactProblem, faults: Fa
     const right = finding.conserved === conserved && finding.descriptive === descriptive;
     faults.unless(right, finding.name, "what is said of its conservation does not follow from the commutators");
   }
+  const conserved = audit.candidates.filter((finding) => finding.conserved).map(({ name }) => name);
+  const wanted = conserved.flatMap((a, k) => conserved.slice(k + 1).map((b) => `[${a}, ${b}]`));
+  const stated = audit.pairs.map(({ left, right }) => `[${left}, ${right}]`);
+  faults.unless(wanted.join() === stated.join(), "pairs", "not every pair of conserved candidates is stated");
   for (const commutator of audit.pairs) verifyCommutator(commutator, operators, faults);
 }
 

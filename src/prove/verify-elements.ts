@@ -13,13 +13,17 @@ export function verifyElements(
   place: string,
   faults: Faults,
 ): void {
+  const names = problem.perturbations.map(({ name }) => name).join("\n");
+  for (const { leaf } of level.members) {
+    const stated = proof.leaves[leaf]?.shifts.map(({ perturbation }) => perturbation).join("\n");
+    faults.unless(stated === names, `leaf ${leaf}`, "does not have one shift for each perturbation");
+  }
   let listed = 0;
   for (const { name, operator } of problem.perturbations) {
     for (const { leaf } of level.members) {
       const own = proof.leaves[leaf] as ProvedLeaf;
       const shift = own.shifts.find(({ perturbation }) => perturbation === name);
-      if (!faults.unless(shift !== undefined, `leaf ${leaf}`, `has no shift by ${name}`) || shift === undefined)
-        continue;
+      if (shift === undefined) continue;
       const right = hasShift(own.vectors, shift, operator);
       faults.unless(right, `leaf ${leaf}, shift by ${name}`, "is not what V does on the leaf");
     }

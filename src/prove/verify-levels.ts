@@ -99,6 +99,8 @@ function verifyPlaces(proof: ExactProof, faults: Faults): void {
   for (const [k, { energy, levels }] of proof.leaves.entries()) {
     const right = levels.length === pointsOf(energy).length && new Set(levels).size === levels.length;
     faults.unless(right, `leaf ${k}`, "does not name one level for each of its energies");
+    const listed = levels.length === 0 || levels.some((place) => proof.levels.some((level) => level.place === place));
+    faults.unless(listed, `leaf ${k}`, "belongs to no level of the list");
     for (const place of levels) {
       const level = proof.levels.find((other) => other.place === place);
       const member = level === undefined || level.members.some(({ leaf }) => leaf === k);

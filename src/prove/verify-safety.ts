@@ -18,7 +18,8 @@ export function verifySafety(proof: ExactProof, problem: ExactProblem, faults: F
     partners.delete(k);
     const list = [...partners].flatMap((other) => proof.leaves[other] ?? []);
     const { energies, states } = expected(leaf, list, problem.perturbations.length);
-    const right = leaf.safe.energies === energies && leaf.safe.states === states;
+    const said = leaf.safe.limitedBy === "" ? energies === "all" : energies !== "all";
+    const right = said && leaf.safe.energies === energies && leaf.safe.states === states;
     faults.unless(right, `leaf ${k}, safe orders`, `are ${energies} for energies and ${states} for states`);
     const exact = leaf.energy.kind === "value" && leaf.shifts.every(({ value }) => value.kind === "value");
     const status = !exact ? "bounded" : leaf.kind === "separated" ? "separated" : "exact";

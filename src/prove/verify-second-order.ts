@@ -8,8 +8,11 @@ import type { Faults } from "./verify-faults.js";
 export function verifySecondOrder(proof: ExactProof, problem: ExactProblem, faults: Faults): void {
   for (const [k, leaf] of proof.leaves.entries()) {
     const { second, corrections, energy } = leaf;
-    if (second === undefined) continue;
     const place = `leaf ${k}, second order`;
+    if (second === undefined) {
+      faults.unless(corrections.length === 0, place, "there are corrections but no second order");
+      continue;
+    }
     const complete =
       energy.kind === "value" &&
       corrections.length === problem.perturbations.length &&

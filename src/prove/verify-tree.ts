@@ -1,3 +1,4 @@
+import type { Surd } from "../exact/surd.js";
 import type { PathStep } from "../refine/tree.js";
 import type { BlockValue, ExactProof, ProofNode, ProvedLabel, ProvedShift } from "./proof.js";
 import type { Faults } from "./verify-faults.js";
@@ -9,6 +10,9 @@ interface End {
   readonly labels: readonly ProvedLabel[];
   readonly energy: BlockValue;
   readonly shifts: readonly ProvedShift[];
+  /** E2 where a single perturbation has one. */
+  readonly second: Surd | undefined;
+  readonly sector: number;
   readonly size: number;
 }
 
@@ -18,11 +22,17 @@ interface End {
  */
 export function verifyTree(proof: ExactProof, faults: Faults): void {
   const ends: End[] = [
-    ...proof.leaves.map((leaf, k) => ({ ...leaf, place: `leaf ${k}`, size: leaf.vectors.length })),
+    ...proof.leaves.map((leaf, k) => ({
+      ...leaf,
+      place: `leaf ${k}`,
+      second: leaf.second?.[0]?.[0],
+      size: leaf.vectors.length,
+    })),
     ...proof.background.map((block, k) => ({
       ...block,
       place: `background ${k}`,
       shifts: [],
+      second: undefined,
       size: block.vectors.length,
     })),
   ];
@@ -49,12 +59,28 @@ export function verifyTree(proof: ExactProof, faults: Faults): void {
     const exact = children.every(({ value }) => value.kind === "value");
     faults.unless((status === "exact") === exact, `node ${k}`, `is not ${status}`);
   }
+  verifySectors(proof.nodes, ends, faults);
   const statuses = proof.nodes.map(({ status }) => status);
   const weakest = statuses.includes("bounded") ? "bounded" : statuses.includes("separated") ? "separated" : "exact";
   faults.unless(proof.status === weakest, "status", `is ${weakest} by the nodes, not ${proof.status}`);
 }
 
-/** Whether the end of a path states what a node above it says; the second order is checked elsewhere. */
+/** Blocks are of one sector where their paths agree down to the first node by H0. */
+function verifySectors(nodes: readonly ProofNode[], ends: readonly End[], faults: Faults): void {
+  const sectorOf = new Map<string, number>();
+  const pathOf = new Map<number, string>();
+  for (const { path, sector, place } of ends) {
+    const to = path.findIndex(({ node }) => nodes[node]?.kind === "energy");
+    const steps = to < 0 ? path : path.slice(0, to);
+    const key = steps.map(({ node, child }) => `${node}.${child}`).join(" ");
+    const known = (sectorOf.get(key) ?? sector) === sector && (pathOf.get(sector) ?? key) === key;
+    faults.unless(known, place, `does not belong to sector ${sector}`);
+    sectorOf.set(key, sector);
+    pathOf.set(sector, key);
+  }
+}
+
+/** Whether the end of a path states what a node above it says. */
 function carries(end: End, { kind, operator }: ProofNode, value: BlockValue): boolean {
   switch (kind) {
     case "label": {
@@ -69,7 +95,7 @@ function carries(end: End, { kind, operator }: ProofNode, value: BlockValue): bo
       return shift !== undefined && sameValue(shift.value, value);
     }
     case "second order":
-      return true;
+      return value.kind !== "value" || end.second === undefined || end.second.equals(value.value);
     default:
       return kind satisfies never;
   }

@@ -42,6 +42,30 @@ describe("a pair that is lifted at second order only", () => {
   });
 });
 
+describe("a second-order operator that leaves the field", () => {
+  it("leaves its states together, and the rest exact", () => {
+    const cubic = ExactOperator.from([
+      [0, 1, 0],
+      [1, 0, 1],
+      [0, 1, 1],
+    ]);
+    // V = [[0, C], [C, 0]]: W on the lower level is −C²/2
+    const v = ExactOperator.from([
+      [0, 1],
+      [1, 0],
+    ]).kron(cubic);
+    const proof = proved(problemOf(ExactOperator.diagonal([0, 0, 0, 2, 2, 2]), v));
+    expect(proof.status).toBe("bounded");
+    expect(proof.leaves.map(({ kind, safe, second }) => [kind, safe.energies, safe.states, second])).toEqual([
+      ["together", 1, "none", undefined],
+      ["together", 1, "none", undefined],
+    ]);
+    expect(proof.levels.map(({ verdict }) => verdict)).toEqual(["good", "good"]);
+    const node = proof.nodes.find(({ kind }) => kind === "second order");
+    expect(node?.sentence).toContain("second-order operator has eigenvalues");
+  });
+});
+
 describe("the three-level matrix with a doubly degenerate level", () => {
   const h0 = ExactOperator.diagonal([1, 1, 2]);
   const v = ExactOperator.from([
