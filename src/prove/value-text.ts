@@ -1,12 +1,13 @@
 import type { Polynomial } from "../exact/polynomial.js";
 import type { BlockValue } from "./proof.js";
-import { middleOf } from "./roots.js";
 
 /** An eigenvalue, or the eigenvalues of a block, in words. */
 export function valueText(value: BlockValue): string {
   if (value.kind === "value") return value.value.text();
   if (value.kind === "unknown") return "unknown";
-  const near = value.roots.intervals.map((bounds) => middleOf(bounds).toPrecision(6)).join(", ");
+  const near = value.roots.intervals
+    .map(({ low, high }) => low.plus(high).over(2).toNumber().toPrecision(6))
+    .join(", ");
   const which = value.part === "whole" ? "" : value.part === "re" ? ", real parts" : ", imaginary parts";
   return `roots of ${polynomialText(value.roots.polynomial)} (${near}${which})`;
 }

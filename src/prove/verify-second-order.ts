@@ -3,6 +3,7 @@ import type { ExactVector } from "../exact/vector.js";
 import type { ExactProblem } from "./problem.js";
 import type { ExactProof, ProvedLeaf } from "./proof.js";
 import type { Faults } from "./verify-faults.js";
+import { apart, labelsApart } from "./verify-values.js";
 
 /** Puts every stated correction x into (E − H0) x = Q V q and reads the second order from it again. */
 export function verifySecondOrder(proof: ExactProof, problem: ExactProblem, faults: Faults): void {
@@ -33,6 +34,24 @@ export function verifySecondOrder(proof: ExactProof, problem: ExactProblem, faul
       }
     }
     faults.unless(isRead(leaf, problem, second), place, "is not what the corrections give");
+    verifyUnmixed(proof, problem, k, faults);
+  }
+}
+
+/**
+ * With one perturbation, E2 is an eigenvalue of W among the states of the same labels and first-order shift, so W must not mix
+ * them.
+ */
+function verifyUnmixed(proof: ExactProof, { perturbations }: ExactProblem, k: number, faults: Faults): void {
+  const [own, only] = [proof.leaves[k], perturbations[0]];
+  if (own === undefined || only === undefined || perturbations.length > 1) return;
+  for (const [j, other] of proof.leaves.entries()) {
+    if (j === k || apart(own.energy, other.energy) || labelsApart(own, other)) continue;
+    const [a, b] = [own.shifts[0]?.value, other.shifts[0]?.value];
+    if (a === undefined || b === undefined || apart(a, b)) continue;
+    const images = other.vectors.map((q) => only.operator.apply(q));
+    const unmixed = own.corrections.every((list) => list.every((x) => images.every((image) => image.inner(x).isZero)));
+    faults.unless(unmixed, `leaf ${k}, second order`, `W mixes it with leaf ${j}`);
   }
 }
 

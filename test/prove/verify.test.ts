@@ -264,6 +264,22 @@ describe("one number of the proof, changed", () => {
     expect(change(() => ({ kind: "unitary" }), 0)).toContain("Jz: is not unitary");
   });
 
+  it("is noticed where states are mixtures that only the second-order operator tells apart", () => {
+    const [proof, problem] = proofOf("second order");
+    const ket = (k: number): ExactVector => ExactVector.unit(3, k);
+    const half = Surd.from("-1/2");
+    // kets 0 and 1 instead of bright and dark: V vanishes between them, W does not
+    const mixed = (k: number, g: string): Partial<ProvedLeaf> => ({
+      vectors: [ket(k)],
+      corrections: [[ket(2).scale(Surd.from(g).times(half))]],
+      second: [[Surd.from(g).power(2).times(half)]],
+    });
+    const leaves = proof.leaves.map((leaf, k) => (k > 1 ? leaf : { ...leaf, ...mixed(k, k === 0 ? "3/5" : "4/5") }));
+    const messages = verifyProof({ ...proof, leaves }, problem).faults.map(({ message }) => message);
+    expect(messages).toContain("W mixes it with leaf 1");
+    expect(messages).not.toContain("is not what the corrections give");
+  });
+
   it("is noticed in a coupling that is left out or of another size", () => {
     const problem = problemOf(ExactOperator.zero(2), bonds(2, [[0, 1, "1/3"]]));
     const proof = proveExactly(problem, { depth: "labels" });
