@@ -1,5 +1,4 @@
 import { GoodBasisError } from "../errors.js";
-import { bitLength } from "../exact/integer.js";
 import { normPolynomial } from "../exact/norm-polynomial.js";
 import {
   commonDivisor,
@@ -33,8 +32,12 @@ export interface Roots {
 /** Binary places of the intervals. */
 const BITS = 80;
 
+/** How much smaller than its distance from zero an interval should be, and halvings that this may cost. */
+const RELATIVE: Surd = Surd.from(2n ** 60n);
+const MOST_BITS = 200;
+
 /** Largest degree of a rational polynomial whose roots are isolated. */
-const MOST_DEGREE = 64;
+const MOST_DEGREE = 40;
 
 /**
  * Isolates the roots of a polynomial with real coefficients of the field, none of them double.
@@ -52,10 +55,21 @@ export function isolate(p: Polynomial): RootBounds[] {
   }
   const den = rational.reduce((common, c) => common.times(Surd.from(c.terms.den)), Surd.one);
   const whole = rational.map((c) => c.times(den).terms.re[0] ?? 0n);
-  const size = whole.reduce((most, c) => Math.max(most, bitLength(c)), 1);
-  return isolateRealRoots(whole, BITS + size)
+  return isolateRealRoots(whole, BITS)
     .map(({ low, high }) => ({ low: dyadicNumber(low), high: dyadicNumber(high) }))
-    .filter((bounds) => holdsRoot(p, bounds));
+    .filter((bounds) => holdsRoot(p, bounds))
+    .map((bounds) => narrowed(p, bounds));
+}
+
+/** Halves an interval until it is narrow beside its distance from zero, so that its middle is a good double. */
+function narrowed(p: Polynomial, bounds: RootBounds): RootBounds {
+  let own = bounds;
+  for (let k = 0; k < MOST_BITS; k++) {
+    const least = own.low.sign() > 0 ? own.low : own.high.negate();
+    if (own.high.minus(own.low).times(RELATIVE).compare(least) <= 0) break;
+    own = halved(p, own);
+  }
+  return own;
 }
 
 /** Whether a polynomial without double roots has its one root in the interval. */

@@ -23,6 +23,9 @@ export interface Part {
   readonly coordinates: readonly ExactVector[];
 }
 
+/** Largest degree of a factor of the characteristic polynomial; a few seconds go into its roots. */
+const MOST_DEGREE = 32;
+
 /** Below this size the characteristic polynomial is quicker than a guess. */
 const SMALLEST_GUESS = 3;
 
@@ -95,6 +98,7 @@ function splitRest(
     budget.ledger.spendProducts(inner.count * inner.n ** 2);
     factors = squareFreeFactors(characteristicPolynomial(inner, budget));
     split = factors.map((factor) => {
+      requireDegree(factor.polynomial);
       const { roots, rest: left } = fieldRoots(factor.polynomial, budget);
       return { factor, roots, left };
     });
@@ -111,6 +115,13 @@ function splitRest(
     const coordinates = back(exactKernel(polynomialOf(left, inner, budget), budget));
     return [...parts, { value: { kind: "roots", factor }, coordinates }];
   });
+}
+
+/** @throws GoodBasisError `budget` */
+function requireDegree(p: Polynomial): void {
+  if (degree(p) <= MOST_DEGREE) return;
+  const message = `proveExactly: a polynomial of degree ${degree(p)}, where roots are looked for up to ${MOST_DEGREE}`;
+  throw new GoodBasisError("budget", message, { degree: degree(p), most: MOST_DEGREE });
 }
 
 /** p(M), by Horner's rule. */

@@ -24,6 +24,11 @@ function valuesOf(parts: readonly Part[]): number[] {
     .sort((a, b) => a - b);
 }
 
+/** The dimensions of exact parts, but for the one at 5. */
+function exactOnes(parts: readonly Part[]): number {
+  return parts.reduce((sum, { value, coordinates }) => sum + (value.kind === "value" ? coordinates.length : 0), 0) - 1;
+}
+
 describe("splitMatrix", () => {
   const hermitian = (n: number): fc.Arbitrary<ExactOperator> => matrix(n, smallSurd).map((a) => a.plus(a.adjoint()));
 
@@ -75,6 +80,23 @@ describe("splitMatrix", () => {
     const parts = splitMatrix(a, ones(9), proofBudget({}, 3_000));
     expect(parts.map(({ value, coordinates }) => [value.kind, coordinates.length])).toEqual([["unknown", 9]]);
     expect(() => splitMatrix(a, ones(9), proofBudget({ digits: 1 }))).not.toThrow();
+  });
+
+  it("leaves a part unknown whose polynomial has a very high degree, apart from the exact rest", () => {
+    const n = 34;
+    const chain = ExactOperator.fromTriplets(
+      n + 1,
+      Array.from({ length: n - 1 }, (_, k) => [[k, k + 1, 1] as const, [k + 1, k, 1] as const]).flat(),
+    ).plus(
+      ExactOperator.fromTriplets(n + 1, [
+        [0, 0, 1],
+        [n, n, 5],
+      ]),
+    );
+    const parts = splitMatrix(chain, ones(n + 1), proofBudget());
+    const unknown = parts.filter(({ value }) => value.kind === "unknown");
+    expect(unknown.map(({ coordinates }) => coordinates.length)).toEqual([n - exactOnes(parts)]);
+    expect(parts.some(({ value }) => value.kind === "value" && value.value.equals(5))).toBe(true);
   });
 
   it("takes one ket as it is", () => {
