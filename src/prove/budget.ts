@@ -2,6 +2,8 @@ import { GoodBasisError } from "../errors.js";
 import { type ExactBudget, Meter } from "../exact/budget.js";
 import type { Terms } from "../exact/terms.js";
 
+import { RootCache } from "./root-cache.js";
+
 /** Steps that a proof may cost unless stated: a minute or two. */
 const DEFAULT_WORK = 2_000_000_000;
 
@@ -49,6 +51,8 @@ export class Ledger {
 /** The budget of each computation, and the ledger of all of them together. */
 export interface ProofBudget extends ExactBudget {
   readonly ledger: Ledger;
+  /** What is known of polynomials from other blocks. */
+  readonly known: RootCache;
 }
 
 /**
@@ -57,5 +61,5 @@ export interface ProofBudget extends ExactBudget {
  * @throws GoodBasisError `option` - a limit that is not a positive number
  */
 export function proofBudget(budget: ExactBudget = {}, work: number = DEFAULT_WORK): ProofBudget {
-  return { ...budget, ledger: new Ledger(budget, work) };
+  return { ...budget, ledger: new Ledger(budget, work), known: new RootCache() };
 }

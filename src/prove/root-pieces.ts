@@ -7,7 +7,7 @@ import type { ExactVector } from "../exact/vector.js";
 import type { ProofBudget } from "./budget.js";
 import { Frame } from "./frame.js";
 import type { BlockValue } from "./proof.js";
-import { coprimePolynomials, type Factor, isolate, samePolynomial } from "./roots.js";
+import { coprimePolynomials, type Factor, samePolynomial } from "./roots.js";
 import { polynomialOf } from "./split.js";
 
 /** Orthogonal vectors on which an operator has the roots of a polynomial, each equally often. */
@@ -46,13 +46,13 @@ export function groupPieces(
     if (holders.length === 0) return [];
     const multiplicity = holders.reduce((sum, piece) => sum + piece.multiplicity, 0);
     const vectors = holders.flatMap((piece) => partOf(restricted, piece, polynomial, budget));
-    return [{ value: valueOfFactor({ polynomial, multiplicity }), vectors }];
+    return [{ value: valueOfFactor({ polynomial, multiplicity }, budget), vectors }];
   });
 }
 
-function valueOfFactor({ polynomial, multiplicity }: Factor): BlockValue {
+function valueOfFactor({ polynomial, multiplicity }: Factor, budget: ProofBudget): BlockValue {
   if (degree(polynomial) === 1) return { kind: "value", value: (polynomial[0] ?? Surd.zero).negate() };
-  const roots = { polynomial, multiplicity, intervals: isolate(polynomial) };
+  const roots = { polynomial, multiplicity, intervals: budget.known.bounds(polynomial) };
   return { kind: "roots", roots, part: "whole", re: undefined };
 }
 

@@ -1,7 +1,6 @@
 import { GoodBasisError } from "../errors.js";
 import { characteristicPolynomial } from "../exact/characteristic.js";
 import { exactKernel } from "../exact/elimination.js";
-import { fieldRoots } from "../exact/field-roots.js";
 import { ExactOperator } from "../exact/operator.js";
 import { degree, type Polynomial } from "../exact/polynomial.js";
 import { Surd } from "../exact/surd.js";
@@ -99,7 +98,7 @@ function splitRest(
     factors = squareFreeFactors(characteristicPolynomial(inner, budget));
     split = factors.map((factor) => {
       requireDegree(factor.polynomial);
-      const { roots, rest: left } = fieldRoots(factor.polynomial, budget);
+      const { roots, rest: left } = budget.known.field(factor.polynomial, budget);
       return { factor, roots, left };
     });
   } catch (error) {
