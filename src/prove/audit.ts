@@ -88,8 +88,10 @@ function orderOf(
 ): number | undefined {
   if (kind === "normal" || kind === "general") return undefined;
   const one = ExactOperator.identity(operator.n);
+  // real eigenvalues are roots of unity only where they are ±1
+  const most = kind === "hermitian" ? 2 : MOST_POWERS;
   let power = operator;
-  for (let [k, work] = [1, 0]; k <= MOST_POWERS && work <= MOST_WORK; k++) {
+  for (let [k, work] = [1, 0]; k <= most && work <= MOST_WORK; k++) {
     if (power.equals(one)) return k;
     work += (power.count * operator.count) / operator.n;
     power = power.times(operator, budget);

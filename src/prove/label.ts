@@ -1,4 +1,5 @@
 import { type LabelDeclaration, onlyMember, recogniseFamily } from "../audit/label-family.js";
+import { exactRootOfUnity } from "../exact/root-of-unity.js";
 import { Surd } from "../exact/surd.js";
 import type { Complex } from "../numerics/complex.js";
 import type { BlockValue } from "./proof.js";
@@ -11,6 +12,9 @@ export interface LabelNames {
   /** N with A^N = 1, exactly. */
   readonly order: number | undefined;
 }
+
+/** The order of all roots of unity in the field. */
+const FIELD_ORDER = 24;
 
 /** Room for the correct rounding of an exact number. */
 const ROUNDING = 2 ** -40;
@@ -63,8 +67,11 @@ function exactText(value: Surd, { family, order }: LabelNames): string {
 /** Whether an exact number is the member of a family that its double points to. */
 function isMember(value: Surd, family: LabelDeclaration, order: number | undefined, text: string): boolean {
   if (typeof family === "object" && "root" in family) {
-    // eigenvalues of A with A^N = 1 are N-th roots of unity, and the double tells which; else the power decides
-    return order !== undefined && family.root % order === 0 ? true : value.power(family.root).equals(1);
+    // eigenvalues of A with A^N = 1 are N-th roots of unity, and the double tells which; else those of the field are tried
+    if (order !== undefined && family.root % order === 0) return true;
+    const { re, im } = value.toComplex();
+    const turn = Math.round((Math.atan2(im, re) / (2 * Math.PI)) * FIELD_ORDER);
+    return exactRootOfUnity(turn, FIELD_ORDER)?.equals(value) === true;
   }
   const number = Surd.from(text);
   return value.equals(family === "j" ? number.times(number.plus(1)) : number);

@@ -3,6 +3,9 @@ import { Surd } from "../exact/surd.js";
 import type { BlockValue } from "./proof.js";
 import { valueText } from "./value-text.js";
 
+/** Every root of unity in the field has this power 1. */
+const FIELD_ORDER = 24;
+
 /** Room for the rounding of an angle. */
 const ROUNDING = 2 ** -40;
 
@@ -20,7 +23,7 @@ export function labelFits(
   if (value.kind === "unknown") return text === valueText(value);
   if (value.kind === "roots") return text === valueText(value) || (order !== undefined && turnsFit(text, value, order));
   if (typeof family === "object" && "root" in family && turnOf(text) !== undefined) {
-    const isRoot = order !== undefined ? family.root % order === 0 : value.value.power(family.root).equals(1);
+    const isRoot = order !== undefined ? family.root % order === 0 : value.value.power(FIELD_ORDER).equals(1);
     return isRoot && isAt(turnOf(text) ?? 0, value.value.toComplex());
   }
   const bare = text.startsWith("eigenvalue ") ? text.slice("eigenvalue ".length) : text;

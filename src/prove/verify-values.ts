@@ -84,7 +84,7 @@ export function hasMultiplicities(
 }
 
 /** Halvings of two intervals before they count as one number. */
-const MOST_HALVINGS = 4000;
+const MOST_HALVINGS = 1000;
 
 /** A real number: exact, or one root of a polynomial in an interval. */
 export type Point =

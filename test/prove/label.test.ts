@@ -35,6 +35,9 @@ describe("labelText", () => {
     const half = value("-1/2+sqrt(3)/2*i");
     expect(labelText(half, namesOf({ root: 3 }, [], 3))).toBe("exp(2πi·1/3)");
     expect(labelText(half, namesOf({ root: 3 }, [], undefined))).toBe("exp(2πi·1/3)");
+    expect(labelText(half, namesOf({ root: 999_999 }, [], undefined))).toBe("exp(2πi·1/3)");
+    const pythagorean = value("3/5+4/5*i");
+    expect(labelText(pythagorean, namesOf({ root: 1000 }, [], undefined))).toBe("3/5 + 4i/5");
     // cos(2π/5) is in the field, sin(2π/5) is not
     const fifth = roots(["-(5+sqrt(5))/8", "0", "1"], "im", "(sqrt(5)-1)/4");
     expect(labelText(fifth, namesOf(undefined, [fifth], 5))).toBe("exp(2πi·4/5) | exp(2πi·1/5)");

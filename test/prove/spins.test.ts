@@ -116,3 +116,29 @@ describe("four spins 1/2", () => {
     expect(lines(proof).filter((line) => line.startsWith("-1;"))).toEqual(["-1; T −1; 0; 0", "-1; T +1; 0; -2"]);
   });
 });
+
+describe("a ring of six spins 1/2, Ising levels under exchange", () => {
+  const sites = product(1, 1, 1, 1, 1, 1);
+  const pairs = sites.map((site, k) => [site, sites[(k + 1) % 6]] as [typeof site, typeof site]);
+  const h0 = ExactOperator.sum(...pairs.map(([u, v]) => u.z.times(v.z)));
+  const v = ExactOperator.sum(...pairs.map(([u, w]) => dot(u, w).minus(u.z.times(w.z))));
+  const sz = ExactOperator.sum(...sites.map(({ z }) => z));
+  const [t, r] = [moved(6, (site) => (site + 1) % 6), moved(6, (site) => 5 - site)];
+
+  it("has 64 exact states by Sz, translation and, where k is 0 or π, reflection", () => {
+    const proof = proved(problemOf(h0, v, { Sz: sz, T: t, R: r }));
+    expect(proof.status).toBe("exact");
+    expect(proof.leaves).toHaveLength(64);
+    expect(proof.levels.map(({ degeneracy, verdict }) => [degeneracy, verdict])).toEqual([
+      [2, "good"],
+      [30, "good"],
+      [30, "good"],
+      [2, "good"],
+    ]);
+    // R is used exactly where translation by k is its own inverse
+    for (const { labels } of proof.leaves) {
+      const own = labels.find(({ candidate }) => candidate === "T")?.text ?? "";
+      expect(labels.some(({ candidate }) => candidate === "R")).toBe(own === "+1" || own === "−1");
+    }
+  });
+});
