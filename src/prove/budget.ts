@@ -11,8 +11,8 @@ const DEFAULT_WORK = 2_000_000_000;
 const STEPS_PER_PRODUCT = 20;
 
 /**
- * What a whole proof may cost. A computation asks before it starts, by an estimate; one that is refused costs nothing, so that
- * cheaper ones go on.
+ * What a whole proof may cost. A computation asks before it starts, by an estimate; one that is refused costs nothing,
+ * so that cheaper ones go on.
  */
 export class Ledger {
   readonly #work: number;

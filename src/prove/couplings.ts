@@ -11,8 +11,8 @@ export interface LevelVector {
 }
 
 /**
- * The elements of every perturbation between different states of a level that do not vanish, largest first: every pair is
- * looked at, also those that labels tell apart.
+ * The elements of every perturbation between different states of a level that do not vanish, largest first: every pair
+ * is looked at, also those that labels tell apart.
  *
  * @param vectors - mutually orthogonal
  */

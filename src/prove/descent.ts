@@ -17,8 +17,8 @@ export interface ExactSector {
 }
 
 /**
- * Refines the whole space by the conserved candidates in their order, each block by whatever maps it into itself, and every
- * sector by H0. Symmetries come first, so that roots that H0 needs elsewhere do no harm here.
+ * Refines the whole space by the conserved candidates in their order, each block by whatever maps it into itself, and
+ * every sector by H0. Symmetries come first, so that roots that H0 needs elsewhere do no harm here.
  *
  * @param conserved - places of the conserved candidates
  */

@@ -67,8 +67,8 @@ export class Frame {
   }
 
   /**
-   * The matrix of an operator, restricted to the space. Whether it leads out is seen from lengths: the image is longer than its
-   * part inside (Pythagoras).
+   * The matrix of an operator, restricted to the space. Whether it leads out is seen from lengths: the image is longer
+   * than its part inside (Pythagoras).
    *
    * @throws GoodBasisError `budget`
    */

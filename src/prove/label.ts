@@ -67,7 +67,8 @@ function exactText(value: Surd, { family, order }: LabelNames): string {
 /** Whether an exact number is the member of a family that its double points to. */
 function isMember(value: Surd, family: LabelDeclaration, order: number | undefined, text: string): boolean {
   if (typeof family === "object" && "root" in family) {
-    // eigenvalues of A with A^N = 1 are N-th roots of unity, and the double tells which; else those of the field are tried
+    // if A^N = 1 its eigenvalues are N-th roots of unity, and the double tells which; else those of the field are
+    // compared
     if (order !== undefined && family.root % order === 0) return true;
     const { re, im } = value.toComplex();
     const turn = Math.round((Math.atan2(im, re) / (2 * Math.PI)) * FIELD_ORDER);

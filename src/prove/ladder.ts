@@ -11,8 +11,9 @@ export interface Laddered {
 }
 
 /**
- * Fixes relative phases inside multiplets, exactly: for every candidate with a ladder operator L, ⟨upper|L|lower⟩ becomes real and
- * positive (Condon and Shortley, The Theory of Atomic Spectra, 1935). The topmost state of a chain keeps its phase.
+ * Fixes relative phases inside multiplets, exactly: for every candidate with a ladder operator L, ⟨upper|L|lower⟩ becomes
+ * real and positive (Condon and Shortley, The Theory of Atomic Spectra, 1935). The topmost state of a chain keeps its
+ * phase.
  *
  * Two states are linked where L maps one to the other and to no other state of the level.
  *

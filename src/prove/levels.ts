@@ -34,8 +34,8 @@ export interface LevelDrafts {
 }
 
 /**
- * Puts the energies of all sectors together, exactly: numbers of the field are equal or not, and others are roots of polynomials
- * that are made coprime, so that two energies are equal only where they are the same root of the same one.
+ * Puts the energies of all sectors together, exactly: numbers of the field are equal or not, and others are roots of
+ * polynomials that are made coprime, so that two energies are equal only where they are the same root of the same one.
  */
 export function formLevels(
   h0: ExactOperator,
@@ -79,7 +79,10 @@ function pointOf({ energy }: LevelDraft): RealPoint {
   return { kind: "root", polynomial: energy.roots.polynomial, bounds };
 }
 
-/** Takes blocks apart whose polynomials share a factor with another sector's, or have another sector's energy for a root. */
+/**
+ * Takes blocks apart whose polynomials share a factor with another sector's, or have another sector's energy for a
+ * root.
+ */
 function partCommonRoots(
   h0: ExactOperator,
   sectors: readonly ExactSector[],

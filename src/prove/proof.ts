@@ -13,7 +13,7 @@ import type { Roots } from "./roots.js";
  * |---|---|
  * | `exact` | eigenvalues and vectors are in the field of square roots, and proved |
  * | `separated` | the parts are proved to be apart, by exact commutation alone; some eigenvalues leave the field |
- * | `bounded` | some eigenvalues leave the field or the budget: that part is left to rigorous bounds, apart from the rest |
+ * | `bounded` | some eigenvalues leave the field or the budget: that part is for rigorous bounds, apart from the rest |
  */
 export type ProofStatus = "exact" | "separated" | "bounded";
 
@@ -134,8 +134,8 @@ export interface ProvedLeaf {
   readonly kind: LeafKind;
   readonly shifts: readonly ProvedShift[];
   /**
-   * Second order: E2 of perturbations p and q in row p, column q, from Re⟨V_p q|x_q⟩; undefined where it is not a number of the
-   * field or was not asked for.
+   * Second order: E2 of perturbations p and q in row p, column q, from Re⟨V_p q|x_q⟩; undefined where it is not a number
+   * of the field or was not asked for.
    */
   readonly second: readonly (readonly Surd[])[] | undefined;
   /** For each perturbation and vector, x with (E − H0) x = Q V q, orthogonal to the level; evidence for `second`. */
@@ -188,8 +188,8 @@ export interface LevelRoot {
 }
 
 /**
- * The refinement tree, proved in exact arithmetic. Plain data: everything in it can be checked by multiplication and comparison,
- * see {@link verifyProof}.
+ * The refinement tree, proved in exact arithmetic. Plain data: everything in it can be checked by multiplication and
+ * comparison, see {@link verifyProof}.
  */
 export interface ExactProof {
   readonly n: number;

@@ -33,16 +33,18 @@ export interface ProofOptions {
   readonly depth?: Depth | undefined;
   /** How far each single computation may grow. */
   readonly budget?: ExactBudget | undefined;
-  /** Steps that all of them together may cost, as {@link ExactBudget} counts them; two thousand million unless stated. */
+  /**
+   * Steps that all of them together may cost, as {@link ExactBudget} counts them; two thousand million unless stated.
+   */
   readonly work?: number | undefined;
 }
 
 /**
- * Builds the refinement tree in exact arithmetic and proves it: guesses come from floating eigenvalues, proofs from exact kernels
- * whose dimensions add up.
+ * Builds the refinement tree in exact arithmetic and proves it: guesses come from floating eigenvalues, proofs from
+ * exact kernels whose dimensions add up.
  *
- * What leaves the field of square roots, or the budget, is kept apart from the rest and marked node by node; everything else
- * stays exact.
+ * What leaves the field of square roots, or the budget, is kept apart from the rest and marked node by node; everything
+ * else stays exact.
  *
  * @throws GoodBasisError `shape`, `not-hermitian`, `name`; `budget` - where not even the commutators can be had
  *

@@ -18,8 +18,8 @@ export interface Child {
 }
 
 /**
- * Takes a block apart by a Hermitian operator: exact eigenspaces by ascending value, then what leaves the field, in pieces that
- * share no eigenvalue.
+ * Takes a block apart by a Hermitian operator: exact eigenspaces by ascending value, then what leaves the field, in
+ * pieces that share no eigenvalue.
  *
  * The matrix falls into connected parts first; equal parts, such as the orbits of a permutation, are solved once.
  *
@@ -85,8 +85,8 @@ export function within(operator: ExactOperator, budget: ProofBudget): Restricted
 const I_TWICE = Surd.i.times(2);
 
 /**
- * Takes a block apart by any normal operator: by its Hermitian part (A + A†)/2, then each eigenspace of that by (A − A†)/2i.
- * Where the first leaves the field, the second is not tried: the block stays one with roots for real parts.
+ * Takes a block apart by any normal operator: by its Hermitian part (A + A†)/2, then each eigenspace of that by (A −
+ * A†)/2i. Where the first leaves the field, the second is not tried: the block stays one with roots for real parts.
  *
  * @returns undefined where the operator leads out of the block
  * @throws GoodBasisError `budget`

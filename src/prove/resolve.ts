@@ -39,8 +39,8 @@ export interface Resolving {
 }
 
 /**
- * Resolves the states of one energy in one sector: by candidates that map this block into itself, by each perturbation in turn,
- * then (for a single perturbation) by its second-order operator where V is a number.
+ * Resolves the states of one energy in one sector: by candidates that map this block into itself, by each perturbation
+ * in turn, then (for a single perturbation) by its second-order operator where V is a number.
  */
 export function resolveBlock(given: Resolving, block: EnergyBlock): LeafDraft[] {
   const { problem, conserved, tree, budget, depth } = given;
@@ -123,8 +123,8 @@ function isSimple(value: BlockValue): boolean {
 }
 
 /**
- * Whether labels with values outside the field take the states of a leaf apart, together with the energy where it leaves the
- * field too: a combination of these operators, which commute, has no eigenvalue twice.
+ * Whether labels with values outside the field take the states of a leaf apart, together with the energy where it
+ * leaves the field too: a combination of these operators, which commute, has no eigenvalue twice.
  */
 function isSeparated({ problem, budget }: Resolving, { frame, labels, energy }: ShiftedBlock): boolean {
   if (frame.size > MOST_SEPARATED) return false;

@@ -6,9 +6,10 @@ import type { ProofBudget } from "./budget.js";
 import type { EnergyBlock, ExactSector } from "./descent.js";
 
 /**
- * The reduced resolvent R = Σ_{k outside the level} |k⟩⟨k| / (E − E_k) of one sector, applied to vectors of that sector.
+ * The reduced resolvent R = Σ_{k outside the level} |k⟩⟨k| / (E − E_k) of one sector, applied to its vectors.
  *
- * Blocks of a known energy are divided by E − E_k; in the others (E − H0) x = b is solved exactly, without their eigenvalues.
+ * Blocks of a known energy are divided by E − E_k; in the others (E − H0) x = b is solved exactly, without their
+ * eigenvalues.
  */
 export class Resolvent {
   readonly #h0: ExactOperator;

@@ -26,8 +26,8 @@ export interface RootGroup {
 }
 
 /**
- * Puts pieces together that share their eigenvalues and takes apart those that share some of them, so that groups have no
- * eigenvalue in common.
+ * Puts pieces together that share their eigenvalues and takes apart those that share some of them, so that groups have
+ * no eigenvalue in common.
  *
  * @param restricted - the operator, which maps each piece into itself, at least inside the block that it is a piece of
  * @param others - polynomials that the groups shall not share single roots with either

@@ -42,8 +42,8 @@ const MOST_DEGREE = 40;
 /**
  * Isolates the roots of a polynomial with real coefficients of the field, none of them double.
  *
- * The product with its conjugates is rational; of the intervals around that one's roots, those belong to the polynomial in
- * which it changes its sign.
+ * The product with its conjugates is rational; of the intervals around that one's roots, those belong to the polynomial
+ * in which it changes its sign.
  *
  * @throws GoodBasisError `budget` - the product has too high a degree
  */
@@ -145,8 +145,8 @@ export function samePolynomial(p: Polynomial, q: Polynomial): boolean {
 }
 
 /**
- * Pairwise coprime polynomials of which every given one is a product: what two of them share is taken out until nothing is
- * shared.
+ * Pairwise coprime polynomials of which every given one is a product: what two of them share is taken out until nothing
+ * is shared.
  *
  * @param polynomials - monic, without double roots
  */

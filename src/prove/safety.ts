@@ -13,8 +13,8 @@ export interface SafetySubject {
 const ALL: ProvedSafety = { energies: "all", states: "all", limitedBy: "" };
 
 /**
- * The safe orders of a leaf's states: the minimum over their partners in the level, by the strongest exact separator of each
- * pair, which is the node where their paths part.
+ * The safe orders of a leaf's states: the minimum over their partners in the level, by the strongest exact separator of
+ * each pair, which is the node where their paths part.
  *
  * | weakest link | energies | states |
  * |---|---|---|

@@ -31,10 +31,10 @@ const SMALLEST_GUESS = 3;
 /**
  * Takes a matrix apart into exact eigenspaces and the rest.
  *
- * Eigenvalues are guessed from the floating ones and proved by their eigenspaces, exact kernels of M − a. Where the dimensions
- * do not add up, a guess has failed or there are eigenvalues of another form: the characteristic polynomial on what is left
- * gives the others, and factors whose roots leave the field. In the end the dimensions add up to the size, which proves that
- * nothing is missing.
+ * Eigenvalues are guessed from the floating ones and proved by their eigenspaces, exact kernels of M − a. Where the
+ * dimensions do not add up, a guess has failed or there are eigenvalues of another form: the characteristic polynomial
+ * on what is left gives the others, and factors whose roots leave the field. In the end the dimensions add up to the
+ * size, which proves that nothing is missing.
  *
  * @param matrix - M = N⁻¹ H with H Hermitian
  * @param norms - the diagonal of N, positive: the squared norms of the vectors that M is written over

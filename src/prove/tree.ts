@@ -31,7 +31,8 @@ export class ProofTree {
   readonly nodes: ProofNode[] = [];
 
   /**
-   * Refines a block and records the node. A block that the budget does not allow to refine stays whole, and the node says so.
+   * Refines a block and records the node. A block that the budget does not allow to refine stays whole, and the node
+   * says so.
    *
    * @returns each child with its path; undefined where the operator leads out of the block
    */

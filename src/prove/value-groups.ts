@@ -1,8 +1,8 @@
 import type { Surd } from "../exact/surd.js";
 
 /**
- * Collects things under exact numbers. Equal numbers round to the same doubles, so only numbers under one pair of doubles are
- * compared exactly.
+ * Collects things under exact numbers. Equal numbers round to the same doubles, so only numbers under one pair of
+ * doubles are compared exactly.
  */
 export class ValueGroups<T> {
   readonly #buckets = new Map<string, { readonly value: Surd; readonly items: T[] }[]>();

@@ -76,8 +76,8 @@ function isOfKind(leaf: ProvedLeaf, problem: ExactProblem): boolean {
 }
 
 /**
- * Whether labels outside the field have different values for each state, together with the energy: then powers of a combination
- * of these operators make a basis of one vector.
+ * Whether labels outside the field have different values for each state, together with the energy: then powers of a
+ * combination of these operators make a basis of one vector.
  */
 function isSeparated({ labels, energy, vectors }: ProvedLeaf, { h0, candidates }: ExactProblem): boolean {
   const operators = labels.flatMap(({ candidate, value }) =>
@@ -99,7 +99,10 @@ const TRIED: readonly ((k: number) => number)[] = [
   (k) => (k + 2) ** 2,
 ];
 
-/** Whether v, A v, A² v, … are independent up to the dimension, for some v: then no eigenvalue of a normal A occurs twice. */
+/**
+ * Whether v, A v, A² v, … are independent up to the dimension, for some v: then no eigenvalue of a normal A occurs
+ * twice.
+ */
 function isCyclic(operator: ExactOperator, vectors: readonly ExactVector[]): boolean {
   return TRIED.some((coefficient) => {
     const [first] = vectors;

@@ -39,8 +39,8 @@ export function verifySecondOrder(proof: ExactProof, problem: ExactProblem, faul
 }
 
 /**
- * With one perturbation, E2 is an eigenvalue of W among the states of the same labels and first-order shift, so W must not mix
- * them.
+ * With one perturbation, E2 is an eigenvalue of W among the states of the same labels and first-order shift, so W must
+ * not mix them.
  */
 function verifyUnmixed(proof: ExactProof, { perturbations }: ExactProblem, k: number, faults: Faults): void {
   const [own, only] = [proof.leaves[k], perturbations[0]];

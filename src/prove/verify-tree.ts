@@ -17,8 +17,8 @@ interface End {
 }
 
 /**
- * Checks the list of nodes against the leaves, whose values are checked by themselves: sizes add up, every node sits where its
- * block comes from, and a child's value is what the leaves below it carry.
+ * Checks the list of nodes against the leaves, whose values are checked by themselves: sizes add up, every node sits
+ * where its block comes from, and a child's value is what the leaves below it carry.
  */
 export function verifyTree(proof: ExactProof, faults: Faults): void {
   const ends: End[] = [

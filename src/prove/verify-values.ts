@@ -27,8 +27,8 @@ export function annihilated(p: readonly Surd[], act: Action, vector: ExactVector
 }
 
 /**
- * Whether a polynomial is monic and has as many simple real roots as its degree says: one sign change in each of that many
- * intervals, which ascend and do not meet.
+ * Whether a polynomial is monic and has as many simple real roots as its degree says: one sign change in each of that
+ * many intervals, which ascend and do not meet.
  */
 export function hasSimpleRoots({ polynomial, intervals }: RootValues["roots"]): boolean {
   const degree = polynomial.length - 1;
@@ -56,8 +56,8 @@ export function actsAs(value: BlockValue, operator: ExactOperator, vector: Exact
 }
 
 /**
- * Whether each root is an eigenvalue of the stated multiplicity on the space of some vectors: by the traces of 1, A, A², …,
- * which for simple roots r_i fix the m_i in Σ m_i r_i^k, against Newton's sums of powers (Newton's identities).
+ * Whether each root is an eigenvalue of the stated multiplicity on the space of some vectors: by the traces of 1, A,
+ * A², …, which for simple roots r_i fix the m_i in Σ m_i r_i^k, against Newton's sums of powers (Newton's identities).
  */
 export function hasMultiplicities(
   { polynomial, multiplicity }: RootValues["roots"],

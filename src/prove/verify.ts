@@ -18,9 +18,10 @@ export interface ProofCheck {
 }
 
 /**
- * Checks an exact proof again from the operators alone, by multiplication and comparison: commutators; that the vectors are
- * mutually orthogonal eigenvectors and make n; that energies called equal or different are; the elements of every perturbation
- * inside every level; second orders by putting the stated corrections into their equation; and the safe orders that follow.
+ * Checks an exact proof again from the operators alone, by multiplication and comparison: commutators; that the vectors
+ * are mutually orthogonal eigenvectors and make n; that energies called equal or different are; the elements of every
+ * perturbation inside every level; second orders by putting the stated corrections into their equation; and the safe
+ * orders that follow.
  *
  * Nothing that found the proof is called, no eigenvalue is computed and no system of equations is solved.
  *

@@ -1,6 +1,6 @@
-// Stark effect: Griffiths and Schroeter, Introduction to Quantum Mechanics (2018), ch. 7; Bethe and Salpeter, Quantum Mechanics
-// of One- and Two-Electron Atoms (1957): (3/2) n (n1 − n2) (from memory). Landé factors: Landé (1921); Condon and Shortley, The
-// Theory of Atomic Spectra (1935). Strong field: the same, a mL mS, common practice.
+// Stark effect: Griffiths and Schroeter, Introduction to Quantum Mechanics (2018), ch. 7; Bethe and Salpeter, Quantum
+// Mechanics of One- and Two-Electron Atoms (1957): (3/2) n (n1 − n2) (from memory). Landé factors: Landé (1921); Condon
+// and Shortley, The Theory of Atomic Spectra (1935). Strong field: the same, a mL mS, common practice.
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { Surd } from "../../src/exact/surd.js";

@@ -1,6 +1,6 @@
-// Clebsch–Gordan coefficients: Particle Data Group, Review of Particle Physics, table "Clebsch-Gordan coefficients, spherical
-// harmonics, and d functions" (tables from memory), closed form DLMF 34.2.4. Recoupling: DLMF 34.4.2 and Edmonds, Angular
-// Momentum in Quantum Mechanics (1957).
+// Clebsch–Gordan coefficients: Particle Data Group, Review of Particle Physics, table "Clebsch-Gordan coefficients,
+// spherical harmonics, and d functions" (tables from memory), closed form DLMF 34.2.4. Recoupling: DLMF 34.4.2 and
+// Edmonds, Angular Momentum in Quantum Mechanics (1957).
 import { describe, expect, it } from "vitest";
 import { Surd } from "../../src/exact/surd.js";
 import type { ExactProof } from "../../src/prove/proof.js";

@@ -1,6 +1,7 @@
-// d orbitals: Bethe, Ann. Phys. 3, 133 (1929); Ballhausen, Introduction to Ligand Field Theory (1962); 6 and −4 Dq, and −2.67 and
-// 1.78 Dq for the tetrahedron, seen in a public copy of Day and Selbin, Theoretical Inorganic Chemistry (1962); the cube from
-// memory. Zero-field splitting: Abragam and Bleaney, Electron Paramagnetic Resonance of Transition Ions (1970), from memory.
+// d orbitals: Bethe, Ann. Phys. 3, 133 (1929); Ballhausen, Introduction to Ligand Field Theory (1962); 6 and −4 Dq, and
+// −2.67 and 1.78 Dq for the tetrahedron, seen in a public copy of Day and Selbin, Theoretical Inorganic Chemistry
+// (1962); the cube from memory. Zero-field splitting: Abragam and Bleaney, Electron Paramagnetic Resonance of
+// Transition Ions (1970), from memory.
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { Surd } from "../../src/exact/surd.js";

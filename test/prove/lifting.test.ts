@@ -1,5 +1,5 @@
-// Two states coupled through a third: E = Δ/2 ∓ √(Δ²/4 + g1² + g2²) and 0, common practice. Three-level matrix: Griffiths and
-// Schroeter (2018), problem 7.11 (from memory). Plane rotor: DLMF 28.6 with φ = 2z.
+// Two states coupled through a third: E = Δ/2 ∓ √(Δ²/4 + g1² + g2²) and 0, common practice. Three-level matrix:
+// Griffiths and Schroeter (2018), problem 7.11 (from memory). Plane rotor: DLMF 28.6 with φ = 2z.
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { bonds, lines, problemOf, proved } from "./operators.js";

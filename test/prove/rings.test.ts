@@ -1,6 +1,6 @@
-// Benzene: Hückel, Z. Phys. 70, 204 (1931); Coulson and Longuet-Higgins, Proc. R. Soc. A 191, 39 (1947). Butadiene, cyclobutadiene
-// and naphthalene: Coulson and Streitwieser, Dictionary of π-Electron Calculations (1965); naphthalene confirmed in a public page,
-// the others from memory.
+// Benzene: Hückel, Z. Phys. 70, 204 (1931); Coulson and Longuet-Higgins, Proc. R. Soc. A 191, 39 (1947). Butadiene,
+// cyclobutadiene and naphthalene: Coulson and Streitwieser, Dictionary of π-Electron Calculations (1965); naphthalene
+// confirmed in a public page, the others from memory.
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { bonds, leafOf, lines, problemOf, proved, textOf } from "./operators.js";

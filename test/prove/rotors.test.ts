@@ -1,5 +1,6 @@
-// Asymmetric rotor: King, Hainer and Cross, J. Chem. Phys. 11, 27 (1943); Landau and Lifshitz, Quantum Mechanics (closed forms from
-// memory). Linear rotor in a field: Kronig, Proc. Natl. Acad. Sci. 12, 488 (1926); Townes and Schawlow, Microwave Spectroscopy (1955).
+// Asymmetric rotor: King, Hainer and Cross, J. Chem. Phys. 11, 27 (1943); Landau and Lifshitz, Quantum Mechanics
+// (closed forms from memory). Linear rotor in a field: Kronig, Proc. Natl. Acad. Sci. 12, 488 (1926); Townes and
+// Schawlow, Microwave Spectroscopy (1955).
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { Surd } from "../../src/exact/surd.js";

@@ -1,5 +1,6 @@
-// Spin pair: Pople, Schneider and Bernstein, High-resolution Nuclear Magnetic Resonance (1959); triangle and square: Kambe, J. Phys.
-// Soc. Jpn. 5, 48 (1950); Griffiths and Schroeter (2018), problem 4.65 (−3/4 J four-fold; square −2 J); the rest confirmed numerically.
+// Spin pair: Pople, Schneider and Bernstein, High-resolution Nuclear Magnetic Resonance (1959); triangle and square:
+// Kambe, J. Phys. Soc. Jpn. 5, 48 (1950); Griffiths and Schroeter (2018), problem 4.65 (−3/4 J four-fold; square −2 J);
+// the rest confirmed numerically.
 import { describe, expect, it } from "vitest";
 import { ExactOperator } from "../../src/exact/operator.js";
 import { dot, leafOf, lines, problemOf, product, proved, squareOfSum, textOf } from "./operators.js";
