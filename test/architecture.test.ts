@@ -28,7 +28,8 @@ const BELOW: Readonly<Record<string, readonly string[]>> = {
   models: ["numerics", "exact", "operator"],
   problem: ["exact", "operator", "models"],
   refine: ["numerics", "exact", "operator", "audit"],
-  certify: ["version.ts", "numerics", "exact", "operator", "audit", "refine"],
+  prove: ["numerics", "exact", "operator", "audit", "refine"],
+  certify: ["version.ts", "numerics", "exact", "operator", "audit", "refine", "prove"],
   perturb: ["numerics", "exact", "operator", "audit", "refine", "certify"],
   report: ["numerics", "exact", "operator", "audit", "refine", "certify", "perturb"],
 };
@@ -37,6 +38,10 @@ const TYPES_BELOW: Readonly<Record<string, readonly string[]>> = { problem: ["nu
 const RECHECKER = /^certify\/recheck/;
 const RECHECKER_MAY_READ =
   /^(operator\/|(errors|misuse)\.ts$|audit\/(problem|label-family)\.ts$|numerics\/(rounding|csr)\.ts$|certify\/(recheck|seal\.ts$))/;
+/** What checks an exact proof again reads its form and the arithmetic, and nothing that found it. */
+const VERIFIER = /^prove\/(verify|value-text)/;
+const VERIFIER_MAY_READ =
+  /^(errors\.ts$|exact\/(operator|surd|vector)\.ts$|prove\/(problem|value-text|verify[a-z-]*)\.ts$)/;
 const MOST_LINES = 450;
 
 const src = fileURLToPath(new URL("../src/", import.meta.url));
@@ -97,6 +102,16 @@ function recheckerImports(graph: Graph): string[] {
         .filter(({ local, target }) => local && !RECHECKER_MAY_READ.test(target))
         // The layout of a certificate is shared as a type; no code comes with it.
         .filter(({ target, typeOnly }) => !(typeOnly && folderOf(target) === "certify"))
+        .map(({ target }) => `${file} imports ${target}`),
+    );
+}
+
+function verifierImports(graph: Graph): string[] {
+  return [...graph]
+    .filter(([file]) => VERIFIER.test(file))
+    .flatMap(([file, imports]) =>
+      imports
+        .filter(({ local, target, typeOnly }) => local && !typeOnly && !VERIFIER_MAY_READ.test(target))
         .map(({ target }) => `${file} imports ${target}`),
     );
 }
@@ -166,6 +181,11 @@ describe("the house", () => {
     expect(recheckerImports(graph)).toEqual([]);
   });
 
+  it("keeps what checks exact proofs apart from what finds them", () => {
+    expect(verifierImports(graph)).toEqual([]);
+    expect([...graph.keys()].filter((file) => VERIFIER.test(file)).length).toBeGreaterThan(1);
+  });
+
   it("uses the platform in cli alone", () => {
     expect(nodeImports(graph)).toEqual([]);
   });
@@ -201,6 +221,8 @@ describe("the rules of the house say no", () => {
         'import { p } from "../audit/problem.js";\nimport { s } from "./seal.js";\n' +
           'import { r } from "../audit/resolution.js";\nimport { S } from "../exact/surd.js";',
       ],
+      ["prove/verify.ts", 'import { s } from "./split.js";\nimport type { R } from "./roots.js";'],
+      ["prove/split.ts", 'import { v } from "./verify.js";'],
       ["problem/read.ts", 'let x: import("../refine/tree.js").Tree;'],
       ["problem/write.ts", 'import type { O } from "../certify/find.js";\nimport { f } from "../certify/find.js";'],
       ["attic/old.ts", ""],
@@ -217,7 +239,10 @@ describe("the rules of the house say no", () => {
   });
 
   it("to a cycle", () => {
-    expect(cycles(graph)).toEqual(["numerics/eigen.ts -> operator/operator.ts -> numerics/eigen.ts"]);
+    expect(cycles(graph)).toEqual([
+      "numerics/eigen.ts -> operator/operator.ts -> numerics/eigen.ts",
+      "prove/verify.ts -> prove/split.ts -> prove/verify.ts",
+    ]);
   });
 
   it("to a re-checker that reads kernels, refine or the certificate's code", () => {
@@ -228,6 +253,10 @@ describe("the rules of the house say no", () => {
       "certify/recheck-labels.ts imports audit/resolution.ts",
       "certify/recheck-labels.ts imports exact/surd.ts",
     ]);
+  });
+
+  it("to a verifier of proofs that reads what finds them", () => {
+    expect(verifierImports(graph)).toEqual(["prove/verify.ts imports prove/split.ts"]);
   });
 
   it("to a platform module outside cli", () => {
