@@ -83,7 +83,7 @@ function differ(a: BlockValue, b: BlockValue | undefined): boolean {
 }
 
 /** The node at which two paths part; undefined where one is the other's beginning. */
-export function partingNode(a: readonly PathStep[], b: readonly PathStep[]): number | undefined {
+function partingNode(a: readonly PathStep[], b: readonly PathStep[]): number | undefined {
   for (const [k, step] of a.entries()) {
     const other = b[k];
     if (other === undefined || other.node !== step.node) return undefined;

@@ -13,7 +13,7 @@ export function valueText(value: BlockValue): string {
 }
 
 /** A polynomial in x, highest power first. */
-export function polynomialText(p: Polynomial): string {
+function polynomialText(p: Polynomial): string {
   const terms = p.flatMap((c, k) => {
     if (c.isZero) return [];
     const power = k === 0 ? "" : k === 1 ? "x" : `x^${k}`;

@@ -7,7 +7,7 @@ import type { BlockValue, ProvedLeaf, RootValues } from "./proof.js";
 export type Action = (vector: ExactVector) => ExactVector;
 
 /** p(x), term by term. */
-export function polynomialAt(p: readonly Surd[], x: Surd): Surd {
+function polynomialAt(p: readonly Surd[], x: Surd): Surd {
   let [sum, power] = [Surd.zero, Surd.one];
   for (const c of p) {
     sum = sum.plus(c.times(power));
