@@ -48,11 +48,28 @@ export class Ledger {
   }
 }
 
-/** The budget of each computation, and the ledger of all of them together. */
-export interface ProofBudget extends ExactBudget {
-  readonly ledger: Ledger;
+/** The budget of each computation; the ledger of all of them together goes with it. */
+export class ProofBudget implements ExactBudget {
+  declare readonly digits?: number;
+  declare readonly roots?: number;
+  declare readonly steps?: number;
+  readonly #ledger: Ledger;
+  readonly #known = new RootCache();
+
+  /** @throws GoodBasisError `option` - a limit that is not a positive number */
+  constructor(budget: ExactBudget, work: number) {
+    Object.assign(this, budget);
+    this.#ledger = new Ledger(budget, work);
+  }
+
+  get ledger(): Ledger {
+    return this.#ledger;
+  }
+
   /** What is known of polynomials from other blocks. */
-  readonly known: RootCache;
+  get known(): RootCache {
+    return this.#known;
+  }
 }
 
 /**
@@ -61,5 +78,5 @@ export interface ProofBudget extends ExactBudget {
  * @throws GoodBasisError `option` - a limit that is not a positive number
  */
 export function proofBudget(budget: ExactBudget = {}, work: number = DEFAULT_WORK): ProofBudget {
-  return { ...budget, ledger: new Ledger(budget, work), known: new RootCache() };
+  return new ProofBudget(budget, work);
 }
