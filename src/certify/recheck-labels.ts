@@ -38,6 +38,8 @@ interface Met {
 export interface OwnResiduals {
   readonly tight: Float64Array;
   readonly loose: Float64Array;
+  /** The part of `tight` that is no rounding. */
+  readonly certain: Float64Array;
 }
 
 /** Checks every label of every state: its value, radius, status, role and text. */
@@ -64,7 +66,8 @@ export function checkLabels(
     });
   });
   return problem.candidates.map((candidate, place) => {
-    const residuals = { tight: new Float64Array(vectors.count), loose: new Float64Array(vectors.count) };
+    const each = (): Float64Array => new Float64Array(vectors.count);
+    const residuals = { tight: each(), loose: each(), certain: each() };
     const met: Met[] = [];
     certificate.levels.forEach((level, l) => {
       level.states.forEach((state, k) => {
@@ -115,6 +118,7 @@ function checkNumber(
   }
   const terms = vectors.n + 16;
   residuals.tight[s] = roundUp(rho + rounding + operator.error, terms);
+  residuals.certain[s] = Math.max(0, rho - rounding) + operator.error;
   // a bound may be taken over a whole sector at once, whose vectors round in every step of the refinement
   const size = Math.sqrt(vectors.n);
   const sector =
@@ -124,7 +128,15 @@ function checkNumber(
   const what = vague
     ? `the deviation of ${name}`
     : `‖${name} q − a q‖ at a = ${label.re}${label.im === 0 ? "" : ` + ${label.im}i`}`;
-  ledger.bound(`${path}.radius`, what, label.radius, residuals.tight[s] as number, residuals.loose[s] as number);
+  const { tight, loose, certain } = residuals;
+  ledger.bound(
+    `${path}.radius`,
+    what,
+    label.radius,
+    tight[s] as number,
+    loose[s] as number,
+    certain[s] as number,
+  );
   ledger.claim(
     label.radius >= rho - rounding,
     path,
@@ -204,9 +216,9 @@ function pickFamily(
   if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);
   const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
   const radius = 4 * widest + LABEL_WIDTH * candidate.operator.norm;
-  // values that agree to ten digits are one
-  const digits = (x: number): string => (Math.abs(x) < 1e-9 ? "0" : x.toPrecision(10));
-  const distinct = [...new Map(values.map((label) => [`${digits(label.re)} ${digits(label.im)}`, label])).values()];
+  // values closer than labels are told apart are one
+  const cell = (x: number): number => Math.round(x / (LABEL_WIDTH * candidate.operator.norm));
+  const distinct = [...new Map(values.map((label) => [`${cell(label.re)} ${cell(label.im)}`, label])).values()];
   // how often a value occurs may tip the scales between a square and its root: both readings are honest
   const once = recogniseFamily(distinct, radius, allSharp);
   const often = recogniseFamily(values, radius, allSharp);

@@ -101,12 +101,12 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
     const leaks = own.perturbations.map((_, p) => leak(given, p));
     checkBounds(ledger, claims, own, level, l, evaluated, leaks);
     checkSafeOrders(ledger, given);
-    checkGuard(ledger, claims, own, level, l, evaluated, sectors);
+    checkGuard(ledger, claims, own, level, l, evaluated, sectors?.sectors);
     checkLevelVerdict(ledger, given, couplings);
     return evaluated;
   });
   checkCompleteness(ledger, claims, own, vectors, bench, levels);
-  checkWhole(ledger, claims, own, candidates, residuals, levels);
+  checkWhole(ledger, claims, own, candidates, residuals, levels, sectors);
   checkVerdict(ledger, claims);
   return { ...ledger.report(), verdict: claims.verdict };
 }
