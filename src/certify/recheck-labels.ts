@@ -17,6 +17,9 @@ const LABEL_WIDTH = 2 ** -36;
 /** A state is an eigenvector where its residual is within this many label widths. */
 const SHARP = 16 * LABEL_WIDTH;
 
+/** A label that holds for a whole sector stands with a residual of up to this fraction of ‖A‖, which its radius covers. */
+const CARRIED = 2 ** -26;
+
 /** Families that a recognised label may belong to. */
 const RECOGNISED: readonly LabelDeclaration[] = [
   "parity",
@@ -129,14 +132,7 @@ function checkNumber(
     ? `the deviation of ${name}`
     : `‖${name} q − a q‖ at a = ${label.re}${label.im === 0 ? "" : ` + ${label.im}i`}`;
   const { tight, loose, certain } = residuals;
-  ledger.bound(
-    `${path}.radius`,
-    what,
-    label.radius,
-    tight[s] as number,
-    loose[s] as number,
-    certain[s] as number,
-  );
+  ledger.bound(`${path}.radius`, what, label.radius, tight[s] as number, loose[s] as number, certain[s] as number);
   ledger.claim(
     label.radius >= rho - rounding,
     path,
@@ -153,8 +149,9 @@ function checkNumber(
     );
   }
   const limit = SHARP * operator.norm;
+  const most = label.role === "conserved" ? CARRIED * operator.norm : 2 * limit;
   ledger.claim(
-    vague ? rho + looseRounding + operator.error > limit / 2 && !onPath : onPath || rho - rounding <= 2 * limit,
+    vague ? rho + looseRounding + operator.error > limit / 2 && !onPath : onPath || rho - rounding <= most,
     `${path}.status`,
     () => `claimed to be "${label.status}"; the state is off an eigenvector of ${name} by ${rho}`,
   );

@@ -76,16 +76,20 @@ export function evaluateLevel(
   const residuals = new Float64Array(d);
   const looseResiduals = new Float64Array(d);
   const certainResiduals = new Float64Array(d);
+  let computed = 0;
   for (let k = 0; k < d; k++) {
     bench.image(problem.h0.columns, shape.from + k);
     const rho = bench.residual(shape.from + k, level.states[k]?.energy ?? 0, 0);
     const { rounding, looseRounding, operator } = problem.h0;
     residuals[k] = roundUp(rho + rounding + operator.error, n + 16);
     certainResiduals[k] = Math.max(0, rho - rounding) + operator.error;
+    computed += rho * rho;
     // a state may be put together from d vectors whose errors add, and rounds once more in that
-    const each = rho + looseRounding + operator.error;
+    const each = looseRounding + operator.error;
     looseResiduals[k] = roundUp(Math.sqrt(d) * each + 2 * operator.norm * Math.sqrt(n) * productRounding(n), n + 16);
   }
+  // of those vectors it is told the residuals of all together
+  for (let k = 0; k < d; k++) looseResiduals[k] = roundUp((looseResiduals[k] as number) + Math.sqrt(computed), d + 16);
   return {
     tree,
     ...gram,
