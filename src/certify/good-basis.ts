@@ -57,7 +57,14 @@ function freezeDeeply(value: object): void {
 export function certifyBasis<K extends string>(study: Study<K>, internals: StudyInternals): GoodBasis<K> {
   const basis = new CertifiedBasis(KEY, study);
   internalsOf.set(basis, internals);
-  for (const part of [study.states, study.levels, study.whole, study.audit, study.tree]) freezeDeeply(part);
+  for (const state of study.states) {
+    // its vector is a copy each time
+    for (const part of [state.labels, state.shifts, state.safe]) freezeDeeply(part);
+    Object.freeze(state);
+  }
+  Object.freeze(study.states);
+  const { levels, whole, audit, tree, sets, perturbations, candidates } = study;
+  for (const part of [levels, whole, audit, tree, sets, perturbations, candidates]) freezeDeeply(part);
   Object.freeze(study);
   Object.freeze(basis);
   return basis;

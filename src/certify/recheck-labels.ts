@@ -18,7 +18,7 @@ const LABEL_WIDTH = 2 ** -36;
 const SHARP = 16 * LABEL_WIDTH;
 
 /** A label that holds for a whole sector stands with a residual of up to this fraction of ‖A‖, which its radius covers. */
-const CARRIED = 2 ** -26;
+const CARRIED = 2 ** -12;
 
 /** Families that a recognised label may belong to. */
 const RECOGNISED: readonly LabelDeclaration[] = [
@@ -180,8 +180,7 @@ function checkTexts(
       continue;
     }
     const member: FamilyMember | undefined = family === undefined ? undefined : onlyMember(family, label, label.radius);
-    const number = writeNumber(label.re, label.im);
-    const text = member?.text ?? (family === "j" ? `eigenvalue ${number}` : number);
+    const text = member?.text ?? bareText(family, label);
     const status = member === undefined ? "measured" : declared === undefined ? "proposed" : "declared";
     ledger.claim(
       label.status === status,
@@ -196,6 +195,11 @@ function checkTexts(
   }
 }
 
+/** A number that belongs to no family: in a column of j a bare eigenvalue would be read as j. */
+function bareText(family: LabelDeclaration | undefined, { re, im }: Label): string {
+  return family === "j" ? `eigenvalue ${writeNumber(re, im)}` : writeNumber(re, im);
+}
+
 /** With all states at hand the family is recognised anew; otherwise it must be one that fits every text. */
 function pickFamily(
   candidate: OwnOperator,
@@ -207,7 +211,7 @@ function pickFamily(
   const fits = (family: LabelDeclaration): boolean =>
     values.every((label) => {
       const member = onlyMember(family, label, label.radius);
-      if (member === undefined) return label.status === "measured";
+      if (member === undefined) return label.status === "measured" && label.text === bareText(family, label);
       return label.status === "proposed" && member.text === label.text;
     });
   if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);

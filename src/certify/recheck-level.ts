@@ -23,6 +23,8 @@ export interface OwnElements {
   readonly diagonal: Float64Array;
   /** Bounds on the 2-norm of what is off the diagonal. */
   readonly offDiagonal: OwnNorm;
+  /** A lower bound on the Frobenius norm of what is off the diagonal. */
+  readonly offFrobenius: number;
   /** Largest modulus off the diagonal. */
   readonly largestOff: number;
   /** For each node: largest modulus between states that part there; −1 where no two share a ket. */
@@ -252,6 +254,7 @@ function evaluateElements(
       tight,
       loose: most + entries * (nodes + 1),
     },
+    offFrobenius: Math.max(0, Math.sqrt(bare) * (1 - 1e-9) - error * Math.sqrt(2 * touched)),
     largestOff,
     atNode,
     atNodeBound,
