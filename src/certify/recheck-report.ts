@@ -40,7 +40,7 @@ export interface RecheckTerms {
  * Two evaluations of one bound allow differently for rounding. What is certain must be covered in full, and this much of what the
  * own evaluation allows for rounding.
  */
-const ROUNDING_SHARE = 1 / 2;
+const ROUNDING_SHARE = 7 / 8;
 
 /** Where the own evaluation does not say what is certain, a bound may claim this much less. */
 const TOO_LITTLE = 1 / 4;

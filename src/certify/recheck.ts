@@ -33,7 +33,7 @@ const SMALLEST_NORM = 2 ** -400;
  * The seals tell where a file was altered. Independently of them every claim is checked: vectors, energies, labels, commutators,
  * the evidence of every node, shifts and their ±, safe orders, completeness of the levels, the denominators guard, and the
  * verdicts. Bounds need not be equal: a claim fails where it covers less than what is certain (what was computed less its rounding,
- * and the entries' uncertainty) and half of the own allowance for rounding, or so much more that it must belong to something else.
+ * and the entries' uncertainty) and seven eighths of the own allowance for rounding, or so much more that it must belong to something else.
  *
  * `notChecked` lists what the operators could not be held against: of a certificate of some levels only, the ratios of the guard, values
  * of the second-order operator and what rests on them, sectors, and the bounds over the whole basis (checked as far as the certified
