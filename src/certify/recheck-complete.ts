@@ -57,11 +57,12 @@ export function checkCompleteness(
       [level.gapBelow, own[l - 1]],
       [level.gapAbove, own[l + 1]],
     ] as const) {
-      const off = Math.max(own[l]?.h0.offDiagonal.tight ?? 0, beside?.h0.offDiagonal.tight ?? 0);
+      // both ends may lie nearer by the residuals, and by what H0 has off the diagonal inside the levels
+      const nearer = 2 * reach + (own[l]?.h0.offDiagonal.tight ?? 0) + (beside?.h0.offDiagonal.tight ?? 0);
       ledger.claim(
-        ambiguous || gap === null || reach + off < gap / 2,
+        ambiguous || gap === null || nearer < gap,
         `levels[${l}].complete`,
-        () => `residuals of ${reach + off} do not tell the level from its neighbours, ${gap} away`,
+        () => `residuals of ${nearer} do not tell the level from its neighbours, ${gap} away`,
       );
     }
   });
