@@ -28,7 +28,7 @@ export type {
 export type { GoodBasis } from "./certify/good-basis.js";
 export type { GuardFinding, GuardOptions, GuardSetting, LevelGuard, SectorGuard } from "./certify/guard.js";
 export type { GoodOutcome, NotGoodOutcome, Outcome, UndecidedOutcome } from "./certify/outcome.js";
-export { type RecheckFinding, type RecheckReport, recheck } from "./certify/recheck.js";
+export { type RecheckFinding, type RecheckReport, type RecheckTerms, recheck } from "./certify/recheck.js";
 export type { Repair } from "./certify/repair.js";
 export type { SafeOrders } from "./certify/safe-orders.js";
 export type { Progress } from "./certify/study.js";

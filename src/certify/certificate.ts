@@ -8,13 +8,14 @@ import type {
   CertifiedOperator,
 } from "./certificate-format.js";
 import type { LevelResult, Study } from "./findings.js";
+import type { LevelGuard } from "./guard.js";
 import type { StudyInternals } from "./internals.js";
 import { sealCertificate } from "./seal.js";
 import type { Verdict } from "./verdict.js";
 
 export type * from "./certificate-format.js";
 
-/** Writes the certificate of a study. */
+/** Writes the certificate of a study: fresh at every call, and with no part of the study in it. */
 export function writeCertificate(study: Study, verdict: Verdict, internals: StudyInternals): Certificate {
   const { problem } = internals;
   const findings = [
@@ -46,7 +47,7 @@ export function writeCertificate(study: Study, verdict: Verdict, internals: Stud
       energyEnclosure: whole.energyEnclosure,
       levels: study.levelCount,
       eta0: whole.nearby.eta0,
-      eta: whole.nearby.eta,
+      eta: [...whole.nearby.eta],
     },
     levels: study.levels.map((level) => writeLevel(study, level, internals)),
   });
@@ -68,7 +69,7 @@ function writeLevel(study: Study, level: LevelResult, internals: StudyInternals)
     gapAbove: level.gapAbove,
     verdict: level.verdict,
     questions: level.questions.map((question) => question.code),
-    safe: level.safe,
+    safe: { ...level.safe },
     tilt: level.tilt,
     orthonormality: evidence.orthonormality,
     complete: {
@@ -97,7 +98,7 @@ function writeLevel(study: Study, level: LevelResult, internals: StudyInternals)
         values: node.values.map((value) => [value.re, value.im] as const),
         states: [...children].sort(([a], [b]) => a - b).map(([, states]) => states),
         gap: node.gap,
-        commutators: node.commutators,
+        commutators: [...node.commutators],
         residual: node.residual,
         couplings: node.couplings.map((bound) => ({
           ...bound,
@@ -105,20 +106,33 @@ function writeLevel(study: Study, level: LevelResult, internals: StudyInternals)
         })),
       };
     }),
-    guard: level.guard,
+    guard: writeGuard(level.guard),
     states: study.states.slice(level.firstState, level.firstState + level.degeneracy).map((state) => ({
       sector: state.sector,
       energy: state.energy,
       energyPlusMinus: state.energyPlusMinus,
-      labels: state.labels,
-      shifts: state.shifts,
-      safe: state.safe,
+      labels: Object.fromEntries(Object.entries(state.labels).map(([name, label]) => [name, { ...label }])),
+      shifts: state.shifts.map((shift) => ({ ...shift })),
+      safe: { ...state.safe },
       limitedBy: state.limitedBy,
       vector: {
         kets: [...state.vector.kets],
         re: [...state.vector.re],
         ...(state.vector.im === undefined ? {} : { im: [...state.vector.im] }),
       },
+    })),
+  };
+}
+
+function writeGuard(guard: LevelGuard): CertifiedLevel["guard"] {
+  return {
+    ...guard,
+    radius: [...guard.radius],
+    sectors: guard.sectors.map((sector) => ({
+      ...sector,
+      first: { ...sector.first },
+      second: { ...sector.second },
+      inside: sector.inside === null ? null : { ...sector.inside },
     })),
   };
 }

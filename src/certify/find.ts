@@ -5,7 +5,6 @@ import { shown } from "../misuse.js";
 import type { LevelChoice } from "../refine/levels.js";
 import type { Depth } from "../refine/resolve.js";
 import { writeCertificate } from "./certificate.js";
-import type { Certificate } from "./certificate-format.js";
 import { certifyBasis } from "./good-basis.js";
 import type { GuardOptions } from "./guard.js";
 import type { StudyInternals } from "./internals.js";
@@ -73,7 +72,6 @@ export function findGoodBasis<K extends string = never, P extends string = strin
     resolved: found.resolved,
     states: found.levelStates,
   };
-  let certificate: Certificate | undefined;
   const study: Study<K> = {
     n: prepared.n,
     unit: prepared.unit,
@@ -88,10 +86,7 @@ export function findGoodBasis<K extends string = never, P extends string = strin
     levels: found.results,
     states: found.states as readonly BasisState<K>[],
     whole: found.whole,
-    certificate: () => {
-      certificate ??= writeCertificate(study, verdict, internals);
-      return certificate;
-    },
+    certificate: () => writeCertificate(study, verdict, internals),
   };
   const questions = found.results.flatMap((level) => level.questions);
   switch (verdict) {

@@ -44,21 +44,27 @@ class CertifiedBasis<K extends string = string> {
 /** A basis that has been proved good for V; see {@link findGoodBasis}. Its constructor is private to the library. */
 export type GoodBasis<K extends string = string> = CertifiedBasis<K>;
 
+/** Freezes an object with everything in it, except what typed arrays and maps hold, which cannot be frozen. */
+function freezeDeeply(value: object): void {
+  if (ArrayBuffer.isView(value) || Object.isFrozen(value)) return;
+  Object.freeze(value);
+  for (const item of Array.isArray(value) ? value : Object.values(value)) {
+    if (typeof item === "object" && item !== null) freezeDeeply(item);
+  }
+}
+
 /** Makes a certified basis; called where the verdict is given and nowhere else. */
 export function certifyBasis<K extends string>(study: Study<K>, internals: StudyInternals): GoodBasis<K> {
   const basis = new CertifiedBasis(KEY, study);
   internalsOf.set(basis, internals);
-  // what perturb reads its permissions and bounds from
   for (const state of study.states) {
-    Object.freeze(state.safe);
+    // its vector is a copy each time
+    for (const part of [state.labels, state.shifts, state.safe]) freezeDeeply(part);
     Object.freeze(state);
   }
-  for (const level of study.levels) {
-    Object.freeze(level.evidence);
-    Object.freeze(level);
-  }
   Object.freeze(study.states);
-  Object.freeze(study.levels);
+  const { levels, whole, audit, tree, sets, perturbations, candidates } = study;
+  for (const part of [levels, whole, audit, tree, sets, perturbations, candidates]) freezeDeeply(part);
   Object.freeze(study);
   Object.freeze(basis);
   return basis;

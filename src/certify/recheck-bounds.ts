@@ -31,6 +31,7 @@ export function checkBounds(
     level.orthonormality,
     own.orthonormality.least,
     own.orthonormality.loose + certificate.whole.orthonormality,
+    own.orthonormality.certain,
   );
   ledger.claim(
     level.orthonormality >= own.orthonormalityAtLeast,
@@ -65,6 +66,7 @@ function checkEnergies(ledger: Ledger, problem: OwnProblem, level: CertifiedLeve
       state.energyPlusMinus,
       tight,
       (own.looseResiduals[k] as number) * grow,
+      own.certainResiduals[k] as number,
     );
     ledger.claim(
       state.energyPlusMinus >=
@@ -92,15 +94,25 @@ function checkEnergies(ledger: Ledger, problem: OwnProblem, level: CertifiedLeve
 }
 
 /** sin Θ ≤ ‖H0 Q − Q Λ‖ / gap (Davis and Kahan, SIAM J. Numer. Anal. 7, 1 (1970)). */
-function checkTilt(ledger: Ledger, certificate: Certificate, level: CertifiedLevel, path: string, own: OwnLevel): Pair {
+function checkTilt(
+  ledger: Ledger,
+  certificate: Certificate,
+  level: CertifiedLevel,
+  path: string,
+  own: OwnLevel,
+): Pair & { readonly certain: number } {
   const isolation = smallerGap(level) - 2 * certificate.whole.energyEnclosure - level.spread;
   const sine = (residuals: Float64Array): number => {
     if (isolation === Number.POSITIVE_INFINITY) return 0;
     if (isolation <= 0 || own.orthonormality.tight >= 0.5) return 1;
     return Math.min(1, roundUp((rootSum(residuals) * (1 + own.orthonormality.tight)) / isolation));
   };
-  const tilt = { tight: sine(own.residuals), loose: sine(own.looseResiduals) };
-  ledger.bound(`${path}.tilt`, "the tilt of the level", level.tilt, tilt.tight, tilt.loose);
+  const certain =
+    isolation > 0 && own.orthonormality.tight < 0.5
+      ? Math.min(1, rootSum(own.certainResiduals) / isolation)
+      : sine(own.residuals);
+  const tilt = { tight: sine(own.residuals), loose: sine(own.looseResiduals), certain };
+  ledger.bound(`${path}.tilt`, "the tilt of the level", level.tilt, tilt.tight, tilt.loose, tilt.certain);
   const gap = smallerGap(level);
   const isolated = gap === Number.POSITIVE_INFINITY ? null : Math.max(0, gap - 2 * certificate.whole.energyEnclosure);
   const { complete } = level;
@@ -136,12 +148,13 @@ function checkShifts(
   level: CertifiedLevel,
   path: string,
   own: OwnLevel,
-  tilt: Pair,
+  tilt: Pair & { readonly certain: number },
   leaks: readonly number[],
 ): void {
   const names = problem.perturbations.map((v) => v.name);
   const most = (list: Float64Array): number => list.reduce((a, b) => Math.max(a, b), 0);
-  const deviation = own.h0.diagonal.reduce((a, energy) => Math.max(a, Math.abs(energy - level.energy)), 0);
+  // the residuals are about the claimed energies, so they count
+  const deviation = level.states.reduce((a, state) => Math.max(a, Math.abs(state.energy - level.energy)), 0);
   const defect = own.orthonormality.least;
   level.states.forEach((state, k) => {
     const at = `${path}.states[${k}].shifts`;
@@ -163,6 +176,12 @@ function checkShifts(
         deviation +
         most(own.residuals) +
         elements.error;
+      const certain =
+        elements.offDiagonal.certain +
+        2 * v.norm * (own.orthonormality.certain + tilt.certain) +
+        deviation +
+        most(own.certainResiduals) +
+        v.operator.error;
       const loose =
         elements.offDiagonal.loose +
         2 * v.norm * (own.orthonormality.loose + level.orthonormality + tilt.loose + productRounding(2 * problem.n)) +
@@ -177,6 +196,7 @@ function checkShifts(
         shift.plusMinus,
         roundUp(tight, 32),
         loose,
+        certain,
       );
     });
   });

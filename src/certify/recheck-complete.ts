@@ -20,8 +20,8 @@ export function isWhole({ levels, n, whole }: Certificate): boolean {
 /**
  * Checks that no eigenvalue of H0 was missed near any level, and that the gaps are what they are said to be.
  *
- * All vectors together are orthonormal and their residuals small, so as many eigenvalues lie next to their energies (Kahan; see
- * Parlett, The Symmetric Eigenvalue Problem, §11.5). Where the vectors fill the space there are no others. Where only some levels
+ * All vectors together are orthonormal and their residuals small, so as many eigenvalues lie next to those of H0 inside the levels
+ * (Kahan; see Parlett, The Symmetric Eigenvalue Problem, §11.5), which lie within its off-diagonal elements of the energies. Where the vectors fill the space there are no others. Where only some levels
  * are certified, the eigenvalues at both ends of each run of neighbouring levels are counted.
  */
 export function checkCompleteness(
@@ -43,7 +43,7 @@ export function checkCompleteness(
     () => `${whole.levels} levels are claimed; ${levels.length} are certified with ${total} of ${n} states`,
   );
   const overlap = crossOverlap(vectors, bench);
-  const residual = rootSum(own.map((level) => rootSum(level.residuals)));
+  const residual = rootSum(own.map(({ residuals, h0 }) => besides(rootSum(residuals), h0.offFrobenius)));
   const reach = (residual * (1 + 2 * overlap) + 2 * problem.h0.norm * overlap) * 1.01;
   ledger.claim(
     overlap < 0.25,
@@ -51,17 +51,29 @@ export function checkCompleteness(
     () => `the vectors of different levels overlap: ‖F F† − 1‖ is found to be up to ${overlap}`,
   );
   levels.forEach((level, l) => {
-    const gap = Math.min(level.gapBelow ?? Number.POSITIVE_INFINITY, level.gapAbove ?? Number.POSITIVE_INFINITY);
-    ledger.claim(
-      // a level that is said to be ambiguous claims no distance to its neighbours
-      reach < gap / 2 || level.questions.includes("ambiguous-level"),
-      `levels[${l}].complete`,
-      () => `residuals of ${reach} do not tell the level from its neighbours, ${gap} away`,
-    );
+    // a level that is said to be ambiguous claims no distance to its neighbours
+    const ambiguous = level.questions.includes("ambiguous-level");
+    for (const [gap, beside] of [
+      [level.gapBelow, own[l - 1]],
+      [level.gapAbove, own[l + 1]],
+    ] as const) {
+      // both ends may lie nearer by the residuals, and by what H0 has off the diagonal inside the levels
+      const nearer = 2 * reach + (own[l]?.h0.offDiagonal.tight ?? 0) + (beside?.h0.offDiagonal.tight ?? 0);
+      ledger.claim(
+        ambiguous || gap === null || nearer < gap,
+        `levels[${l}].complete`,
+        () => `residuals of ${nearer} do not tell the level from its neighbours, ${gap} away`,
+      );
+    }
   });
   const runs = checkNeighbours(ledger, certificate, problem);
   if (isWhole(certificate)) return;
   countRuns(ledger, certificate, problem, runs);
+}
+
+/** What residuals leave besides the elements of H0 between the states of a level, which do not lead out of it. */
+function besides(residual: number, inside: number): number {
+  return Math.sqrt(Math.max(0, residual * residual - inside * inside)) * 1.001;
 }
 
 /** Bound on the norm of all overlaps between different vectors, and of all lengths off 1. */

@@ -17,6 +17,9 @@ const LABEL_WIDTH = 2 ** -36;
 /** A state is an eigenvector where its residual is within this many label widths. */
 const SHARP = 16 * LABEL_WIDTH;
 
+/** A label that holds for a whole sector stands with a residual of up to this fraction of ‖A‖, which its radius covers. */
+const CARRIED = 2 ** -12;
+
 /** Families that a recognised label may belong to. */
 const RECOGNISED: readonly LabelDeclaration[] = [
   "parity",
@@ -38,6 +41,8 @@ interface Met {
 export interface OwnResiduals {
   readonly tight: Float64Array;
   readonly loose: Float64Array;
+  /** The part of `tight` that is no rounding. */
+  readonly certain: Float64Array;
 }
 
 /** Checks every label of every state: its value, radius, status, role and text. */
@@ -64,7 +69,8 @@ export function checkLabels(
     });
   });
   return problem.candidates.map((candidate, place) => {
-    const residuals = { tight: new Float64Array(vectors.count), loose: new Float64Array(vectors.count) };
+    const each = (): Float64Array => new Float64Array(vectors.count);
+    const residuals = { tight: each(), loose: each(), certain: each() };
     const met: Met[] = [];
     certificate.levels.forEach((level, l) => {
       level.states.forEach((state, k) => {
@@ -115,6 +121,7 @@ function checkNumber(
   }
   const terms = vectors.n + 16;
   residuals.tight[s] = roundUp(rho + rounding + operator.error, terms);
+  residuals.certain[s] = Math.max(0, rho - rounding) + operator.error;
   // a bound may be taken over a whole sector at once, whose vectors round in every step of the refinement
   const size = Math.sqrt(vectors.n);
   const sector =
@@ -124,7 +131,8 @@ function checkNumber(
   const what = vague
     ? `the deviation of ${name}`
     : `‖${name} q − a q‖ at a = ${label.re}${label.im === 0 ? "" : ` + ${label.im}i`}`;
-  ledger.bound(`${path}.radius`, what, label.radius, residuals.tight[s] as number, residuals.loose[s] as number);
+  const { tight, loose, certain } = residuals;
+  ledger.bound(`${path}.radius`, what, label.radius, tight[s] as number, loose[s] as number, certain[s] as number);
   ledger.claim(
     label.radius >= rho - rounding,
     path,
@@ -141,8 +149,9 @@ function checkNumber(
     );
   }
   const limit = SHARP * operator.norm;
+  const most = label.role === "conserved" ? CARRIED * operator.norm : 2 * limit;
   ledger.claim(
-    vague ? rho + looseRounding + operator.error > limit / 2 && !onPath : onPath || rho - rounding <= 2 * limit,
+    vague ? rho + looseRounding + operator.error > limit / 2 && !onPath : onPath || rho - rounding <= most,
     `${path}.status`,
     () => `claimed to be "${label.status}"; the state is off an eigenvector of ${name} by ${rho}`,
   );
@@ -171,8 +180,7 @@ function checkTexts(
       continue;
     }
     const member: FamilyMember | undefined = family === undefined ? undefined : onlyMember(family, label, label.radius);
-    const number = writeNumber(label.re, label.im);
-    const text = member?.text ?? (family === "j" ? `eigenvalue ${number}` : number);
+    const text = member?.text ?? bareText(family, label);
     const status = member === undefined ? "measured" : declared === undefined ? "proposed" : "declared";
     ledger.claim(
       label.status === status,
@@ -187,6 +195,11 @@ function checkTexts(
   }
 }
 
+/** A number that belongs to no family: in a column of j a bare eigenvalue would be read as j. */
+function bareText(family: LabelDeclaration | undefined, { re, im }: Label): string {
+  return family === "j" ? `eigenvalue ${writeNumber(re, im)}` : writeNumber(re, im);
+}
+
 /** With all states at hand the family is recognised anew; otherwise it must be one that fits every text. */
 function pickFamily(
   candidate: OwnOperator,
@@ -198,15 +211,15 @@ function pickFamily(
   const fits = (family: LabelDeclaration): boolean =>
     values.every((label) => {
       const member = onlyMember(family, label, label.radius);
-      if (member === undefined) return label.status === "measured";
+      if (member === undefined) return label.status === "measured" && label.text === bareText(family, label);
       return label.status === "proposed" && member.text === label.text;
     });
   if (!all) return values.every((label) => label.status === "measured") ? undefined : RECOGNISED.find(fits);
   const widest = values.reduce((most, label) => Math.max(most, label.radius), 0);
   const radius = 4 * widest + LABEL_WIDTH * candidate.operator.norm;
-  // values that agree to ten digits are one
-  const digits = (x: number): string => (Math.abs(x) < 1e-9 ? "0" : x.toPrecision(10));
-  const distinct = [...new Map(values.map((label) => [`${digits(label.re)} ${digits(label.im)}`, label])).values()];
+  // values closer than labels are told apart are one
+  const cell = (x: number): number => Math.round(x / (LABEL_WIDTH * candidate.operator.norm));
+  const distinct = [...new Map(values.map((label) => [`${cell(label.re)} ${cell(label.im)}`, label])).values()];
   // how often a value occurs may tip the scales between a square and its root: both readings are honest
   const once = recogniseFamily(distinct, radius, allSharp);
   const often = recogniseFamily(values, radius, allSharp);

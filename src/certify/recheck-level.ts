@@ -12,8 +12,10 @@ export interface Pair {
 
 /** Bounds on the 2-norm of a matrix of evaluated elements. */
 export interface OwnNorm extends Pair {
-  /** What every honest bound reaches: the largest norm of one row, and the error of one element. */
+  /** What every honest bound reaches: the norm of one row, or of all elements inside one group of equal labels, with their errors. */
   readonly least: number;
+  /** The part of `least` that is no rounding. */
+  readonly certain: number;
 }
 
 /** One operator between all states of a level. */
@@ -21,14 +23,20 @@ export interface OwnElements {
   readonly diagonal: Float64Array;
   /** Bounds on the 2-norm of what is off the diagonal. */
   readonly offDiagonal: OwnNorm;
+  /** A lower bound on the Frobenius norm of what is off the diagonal. */
+  readonly offFrobenius: number;
   /** Largest modulus off the diagonal. */
   readonly largestOff: number;
   /** For each node: largest modulus between states that part there; −1 where no two share a ket. */
   readonly atNode: Float64Array;
   /** For each node: the same with the error of each element. */
   readonly atNodeBound: Float64Array;
+  /** For each node: the part of that which is no rounding. */
+  readonly atNodeCertain: Float64Array;
   /** Largest modulus inside leaves of several states, with its error; 0 where no two share a ket. */
   readonly withinLeaves: number;
+  /** The part of `withinLeaves` that is no rounding. */
+  readonly withinLeavesCertain: number;
   /** Error of one element: rounding of the image and the product, and the entries' own. */
   readonly error: number;
   readonly looseError: number;
@@ -47,6 +55,8 @@ export interface OwnLevel {
   /** Bounds on ‖H0 q − E q‖ of each state. */
   readonly residuals: Float64Array;
   readonly looseResiduals: Float64Array;
+  /** The part of `residuals` that is no rounding. */
+  readonly certainResiduals: Float64Array;
   readonly perturbations: readonly OwnElements[];
 }
 
@@ -61,27 +71,34 @@ export function evaluateLevel(
 ): OwnLevel {
   const shape = levelShape(vectors, l);
   const { n } = problem;
-  const gram = evaluateGram(vectors, bench, shape, n);
+  const gram = evaluateGram(vectors, bench, shape, tree, n);
   const nodes = level.nodes.length;
   const h0 = evaluateElements(problem.h0, vectors, bench, shape, tree, nodes);
   const d = shape.to - shape.from;
   const residuals = new Float64Array(d);
   const looseResiduals = new Float64Array(d);
+  const certainResiduals = new Float64Array(d);
+  let computed = 0;
   for (let k = 0; k < d; k++) {
     bench.image(problem.h0.columns, shape.from + k);
     const rho = bench.residual(shape.from + k, level.states[k]?.energy ?? 0, 0);
     const { rounding, looseRounding, operator } = problem.h0;
     residuals[k] = roundUp(rho + rounding + operator.error, n + 16);
+    certainResiduals[k] = Math.max(0, rho - rounding) + operator.error;
+    computed += rho * rho;
     // a state may be put together from d vectors whose errors add, and rounds once more in that
-    const each = rho + looseRounding + operator.error;
+    const each = looseRounding + operator.error;
     looseResiduals[k] = roundUp(Math.sqrt(d) * each + 2 * operator.norm * Math.sqrt(n) * productRounding(n), n + 16);
   }
+  // of those vectors it is told the residuals of all together
+  for (let k = 0; k < d; k++) looseResiduals[k] = roundUp((looseResiduals[k] as number) + Math.sqrt(computed), d + 16);
   return {
     tree,
     ...gram,
     h0,
     residuals,
     looseResiduals,
+    certainResiduals,
     perturbations: problem.perturbations.map((v) => evaluateElements(v, vectors, bench, shape, tree, nodes)),
   };
 }
@@ -122,11 +139,11 @@ function evaluateGram(
   vectors: Vectors,
   bench: Bench,
   { from, to, longest, moduli }: Shape,
+  tree: OwnTree,
   n: number,
 ): { orthonormality: OwnNorm; orthonormalityAtLeast: number } {
   const rows = new Float64Array(to - from);
-  const squares = new Float64Array(to - from);
-  let worstError = 0;
+  const parts = new Parts(to - from, tree);
   const relative = productRounding(longest);
   let bare = 0;
   let padded = 0;
@@ -146,9 +163,9 @@ function evaluateGram(
       bare += weight * size * size;
       padded += weight * (size + error) ** 2;
       atLeast = Math.max(atLeast, size - error);
-      worstError = Math.max(worstError, error);
-      addTo(rows, squares, r - from, size);
-      if (c !== r) addTo(rows, squares, c - from, size);
+      parts.add(r - from, c - from, size, error, 0);
+      addTo(rows, r - from, size);
+      if (c !== r) addTo(rows, c - from, size);
     }
   }
   const row = largest(rows);
@@ -157,7 +174,7 @@ function evaluateGram(
   const tight = touched === 0 ? 0 : roundUp(Math.min(entrywise, normwise), 2 * touched + 16);
   return {
     orthonormality: {
-      least: Math.min(tight, Math.sqrt(largest(squares)) + worstError),
+      ...parts.norms(tight),
       tight,
       loose: entrywise + n * productRounding(2 * n),
     },
@@ -176,16 +193,17 @@ function evaluateElements(
   const d = to - from;
   const { norm, error: entries } = v.operator;
   const relative = productRounding(longest) * norm;
-  const error = roundUp((v.rounding + relative + entries) * 1.001, 16);
+  const error = roundUp((v.rounding + relative) * 1.001 + entries, 16);
   const diagonal = new Float64Array(d);
   const rows = new Float64Array(d);
-  const squares = new Float64Array(d);
-  let worstError = 0;
+  const parts = new Parts(d, tree);
   const atNode = new Float64Array(nodes).fill(-1);
   const atNodeBound = new Float64Array(nodes);
+  const atNodeCertain = new Float64Array(nodes);
   let bare = 0;
   let padded = 0;
   let withinLeaves = 0;
+  let withinLeavesCertain = 0;
   let touched = 0;
   let largestOff = 0;
   let worst = { atLeast: 0, first: -1, second: -1 };
@@ -205,13 +223,17 @@ function evaluateElements(
       const own = size + rounding * 1.001 + entries;
       bare += 2 * size * size;
       padded += 2 * own * own;
-      worstError = Math.max(worstError, own - size);
-      addTo(rows, squares, r - from, size);
-      addTo(rows, squares, c - from, size);
+      const certain = Math.max(0, size - rounding * 1.001) + entries;
+      parts.add(r - from, c - from, size, rounding * 1.001, entries);
+      addTo(rows, r - from, size);
+      addTo(rows, c - from, size);
       if (size > largestOff) largestOff = size;
       const node = partingPlace(tree, c - from, r - from);
-      if (node < 0) withinLeaves = Math.max(withinLeaves, size + error);
-      else {
+      if (node < 0) {
+        withinLeaves = Math.max(withinLeaves, size + error);
+        withinLeavesCertain = Math.max(withinLeavesCertain, certain);
+      } else {
+        if (certain > (atNodeCertain[node] as number)) atNodeCertain[node] = certain;
         if (size > (atNode[node] as number)) atNode[node] = size;
         if (own > (atNodeBound[node] as number)) atNodeBound[node] = own;
       }
@@ -228,24 +250,73 @@ function evaluateElements(
   return {
     diagonal,
     offDiagonal: {
-      least: Math.min(tight, Math.sqrt(largest(squares)) + worstError),
+      ...parts.norms(tight),
       tight,
       loose: most + entries * (nodes + 1),
     },
+    offFrobenius: Math.max(0, Math.sqrt(bare) * (1 - 1e-9) - error * Math.sqrt(2 * touched)),
     largestOff,
     atNode,
     atNodeBound,
+    atNodeCertain,
     withinLeaves: roundUp(withinLeaves),
+    withinLeavesCertain,
     error,
     looseError: error + v.looseRounding + productRounding(vectors.n) * norm,
     worst,
   };
 }
 
-/** Adds an element to the sum and to the sum of squares of its row. */
-function addTo(rows: Float64Array, squares: Float64Array, row: number, size: number): void {
+/** Sums of squares that no bound on the norm of a Hermitian matrix of elements falls below: by rows, and by groups of equal labels. */
+class Parts {
+  readonly #group: readonly number[];
+  readonly #rows: Float64Array;
+  readonly #rowsCertain: Float64Array;
+  readonly #groups: Float64Array;
+  readonly #groupsCertain: Float64Array;
+  #rounding = 0;
+  #entries = 0;
+
+  constructor(size: number, { labelGroup, labelGroups }: OwnTree) {
+    this.#group = labelGroup;
+    this.#rows = new Float64Array(size);
+    this.#rowsCertain = new Float64Array(size);
+    this.#groups = new Float64Array(labelGroups);
+    this.#groupsCertain = new Float64Array(labelGroups);
+  }
+
+  /** Adds the elements (a, b) and (b, a), with what rounding and the entries' own uncertainty may add to each. */
+  add(a: number, b: number, size: number, rounding: number, entries: number): void {
+    const sure = Math.max(0, size - rounding);
+    this.#rounding = Math.max(this.#rounding, rounding);
+    this.#entries = Math.max(this.#entries, entries);
+    this.#rows[a] = (this.#rows[a] as number) + size * size;
+    this.#rowsCertain[a] = (this.#rowsCertain[a] as number) + sure * sure;
+    if (a !== b) {
+      this.#rows[b] = (this.#rows[b] as number) + size * size;
+      this.#rowsCertain[b] = (this.#rowsCertain[b] as number) + sure * sure;
+    }
+    const group = this.#group[a] as number;
+    if (group !== this.#group[b]) return;
+    const weight = a === b ? 1 : 2;
+    this.#groups[group] = (this.#groups[group] as number) + weight * (size + rounding + entries) ** 2;
+    this.#groupsCertain[group] = (this.#groupsCertain[group] as number) + weight * (sure + entries) ** 2;
+  }
+
+  /** @param tight - a bound on the norm, which needs no more */
+  norms(tight: number): { least: number; certain: number } {
+    const row = Math.sqrt(largest(this.#rows)) + this.#rounding + this.#entries;
+    const rowCertain = Math.sqrt(largest(this.#rowsCertain)) + this.#entries;
+    return {
+      least: Math.min(tight, Math.max(row, Math.sqrt(largest(this.#groups)))),
+      certain: Math.min(tight, Math.max(rowCertain, Math.sqrt(largest(this.#groupsCertain)))),
+    };
+  }
+}
+
+/** Adds an element to the sum of its row. */
+function addTo(rows: Float64Array, row: number, size: number): void {
   rows[row] = (rows[row] as number) + size;
-  squares[row] = (squares[row] as number) + size * size;
 }
 
 function largest(values: Float64Array): number {

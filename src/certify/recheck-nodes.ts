@@ -50,13 +50,14 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
     if (elements === undefined) return;
     const path = `${where}[${p}]`;
     const name = claimed.perturbation;
-    const { least, loose } = elements.offDiagonal;
+    const { least, loose, certain } = elements.offDiagonal;
     ledger.bound(
       `${path}.offDiagonal`,
       `the off-diagonal block of ${name}`,
       claimed.offDiagonal,
       least,
       loose + leak(given, p),
+      certain,
     );
     const looseLeaf = elements.withinLeaves + elements.looseError;
     ledger.bound(
@@ -65,6 +66,7 @@ export function checkNodes(ledger: Ledger, given: NodeCase): OwnCouplings {
       claimed.withinLeaves,
       elements.withinLeaves,
       looseLeaf,
+      elements.withinLeavesCertain,
     );
     const largest = level.nodes.reduce(
       (most, node) => Math.max(most, node.couplings[p]?.counted ?? 0),
@@ -178,11 +180,13 @@ function checkResidual(ledger: Ledger, given: NodeCase, node: CertifiedNode, pat
   }
   let tight = 0;
   let loose = 0;
+  let certain = 0;
   for (const state of node.states.flat()) {
+    certain = Math.max(certain, own.certain[first + state] ?? 0);
     tight = Math.max(tight, own.tight[first + state] ?? 0);
     loose = Math.max(loose, own.loose[first + state] ?? 0);
   }
-  ledger.bound(`${path}.residual`, `the largest residual of ${node.operator}`, node.residual, tight, loose);
+  ledger.bound(`${path}.residual`, `the largest residual of ${node.operator}`, node.residual, tight, loose, certain);
   ledger.claim(
     2 * tight < node.gap,
     `${path}.gap`,
@@ -227,7 +231,8 @@ function checkBounds(
     const size = elements.atNode[place] as number;
     const tight = elements.atNodeBound[place] as number;
     const loose = Math.max(size, 0) + elements.looseError + elements.offDiagonal.loose + leak(given, p);
-    ledger.bound(`${at}.direct`, `${v.name} between the states that part here`, claimed.direct, tight, loose);
+    const what = `${v.name} between the states that part here`;
+    ledger.bound(`${at}.direct`, what, claimed.direct, tight, loose, elements.atNodeCertain[place] as number);
     const byLabel = node.kind === "label" && node.commutators[p] !== undefined;
     const expected = byLabel
       ? selectionRule(node.commutators[p] as number, v.norm, node.residual, level.orthonormality, node.gap)

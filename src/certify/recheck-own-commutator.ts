@@ -9,6 +9,9 @@ export interface OwnCommutator {
   readonly radius: number;
   readonly bound: number;
   readonly frobeniusBound: number;
+  /** The parts of both bounds that are no rounding. */
+  readonly certain: number;
+  readonly frobeniusCertain: number;
   /** Largest element plus its radius: no lower bound by elements is higher. */
   readonly most: number;
   /** Largest element minus its radius. */
@@ -46,6 +49,8 @@ class Tally {
   #entries = 0;
   #sum = 0;
   #radii = 0;
+  #rounding = 0;
+  #uncertain = 0;
   #rows = 0;
   #rowRadii = 0;
   #most = 0;
@@ -89,6 +94,8 @@ class Tally {
       this.#entries++;
       this.#sum += value * value;
       this.#radii += radius * radius;
+      this.#rounding += (rounding * (this.size[j] as number)) ** 2;
+      this.#uncertain += (this.radius[j] as number) ** 2;
       row += value;
       rowRadius += radius;
       this.#columns[j] = (this.#columns[j] as number) + value;
@@ -109,7 +116,11 @@ class Tally {
     const values = Math.min(norm, Math.sqrt(column * this.#rows));
     const radii = Math.min(radius, Math.sqrt(columnRadius * this.#rowRadii));
     const bound = Math.min(frobeniusBound, roundUp(values + radii, this.#entries + 2 * this.#n + 16));
-    return { norm, radius, bound, frobeniusBound, most: this.#most, atLeast: this.#atLeast };
+    const sure = (size: number): number => Math.max(0, size - Math.sqrt(this.#rounding));
+    const uncertain = Math.sqrt(this.#uncertain);
+    const frobeniusCertain = sure(norm) + uncertain;
+    const certain = Math.min(frobeniusCertain, sure(values) + Math.min(uncertain, radii));
+    return { norm, radius, bound, frobeniusBound, certain, frobeniusCertain, most: this.#most, atLeast: this.#atLeast };
   }
 }
 

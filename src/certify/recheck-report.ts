@@ -18,10 +18,35 @@ export interface RecheckReport {
   readonly checked: number;
   /** The claims that do not stand: altered sections first, then in the order of checking. */
   readonly findings: readonly RecheckFinding[];
+  /** What the operators at hand could not be held against, one sentence each; empty where every claim was checked against them. */
+  readonly notChecked: readonly string[];
+  /** What the certificate's verdict is relative to, as it states it: a choice of whoever asked, which no check can judge. */
+  readonly relativeTo?: RecheckTerms;
 }
 
-/** A bound may claim this much less than the re-check's own evaluation shows, whose rounding is bounded on its own. */
+/** The choices that a verdict rests on. */
+export interface RecheckTerms {
+  /** The fraction of ‖V − tr V/n‖ below which an element inside a level counts as vanished. */
+  readonly resolution: number;
+  /** Largest λ that the guard allows for, and whether it was stated; where nobody stated it, the smallest of the levels'. */
+  readonly lambda: number;
+  /** Whether λ was stated. */
+  readonly stated: boolean;
+  /** Ratios of V to a distance of energies above this are refused. */
+  readonly refuseAbove: number;
+}
+
+/**
+ * Two evaluations of one bound allow differently for rounding. What is certain must be covered in full, and this much of what the
+ * own evaluation allows for rounding.
+ */
+const ROUNDING_SHARE = 7 / 8;
+
+/** Where the own evaluation does not say what is certain, a bound may claim this much less. */
 const TOO_LITTLE = 1 / 4;
+
+/** Relative rounding of a few sums and roots. */
+const SUMMED = 1e-12;
 
 /** A bound more than this far above anything that rounding could leave was not written for this problem. */
 const TOO_MUCH = 64;
@@ -37,6 +62,12 @@ export class Ledger {
   #checked = 0;
   #failed = 0;
   readonly #findings: RecheckFinding[] = [];
+  readonly #notChecked: string[] = [];
+
+  /** Notes, as a sentence, what could not be held against the operators. */
+  skip(sentence: string): void {
+    this.#notChecked.push(sentence);
+  }
 
   /**
    * Checks one claim.
@@ -66,10 +97,23 @@ export class Ledger {
    *
    * @param tight - the own bound; a claim far below it says more than can be shown
    * @param loose - the largest bound that an honest evaluation could give; a claim far above it belongs to something else
+   * @param certain - the part of `tight` that no evaluation can do without: what was computed less its rounding, and the entries'
+   *   own uncertainty
    */
-  bound(path: string, what: string, claimed: number, tight: number, loose: number = tight): boolean {
+  bound(
+    path: string,
+    what: string,
+    claimed: number,
+    tight: number,
+    loose: number = tight,
+    certain: number | undefined = undefined,
+  ): boolean {
+    const least =
+      certain === undefined
+        ? TOO_LITTLE * tight
+        : (1 - SUMMED) * certain + ROUNDING_SHARE * Math.max(0, tight - certain) - UNDERFLOWN;
     const enough = this.claim(
-      claimed >= TOO_LITTLE * tight,
+      claimed >= least,
       path,
       () => `claims too little: ${what} is claimed to be at most ${claimed}, found up to ${tight}`,
     );
@@ -88,6 +132,6 @@ export class Ledger {
     const findings = [...this.#findings];
     const more = this.#failed - findings.length;
     if (more > 0) findings.push({ path: "", message: `${more} further claims do not stand` });
-    return { ok: this.#failed === 0, checked: this.#checked, findings };
+    return { ok: this.#failed === 0, checked: this.#checked, findings, notChecked: [...this.#notChecked] };
   }
 }

@@ -1,7 +1,7 @@
 import type { Certificate } from "./certificate-format.js";
 import type { OwnCandidate } from "./recheck-commutators.js";
 import type { OwnResiduals } from "./recheck-labels.js";
-import { type OwnProblem, productRounding } from "./recheck-operators.js";
+import { type OwnOperator, type OwnProblem, productRounding } from "./recheck-operators.js";
 import type { Ledger } from "./recheck-report.js";
 import { type Bench, modulusOf, type Vectors } from "./recheck-vectors.js";
 
@@ -9,8 +9,11 @@ import { type Bench, modulusOf, type Vectors } from "./recheck-vectors.js";
 const MOST_ELEMENTS = 12_000_000;
 const MOST_PRODUCTS = 4e9;
 
-/** Labels closer than this fraction of ‖A‖ are one. */
+/** Labels of one sector differ by no more than this fraction of ‖A‖. */
 const SAME_LABEL = 2 ** -30;
+
+/** Labels that the refinement takes apart differ by more than this fraction of ‖A‖: half of the width that it states. */
+export const APART: number = 2 ** -37;
 
 /** One perturbation between all states of one symmetry sector, over all levels. */
 export interface Sector {
@@ -23,11 +26,20 @@ export interface Sector {
   readonly im: readonly Float64Array[];
 }
 
+/** What the re-check finds of the sectors. */
+export interface OwnSectors {
+  /** The operators inside every sector, everything that second order needs; undefined where it would take too long. */
+  readonly sectors: Sector[] | undefined;
+  /** Lower bounds on the largest element between different sectors: of H0, which need not be diagonal, and of each perturbation. */
+  readonly h0: number;
+  readonly perturbations: readonly number[];
+}
+
 /**
  * Checks the sectors that a certificate of all levels claims: a sharp conserved label has one value in a sector, and V does not couple
  * different sectors beyond what the commutators leave.
  *
- * @returns V inside every sector, everything that second order needs; undefined where it would take too long
+ * @returns V inside every sector, and how much of H0 and V is certainly between them
  */
 export function checkSectors(
   ledger: Ledger,
@@ -37,7 +49,7 @@ export function checkSectors(
   residuals: readonly OwnResiduals[],
   vectors: Vectors,
   bench: Bench,
-): Sector[] | undefined {
+): OwnSectors {
   const numbers = Int32Array.from(certificate.levels.flatMap((level) => level.states.map((state) => state.sector)));
   const paths = certificate.levels.flatMap((level, l) =>
     level.states.map((_, k) => `levels[${l}].states[${k}].sector`),
@@ -60,6 +72,7 @@ export function checkSectors(
       place[s] = k;
     });
   }
+  const between = problem.perturbations.map(() => 0);
   const sectors = members.map(({ number, list }): Sector => {
     const re: Float64Array[] = [];
     const im: Float64Array[] = [];
@@ -67,7 +80,8 @@ export function checkSectors(
     problem.perturbations.forEach((v, p) => {
       const x = new Float64Array(few ? d * d : 0);
       const y = new Float64Array(few ? d * d : 0);
-      const error = 2 * (v.rounding + productRounding(vectors.n) * v.norm + v.operator.error) + (leaks[p] ?? 0);
+      const rounding = v.rounding + productRounding(vectors.n) * v.norm;
+      const error = 2 * (rounding + v.operator.error) + (leaks[p] ?? 0);
       list.forEach((s, j) => {
         bench.image(v.columns, s);
         bench.project(0, vectors.count, v.columns.im === undefined);
@@ -79,12 +93,16 @@ export function checkSectors(
             if (!few) continue;
             x[(place[c] as number) * d + j] = a;
             y[(place[c] as number) * d + j] = b;
-          } else if (modulusOf(a, b) > error) {
+            continue;
+          }
+          const size = modulusOf(a, b);
+          between[p] = Math.max(between[p] as number, size - 2 * rounding);
+          if (size > error) {
             ledger.claim(
               false,
               paths[s] ?? "levels",
               () =>
-                `sectors ${number} and ${numbers[c]} are claimed apart, but ${v.name} couples two of their states by ${modulusOf(a, b)}`,
+                `sectors ${number} and ${numbers[c]} are claimed apart, but ${v.name} couples two of their states by ${size}`,
             );
           }
         }
@@ -94,7 +112,27 @@ export function checkSectors(
     });
     return { number, members: list, re, im };
   });
-  return few ? sectors : undefined;
+  return {
+    sectors: few ? sectors : undefined,
+    h0: betweenSectors(problem.h0, numbers, vectors, bench),
+    perturbations: between,
+  };
+}
+
+/** A lower bound on the largest element of H0 between different sectors; 0 where H0 is diagonal, which the commutators cover. */
+function betweenSectors(h0: OwnOperator, numbers: Int32Array, vectors: Vectors, bench: Bench): number {
+  if (h0.operator.isDiagonal) return 0;
+  const error = 2 * (h0.rounding + productRounding(vectors.n) * h0.norm);
+  let most = 0;
+  for (let s = 0; s < vectors.count; s++) {
+    bench.image(h0.columns, s);
+    bench.project(0, s, h0.columns.im === undefined);
+    for (let t = 0; t < bench.met; t++) {
+      const c = bench.partners[t] as number;
+      if (numbers[c] !== numbers[s]) most = Math.max(most, modulusOf(bench.re[c] as number, bench.im[c] as number));
+    }
+  }
+  return Math.max(0, most - error);
 }
 
 /** A conserved label that every state of a sector carries sharply has one value there. */
@@ -153,7 +191,7 @@ function leakOf(
       values.push([label.re, label.im]);
       residual = Math.max(residual, residuals[place]?.loose[s] ?? 0);
     });
-    const gap = smallestApart(values, SAME_LABEL * size);
+    const gap = smallestApart(values, APART * size);
     if (gap === Number.POSITIVE_INFINITY) return;
     sum += ((candidate.withPerturbations[p]?.frobeniusBound ?? 0) + 2 * norm * residual) / gap;
   });

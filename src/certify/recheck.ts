@@ -15,12 +15,13 @@ import { Ledger, type RecheckReport } from "./recheck-report.js";
 import { checkSafeOrders } from "./recheck-safe.js";
 import { checkSectors } from "./recheck-sectors.js";
 import { rebuildTree } from "./recheck-tree.js";
+import { noteUnchecked, termsOf } from "./recheck-unchecked.js";
 import { Bench, gatherVectors } from "./recheck-vectors.js";
 import { checkLevelVerdict, checkVerdict } from "./recheck-verdict.js";
 import { checkWhole } from "./recheck-whole.js";
 import { computeSeals } from "./seal.js";
 
-export type { RecheckFinding, RecheckReport } from "./recheck-report.js";
+export type { RecheckFinding, RecheckReport, RecheckTerms } from "./recheck-report.js";
 
 /** Operators smaller than this (or larger than its inverse) would lose their squares to underflow. */
 const SMALLEST_NORM = 2 ** -400;
@@ -31,18 +32,19 @@ const SMALLEST_NORM = 2 ** -400;
  *
  * The seals tell where a file was altered. Independently of them every claim is checked: vectors, energies, labels, commutators,
  * the evidence of every node, shifts and their ±, safe orders, completeness of the levels, the denominators guard, and the
- * verdicts. Bounds need not be equal: a claim fails where it says less than can be shown, or so much more that it must belong to
- * something else.
+ * verdicts. Bounds need not be equal: a claim fails where it covers less than what is certain (what was computed less its rounding,
+ * and the entries' uncertainty) and seven eighths of the own allowance for rounding, or so much more that it must belong to something else.
  *
- * Not checked against the operators: the denominators guard of a certificate of some levels only, or of sectors too large to be
- * multiplied out again in reasonable time (it is then checked against itself); and completeness where a connected part of H0 has
- * more than 1500 kets and not all levels are certified (which is a finding). Where only some levels are certified, the number of
- * all levels and the bounds over the whole basis are checked as far as the certified states bear on them. The words of `limitedBy`,
- * the resolution and the library's version are sealed but claim nothing.
+ * `notChecked` lists what the operators could not be held against: of a certificate of some levels only, the ratios of the guard, values
+ * of the second-order operator and what rests on them, sectors, and the bounds over the whole basis (checked as far as the certified
+ * states bear on them); the same ratios and values where sectors are too large to be multiplied out again in reasonable time. That
+ * completeness cannot be counted (a connected part of H0 has more than 1500 kets and not all levels are certified) is a finding.
+ * Resolution, λ and threshold are choices of whoever asked, given as `relativeTo`; the words of `limitedBy` and the library's version
+ * are sealed but claim nothing.
  *
  * @param certificate - what `outcome.certificate()` wrote, or its JSON, as text or parsed
  * @param problem - the problem that it is about, with the same operators
- * @returns `ok`, the number of claims checked, and every claim that does not stand with its path in the JSON
+ * @returns `ok`, the number of claims checked, every claim that does not stand with its path in the JSON, and what was not checked
  * @throws GoodBasisError `file` - a malformed certificate, or text that is not JSON; `wrong-problem` - another dimension or other operator names; and what
  *   reading a problem throws
  *
@@ -101,14 +103,16 @@ export function recheck(certificate: unknown, problem: Problem): RecheckReport {
     const leaks = own.perturbations.map((_, p) => leak(given, p));
     checkBounds(ledger, claims, own, level, l, evaluated, leaks);
     checkSafeOrders(ledger, given);
-    checkGuard(ledger, claims, own, level, l, evaluated, sectors);
+    checkGuard(ledger, claims, own, level, l, evaluated, sectors?.sectors);
     checkLevelVerdict(ledger, given, couplings);
     return evaluated;
   });
   checkCompleteness(ledger, claims, own, vectors, bench, levels);
-  checkWhole(ledger, claims, own, candidates, residuals, levels);
+  checkWhole(ledger, claims, own, candidates, residuals, levels, sectors);
   checkVerdict(ledger, claims);
-  return { ...ledger.report(), verdict: claims.verdict };
+  noteUnchecked(ledger, claims, sectors?.sectors !== undefined);
+  const relativeTo = termsOf(claims);
+  return { ...ledger.report(), verdict: claims.verdict, ...(relativeTo === undefined ? {} : { relativeTo }) };
 }
 
 function requireSameNames({ n, operators }: Certificate, names: readonly string[], expected: number): void {

@@ -91,10 +91,10 @@ function adjointResiduals(
   return residualBounds(adjointImages(vectors, candidate.operator), vectors, conjugate, error);
 }
 
-/** The values without those that repeat to ten digits. */
-function distinctValues(values: readonly Complex[]): Complex[] {
-  const digits = (x: number): string => (Math.abs(x) < 1e-9 ? "0" : x.toPrecision(10));
-  return [...new Map(values.map((value) => [`${digits(value.re)} ${digits(value.im)}`, value])).values()];
+/** The values without those that repeat to within `width`: never two that were told apart. */
+function distinctValues(values: readonly Complex[], width: number): Complex[] {
+  const cell = (x: number): number => Math.round(x / width);
+  return [...new Map(values.map((value) => [`${cell(value.re)} ${cell(value.im)}`, value])).values()];
 }
 
 /**
@@ -114,10 +114,15 @@ export function nameLabels(
   const finding = audit.candidates[place];
   const role = finding?.conserved === true ? "conserved" : finding?.descriptive === true ? "descriptive" : "broken";
   const sharp = (entry: LabelNumber): boolean => entry.radius <= 16 * LABEL_WIDTH * candidate.operator.norm;
-  const seen = distinctValues([
-    ...nodes.filter((node) => node.kind === "label" && node.operator === candidate.name).flatMap((node) => node.values),
-    ...numbers.filter((entry) => !entry.onPath && sharp(entry)).map((entry) => entry.value),
-  ]);
+  const seen = distinctValues(
+    [
+      ...nodes
+        .filter((node) => node.kind === "label" && node.operator === candidate.name)
+        .flatMap((node) => node.values),
+      ...numbers.filter((entry) => !entry.onPath && sharp(entry)).map((entry) => entry.value),
+    ],
+    LABEL_WIDTH * candidate.operator.norm,
+  );
   const all = numbers.every((entry) => entry.onPath || sharp(entry));
   const widest = numbers.reduce((most, entry) => (sharp(entry) ? Math.max(most, entry.radius) : most), 0);
   const family = labelFamily(candidate.label, seen, 4 * widest + LABEL_WIDTH * candidate.operator.norm, all);

@@ -5,7 +5,7 @@ import { requireCount } from "./format-audit.js";
 import { counted } from "./sentences.js";
 
 /**
- * The report of a re-check as text to read: whether the certificate stands, and otherwise where it fails.
+ * The report of a re-check as text to read: whether the certificate stands, what was not checked, and otherwise where it fails.
  *
  * @param report - from {@link recheck}
  * @param options - `width`: longest line, default 100; `findings`: most findings listed, default 20
@@ -16,7 +16,7 @@ import { counted } from "./sentences.js";
  * ```ts
  * import { formatRecheck } from "goodbasis";
  *
- * console.log(formatRecheck({ ok: true, checked: 128, findings: [] }));
+ * console.log(formatRecheck({ ok: true, checked: 128, findings: [], notChecked: [] }));
  * ```
  */
 export function formatRecheck(
@@ -27,10 +27,17 @@ export function formatRecheck(
   requireOptions("formatRecheck", options, ["width", "findings"]);
   const width = requireCount("formatRecheck", "width", options.width ?? 100);
   const most = requireCount("formatRecheck", "findings", options.findings ?? 20);
-  const { ok, checked, findings } = report;
+  const { ok, checked, findings, notChecked } = report;
   const statements = counted(checked, "statement");
-  const claim = report.verdict === undefined ? "" : `; its verdict is ${report.verdict.toUpperCase()}`;
-  if (ok) return `VERIFIED: all ${statements} of the certificate hold for these operators${claim}`;
+  if (ok) {
+    const all = notChecked.length === 0;
+    const holds = `${all ? "VERIFIED: all" : "VERIFIED IN PART:"} ${statements} of the certificate hold for these operators`;
+    const lines = wrapProse(visible(`${holds}${verdictOf(report)}`), width);
+    if (!all) lines.push("", "Not checked against the operators:");
+    for (const sentence of notChecked)
+      lines.push(...wrapProse(visible(sentence), width - 2).map((line) => `  ${line}`));
+    return lines.join("\n");
+  }
   const lines = [`REFUSED: ${counted(findings.length, "finding")} among ${statements}`, ""];
   for (const { path, message } of findings.slice(0, most)) {
     lines.push(`  ${visible(path)}`);
@@ -40,8 +47,22 @@ export function formatRecheck(
   return lines.join("\n");
 }
 
+/** The verdict, and what it is relative to. */
+function verdictOf({ verdict, relativeTo }: RecheckReport): string {
+  if (verdict === undefined) return "";
+  const claim = `; its verdict is ${verdict.toUpperCase()}`;
+  if (relativeTo === undefined) return claim;
+  const { resolution, lambda, stated, refuseAbove } = relativeTo;
+  const number = (x: number): string => `${Number(x.toPrecision(3))}`;
+  const at = stated ? `λ = ${number(lambda)}` : `a λ that nobody stated (at least ${number(lambda)})`;
+  return `${claim}, relative to the resolution ${number(resolution)}, ${at} and the threshold ${number(refuseAbove)} as the certificate states them`;
+}
+
 function isReport(value: unknown): boolean {
-  if (!isObject(value) || !("ok" in value) || !("checked" in value) || !("findings" in value)) return false;
-  const { ok, checked, findings } = value;
-  return typeof ok === "boolean" && typeof checked === "number" && Array.isArray(findings) && findings.every(isObject);
+  if (!isObject(value) || !("ok" in value) || !("checked" in value)) return false;
+  if (!("findings" in value) || !("notChecked" in value)) return false;
+  const { ok, checked, findings, notChecked } = value;
+  if (typeof ok !== "boolean" || typeof checked !== "number") return false;
+  if (!Array.isArray(findings) || !findings.every(isObject)) return false;
+  return Array.isArray(notChecked) && notChecked.every((sentence) => typeof sentence === "string");
 }

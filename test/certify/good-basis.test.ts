@@ -67,6 +67,26 @@ describe("a good basis cannot be forged", () => {
     expect(Object.getOwnPropertyNames(basis)).toEqual([]);
   });
 
+  it("nothing that it hands out can be changed, but what typed arrays hold", () => {
+    const own = good();
+    const mutable: string[] = [];
+    const visit = (value: unknown, path: string): void => {
+      if (typeof value !== "object" || value === null || ArrayBuffer.isView(value) || value instanceof Map) return;
+      if (!Object.isFrozen(value)) mutable.push(path);
+      for (const [key, { value: item }] of Object.entries(Object.getOwnPropertyDescriptors(value))) {
+        visit(item, `${path}.${key}`);
+      }
+    };
+    visit(own.states, "states");
+    visit(own.levels, "levels");
+    visit(own.study, "study");
+    expect(mutable).toEqual([]);
+    const [first] = own.states;
+    expect(() => Object.assign(first?.shifts[0] ?? {}, { value: 42 })).toThrow(TypeError);
+    expect(() => Object.assign(first?.labels.A ?? {}, { text: "7" })).toThrow(TypeError);
+    expect(perturb(own, { order: 1 }).states[0]?.first?.[0]?.value).toBe(first?.shifts[0]?.value);
+  });
+
   it("an undecided or not-good outcome has no basis", () => {
     const outcome = findGoodBasis(
       {

@@ -19,3 +19,19 @@ describe("recheck passes what findGoodBasis wrote", () => {
     });
   }
 });
+
+it("a certificate is written anew each time: changes of one reach neither the next nor the study", () => {
+  for (const { problem, options } of Object.values(CASES).slice(0, 6)) {
+    const outcome = findGoodBasis(problem, options);
+    const text = JSON.stringify(outcome.certificate());
+    const spoil = (value: unknown): void => {
+      if (typeof value !== "object" || value === null) return;
+      for (const [key, item] of Object.entries(value)) {
+        spoil(item);
+        Reflect.set(value, key, 42);
+      }
+    };
+    spoil(outcome.certificate());
+    expect(JSON.stringify(outcome.certificate())).toBe(text);
+  }
+});

@@ -167,14 +167,14 @@ describe("formatOutcome", () => {
 });
 
 test("formatRecheck names every finding", () => {
-  expect(formatRecheck({ ok: true, checked: 128, findings: [] })).toBe(
+  expect(formatRecheck({ ok: true, checked: 128, findings: [], notChecked: [] })).toBe(
     "VERIFIED: all 128 statements of the certificate hold for these operators",
   );
   const findings = [
     { path: "levels[0].tilt", message: "claimed 1e−9, found at least 2e−9" },
     { path: "seals.whole", message: "altered" },
   ];
-  expect(formatRecheck({ ok: false, checked: 130, findings }, { findings: 1 }).split("\n")).toEqual([
+  expect(formatRecheck({ ok: false, checked: 130, findings, notChecked: [] }, { findings: 1 }).split("\n")).toEqual([
     "REFUSED: 2 findings among 130 statements",
     "",
     "  levels[0].tilt",

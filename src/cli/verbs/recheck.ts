@@ -18,9 +18,9 @@ export const recheckVerb: Verb = {
   files: 2,
   summary: "verify a certificate against its problem",
   about:
-    "Derives every claim of a certificate again from the operators, with code that shares nothing with the search. A changed\n" +
-    "number, label, vector or operator is named. Exit status 0 if every claim stands and the\n" +
-    "certified verdict is good, 1 if not.",
+    "Derives the claims of a certificate again from the operators, with code that shares nothing with the search. A changed\n" +
+    "number, label, vector or operator is named, and so is what could not be checked against the operators. Exit status 0\n" +
+    "if everything that was checked stands and the certified verdict is good, 1 if not.",
   options: ["format", "out", "force"],
   examples: [
     "goodbasis recheck problem.certificate.json problem.json",
@@ -58,7 +58,10 @@ function textOf({ format }: Settings, report: RecheckReport, colours: boolean): 
             { key: "path", title: "place", kind: "text" },
             { key: "message", title: "finding", kind: "text" },
           ],
-          report.findings.map(({ path, message }) => [path, message]),
+          [
+            ...report.findings.map(({ path, message }) => [path, message]),
+            ...report.notChecked.map((sentence) => ["not checked", sentence]),
+          ],
         ),
         format,
       );
