@@ -74,7 +74,7 @@ export interface KernelExports {
 }
 
 /** The part of the WebAssembly interface that is used; every platform names it the same. */
-interface Platform {
+export interface Platform {
   readonly Module: new (bytes: Uint8Array) => object;
   readonly Instance: new (module: object) => { readonly exports: object };
 }
