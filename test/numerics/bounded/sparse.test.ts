@@ -335,6 +335,17 @@ describe.each([
     }
   });
 
+  it("leaves out of the norm what rounding left in the real parts of an anti-Hermitian diagonal", () => {
+    const arena = make();
+    // ((x² + y²) − x²) − y² is not zero in floating point; all else cancels exactly.
+    const [x, y] = [1 / 3, 1000 / 7];
+    expect(x * x + y * y - x * x - y * y).not.toBe(0);
+    const a = arena.load(fromDense(3, 3, [0, x, y, x, 0, 0, y, 0, 0]), { hermitian: true });
+    const { value } = arena.commutator(a, a);
+    expect(arena.frobenius(value)).toBe(0);
+    expect(arena.read(value).re.every((u) => u === 0)).toBe(true);
+  });
+
   it("has copies of its own, in both directions", () => {
     const arena = make();
     const a = square(5, true, 1);
