@@ -21,6 +21,7 @@
  * | `budget` | an exact computation outgrows its budget |
  * | `no-convergence` | an iteration did not finish within its bound |
  * | `worker` | a worker thread died or could not be started |
+ * | `memory` | a result needs more memory than the platform gives |
  */
 export type ErrorCode =
   | "shape"
@@ -40,7 +41,8 @@ export type ErrorCode =
   | "not-real"
   | "budget"
   | "no-convergence"
-  | "worker";
+  | "worker"
+  | "memory";
 
 /**
  * The one error class of goodbasis: thrown for misuse. Mathematics never throws; it returns a verdict.

@@ -1,6 +1,7 @@
 /**
- * `goodbasis/kernels`, the face of the numerical kernels: eigenproblems, products and commutators, each by WebAssembly
- * where the platform has it and by plain TypeScript elsewhere.
+ * `goodbasis/kernels`, the face of the numerical kernels: eigenproblems, dense products and commutators, and sparse ones in a
+ * `SparseArena` run in WebAssembly where the platform has it and in plain TypeScript elsewhere; products and commutators of
+ * sparse arrays that stay outside run in plain TypeScript everywhere.
  *
  * @module kernels
  */
@@ -8,6 +9,7 @@
 import { commutatorDense, productDense } from "./bounded/dense.js";
 import { commutatorSparse, productSparse } from "./bounded/sparse.js";
 import type { Bounded, Square } from "./bounded/types.js";
+import { requireFactors } from "./bounded/validate.js";
 import type { Csr } from "./csr.js";
 
 export { type ErrorCode, GoodBasisError } from "../errors.js";
@@ -43,12 +45,14 @@ export { KernelPool, type PoolOptions, type PoolWorker, type WorkerFactory } fro
  * @param b - right factor
  * @returns the computed product and an upper bound on the Frobenius norm of its error; the constants are derived at
  * `productDense` and `productSparse`
- * @throws GoodBasisError `shape` when the factors do not fit
+ * @throws GoodBasisError `shape` when the factors do not fit, or are not two matrices of one kind (columns that are out of range
+ * or do not ascend included); `not-finite` for an entry that is NaN or infinite
  */
 export function product(a: Square, b: Square): Bounded<Square>;
 export function product(a: Csr, b: Csr): Bounded<Csr>;
 export function product(a: Square | Csr, b: Square | Csr): Bounded<Square> | Bounded<Csr> {
-  return "n" in a ? productDense(a, b as Square) : productSparse(a, b as Csr);
+  const factors = requireFactors("product", a, b);
+  return factors.dense === undefined ? productSparse(...factors.sparse) : productDense(...factors.dense);
 }
 
 /**
@@ -67,10 +71,12 @@ export function product(a: Square | Csr, b: Square | Csr): Bounded<Square> | Bou
  * @param a - first matrix
  * @param b - second matrix
  * @returns the computed commutator and an upper bound on the Frobenius norm of its error
- * @throws GoodBasisError `shape` when the matrices are not square of one order
+ * @throws GoodBasisError `shape` when the matrices are not square of one order, or not two of one kind (columns that are out of
+ * range or do not ascend included); `not-finite` for an entry that is NaN or infinite
  */
 export function commutator(a: Square, b: Square): Bounded<Square>;
 export function commutator(a: Csr, b: Csr): Bounded<Csr>;
 export function commutator(a: Square | Csr, b: Square | Csr): Bounded<Square> | Bounded<Csr> {
-  return "n" in a ? commutatorDense(a, b as Square) : commutatorSparse(a, b as Csr);
+  const factors = requireFactors("commutator", a, b);
+  return factors.dense === undefined ? commutatorSparse(...factors.sparse) : commutatorDense(...factors.dense);
 }

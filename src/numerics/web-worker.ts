@@ -19,7 +19,12 @@ export interface BrowserWorkerScope {
   postMessage(message: unknown, transfer: ArrayBufferLike[]): void;
   /** Who hears what the page sends. */
   addEventListener(kind: "message", listener: (event: { readonly data: unknown }) => void): void;
+  /** Ends the worker from inside; no event tells the page of it. */
+  close?(): void;
 }
+
+/** What a worker sends last when it ends itself. */
+const CLOSED = "goodbasis: the worker closed itself";
 
 /**
  * A browser's worker as one of a pool. Its script is one line: `serveWebWorker(self)`.
@@ -30,7 +35,10 @@ export function webWorker(worker: BrowserWorker): PoolWorker {
   return {
     post: (request, transfer) => worker.postMessage(request, transfer),
     listen: (onAnswer, onDeath) => {
-      worker.addEventListener("message", ({ data }) => onAnswer(data as PoolAnswer));
+      worker.addEventListener("message", ({ data }) => {
+        if (data === CLOSED) onDeath("it closed itself");
+        else onAnswer(data as PoolAnswer);
+      });
       for (const kind of ["error", "messageerror"] as const) {
         worker.addEventListener(kind, ({ message }) => onDeath(message ?? kind));
       }
@@ -40,7 +48,8 @@ export function webWorker(worker: BrowserWorker): PoolWorker {
 }
 
 /**
- * Makes a browser's worker answer a pool; what goes wrong beyond the mathematics reaches the pool as an `error` event.
+ * Makes a browser's worker answer a pool; what goes wrong beyond the mathematics reaches the pool as an `error` event. A
+ * script that calls `self.close()` afterwards tells the pool first, since browsers send no event for that.
  *
  * @param scope - `self` of the worker
  */
@@ -49,4 +58,10 @@ export function serveWebWorker(scope: BrowserWorkerScope): void {
     const { answer, transfer } = answerRequest(data as PoolRequest);
     scope.postMessage(answer, transfer);
   });
+  const close = scope.close?.bind(scope);
+  if (close === undefined) return;
+  scope.close = () => {
+    scope.postMessage(CLOSED, []);
+    close();
+  };
 }

@@ -32,10 +32,12 @@ interface Told {
   readonly alone: string[];
   readonly pooled: string[];
   readonly death: { readonly code: string; readonly message: string };
+  readonly left: { readonly code: string; readonly message: string };
 }
 
 const WORKER = `import { serveWebWorker } from "/numerics/kernels.js"; serveWebWorker(self);`;
 const DYING = `self.addEventListener("message", () => { throw new Error("out of order"); });`;
+const LEAVING = `self.addEventListener("message", () => self.close());\n${WORKER}`;
 const PAGE = `<!doctype html><title>kernels</title><script type="module">
   import { batchedHermitianEigen, KernelPool, kernelsAvailable, webWorker } from "/numerics/kernels.js";
 
@@ -50,11 +52,14 @@ const PAGE = `<!doctype html><title>kernels</title><script type="module">
     const pooled = bits(await pool.batchedHermitianEigen(...input));
     const { running } = pool;
     pool.close();
-    const death = await poolOf("/dying.js", 1)
-      .batchedHermitianEigen(...input)
-      .then(() => ({ code: "none" }), ({ code, message }) => ({ code, message }));
+    const endOf = (script) =>
+      poolOf(script, 1)
+        .batchedHermitianEigen(...input)
+        .then(() => ({ code: "none" }), ({ code, message }) => ({ code, message }));
+    const death = await endOf("/dying.js");
+    const left = await endOf("/leaving.js");
     const alone = bits(batchedHermitianEigen(...input));
-    return { isolated: crossOriginIsolated, kernels: kernelsAvailable(), running, alone, pooled, death };
+    return { isolated: crossOriginIsolated, kernels: kernelsAvailable(), running, alone, pooled, death, left };
   }
   const told = await tell().catch((error) => ({ error: String(error) }));
   await fetch("/told", { method: "POST", body: JSON.stringify(told) });
@@ -93,6 +98,7 @@ function fileAt(pathname: string): readonly [type: string, text: string] | undef
   if (pathname === "/batch") return ["application/json", JSON.stringify(batch)];
   if (pathname === "/worker.js") return ["text/javascript", WORKER];
   if (pathname === "/dying.js") return ["text/javascript", DYING];
+  if (pathname === "/leaving.js") return ["text/javascript", LEAVING];
   const path = join(builtPackage, pathname);
   return /^\/[\w/-]+\.js$/.test(pathname) && existsSync(path)
     ? ["text/javascript", readFileSync(path, "utf8")]
@@ -146,6 +152,7 @@ describe("Web Workers of a browser", () => {
     );
     expect(told).toMatchObject({ isolated, kernels: true, running: 2, death: { code: "worker" } });
     expect(told.death.message).toMatch(/matri(x|ces) 0.*out of order/);
+    expect(told.left).toMatchObject({ code: "worker", message: expect.stringMatching(/it closed itself/) });
     expect(told.pooled).toEqual(told.alone);
     expect(told.alone).toEqual([values, re, im ?? new Float64Array(0)].map(bits));
   });

@@ -3,8 +3,13 @@ import { pathToFileURL } from "node:url";
 import { Worker } from "node:worker_threads";
 import { afterEach, describe, expect, it, vi } from "vitest";
 import { batchedHermitianEigen, type HermitianEigenBatch } from "../../src/numerics/eigen/batch.js";
-import { type BrowserWorker, serveWebWorker, webWorker } from "../../src/numerics/web-worker.js";
-import { answerRequest, type PoolRequest } from "../../src/numerics/worker-protocol.js";
+import {
+  type BrowserWorker,
+  type BrowserWorkerScope,
+  serveWebWorker,
+  webWorker,
+} from "../../src/numerics/web-worker.js";
+import { answerRequest } from "../../src/numerics/worker-protocol.js";
 import { KernelPool, type PoolWorker, type WorkerFactory } from "../../src/numerics/workers.js";
 import { builtPackage } from "../build.js";
 import { randomSample } from "./eigen/matrices.js";
@@ -184,21 +189,153 @@ describe("KernelPool", () => {
     expect(found.re.buffer).toBeInstanceOf(ArrayBuffer);
   });
 
-  it("reads matrices where they lie in shared memory already", async () => {
-    const { orders, re } = batch(50);
+  it.each([true, false])("sees nothing of what is changed after the call (shared memory: %s)", async (share) => {
+    vi.resetModules();
+    if (!share) vi.stubGlobal("SharedArrayBuffer", undefined);
+    const { KernelPool: Fresh } = await import("../../src/numerics/workers.js");
+    vi.unstubAllGlobals();
+    const { orders, re, im } = batch(80);
+    const known = bits(batchedHermitianEigen(orders, re, im));
     const there = new Float64Array(new SharedArrayBuffer(re.byteLength));
     there.set(re);
-    const requests: PoolRequest[] = [];
-    const { factory } = later((worker) => ({
-      post: (request, transfer) => {
-        requests.push(request);
-        worker.post(request, transfer);
-      },
+    const pool = new Fresh({ factory: later().factory, size: 1, worthwhile: 0 });
+    for (const parts of [re.slice(), there]) {
+      const [list, imaginary] = [orders.slice(), im.slice()];
+      const waiting = pool.batchedHermitianEigen(list, parts, imaginary);
+      for (const m of [list, parts, imaginary]) m.fill(1);
+      expect(bits(await waiting)).toEqual(known);
+    }
+    pool.close();
+  });
+
+  it("refuses what the plain call refuses, in its words, and goes on", async () => {
+    const { orders, re, im } = batch(20);
+    const known = bits(batchedHermitianEigen(orders, re, im));
+    const pool = open(() => nodeWorker(), 1);
+    const cases: unknown[][] = [
+      [[200], new Array(40_000).fill(1)],
+      [[2.5, 2.5, 2.5, 2.5], new Float64Array(25)],
+      [[-9, 100], new Float64Array(81 + 10_000)],
+      [[Number.NaN], new Float64Array(0)],
+      [["2"], new Float64Array(4)],
+      [undefined, re],
+      [7, re],
+      [orders, Float32Array.from(re)],
+      [orders, re.slice(1)],
+      [orders, re, null],
+      [orders, re, Float32Array.from(im)],
+      [orders, re, im.slice(1)],
+      [orders, re, im, null],
+      [orders, re, im, { upper: (): number => 1 }],
+      [orders, re, im, { upper: "bogus" }],
+    ];
+    for (const input of cases) {
+      const [a, b, c, d] = input as [never, never, never, never];
+      let plain: unknown;
+      try {
+        batchedHermitianEigen(a, b, c, ...(input.length > 3 ? [d] : []));
+      } catch (error) {
+        plain = error;
+      }
+      expect(plain).toMatchObject({ name: "GoodBasisError" });
+      await expect(pool.batchedHermitianEigen(a, b, c, ...(input.length > 3 ? [d] : []))).rejects.toEqual(plain);
+    }
+    expect((await pool.batchedHermitianEigen([], new Float64Array(0), undefined)).values.length).toBe(0);
+    expect((await pool.batchedHermitianEigen([0, 0], new Float64Array(0), undefined)).orders.length).toBe(2);
+    expect(bits(await pool.batchedHermitianEigen(orders, re, im))).toEqual(known);
+  });
+
+  it("names the first matrix that is wrong, whichever worker answers first", async () => {
+    const { orders, re } = batch(60);
+    const starts = [10, 50].map((k) => orders.subarray(0, k).reduce((sum, n) => sum + n * n, 0));
+    const spoiled = re.map((x, k) => (starts.includes(k) ? Number.NaN : x));
+    const { factory } = later((worker, count) => ({
+      post: (request, transfer) => void setTimeout(() => worker.post(request, transfer), count === 1 ? 20 : 0),
     }));
-    const found = await open(factory, 2).batchedHermitianEigen(orders, there, undefined);
-    expect(bits(found)).toEqual(bits(batchedHermitianEigen(orders, re, undefined)));
-    expect(requests.length).toBeGreaterThan(2);
-    expect(new Set(requests.map((request) => request.re.buffer))).toEqual(new Set([there.buffer]));
+    await expect(open(factory, 3).batchedHermitianEigen(orders, spoiled, undefined)).rejects.toMatchObject({
+      code: "not-finite",
+      details: { matrix: 10 },
+    });
+  });
+
+  it("rejects and goes on where a worker cannot be reached or understood", async () => {
+    const { orders, re, im } = batch(40);
+    const known = bits(batchedHermitianEigen(orders, re, im));
+    const broken =
+      (when: number) =>
+      (worker: PoolWorker): Partial<PoolWorker> => {
+        let posts = 0;
+        return {
+          post: (request, transfer) => {
+            if (++posts === when) throw new Error("not today");
+            worker.post(request, transfer);
+          },
+          terminate: () => {
+            worker.terminate();
+            throw new Error("gone already");
+          },
+        };
+      };
+    const answering = (answer: unknown) => (): Partial<PoolWorker> => ({
+      listen: (onAnswer) => {
+        setTimeout(() => onAnswer(answer as never), 2);
+      },
+      post: () => undefined,
+    });
+    const dying = (): Partial<PoolWorker> => ({ listen: (_, onDeath) => onDeath("stillborn") });
+    const deaf = (): Partial<PoolWorker> => ({
+      listen: () => {
+        throw new Error("deaf");
+      },
+    });
+    const few = new Float64Array(1);
+    const flaws = [
+      broken(1),
+      broken(2),
+      broken(5),
+      ...[null, undefined, 7, {}, { error: null }, { error: {} }].map(answering),
+      ...[
+        { values: few, re: few, im: few },
+        { values: 1, re: 2, im: 3 },
+      ].map(answering),
+      dying,
+      deaf,
+    ];
+    for (const flaw of flaws) {
+      const { factory } = later((worker, count) => (count === 1 ? flaw(worker) : {}));
+      const pool = open(factory, 1);
+      await expect(pool.batchedHermitianEigen(orders, re, im)).rejects.toMatchObject({ code: "worker" });
+      expect(bits(await pool.batchedHermitianEigen(orders, re, im))).toEqual(known);
+    }
+  });
+
+  it("gives what a dead worker had not begun to the next one", async () => {
+    const jobs = [1, 2].map((k) => randomSample(20, true, k));
+    const { factory } = later((worker, count) => {
+      if (count > 1) return {};
+      return {
+        listen: (_, onDeath) => void setTimeout(() => onDeath("out of order"), 2),
+        post: () => undefined,
+        terminate: worker.terminate,
+      };
+    });
+    const pool = open(factory, 1);
+    const [first, second] = jobs.map(({ re, im }) => pool.batchedHermitianEigen([20], re, im));
+    await expect(first).rejects.toMatchObject({ code: "worker" });
+    const { re, im } = jobs[1] as (typeof jobs)[number];
+    expect(bits((await second) as HermitianEigenBatch)).toEqual(bits(batchedHermitianEigen([20], re, im)));
+  });
+
+  it("refuses settings that are none", () => {
+    const { factory } = later();
+    for (const options of [undefined, null, { factory: 1, size: 1 }, { factory, size: "2" }, { size: 0 }]) {
+      expect(() => new KernelPool(options as never)).toThrow(expect.objectContaining({ code: "option" }));
+    }
+    for (const worthwhile of [Number.NaN, -1, "1"]) {
+      expect(() => new KernelPool({ factory, size: 1, worthwhile } as never)).toThrow(
+        expect.objectContaining({ code: "option" }),
+      );
+    }
   });
 
   it("refuses a number of workers that is none", () => {
@@ -212,7 +349,7 @@ describe("KernelPool", () => {
 
 describe("web workers", () => {
   /** A browser's worker and its scope, joined inside this thread; messages are cloned as a browser does. */
-  function joinedPair(): BrowserWorker & { fail(message: string): void; ended: boolean } {
+  function joinedPair(): BrowserWorker & { fail(message: string): void; leave(): void; ended: boolean } {
     const toWorker: ((event: { data: unknown }) => void)[] = [];
     const toPage: ((event: { data: unknown }) => void)[] = [];
     const failures: ((event: { message?: string }) => void)[] = [];
@@ -222,10 +359,15 @@ describe("web workers", () => {
         for (const listener of listeners) listener({ data });
       });
     };
-    serveWebWorker({
-      postMessage: (message, transfer) => send(toPage, message, transfer as ArrayBuffer[]),
+    let open = true;
+    const scope: BrowserWorkerScope = {
+      postMessage: (message, transfer) => open && send(toPage, message, transfer as ArrayBuffer[]),
       addEventListener: (_, listener) => void toWorker.push(listener),
-    });
+      close: () => {
+        open = false;
+      },
+    };
+    serveWebWorker(scope);
     const worker = {
       ended: false,
       postMessage: (message: unknown, transfer: ArrayBuffer[]): void => send(toWorker, message, transfer),
@@ -236,6 +378,7 @@ describe("web workers", () => {
       terminate: () => {
         worker.ended = true;
       },
+      leave: (): void => scope.close?.(),
       fail: (message: string): void => {
         for (const listener of failures) listener({ message });
       },
@@ -259,8 +402,13 @@ describe("web workers", () => {
     await expect(waiting).rejects.toMatchObject({ code: "worker", details: { reason: "out of memory" } });
     // The first one still answers what it was asked: nobody listens.
     expect(bits(await pool.batchedHermitianEigen(orders, re, im))).toEqual(known);
+    // A worker that closes itself says so first; a browser would not.
+    const left = pool.batchedHermitianEigen(orders, re, im);
+    pairs[1]?.leave();
+    await expect(left).rejects.toMatchObject({ code: "worker", details: { reason: "it closed itself" } });
+    expect(bits(await pool.batchedHermitianEigen(orders, re, im))).toEqual(known);
     pool.close();
-    expect(pairs.map(({ ended }) => ended)).toEqual([true, true]);
+    expect(pairs.map(({ ended }) => ended)).toEqual([true, true, true]);
   });
 });
 

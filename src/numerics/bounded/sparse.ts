@@ -40,8 +40,12 @@ export function productSparse(a: Csr, b: Csr): Bounded<Csr> {
  * The bound is that of {@link productSparse} for the joint sum: m_i counts the entries of row i of A and of B, the moduli
  * are Σ |a_ik| |b_kj| + |b_ik| |a_kj|. Where one matrix is diagonal an entry is (a_i − a_j) b_ij: two roundings (three if
  * complex) times at most (|a_i| + |a_j|) |b_ij|, which the same expression covers, since m_i is then at least two (or a_i is
- * zero and nothing is rounded in the difference). Where the lower triangle is the adjoint of the upper one, so is its error:
- * the squares of both together are at most twice those of the bounds of the rows.
+ * zero and nothing is rounded in the difference); a difference that overflows makes the bound infinite.
+ *
+ * Where the lower triangle is the adjoint of the upper one, so is its error, and the same expression covers it: an entry (i, j)
+ * has at most as many products as column j of B and of A have entries, which are those of row j, for the matrices are
+ * Hermitian; its moduli are those of (j, i), for the same reason. So |error_ji| = |error_ij| is at most what row j allows. What
+ * rounding left in the real parts of the diagonal is put to the zero that is exact.
  *
  * @param a - first matrix
  * @param b - second matrix, of the same order
@@ -49,7 +53,8 @@ export function productSparse(a: Csr, b: Csr): Bounded<Csr> {
  */
 export function commutatorSparse(a: Csr, b: Csr): Bounded<Csr> {
   if (a.rows !== a.cols || b.rows !== b.cols || a.rows !== b.rows) throw shapeError("commutator", a, b);
-  const half = diagonalOf(a) === undefined && diagonalOf(b) === undefined && isHermitian(a) && isHermitian(b);
+  const diagonal = diagonalOf(a) !== undefined || diagonalOf(b) !== undefined;
+  const half = !diagonal && isHermitian(a) && isHermitian(b);
   const value = half ? completeAntiHermitian(commutatorUpper(a, b)) : commutator(a, b);
   const normsA = rowNorms(a);
   const normsB = rowNorms(b);
@@ -59,8 +64,16 @@ export function commutatorSparse(a: Csr, b: Csr): Bounded<Csr> {
     (row) => weightedRow(a, row, normsB) + weightedRow(b, row, normsA),
     (row) => rowLength(a, row) + rowLength(b, row),
   );
-  const whole = half ? { ...bound, squares: 2 * bound.squares } : bound;
-  return { value, error: finishBound(whole, a, b, value) };
+  const overflows = diagonal && !isEverywhereFinite(value);
+  return { value, error: overflows ? Number.POSITIVE_INFINITY : finishBound(bound, a, b, value) };
+}
+
+/** Whether every entry is finite; 0 · x is NaN where x is not. */
+function isEverywhereFinite({ re, im }: Csr): boolean {
+  let probe = 0;
+  for (let e = 0; e < re.length; e++) probe += 0 * (re[e] as number);
+  if (im !== undefined) for (let e = 0; e < im.length; e++) probe += 0 * (im[e] as number);
+  return probe === 0;
 }
 
 const complexPair = (a: Csr, b: Csr): boolean => a.im !== undefined || b.im !== undefined;

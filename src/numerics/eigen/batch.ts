@@ -1,9 +1,10 @@
 import { GoodBasisError } from "../../errors.js";
-import { type EigenOptions, hermitianEigenBy } from "../eigen.js";
+import { hermitianEigenBy } from "../eigen.js";
 import { components } from "./components.js";
 import { defaultEngine } from "./engine.js";
-import type { EigenEngine, HermitianEigen } from "./types.js";
-import { requireHermitian } from "./validate.js";
+import { requireHermitian } from "./require-hermitian.js";
+import type { EigenEngine, EigenOptions, HermitianEigen, UpperTriangle } from "./types.js";
+import { readOptions, requireBatch } from "./validate.js";
 
 /** Eigenpairs of many matrices, one after the other in common arrays; {@link batchMember} reads one of them. */
 export interface HermitianEigenBatch {
@@ -51,7 +52,7 @@ export function batchedHermitianEigen(
  * {@link batchedHermitianEigen} by a given engine, into given arrays.
  *
  * @param engine - the WebAssembly kernels or their plain twin
- * @param orders - as there
+ * @param listed - the orders, as there
  * @param re - as there
  * @param im - as there
  * @param options - as there
@@ -61,27 +62,17 @@ export function batchedHermitianEigen(
  */
 export function batchedHermitianEigenBy(
   engine: EigenEngine,
-  orders: ArrayLike<number>,
+  listed: ArrayLike<number>,
   re: Float64Array,
   im: Float64Array | undefined,
   options: Pick<EigenOptions, "upper"> = {},
   into?: HermitianEigenBatch,
 ): HermitianEigenBatch {
+  const { orders, rows, numbers } = requireBatch(listed, re, im);
+  const { upper } = readOptions("batchedHermitianEigen", options);
   const count = orders.length;
-  let rows = 0;
-  let numbers = 0;
-  for (let k = 0; k < count; k++) {
-    const n = orders[k] as number;
-    if (!Number.isInteger(n) || n < 0) throw shapeError(`expected orders ≥ 0, got ${n} for matrix ${k}`);
-    rows += n;
-    numbers += n * n;
-  }
-  if (re.length !== numbers || (im !== undefined && im.length !== numbers)) {
-    const got = `${re.length}${im === undefined ? "" : ` and ${im.length}`}`;
-    throw shapeError(`expected ${numbers} numbers for ${count} matrices of the given orders, got ${got}`);
-  }
   const out = into ?? {
-    orders: Int32Array.from(orders),
+    orders,
     values: new Float64Array(rows),
     re: new Float64Array(numbers),
     im: im && new Float64Array(numbers),
@@ -89,7 +80,7 @@ export function batchedHermitianEigenBy(
   let row = 0;
   let at = 0;
   for (let k = 0; k < count; ) {
-    const length = connectedRun(k, at, orders, re, im, options);
+    const length = connectedRun(k, at, orders, re, im, upper);
     const n = orders[k] as number;
     const end = at + Math.max(1, length) * n * n;
     const partRe = re.subarray(at, end);
@@ -117,8 +108,17 @@ export function batchedHermitianEigenBy(
  *
  * @param batch - what {@link batchedHermitianEigen} returned
  * @param k - number of the matrix
+ * @throws GoodBasisError `option` when the batch has no such matrix
  */
 export function batchMember(batch: HermitianEigenBatch, k: number): HermitianEigen {
+  const count = batch.orders.length;
+  if (!Number.isInteger(k) || k < 0 || k >= count) {
+    const got = typeof k === "number" ? k : typeof k;
+    throw new GoodBasisError(
+      "option",
+      `batchMember: expected the number of one of ${count} matrices, from 0 on, got ${got}`,
+    );
+  }
   let row = 0;
   let at = 0;
   for (let m = 0; m < k; m++) {
@@ -126,7 +126,7 @@ export function batchMember(batch: HermitianEigenBatch, k: number): HermitianEig
     row += n;
     at += n * n;
   }
-  const n = batch.orders[k] ?? 0;
+  const n = batch.orders[k] as number;
   const part = (m: Float64Array): Float64Array => m.subarray(at, at + n * n);
   const im = batch.im && part(batch.im);
   return { n, first: 0, values: batch.values.subarray(row, row + n), re: part(batch.re), im };
@@ -139,10 +139,10 @@ export function batchMember(batch: HermitianEigenBatch, k: number): HermitianEig
 function connectedRun(
   k: number,
   at: number,
-  orders: ArrayLike<number>,
+  orders: Int32Array,
   re: Float64Array,
   im: Float64Array | undefined,
-  { upper = "check" }: Pick<EigenOptions, "upper">,
+  upper: UpperTriangle,
 ): number {
   const n = orders[k] as number;
   const size = n * n;
@@ -182,8 +182,4 @@ function requireRange(first: number, n: number, values: Float64Array): void {
     `batchedHermitianEigen: an eigenvalue of matrix ${matrix} exceeds the largest double; scale the matrix down`,
     { matrix },
   );
-}
-
-function shapeError(message: string): GoodBasisError {
-  return new GoodBasisError("shape", `batchedHermitianEigen: ${message}; pass every matrix as a full square`);
 }

@@ -2,7 +2,10 @@
 export interface HermitianEigen {
   /** Dimension. */
   readonly n: number;
-  /** Index of `values[0]` among all n eigenvalues in ascending order; 0 unless a window was asked for. */
+  /**
+   * Index of `values[0]` among all n eigenvalues in ascending order; 0 unless a window was asked for. Where none lies inside,
+   * the number of eigenvalues below the window, but within `from` and `to`.
+   */
   readonly first: number;
   /** The eigenvalues, ascending: all n, or those inside the window. */
   readonly values: Float64Array;
@@ -29,9 +32,17 @@ export interface EigenWindow {
 
 /**
  * What becomes of the upper triangle: `"check"` refuses a matrix in which it is not the conjugate of the lower one to within
- * n units roundoff of the largest entry, `"ignore"` lets the lower triangle stand for the matrix.
+ * 8 n units roundoff of the largest row, in the Frobenius norm; `"ignore"` lets the lower triangle stand for the matrix.
  */
 export type UpperTriangle = "check" | "ignore";
+
+/** What `hermitianEigen` may be told besides the matrix. */
+export interface EigenOptions {
+  /** Which eigenpairs are wanted; all of them where absent. Vectors outside are not transformed back. */
+  readonly window?: EigenWindow;
+  /** `"check"` unless told: a matrix that is not Hermitian is refused. The solver itself reads the lower triangle alone. */
+  readonly upper?: UpperTriangle;
+}
 
 /** Sizes at which the algorithm changes; they alter speed, not what is promised. */
 export interface EigenTuning {

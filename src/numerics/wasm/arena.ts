@@ -1,51 +1,41 @@
 import { GoodBasisError } from "../../errors.js";
-import { commutatorSparse, finishBound, productSparse } from "../bounded/sparse.js";
+import { commutatorSparse, productSparse } from "../bounded/sparse.js";
 import type { Bounded } from "../bounded/types.js";
 import type { Csr } from "../csr.js";
 import { dropZeros } from "../sparse/build.js";
 import { completeAntiHermitian, isHermitian } from "../sparse/hermitian.js";
 import { frobenius } from "../sparse/norms.js";
+import { requireCsr } from "../sparse/validate.js";
+import { ArenaMemory, type Place, type Resident, tooLarge } from "./arena-memory.js";
 import { type Kernels, newKernels } from "./runtime.js";
 
-/** A sparse matrix that stays in the memory of a {@link SparseArena}. */
-export interface Resident {
-  /** Number of rows. */
-  readonly rows: number;
-  /** Number of columns. */
-  readonly cols: number;
-  /** Number of stored entries. */
-  readonly entries: number;
-  /** Whether it has imaginary parts. */
-  readonly complex: boolean;
-  /** Whether it equals its adjoint, exactly. */
-  readonly hermitian: boolean;
-  /** Whether only the upper triangle is stored; the rest follows from C† = −C. */
-  readonly upper: boolean;
+export type { Resident } from "./arena-memory.js";
+
+/** A place in the stack of a {@link SparseArena}, from {@link SparseArena.mark}; to be handed back, not to be looked into. */
+export interface ArenaMark {
+  /** How many matrices lay below. */
+  readonly depth: number;
 }
 
-/** Where a resident matrix lies: addresses in bytes, or the matrix itself where there is no WebAssembly. */
-interface Place {
-  readonly ptr: number;
-  readonly col: number;
-  readonly re: number;
-  readonly im: number;
-  readonly norms: number;
-  readonly plain: Csr | undefined;
+/** What an arena is built on. */
+interface ArenaKernels {
+  readonly own: Kernels | undefined;
+  readonly countedFrom?: number;
 }
 
-/** A memory mark of {@link SparseArena.mark}. */
-export type ArenaMark = number & {
-  /** Tells a mark from other numbers; never there. */
-  readonly brand?: "ArenaMark";
-};
+/** What the arena that gave a mark knows of it. */
+interface Marked {
+  readonly top: Resident | undefined;
+  readonly end: number;
+}
 
 /**
  * Sparse matrices that stay in WebAssembly memory, so that products and commutators of large operators cost no copies:
  * an operator is copied in once, results are left where they were formed, and only what is asked for is copied out.
  *
  * Each arena has a memory of its own, which is freed with it. Inside, matrices are stacked: {@link SparseArena.release}
- * frees everything that came after a mark. Memory never shrinks but is used again. Without WebAssembly the arena keeps
- * plain arrays and works all the same.
+ * frees everything that came after a mark. Memory never shrinks but is used again. Without WebAssembly, and for a matrix for
+ * which its memory (four gigabytes at most) does not suffice, the arena keeps plain arrays and works all the same.
  *
  * ```ts
  * import { Operator } from "goodbasis";
@@ -64,22 +54,24 @@ export type ArenaMark = number & {
  * ```
  */
 export class SparseArena {
-  readonly #kernels: Kernels | undefined;
-  readonly #places = new Map<Resident, Place>();
-  #end: number;
+  readonly #memory: ArenaMemory | undefined;
+  /** In the order in which they came; a matrix that is kept in plain arrays stands here itself. */
+  readonly #places = new Map<Resident, Place | Csr>();
+  readonly #stack: Resident[] = [];
+  readonly #marks = new WeakMap<ArenaMark, Marked>();
 
   /**
-   * @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent
+   * @param kernels - an instance of its own, or `undefined` for plain arrays; made where absent. `countedFrom` are the bytes of
+   * room from which on the entries of a result are counted before they are formed
    * @internal
    */
-  constructor(kernels: { readonly own: Kernels | undefined } = { own: newKernels() }) {
-    this.#kernels = kernels.own;
-    this.#end = kernels.own === undefined ? 0 : kernels.own.exports.heapStart.value;
+  constructor(kernels: ArenaKernels = { own: newKernels() }) {
+    this.#memory = kernels.own && new ArenaMemory(kernels.own, kernels.countedFrom);
   }
 
   /** Bytes of WebAssembly memory in use by the matrices. */
   get bytes(): number {
-    return this.#end;
+    return this.#memory?.end ?? 0;
   }
 
   /**
@@ -87,204 +79,156 @@ export class SparseArena {
    *
    * @param a - the matrix; columns ascend within a row
    * @param options - `hermitian: true` asserts A = A†, which is checked
-   * @throws GoodBasisError `not-hermitian` when the assertion fails
+   * @throws GoodBasisError `shape` when it is not one (columns that are out of range or do not ascend included), `not-finite`
+   * for an entry that is NaN or infinite, `not-hermitian` when the assertion fails
    */
   load(a: Csr, options: { readonly hermitian?: boolean } = {}): Resident {
-    const hermitian = options.hermitian === true;
+    requireCsr("SparseArena.load", a);
+    const hermitian = options?.hermitian === true;
     if (hermitian && !isHermitian(a)) {
       throw new GoodBasisError(
         "not-hermitian",
         "SparseArena.load: expected a Hermitian matrix, got one that differs from its adjoint; load it without the flag",
       );
     }
-    const resident = {
-      rows: a.rows,
-      cols: a.cols,
-      entries: a.col.length,
-      complex: a.im !== undefined,
-      hermitian,
-      upper: false,
-    };
-    const kernels = this.#kernels;
-    if (kernels === undefined) return this.#keep(resident, { ptr: 0, col: 0, re: 0, im: 0, norms: 0, plain: a });
-    const place = this.#reserve(kernels, a.rows, a.col.length, resident.complex);
-    const buffer = kernels.exports.memory.buffer;
-    new Int32Array(buffer, place.ptr, a.rows + 1).set(a.ptr);
-    new Int32Array(buffer, place.col, a.col.length).set(a.col);
-    new Float64Array(buffer, place.re, a.re.length).set(a.re);
-    if (a.im !== undefined) new Float64Array(buffer, place.im, a.im.length).set(a.im);
-    kernels.exports.rowNorms(a.rows, place.ptr, place.re, place.im, place.norms);
-    return this.#keep(resident, place);
+    const memory = this.#memory;
+    const place = memory?.attempt(() => memory.copyIn(a)) ?? copyOf(a);
+    return this.#keep({ ...traitsOf(a), hermitian, upper: false }, place);
   }
 
   /**
-   * The product AB with a bound on its rounding; the result stays in the arena.
+   * The product AB with a bound on its rounding; the result stays in the arena. A factor of which only the upper triangle is
+   * stored is written out for the time of the call.
    *
-   * @throws GoodBasisError `shape` when the factors do not fit or are not in this arena
+   * @throws GoodBasisError `shape` when the factors do not fit or are not in this arena; `memory` when the result has no room
+   * in WebAssembly memory nor in plain arrays
    */
   product(a: Resident, b: Resident): Bounded<Resident> {
-    if (a.cols !== b.rows) throw this.#misfit("product", a, b);
-    return this.#combine(a, b, false);
+    const [left, right] = [this.#place("product", a), this.#place("product", b)];
+    if (a.cols !== b.rows) throw misfit("product", a, b);
+    return this.#combine(false, a, left, b, right);
   }
 
   /**
    * The commutator AB − BA with a bound on its rounding; the result stays in the arena. Of two matrices that were loaded
    * as Hermitian only the upper triangle is formed, with half the work and half the memory: the result is anti-Hermitian.
+   * A factor of which only the upper triangle is stored is written out for the time of the call.
    *
-   * @throws GoodBasisError `shape` when the matrices are not square of one order or not in this arena
+   * @throws GoodBasisError `shape` when the matrices are not square of one order or not in this arena; `memory` when the result
+   * has no room in WebAssembly memory nor in plain arrays
    */
   commutator(a: Resident, b: Resident): Bounded<Resident> {
-    if (a.rows !== a.cols || b.rows !== b.cols || a.rows !== b.rows) throw this.#misfit("commutator", a, b);
-    return this.#combine(a, b, true);
+    const [left, right] = [this.#place("commutator", a), this.#place("commutator", b)];
+    if (a.rows !== a.cols || b.rows !== b.cols || a.rows !== b.rows) throw misfit("commutator", a, b);
+    return this.#combine(true, a, left, b, right);
   }
 
   /** The Frobenius norm; not rounded up. Squares beyond the range of doubles overflow or vanish. */
   frobenius(a: Resident): number {
-    const place = this.#place(a);
-    if (place.plain !== undefined || this.#kernels === undefined) {
-      return place.plain === undefined ? 0 : frobenius(place.plain);
-    }
-    const { exports } = this.#kernels;
-    return Math.sqrt(exports.sumOfSquares(a.rows, a.upper, place.ptr, place.col, place.re, place.im));
+    const place = this.#place("frobenius", a);
+    if (isPlain(place)) return frobenius(place);
+    return Math.sqrt(this.#memory?.sumOfSquares({ resident: a, place }) ?? 0);
   }
 
   /** A copy outside the arena, columns ascending, both triangles. */
   read(a: Resident): Csr {
-    const place = this.#place(a);
-    if (place.plain !== undefined || this.#kernels === undefined) return place.plain ?? emptyCsr(a);
-    const { exports } = this.#kernels;
-    exports.sortSparseRows(a.rows, place.ptr, place.col, place.re, place.im);
-    const buffer = exports.memory.buffer;
-    const doubles = (start: number): Float64Array => new Float64Array(buffer, start, a.entries).slice();
-    const csr: Csr = {
-      rows: a.rows,
-      cols: a.cols,
-      ptr: new Int32Array(buffer, place.ptr, a.rows + 1).slice(),
-      col: new Int32Array(buffer, place.col, a.entries).slice(),
-      re: doubles(place.re),
-      im: a.complex ? dropZeros(doubles(place.im)) : undefined,
-    };
-    return a.upper ? completeAntiHermitian(csr) : csr;
+    return copyOf(this.#stored(a, this.#place("read", a)));
   }
 
   /** Where the stack of matrices ends now. */
   mark(): ArenaMark {
-    return this.#kernels === undefined ? this.#places.size : this.#end;
+    const mark = { depth: this.#stack.length };
+    this.#marks.set(mark, { top: this.#stack[mark.depth - 1], end: this.bytes });
+    return mark;
   }
 
-  /** Frees every matrix that came after the mark; using one of them is refused from then on. */
+  /**
+   * Frees every matrix that came after the mark; using one of them is refused from then on. The mark stays good until an older
+   * one is released.
+   *
+   * @throws GoodBasisError `option` for what is no mark of this arena, or one that went with an older mark
+   */
   release(mark: ArenaMark): void {
-    let index = 0;
-    for (const [resident, place] of this.#places) {
-      if ((this.#kernels === undefined ? index : place.ptr) >= mark) this.#places.delete(resident);
-      index++;
+    const marked = typeof mark === "object" && mark !== null ? this.#marks.get(mark) : undefined;
+    const depth = marked === undefined ? -1 : mark.depth;
+    if (marked === undefined || depth > this.#stack.length || this.#stack[depth - 1] !== marked.top) {
+      const got = marked === undefined ? "something else" : "one that was freed with an older mark";
+      throw new GoodBasisError(
+        "option",
+        `SparseArena.release: expected a mark of this arena, got ${got}; pass what arena.mark() returned, the newest first`,
+      );
     }
-    if (this.#kernels !== undefined) this.#end = Math.min(this.#end, mark);
+    for (const resident of this.#stack.splice(depth)) this.#places.delete(resident);
+    if (this.#memory !== undefined) this.#memory.end = marked.end;
   }
 
-  #combine(a: Resident, b: Resident, commutes: boolean): Bounded<Resident> {
-    const left = this.#place(a);
-    const right = this.#place(b);
-    const upper = commutes && a.hermitian && b.hermitian;
-    const complex = a.complex || b.complex;
-    const shape = { rows: a.rows, cols: b.cols, complex, hermitian: false };
-    const kernels = this.#kernels;
-    if (kernels === undefined || left.plain !== undefined || right.plain !== undefined) {
-      if (left.plain === undefined || right.plain === undefined) throw this.#misfit("commutator", a, b);
-      const { value, error } = commutes
-        ? commutatorSparse(left.plain, right.plain)
-        : productSparse(left.plain, right.plain);
-      const resident = { ...shape, complex: value.im !== undefined, entries: value.col.length, upper: false };
-      return { value: this.#keep(resident, { ...left, plain: value }), error };
+  #combine(commutes: boolean, a: Resident, left: Place | Csr, b: Resident, right: Place | Csr): Bounded<Resident> {
+    const memory = this.#memory;
+    if (memory !== undefined && !isPlain(left) && !isPlain(right)) {
+      const [x, y] = [
+        { resident: a, place: left },
+        { resident: b, place: right },
+      ];
+      const found = memory.attempt(() => memory.combine(commutes, x, y));
+      if (found !== undefined) return { value: this.#keep(found.resident, found.place), error: found.error };
     }
-    const { exports } = kernels;
-    let room = exports.productCount(a.rows, left.ptr, left.col, right.ptr);
-    if (commutes) room += exports.productCount(b.rows, right.ptr, right.col, left.ptr);
-    room = Math.min(room, a.rows * b.cols);
-    const start = this.#end;
-    const place = this.#reserve(kernels, a.rows, room, complex, b.cols);
-    const places = this.#end;
-    new Int32Array(exports.memory.buffer, places, b.cols).fill(-1);
-    const entries = exports.combineSparse(
-      a.rows,
-      commutes,
-      upper,
-      left.ptr,
-      left.col,
-      left.re,
-      left.im,
-      left.norms,
-      right.ptr,
-      right.col,
-      right.re,
-      right.im,
-      right.norms,
-      place.ptr,
-      place.col,
-      place.re,
-      place.im,
-      places,
-    );
-    // The upper triangle stands for twice its square, at most.
-    const squares = exports.errorSquares.value * (upper ? 2 : 1);
-    const most = exports.mostTerms.value;
-    // Reserved pages that were not written cost nothing but addresses: moving pays where a good part is left over.
-    const settled = entries > 0.75 * room ? place : this.#settle(kernels, start, place, a.rows, entries);
-    exports.rowNorms(a.rows, settled.ptr, settled.re, settled.im, settled.norms);
-    const error = finishBound({ squares, most }, a, b, { col: { length: upper ? 2 * entries : entries } });
-    return { value: this.#keep({ ...shape, entries, upper }, settled), error };
+    try {
+      const [x, y] = [this.#stored(a, left), this.#stored(b, right)];
+      const { value, error } = commutes ? commutatorSparse(x, y) : productSparse(x, y);
+      return { value: this.#keep({ ...traitsOf(value), hermitian: false, upper: false }, value), error };
+    } catch (error) {
+      if (!(error instanceof RangeError)) throw error;
+      throw tooLarge(commutes ? "commutator" : "product", a, b);
+    }
   }
 
-  /** Room for a matrix at the end of the stack, `scratch` integers beyond it. Pages that are reserved but never written cost no memory. */
-  #reserve(kernels: Kernels, rows: number, entries: number, complex: boolean, scratch = 0): Place {
-    const lengths = [4 * (rows + 1), 8 * rows, 4 * entries, 8 * entries, complex ? 8 * entries : 0, 4 * scratch];
-    const [ptr = 0, norms = 0, col = 0, re = 0, im = 0, end = 0] = kernels.stretches(this.#end, lengths);
-    this.#end = end;
-    return { ptr, norms, col, re, im: complex ? im : 0, plain: undefined };
+  /** A matrix with both triangles: itself, or views of memory that last until it grows. */
+  #stored(resident: Resident, place: Place | Csr): Csr {
+    if (isPlain(place) || this.#memory === undefined) return isPlain(place) ? place : emptyCsr(resident);
+    const csr = this.#memory.view({ resident, place });
+    return resident.upper ? completeAntiHermitian(csr) : csr;
   }
 
-  /** Moves the stretches of a finished result together, so that what was reserved too much can be used again. */
-  #settle(kernels: Kernels, start: number, place: Place, rows: number, entries: number): Place {
-    this.#end = start;
-    const packed = this.#reserve(kernels, rows, entries, place.im !== 0);
-    const bytes = new Uint8Array(kernels.exports.memory.buffer);
-    const move = (to: number, from: number, length: number): void => {
-      if (to !== from) bytes.copyWithin(to, from, from + length);
-    };
-    move(packed.col, place.col, 4 * entries);
-    move(packed.re, place.re, 8 * entries);
-    if (place.im !== 0) move(packed.im, place.im, 8 * entries);
-    return packed;
-  }
-
-  #keep(resident: Resident, place: Place): Resident {
+  #keep(resident: Resident, place: Place | Csr): Resident {
     this.#places.set(resident, place);
+    this.#stack.push(resident);
     return resident;
   }
 
-  #place(a: Resident): Place {
+  #place(where: string, a: Resident): Place | Csr {
     const place = this.#places.get(a);
     if (place !== undefined) return place;
     throw new GoodBasisError(
       "shape",
-      `SparseArena: the ${a.rows} × ${a.cols} matrix is not in this arena; load it, or keep it below the released mark`,
-    );
-  }
-
-  #misfit(where: string, a: Resident, b: Resident): GoodBasisError {
-    return new GoodBasisError(
-      "shape",
-      `SparseArena.${where}: a matrix of ${a.rows} × ${a.cols} and one of ${b.rows} × ${b.cols} do not fit`,
-      { left: [a.rows, a.cols], right: [b.rows, b.cols] },
+      `SparseArena.${where}: expected a matrix of this arena, got another value, or one that was freed; load it, or keep it below ` +
+        "the released mark",
     );
   }
 }
 
-const emptyCsr = (a: Resident): Csr => ({
-  rows: a.rows,
-  cols: a.cols,
-  ptr: new Int32Array(a.rows + 1),
+const isPlain = (place: Place | Csr): place is Csr => "rows" in place;
+
+function traitsOf(a: Csr): Pick<Resident, "rows" | "cols" | "entries" | "complex"> {
+  return { rows: a.rows, cols: a.cols, entries: a.col.length, complex: a.im !== undefined };
+}
+
+function copyOf({ rows, cols, ptr, col, re, im }: Csr): Csr {
+  return { rows, cols, ptr: ptr.slice(), col: col.slice(), re: re.slice(), im: dropZeros(im?.slice()) };
+}
+
+const emptyCsr = ({ rows, cols }: Resident): Csr => ({
+  rows,
+  cols,
+  ptr: new Int32Array(rows + 1),
   col: new Int32Array(0),
   re: new Float64Array(0),
   im: undefined,
 });
+
+function misfit(where: string, a: Resident, b: Resident): GoodBasisError {
+  return new GoodBasisError(
+    "shape",
+    `SparseArena.${where}: a matrix of ${a.rows} × ${a.cols} and one of ${b.rows} × ${b.cols} do not fit`,
+    { left: [a.rows, a.cols], right: [b.rows, b.cols] },
+  );
+}

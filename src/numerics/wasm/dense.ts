@@ -20,7 +20,9 @@ function multiply(kernels: Kernels, n: number, a: Dense, b: Dense, three: boolea
   const size = 8 * n * n;
   const room = (m: Float64Array | undefined): number => (m === undefined ? 0 : size);
   const complex = a.im !== undefined || b.im !== undefined;
-  const scratch = exports.denseScratch(n, a.im !== undefined && b.im !== undefined);
+  // Unsigned; and where the sum passed the end of all addresses, what it must at least have been, so that the layout fails.
+  const bothComplex = a.im !== undefined && b.im !== undefined;
+  const scratch = Math.max(bothComplex ? size : 0, exports.denseScratch(n, bothComplex) >>> 0);
   const lengths = [size, room(a.im), size, room(b.im), size, complex ? size : 0, scratch];
   const [aRe = 0, aIm = 0, bRe = 0, bIm = 0, cRe = 0, cIm = 0, rest = 0] = kernels.layout(lengths);
   const memory = kernels.doubles;

@@ -32,7 +32,9 @@ function solve(kernels: Kernels, job: EigenJob, tuning: EigenTuning): EigenSolve
   const { leaf, blockedFrom, blockWidth } = tuning;
   const matrices = 8 * count * n * n;
   const imaginary = complex ? matrices : 0;
-  const scratch = exports.eigenScratch(n, complex, leaf, blockedFrom, blockWidth);
+  // Unsigned; and where the sum passed the end of all addresses, what it must at least have been, so that the layout fails.
+  const least = 8 * n * n * (complex || n <= leaf ? 1 : 2);
+  const scratch = Math.max(least, exports.eigenScratch(n, complex, leaf, blockedFrom, blockWidth) >>> 0);
   const starts = kernels.layout([
     matrices,
     imaginary,

@@ -57,20 +57,30 @@ export interface KernelExports {
     im: number,
     places: number,
   ): number;
-  productCount(rows: number, aPtr: number, aCol: number, bPtr: number): number;
+  productCount(rows: number, upper: boolean, aPtr: number, aCol: number, bPtr: number, bCol: number): number;
+  countEntries(
+    rows: number,
+    commutes: boolean,
+    upper: boolean,
+    aPtr: number,
+    aCol: number,
+    bPtr: number,
+    bCol: number,
+    places: number,
+  ): number;
   rowNorms(rows: number, ptr: number, re: number, im: number, norms: number): void;
   sumOfSquares(rows: number, upper: boolean, ptr: number, col: number, re: number, im: number): number;
   sortSparseRows(rows: number, ptr: number, col: number, re: number, im: number): void;
 }
 
 /** The part of the WebAssembly interface that is used; every platform names it the same. */
-interface Platform {
+export interface Platform {
   readonly Module: new (bytes: Uint8Array) => object;
   readonly Instance: new (module: object) => { readonly exports: object };
 }
 
 /** The platform does not give the memory, or more than the four gigabytes that addresses reach were asked for. */
-class OutOfMemory extends RangeError {}
+export class OutOfMemory extends RangeError {}
 
 const PAGE = 65536;
 /** Memory up to this size is kept from call to call; an instance that grew beyond is let go after the call. */
@@ -152,11 +162,20 @@ function compile(): typeof compiled {
   }
 }
 
-/** A new instance with a memory of its own, or `undefined` where the platform cannot run the kernels. */
+/**
+ * A new instance with a memory of its own, or `undefined` where the platform cannot run the kernels or has no addresses left
+ * for another memory (a memory takes more of them than bytes).
+ */
 export function newKernels(): Kernels | undefined {
   compiled ??= compile();
   if (!compiled) return undefined;
-  return new Kernels(new compiled.platform.Instance(compiled.module).exports as KernelExports);
+  let instance: { readonly exports: object };
+  try {
+    instance = new compiled.platform.Instance(compiled.module);
+  } catch {
+    return undefined;
+  }
+  return new Kernels(instance.exports as KernelExports);
 }
 
 /**

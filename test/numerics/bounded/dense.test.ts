@@ -4,7 +4,7 @@ import type { Square } from "../../../src/numerics/bounded/types.js";
 import { multiplyDense } from "../../../src/numerics/dense.js";
 import { wasmMultiplyDense } from "../../../src/numerics/wasm/dense.js";
 import { generator, randomSample } from "../eigen/matrices.js";
-import { distance } from "./exact.js";
+import { distance, isWithin } from "./exact.js";
 
 const ENGINES: readonly [string, DenseEngine][] = [
   ["WebAssembly", wasmMultiplyDense],
@@ -65,7 +65,8 @@ describe.each(ENGINES)("productDense and commutatorDense by %s", (_, engine) => 
     }
   });
 
-  it("come close to the error in the worst of many small products, so that a smaller constant would be caught", () => {
+  it("come close to the error in the worst of many small products: constants half as large would be caught for real ones", () => {
+    // For complex ones those of a twelfth to a quarter: random entries are far from the worst of three multiplications.
     const closest = (n: number, complex: boolean, run: typeof productDenseBy, signs: readonly number[]): number => {
       let most = 0;
       for (let seed = 1; seed <= 400; seed++) {
@@ -84,6 +85,42 @@ describe.each(ENGINES)("productDense and commutatorDense by %s", (_, engine) => 
     expect(closest(2, true, productDenseBy, [1])).toBeGreaterThan(0.04);
     expect(closest(2, false, commutatorDenseBy, [1, -1])).toBeGreaterThan(0.3);
     expect(closest(2, true, commutatorDenseBy, [1, -1])).toBeGreaterThan(0.04);
+  });
+
+  it("hold where a product, its square, or the square of an entry is below the range", () => {
+    const odd = 1 + 2 ** -27;
+    const one = (x: number): Square => ({ n: 1, re: Float64Array.of(x), im: undefined });
+    const cases: readonly [number, number][] = [
+      // The product is zero, and so is every norm: what is lost to underflow alone.
+      [2 ** -540, 2 ** -540],
+      // The square of the product is lost, its rounding is not.
+      [odd * 2 ** -100, odd * 2 ** -440],
+      // The square of an entry of the right factor is lost, the product is an ordinary number.
+      [odd * 2 ** 500, odd * 2 ** -540],
+    ];
+    for (const [x, y] of cases) {
+      const [a, b] = [one(x), one(y)];
+      const { value, error } = productDenseBy(engine, a, b);
+      expect(isWithin(1, [[1, a, b]], value, error)).toBe(true);
+      expect(isWithin(1, [[1, a, b]], value, 0)).toBe(false);
+    }
+  });
+
+  it("hold for a difference that takes all the roundings there can be, the last one included", () => {
+    const a: Square = {
+      n: 2,
+      re: Float64Array.of(9.536745425294067e-7, 0, 1.0000001340520157, 1.000000172570708),
+      im: undefined,
+    };
+    const b: Square = { n: 2, re: Float64Array.of(1.000000012426426, 0, 1.000000008407369, 0), im: undefined };
+    const { value, error } = commutatorDenseBy(engine, a, b);
+    const terms = [
+      [1, a, b],
+      [-1, b, a],
+    ] as const;
+    expect(isWithin(2, terms, value, error)).toBe(true);
+    // The rounding of the difference is at most u times its norm, 2; without it the bound would be false.
+    expect(isWithin(2, terms, value, error - 2 ** -52)).toBe(false);
   });
 
   it("hold where one factor is huge and its partner tiny, where products cancel, and where they underflow", () => {

@@ -17,8 +17,11 @@ export interface Parts {
   readonly im: Float64Array | undefined;
 }
 
-/** Σ over terms sign · X Y of n × n matrices, minus a computed matrix: the Frobenius norm of the difference. */
-export function distance(n: number, terms: readonly [number, Parts, Parts][], computed: Parts): number {
+/** Pairs of factors with the signs of their products, as in [1, A, B], [−1, B, A]. */
+export type Terms = readonly (readonly [sign: number, x: Parts, y: Parts])[];
+
+/** Σ over terms sign · X Y of n × n matrices, minus a computed matrix: the square of the Frobenius norm, times 2^−4 SHIFT. */
+function squareOfDistance(n: number, terms: Terms, computed: Parts): bigint {
   const whole = (m: Float64Array | undefined): bigint[] => Array.from(m ?? new Float64Array(n * n), scaled);
   const exact = terms.map(([sign, x, y]) => ({
     sign: BigInt(sign),
@@ -43,8 +46,20 @@ export function distance(n: number, terms: readonly [number, Parts, Parts][], co
       square += re * re + im * im;
     }
   }
+  return square;
+}
+
+/** The Frobenius norm of Σ over terms sign · X Y of n × n matrices minus a computed matrix, rounded down. */
+export function distance(n: number, terms: Terms, computed: Parts): number {
   // √square · 2^−2400, the root rounded by an integer step at most.
-  return toDouble(root(square), 2 * Number(SHIFT));
+  return toDouble(root(squareOfDistance(n, terms, computed)), 2 * Number(SHIFT));
+}
+
+/** Whether that norm is at most a bound, without any rounding. */
+export function isWithin(n: number, terms: Terms, computed: Parts, bound: number): boolean {
+  if (bound === Number.POSITIVE_INFINITY) return true;
+  const side = scaled(bound) << SHIFT;
+  return bound >= 0 && squareOfDistance(n, terms, computed) <= side * side;
 }
 
 /** The integer part of a square root (Newton). */

@@ -98,4 +98,27 @@ describe.each(ENGINES)("batchedHermitianEigen by %s", (_, engine) => {
     }
     expect(run([], 0)().values.length).toBe(0);
   });
+
+  it("refuses other arrays, other options, and members that are none", () => {
+    const re = Float64Array.of(0, 1, 1, 0);
+    const cases: [unknown, unknown, unknown, unknown, string][] = [
+      [[2], [0, 1, 1, 0], undefined, {}, "shape"],
+      [[2], Float32Array.from(re), undefined, {}, "shape"],
+      [[2], re, null, {}, "shape"],
+      [undefined, re, undefined, {}, "shape"],
+      [["2"], re, undefined, {}, "shape"],
+      [[2], re, undefined, null, "option"],
+      [[2], re, undefined, { upper: "bogus" }, "option"],
+    ];
+    for (const [orders, a, b, options, code] of cases) {
+      expect(() => batchedHermitianEigenBy(engine, orders as never, a as never, b as never, options as never)).toThrow(
+        expect.objectContaining({ code }),
+      );
+    }
+    const batch = batchedHermitianEigenBy(engine, [2, 0], re, undefined);
+    expect(batchMember(batch, 1).n).toBe(0);
+    for (const k of [-1, 2, 0.5, Number.NaN, "0" as never]) {
+      expect(() => batchMember(batch, k)).toThrow(expect.objectContaining({ code: "option" }));
+    }
+  });
 });

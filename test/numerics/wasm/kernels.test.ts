@@ -1,15 +1,28 @@
+import { spawnSync } from "node:child_process";
 import { readFileSync } from "node:fs";
-import { fileURLToPath } from "node:url";
+import { join } from "node:path";
+import { fileURLToPath, pathToFileURL } from "node:url";
 import { setFlagsFromString } from "node:v8";
 import { runInNewContext } from "node:vm";
 import { afterEach, describe, expect, it, vi } from "vitest";
 import { productDense } from "../../../src/numerics/bounded/dense.js";
+import type { Csr } from "../../../src/numerics/csr.js";
 import { multiplyDense } from "../../../src/numerics/dense.js";
 import { batchedHermitianEigen } from "../../../src/numerics/eigen/batch.js";
 import { plainEigen } from "../../../src/numerics/eigen/plain.js";
 import { hermitianEigen, hermitianEigenBy } from "../../../src/numerics/eigen.js";
+import { fromDense } from "../../../src/numerics/sparse.js";
+import { SparseArena } from "../../../src/numerics/wasm/arena.js";
+import { wasmMultiplyDense } from "../../../src/numerics/wasm/dense.js";
 import { wasmEigen } from "../../../src/numerics/wasm/eigen.js";
-import { kernelsAvailable, newKernels, withKernels } from "../../../src/numerics/wasm/runtime.js";
+import {
+  type KernelExports,
+  kernelsAvailable,
+  newKernels,
+  type Platform,
+  withKernels,
+} from "../../../src/numerics/wasm/runtime.js";
+import { builtPackage } from "../../build.js";
 import { randomSample, U } from "../eigen/matrices.js";
 
 const assembly = new URL("../../../src/numerics/wasm/assembly/", import.meta.url);
@@ -71,15 +84,42 @@ describe("without WebAssembly", () => {
     },
     Instance: class {},
   };
+  const { Module, Instance } = (globalThis as { readonly WebAssembly?: Platform } as { readonly WebAssembly: Platform })
+    .WebAssembly;
+  /** Instances cannot be made, or their memory cannot grow, as where a process may have few addresses. */
+  const crowded = {
+    Module,
+    Instance: class {
+      constructor() {
+        throw new RangeError("could not allocate memory");
+      }
+    },
+  };
+  const narrow = {
+    Module,
+    Instance: class {
+      readonly exports: object;
+      constructor(module: object) {
+        const { exports } = new Instance(module);
+        const grow = (): never => {
+          throw new RangeError("no more memory");
+        };
+        this.exports = { ...exports, memory: { buffer: (exports as KernelExports).memory.buffer, grow } };
+      }
+    },
+  };
   it.each([
-    ["absent", undefined],
-    ["refusing to compile", broken],
-  ])("the plain kernels take over (%s)", async (_, platform) => {
+    ["absent", undefined, false],
+    ["refusing to compile", broken, false],
+    ["without room for an instance", crowded, false],
+    ["without memory", narrow, true],
+  ])("the plain kernels take over (%s)", async (_, platform, available) => {
     vi.resetModules();
     const fresh = await import("../../../src/numerics/kernels.js");
     const { wasmEigen: absent } = await import("../../../src/numerics/wasm/eigen.js");
     const { n, re, im } = randomSample(40, true, 2);
     const square = { n, re, im };
+    const csr = fromDense(n, n, re, im);
     // The platform itself uses WebAssembly now and then: it is gone only while nothing is awaited.
     vi.stubGlobal("WebAssembly", platform);
     const found = [
@@ -87,17 +127,39 @@ describe("without WebAssembly", () => {
       absent({ count: 1, n, re, im, window: {} }),
       fresh.hermitianEigen(n, re, im),
       fresh.product(square, square),
+      inArena(new fresh.SparseArena(), csr),
     ];
     vi.unstubAllGlobals();
     const value = { n, ...multiplyDense(n, square, square) };
     expect(found).toEqual([
-      false,
+      available,
       undefined,
       hermitianEigenBy(plainEigen, n, re, im),
       { value, error: productDense(square, square).error },
+      inArena(new SparseArena({ own: undefined }), csr),
     ]);
   });
+
+  it.skipIf(process.platform !== "linux")("a process that may have few addresses works all the same", () => {
+    const kernels = pathToFileURL(join(builtPackage, "numerics/kernels.js")).href;
+    const code = `
+      const { hermitianEigen, kernelsAvailable, SparseArena } = await import(${JSON.stringify(kernels)});
+      const { values } = hermitianEigen(3, new Float64Array(9).fill(1));
+      const arena = new SparseArena();
+      console.log(Math.abs(values[2] - 3) < 1e-14, typeof kernelsAvailable(), arena.mark().depth);
+    `;
+    const run = 'ulimit -v 9000000; exec "$0" --input-type=module -e "$1"';
+    const { stdout, stderr } = spawnSync("sh", ["-c", run, process.execPath, code], { encoding: "utf8" });
+    expect([stdout, stderr]).toEqual(["true boolean 0\n", ""]);
+  });
 });
+
+/** What an arena makes of a matrix and its square. */
+function inArena(arena: SparseArena, csr: Csr): unknown[] {
+  const a = arena.load(csr);
+  const { value, error } = arena.product(a, a);
+  return [arena.read(a), arena.read(value), Math.fround(error)];
+}
 
 /** Bytes that are in use after everything that can be collected has been. */
 function used(): number {
@@ -148,6 +210,27 @@ describe("memory", () => {
     kernels?.doubles.fill(7, start / 8, start / 8 + 2 ** 18);
     kernels?.layout([8 * 2 ** 20]);
     expect(kernels?.doubles[start / 8 + 2 ** 18 - 1]).toBe(7);
+  });
+
+  it("is not written where a matrix would need more than addresses reach: the sizes are counted without a sign", () => {
+    const none = new Float64Array(0);
+    // Below the first order the scratch of a real matrix is a negative number; near the second one it passes all addresses.
+    for (const n of [
+      11_585,
+      11_600,
+      13_000,
+      ...Array.from({ length: 50 }, (_, k) => 16_340 + k),
+      23_171,
+      46_341,
+      65_536,
+    ]) {
+      for (const im of [undefined, none]) {
+        expect(wasmEigen({ count: 1, n, re: none, im, window: {} })).toBeUndefined();
+      }
+      if (n > 13_377)
+        expect(wasmMultiplyDense(n, { re: none, im: undefined }, { re: none, im: undefined })).toBeUndefined();
+      expect(wasmMultiplyDense(n, { re: none, im: none }, { re: none, im: none })).toBeUndefined();
+    }
   });
 
   it("that is not to be had is an error in an instance of one's own, and otherwise leaves the work to the plain twin", () => {

@@ -4,6 +4,7 @@ export { denseScratch, multiplyDense } from "./dense.ts";
 export { eigenScratch, solveHermitian, windowStart } from "./eigen.ts";
 export {
   combineSparse,
+  countEntries,
   errorSquares,
   mostTerms,
   productCount,

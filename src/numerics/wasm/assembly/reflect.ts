@@ -1,6 +1,6 @@
 // Eigenvectors of the tridiagonal matrix back to those of the full one: row ← H_{n−1} ⋯ H_1 row.
 
-import { at, dot, get, lanes, put } from "./memory.ts";
+import { at, get, lanes, put } from "./memory.ts";
 
 /**
  * Applies real reflectors one by one to `count` rows of n doubles; row i of `y` holds y_i in its columns 0 … i − 1.
@@ -17,12 +17,32 @@ export function reflectReal(n: i32, y: usize, tau: usize, count: i32, rows: usiz
     }
   }
   for (; r < count; r++) {
-    const row = at(rows, r * n);
     for (let i = 1; i < n; i++) {
       const t = get(tau, i);
-      if (t !== 0) addMultiple(i, -t * dot(i, at(y, i * n), row), at(y, i * n), row);
+      if (t !== 0) reflectOneRow(i, t, at(y, i * n), at(rows, r * n));
     }
   }
+}
+
+/** {@link reflectFourRows} for one row, with the same sums in the same order: a row has the same bits in any company. */
+function reflectOneRow(n: i32, t: f64, y: usize, row: usize): void {
+  let a = f64x2.splat(0);
+  let b = a;
+  const end = ((n as usize) << 3) & ~15;
+  let o: usize = 0;
+  for (; o + 16 < end; o += 32) {
+    a = f64x2.add(a, f64x2.mul(v128.load(y + o), v128.load(row + o)));
+    b = f64x2.add(b, f64x2.mul(v128.load(y + o, 16), v128.load(row + o, 16)));
+  }
+  if (o < end) a = f64x2.add(a, f64x2.mul(v128.load(y + o), v128.load(row + o)));
+  let s = lanes(f64x2.add(a, b));
+  if (n & 1) s += get(y, n - 1) * get(row, n - 1);
+  s *= t;
+  a = f64x2.splat(s);
+  for (o = 0; o < end; o += 16) {
+    v128.store(row + o, f64x2.sub(v128.load(row + o), f64x2.mul(a, v128.load(y + o))));
+  }
+  if (n & 1) put(row, n - 1, get(row, n - 1) - s * get(y, n - 1));
 }
 
 /** row ← row − t (yᵀ row) y over n doubles, for four rows `step` bytes apart. */
@@ -93,16 +113,6 @@ function reflectFourRows(n: i32, t: f64, y: usize, row0: usize, step: usize): vo
     put(row2, n - 1, get(row2, n - 1) - s2 * p);
     put(row3, n - 1, get(row3, n - 1) - s3 * p);
   }
-}
-
-/** to_j ← to_j + x from_j over n doubles. */
-function addMultiple(n: i32, x: f64, from: usize, to: usize): void {
-  const factor = f64x2.splat(x);
-  let j = 0;
-  for (; j + 1 < n; j += 2) {
-    v128.store(at(to, j), f64x2.add(v128.load(at(to, j)), f64x2.mul(factor, v128.load(at(from, j)))));
-  }
-  if (j < n) put(to, j, get(to, j) + x * get(from, j));
 }
 
 /** The complex companion of {@link reflectReal}. */

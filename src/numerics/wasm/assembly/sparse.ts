@@ -38,6 +38,7 @@ export let mostTerms: i32 = 0;
  * entry is off by at most √2 γ_{m_i + 1} Σ |a_ik| |b_kj|. The Euclidean norm over j of Σ_k |a_ik| |b_kj| is at most
  * Σ_k |a_ik| ρ_k with ρ_k the norm of row k of B (triangle inequality): that sum is formed here, once for each entry of
  * A. Rows combine to the Frobenius norm. Underflow adds what the caller accounts for; rounding in the bound itself too.
+ * Where only the upper triangle is formed the same sum serves: see `commutatorSparse`.
  *
  * @param rows - rows of A
  * @param commutes - whether BA is subtracted (square matrices)
@@ -46,7 +47,8 @@ export let mostTerms: i32 = 0;
  * @param normsB - those of B
  * @param ptr - receives rows + 1 row starts
  * @param places - scratch: an integer for each column, all −1
- * @returns number of entries; the stretches must have room for {@link productCount} (of both orders for a commutator)
+ * @returns number of entries; the stretches must have room for {@link productCount} (of both orders for a commutator), or for
+ *   {@link countEntries}
  */
 export function combineSparse(
   rows: i32,
@@ -198,15 +200,64 @@ function firstFrom(from: i32, to: i32, low: i32, col: usize): i32 {
   return from;
 }
 
-/** Number of products in AB: room enough for its entries. */
-export function productCount(rows: i32, aPtr: usize, aCol: usize, bPtr: usize): f64 {
+/** Number of products in AB, in its upper triangle where asked (columns of B must then ascend): room enough for its entries. */
+export function productCount(rows: i32, upper: bool, aPtr: usize, aCol: usize, bPtr: usize, bCol: usize): f64 {
   let count: f64 = 0;
-  const end = getInt(aPtr, rows);
-  for (let e = 0; e < end; e++) {
-    const k = getInt(aCol, e);
-    count += (getInt(bPtr, k + 1) - getInt(bPtr, k)) as f64;
+  for (let i = 0; i < rows; i++) {
+    const end = getInt(aPtr, i + 1);
+    for (let e = getInt(aPtr, i); e < end; e++) {
+      const k = getInt(aCol, e);
+      const stop = getInt(bPtr, k + 1);
+      let f = getInt(bPtr, k);
+      if (upper && i > 0) f = firstFrom(f, stop, i, bCol);
+      count += (stop - f) as f64;
+    }
   }
   return count;
+}
+
+/**
+ * Number of entries that {@link combineSparse} will store: the same walk without the arithmetic.
+ *
+ * @param places - scratch: an integer for each column, all −1
+ */
+export function countEntries(
+  rows: i32,
+  commutes: bool,
+  upper: bool,
+  aPtr: usize,
+  aCol: usize,
+  bPtr: usize,
+  bCol: usize,
+  places: usize,
+): f64 {
+  let count: f64 = 0;
+  for (let i = 0; i < rows; i++) {
+    const low = upper ? i : 0;
+    let met = meetColumns(i, low, aPtr, aCol, bPtr, bCol, places);
+    if (commutes) met += meetColumns(i, low, bPtr, bCol, aPtr, aCol, places);
+    count += met as f64;
+  }
+  return count;
+}
+
+/** Marks the columns ≥ low of row i of AB with the row; returns how many were not marked before. */
+function meetColumns(i: i32, low: i32, aPtr: usize, aCol: usize, bPtr: usize, bCol: usize, places: usize): i32 {
+  let met = 0;
+  const end = getInt(aPtr, i + 1);
+  for (let e = getInt(aPtr, i); e < end; e++) {
+    const k = getInt(aCol, e);
+    const stop = getInt(bPtr, k + 1);
+    let f = getInt(bPtr, k);
+    if (low > 0) f = firstFrom(f, stop, low, bCol);
+    for (; f < stop; f++) {
+      const c = getInt(bCol, f);
+      if (getInt(places, c) === i) continue;
+      putInt(places, c, i);
+      met++;
+    }
+  }
+  return met;
 }
 
 /**
@@ -227,16 +278,20 @@ export function rowNorms(rows: i32, ptr: usize, re: usize, im: usize, norms: usi
   }
 }
 
-/** Σ |c_ij|² over the stored entries; those off the diagonal count twice where only the upper triangle is stored. */
+/**
+ * Σ |c_ij|² over the stored entries. Where only the upper triangle is stored, those off the diagonal count twice, and what
+ * rounding left in the real parts of the diagonal not at all: the matrix is anti-Hermitian.
+ */
 export function sumOfSquares(rows: i32, upper: bool, ptr: usize, col: usize, re: usize, im: usize): f64 {
   let sum: f64 = 0;
   for (let i = 0; i < rows; i++) {
     const end = getInt(ptr, i + 1);
     for (let e = getInt(ptr, i); e < end; e++) {
-      const x = get(re, e);
+      const diagonal = getInt(col, e) === i;
+      const x = upper && diagonal ? 0 : get(re, e);
       const y = im === 0 ? 0 : get(im, e);
       const square = x * x + y * y;
-      sum += upper && getInt(col, e) !== i ? 2 * square : square;
+      sum += upper && !diagonal ? 2 * square : square;
     }
   }
   return sum;
