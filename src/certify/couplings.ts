@@ -177,13 +177,14 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       sharp,
     };
   });
+  const worst = [...inside.worst, ...betweenWorst(input, evidence)].sort(bySize).slice(0, WORST_KEPT);
   return {
     nodes: evidence,
     diagonals: inside.diagonals,
     elementError: inside.elementError,
     withinLeaves: inside.withinLeaves,
     orthonormality,
-    worst: inside.worst,
+    worst,
     offDiagonal: problem.perturbations.map(({ operator }, p) => {
       // a row's own error moves one element by 2‖V‖ times it, a block of d rows by up to √d times as much
       const rows = 2.02 * (operator.norm + operator.error) * Math.sqrt(states.length) * rowError;
@@ -193,6 +194,33 @@ export function levelCouplings(input: CouplingInput): LevelCouplings {
       evidence.reduce((most, node) => Math.max(most, node.couplings[p]?.counted ?? 0), inside.withinLeaves[p] ?? 0),
     ),
   };
+}
+
+/**
+ * The elements between states of different parts that are certainly not zero to the resolution; looked for only where no bound at a
+ * node of labels rules them out.
+ */
+function betweenWorst({ problem, level, thresholds }: CouplingInput, evidence: readonly NodeEvidence[]): PairElement[] {
+  const { states, vectors } = level;
+  return problem.perturbations.flatMap(({ name, operator }, p): PairElement[] => {
+    const threshold = thresholds[p] ?? 0;
+    if (evidence.every((node) => node.kind !== "label" || (node.couplings[p]?.counted ?? 0) <= threshold)) return [];
+    const error = elementErrorBound(operator, vectors);
+    const found: PairElement[] = [];
+    forEachProduct(vectors, images(vectors, operator), (first, second, re, im, common) => {
+      if (common === 0 || states[first]?.part === states[second]?.part) return;
+      const size = modulus(re, im);
+      const atLeast = roundDown(size) - error;
+      if (atLeast > threshold) {
+        found.push({ perturbation: name, first, second, re, im, size, atLeast, atMost: roundUp(size) + error });
+      }
+    });
+    return found.sort(bySize).slice(0, WORST_KEPT);
+  });
+}
+
+function bySize(a: PairElement, b: PairElement): number {
+  return b.size - a.size || a.first - b.first || a.second - b.second;
 }
 
 /** Norm of V's elements between parts: nodes of one operator act on disjoint blocks, different operators add. */
@@ -283,7 +311,7 @@ function insideParts({ problem, level, thresholds, wholeDefect }: CouplingInput)
       withinLeaves[p] = Math.max(withinLeaves[p] ?? 0, found.withinLeaves);
     });
   }
-  worst.sort((a, b) => b.size - a.size || a.first - b.first || a.second - b.second);
+  worst.sort(bySize);
   // overlaps between parts are within the defect of the whole basis and the rounding of these vectors
   const between =
     parts.size < 2 ? 0 : 2 * wholeDefect * (1 + 2 * defect) + 2 * Math.sqrt(states.length) * rowError * 1.01;

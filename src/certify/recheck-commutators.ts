@@ -37,7 +37,7 @@ export function checkCommutators(ledger: Ledger, certificate: Certificate, probl
     if (!there || claimed === undefined) return { own, claimed: undefined };
     const rounding = 8 * problem.n * 2 ** -53 * (left.operator.norm * right.operator.norm);
     const threshold = Math.max(resolution * SHARE * (left.scale * right.scale), rounding);
-    checkOne(ledger, path, name, claimed, own, threshold);
+    checkOne(ledger, path, name, claimed, own, threshold, rounding);
     return { own, claimed };
   };
   const candidates = problem.candidates.map((candidate): OwnCandidate => {
@@ -74,9 +74,16 @@ function checkOne(
   claimed: CertifiedCommutator,
   own: OwnCommutator,
   threshold: number,
+  rounding: number,
 ): void {
   ledger.near(`${path}.norm`, `the Frobenius norm of ${name}`, claimed.norm, own.norm, own.radius + 1e-12 * own.norm);
   ledger.bound(`${path}.bound`, `‖${name}‖`, claimed.bound, own.bound);
+  ledger.claim(
+    claimed.bound >= own.certain * (1 - 1e-6),
+    `${path}.bound`,
+    () =>
+      `‖${name}‖ is claimed to be at most ${claimed.bound}; its elements and the entries' own uncertainty make it ${own.certain}`,
+  );
   ledger.claim(
     claimed.bound >= own.atLeast,
     `${path}.bound`,
@@ -88,7 +95,7 @@ function checkOne(
     () => `‖${name}‖ is claimed to be at least ${claimed.atLeast}, but no element exceeds ${own.most}`,
   );
   // a certificate may allow for rounding that does not occur for these numbers: a hundredth of what counts as commuting
-  const blur = 2 * (own.most - own.atLeast) + 1e-12 * own.most + threshold / 100;
+  const blur = 2 * (own.most - own.atLeast) + 1e-12 * own.most + threshold / 100 + rounding;
   ledger.claim(
     claimed.atLeast >= own.atLeast - blur,
     `${path}.atLeast`,

@@ -58,9 +58,10 @@ export function ratiosOf(
       const { firstTo, secondTo, w } = work.reach(sector, v, p);
       parts.push({ perturbation: p, sector: sector.number, inside: work.inside(w, v, p), firstTo, secondTo });
       if (!single) return;
-      for (const [mu, row] of w) {
-        const { re, error, scale } = row.get(mu) ?? { re: 0, error: 0, scale: 0 };
-        second[mu] = { value: re, error: error + CLUSTER * scale + work.blur(v) };
+      const own = [...w].map(([mu, row]) => ({ mu, ...(row.get(mu) ?? { re: 0, error: 0, scale: 0 }) }));
+      const widest = own.reduce((most, { scale }) => Math.max(most, scale), 0);
+      for (const { mu, re, error } of own) {
+        second[mu] = { value: re, error: error + CLUSTER * widest + work.blur(v) };
       }
     });
   }
@@ -196,7 +197,7 @@ class Work {
           y += u * (a * e + b * c);
           const left = moduli[i * d + k] as number;
           const right = moduli[k * d + j] as number;
-          error += Math.abs(u) * noise * (left + right);
+          error += Math.abs(u) * noise * (left + right + noise);
           scale += Math.abs(u) * left * right;
         }
         for (let b = 0; b < blocks.length; b++) {
