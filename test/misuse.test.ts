@@ -53,7 +53,7 @@ const WORKING: Readonly<Record<string, readonly unknown[]>> = {
   fixExactPhase: [up],
   formatAudit: [outcome.audit, { width: 80 }],
   formatOutcome: [outcome, { width: 80 }],
-  formatRecheck: [{ ok: true, checked: 1, findings: [] }, { width: 80 }],
+  formatRecheck: [{ ok: true, checked: 1, findings: [], notChecked: [] }, { width: 80 }],
   formatTable: [goodbasis.basisTable(basis), "text", { digits: 5 }],
   hopping: [2, [[0, 1]], [-1]],
   ketPermutation: [

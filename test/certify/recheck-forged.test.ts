@@ -46,12 +46,12 @@ describe("the distance to a symmetric model is no smaller than what breaks the l
     const large: Problem = {
       h0: { diagonal: [1e6, 1e6 + 1] },
       v: [
-        [1e6, 4e-8],
-        [4e-8, 1e6 + 1],
+        [1e6, 4e-10],
+        [4e-10, 1e6 + 1],
       ],
       candidates: { A: { diagonal: [1, -1] } },
     };
-    for (const eta of [0, 3e-8]) {
+    for (const eta of [0, 3e-10]) {
       const report = forge(large, {}, (d) => {
         d.whole.eta = [eta];
       });
