@@ -44,14 +44,14 @@ describe("the distance to a symmetric model is no smaller than what breaks the l
     });
     expect(paths(small)).toContain("whole.eta0");
     const large: Problem = {
-      h0: { diagonal: [1e6, 1e6 + 1] },
+      h0: { diagonal: [0, 1] },
       v: [
-        [1e6, 4e-10],
-        [4e-10, 1e6 + 1],
+        [0, 3e-13],
+        [3e-13, 1],
       ],
       candidates: { A: { diagonal: [1, -1] } },
     };
-    for (const eta of [0, 3e-10]) {
+    for (const eta of [0, 2e-13]) {
       const report = forge(large, {}, (d) => {
         d.whole.eta = [eta];
       });
