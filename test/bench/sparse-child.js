@@ -9,7 +9,7 @@ const problem = sparseProblem(Number(n), Number(level));
 let result = "";
 const begun = performance.now();
 const processor = once(() => () => {
-  const { verdict, levelCount, states } = findGoodBasis(problem, { levels: { nearest: 0 } });
+  const { verdict, levelCount, states } = findGoodBasis(problem, { levels: { nearest: 0 }, lambda: 1e-4 });
   result = `${verdict}; ${levelCount}, ${states.length}`;
 });
 const ms = performance.now() - begun;
