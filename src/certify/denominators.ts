@@ -1,6 +1,6 @@
 import type { PreparedProblem } from "../audit/problem.js";
 import type { Csr } from "../numerics/csr.js";
-import { frobenius, fromTriplets } from "../numerics/sparse.js";
+import { add, frobenius, fromTriplets, multiply } from "../numerics/sparse.js";
 import { images } from "../operator/images.js";
 import type { Operator } from "../operator/operator.js";
 import { secondOrder } from "../refine/second-order.js";
@@ -22,8 +22,8 @@ interface Worst {
 
 /**
  * The blockwise denominators guard between the levels of a complete basis, ‖P_k V P_n‖_F/|E_k − E_n| and the same at second order,
- * one sentence for each perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts of their own, as
- * symmetry sectors are.
+ * one sentence for each perturbation that exceeds the threshold. Columns that V does not connect, directly or through others, are parts
+ * of their own, as symmetry sectors are.
  */
 export function denominatorRemarks(
   problem: PreparedProblem,
@@ -66,13 +66,7 @@ export function reachRemarks(
 ): string[] {
   if (gap === Number.POSITIVE_INFINITY) return [];
   return perturbations.flatMap(({ name, operator }) => {
-    const reached = images(own, operator);
-    let square = frobenius(reached) ** 2;
-    forEachProduct(own, reached, (r, c, re, im) => {
-      square -= (r === c ? 1 : 2) * (re * re + im * im);
-    });
-    // what rounding may leave of a difference of equal squares is no reach
-    const reach = square > 1e-13 * operator.norm ** 2 ? Math.sqrt(square) : 0;
+    const reach = frobenius(outOf(own, operator));
     const first = (lambda * reach) / gap;
     const most = Math.max(first, (first * 2 * lambda * operator.norm) / gap);
     if (most <= refuseAbove) return [];
@@ -82,6 +76,17 @@ export function reachRemarks(
         "basis, or state a smaller lambda",
     ];
   });
+}
+
+/** (1 − P) V q for every row q: the images without their parts along the rows. */
+function outOf(own: Csr, operator: Operator): Csr {
+  const reached = images(own, operator);
+  const elements: Element[] = [];
+  forEachProduct(own, reached, (r, c, re, im) => {
+    elements.push([c, r, re, im]);
+    if (r !== c) elements.push([r, c, re, -im]);
+  });
+  return add(1, reached, -1, multiply(matrixOf(own.rows, elements), own));
 }
 
 /** Columns that a perturbation connects, and its elements between them. */

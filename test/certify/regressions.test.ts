@@ -308,6 +308,22 @@ describe("a near-degeneracy stays one, whatever labels and columns stand beside 
       expect(validateBasis(near, half, undefined, options).verdict).toBe("undecided");
     }
     expect(validateBasis(near, half, undefined, { lambda: 1e-9 }).verdict).toBe("good");
+    // a reach far below ‖V‖, and yet far above the distance
+    const faint: Problem = {
+      h0: { diagonal: [0, 1e-9, 1] },
+      v: symmetric(3, [
+        [0, 1, 1e-7],
+        [2, 2, 1],
+      ]),
+    };
+    expect(
+      validateBasis(
+        faint,
+        half.map(([x]) => [x as number]),
+        undefined,
+        { lambda: 1 },
+      ).verdict,
+    ).toBe("undecided");
   });
 
   it("inside a level too: states that V tells apart far less than the second order mixes them", () => {
