@@ -1,5 +1,6 @@
 import { spawn } from "node:child_process";
-import { existsSync, mkdtempSync, readFileSync, rmSync } from "node:fs";
+import { existsSync, mkdtempSync, readFileSync } from "node:fs";
+import { rm } from "node:fs/promises";
 import { createServer, type Server } from "node:http";
 import type { AddressInfo } from "node:net";
 import { tmpdir } from "node:os";
@@ -129,7 +130,8 @@ async function visit(path: string, isolated: boolean): Promise<Told> {
     const ended = new Promise((resolve) => child.once("exit", resolve));
     if (child.kill()) await ended;
     server.close();
-    rmSync(profile, { recursive: true, force: true, maxRetries: 5 });
+    // the browser's own processes may write to its profile for a moment after it has ended
+    await rm(profile, { recursive: true, force: true, maxRetries: 10, retryDelay: 100 });
   }
 }
 
